@@ -1,0 +1,3 @@
+"""The compliance checker for control-system specifications."""
+
+__version__ = "0.1.0"

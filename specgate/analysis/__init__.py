@@ -1,0 +1,1 @@
+"""A Project and parameter values to analysed loops."""

@@ -1,0 +1,1 @@
+"""One file per approximation: formula, range, stated accuracy, source."""

@@ -1,0 +1,75 @@
+"""The shape of a row of the catalogue of approximations."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import Literal
+
+from flint import arb, fmpq
+
+from specgate.approximations.features import Features
+from specgate.measures.measure import Arguments
+from specgate.response.answers import Answer
+from specgate.terms.verdicts import Trilean
+
+
+@dataclass(frozen=True)
+class Found:
+    """What a condition met: a ball (refined enough to print), a whole number or words; and whether it holds."""
+
+    value: arb | int | str | None
+    holds: Trilean
+
+
+@dataclass(frozen=True)
+class Condition:
+    """One condition of an approximation's range.
+
+    key: short name by which a project's policy may tighten `threshold`. required: words with `{threshold}`.
+    tighter: the direction in which a threshold gets stricter. source: published (author, year, place),
+    "common practice" or "derived".
+    """
+
+    key: str
+    name: str
+    source: str
+    required: str
+    find: Callable[[Features, Arguments, fmpq | None], Found]
+    threshold: fmpq | None = None
+    tighter: Literal["larger", "smaller"] = "larger"
+
+
+@dataclass(frozen=True)
+class Accuracy:
+    """Stated range of error = formula / true - 1 inside the conditions; `text` says it in words."""
+
+    lower: fmpq
+    upper: fmpq
+    text: str
+
+
+@dataclass(frozen=True)
+class Approximation:
+    """One row: formula, range, stated accuracy, source.
+
+    estimates: names of the measures it estimates. evaluate: formula on this response, in the unit in which the
+    measure is read (SI, ratios plain); absent where the features it needs do not exist.
+    accuracy: None where nothing is stated for these arguments.
+    premises: names of approximations whose conditions belong to this one.
+    text: the user's text (the module's docstring).
+    """
+
+    name: str
+    title: str
+    estimates: tuple[str, ...]
+    formula: str
+    source: str
+    conditions: tuple[Condition, ...]
+    evaluate: Callable[[Features, Arguments], Answer]
+    accuracy: Callable[[Features, Arguments], Accuracy | None]
+    text: str
+    premises: tuple[str, ...] = ()
+    alternatives: tuple[str, ...] = ()
+    always_safe: Literal["over", "under"] | None = None
+    """Set where the formula is a proved bound on one side of the truth inside its conditions."""

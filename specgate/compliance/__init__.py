@@ -1,0 +1,1 @@
+"""One requirement to one assessment: result, verdict, standing, audit, reserve."""

@@ -1,0 +1,1 @@
+"""YAML files to a Project, or to everything that is wrong with them."""

@@ -1,0 +1,98 @@
+"""The shape of a row of the measure table."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from enum import Enum
+from typing import Any, Literal
+
+from flint import fmpq
+
+from specgate.response.answers import Answer
+
+
+class UnitRule(Enum):
+    """In what a measure is counted; `read` answers in coherent SI, ratios plain (not per cent, not dB)."""
+
+    SECOND = "s"
+    SIGNAL = "the signal's unit"
+    CHANGE = "% of the change, or the signal's unit"
+    SIGNAL_RATE = "the signal's unit per second"
+    SIGNAL_SECOND = "the signal's unit times second"
+    SIGNAL_SQUARED_SECOND = "the signal's unit squared times second"
+    COUNT = "whole number"
+    RATIO = "1"
+    DECIBEL = "dB"
+    DEGREE = "deg"
+    RADIAN_PER_SECOND = "rad/s"
+    PER_SECOND = "1/s"
+    PER_SECOND_SQUARED = "1/s^2"
+    YES_NO = "yes/no"
+
+
+SubjectKind = Literal["response", "break", "loop"]
+ArgumentKind = Literal["band", "fraction", "time", "frequency", "mask", "range"]
+
+
+@dataclass(frozen=True)
+class Argument:
+    """An argument of a measure as it is named in a criterion."""
+
+    name: str
+    kind: ArgumentKind
+    text: str
+    required: bool = False
+
+
+@dataclass(frozen=True)
+class Band:
+    """A settling band: a fraction of the change, or a distance in the signal's unit (SI)."""
+
+    size: fmpq
+    relative: bool
+
+
+@dataclass(frozen=True)
+class Arguments:
+    """Evaluated arguments. lower, upper: fractions of the change between which rise time counts.
+
+    absolute: overshoot and undershoot are asked for in the signal's unit instead of as a fraction of the change.
+    """
+
+    band: Band | None = None
+    lower: fmpq = fmpq(1, 10)
+    upper: fmpq = fmpq(9, 10)
+    absolute: bool = False
+
+
+Reader = Callable[[Any, Arguments], Answer]
+"""`read(subject, arguments)`; the subject is of the row's subject kinds (specgate.measures.subjects)."""
+
+Comparer = Callable[[Any, Arguments, fmpq], Literal[-1, 0, 1] | None]
+"""`at_limit(subject, arguments, limit)`: exact sign of measure minus limit (SI), or None where undecided."""
+
+
+@dataclass(frozen=True)
+class Measure:
+    """One row: what is read off which subject, and how.
+
+    definition: the user's text. source: the standard's term it follows, or where it is fixed.
+    absent_when: when there is no value. signed: may be of either sign (see `sign-ambiguous-limit`).
+    read is None for a measure that this version does not answer yet.
+    always: reported on every step response (or break, or loop), asked for or not.
+    """
+
+    name: str
+    title: str
+    subjects: tuple[SubjectKind, ...]
+    unit: UnitRule
+    definition: str
+    absent_when: str
+    source: str
+    method: str
+    read: Reader | None = None
+    at_limit: Comparer | None = None
+    arguments: tuple[Argument, ...] = ()
+    signed: bool = False
+    always: bool = False

@@ -1,0 +1,1 @@
+"""The typed, frozen specification and its instantiation with values."""

@@ -1,0 +1,1 @@
+"""Views in words and pictures: HTML, PDF, terminal."""

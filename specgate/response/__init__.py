@@ -1,0 +1,1 @@
+"""Enclosed layer: what a response does over time, with proved bounds."""

@@ -1,0 +1,1 @@
+"""All of it for one Project: the Review that reports and exchange formats show."""

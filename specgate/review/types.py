@@ -1,0 +1,414 @@
+"""The Review: what a run found, in plain values; a mirror of the results format, key for key.
+
+Every field is named as in `schemas/results.schema.json`, so that the machine-readable result is this tree written
+out and read back (`exchange.json`). Reports and differences need nothing beside it. Field metadata: `json` where
+the key is a Python keyword or otherwise differs (`from_` is written `from`); fields that are None and whose
+metadata says `omit` are left out.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import Any
+
+
+def _omitted(key: str | None = None) -> Any:
+    return field(default=None, metadata={"omit": True} if key is None else {"omit": True, "json": key})
+
+
+@dataclass(frozen=True)
+class Location:
+    """A place in an input file, counted from 1; `message` only on related places."""
+
+    path: str
+    line: int
+    column: int
+    message: str | None = _omitted()
+
+
+@dataclass(frozen=True)
+class Amount:
+    """A number with its unit; `exact` is a fraction, `as_written` the text of the file."""
+
+    value: float | None
+    unit: str
+    exact: str | None = _omitted()
+    as_written: str | None = _omitted()
+    infinite: bool | None = _omitted()
+
+
+@dataclass(frozen=True)
+class Result:
+    """A value as printed (12 significant digits) with its proved bounds, or the reason why there is none."""
+
+    value: float | int | bool | None
+    lower: float | None = _omitted()
+    upper: float | None = _omitted()
+    exact: str | None = _omitted()
+    unit: str | None = _omitted()
+    proof: str | None = _omitted()
+    reason: str | None = _omitted()
+    infinite: bool | None = _omitted()
+    fragile: str | None = _omitted()
+    signed: float | None = _omitted()
+
+
+@dataclass(frozen=True)
+class MeasureResult(Result):
+    """A Result with the measure and the arguments it was read with."""
+
+    measure: str = ""
+    arguments: Mapping[str, str] | None = _omitted()
+
+
+@dataclass(frozen=True)
+class Pole:
+    """A certified pole: the true one lies within `radius` of what is printed, 1/s."""
+
+    real: float
+    imaginary: float
+    multiplicity: int
+    radius: float
+
+
+@dataclass(frozen=True)
+class Curve:
+    """Points of a response, seconds against the signal's unit (deviation from rest), 6 digits."""
+
+    time: tuple[float, ...]
+    value: tuple[float, ...]
+
+
+@dataclass(frozen=True)
+class ResponseReview:
+    """A response: what drives it, its transfer function (exact, highest power first) and all its measures."""
+
+    from_: str = field(metadata={"json": "from"})
+    to: str
+    input: Mapping[str, str]
+    unit: str
+    numerator: tuple[str, ...]
+    denominator: tuple[str, ...]
+    measures: tuple[MeasureResult, ...]
+    poles: tuple[Pole, ...] = ()
+    zeros: tuple[Pole, ...] = ()
+    curve: Curve | None = None
+    reason: str | None = _omitted()
+    """Why there is no response (improper, not answered yet)."""
+
+
+@dataclass(frozen=True)
+class BreakReview:
+    """A loop opened at a break."""
+
+    at: str
+    measures: tuple[MeasureResult, ...]
+    numerator: tuple[str, ...] = ()
+    denominator: tuple[str, ...] = ()
+    crossings: tuple[Mapping[str, Any], ...] = ()
+    reason: str | None = _omitted()
+
+
+@dataclass(frozen=True)
+class HiddenMode:
+    """A mode of the loop that a response does not show."""
+
+    response: str
+    polynomial: tuple[str, ...]
+    stable: bool
+    poles: tuple[Pole, ...] = ()
+
+
+@dataclass(frozen=True)
+class LoopReview:
+    """A loop, solved."""
+
+    title: str | None
+    wiring: Mapping[str, str]
+    inputs: Mapping[str, str]
+    """Units of the outside inputs, by name."""
+    signal_units: Mapping[str, str]
+    rest: Mapping[str, str]
+    subsystems: tuple[str, ...]
+    characteristic_polynomial: tuple[str, ...]
+    poles: tuple[Pole, ...]
+    hidden_modes: tuple[HiddenMode, ...]
+    measures: tuple[MeasureResult, ...]
+    responses: Mapping[str, ResponseReview]
+    breaks: Mapping[str, BreakReview]
+    reason: str | None = _omitted()
+    """Why the loop could not be solved (an algebraic loop)."""
+
+
+@dataclass(frozen=True)
+class ParameterReview:
+    """A parameter with its nominal value, in the unit it was written in."""
+
+    value: float
+    exact: str
+    unit: str
+    as_written: str
+    location: Location
+    tolerance: Mapping[str, str] | None = None
+    source: str | None = None
+
+
+@dataclass(frozen=True)
+class SubsystemReview:
+    """A subsystem: its transfer function in coherent SI, and the parameters it reads."""
+
+    title: str | None
+    owner: str | None
+    inputs: Mapping[str, str]
+    outputs: Mapping[str, str]
+    model: str
+    """The form of the model in words."""
+    numerators: Mapping[str, tuple[str, ...]]
+    """By `output` or `output/input` where there are several."""
+    numerator: tuple[str, ...]
+    denominator: tuple[str, ...]
+    reads: tuple[str, ...]
+    used: bool
+    location: Location
+    realised: str | None = None
+    by_fit: bool = False
+
+
+@dataclass(frozen=True)
+class SpecificationReview:
+    """What the files say, evaluated."""
+
+    parameters: Mapping[str, ParameterReview]
+    subsystems: Mapping[str, SubsystemReview]
+    documents: Mapping[str, Mapping[str, Any]]
+
+
+@dataclass(frozen=True)
+class ConditionReview:
+    """A condition of an approximation: what it requires, what was found, whether it holds (None: undecided)."""
+
+    key: str
+    name: str
+    source: str
+    required: str
+    found: float | str | None
+    holds: bool | None
+    approximation: str = ""
+    policy: str | None = _omitted()
+    """Set where the project changed the threshold."""
+
+
+@dataclass(frozen=True)
+class ErrorReview:
+    """Signed error of a formula against the proved value; side is safe, unsafe or none."""
+
+    relative: float | None
+    side: str
+    absolute: Amount | None = _omitted()
+
+
+@dataclass(frozen=True)
+class InsteadReview:
+    """What to use instead of an approximation that does not stand."""
+
+    name: str
+    value: float | None
+    unit: str
+
+
+@dataclass(frozen=True)
+class BasisReview:
+    """The audit of a basis. For `computed` and `evidence` only kind and standing are set."""
+
+    kind: str
+    standing: str
+    chain: tuple[str, ...] = ()
+    claimed: Amount | None = None
+    formula: Amount | None = None
+    formula_text: str | None = None
+    error: ErrorReview | None = None
+    claim_agrees: bool | None = None
+    implied: Mapping[str, float] | None = None
+    """Interval that the stated accuracy leaves for the true value: lower, upper (unit of the claim)."""
+    accuracy: str | None = None
+    conditions: tuple[ConditionReview, ...] = ()
+    instead: InsteadReview | None = None
+    reason: str | None = _omitted()
+
+
+@dataclass(frozen=True)
+class LimitReview:
+    """A limit: exactly one of the keys is set."""
+
+    at_most: Amount | None = _omitted()
+    at_least: Amount | None = _omitted()
+    between: tuple[Amount, Amount] | None = _omitted()
+    within: Amount | None = _omitted()
+    of: Amount | None = _omitted()
+    equals: bool | int | None = _omitted()
+
+
+@dataclass(frozen=True)
+class ReserveReview:
+    """Distance to the limit, positive inside, in the limit's unit."""
+
+    value: float | None
+    unit: str
+    relative: float | None = None
+    infinite: bool | None = _omitted()
+
+
+@dataclass(frozen=True)
+class CriterionReview:
+    """One limit of a requirement: what was found, the verdict, the audit."""
+
+    measure: str
+    on: str
+    arguments: Mapping[str, str]
+    limit: LimitReview
+    evaluate: str
+    verdict: str
+    result: Result
+    reserve: ReserveReview | None
+    basis: BasisReview
+    location: Location
+    reason: str | None = _omitted()
+
+
+@dataclass(frozen=True)
+class MethodReview:
+    """A verification method and how it stands: a verdict, `due_later`, or `no_record`."""
+
+    method: str
+    stage: str | None
+    outcome: str
+
+
+@dataclass(frozen=True)
+class RequirementReview:
+    """A requirement with its verdict. Verdict is `not_applicable` where it does not apply."""
+
+    text: str
+    title: str | None
+    rationale: str | None
+    owner: str | None
+    location: Location
+    derived_from: tuple[str, ...]
+    allocated_to: tuple[str, ...]
+    verdict: str
+    standing: str | None
+    decided_by: str
+    methods: tuple[MethodReview, ...]
+    criteria: tuple[CriterionReview, ...]
+    assumptions: tuple[Mapping[str, Any], ...] = ()
+    rests_on: tuple[str, ...] = ()
+    derived: tuple[str, ...] = ()
+    """Ids of the requirements derived from it."""
+    evidence: tuple[Mapping[str, Any], ...] = ()
+    waiver: Mapping[str, Any] | None = None
+    reason: str | None = None
+    """Why it is not compliant, in one sentence."""
+    not_applicable: Mapping[str, Any] | None = None
+    external: Mapping[str, Any] | None = None
+
+
+@dataclass(frozen=True)
+class FindingReview:
+    """A finding as printed."""
+
+    rule: str
+    level: str
+    message: str
+    location: Location
+    requirement: str | None = _omitted()
+    loop: str | None = _omitted()
+    response: str | None = _omitted()
+    subsystem: str | None = _omitted()
+    related: tuple[Location, ...] = ()
+
+
+@dataclass(frozen=True)
+class GateReview:
+    """Outcome (`pass`, `hold`, `unusable`) and, one sentence each, what holds it."""
+
+    outcome: str
+    reasons: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class ToolReview:
+    """Which program made the result."""
+
+    name: str
+    version: str
+
+
+@dataclass(frozen=True)
+class InputReview:
+    """A file that was read and the digest of its bytes."""
+
+    path: str
+    sha256: str
+
+
+@dataclass(frozen=True)
+class ProjectReview:
+    """Title block."""
+
+    id: str
+    title: str
+    revision: str
+    date: str | None
+    stage: str | None
+    stages: tuple[str, ...]
+    sign_off: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class PolicyReview:
+    """What holds the gate, how results are evaluated, thresholds that the project changed."""
+
+    hold_on: tuple[str, ...]
+    evaluate: str
+    changed_thresholds: tuple[Mapping[str, Any], ...] = ()
+
+
+@dataclass(frozen=True)
+class DefinitionReview:
+    """The text that `explain` prints, of every measure, approximation and rule that was used."""
+
+    kind: str
+    title: str
+    text: str
+    source: str | None = None
+
+
+@dataclass(frozen=True)
+class Review:
+    """The whole result of a run on a project that could be built."""
+
+    format: int
+    tool: ToolReview
+    project: ProjectReview
+    inputs: tuple[InputReview, ...]
+    policy: PolicyReview
+    units: tuple[str, ...]
+    specification: SpecificationReview
+    loops: Mapping[str, LoopReview]
+    requirements: Mapping[str, RequirementReview]
+    trace: Mapping[str, tuple[str, ...]]
+    definitions: Mapping[str, DefinitionReview]
+    findings: tuple[FindingReview, ...]
+    gate: GateReview
+
+
+@dataclass(frozen=True)
+class Unusable:
+    """The result of a run on a project that could not be built."""
+
+    format: int
+    tool: ToolReview
+    inputs: tuple[InputReview, ...]
+    findings: tuple[FindingReview, ...]
+    gate: GateReview

@@ -1,0 +1,1 @@
+"""One rule per file: what it looks at and what it says."""

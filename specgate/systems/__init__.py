@@ -1,0 +1,1 @@
+"""Exact layer: polynomials, blocks, wiring, stability. No float anywhere."""

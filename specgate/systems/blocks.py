@@ -1,0 +1,62 @@
+"""Blocks and signal expressions: what a loop is wired from. Plain exact values, coherent SI."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from flint import fmpq, fmpq_poly
+
+
+@dataclass(frozen=True)
+class Block:
+    """A subsystem with its model: outputs = numerators / denominator * inputs, as written, never reduced.
+
+    numerators: {(output, input): polynomial}; a missing pair is zero. One denominator is one set of modes.
+    """
+
+    name: str
+    inputs: tuple[str, ...]
+    outputs: tuple[str, ...]
+    numerators: Mapping[tuple[str, str], fmpq_poly]
+    denominator: fmpq_poly
+
+
+@dataclass(frozen=True)
+class SignalRef:
+    """A loop input or signal, by name."""
+
+    name: str
+
+
+@dataclass(frozen=True)
+class OutputRef:
+    """One output of an instance: `plant(duty=d, load=i).voltage`."""
+
+    instance: str
+    output: str
+
+
+@dataclass(frozen=True)
+class LinearForm:
+    """A sum of constant times reference; the coefficients are exact."""
+
+    terms: tuple[tuple[fmpq, SignalRef | OutputRef], ...]
+
+
+@dataclass(frozen=True)
+class Instance:
+    """A block applied to arguments (one linear form per input of the block)."""
+
+    name: str
+    block: Block
+    arguments: Mapping[str, LinearForm]
+
+
+@dataclass(frozen=True)
+class Wiring:
+    """A loop: its inputs, the applied blocks and the equations of its signals."""
+
+    inputs: tuple[str, ...]
+    instances: tuple[Instance, ...]
+    signals: Mapping[str, LinearForm]

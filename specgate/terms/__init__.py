@@ -1,0 +1,1 @@
+"""Words that all rooms speak: places, findings, verdicts, quantities, units."""

@@ -1,0 +1,1 @@
+"""The graph from need to requirement to evidence: facts, no findings."""

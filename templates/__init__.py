@@ -1,0 +1,1 @@
+"""Report templates, styles and fonts that ship with specgate."""
