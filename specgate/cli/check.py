@@ -1,0 +1,48 @@
+"""`specgate check`: verdicts and findings, in words or as JSON."""
+
+from __future__ import annotations
+
+import argparse
+import sys
+
+from specgate.cli import status
+from specgate.cli.terminal import colour, width
+
+
+def configure(parser: argparse.ArgumentParser) -> None:
+    """Add the arguments of `check`."""
+    parser.add_argument("project", metavar="PROJECT", help="a folder with a specgate.yaml, or one YAML file")
+    parser.add_argument("--format", choices=("text", "json"), default="text", help="what to print (default: text)")
+    parser.add_argument("-o", "--output", metavar="FILE", default="-", help="write to FILE instead of the terminal")
+    parser.add_argument(
+        "--color",
+        "--colour",
+        choices=("auto", "always", "never"),
+        default="auto",
+        dest="colour",
+        help="colour in text (default: auto, only on a terminal; NO_COLOR is respected)",
+    )
+    parser.epilog = status.EXPLAINED
+
+
+def run(options: argparse.Namespace) -> int:
+    """Judge the project, print, and return the exit status."""
+    from specgate.cli.files import write
+    from specgate.cli.judge import judge
+
+    judged = judge(options.project)
+    if options.format == "json":
+        from specgate.exchange import json
+
+        text = json.write(judged.review)
+    else:
+        from specgate.report import terminal
+
+        on_screen = options.output == "-"
+        text = terminal.render(
+            judged.review,
+            width=width(sys.stdout) if on_screen else 120,
+            colour=colour(options.colour, sys.stdout) if on_screen else options.colour == "always",
+        )
+    write(options.output, text.encode())
+    return judged.status
