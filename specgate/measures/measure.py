@@ -58,12 +58,14 @@ class Arguments:
     """Evaluated arguments. lower, upper: fractions of the change between which rise time counts.
 
     absolute: overshoot and undershoot are asked for in the signal's unit instead of as a fraction of the change.
+    time: instant at which `value_at` is read, seconds from the step.
     """
 
     band: Band | None = None
     lower: fmpq = fmpq(1, 10)
     upper: fmpq = fmpq(9, 10)
     absolute: bool = False
+    time: fmpq | None = None
 
 
 Reader = Callable[[Any, Arguments], Answer]
@@ -80,6 +82,7 @@ class Measure:
     definition: the user's text. source: the standard's term it follows, or where it is fixed.
     absent_when: when there is no value. signed: may be of either sign (see `sign-ambiguous-limit`).
     read is None for a measure that this version does not answer yet.
+    beside: a second value printed next to the first (the signed value of a magnitude).
     always: reported on every step response (or break, or loop), asked for or not.
     """
 
@@ -93,6 +96,7 @@ class Measure:
     method: str
     read: Reader | None = None
     at_limit: Comparer | None = None
+    beside: Reader | None = None
     arguments: tuple[Argument, ...] = ()
     signed: bool = False
     always: bool = False

@@ -1,0 +1,75 @@
+"""Error measures: of the reference minus the response."""
+
+from __future__ import annotations
+
+from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
+from specgate.measures.reading import missing
+from specgate.measures.subjects import ResponseSubject
+from specgate.response.answers import Absent, Answer
+
+
+def _signed_error(subject: ResponseSubject, _: Arguments) -> Answer:
+    if subject.void is not None:
+        return missing(subject.void)
+    if isinstance(subject.error, Absent):
+        return missing(subject.error)
+    return subject.error.final_value()
+
+
+def _error(subject: ResponseSubject, arguments: Arguments) -> Answer:
+    signed = _signed_error(subject, arguments)
+    return signed if signed.exact is None else Answer.of_exact(abs(signed.exact))
+
+
+_INTEGRAL = "the error does not vanish in the end: its integral grows without bound"
+
+ROWS = (
+    Measure(
+        name="steady_state_error",
+        title="Steady-state error",
+        subjects=("response",),
+        unit=UnitRule.SIGNAL,
+        definition=(
+            "Magnitude of what is left of reference minus response once everything has settled; the signed value is "
+            "printed beside it. The reference is the input of the response where both have one dimension, else the "
+            "signal that the response names as `reference`."
+        ),
+        absent_when="the error does not settle; or no reference of the same dimension is named",
+        source="IEC 60050-351:2013, control difference variable (section 351-48) in steady state",
+        method="exact: value at s = 0 of the channel from input to error, after an exact stability test",
+        read=_error,
+        beside=_signed_error,
+        always=True,
+    ),
+    Measure(
+        name="deviation_after",
+        title="Deviation after a time",
+        subjects=("response",),
+        unit=UnitRule.SIGNAL,
+        definition="The greatest distance of the response from its final value from the stated time on, for good.",
+        absent_when="the response does not settle",
+        source="specgate's own definition",
+        method="enclosed",
+        arguments=(Argument("time", "time", "time after the step from which on the distance counts", required=True),),
+    ),
+    Measure(
+        name="integral_absolute_error",
+        title="Integral of the absolute error",
+        subjects=("response",),
+        unit=UnitRule.SIGNAL_SECOND,
+        definition="Integral over all time of the magnitude of reference minus response.",
+        absent_when=_INTEGRAL,
+        source="common control criterion (IAE)",
+        method="enclosed: lobes between proved zeros of the error",
+    ),
+    Measure(
+        name="integral_squared_error",
+        title="Integral of the squared error",
+        subjects=("response",),
+        unit=UnitRule.SIGNAL_SQUARED_SECOND,
+        definition="Integral over all time of the square of reference minus response.",
+        absent_when=_INTEGRAL,
+        source="common control criterion (ISE)",
+        method="exact: a rational number",
+    ),
+)

@@ -1,0 +1,33 @@
+"""Modes of a loop that none of its channels shows."""
+
+from __future__ import annotations
+
+from specgate.measures.measure import Arguments, Measure, UnitRule
+from specgate.measures.subjects import LoopSubject
+from specgate.response.answers import Answer
+
+
+def _hidden_modes(subject: LoopSubject, _: Arguments) -> Answer:
+    solution = subject.solution
+    if solution.algebraic_loop is not None:
+        return Answer.undecided(solution.algebraic_loop.reason)
+    return Answer.of_exact(sum(component.hidden.degree() for component in solution.components))
+
+
+ROWS = (
+    Measure(
+        name="hidden_modes",
+        title="Hidden modes",
+        subjects=("loop",),
+        unit=UnitRule.COUNT,
+        definition=(
+            "Number of modes of the loop, with multiplicity, that no channel from an input to a signal shows: they "
+            "cancel inside the loop and still live in the hardware. A response may hide more of them; each is listed."
+        ),
+        absent_when="the loop has an algebraic loop: its signals are not determined",
+        source="modes that are not controllable or not observable (IEC 60050-351:2013, 351-42-22, 351-42-23)",
+        method="exact: det P(s) against the reduced channels, in rational arithmetic",
+        read=_hidden_modes,
+        always=True,
+    ),
+)

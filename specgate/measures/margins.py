@@ -1,0 +1,83 @@
+"""Stability margins of a loop opened at a break."""
+
+from __future__ import annotations
+
+from specgate.measures.measure import Measure, UnitRule
+
+_NO_MARGIN = "the nominal loop is unstable; a margin that nothing uses up is infinite and meets every at_least"
+_CROSSINGS = "exact crossing polynomials in the square of the frequency, certified roots"
+
+
+def _margin(name: str, title: str, unit: UnitRule, definition: str, source: str) -> Measure:
+    return Measure(name, title, ("break",), unit, definition, _NO_MARGIN, source, _CROSSINGS)
+
+
+_GAIN = "IEC 60050-351:2013, 351-46-07 (gain margin), over all crossings"
+_PHASE = "IEC 60050-351:2013, 351-46-05 (phase margin), over all crossings"
+
+ROWS = (
+    _margin(
+        "gain_margin",
+        "Gain margin",
+        UnitRule.DECIBEL,
+        "The smallest change of the loop gain, up or down, that makes the loop unstable; positive, with its direction.",
+        _GAIN,
+    ),
+    _margin(
+        "gain_margin_up",
+        "Gain margin upwards",
+        UnitRule.DECIBEL,
+        "The smallest rise of the loop gain that makes the loop unstable.",
+        _GAIN,
+    ),
+    _margin(
+        "gain_margin_down",
+        "Gain margin downwards",
+        UnitRule.DECIBEL,
+        "The smallest fall of the loop gain that makes the loop unstable; positive.",
+        _GAIN,
+    ),
+    _margin(
+        "phase_margin",
+        "Phase margin",
+        UnitRule.DEGREE,
+        "The smallest change of phase, lag or lead, that makes the loop unstable; positive, with its direction.",
+        _PHASE,
+    ),
+    _margin(
+        "phase_margin_lag",
+        "Phase margin against lag",
+        UnitRule.DEGREE,
+        "The smallest added phase lag that makes the loop unstable.",
+        _PHASE,
+    ),
+    _margin(
+        "phase_margin_lead",
+        "Phase margin against lead",
+        UnitRule.DEGREE,
+        "The smallest added phase lead that makes the loop unstable.",
+        _PHASE,
+    ),
+    _margin(
+        "delay_margin",
+        "Delay margin",
+        UnitRule.SECOND,
+        "The smallest added dead time that makes the loop unstable; zero where the loop gain does not fall below one "
+        "at high frequency.",
+        "specgate's own definition; the least phase lag over frequency at the gain crossings",
+    ),
+    _margin(
+        "least_distance",
+        "Least distance to -1",
+        UnitRule.RATIO,
+        "The least distance of the open-loop frequency response from the point -1.",
+        "reciprocal of the sensitivity peak",
+    ),
+    _margin(
+        "sensitivity_peak",
+        "Sensitivity peak",
+        UnitRule.RATIO,
+        "The greatest gain over frequency of 1/(1+L), by which the loop amplifies what disturbs it.",
+        "Skogestad, Postlethwaite: Multivariable Feedback Control, 2nd ed. 2005, section 2.4",
+    ),
+)

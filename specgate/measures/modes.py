@@ -1,0 +1,156 @@
+"""Measures of all modes of a loop: its stability, its hidden modes, and where its poles lie."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable
+
+from flint import acb, arb
+
+from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
+from specgate.measures.subjects import LoopSubject
+from specgate.response.answers import Answer
+from specgate.systems.roots import certified_roots
+from specgate.terms.precision import working_precision
+
+_NO_POLES = "the loop has no dynamics: there is no pole"
+
+
+def _well_posed(read: Callable[[LoopSubject], Answer]) -> Callable[[LoopSubject, Arguments], Answer]:
+    """Leave every question open on a loop whose signals are not determined."""
+
+    def reader(subject: LoopSubject, _: Arguments) -> Answer:
+        if subject.solution.algebraic_loop is not None:
+            return Answer.undecided(subject.solution.algebraic_loop.reason)
+        return read(subject)
+
+    return reader
+
+
+def _stable(subject: LoopSubject) -> Answer:
+    return Answer.of_truth(subject.solution.stable)
+
+
+def _least(values: Iterable[arb]) -> arb:
+    return min_ball(list(values))
+
+
+def min_ball(values: list[arb]) -> arb:
+    """Return a ball that contains the smallest of the numbers enclosed by balls."""
+    smallest = values[0]
+    for value in values[1:]:
+        smallest = smallest.min(value)
+    return smallest
+
+
+def _over_poles(subject: LoopSubject, of: Callable[[acb], arb], which: Callable[[acb], bool], reason: str) -> Answer:
+    """Return the smallest value of `of` over the poles that `which` picks, or `reason` where there is none."""
+    polynomial = subject.solution.determinant
+
+    def refine(bits: int) -> arb:
+        poles = [root.value for root in certified_roots(polynomial, bits + 16)]
+        with working_precision(bits + 16):
+            return _least(of(pole) for pole in poles if which(pole))
+
+    if not any(which(root.value) for root in certified_roots(polynomial, 64)):
+        return Answer.nothing(reason)
+    return Answer.of_ball(refine)
+
+
+def _away_from_origin(pole: acb) -> bool:
+    return not pole.is_zero()
+
+
+def _oscillatory(pole: acb) -> bool:
+    return not pole.imag.is_zero()
+
+
+def _any(_: acb) -> bool:
+    return True
+
+
+def _damping(pole: acb) -> arb:
+    return -pole.real / abs(pole)
+
+
+def _damping_ratio(subject: LoopSubject) -> Answer:
+    return _over_poles(subject, _damping, _away_from_origin, "the loop has no pole away from the origin")
+
+
+def _natural_frequency(subject: LoopSubject) -> Answer:
+    return _over_poles(subject, abs, _oscillatory, "the loop has no oscillating mode (no complex pair of poles)")
+
+
+def _decay_rate(subject: LoopSubject) -> Answer:
+    return _over_poles(subject, lambda pole: -pole.real, _any, _NO_POLES)
+
+
+_RANGE = (Argument("over", "range", "range of natural frequencies of the poles that count; all unless given"),)
+_ROOTS = "enclosed: certified roots of det P(s); equality with a limit decided in rational arithmetic"
+
+ROWS = (
+    Measure(
+        name="stable",
+        title="Stable",
+        subjects=("loop",),
+        unit=UnitRule.YES_NO,
+        definition=(
+            "Whether every mode of the loop decays: all roots of its characteristic polynomial, cancelled ones "
+            "included, lie strictly left of the imaginary axis."
+        ),
+        absent_when="the loop has an algebraic loop: its signals are not determined",
+        source="IEC 60050-351:2013, 351-42-21 (asymptotic stability), of the loop with all its modes",
+        method="exact: Routh's array in integers on det P(s) as wired, never reduced",
+        read=_well_posed(_stable),
+        always=True,
+    ),
+    Measure(
+        name="damping_ratio",
+        title="Damping ratio",
+        subjects=("loop",),
+        unit=UnitRule.RATIO,
+        definition=(
+            "The smallest damping ratio -Re p/|p| of any pole p of the loop: that of the least damped mode. One for a "
+            "real stable pole, negative for a growing mode; a pole at the origin has none and is left out."
+        ),
+        absent_when="the loop has no pole away from the origin",
+        source="IEC 60050-351:2013, 351-45-19 (damping ratio), of the least damped mode",
+        method=_ROOTS,
+        read=_well_posed(_damping_ratio),
+        arguments=_RANGE,
+        signed=True,
+        always=True,
+    ),
+    Measure(
+        name="natural_frequency",
+        title="Natural frequency",
+        subjects=("loop",),
+        unit=UnitRule.RADIAN_PER_SECOND,
+        definition=(
+            "The smallest undamped natural frequency |p| of any complex pair of poles p of the loop: that of its "
+            "slowest oscillating mode. Real poles are no oscillation and do not count; see decay_rate."
+        ),
+        absent_when="the loop has no complex pair of poles",
+        source="characteristic angular frequency of a second-order lag element, IEC 60050-351:2013, 351-50-03",
+        method=_ROOTS,
+        read=_well_posed(_natural_frequency),
+        arguments=_RANGE,
+        always=True,
+    ),
+    Measure(
+        name="decay_rate",
+        title="Decay rate",
+        subjects=("loop",),
+        unit=UnitRule.PER_SECOND,
+        definition=(
+            "The smallest -Re p of any pole p of the loop: the rate at which its slowest mode decays, cancelled ones "
+            "included. Negative for a loop with a growing mode."
+        ),
+        absent_when="the loop has no poles",
+        source="specgate's own definition: minus the largest real part of the poles",
+        method=_ROOTS,
+        read=_well_posed(_decay_rate),
+        arguments=_RANGE,
+        signed=True,
+        always=True,
+    ),
+)

@@ -1,0 +1,107 @@
+"""How readers get at what a subject holds, and how they combine balls into answers."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+from flint import arb, fmpq
+
+from specgate.measures.measure import Arguments, Reader
+from specgate.measures.subjects import ResponseSubject
+from specgate.response.answers import Absent, Answer
+from specgate.response.step import StepResponse
+from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.verdicts import Proof
+
+StepReader = Callable[[StepResponse, Arguments], Answer]
+
+
+def missing(absent: Absent) -> Answer:
+    """Return the answer of a question whose subject does not exist."""
+    return Answer(Proof.EXACT if absent.proved else Proof.ESTIMATED, absent=absent)
+
+
+def in_time(read: StepReader) -> Reader:
+    """Make a reader of a response subject from one of its response in time.
+
+    A mode that grows unseen inside the channel (`void`) leaves no measure over time.
+    """
+
+    def reader(subject: ResponseSubject, arguments: Arguments) -> Answer:
+        if subject.void is not None:
+            return missing(subject.void)
+        if isinstance(subject.response, Absent):
+            return missing(subject.response)
+        return read(subject.response, arguments)
+
+    return reader
+
+
+def change(response: StepResponse) -> fmpq | Answer:
+    """Return the change from the value before the step to the final value, or the answer why there is none."""
+    final = response.final_value()
+    return final if final.exact is None else final.exact
+
+
+def no_change(measure: str, instead: str) -> Answer:
+    """Return the answer of a measure that counts in parts of a change which is zero."""
+    return Answer.nothing(f"the response returns to where it was before the step, so {measure}: {instead}")
+
+
+def sign_of(refine: Callable[[int], arb]) -> int | None:
+    """Return the sign of a number known by balls, or None where even the narrowest ball holds zero."""
+    bits = 64
+    while bits <= HIGHEST:
+        ball = refine(bits)
+        with working_precision(bits):
+            if ball > 0:
+                return 1
+            if ball < 0:
+                return -1
+            if ball.is_zero():
+                return 0
+        bits *= 2
+    return None
+
+
+def positive_part(value: Answer) -> Answer:
+    """Return max(0, value): exactly zero only where the value is proved not to be positive."""
+    if value.absent is not None:
+        return value
+    if value.exact is not None:
+        return Answer.of_exact(max(value.exact, fmpq(0)))
+    sign = sign_of(value.enclose)
+    if sign is None:
+        return Answer.of_ball(lambda bits: value.enclose(bits).nonnegative_part(), value.fragile)
+    return value if sign > 0 else Answer.of_exact(0)
+
+
+def affine(value: Answer, factor: fmpq, offset: fmpq) -> Answer:
+    """Return factor * value + offset."""
+    if value.absent is not None:
+        return value
+    if value.exact is not None:
+        return Answer.of_exact(value.exact * factor + offset)
+
+    def refine(bits: int) -> arb:
+        ball = value.enclose(bits)
+        with working_precision(bits):
+            return ball * factor + offset
+
+    return Answer.of_ball(refine, value.fragile)
+
+
+def difference(later: Answer, earlier: Answer) -> Answer:
+    """Return later - earlier; a missing operand is the answer."""
+    for operand in (later, earlier):
+        if operand.absent is not None:
+            return operand
+    if later.exact is not None and earlier.exact is not None:
+        return Answer.of_exact(later.exact - earlier.exact)
+
+    def refine(bits: int) -> arb:
+        end, start = later.enclose(bits), earlier.enclose(bits)
+        with working_precision(bits):
+            return end - start
+
+    return Answer.of_ball(refine, later.fragile or earlier.fragile)
