@@ -52,7 +52,7 @@ ROWS = (
         ),
         absent_when="the response does not settle, or its change is zero (there is no direction)",
         source="IEC 60050-351:2013, 351-45-38 (overshoot); per cent of the change and the jump fixed by specgate",
-        method="enclosed: from the proved extreme; exactly zero only where the final value is proved never to be passed",
+        method="enclosed: from the proved extreme; exactly zero only where it is proved never to be passed",
         read=in_time(_overshoot),
         always=True,
     ),

@@ -21,7 +21,8 @@ class Explanation:
 
 def _argument_lines(measure: Measure) -> str:
     lines = [
-        f"  {argument.name}: {argument.text}{' (required)' if argument.required else ''}" for argument in measure.arguments
+        f"  {argument.name}: {argument.text}{' (required)' if argument.required else ''}"
+        for argument in measure.arguments
     ]
     return "\n".join(["Arguments:", *lines]) if lines else ""
 
