@@ -8,7 +8,18 @@ from dataclasses import dataclass, replace
 from typing import Literal, cast
 
 from specgate.terms.decimals import DecimalError, exact_decimal
-from specgate.terms.trees import Binary, Expression, ExpressionError, Name, Negative, Number, PercentOf, Pi, Power
+from specgate.terms.trees import (
+    Binary,
+    Expression,
+    ExpressionError,
+    ExpressionUnitError,
+    Name,
+    Negative,
+    Number,
+    PercentOf,
+    Pi,
+    Power,
+)
 from specgate.terms.units import Unit, UnitError, UnitTable
 
 LONGEST = 1000
@@ -204,7 +215,7 @@ class _Parser:
                 message += f" (or `* {word[:40]}`, if it is a name)"
             elif set(word) & set("*/+-"):
                 message += " (a unit runs to the next space: put spaces around the operators of an expression)"
-            raise ExpressionError(message, start) from None
+            raise ExpressionUnitError(message, start) from None
 
     def _misplaced(self) -> str:
         text = self.token.text

@@ -20,6 +20,10 @@ class ExpressionError(ValueError):
         self.offset = offset
 
 
+class ExpressionUnitError(ExpressionError):
+    """An expression with a unit in it that is not in the table."""
+
+
 @dataclass(frozen=True)
 class Expression:
     """A node of an expression; `offset` is where it stands in the text that was read."""
