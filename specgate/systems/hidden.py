@@ -1,0 +1,53 @@
+"""Modes that no channel of a wiring shows, and the components they belong to."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from flint import fmpq_poly
+
+from specgate.systems.blocks import SignalRef
+from specgate.systems.minimal import shown_modes
+from specgate.systems.network import Group, Network
+from specgate.systems.polynomials import exact_quotient, monic, product
+
+
+def hidden_modes(network: Network) -> tuple[fmpq_poly, ...]:
+    """Return, for each group of the network, its modes that no channel from any input to any signal shows (monic).
+
+    Where two groups have the same mode and only one of them hides it, the channels through each of them tell which.
+    """
+    groups = network.groups
+    left = _concealed(network, groups, network.equations.inputs, [SignalRef(name) for name in network.equations.forms])
+    if left.degree() == 0:
+        return (left,) * len(groups)
+    found = [fmpq_poly([1])] * len(groups)
+    for index, group in enumerate(groups):
+        share = left.gcd(group.modes)
+        if share.degree() > 0:
+            found[index] = share.gcd(_concealed_around(network, group))
+            left = exact_quotient(left, found[index])
+    for index, group in enumerate(groups):
+        share = left.gcd(exact_quotient(group.modes, found[index]))
+        found[index] = monic(found[index] * share)
+        left = exact_quotient(left, share)
+    return tuple(found)
+
+
+def _concealed_around(network: Network, group: Group) -> fmpq_poly:
+    """Return the hidden modes of what acts on a group or is acted on by it."""
+    before, after = network.upstream(group.outputs), network.downstream(group.outputs)
+    sources = [source for source in network.equations.inputs if source in before]
+    signals = [SignalRef(name) for name in network.equations.forms]
+    targets = [signal for signal in signals if signal in before or signal in after]
+    between = network.downstream(sources) & network.upstream(targets)
+    near = before | after | between
+    return _concealed(network, [g for g in network.groups if not near.isdisjoint(g.outputs)], sources, targets)
+
+
+def _concealed(
+    network: Network, groups: Sequence[Group], sources: Sequence[SignalRef], targets: Sequence[SignalRef]
+) -> fmpq_poly:
+    modes = product(group.modes for group in groups)
+    shown = shown_modes([[network.fraction(target, source) for source in sources] for target in targets])
+    return exact_quotient(modes, shown)

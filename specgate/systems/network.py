@@ -1,0 +1,109 @@
+"""The solved equations of a wiring: components with their modes, and any node as a fraction of an input."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+from functools import cached_property
+
+from flint import fmpq_poly
+
+from specgate.systems.blocks import OutputRef, SignalRef
+from specgate.systems.elimination import Eliminated, eliminate
+from specgate.systems.equations import Equations, Reference
+from specgate.systems.graph import reached, reversed_arcs
+from specgate.systems.modes import block_modes
+from specgate.systems.polynomials import exact_quotient, monic, product
+from specgate.systems.transfer import TransferFunction
+
+
+@dataclass(frozen=True)
+class Group:
+    """Strongly connected components that share blocks, with the modes of these blocks as closed (monic)."""
+
+    outputs: tuple[OutputRef, ...]
+    instances: tuple[str, ...]
+    modes: fmpq_poly
+
+
+@dataclass(frozen=True)
+class Network:
+    """Equations and their elimination."""
+
+    equations: Equations
+
+    @cached_property
+    def blocks(self) -> tuple[tuple[int, ...], ...]:
+        """The strongly connected components as numbers of outputs, those upstream first."""
+        variables = self.equations.variables
+        found = (
+            tuple(variables[node] for node in component if isinstance(node, OutputRef))
+            for component in self.equations.components
+        )
+        return tuple(block for block in found if block)
+
+    @cached_property
+    def eliminated(self) -> Eliminated:
+        """The equations solved for the outputs."""
+        return eliminate(self.equations.rows, self.blocks)
+
+    def fraction(self, node: Reference, source: SignalRef) -> TransferFunction:
+        """Return the transfer function from a loop input to a node, reduced."""
+        column = self.equations.variables[source]
+        total = TransferFunction(fmpq_poly(), fmpq_poly([1]))
+        for known, factor in self.equations.static[node].items():
+            if isinstance(known, OutputRef):
+                number = self.equations.variables[known]
+                entry = self.eliminated.rows[number].get(column) if number in self.eliminated.rows else None
+                if entry:
+                    share = TransferFunction(-fmpq_poly(entry) * factor, fmpq_poly(self.eliminated.scales[number]))
+                    total = _sum(total, share)
+            elif known == source:
+                total = _sum(total, TransferFunction(fmpq_poly([factor]), fmpq_poly([1])))
+        return total.reduced()
+
+    @cached_property
+    def groups(self) -> tuple[Group, ...]:
+        """The components with blocks, those upstream first; all must have been solved."""
+        determinants = [fmpq_poly(determinant) for determinant in self.eliminated.determinants]
+        merged = _merged(self.blocks, [output.instance for output in self.equations.outputs])
+        return tuple(self._group(members, determinants) for members in merged)
+
+    def _group(self, members: Sequence[int], determinants: Sequence[fmpq_poly]) -> Group:
+        outputs = tuple(self.equations.outputs[variable] for index in members for variable in self.blocks[index])
+        instances = tuple(dict.fromkeys(output.instance for output in outputs))
+        blocks = [self.equations.instances[name].block for name in instances]
+        # P has each denominator once for every output of its block; the modes are there once.
+        written = product(block.denominator ** len(block.outputs) for block in blocks)
+        closed = product(determinants[index] for index in members) * product(map(block_modes, blocks))
+        return Group(outputs, instances, monic(exact_quotient(closed, written)))
+
+    def downstream(self, nodes: Iterable[Reference]) -> frozenset[Reference]:
+        """Return the nodes that `nodes` act on, these included."""
+        return reached(nodes, self.equations.arcs)
+
+    def upstream(self, nodes: Iterable[Reference]) -> frozenset[Reference]:
+        """Return the nodes that act on `nodes`, these included."""
+        return reached(nodes, self._reversed)
+
+    @cached_property
+    def _reversed(self) -> Mapping[Reference, Sequence[Reference]]:
+        return reversed_arcs(self.equations.arcs)
+
+
+def _sum(a: TransferFunction, b: TransferFunction) -> TransferFunction:
+    if a.denominator == b.denominator:
+        return TransferFunction(a.numerator + b.numerator, a.denominator)
+    return TransferFunction(a.numerator * b.denominator + b.numerator * a.denominator, a.denominator * b.denominator)
+
+
+def _merged(blocks: Sequence[Sequence[int]], owner: Sequence[str]) -> list[list[int]]:
+    """Return the numbers of the blocks in sets that share no owner with each other, in the order of their first."""
+    sets: list[tuple[set[str], list[int]]] = []
+    for index, block in enumerate(blocks):
+        owners, members = {owner[variable] for variable in block}, [index]
+        for known in [known for known in sets if known[0] & owners]:
+            sets.remove(known)
+            owners, members = owners | known[0], known[1] + members
+        sets.append((owners, members))
+    return sorted((members for _, members in sets), key=min)

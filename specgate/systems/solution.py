@@ -1,0 +1,287 @@
+"""A wiring solved: every mode, algebraic loops, channels with their hidden modes, the loop opened at a signal.
+
+Nothing is reduced behind the user's back: what cancels between blocks stays in `determinant` and is named as hidden.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+from flint import fmpq, fmpq_poly, fmpz_poly
+
+from specgate.systems.blocks import Instance, LinearForm, OutputRef, SignalRef, Wiring
+from specgate.systems.equations import Equations, Reference
+from specgate.systems.feedthrough import (
+    AlgebraicLoop,
+    differentiating_loop,
+    direct_cycles,
+    is_proper,
+    signals_of,
+    undetermined,
+)
+from specgate.systems.hidden import hidden_modes
+from specgate.systems.network import Group, Network
+from specgate.systems.polynomials import ONE, exact_quotient, product
+from specgate.systems.stability import is_hurwitz
+from specgate.systems.transfer import TransferFunction
+
+
+@dataclass(frozen=True)
+class Component:
+    """Applied blocks that act on each other (or share their modes), with the modes they have together.
+
+    signals: those in the cycle; of blocks outside every cycle the signals that carry their outputs.
+    instances: names of the applied blocks. modes: monic, every mode with its multiplicity.
+    hidden: those modes that no channel from any loop input to any signal shows, monic.
+    """
+
+    signals: tuple[str, ...]
+    instances: tuple[str, ...]
+    modes: fmpq_poly
+    hidden: fmpq_poly
+
+    @property
+    def stable(self) -> bool:
+        """Whether every mode decays."""
+        return is_hurwitz(self.modes)
+
+
+@dataclass(frozen=True)
+class Channel:
+    """From a loop input to a signal.
+
+    transfer: not reduced; its denominator is `modes`. modes: product over the components on a path from the input to
+    the signal, monic. hidden: in modes and not in the reduced transfer, monic, with multiplicity.
+    components: those on a path. unstable_not_leading: unstable components that the input reaches but that do not act
+    on the signal; unstable_not_reached: unstable components that act on the signal but are not reached by the input.
+    """
+
+    source: str
+    target: str
+    transfer: TransferFunction
+    modes: fmpq_poly
+    hidden: fmpq_poly
+    components: tuple[Component, ...]
+    unstable_not_leading: tuple[Component, ...]
+    unstable_not_reached: tuple[Component, ...]
+
+    @property
+    def stable(self) -> bool:
+        """Whether every mode on the way decays, shown or hidden."""
+        return is_hurwitz(self.modes)
+
+    @property
+    def hides_instability(self) -> bool:
+        """Whether a hidden mode on the way does not decay: the reduced channel says nothing of the loop."""
+        return not is_hurwitz(self.hidden)
+
+
+@dataclass(frozen=True)
+class OpenLoop:
+    """The loop opened for all users of a signal.
+
+    transfer: L = det P / det P_open - 1, minus the transfer function from the injected to the returned signal, not
+    reduced: its denominator has every mode of the opened component. stable: whether every mode of the closed component
+    decays. algebraic_loop: set where the opened loop is not well posed; then L is infinite at infinity or everywhere.
+    """
+
+    signal: str
+    numerator: fmpq_poly
+    denominator: fmpq_poly
+    stable: bool
+    algebraic_loop: AlgebraicLoop | None = None
+
+    @property
+    def transfer(self) -> TransferFunction:
+        """L. Raises ValueError where the opened loop is not well posed."""
+        if self.algebraic_loop is not None:
+            raise ValueError(self.algebraic_loop.reason)
+        return TransferFunction(self.numerator, self.denominator)
+
+
+@dataclass(frozen=True)
+class StrongFeedThrough:
+    """A well-posed loop that passes its signals on at once, with a gain of magnitude one or more.
+
+    Any delay in it, however short, destabilises. gain: L at infinite frequency, the largest in magnitude of those at
+    the signals of the loop; None where it is infinite.
+    """
+
+    signals: tuple[str, ...]
+    gain: fmpq | None
+
+
+_INJECTED = "(injected)"
+
+
+@dataclass(frozen=True)
+class LoopSolution:
+    """A wiring and what follows from it. Only `wiring` and `algebraic_loop` may be read where the latter is set."""
+
+    wiring: Wiring
+    algebraic_loop: AlgebraicLoop | None
+    network: Network
+
+    @cached_property
+    def determinant(self) -> fmpq_poly:
+        """The characteristic polynomial det P, monic: every mode with its multiplicity, cancelled or not."""
+        return product(group.modes for group in self.network.groups)
+
+    @property
+    def stable(self) -> bool:
+        """Whether every mode decays."""
+        return is_hurwitz(self.determinant)
+
+    @cached_property
+    def components(self) -> tuple[Component, ...]:
+        """The components with blocks, those upstream first."""
+        hidden = hidden_modes(self.network)
+        return tuple(
+            Component(_carriers(self.network, group), group.instances, group.modes, concealed)
+            for group, concealed in zip(self.network.groups, hidden, strict=True)
+        )
+
+    def channel(self, source: str, target: str) -> Channel:
+        """Return the channel from a loop input to a signal. Raises KeyError for an unknown name."""
+        network = self.network
+        start, end = SignalRef(source), SignalRef(target)
+        after, before = network.downstream([start]), network.upstream([end])
+        on_path, not_leading, not_reached = [], [], []
+        for group, component in zip(network.groups, self.components, strict=True):
+            if any(output in after and output in before for output in group.outputs):
+                on_path.append(component)
+            elif not component.stable and any(output in after for output in group.outputs):
+                not_leading.append(component)
+            elif not component.stable and any(output in before for output in group.outputs):
+                not_reached.append(component)
+        modes = product(component.modes for component in on_path)
+        reduced = network.fraction(end, start)
+        hidden = exact_quotient(modes, reduced.denominator)
+        return Channel(
+            source,
+            target,
+            TransferFunction(reduced.numerator * hidden, modes),
+            modes,
+            hidden,
+            tuple(on_path),
+            tuple(not_leading),
+            tuple(not_reached),
+        )
+
+    def open_at(self, signal: str) -> OpenLoop:
+        """Return the loop opened at a signal. Raises KeyError for an unknown name."""
+        opened = Network(Equations(_with_injection(self.wiring, signal)))
+        node = SignalRef(signal)
+        returned = opened.fraction(node, SignalRef(_INJECTED))
+        closed_modes = self._modes_around(node)
+        # returned = -L/(1 + L), and 1/(1 + L) = det P_open / det P.
+        hidden = exact_quotient(closed_modes, returned.denominator)
+        open_determinant = (returned.numerator + returned.denominator) * hidden
+        lead = open_determinant.leading_coefficient() if open_determinant else fmpq(1)
+        return OpenLoop(
+            signal,
+            -returned.numerator * hidden / lead,
+            open_determinant / lead,
+            is_hurwitz(closed_modes),
+            self._opened_badly(node, open_determinant, closed_modes),
+        )
+
+    @cached_property
+    def strong_feed_through(self) -> tuple[StrongFeedThrough, ...]:
+        """The loops that any delay would destabilise."""
+        found = []
+        for component in self.network.equations.components:
+            for cycle in self._cycles(component):
+                strong = [(name, gain) for name, gain in cycle if gain is None or abs(gain) >= 1]
+                if strong:
+                    gains = [gain for _, gain in strong]
+                    largest = None if None in gains else max((g for g in gains if g is not None), key=abs)
+                    found.append(StrongFeedThrough(tuple(name for name, _ in cycle), largest))
+        return tuple(found)
+
+    def _cycles(self, component: tuple[Reference, ...]) -> list[list[tuple[str, fmpq | None]]]:
+        """Return the cycles of direct feed-through of a component: signals with their L at infinite frequency."""
+        equations = self.network.equations
+        if all(is_proper(equations, node) for node in component if isinstance(node, OutputRef)):
+            return [list(cycle.loop_gains()) for cycle in direct_cycles(equations, component)]
+        gains: list[tuple[str, fmpq | None]] = []
+        for name in signals_of(component):
+            opened = self.open_at(name)
+            excess = opened.numerator.degree() - opened.denominator.degree()
+            if opened.algebraic_loop is not None or excess > 0:
+                gains.append((name, None))
+            elif excess == 0:
+                gains.append((name, opened.numerator.leading_coefficient() / opened.denominator.leading_coefficient()))
+        return [gains] if gains else []
+
+    def _modes_around(self, node: Reference) -> fmpq_poly:
+        """Return the modes of the group of blocks that stand in a cycle with a node; 1 if it stands in none."""
+        component = next(component for component in self.network.equations.components if node in component)
+        for group in self.network.groups:
+            if any(output in component for output in group.outputs):
+                return group.modes
+        return ONE
+
+    def _opened_badly(self, node: SignalRef, opened: fmpq_poly, closed: fmpq_poly) -> AlgebraicLoop | None:
+        """Return why the loop opened at a node is not well posed, None if it is."""
+        equations = self.network.equations
+        component = next(component for component in equations.components if node in component)
+        proper = all(is_proper(equations, other) for other in component if isinstance(other, OutputRef))
+        if opened and (not proper or opened.degree() == closed.degree()):
+            return None
+        signals = tuple(name for name in signals_of(component) if name != node.name)
+        reason = (
+            f"opened at {node.name}, the loop leaves an algebraic loop behind: its other signals are not determined"
+        )
+        return AlgebraicLoop(signals, reason)
+
+
+def solve(wiring: Wiring) -> LoopSolution:
+    """Solve a wiring. Raises KeyError for a reference to nothing; an algebraic loop is part of the answer."""
+    equations = Equations(wiring)
+    network = Network(equations)
+    found = undetermined(equations)
+    if found is None:
+        # The elimination stops at a singular block: its determinant is zero.
+        determinants = (*network.eliminated.determinants, fmpz_poly())
+        for block, determinant in zip(network.blocks, determinants, strict=False):
+            found = found or differentiating_loop(equations, block, determinant)
+    return LoopSolution(wiring, found, network)
+
+
+def _carriers(network: Network, group: Group) -> tuple[str, ...]:
+    """Return the signals in the cycles of a group; if it has none, those whose sums read its blocks (nested or not)."""
+    equations = network.equations
+    cycles = [c for c in equations.components if not set(c).isdisjoint(group.outputs)]
+    inside = signals_of(node for component in cycles for node in component)
+    if inside:
+        return inside
+    carried: dict[str, None] = {}
+    waiting: list[Reference] = list(group.outputs)
+    while waiting:
+        for fed in equations.arcs[waiting.pop()]:
+            if isinstance(fed, SignalRef):
+                carried[fed.name] = None
+            else:
+                waiting.append(fed)
+    return tuple(name for name in equations.forms if name in carried)
+
+
+def _with_injection(wiring: Wiring, signal: str) -> Wiring:
+    """Return the wiring with an input of its own added to every use of a signal."""
+    if signal not in wiring.signals:
+        raise KeyError(signal)
+
+    def injected(form: LinearForm) -> LinearForm:
+        uses = [(factor, SignalRef(_INJECTED)) for factor, used in form.terms if used == SignalRef(signal)]
+        return LinearForm((*form.terms, *uses))
+
+    return Wiring(
+        (*wiring.inputs, _INJECTED),
+        tuple(
+            Instance(i.name, i.block, {name: injected(argument) for name, argument in i.arguments.items()})
+            for i in wiring.instances
+        ),
+        {name: injected(form) for name, form in wiring.signals.items()},
+    )
