@@ -55,10 +55,12 @@ class Unit:
         return self.dimension == RATE and self.angle == 1
 
     def __mul__(self, other: Unit) -> Unit:
-        return _combined(self, other, 1, f"{_factor(self.symbol)}*{_factor(other.symbol)}")
+        symbols = [_factor(unit.symbol) for unit in (self, other) if unit.symbol != "1"]
+        return _combined(self, other, 1, "*".join(symbols) or "1")
 
     def __truediv__(self, other: Unit) -> Unit:
-        return _combined(self, other, -1, f"{self.symbol}/{_divisor(other.symbol)}")
+        symbol = self.symbol if other.symbol == "1" else f"{self.symbol}/{_divisor(other.symbol)}"
+        return _combined(self, other, -1, symbol)
 
     def __pow__(self, power: int) -> Unit:
         return Unit(

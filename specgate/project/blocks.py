@@ -1,0 +1,117 @@
+"""One subsystem with values: its block, and what of it this version does not answer."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from flint import fmpq_poly
+
+from specgate.project import faults
+from specgate.project.controller import controller
+from specgate.project.faults import Fault
+from specgate.project.parameters import Values, evaluate, infer
+from specgate.project.rational_forms import Rational, factored, matrix, poles_and_zeros, polynomials
+from specgate.project.reader import ModelReader
+from specgate.project.state_space import state_space
+from specgate.project.types import (
+    FactoredModel,
+    MatrixModel,
+    PidModel,
+    PoleZeroModel,
+    Polynomial,
+    PolynomialModel,
+    Project,
+    SampledModel,
+    StateSpaceModel,
+    Subsystem,
+)
+from specgate.systems.blocks import Block
+from specgate.systems.transfer import TransferFunction
+from specgate.terms.dimensions import TIME
+from specgate.terms.expressions import as_dimension
+
+_FORMS: Mapping[type, Callable[[ModelReader, Any], Rational]] = {
+    PolynomialModel: polynomials,
+    MatrixModel: matrix,
+    FactoredModel: factored,
+    PoleZeroModel: poles_and_zeros,
+    StateSpaceModel: state_space,
+    PidModel: controller,
+}
+
+
+@dataclass(frozen=True)
+class BuiltBlock:
+    """A block in coherent SI.
+
+    block: None for a model in z. unsupported: why what passes through it is not answered. rounded: it rests on the
+    decimal for pi. by_fit: plain numbers carry a unit that was not written.
+    """
+
+    block: Block | None
+    unsupported: str | None
+    rounded: bool
+    by_fit: bool
+
+
+def build(subsystem: Subsystem, values: Values) -> BuiltBlock:
+    """Return the block of a subsystem. Its dead time is never approximated but reported. Raises Fault."""
+    if isinstance(subsystem.model, SampledModel):
+        reason = f"`{subsystem.name}` is a sampled model, which this version does not answer"
+        return BuiltBlock(None, reason, rounded=False, by_fit=False)
+    reader = ModelReader(subsystem, values)
+    rational = _FORMS[type(subsystem.model)](reader, subsystem.model)
+    block = Block(
+        subsystem.name,
+        tuple(subsystem.inputs),
+        tuple(subsystem.outputs),
+        rational.numerators,
+        rational.denominator,
+    )
+    return BuiltBlock(block, _dead_time(subsystem, values), reader.rounded, reader.by_fit)
+
+
+def transfer(project: Project, subsystem: str, values: Values) -> Mapping[tuple[str, str], TransferFunction]:
+    """Return the transfer function of each (output, input) of a subsystem, its dead time left out.
+
+    Empty for a sampled model. Raises Fault.
+    """
+    block = build(project.subsystems[subsystem], values).block
+    if block is None:
+        return {}
+    zero = fmpq_poly()
+    return {
+        (output, source): TransferFunction(block.numerators.get((output, source), zero), block.denominator)
+        for output in block.outputs
+        for source in block.inputs
+    }
+
+
+def memoryless(block: Block | None) -> bool:
+    """Whether a block is a plain gain, so that two of it hold no more than one."""
+    return (
+        block is not None
+        and block.denominator.degree() == 0
+        and all(numerator.degree() <= 0 for numerator in block.numerators.values())
+    )
+
+
+def _dead_time(subsystem: Subsystem, values: Values) -> str | None:
+    value = subsystem.dead_time
+    if value is None:
+        return None
+    inferred = infer(value, values, subsystem.name)
+    if as_dimension(inferred) != TIME:
+        message = f"`{value.as_written}`: a dead time is in s, this is {inferred}"
+        raise Fault(faults.DIMENSION, message, value.place)
+    delay = evaluate(value, values, subsystem.name)
+    if delay < 0:
+        raise Fault(faults.VALUE, f"`{value.as_written}`: a dead time is not negative", value.place)
+    if delay == 0:
+        return None
+    return f"`{subsystem.name}` has a dead time of {value.as_written}, which this version does not answer"
+
+
+__all__ = ["BuiltBlock", "Polynomial", "build", "memoryless", "transfer"]
