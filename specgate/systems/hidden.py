@@ -9,7 +9,8 @@ from flint import fmpq_poly
 from specgate.systems.blocks import SignalRef
 from specgate.systems.minimal import shown_modes
 from specgate.systems.network import Group, Network
-from specgate.systems.polynomials import exact_quotient, monic, product
+from specgate.systems.polynomials import ONE, exact_quotient, least_common_multiple, monic, product
+from specgate.systems.transfer import TransferFunction
 
 
 def hidden_modes(network: Network) -> tuple[fmpq_poly, ...]:
@@ -21,7 +22,7 @@ def hidden_modes(network: Network) -> tuple[fmpq_poly, ...]:
     left = _concealed(network, groups, network.equations.inputs, [SignalRef(name) for name in network.equations.forms])
     if left.degree() == 0:
         return (left,) * len(groups)
-    found = [fmpq_poly([1])] * len(groups)
+    found = [ONE] * len(groups)
     for index, group in enumerate(groups):
         share = left.gcd(group.modes)
         if share.degree() > 0:
@@ -49,5 +50,12 @@ def _concealed(
     network: Network, groups: Sequence[Group], sources: Sequence[SignalRef], targets: Sequence[SignalRef]
 ) -> fmpq_poly:
     modes = product(group.modes for group in groups)
-    shown = shown_modes([[network.fraction(target, source) for source in sources] for target in targets])
-    return exact_quotient(modes, shown)
+    matrix: list[list[TransferFunction]] = []
+    common = ONE
+    for target in reversed(targets):
+        matrix.append([network.fraction(target, source) for source in sources])
+        common = least_common_multiple([common, *(entry.denominator for entry in matrix[-1])])
+        # Signals far downstream usually show everything at once.
+        if common.degree() == modes.degree():
+            return ONE
+    return exact_quotient(modes, shown_modes(matrix))

@@ -6,10 +6,10 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
-from flint import fmpq_poly
+from flint import fmpq_poly, fmpz_poly
 
 from specgate.systems.blocks import OutputRef, SignalRef
-from specgate.systems.elimination import Eliminated, eliminate
+from specgate.systems.elimination import Triangle, triangulate
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.graph import reached, reversed_arcs
 from specgate.systems.modes import block_modes
@@ -43,29 +43,30 @@ class Network:
         return tuple(block for block in found if block)
 
     @cached_property
-    def eliminated(self) -> Eliminated:
-        """The equations solved for the outputs."""
-        return eliminate(self.equations.rows, self.blocks)
+    def triangle(self) -> Triangle:
+        """The equations, triangular."""
+        return triangulate(self.equations.rows, self.blocks)
 
     def fraction(self, node: Reference, source: SignalRef) -> TransferFunction:
         """Return the transfer function from a loop input to a node, reduced."""
-        column = self.equations.variables[source]
-        total = TransferFunction(fmpq_poly(), fmpq_poly([1]))
+        numerators, denominator = self._numerators[source], fmpq_poly(self.triangle.determinant)
+        total = fmpq_poly()
         for known, factor in self.equations.static[node].items():
-            if isinstance(known, OutputRef):
-                number = self.equations.variables[known]
-                entry = self.eliminated.rows[number].get(column) if number in self.eliminated.rows else None
-                if entry:
-                    share = TransferFunction(-fmpq_poly(entry) * factor, fmpq_poly(self.eliminated.scales[number]))
-                    total = _sum(total, share)
-            elif known == source:
-                total = _sum(total, TransferFunction(fmpq_poly([factor]), fmpq_poly([1])))
-        return total.reduced()
+            if known == source:
+                total += denominator * factor
+            elif self.equations.variables[known] in numerators:
+                total += fmpq_poly(numerators[self.equations.variables[known]]) * factor
+        return TransferFunction(total, denominator).reduced()
+
+    @cached_property
+    def _numerators(self) -> Mapping[SignalRef, Mapping[int, fmpz_poly]]:
+        """The outputs per unit of each input, over the determinant of all equations."""
+        return {source: self.triangle.numerators(self.equations.variables[source]) for source in self.equations.inputs}
 
     @cached_property
     def groups(self) -> tuple[Group, ...]:
         """The components with blocks, those upstream first; all must have been solved."""
-        determinants = [fmpq_poly(determinant) for determinant in self.eliminated.determinants]
+        determinants = [fmpq_poly(determinant) for determinant in self.triangle.determinants]
         merged = _merged(self.blocks, [output.instance for output in self.equations.outputs])
         return tuple(self._group(members, determinants) for members in merged)
 
@@ -89,12 +90,6 @@ class Network:
     @cached_property
     def _reversed(self) -> Mapping[Reference, Sequence[Reference]]:
         return reversed_arcs(self.equations.arcs)
-
-
-def _sum(a: TransferFunction, b: TransferFunction) -> TransferFunction:
-    if a.denominator == b.denominator:
-        return TransferFunction(a.numerator + b.numerator, a.denominator)
-    return TransferFunction(a.numerator * b.denominator + b.numerator * a.denominator, a.denominator * b.denominator)
 
 
 def _merged(blocks: Sequence[Sequence[int]], owner: Sequence[str]) -> list[list[int]]:

@@ -117,11 +117,21 @@ _INJECTED = "(injected)"
 
 @dataclass(frozen=True)
 class LoopSolution:
-    """A wiring and what follows from it. Only `wiring` and `algebraic_loop` may be read where the latter is set."""
+    """A wiring and what follows from it.
+
+    algebraic_loop: signals that are not determined; where it is set, everything else raises ValueError.
+    """
 
     wiring: Wiring
     algebraic_loop: AlgebraicLoop | None
-    network: Network
+    _network: Network
+
+    @property
+    def network(self) -> Network:
+        """The solved equations."""
+        if self.algebraic_loop is not None:
+            raise ValueError(self.algebraic_loop.reason)
+        return self._network
 
     @cached_property
     def determinant(self) -> fmpq_poly:
@@ -244,7 +254,7 @@ def solve(wiring: Wiring) -> LoopSolution:
     found = undetermined(equations)
     if found is None:
         # The elimination stops at a singular block: its determinant is zero.
-        determinants = (*network.eliminated.determinants, fmpz_poly())
+        determinants = (*network.triangle.determinants, fmpz_poly())
         for block, determinant in zip(network.blocks, determinants, strict=False):
             found = found or differentiating_loop(equations, block, determinant)
     return LoopSolution(wiring, found, network)
