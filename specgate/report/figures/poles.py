@@ -1,0 +1,140 @@
+"""Poles and zeros in the s plane: the right half, where nothing may lie, is hatched; rays of equal damping behind."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Literal
+
+from specgate.report.digits import number
+from specgate.report.figures import svg
+from specgate.report.figures.scales import Scale
+
+WIDTH, HEIGHT = 310.0, 236.0
+LEFT, RIGHT, TOP, BOTTOM = 40.0, 12.0, 16.0, 34.0
+CROWD = 12.0
+"""Points more than this many times farther out than the middle one are named at the edge instead of drawn."""
+DAMPINGS = (0.2, 0.4, 0.6, 0.8)
+
+
+@dataclass(frozen=True)
+class Point:
+    """A pole, a hidden pole or a zero, 1/s."""
+
+    kind: Literal["pole", "hidden", "zero"]
+    real: float
+    imaginary: float
+    multiplicity: int = 1
+
+
+@dataclass(frozen=True)
+class PoleFigure:
+    """What is drawn in the s plane."""
+
+    name: str
+    title: str
+    points: tuple[Point, ...]
+
+
+def _near(points: tuple[Point, ...]) -> tuple[tuple[Point, ...], tuple[Point, ...]]:
+    sizes = sorted(abs(complex(p.real, p.imaginary)) for p in points)
+    within = CROWD * max(sizes[len(sizes) // 2], 1e-9)
+    near = tuple(p for p in points if abs(complex(p.real, p.imaginary)) <= within)
+    return near, tuple(p for p in points if p not in near)
+
+
+def draw(figure: PoleFigure) -> str:
+    """Return the figure as SVG; both axes have one scale where that leaves both legible."""
+    near, far = _near(figure.points)
+    wide = max(max((abs(p.real) for p in near), default=0.0), 1e-9)
+    tall = max(max((abs(p.imaginary) for p in near), default=0.0), 0.35 * wide)
+    wide = max(wide, 0.35 * tall)
+    right = max(0.22 * wide, 1.25 * max(p.real for p in near))
+    x = Scale(-1.15 * wide, right, LEFT, WIDTH - RIGHT)
+    y = Scale(-1.25 * tall, 1.25 * tall, HEIGHT - BOTTOM, TOP)
+    hatch = f"hatch-{figure.name}"
+    return svg.figure(
+        WIDTH,
+        HEIGHT,
+        figure.title,
+        svg.hatching(hatch),
+        svg.rectangle(x(0), TOP, WIDTH - RIGHT - x(0), HEIGHT - BOTTOM - TOP, f"url(#{hatch})", fill_opacity=0.45),
+        *_rays(x, y),
+        *_frame(x, y),
+        *(_mark(point, x, y) for point in near),
+        *_outside(far),
+        class_="plot",
+    )
+
+
+def _frame(x: Scale, y: Scale) -> list[str]:
+    bottom, parts = HEIGHT - BOTTOM, []
+    for value, label in x.ticks(5):
+        parts += [
+            svg.line(x(value), bottom, x(value), bottom + 4, width=0.7),
+            svg.text(x(value), bottom + 13, label, 8, "middle"),
+        ]
+    for value, label in y.ticks(5):
+        parts += [
+            svg.line(LEFT - 4, y(value), LEFT, y(value), width=0.7),
+            svg.text(LEFT - 6, y(value) + 3, label, 8, "end"),
+        ]
+    parts += [svg.line(LEFT, bottom, WIDTH - RIGHT, bottom, width=0.8), svg.line(LEFT, TOP, LEFT, bottom, width=0.8)]
+    parts += [svg.line(LEFT, y(0), WIDTH - RIGHT, y(0), svg.QUIET, 0.6), svg.line(x(0), TOP, x(0), bottom, width=1.0)]
+    parts.append(svg.text((LEFT + WIDTH - RIGHT) / 2, HEIGHT - 6, "real part, 1/s", 8, "middle", svg.QUIET))
+    parts.append(svg.text(2, 9, "imaginary part, 1/s", 8, fill=svg.QUIET))
+    return parts
+
+
+def _rays(x: Scale, y: Scale) -> list[str]:
+    """Draw a ray for each damping, with its figure where the upper one leaves the frame."""
+    parts = []
+    for damping in DAMPINGS:
+        slope = math.sqrt(1 - damping**2) / damping
+        real = min(-x.low, y.high / slope)
+        for side in (1, -1):
+            parts.append(svg.line(x(0), y(0), x(-real), y(side * real * slope), svg.HAIR, 0.6))
+        edge = (x(-real) + 3, y(real * slope) + 9)
+        parts.append(svg.text(*edge, f"{damping}", 7, fill=svg.QUIET))
+    return parts
+
+
+def _mark(point: Point, x: Scale, y: Scale) -> str:
+    at, level, r = x(point.real), y(point.imaginary), 4.0
+    if point.kind == "zero":
+        mark = svg.tag(
+            "circle", cx=at, cy=level, r=r, fill="none", stroke=svg.CURVE, stroke_width=1.4, class_="s-curve"
+        )
+    else:
+        colour = svg.FORBIDDEN if point.real >= 0 else svg.INK
+        mark = svg.line(at - r, level - r, at + r, level + r, colour, 1.6) + svg.line(
+            at - r, level + r, at + r, level - r, colour, 1.6
+        )
+    if point.kind == "hidden":
+        mark += svg.tag(
+            "rect",
+            x=at - 6.5,
+            y=level - 6.5,
+            width=13,
+            height=13,
+            fill="none",
+            stroke=svg.CLAIM,
+            stroke_width=1.2,
+            class_="s-claim",
+        )
+    if point.multiplicity > 1:
+        mark += svg.text(at + 6, level - 5, f"×{point.multiplicity}", 8)
+    return mark
+
+
+def _outside(points: tuple[Point, ...]) -> list[str]:
+    """Name the points that lie too far out to be drawn, at the left edge."""
+    shown = [p for p in points if p.imaginary >= 0]
+    words = [
+        ("○ " if p.kind == "zero" else "✕ ")
+        + number(p.real, 3)
+        + (f" ± {number(p.imaginary, 3)}j" if p.imaginary else "")
+        for p in shown[:3]
+    ]
+    rest = f", {len(shown) - 3} more" if len(shown) > 3 else ""
+    return [svg.text(LEFT + 4, HEIGHT - BOTTOM - 5, "◁ " + ",  ".join(words) + rest, 8)] if words else []

@@ -1,0 +1,57 @@
+"""Axes: from values to pixels, with few and round ticks."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from specgate.report.digits import MINUS
+
+
+@dataclass(frozen=True)
+class Scale:
+    """A linear scale that takes [low, high] to [start, end] in pixels."""
+
+    low: float
+    high: float
+    start: float
+    end: float
+
+    def __call__(self, value: float) -> float:
+        """Return the pixel of `value`."""
+        return self.start + (value - self.low) / (self.high - self.low) * (self.end - self.start)
+
+    def holds(self, value: float) -> bool:
+        """Tell whether a value lies on the scale."""
+        return self.low <= value <= self.high
+
+    def ticks(self, about: int) -> Iterator[tuple[float, str]]:
+        """Yield round values (1, 2 or 5 times a power of ten apart) with their texts."""
+        step = round_step((self.high - self.low) / about)
+        first = math.ceil(self.low / step - 1e-9)
+        last = math.floor(self.high / step + 1e-9)
+        decimals = max(0, -math.floor(math.log10(step) + 1e-9))
+        for k in range(first, last + 1):
+            yield k * step, tick_text(k * step, decimals)
+
+
+def round_step(at_least: float) -> float:
+    """Return the smallest of 1, 2, 5 times a power of ten that is not below `at_least`."""
+    power = 10.0 ** math.floor(math.log10(at_least))
+    return next((m * power for m in (1, 2, 5) if m * power >= at_least * (1 - 1e-9)), 10 * power)
+
+
+def tick_text(value: float, decimals: int) -> str:
+    """Return a tick's label; long ones with a power of ten."""
+    if value and not 1e-4 <= abs(value) < 1e6:
+        return f"{value:.3g}".replace("e-0", "e-").replace("e+0", "e").replace("e+", "e").replace("-", MINUS)
+    return f"{value:.{decimals}f}".replace("-", MINUS) if round(value, decimals) else "0"
+
+
+def widened(low: float, high: float, by: float) -> tuple[float, float]:
+    """Return a range with a share `by` of its length added on both sides; never empty."""
+    if high <= low:
+        half = abs(low) * 0.1 or 1.0
+        return low - half, high + half
+    return low - by * (high - low), high + by * (high - low)

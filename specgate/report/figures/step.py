@@ -1,0 +1,198 @@
+"""A response over time: limits hatched on their forbidden side, proved values as crosses, claims as open rings."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+from specgate.report.figures import svg
+from specgate.report.figures.scales import Scale, widened
+
+WIDTH, HEIGHT = 640.0, 236.0
+LEFT, RIGHT, TOP, BOTTOM = 58.0, 14.0, 24.0, 38.0
+STRIP = 9.0
+"""Breadth of the hatching along a limit, pixels."""
+
+
+@dataclass(frozen=True)
+class Edge:
+    """A limit: a line at `at` on an axis, with the side on which nothing may lie.
+
+    `outside` (a low and a high value) turns the limit on a time into the ground that the response may not enter.
+    """
+
+    axis: Literal["time", "value"]
+    at: float
+    forbidden: Literal["below", "above"]
+    label: str
+    outside: tuple[float, float] | None = None
+    at_the_end: bool = False
+
+
+@dataclass(frozen=True)
+class Cross:
+    """A proved value, with the interval that is proved to hold it along one axis."""
+
+    time: float
+    value: float
+    axis: Literal["time", "value"]
+    low: float
+    high: float
+
+
+@dataclass(frozen=True)
+class Ring:
+    """A claimed value."""
+
+    time: float
+    value: float
+
+
+@dataclass(frozen=True)
+class StepFigure:
+    """What is drawn of a response. `time` in seconds against `value` in `unit`, as deviations from rest."""
+
+    name: str
+    title: str
+    signal: str
+    unit: str
+    time: tuple[float, ...]
+    value: tuple[float, ...]
+    final: float | None = None
+    edges: tuple[Edge, ...] = ()
+    crosses: tuple[Cross, ...] = ()
+    rings: tuple[Ring, ...] = ()
+
+
+def axes(figure: StepFigure) -> tuple[Scale, Scale]:
+    """Return the scales of time and value: the curve and whatever lies within reach of it."""
+    end = figure.time[-1] or 1.0
+    times = [c.time for c in figure.crosses] + [r.time for r in figure.rings]
+    times += [e.at for e in figure.edges if e.axis == "time"]
+    last = max([end, *(t * 1.06 for t in times if end < t <= 2.5 * end)])
+    low, high = min(0.0, *figure.value), max(0.0, *figure.value)
+    reach = high - low or 1.0
+    levels = [c.value for c in figure.crosses] + [r.value for r in figure.rings]
+    levels += [e.at for e in figure.edges if e.axis == "value"]
+    levels += [v for e in figure.edges if e.outside for v in e.outside]
+    near = [v for v in levels if low - reach <= v <= high + reach]
+    low, high = widened(min([low, *near]), max([high, *near]), 0.07)
+    return Scale(0.0, last, LEFT, WIDTH - RIGHT), Scale(low, high, HEIGHT - BOTTOM, TOP)
+
+
+def draw(figure: StepFigure) -> str:
+    """Return the figure as SVG."""
+    x, y = axes(figure)
+    hatch = f"hatch-{figure.name}"
+    points = zip(figure.time, figure.value, strict=True)
+    curve = svg.path(((x(t), y(v)) for t, v in points), svg.CURVE, 1.6)
+    shown = [edge for edge in figure.edges if (x if edge.axis == "time" else y).holds(edge.at)]
+    return svg.figure(
+        WIDTH,
+        HEIGHT,
+        figure.title,
+        svg.hatching(hatch),
+        *_frame(figure, x, y),
+        *(_forbidden(edge, x, y, hatch) for edge in shown),
+        *_limit_lines(shown, x, y),
+        curve,
+        *(_ring(ring, x, y) for ring in figure.rings if x.holds(ring.time) and y.holds(ring.value)),
+        *(_cross(cross, x, y) for cross in figure.crosses if x.holds(cross.time) and y.holds(cross.value)),
+        class_="plot",
+    )
+
+
+def _frame(figure: StepFigure, x: Scale, y: Scale) -> list[str]:
+    bottom = HEIGHT - BOTTOM
+    parts = []
+    for value, label in x.ticks(8):
+        parts += [svg.line(x(value), bottom, x(value), bottom + 4, width=0.7)]
+        parts += [svg.text(x(value), bottom + 14, label, anchor="middle")]
+    for value, label in y.ticks(5):
+        parts += [svg.line(LEFT, y(value), WIDTH - RIGHT, y(value), svg.HAIR, 0.5)]
+        parts += [svg.text(LEFT - 5, y(value) + 3, label, anchor="end")]
+    if figure.final is not None and y.holds(figure.final):
+        level = y(figure.final)
+        parts.append(svg.line(LEFT, level, WIDTH - RIGHT, level, svg.QUIET, 0.7, stroke_dasharray="5 3"))
+    parts.append(svg.line(LEFT, bottom, WIDTH - RIGHT, bottom, width=0.8))
+    parts.append(svg.line(LEFT, TOP, LEFT, bottom, width=0.8))
+    parts.append(svg.text((LEFT + WIDTH - RIGHT) / 2, HEIGHT - 6, "time, s", anchor="middle", fill=svg.QUIET))
+    unit = f", {figure.unit}" if figure.unit not in ("", "1") else ""
+    name = figure.signal if len(figure.signal) <= 40 else figure.signal[:39] + "…"
+    parts.append(svg.text(4, 12, f"{name}{unit}", fill=svg.QUIET))
+    return parts
+
+
+def _forbidden(edge: Edge, x: Scale, y: Scale, hatch: str) -> str:
+    fill = f"url(#{hatch})"
+    above = edge.forbidden == "above"
+    if edge.axis == "value":
+        level = y(edge.at)
+        left = LEFT + 0.72 * (WIDTH - RIGHT - LEFT) if edge.at_the_end else LEFT
+        top, bottom = (max(TOP, level - STRIP), level) if above else (level, min(HEIGHT - BOTTOM, level + STRIP))
+        return svg.rectangle(left, top, WIDTH - RIGHT - left, bottom - top, fill)
+    start, end = (x(edge.at), WIDTH - RIGHT) if above else (LEFT, x(edge.at))
+    if edge.outside is None:
+        start, end = (start, min(end, start + STRIP)) if above else (max(start, end - STRIP), end)
+        return svg.rectangle(start, TOP, end - start, HEIGHT - BOTTOM - TOP, fill)
+    high, low = (min(max(y(v), TOP), HEIGHT - BOTTOM) for v in (max(edge.outside), min(edge.outside)))
+    return svg.rectangle(start, TOP, end - start, high - TOP, fill) + svg.rectangle(
+        start, low, end - start, HEIGHT - BOTTOM - low, fill
+    )
+
+
+def _limit_lines(edges: list[Edge], x: Scale, y: Scale) -> list[str]:
+    parts = []
+    taken: list[float] = []
+    for edge in sorted(edges, key=lambda e: (e.axis, e.at)):
+        if edge.axis == "time":
+            at = x(edge.at)
+            parts.append(svg.line(at, TOP - 3, at, HEIGHT - BOTTOM, svg.FORBIDDEN, 1.1))
+            for level in (edge.outside or ())[:2]:
+                parts.append(svg.line(at, y(level), WIDTH - RIGHT, y(level), svg.FORBIDDEN, 0.8))
+            parts.append(_label(edge.label, at, TOP - 6, taken))
+        else:
+            level = y(edge.at)
+            left = LEFT + 0.72 * (WIDTH - RIGHT - LEFT) if edge.at_the_end else LEFT
+            parts.append(svg.line(left, level, WIDTH - RIGHT, level, svg.FORBIDDEN, 1.1))
+            below = edge.forbidden == "above"
+            parts.append(
+                svg.text(WIDTH - RIGHT - 4, level + (10 if below else -4), edge.label, 8, "end", svg.FORBIDDEN)
+            )
+    return parts
+
+
+def _label(content: str, at: float, baseline: float, taken: list[float]) -> str:
+    """Return a label over the frame, to the side where there is room, left out where another one stands already."""
+    if any(abs(at - other) < 70 for other in taken):
+        return ""
+    taken.append(at)
+    anchor = "end" if at > WIDTH * 0.8 else "start" if at < WIDTH * 0.2 else "middle"
+    return svg.text(at, baseline, content, 8, anchor, svg.FORBIDDEN)
+
+
+def _cross(cross: Cross, x: Scale, y: Scale) -> str:
+    at, level, half = x(cross.time), y(cross.value), 5.0
+    parts = [
+        svg.line(at - half, level, at + half, level, width=1.3),
+        svg.line(at, level - half, at, level + half, width=1.3),
+    ]
+    scale = x if cross.axis == "time" else y
+    low, high = (scale(min(max(v, scale.low), scale.high)) for v in (cross.low, cross.high))
+    if abs(high - low) > 2 * half:
+        ends = ((low, level, high, level), (at, low, at, high))[cross.axis == "value"]
+        parts.append(svg.line(*ends, width=2.0))
+    return "".join(parts)
+
+
+def _ring(ring: Ring, x: Scale, y: Scale) -> str:
+    return svg.tag(
+        "circle",
+        cx=x(ring.time),
+        cy=y(ring.value),
+        r=4.5,
+        fill="none",
+        stroke=svg.CLAIM,
+        stroke_width=1.6,
+        class_=svg.colour_class(svg.CLAIM),
+    )

@@ -1,0 +1,165 @@
+"""From a view to one HTML document, by the templates; the same for the screen and for paper."""
+
+from __future__ import annotations
+
+import base64
+import hashlib
+import json
+from functools import cache
+from importlib.resources import files
+from typing import Any
+
+from jinja2 import Environment, FunctionLoader, StrictUndefined
+from markupsafe import Markup
+
+from specgate.report.figures import poles, reserve, step
+from specgate.report.parts import matrix
+from specgate.report.view import View
+
+SECTIONS = (
+    ("front", "May we sign?"),
+    ("matrix", "Compliance matrix"),
+    ("audits", "Where the claims stand"),
+    ("loops", "Loop sheets"),
+    ("trace", "Trace"),
+    ("open", "Waivers, deviations, open points"),
+    ("findings", "Findings"),
+    ("trust", "How to trust this report"),
+    ("cautions", "Cautions"),
+)
+FACES = (
+    ("DejaVu Sans", "normal", "DejaVuSans"),
+    ("DejaVu Sans", "bold", "DejaVuSans-Bold"),
+    ("DejaVu Sans Mono", "normal", "DejaVuSansMono"),
+)
+LINES_AT_MOST = 500
+"""Lines that a printed list of findings or derivations holds."""
+
+
+def resource(name: str) -> bytes:
+    """Return a file that ships with the reports."""
+    return files("specgate.templates").joinpath(*name.split("/")).read_bytes()
+
+
+def _text(name: str) -> str:
+    return resource(name).decode()
+
+
+def draw(figure: step.StepFigure | poles.PoleFigure) -> Markup:
+    """Return a figure as SVG; its texts are escaped where they are written."""
+    return Markup(step.draw(figure) if isinstance(figure, step.StepFigure) else poles.draw(figure))
+
+
+def draw_bar(bar: reserve.ReserveBar) -> Markup:
+    """Return a reserve bar as SVG."""
+    return Markup(reserve.draw(bar))
+
+
+def readings(figure: step.StepFigure) -> str:
+    """Return what a plot answers to the pointer with, as JSON."""
+    x, y = step.axes(figure)
+    return json.dumps(
+        {
+            "signal": figure.signal,
+            "unit": "" if figure.unit == "1" else figure.unit,
+            "time": figure.time,
+            "value": figure.value,
+            "low": [x.low, y.low],
+            "high": [x.high, y.high],
+            "left": x.start,
+            "right": x.end,
+            "top": y.end,
+            "bottom": y.start,
+        },
+        separators=(",", ":"),
+    )
+
+
+def short(text: str, length: int) -> str:
+    """Return text cut at `length` characters, at a word where there is one."""
+    if len(text) <= length:
+        return text
+    cut = text[: length - 1]
+    return (cut.rsplit(" ", 1)[0] if " " in cut[length // 2 :] else cut) + "…"
+
+
+@cache
+def environment() -> Environment:
+    """Return the template environment: everything is escaped, nothing may be undefined."""
+    env = Environment(
+        loader=FunctionLoader(_text), autoescape=True, undefined=StrictUndefined, trim_blocks=True, lstrip_blocks=True
+    )
+    env.filters["short"] = short
+    env.globals.update(draw=draw, draw_bar=draw_bar, readings=readings)
+    return env
+
+
+def _fonts() -> str:
+    faces = []
+    for family, weight, name in FACES:
+        data = base64.b64encode(resource(f"fonts/{name}.woff2")).decode()
+        source = f'url(data:font/woff2;base64,{data}) format("woff2")'
+        faces.append(f'@font-face{{font-family:"{family}";font-weight:{weight};src:{source}}}')
+    return "\n".join(faces)
+
+
+def _hash(text: str) -> str:
+    return f"'sha256-{base64.b64encode(hashlib.sha256(text.encode()).digest()).decode()}'"
+
+
+def on_screen(view: View) -> str:
+    """Return the HTML report: one file that loads nothing and runs one script, which its security policy names."""
+    script = _text("report/report.js")
+    styles = [
+        ("", _fonts()),
+        ("", _text("report/base.css")),
+        ("screen", _text("report/screen.css")),
+        ("print", _text("report/print.css")),
+    ]
+    policy = (
+        f"default-src 'none'; style-src {' '.join(_hash(style) for _, style in styles)}; script-src {_hash(script)}; "
+        "font-src data:; img-src data:; base-uri 'none'; form-action 'none'"
+    )
+    return _render(
+        view, True, styles, view.groups, 0, len(view.findings), len(view.trace), script=script, policy=policy
+    )
+
+
+def on_paper(view: View, paper: str) -> str:
+    """Return the document that is laid out as PDF; `paper` is A4 or Letter. Long tables are cut, and say so."""
+    styles = [("", _text("report/base.css")), ("", _text("report/print.css").replace("size: A4", f"size: {paper}"))]
+    groups, left_out = matrix.printed(view.groups)
+    return _render(view, False, styles, groups, left_out, LINES_AT_MOST, LINES_AT_MOST)
+
+
+def _render(
+    view: View,
+    screen: bool,
+    styles: list[tuple[str, str]],
+    groups: tuple[matrix.Group, ...],
+    left_out: int,
+    findings: int,
+    lines: int,
+    **more: Any,
+) -> str:
+    owners = sorted({row.owner for group in view.groups for row in group.rows if row.owner})
+    marked = {key: Markup(value) for key, value in more.items() if key == "script"}
+    return (
+        environment()
+        .get_template("report/report.html.j2")
+        .render(
+            view=view,
+            screen=screen,
+            sections=SECTIONS,
+            styles=[(medium, Markup(style)) for medium, style in styles],
+            created=None if view.front.title.date == "undated" else view.front.title.date,
+            owners=owners,
+            groups=groups,
+            left_out=left_out,
+            findings=view.findings[:findings],
+            findings_left_out=max(0, len(view.findings) - findings),
+            trace_lines=view.trace[:lines],
+            trace_left_out=max(0, len(view.trace) - lines),
+            **(more | marked),
+        )
+    )

@@ -1,0 +1,280 @@
+"""A sheet for each loop: wiring, poles, responses with their limits drawn in, all measures."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass
+
+from specgate.report import anchors, digits
+from specgate.report.figures.poles import Point, PoleFigure
+from specgate.report.figures.step import StepFigure
+from specgate.report.parts import plots, shown
+from specgate.report.words import VERDICTS, Status, arguments, counted, limit, titled
+from specgate.review.types import (
+    BreakReview,
+    CriterionReview,
+    DefinitionReview,
+    HiddenMode,
+    LoopReview,
+    MeasureResult,
+    Pole,
+    ResponseReview,
+    Review,
+)
+
+Criteria = list[tuple[str, CriterionReview]]
+
+
+@dataclass(frozen=True)
+class Signal:
+    """A signal and how it is made."""
+
+    name: str
+    made_of: str
+    unit: str
+    rest: str
+
+
+@dataclass(frozen=True)
+class PoleRow:
+    """A pole, or a pair of them, in numbers; `time_constant` is that of its decay."""
+
+    value: str
+    multiplicity: int
+    frequency: str
+    damping: str
+    time_constant: str
+    bound: str
+    unstable: bool
+
+
+@dataclass(frozen=True)
+class MeasureRow:
+    """A measure as found."""
+
+    name: str
+    asked: str
+    result: shown.Shown
+    value: str
+
+
+@dataclass(frozen=True)
+class CriterionRow:
+    """A limit drawn in a figure."""
+
+    requirement: str
+    anchor: str
+    measure: str
+    limit: str
+    proved: str
+    claimed: str
+    verdict: Status
+
+
+@dataclass(frozen=True)
+class ResponseSheet:
+    """A response."""
+
+    name: str
+    anchor: str
+    source: str
+    target: str
+    drive: str
+    unit: str
+    numerator: str
+    denominator: str
+    zeros: str
+    reason: str
+    figure: StepFigure | None
+    said: str
+    criteria: tuple[CriterionRow, ...]
+    measures: tuple[MeasureRow, ...]
+
+
+@dataclass(frozen=True)
+class BreakSheet:
+    """A loop opened at a break."""
+
+    name: str
+    at: str
+    numerator: str
+    denominator: str
+    reason: str
+    measures: tuple[MeasureRow, ...]
+
+
+@dataclass(frozen=True)
+class Hidden:
+    """A hidden mode in a sentence."""
+
+    response: str
+    polynomial: str
+    poles: str
+    stable: bool
+
+
+@dataclass(frozen=True)
+class LoopSheet:
+    """A loop."""
+
+    name: str
+    anchor: str
+    title: str
+    reason: str
+    stable: Status | None
+    inputs: tuple[tuple[str, str], ...]
+    signals: tuple[Signal, ...]
+    wiring: Mapping[str, str]
+    characteristic: str
+    order: str
+    poles: tuple[PoleRow, ...]
+    hidden: tuple[Hidden, ...]
+    map: PoleFigure | None
+    measures: tuple[MeasureRow, ...]
+    responses: tuple[ResponseSheet, ...]
+    breaks: tuple[BreakSheet, ...]
+
+
+STABLE = Status("compliant", "stable", "●", 1)
+UNSTABLE = Status("non_compliant", "not stable", "◆", 0)
+
+
+def sheets(review: Review) -> tuple[LoopSheet, ...]:
+    """Return the sheets of all loops, as written."""
+    subjects: dict[str, Criteria] = {}
+    for name, requirement in review.requirements.items():
+        for criterion in requirement.criteria:
+            subjects.setdefault(criterion.on, []).append((name, criterion))
+    return tuple(_sheet(name, loop, review, subjects) for name, loop in review.loops.items())
+
+
+def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, Criteria]) -> LoopSheet:
+    known = plots.measures_of(loop.measures)
+    stable = known["stable"].value if "stable" in known else None
+    return LoopSheet(
+        name=name,
+        anchor=anchors.sheet(name),
+        title=loop.title or name,
+        reason=loop.reason or "",
+        stable=None if stable is None else STABLE if stable else UNSTABLE,
+        inputs=tuple(loop.inputs.items()),
+        signals=tuple(
+            Signal(signal, made_of, loop.signal_units.get(signal, ""), loop.rest.get(signal, ""))
+            for signal, made_of in loop.wiring.items()
+        ),
+        wiring=loop.wiring,
+        characteristic=shown.polynomial(loop.characteristic_polynomial) if loop.characteristic_polynomial else "",
+        order=counted(max(0, len(loop.characteristic_polynomial) - 1), "mode"),
+        poles=pole_rows(loop.poles),
+        hidden=tuple(_hidden(mode) for mode in loop.hidden_modes),
+        map=_map(name, loop),
+        measures=measure_rows(loop.measures, review.definitions),
+        responses=tuple(
+            _response(name, key, response, review.definitions, subjects.get(f"{name}.{key}", []))
+            for key, response in loop.responses.items()
+        ),
+        breaks=tuple(_break(key, opened, review.definitions) for key, opened in loop.breaks.items()),
+    )
+
+
+def _response(
+    loop: str, name: str, response: ResponseReview, definitions: Mapping[str, DefinitionReview], criteria: Criteria
+) -> ResponseSheet:
+    return ResponseSheet(
+        name=name,
+        anchor=anchors.plot(loop, name),
+        source=response.from_,
+        target=response.to,
+        drive=" ".join(str(v) for k, v in sorted(response.input.items(), key=lambda item: item[0] != "kind")),
+        unit=response.unit,
+        numerator=shown.polynomial(response.numerator),
+        denominator=shown.polynomial(response.denominator),
+        zeros=_listed(response.zeros),
+        reason=response.reason or "",
+        figure=plots.response_figure(loop, name, response, criteria),
+        said=plots.caption(response, criteria),
+        criteria=tuple(_criterion(requirement, c, definitions) for requirement, c in criteria),
+        measures=measure_rows(response.measures, definitions),
+    )
+
+
+def _criterion(requirement: str, c: CriterionReview, definitions: Mapping[str, DefinitionReview]) -> CriterionRow:
+    claimed = c.basis.claimed
+    return CriterionRow(
+        requirement=requirement,
+        anchor=anchors.row(requirement),
+        measure=titled(c.measure, definitions),
+        limit=limit(c.limit),
+        proved=shown.result(c.result, c.limit).whole,
+        claimed="" if claimed is None or claimed.value is None else f"{digits.number(claimed.value)} {claimed.unit}",
+        verdict=VERDICTS[c.verdict],
+    )
+
+
+def _break(name: str, opened: BreakReview, definitions: Mapping[str, DefinitionReview]) -> BreakSheet:
+    return BreakSheet(
+        name=name,
+        at=opened.at,
+        numerator=shown.polynomial(opened.numerator) if opened.numerator else "",
+        denominator=shown.polynomial(opened.denominator) if opened.denominator else "",
+        reason=opened.reason or "",
+        measures=measure_rows(opened.measures, definitions),
+    )
+
+
+def measure_rows(
+    measures: Iterable[MeasureResult], definitions: Mapping[str, DefinitionReview]
+) -> tuple[MeasureRow, ...]:
+    """Return measures as rows, their numbers aligned on the decimal sign."""
+    found = [(m, shown.result(m)) for m in measures]
+    values = digits.aligned([result.value for _, result in found])
+    return tuple(
+        MeasureRow(titled(m.measure, definitions), arguments(m.arguments), result, value)
+        for (m, result), value in zip(found, values, strict=True)
+    )
+
+
+def pole_rows(poles: Iterable[Pole]) -> tuple[PoleRow, ...]:
+    """Return poles as rows, a conjugate pair as one."""
+    return tuple(_pole_row(pole) for pole in poles if pole.imaginary >= 0)
+
+
+def _pole_row(pole: Pole) -> PoleRow:
+    size = math.hypot(pole.real, pole.imaginary)
+    imaginary = f" ± {digits.number(pole.imaginary)}j" if pole.imaginary else ""
+    return PoleRow(
+        value=digits.number(pole.real) + imaginary,
+        multiplicity=pole.multiplicity,
+        frequency=digits.number(size) if pole.imaginary else "",
+        damping=digits.number(_four(-pole.real / size)) if pole.imaginary else "",
+        time_constant=digits.number(_four(-1 / pole.real)) if pole.real < 0 else "",
+        bound="exact" if pole.radius == 0 else digits.half_width(0.0, -pole.radius, pole.radius),
+        unstable=pole.real >= 0,
+    )
+
+
+def _four(value: float) -> float:
+    """Return a number derived for the reader, to four digits: it is not proved and claims no more."""
+    return float(f"{value:.4g}")
+
+
+def _listed(points: Iterable[Pole]) -> str:
+    rows = pole_rows(points)
+    return ",  ".join(r.value + (f" (×{r.multiplicity})" if r.multiplicity > 1 else "") for r in rows)
+
+
+def _hidden(mode: HiddenMode) -> Hidden:
+    return Hidden(mode.response, shown.polynomial(mode.polynomial), _listed(mode.poles), mode.stable)
+
+
+def _map(name: str, loop: LoopReview) -> PoleFigure | None:
+    hidden = {(p.real, p.imaginary) for mode in loop.hidden_modes for p in mode.poles}
+    points = [
+        Point("hidden" if (p.real, p.imaginary) in hidden else "pole", p.real, p.imaginary, p.multiplicity)
+        for p in loop.poles
+    ]
+    zeros = dict.fromkeys((z.real, z.imaginary, z.multiplicity) for r in loop.responses.values() for z in r.zeros)
+    points += [Point("zero", *zero) for zero in zeros]
+    title = f"Poles of {name} and zeros of its responses in the s plane"
+    return PoleFigure(anchors.anchor("poles", name), title, tuple(points)) if points else None

@@ -1,0 +1,90 @@
+"""A result, an amount or a polynomial as it is printed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from specgate.report import digits
+from specgate.report.words import UNITLESS, edges, spaced, with_unit, yes_no
+from specgate.review.types import LimitReview, Pole, ReserveReview, Result
+
+_RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
+
+
+@dataclass(frozen=True)
+class Shown:
+    """A result as printed: the number (or a word), its unit, how firmly it is known, and what has to be said of it."""
+
+    value: str
+    unit: str
+    bound: str
+    note: str
+
+    @property
+    def whole(self) -> str:
+        """The number with its unit."""
+        return with_unit(self.value, self.unit)
+
+
+def result(found: Result, limit: LimitReview | None = None) -> Shown:
+    """Return a result as printed, with more digits where the limit is close."""
+    unit = "" if found.unit in UNITLESS else str(found.unit)
+    if found.infinite:
+        return Shown("unlimited", "", _bound(found), found.reason or "")
+    if found.value is None:
+        return Shown("none", "", "", found.reason or "does not exist")
+    if isinstance(found.value, bool):
+        return Shown(yes_no(found.value), "", _bound(found), found.reason or "")
+    value = digits.decimal(found.value)
+    place = digits.last_place(value, (found.lower, found.upper), edges(limit) if limit else (), found.proof == "exact")
+    note = "; ".join(word for word in (found.fragile, found.reason) if word)
+    if found.signed is not None:
+        note = "; ".join(filter(None, (f"signed {digits.number(found.signed)}", note)))
+    return Shown(digits.written(value, place), unit, _bound(found), note)
+
+
+def _bound(found: Result) -> str:
+    """Return how firmly a result is known: exact, the half-width of its proved interval, or that it is estimated."""
+    if found.proof == "enclosed" and isinstance(found.value, float | int) and None not in (found.lower, found.upper):
+        width = digits.half_width(found.value, found.lower or 0.0, found.upper or 0.0)
+        return f"± {width}" if width != "0" else "proved"
+    return spaced(found.proof or "")
+
+
+def reserve(left: ReserveReview | None, found: Result, limit: LimitReview) -> str:
+    """Return a reserve with its sign, to the last digit printed of its result."""
+    if left is None:
+        return ""
+    if left.infinite:
+        return "unlimited"
+    if left.value is None or isinstance(found.value, bool | None):
+        return ""
+    value = digits.decimal(found.value)
+    place = digits.last_place(value, (found.lower, found.upper), edges(limit), found.proof == "exact")
+    own = digits.decimal(left.value)
+    if not own:
+        return "0"
+    return digits.signed(digits.written(own, min(place, own.adjusted()), smallest=-8))
+
+
+def polynomial(coefficients: tuple[str, ...], variable: str = "s") -> str:
+    """Return exact coefficients, highest power first, as a polynomial: `s³ + 10.4 s² + 65 s + 24.4`."""
+    terms: list[str] = []
+    for power, text in zip(range(len(coefficients) - 1, -1, -1), coefficients, strict=True):
+        if text == "0":
+            continue
+        size = digits.fraction(text.removeprefix("-"))
+        symbol = variable if power == 1 else variable + str(power).translate(_RAISED) if power else ""
+        body = symbol if size == "1" and symbol else f"{size} {symbol}".strip()
+        sign = digits.MINUS if text.startswith("-") else "+"
+        terms.append(f"{sign} {body}" if terms else body if sign == "+" else digits.MINUS + body)
+    return " ".join(terms) or "0"
+
+
+def pole(of: Pole) -> str:
+    """Return a pole's value, 1/s."""
+    real = digits.number(of.real)
+    if not of.imaginary:
+        return real
+    sign = "+" if of.imaginary > 0 else digits.MINUS
+    return f"{real} {sign} {digits.number(abs(of.imaginary))}j"

@@ -1,0 +1,171 @@
+"""What `check` prints: the gate first, then a line for each limit, then every finding with its place."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+
+from specgate.report.clean import cleaned
+from specgate.report.columns import GAP, Cell, Column, cells, cut, filled, fitted, wrapped
+from specgate.report.digits import FIGURE_SPACE, POINT_SPACE, aligned
+from specgate.report.parts import front, matrix
+from specgate.report.words import LEVELS, OUTCOMES, Status, counted
+from specgate.review.types import FindingReview, Review, Unusable
+
+_Paint = Callable[[str, str], str]
+"""Puts the colour of a key on a text, or not."""
+RED, YELLOW, GREEN, DIM, BOLD = "31", "33", "32", "2", "1"
+_COLOURS = {
+    **dict.fromkeys(("hold", "unusable", "non_compliant", "out_of_range", "error"), RED),
+    **dict.fromkeys(("open", "inconclusive", "warning"), YELLOW),
+    **dict.fromkeys(("pass", "compliant", "sound"), GREEN),
+    **dict.fromkeys(("not_applicable", "note", "quiet"), DIM),
+    "bold": BOLD,
+}
+COLUMNS = (
+    Column("verdict"),
+    Column("requirement", least=12),
+    Column("measure", least=14),
+    Column("of", least=12, expendable=2),
+    Column("result", number=True),
+    Column("limit", right=True),
+    Column("reserve", number=True, expendable=3),
+    Column("standing", expendable=4),
+    Column("basis", least=12, expendable=1),
+)
+STANDING = next(k for k, column in enumerate(COLUMNS) if column.heading == "standing")
+"""Number of the column of the standing; where it is left out, a standing that is not sound is said below the line."""
+
+
+def render(review: Review | Unusable, *, width: int, colour: bool) -> str:
+    """Return the result of a run as text of at most `width` columns where words allow it, ending in a line feed."""
+    paint = _painted if colour else _plain
+    shown = cleaned(review)
+    lines = _unusable(shown, width, paint) if isinstance(shown, Unusable) else _review(shown, width, paint)
+    return "\n".join(line.rstrip() for line in lines) + "\n"
+
+
+def _plain(text: str, key: str) -> str:
+    return text
+
+
+def _painted(text: str, key: str) -> str:
+    code = _COLOURS.get(key)
+    return f"\x1b[{code}m{text}\x1b[0m" if code and text.strip() else text
+
+
+def _state(status: Status) -> Cell:
+    return Cell(f"{status.shape} {status.word}", status.key)
+
+
+def _standing(status: Status | None) -> Cell:
+    """Return a standing, coloured where it is not sound."""
+    return (
+        Cell("") if status is None else Cell(f"{status.shape} {status.word}", status.key if status.weight < 2 else "")
+    )
+
+
+def _review(review: Review, width: int, paint: _Paint) -> Iterator[str]:
+    page = front.front(review)
+    outcome = page.outcome
+    yield (
+        paint(f"{outcome.shape} The gate {outcome.word}", outcome.key)
+        + f"  {page.title.document} revision {page.title.revision}"
+    )
+    yield from wrapped(page.title.title, width)
+    yield from wrapped(page.sentence, width)
+    for counts in (page.verdicts, page.standings):
+        yield GAP + GAP.join(
+            paint(f"{c.status.shape} {c.number} {c.status.word}", c.status.key) for c in counts if c.number
+        )
+    yield ""
+    yield from _table(review, width, paint)
+    if page.holds:
+        yield ""
+        yield paint("What holds the gate", "bold")
+        for reason in review.gate.reasons:
+            yield from wrapped(reason, width, "  - ", "    ")
+    if review.findings:
+        yield ""
+        yield paint(f"Findings ({_levels(review.findings)})", "bold")
+        yield from _findings(review.findings, width, paint)
+
+
+def _table(review: Review, width: int, paint: _Paint) -> Iterator[str]:
+    rows = [row for group in matrix.groups(review) for row in group.rows]
+    rows.sort(key=lambda row: row.verdict.weight)
+    table = [line for row in rows for line in _rows(row)]
+    lines = _aligned([line for line, _ in table], [k for k, column in enumerate(COLUMNS) if column.number])
+    widths = fitted(COLUMNS, lines, width)
+    yield paint(GAP.join(filled(COLUMNS[k].heading, w, COLUMNS[k].right) for k, w in widths.items()), "bold")
+    for line, (_, remark) in zip(lines, table, strict=True):
+        parts = (paint(filled(cut(line[k].text, w), w, COLUMNS[k].right), line[k].key) for k, w in widths.items())
+        yield GAP.join(parts)
+        indent = " " * (widths[0] + len(GAP))
+        standing = line[STANDING]
+        if STANDING not in widths and standing.key:
+            yield indent + paint(f"{standing.text}: {line[STANDING + 1].text}", standing.key)
+        if remark:
+            yield from (paint(text, "quiet") for text in wrapped(remark, width, indent, indent))
+
+
+def _aligned(table: list[list[Cell]], numbers: list[int]) -> list[list[Cell]]:
+    """Return a table in which the numbers of some columns meet at the decimal sign, each with its unit after it."""
+    table = [list(line) for line in table]
+    for k in numbers:
+        halves = [line[k].text.partition(" ") for line in table]
+        values = [text.translate(_BLANKS) for text in aligned([value for value, _, _ in halves])]
+        widest = max(map(cells, values), default=0)
+        for line, value, (_, _, unit) in zip(table, values, halves, strict=True):
+            line[k] = Cell(f"{filled(value, widest, right=True)} {unit}".rstrip(), line[k].key)
+    return table
+
+
+_BLANKS = {ord(FIGURE_SPACE): " ", ord(POINT_SPACE): " "}
+
+
+def _rows(row: matrix.Row) -> Iterator[tuple[list[Cell], str]]:
+    """Yield a requirement as lines: its id stands on the first, what the columns cannot say below the line."""
+    if not row.lines:
+        how = row.decided_by if row.decided_by != "criteria" else ""
+        empty = [_state(row.verdict), Cell(row.id), Cell(how, "quiet"), *[Cell("")] * (len(COLUMNS) - 3)]
+        yield empty, "" if row.verdict.weight >= 2 else row.reason
+        return
+    for number, line in enumerate(row.lines):
+        verdict = line.verdict if len(row.lines) > 1 else row.verdict
+        standing = line.standing
+        shown = [
+            _state(verdict),
+            Cell(row.id if number == 0 else ""),
+            Cell(line.measure.lower()),
+            Cell(line.on),
+            Cell(line.result.whole),
+            Cell(line.limit),
+            Cell(f"{line.reserve} {line.reserve_unit}".strip()),
+            _standing(standing),
+            Cell(line.basis.rpartition(" and ")[2]),
+        ]
+        yield shown, (line.reason or line.result.note) if line.result.value == "none" else ""
+
+
+def _levels(findings: tuple[FindingReview, ...]) -> str:
+    counts = [(key, sum(f.level == key for f in findings)) for key in LEVELS]
+    return ", ".join(counted(number, key) for key, number in counts if number)
+
+
+def _findings(findings: tuple[FindingReview, ...], width: int, paint: _Paint) -> Iterator[str]:
+    for finding in findings:
+        at = f"{finding.location.path}:{finding.location.line}:{finding.location.column}"
+        status = LEVELS[finding.level]
+        lines = list(wrapped(f"{at}: {status.word}: {finding.message} [{finding.rule}]", width, hang="    "))
+        yield lines[0].replace(f": {status.word}:", f": {paint(status.word, status.key)}:", 1)
+        yield from lines[1:]
+        for other in finding.related:
+            words = f"{other.path}:{other.line}:{other.column}: {other.message or 'see also'}"
+            yield from wrapped(words, width, "    ", "        ")
+
+
+def _unusable(result: Unusable, width: int, paint: _Paint) -> Iterator[str]:
+    outcome = OUTCOMES["unusable"]
+    yield paint(f"{outcome.shape} {outcome.word.capitalize()}", outcome.key) + f"  {_levels(result.findings)}"
+    yield ""
+    yield from _findings(result.findings, width, paint)
