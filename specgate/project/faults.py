@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from contextlib import contextmanager
 
 from specgate.terms.findings import Finding, Related
@@ -41,8 +41,3 @@ class Faults:
         except Fault as fault:
             if not fault.repeats:
                 self.findings.append(fault.finding(**about))
-
-    def attempt(self, step: Callable[[], object], **about: str | None) -> None:
-        """Run one step and note its fault."""
-        with self.noted(**about):
-            step()

@@ -1,0 +1,45 @@
+"""Dimension checks of a whole project, on its expressions as written and with their nominal values."""
+
+from __future__ import annotations
+
+from specgate.project.blocks import build
+from specgate.project.criterion_checks import check_requirement
+from specgate.project.faults import Fault, Faults
+from specgate.project.loop_checks import check_loop
+from specgate.project.parameters import settle
+from specgate.project.subsystem_checks import check_subsystem
+from specgate.project.types import Project
+from specgate.terms.findings import Finding, in_order
+
+
+def check(project: Project) -> tuple[Finding, ...]:
+    """Return everything that keeps the project from being built, in the order of the files.
+
+    Formulas, models, wires, ranges, what rests and drives the loops, limits, arguments and claims. Names are taken
+    as resolved by whoever built the project; one that is not is reported once where it stands.
+    """
+    values, findings = settle(project)
+    found = Faults()
+    blocks = {}
+    for name, subsystem in project.subsystems.items():
+        built = check_subsystem(subsystem, values, found)
+        if built is not None:
+            blocks[name] = built
+    for loop in project.loops.values():
+        check_loop(project, loop, blocks, values, found)
+    for requirement in project.requirements.values():
+        check_requirement(project, requirement, values, found)
+    return in_order((*findings, *found.findings))
+
+
+def units_by_fit(project: Project) -> tuple[str, ...]:
+    """Return the subsystems in which plain numbers carry whatever unit fits, in the order of the files."""
+    values, _ = settle(project)
+    names = []
+    for name, subsystem in project.subsystems.items():
+        try:
+            if build(subsystem, values).by_fit:
+                names.append(name)
+        except Fault:
+            continue
+    return tuple(names)

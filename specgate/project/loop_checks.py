@@ -1,0 +1,79 @@
+"""Checks of one loop: its wires, what it rests at, what drives its responses."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+
+from specgate.project import faults
+from specgate.project.blocks import BuiltBlock
+from specgate.project.faults import Fault, Faults
+from specgate.project.parameters import Values, evaluate
+from specgate.project.percent import refuse_ambiguous
+from specgate.project.rational_forms import refuse_written_rate
+from specgate.project.signals import LoopSignals
+from specgate.project.subsystem_checks import wants
+from specgate.project.types import Excitation, Loop, Project, Value
+from specgate.project.wiring import wire
+from specgate.terms.dimensions import RATE, TIME, Dimension
+from specgate.terms.expressions import literal_unit
+from specgate.terms.unit import Unit
+
+_QUANTITIES: Mapping[str, Callable[[Dimension], Dimension]] = {
+    "size": lambda signal: signal,
+    "amplitude": lambda signal: signal,
+    "slope": lambda signal: signal / TIME,
+    "curvature": lambda signal: signal / TIME**2,
+    "area": lambda signal: signal * TIME,
+    "density": lambda signal: signal**2 * TIME,
+    "duration": lambda _: TIME,
+    "at": lambda _: TIME,
+    "frequency": lambda _: RATE,
+}
+"""Dimension of what an input is described by, from the dimension of the signal that it drives."""
+
+_NOT_ZERO = frozenset({"size", "amplitude", "slope", "curvature", "area", "density"})
+
+
+def check_loop(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values: Values, found: Faults) -> None:
+    """Note everything wrong with a loop; `blocks` are those of its subsystems that could be built."""
+    signals = LoopSignals(project, loop, values)
+    before = len(found.findings)
+    for name in loop.signals:
+        with found.noted(loop=loop.name):
+            signals.check(name)
+    for name, value in loop.rest.items():
+        with found.noted(loop=loop.name):
+            _check_rest(value, signals.unit(name), values)
+    for response in loop.responses.values():
+        for excitation in response.excitations:
+            _check_excitation(excitation, signals, found, response.name)
+    if len(found.findings) == before and set(project.subsystems) == set(blocks):
+        with found.noted(loop=loop.name):
+            wire(project, loop, blocks, values)
+
+
+def _check_excitation(excitation: Excitation, signals: LoopSignals, found: Faults, response: str) -> None:
+    for name, value in excitation.quantities.items():
+        with found.noted(loop=signals.loop.name, response=response):
+            unit = signals.unit(excitation.source)
+            if name == "frequency":
+                refuse_written_rate(value, signals.values)
+            if name in _NOT_ZERO:
+                refuse_ambiguous(value, unit)
+            wants(value, _QUANTITIES[name](unit.dimension), signals.values)
+            _refuse_decibel(value)
+            if name in _NOT_ZERO and evaluate(value, signals.values) == 0:
+                raise Fault(faults.VALUE, f"`{value.as_written}`: an input of zero drives nothing", value.place)
+
+
+def _check_rest(value: Value, unit: Unit, values: Values) -> None:
+    """Check that a value can be counted in a signal's unit. Raises Fault."""
+    wants(value, unit.dimension, values)
+    _refuse_decibel(value)
+    evaluate(value, values)
+
+
+def _refuse_decibel(value: Value) -> None:
+    unit = literal_unit(value.expression)
+    if unit is not None and unit.kind == "decibel":
+        raise Fault(faults.DIMENSION, f"`{value.as_written}`: a signal has no value in dB", value.place)

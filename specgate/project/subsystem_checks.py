@@ -1,0 +1,75 @@
+"""Checks of one subsystem: its ports, the ranges of its signals, its model."""
+
+from __future__ import annotations
+
+from flint import fmpq
+
+from specgate.project import faults
+from specgate.project.blocks import BuiltBlock, build
+from specgate.project.faults import Fault, Faults
+from specgate.project.parameters import Values, infer
+from specgate.project.temperatures import absolute
+from specgate.project.types import Port, SampledModel, Subsystem, Value
+from specgate.terms.dimensions import TIME, Dimension
+from specgate.terms.expressions import PLAIN, as_dimension
+from specgate.terms.trees import Number
+from specgate.terms.unit import Unit
+
+
+def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> BuiltBlock | None:
+    """Note everything wrong with a subsystem; return its block if the model can be built."""
+    for port in (*subsystem.inputs.values(), *subsystem.outputs.values()):
+        _check_port(port, subsystem.name, values, found)
+    if isinstance(subsystem.model, SampledModel):
+        for value in (subsystem.model.period, subsystem.model.delay):
+            if value is not None:
+                with found.noted(subsystem=subsystem.name):
+                    wants(value, TIME, values, subsystem.name)
+    with found.noted(subsystem=subsystem.name):
+        return build(subsystem, values)
+    return None
+
+
+def _check_port(port: Port, subsystem: str, values: Values, found: Faults) -> None:
+    with found.noted(subsystem=subsystem):
+        refuse_decibel(port.unit, port)
+        ranges = (
+            ("linear range", port.linear_range, port.unit.dimension),
+            ("range of rates", port.rate_range, port.unit.dimension / TIME),
+            ("span", port.span, port.unit.dimension),
+        )
+        for name, pair, dimension in ranges:
+            if pair is not None:
+                _check_range(name, pair, dimension, port, subsystem, values)
+
+
+def _check_range(
+    name: str, pair: tuple[Value, Value], dimension: Dimension, port: Port, subsystem: str, values: Values
+) -> None:
+    for value in pair:
+        wants(value, dimension, values, subsystem)
+    low, high = (_end(value, dimension, port, subsystem, values) for value in pair)
+    if low >= high:
+        written = f"[{pair[0].as_written}, {pair[1].as_written}]"
+        raise Fault(faults.VALUE, f"the {name} {written} is empty: the lower end comes first", pair[0].place)
+
+
+def _end(value: Value, dimension: Dimension, port: Port, subsystem: str, values: Values) -> fmpq:
+    unit = port.unit if dimension == port.unit.dimension else Unit("", fmpq(1))
+    return absolute(value, unit, values, subsystem)
+
+
+def refuse_decibel(unit: Unit, declared: Port) -> None:
+    """Refuse dB as the unit of a signal. Raises Fault."""
+    if unit.kind == "decibel":
+        raise Fault(faults.DIMENSION, "a signal cannot be in dB, which is a ratio of amplitudes", declared.place)
+
+
+def wants(value: Value, dimension: Dimension, values: Values, scope: str | None = None) -> None:
+    """Check the dimension of a value; a plain number other than 0 does not stand for a unit. Raises Fault."""
+    inferred = infer(value, values, scope)
+    zero = isinstance(value.expression, Number) and value.expression.value == 0
+    if inferred is PLAIN and zero:
+        return
+    if as_dimension(inferred) != dimension:
+        raise Fault(faults.DIMENSION, f"`{value.as_written}`: {dimension} is wanted, this is {inferred}", value.place)

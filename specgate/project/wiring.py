@@ -1,0 +1,187 @@
+"""One loop with values: its blocks applied, its signals as exact sums, and what of it is not answered."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+
+from flint import fmpq
+
+from specgate.project import faults
+from specgate.project.blocks import BuiltBlock, memoryless
+from specgate.project.faults import Fault
+from specgate.project.instances import Form, NameRef, Use, UseRef, Uses
+from specgate.project.parameters import Values
+from specgate.project.signals import LoopSignals
+from specgate.project.temperatures import absolute
+from specgate.project.types import Break, Loop, Project, Response
+from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
+from specgate.systems.graph import reached, reversed_arcs
+from specgate.terms.findings import Related
+
+Node = tuple[str, str]
+"""("signal", name) or ("block", instance)."""
+
+
+@dataclass(frozen=True)
+class InstantiatedLoop:
+    """A loop in coherent SI.
+
+    wiring: a block that this version does not answer (dead time, sampled) is left out of it, and its outputs are
+    inputs named `block.output`; what no path through such a block reaches is answered as if it stood there.
+    rest: value of every input and signal before the step, temperatures from the zero of the signal's unit.
+    unsupported: why nothing about the loop as a whole is answered. responses, breaks: the same for each of them that
+    is concerned, by name. subsystems: the subsystem of each instance. depends_on_pi: the wiring rests on a rounded
+    decimal, so that a yes or no has to be decided again with a longer one.
+    """
+
+    wiring: Wiring
+    rest: Mapping[str, fmpq]
+    unsupported: str | None
+    responses: Mapping[str, str]
+    breaks: Mapping[str, str]
+    subsystems: Mapping[str, str]
+    depends_on_pi: bool
+
+
+def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values: Values) -> InstantiatedLoop:
+    """Return one loop. Raises Fault, among others where a block with a memory is used with different arguments."""
+    drawn = Drawn(project, loop, blocks, values)
+    signals = LoopSignals(project, loop, values)
+    rest = {name: fmpq(0) for name in (*loop.inputs, *loop.signals)}
+    rest.update({name: absolute(value, signals.unit(name), values) for name, value in loop.rest.items()})
+    return InstantiatedLoop(
+        drawn.wiring(),
+        rest,
+        next(iter(drawn.missing.values()), None),
+        {name: reason for name, response in loop.responses.items() if (reason := drawn.response(response))},
+        {name: reason for name, opened in loop.breaks.items() if (reason := drawn.opened(opened))},
+        {name: drawn.classes[number][0].call.subsystem for number, name in drawn.names.items()},
+        drawn.uses.rounded or any(blocks[name].rounded for name in drawn.numbers),
+    )
+
+
+class Drawn:
+    """A loop as drawn: which instances there are, what feeds what, and which instances are missing."""
+
+    def __init__(self, project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values: Values) -> None:
+        self.project, self.loop, self.blocks = project, loop, blocks
+        self.uses = Uses(loop, values)
+        self.classes = self.uses.classes()
+        self.numbers = self._by_subsystem()
+        self.names = dict(self._named())
+        self.missing = {
+            name: reason
+            for number, name in self.names.items()
+            if (reason := blocks[self.classes[number][0].call.subsystem].unsupported)
+        }
+        self.arcs = self._arcs()
+
+    def _by_subsystem(self) -> dict[str, list[int]]:
+        """Return the classes of each subsystem that is used, in the order of the project. Raises Fault."""
+        found: dict[str, list[int]] = {name: [] for name in self.project.subsystems}
+        for number, uses in self.classes.items():
+            found[uses[0].call.subsystem].append(number)
+        for name, numbers in found.items():
+            subsystem = self.project.subsystems[name]
+            if len(numbers) > 1 and not subsystem.separate_instances and not memoryless(self.blocks[name].block):
+                first, second = (self.classes[number][0].call.place for number in numbers[:2])
+                raise Fault(
+                    faults.VALUE,
+                    f"`{name}` is applied to different arguments: one block has one input. Name the signal that it "
+                    "acts on and use that, or write `instances: separate` if there are several of it",
+                    second,
+                    Related(first, "the other use"),
+                )
+        return {name: numbers for name, numbers in found.items() if numbers}
+
+    def _named(self) -> Iterator[tuple[int, str]]:
+        for name, numbers in self.numbers.items():
+            yield numbers[0], name
+            for count, number in enumerate(numbers[1:], 2):
+                yield number, f"{name} ({count})"
+
+    # --- wiring -------------------------------------------------------------------------------------------
+
+    def wiring(self) -> Wiring:
+        """Return the wiring, with the outputs of missing instances as inputs."""
+        outside = [
+            f"{self.names[number]}.{output}"
+            for number, uses in self.classes.items()
+            if self.names[number] in self.missing
+            for output in self.project.subsystems[uses[0].call.subsystem].outputs
+        ]
+        instances = [
+            Instance(self.names[number], block, self._arguments(number, block))
+            for numbers in self.numbers.values()
+            for number in numbers
+            if self.names[number] not in self.missing and (block := self._block(number)) is not None
+        ]
+        signals = {name: self._linear(form) for name, form in self.uses.forms.items()}
+        return Wiring((*self.loop.inputs, *outside), tuple(instances), signals)
+
+    def _block(self, number: int) -> Block | None:
+        return self.blocks[self.classes[number][0].call.subsystem].block
+
+    def _arguments(self, number: int, block: Block) -> dict[str, LinearForm]:
+        use = self._spelled(number)
+        return {name: self._linear(use.arguments.get(name, {})) for name in block.inputs}
+
+    def _spelled(self, number: int) -> Use:
+        """Return the use of a class that names signals rather than spelling them out: a break cuts signals."""
+        return min(self.classes[number], key=lambda use: sum(len(form) for form in use.arguments.values()))
+
+    def _linear(self, form: Form) -> LinearForm:
+        return LinearForm(tuple((factor, self._reference(atom)) for atom, factor in form.items()))
+
+    def _reference(self, atom: NameRef | UseRef) -> SignalRef | OutputRef:
+        if isinstance(atom, NameRef):
+            return SignalRef(atom.name)
+        name = self._instance(atom)
+        return SignalRef(f"{name}.{atom.output}") if name in self.missing else OutputRef(name, atom.output)
+
+    def _instance(self, atom: UseRef) -> str:
+        return self.names[self.uses.representative[atom.use]]
+
+    # --- what is not answered -----------------------------------------------------------------------------
+
+    def _arcs(self) -> Mapping[Node, list[Node]]:
+        arcs: dict[Node, list[Node]] = {("signal", name): [] for name in (*self.loop.inputs, *self.loop.signals)}
+        arcs.update({("block", name): [] for name in self.names.values()})
+        for name, form in self.uses.forms.items():
+            for atom in form:
+                arcs[self._node(atom)].append(("signal", name))
+        for number, uses in self.classes.items():
+            for use in uses:
+                for form in use.arguments.values():
+                    for atom in form:
+                        arcs[self._node(atom)].append(("block", self.names[number]))
+        return arcs
+
+    def _node(self, atom: NameRef | UseRef) -> Node:
+        return ("signal", atom.name) if isinstance(atom, NameRef) else ("block", self._instance(atom))
+
+    def response(self, response: Response) -> str | None:
+        """Say why a response is not answered, or return None."""
+        if len(response.excitations) != 1:
+            return "several inputs at once are not answered by this version"
+        if response.excitations[0].kind != "step":
+            return f"the input `{response.excitations[0].kind}` is not answered by this version"
+        source = response.excitations[0].source
+        seen = [response.to]
+        if response.reference is not None and ("signal", response.reference) in self.arcs:
+            seen.append(response.reference)
+        return next((reason for to in seen if (reason := self._between(source, to)) is not None), None)
+
+    def opened(self, opened: Break) -> str | None:
+        """Say why a break is not answered, or return None."""
+        if opened.into is not None or opened.with_open:
+            return "a break of one use, or with other loops open, is not answered by this version"
+        return self._between(opened.at, opened.at)
+
+    def _between(self, source: str, target: str) -> str | None:
+        """Return the reason of the first missing instance on a path from one signal to another."""
+        ahead = reached([("signal", source)], self.arcs)
+        behind = reached([("signal", target)], reversed_arcs(self.arcs))
+        on_path = ahead & behind
+        return next((reason for name, reason in self.missing.items() if ("block", name) in on_path), None)
