@@ -1,0 +1,114 @@
+"""What the builders share: where findings go, the units, and which names the project declares."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field
+
+from specgate.intake.collect import Collector
+from specgate.intake.nodes import Items, Node, Number, Table, Text
+from specgate.terms.names import nearest
+from specgate.terms.places import Place
+from specgate.terms.units import Unit, UnitError, UnitTable
+
+
+@dataclass(frozen=True)
+class Ports:
+    """Names of the inputs and outputs of a subsystem."""
+
+    inputs: tuple[str, ...]
+    outputs: tuple[str, ...]
+
+
+@dataclass(frozen=True)
+class LoopNames:
+    """Names that a loop declares."""
+
+    inputs: tuple[str, ...]
+    signals: tuple[str, ...]
+    responses: tuple[str, ...]
+    breaks: tuple[str, ...]
+
+
+@dataclass
+class Context:
+    """Names by section, whether or not what stands behind them could be built; `broken` are those that could not.
+
+    own: parameter names of each subsystem. A name that is broken has been reported: whoever meets it says nothing.
+    """
+
+    collector: Collector
+    units: UnitTable
+    shared: frozenset[str] = frozenset()
+    own: Mapping[str, frozenset[str]] = field(default_factory=dict)
+    ports: Mapping[str, Ports] = field(default_factory=dict)
+    loops: Mapping[str, LoopNames] = field(default_factory=dict)
+    masks: frozenset[str] = frozenset()
+    cases: frozenset[str] = frozenset()
+    evidence: frozenset[str] = frozenset()
+    stages: tuple[str, ...] = ()
+    broken: set[str] = field(default_factory=set)
+    units_read: set[str] = field(default_factory=set)
+
+    def unit(self, node: Node | None) -> Unit | None:
+        """Read the unit at a node (`m/s`, or 1 for none)."""
+        if not isinstance(node, Text | Number):
+            return None
+        text = node.value if isinstance(node, Text) else node.text
+        try:
+            unit = self.units.parse(text)
+        except UnitError as error:
+            self.collector.error("unit-unknown", error.message, node.spot.place)
+            return None
+        if text != "1":
+            self.units_read.add(text)
+        return unit
+
+    def unknown(self, what: str, name: str, known: Iterable[str], place: Place) -> None:
+        """Report a name that nothing in the project has."""
+        names = tuple(known)
+        close = nearest(name, names)
+        if close is not None:
+            ending = f": did you mean `{close}`?"
+        elif 0 < len(names) <= 12:
+            ending = f": there is {', '.join(names)}"
+        else:
+            ending = "" if names else ": there is none at all"
+        self.collector.error("name-unknown", f"there is no {what} `{name[:80]}`{ending}", place)
+
+
+# --- what stands at a node, or a default: shapes are the schema's business and have been reported ---------------------
+
+
+def table(node: Node | None) -> Table | None:
+    """Return the table at a node."""
+    return node if isinstance(node, Table) else None
+
+
+def entries(node: Node | None) -> Iterable[tuple[Text, Node]]:
+    """Iterate over the keys and values of a table."""
+    return node.items() if isinstance(node, Table) else ()
+
+
+def keys(node: Node | None) -> tuple[str, ...]:
+    """Return the keys of a table."""
+    return tuple(node.entries) if isinstance(node, Table) else ()
+
+
+def items(node: Node | None) -> tuple[Node, ...]:
+    """Return the nodes of a list; a single text counts as a list of one."""
+    if isinstance(node, Items):
+        return node.nodes
+    return (node,) if isinstance(node, Text) else ()
+
+
+def text(node: Node | None) -> str | None:
+    """Return a text, or a number as it was written."""
+    if isinstance(node, Text):
+        return node.value.strip()
+    return node.text if isinstance(node, Number) else None
+
+
+def texts(node: Node | None) -> tuple[str, ...]:
+    """Return the texts of a list."""
+    return tuple(found for item in items(node) if (found := text(item)) is not None)

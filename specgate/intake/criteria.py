@@ -1,0 +1,191 @@
+"""Criteria: what is measured on what, with which arguments, against which limit, and on which basis."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Sequence
+from typing import Literal
+
+from specgate.approximations.table import APPROXIMATIONS
+from specgate.intake.context import Context, items, table, text, texts
+from specgate.intake.nodes import Node, Spot, Table, Text, Truth, as_kept
+from specgate.intake.values import Reader, complete
+from specgate.measures.table import MEASURES
+from specgate.project.types import Basis, Claim, Criterion, Limit, Subject
+
+_ARGUMENTS = ("band", "from", "to", "time", "frequency")
+_LIMITS: tuple[Literal["at_most", "at_least", "between", "within", "equals"], ...] = (
+    "at_most",
+    "at_least",
+    "between",
+    "within",
+    "equals",
+)
+_KEPT = ("mask", "over", "cases")
+_CLAIM = re.compile(r"[-+]?(?P<whole>[0-9]*)(?:\.(?P<part>[0-9]*))?(?:[eE](?P<power>[+-]?[0-9]+))?(?:\s.*)?", re.DOTALL)
+
+
+def criterion(node: Node, place: Spot, context: Context) -> Criterion | None:
+    """Read one criterion. None if something in it was reported."""
+    body = table(node)
+    if body is None:
+        return None
+    reader = Reader(context)
+    subject = _subject(body, context)
+    measure = text(body.get("measure"))
+    limit = _limit(body, place, reader)
+    arguments = {name: reader.value(body.get(name)) for name in _ARGUMENTS if body.get(name) is not None}
+    given = {name: value for name, value in arguments.items() if value is not None}
+    kept = _kept(body, reader)
+    grounds = body.get("basis")
+    rests_on = basis(grounds, context) if grounds is not None else None
+    if measure is None or measure not in MEASURES or subject is None or limit is None or kept is None:
+        return None
+    if len(given) < len(arguments) or (grounds is not None and rests_on is None):
+        return None
+    if rests_on is not None and not estimates_one(rests_on, (measure,), context):
+        return None
+    return Criterion(subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept)
+
+
+# --- subject -------------------------------------------------------------------------------------------------
+
+
+def _subject(node: Table, context: Context) -> Subject | None:
+    kinds: tuple[Literal["response", "break"], ...] = ("response", "break")
+    for kind in kinds:
+        written = node.get(kind)
+        if isinstance(written, Text):
+            return _part_of_loop(kind, written, context)
+    written = node.get("loop")
+    if not isinstance(written, Text):
+        return None
+    name = written.value.strip()
+    if name not in context.loops:
+        context.unknown("loop", name, context.loops, written.spot.place)
+        return None
+    return Subject("loop", name, None, written.spot.place)
+
+
+def _part_of_loop(kind: Literal["response", "break"], node: Text, context: Context) -> Subject | None:
+    loop, _, name = node.value.strip().partition(".")
+    names = context.loops.get(loop)
+    if names is None:
+        context.unknown("loop", loop, context.loops, node.spot.place)
+        return None
+    wanted, other = names.responses, names.breaks
+    if kind == "break":
+        wanted, other = other, wanted
+    if name in wanted:
+        return Subject(kind, loop, name, node.spot.place)
+    if name in other:
+        right = "break" if kind == "response" else "response"
+        message = f"`{loop}.{name}` is a {right}: write `{right}: {loop}.{name}`"
+        context.collector.error("name-unknown", message, node.spot.place)
+    else:
+        context.unknown(f"{kind} of `{loop}`", name, wanted, node.spot.place)
+    return None
+
+
+# --- limit ---------------------------------------------------------------------------------------------------
+
+
+def _limit(node: Table, place: Spot, reader: Reader) -> Limit | None:
+    for kind in _LIMITS:
+        entry = node.entries.get(kind)
+        if entry is None:
+            continue
+        where = entry.key.spot.place
+        if kind == "equals" and isinstance(entry.value, Truth):
+            return Limit("equals", (), where, truth=entry.value.value)
+        values = complete([reader.value(part) for part in _limit_nodes(kind, node, entry.value)])
+        return Limit(kind, values, where) if values else None
+    return None
+
+
+def _limit_nodes(kind: str, node: Table, value: Node) -> Sequence[Node | None]:
+    if kind == "between":
+        return items(value)
+    return (value, node.get("of")) if kind == "within" else (value,)
+
+
+# --- what is kept ----------------------------------------------------------------------------------------------
+
+
+def _kept(node: Table, reader: Reader) -> dict[str, object] | None:
+    """Keep what is answered later; names and quantities in it must be right now."""
+    mask, over, evaluate = node.get("mask"), node.get("over"), table(node.get("evaluate"))
+    if isinstance(mask, Text) and mask.value.strip() not in reader.context.masks:
+        reader.context.unknown("mask", mask.value.strip(), sorted(reader.context.masks), mask.spot.place)
+        return None
+    for case in items(node.get("cases")):
+        if isinstance(case, Text) and case.value != "all" and case.value not in reader.context.cases:
+            reader.context.unknown("case", case.value, sorted(reader.context.cases), case.spot.place)
+            return None
+    if over is not None and reader.pair(over) is None:
+        return None
+    kept = {key: as_kept(value) for key in _KEPT if (value := node.get(key)) is not None}
+    return {**kept, "evaluate": as_kept(evaluate)} if evaluate is not None else kept
+
+
+def evaluation(node: Node | None) -> str | None:
+    """Return how something is evaluated: nominal, worst_case or probability."""
+    return "probability" if isinstance(node, Table) else text(node)
+
+
+# --- basis -------------------------------------------------------------------------------------------------------
+
+
+def basis(node: Node, context: Context) -> Basis | None:
+    """Read a basis. None if something in it was reported."""
+    place = node.spot.place
+    if isinstance(node, Text):
+        return Basis("computed", place) if node.value == "computed" else None
+    body = table(node)
+    if body is None:
+        return None
+    evidence = body.get("evidence")
+    if evidence is not None:
+        name = text(evidence) or ""
+        if name not in context.evidence:
+            context.unknown("evidence", name, sorted(context.evidence), evidence.spot.place)
+            return None
+        return Basis("evidence", place, evidence=name)
+    chain, claimed = texts(body.get("approximation")), body.get("claimed")
+    claim = _claim(claimed, context) if claimed is not None else None
+    if not chain or (claimed is not None and claim is None):
+        return None
+    return Basis("approximation", place, chain, claim)
+
+
+def _claim(node: Node, context: Context) -> Claim | None:
+    value = Reader(context).value(node)
+    match = _CLAIM.fullmatch(value.as_written) if value is not None else None
+    if value is None:
+        return None
+    if match is None or not (match["whole"] or match["part"]):
+        message = "a claimed value is the number that was promised, with its unit, such as `0.71 s`"
+        context.collector.error("schema-violation", message, node.spot.place)
+        return None
+    return Claim(value, int(match["power"] or 0) - len(match["part"] or ""))
+
+
+def estimates_one(rests_on: Basis, measures: Sequence[str], context: Context) -> bool:
+    """See that a basis estimates exactly one of the measures; approximations answered later are taken as they are."""
+    if rests_on.kind != "approximation" or rests_on.chain[-1] not in APPROXIMATIONS:
+        return True
+    name = rests_on.chain[-1]
+    estimated = APPROXIMATIONS[name].estimates
+    fitting = [measure for measure in measures if measure in estimated]
+    if len(fitting) == 1:
+        return True
+    what = " or ".join(f"`{measure}`" for measure in estimated)
+    if not estimated:
+        message = f"`{name}` estimates no measure by itself: name the approximation that builds on it after it"
+    elif fitting:
+        message = f"`{name}` estimates {what}, and several criteria ask for that: write the basis into one of them"
+    else:
+        asked = " and ".join(f"`{measure}`" for measure in dict.fromkeys(measures)) or "no measure"
+        message = f"`{name}` estimates {what}; what is asked here is {asked}"
+    context.collector.error("schema-violation", message, rests_on.place)
+    return False

@@ -1,0 +1,204 @@
+"""The model of a subsystem, from its node: one function per form."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Literal, cast
+
+from specgate.intake.context import Ports, entries, items, table, text, texts
+from specgate.intake.nodes import Items, Node, Number, Table, Text
+from specgate.intake.values import Reader, whole
+from specgate.project.types import (
+    FactoredModel,
+    Matrix,
+    MatrixModel,
+    Model,
+    Pair,
+    PidModel,
+    PoleZeroModel,
+    Polynomial,
+    PolynomialModel,
+    Root,
+    SampledModel,
+    StateSpaceModel,
+    Value,
+)
+
+PID_TERMS = (
+    "proportional",
+    "integral",
+    "derivative",
+    "gain",
+    "integral_time",
+    "derivative_time",
+    "derivative_lag",
+    "set_point_weight",
+)
+
+
+def model(node: Table, reader: Reader, ports: Ports) -> Model | None:
+    """Read the model; dead time alone stands beside a gain of 1. None if something in it was reported."""
+    for key, read in _FORMS.items():
+        form = node.get(key)
+        if form is not None:
+            return read(node, reader, ports)
+    alone = node.get("dead_time")
+    return FactoredModel(gain=whole(1, alone)) if alone is not None else None
+
+
+def _polynomials(node: Table, reader: Reader, ports: Ports) -> PolynomialModel | None:
+    numerator, denominator = reader.several(node.get("numerator")), reader.several(node.get("denominator"))
+    return PolynomialModel(numerator, denominator) if numerator and denominator else None
+
+
+def _equation(node: Table, reader: Reader, ports: Ports) -> PolynomialModel | None:
+    equation = table(node.get("equation")) or Table(node.spot, {})
+    numerator, denominator = reader.several(equation.get("input")), reader.several(equation.get("output"))
+    return PolynomialModel(numerator, denominator, "equation") if numerator and denominator else None
+
+
+def _factored(node: Table, reader: Reader, ports: Ports) -> FactoredModel | None:
+    gain = reader.value(node.get("gain"))
+    lags, leads = (reader.several(node.get(key)) if node.get(key) else () for key in ("lags", "leads"))
+    pairs, zero_pairs = (_pairs(node.get(key), reader) for key in ("pairs", "zero_pairs"))
+    if gain is None or lags is None or leads is None or pairs is None or zero_pairs is None:
+        return None
+    integrators, differentiators = _whole(node.get("integrators")), _whole(node.get("differentiators"))
+    return FactoredModel(gain, integrators, differentiators, lags, leads, pairs, zero_pairs)
+
+
+def _pairs(node: Node | None, reader: Reader) -> tuple[Pair, ...] | None:
+    found: list[Pair] = []
+    for item in items(node):
+        pair = table(item) or Table(item.spot, {})
+        frequency, damping = reader.value(pair.get("natural_frequency")), reader.value(pair.get("damping"))
+        if frequency is None or damping is None:
+            return None
+        found.append(Pair(frequency, damping))
+    return tuple(found)
+
+
+def _poles_and_zeros(node: Table, reader: Reader, ports: Ports) -> PoleZeroModel | None:
+    poles, zeros = _roots(node.get("poles"), reader), _roots(node.get("zeros"), reader)
+    leading = reader.value(node.get("leading_coefficient"))
+    if poles is None or zeros is None or leading is None:
+        return None
+    return PoleZeroModel(poles, zeros, leading)
+
+
+def _roots(node: Node | None, reader: Reader) -> tuple[Root, ...] | None:
+    roots = [_root(item, reader) for item in items(node)]
+    found = tuple(root for root in roots if root is not None)
+    return found if len(found) == len(roots) else None
+
+
+def _root(node: Node, reader: Reader) -> Root | None:
+    if not isinstance(node, Table):
+        value = reader.value(node)
+        return None if value is None else Root(value)
+    real, imaginary = reader.value(node.get("real")), reader.value(node.get("imaginary"))
+    return None if real is None or imaginary is None else Root(real, imaginary)
+
+
+def _state_space(node: Table, reader: Reader, ports: Ports) -> StateSpaceModel | None:
+    space = table(node.get("state_space")) or Table(node.spot, {})
+    states = texts(space.get("states"))
+    a = _matrix(space.get("A"), reader, states, states)
+    b = _matrix(space.get("B"), reader, states, ports.inputs)
+    c = _matrix(space.get("C"), reader, ports.outputs, states)
+    d = _matrix(space.get("D"), reader, ports.outputs, ports.inputs) if space.get("D") else ()
+    if not states or a is None or b is None or c is None or d is None:
+        return None
+    return StateSpaceModel(states, a, b, c, d)
+
+
+def _matrix(node: Node | None, reader: Reader, rows: tuple[str, ...], columns: tuple[str, ...]) -> Matrix | None:
+    """Read rows as lists, one plain list where there is one row or column, or a table of rows by name."""
+    if isinstance(node, Table):
+        return _named_matrix(node, reader, rows, columns)
+    if not isinstance(node, Items):
+        return None
+    if all(isinstance(item, Items) for item in node.nodes):
+        found = [reader.several(item) for item in node.nodes]
+        return tuple(row for row in found if row is not None) if None not in found else None
+    values = reader.several(node)
+    if values is None:
+        return None
+    return tuple((value,) for value in values) if len(columns) == 1 else (values,)
+
+
+def _named_matrix(node: Table, reader: Reader, rows: tuple[str, ...], columns: tuple[str, ...]) -> Matrix | None:
+    cells: dict[tuple[str, str], Value | None] = {}
+    for row, line in entries(node):
+        _known("row", row, rows, reader)
+        for column, cell in entries(line):
+            _known("column", column, columns, reader)
+            cells[row.value, column.value] = reader.value(cell)
+    if None in cells.values() or not {pair[0] for pair in cells} <= set(rows):
+        return None
+    return tuple(tuple(cells.get((row, column)) or whole(0, node) for column in columns) for row in rows)
+
+
+def _known(what: str, key: Text, names: tuple[str, ...], reader: Reader) -> None:
+    if key.value not in names:
+        reader.context.unknown(what, key.value, names, key.spot.place)
+
+
+def _pid(node: Table, reader: Reader, ports: Ports) -> PidModel | None:
+    return pid(table(node.get("pid")) or Table(node.spot, {}), reader)
+
+
+def pid(node: Table, reader: Reader) -> PidModel | None:
+    """Read a controller with proportional, integral and derivative terms."""
+    form = cast('Literal["parallel", "standard", "series"] | None', text(node.get("form")))
+    terms = {name: reader.value(node.get(name)) for name in PID_TERMS if node.get(name) is not None}
+    good = {name: value for name, value in terms.items() if value is not None}
+    if form not in ("parallel", "standard", "series") or len(good) < len(terms) or not terms:
+        return None
+    differentiated = cast('Literal["error", "measurement"]', text(node.get("derivative_on")) or "error")
+    return PidModel(form, good, differentiated)
+
+
+def _numerators(node: Table, reader: Reader, ports: Ports) -> MatrixModel | None:
+    denominator = reader.several(node.get("denominator"))
+    found: dict[tuple[str, str], Polynomial | None] = {}
+    for output, row in entries(node.get("numerators")):
+        _known("output", output, ports.outputs, reader)
+        for source, coefficients in entries(row):
+            _known("input", source, ports.inputs, reader)
+            found[output.value, source.value] = reader.several(coefficients)
+    good = {pair: numerator for pair, numerator in found.items() if numerator}
+    if not denominator or not good or len(good) < len(found):
+        return None
+    return MatrixModel(good, denominator)
+
+
+def _sampled(node: Table, reader: Reader, ports: Ports) -> SampledModel | None:
+    sampled = table(node.get("sampled")) or Table(node.spot, {})
+    period = reader.value(sampled.get("period"))
+    numerator = reader.several(sampled.get("numerator")) or ()
+    denominator = reader.several(sampled.get("denominator")) or ()
+    inner, delay = table(sampled.get("pid")), sampled.get("delay")
+    controller = pid(inner, reader) if inner is not None else None
+    wait = reader.value(delay) if delay is not None else None
+    if period is None or (delay is not None and wait is None) or (controller is None and not numerator):
+        return None
+    return SampledModel(period, numerator, denominator, controller, text(sampled.get("rule")), wait)
+
+
+def _whole(node: Node | None) -> int:
+    exact = node.exact if isinstance(node, Number) else 0
+    return exact if isinstance(exact, int) else 0
+
+
+_FORMS: dict[str, Callable[[Table, Reader, Ports], Model | None]] = {
+    "numerators": _numerators,
+    "numerator": _polynomials,
+    "equation": _equation,
+    "gain": _factored,
+    "leading_coefficient": _poles_and_zeros,
+    "state_space": _state_space,
+    "pid": _pid,
+    "sampled": _sampled,
+}
+"""The key that shows which form a model is in, and how that is read."""

@@ -1,0 +1,99 @@
+"""The title block and the project's policy: own units, gate, evaluation, tightened thresholds."""
+
+from __future__ import annotations
+
+from typing import Literal, cast
+
+from specgate.approximations.table import APPROXIMATIONS
+from specgate.intake.collect import Collector
+from specgate.intake.context import Context, entries, table, text, texts
+from specgate.intake.nodes import Node, Table, Text
+from specgate.intake.values import Reader
+from specgate.project.types import GatePolicy, ProjectInfo, Value
+from specgate.terms import expressions
+from specgate.terms.places import Place
+from specgate.terms.units import UnitTable
+
+Holding = Literal["non_compliant", "open", "out_of_range", "inconclusive"]
+DEFAULT_HOLD: tuple[Holding, ...] = ("non_compliant", "open", "out_of_range")
+"""What holds the gate unless the project says otherwise."""
+
+
+def own_units(project: Table, collector: Collector) -> UnitTable | None:
+    """Return the table of units with the project's own. None if one of those was reported."""
+    node = table(project.get("units"))
+    keys = {key.value: (key, value) for key, value in entries(node)}
+    definitions = {name: text(value) or "" for name, (_, value) in keys.items()}
+    standard = UnitTable.standard()
+    units, problems = standard.with_units(definitions)
+    for name, problem in problems.items():
+        key, value = keys[name]
+        taken = standard.is_unit(name)
+        spot = key.spot if taken else value.spot
+        collector.error("id-duplicate" if taken else "unit-unknown", problem.message, spot.place)
+    return None if problems else units
+
+
+def stages(project: Table) -> tuple[str, ...]:
+    """Return the reviews in their order; the only one where no list is given."""
+    listed, stage = texts(project.get("stages")), text(project.get("stage"))
+    return listed or ((stage,) if stage is not None else ())
+
+
+def info(project: Table, context: Context) -> ProjectInfo:
+    """Read the title block."""
+    stage = project.get("stage")
+    if isinstance(stage, Text) and stage.value.strip() not in context.stages:
+        context.unknown("stage", stage.value.strip(), context.stages, stage.spot.place)
+    return ProjectInfo(
+        id=text(project.get("id")) or "",
+        title=text(project.get("title")) or "",
+        revision=text(project.get("revision")) or "",
+        date=text(project.get("date")),
+        stage=text(stage),
+        stages=context.stages,
+        sign_off=texts(project.get("sign_off")),
+        place=project.spot.place,
+    )
+
+
+def gate(node: Node | None) -> GatePolicy:
+    """Read what holds the gate."""
+    body = table(node)
+    listed = body.get("hold_on") if body is not None else None
+    return GatePolicy(cast("tuple[Holding, ...]", texts(listed)) if listed is not None else DEFAULT_HOLD)
+
+
+def thresholds(node: Node | None, context: Context) -> dict[str, dict[str, Value]]:
+    """Read the project's own thresholds of conditions. They may only be tighter than the catalogue's."""
+    found: dict[str, dict[str, Value]] = {}
+    for name, body in entries(node):
+        for key, value in entries(body):
+            threshold = Reader(context).value(value)
+            if threshold is not None and _allowed(name.value, key, threshold, context):
+                found.setdefault(name.value, {})[key.value] = threshold
+    return found
+
+
+def _allowed(name: str, key: Text, value: Value, context: Context) -> bool:
+    """Whether a threshold is one of the approximation's, and no looser; approximations answered later have none yet."""
+    row = APPROXIMATIONS.get(name)
+    if row is None:
+        return True
+    conditions = {condition.key: condition for condition in row.conditions if condition.threshold is not None}
+    condition = conditions.get(key.value)
+    if condition is None:
+        context.unknown(f"threshold of `{name}`", key.value, conditions, key.spot.place)
+        return False
+    if expressions.names(value.expression):
+        _refuse("a threshold is a number", value.place, context)
+        return False
+    if not condition.stricter(expressions.evaluate(value.expression, {})):
+        message = f"`{value.as_written}` is looser than the catalogue's own: a threshold may only be tightened"
+        _refuse(message, value.place, context)
+        return False
+    return True
+
+
+def _refuse(message: str, place: Place, context: Context) -> None:
+    context.collector.error("schema-violation", message, place)

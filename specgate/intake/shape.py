@@ -1,0 +1,113 @@
+"""The shape of a file: checked against the JSON Schema, which is the only statement of it."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterable, Mapping
+from decimal import Decimal
+from functools import cache
+from importlib.resources import files
+from itertools import islice
+from typing import TYPE_CHECKING, Any
+
+from specgate.intake.collect import MOST, Collector
+from specgate.intake.nodes import Broken, Items, Node, Table, Text, plain
+from specgate.intake.wording import Misshape, Path, worded
+from specgate.terms.names import nearest
+
+if TYPE_CHECKING:
+    from jsonschema.exceptions import ValidationError
+
+    Validator = Any
+
+_ABOUT = {"requirements": "requirement", "loops": "loop", "subsystems": "subsystem"}
+
+
+@cache
+def schema() -> Mapping[str, Any]:
+    """Return the project schema; its numbers are exact, as those of the files are."""
+    text = (files("specgate.schemas") / "specgate.schema.json").read_text(encoding="utf-8")
+    loaded: Mapping[str, Any] = json.loads(text, parse_float=Decimal)
+    return loaded
+
+
+@cache
+def _validator(part: str | None) -> Validator:
+    # imported here because it costs 60 ms, which `--help` and `schema` need not pay
+    from jsonschema import Draft202012Validator, FormatChecker
+
+    whole = schema()
+    wanted = whole if part is None else {"$ref": f"#/$defs/{part}", "$defs": whole["$defs"]}
+    return Draft202012Validator(wanted, format_checker=FormatChecker(["date"]))
+
+
+def check(root: Node, collector: Collector, part: str | None = None) -> None:
+    """Report everything about a tree that the schema (or one of its `$defs`) does not allow."""
+    if isinstance(root, Broken):
+        return
+    errors = islice(_validator(part).iter_errors(plain(root)), 2 * MOST)
+    for error in _telling([_misshape(root, error) for error in errors]):
+        _report(error, collector)
+
+
+def _misshape(root: Node, error: ValidationError) -> Misshape:
+    path = tuple(error.absolute_path)
+    node, key = _locate(root, path)
+    passed = set(error.absolute_schema_path)
+    return Misshape(
+        keyword=str(error.validator),
+        wanted=error.validator_value,
+        schema=error.schema if isinstance(error.schema, dict) else {},
+        found=error.instance,
+        path=path,
+        node=node,
+        key=key,
+        conditional=not passed.isdisjoint({"then", "else"}),
+        of_name="propertyNames" in passed,
+    )
+
+
+def _locate(root: Node, path: Path) -> tuple[Node | None, Text | None]:
+    """Return the node at a path and its key; the node is None where something on the way was not readable."""
+    node, key = root, None
+    for step in path:
+        if isinstance(node, Table) and isinstance(step, str):
+            entry = node.entries[step]
+            node, key = entry.value, entry.key
+        elif isinstance(node, Items) and isinstance(step, int):
+            node, key = node.nodes[step], None
+    return (None if isinstance(node, Broken) else node), key
+
+
+def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
+    """Leave out what only follows from another error: a rule for a kind that is unknown, a key that is misspelt."""
+    unknown_kind = {e.path[:-1] for e in errors if e.keyword == "enum" and not e.conditional and e.path}
+    wrong = {e.path for e in errors if not e.conditional}
+    meant: dict[Path, set[str | None]] = {}
+    for error in errors:
+        names = meant.setdefault(error.path, set())
+        if error.keyword == "additionalProperties":
+            names.update(error.unexpected)
+            names.update(nearest(key, error.schema["properties"]) for key in error.unexpected)
+        if error.keyword == "dependentRequired":
+            names.update(error.found)
+    for error in errors:
+        if error.conditional and (error.path in unknown_kind or _repeats(error, meant[error.path], wrong)):
+            continue
+        if meant[error.path].isdisjoint(error.missing):
+            yield error
+
+
+def _repeats(error: Misshape, meant: set[str | None], wrong: set[Path]) -> bool:
+    """Whether a conditional error is about a key or a value that is reported without any condition."""
+    if error.of_name:
+        return error.found in meant
+    return error.path in wrong and error.keyword in ("type", "enum", "const")
+
+
+def _report(error: Misshape, collector: Collector) -> None:
+    about = {}
+    if len(error.path) > 1 and error.path[0] in _ABOUT:
+        about[_ABOUT[str(error.path[0])]] = str(error.path[1])
+    for rule, message, spot in worded(error):
+        collector.error(rule, message, spot.place, **about)

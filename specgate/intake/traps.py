@@ -1,0 +1,80 @@
+"""What YAML does behind the writer's back, in words: hints that are added to messages."""
+
+from __future__ import annotations
+
+import re
+
+from specgate.intake.nodes import Nothing, Table, Text
+
+_TRUTHS = {"yes": "true", "on": "true", "y": "true", "no": "false", "off": "false", "n": "false"}
+_UNDERSCORES = re.compile(r"[+-]?[0-9]+(_[0-9]+)+(\.[0-9_]+)?")
+_CLOCK = re.compile(r"[0-9]+(:[0-9]{2}){1,2}")
+_COMMA = re.compile(r"[+-]?[0-9]+,[0-9]+")
+
+_INDICATORS = {
+    "%": "a value that begins with % needs quotes: write '%'",
+    "@": "a value that begins with @ needs quotes",
+    "`": "a value that begins with ` needs quotes",
+    "\t": "a tab is no indentation in YAML: use spaces",
+    "|": "a value that begins with | needs quotes",
+    ">": "a value that begins with > needs quotes",
+}
+
+
+def scalar_hint(text: str) -> str | None:
+    """Say why a text is not the number or yes/no that it looks like, or return None."""
+    if text.lower() in _TRUTHS:
+        return f"`{text}` is text in YAML 1.2: write {_TRUTHS[text.lower()]}"
+    number = re.split(r"\s", text, maxsplit=1)[0]
+    if _UNDERSCORES.fullmatch(number):
+        return f"`{number}` is text in YAML 1.2: write {number.replace('_', '')}"
+    if _CLOCK.fullmatch(number):
+        return f"`{number}` is text in YAML 1.2, not a number in base 60: write a quantity with its unit"
+    if _COMMA.fullmatch(number):
+        return f"the decimal sign is a point: write {number.replace(',', '.')}"
+    return None
+
+
+def split_by_comma(table: Table, key: Text) -> str | None:
+    """Say that a comma inside braces has split a text, if `key` looks like the part that was cut off."""
+    value = table.entries[key.value].value
+    if not table.braces or not isinstance(value, Nothing):
+        return None
+    names = list(table.entries)
+    position = names.index(key.value)
+    if position == 0:
+        return None
+    before = table.entries[names[position - 1]]
+    start = before.value.value if isinstance(before.value, Text) else "…"
+    return f'a comma inside braces splits: put the text in quotes, `{before.key.value}: "{start}, {key.value}"`'
+
+
+def syntax_hint(lines: list[str], line: int, column: int, opened: tuple[int, int] | None, problem: str) -> str:
+    """Say what is most likely wrong where the YAML reader stopped (line and column from 0)."""
+    text = lines[line] if line < len(lines) else ""
+    rest, before = text[column:], text[:column]
+    if len(before) - len(before.rstrip("[{ ")) > 60:
+        return "nested too deep"
+    if "end of stream" in problem or "document indicator" in problem:
+        where = f"opened in line {opened[0] + 1}" if opened else "opened above"
+        return f"a quote or bracket {where} is never closed"
+    if rest[:1] in _INDICATORS:
+        return _INDICATORS[rest[0]]
+    if before[-1:] in ("|", ">"):
+        return _INDICATORS[before[-1]]
+    if "mapping values" in problem and before.strip().count(":") >= 1 and rest.startswith(":"):
+        return "a colon inside plain text: put the text in quotes"
+    if "mapping values" in problem:
+        return "a key stands deeper than the line above allows: check the indentation and the quotes of the line above"
+    if "sequence entries" in problem:
+        return "a list item cannot begin here: start the list on a line of its own"
+    if "escape" in problem:
+        return "a backslash inside double quotes begins an escape: use single quotes"
+    if re.search(r"""(['"\]}])\s*$""", before):
+        return "text goes on after a closing quote or bracket: put the whole value in quotes"
+    if "or ']'" in problem or "or '}'" in problem:
+        where = f" opened in line {opened[0] + 1}" if opened else ""
+        return f"a comma or the closing bracket of the list or braces{where} is missing"
+    if rest[:1] in ("%", "}", "]", ","):
+        return f"`{rest[0]}` cannot stand here: a value that begins with it needs quotes"
+    return "check the indentation, and put texts with : # , or brackets in quotes"

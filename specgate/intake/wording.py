@@ -1,0 +1,233 @@
+"""Errors of the schema validator in the words of the format: what was found, what was wanted, the nearest name."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+from specgate.intake.nodes import Items, Node, Nothing, Number, Spot, Table, Text, Truth, shown
+from specgate.intake.traps import scalar_hint, split_by_comma
+from specgate.terms.names import nearest
+
+Path = tuple[str | int, ...]
+Said = tuple[str, str, Spot]
+"""Rule, message, and where."""
+
+_TYPES = {
+    "string": "a text",
+    "number": "a number",
+    "integer": "a whole number",
+    "boolean": "true or false",
+    "array": "a list",
+    "object": "a table of keys",
+}
+
+
+@dataclass(frozen=True)
+class Misshape:
+    """One error of the schema validator with the node that it is about.
+
+    keyword: what of the schema is violated; wanted: the value of that keyword; schema: what surrounds it.
+    found: the plain value (the name itself where `of_name`, for a name of a key that is not allowed).
+    node: what stands there, None where it could not be read; key: the key before it.
+    conditional: whether this holds only because of something else (`then`, `else`).
+    """
+
+    keyword: str
+    wanted: Any
+    schema: Mapping[str, Any]
+    found: Any
+    path: Path
+    node: Node | None
+    key: Text | None
+    conditional: bool
+    of_name: bool
+
+    @property
+    def unexpected(self) -> list[str]:
+        """The keys that an `additionalProperties` error is about, in the order of the file."""
+        return [key for key in self.found if key not in self.schema["properties"]]
+
+    @property
+    def missing(self) -> tuple[str, ...]:
+        """The keys one of which would have put a `required`, `oneOf` or `anyOf` error right."""
+        if self.keyword == "required":
+            return tuple(key for key in self.wanted if key not in self.found)
+        if self.keyword in ("oneOf", "anyOf"):
+            names = tuple(key for branch in self.wanted for key in branch["required"])
+            return () if any(name in self.found for name in names) else names
+        return ()
+
+
+_ABOUT_KEYS = ("required", "oneOf", "anyOf", "not", "dependentRequired", "minProperties")
+"""Keywords that are about a table as a whole: said at its key."""
+
+
+def worded(error: Misshape) -> Iterator[Said]:
+    """Give what there is to say about one error; nothing about what could not be read."""
+    rule = error.schema.get("x-rule", "schema-violation")
+    node, key = error.node, error.key
+    if node is None:
+        return
+    if error.keyword == "additionalProperties" and isinstance(node, Table):
+        for name in error.unexpected:
+            yield rule, _unexpected(name, error, node), node.entries[name].key.spot
+    elif error.keyword == "required":
+        for name in error.missing:
+            yield rule, _required(name, error), key.spot if key is not None else node.spot
+    elif error.of_name and isinstance(node, Table):
+        yield rule, _name(error), node.entries[str(error.found)].key.spot
+    else:
+        speak = _WORDS.get(error.keyword, _other)
+        yield rule, speak(error, node), key.spot if error.keyword in _ABOUT_KEYS and key is not None else node.spot
+
+
+def _unexpected(name: str, error: Misshape, table: Table) -> str:
+    comma = split_by_comma(table, table.entries[name].key)
+    if comma is not None:
+        return f"`{name}` is no key: {comma}"
+    known = error.schema["properties"]
+    close = nearest(name, known)
+    where = f"`{_cut(name)}` is not a key of {error.schema.get('title', 'this table')}"
+    if close is not None:
+        return f"{where}: did you mean `{close}`?"
+    return f"{where}, which has {_listed(list(known), 'and')}"
+
+
+def _name(error: Misshape) -> str:
+    """Say what is wrong with the name of a key."""
+    found = str(error.found)
+    said = error.schema.get("x-say")
+    if said is not None:
+        return str(said).replace("{found}", _cut(found))
+    if error.keyword == "enum":
+        return _nearest_of(found, error.wanted, error.schema)
+    return f"`{_cut(found)}` is not {error.schema.get('x-wanted', 'a name that can be used here')}"
+
+
+def _type(error: Misshape, node: Node) -> str:
+    wanted = _wanted(error)
+    message = f"{wanted} is wanted here, found {shown(node)}"
+    hint = _type_hint(error, node)
+    return f"{message}: {hint}" if hint else message
+
+
+def _type_hint(error: Misshape, node: Node) -> str | None:
+    types = error.wanted if isinstance(error.wanted, list) else [error.wanted]
+    match node:
+        case Text(value=value):
+            return scalar_hint(value) or ("write a list, `[…]`" if types == ["array"] else None)
+        case Number() | Truth() if "string" in types:
+            return "put it in quotes if it is meant as text"
+        case Nothing():
+            return "fill it in, or leave the key out"
+        case Table(braces=True) if "string" in types:
+            return "a text that begins with { needs quotes"
+        case Items() if types == ["string"]:
+            return "one text only, without brackets"
+    return None
+
+
+def _wanted(error: Misshape) -> str:
+    if "x-wanted" in error.schema:
+        return str(error.schema["x-wanted"])
+    types = error.schema.get("type", [])
+    return _listed([_TYPES[name] for name in ([types] if isinstance(types, str) else types)], "or")
+
+
+def _enum(error: Misshape, node: Node) -> str:
+    if "x-say" in error.schema:
+        return str(error.schema["x-say"]).replace("{found}", _cut(str(error.found)))
+    if not isinstance(node, Text):
+        return f"{_listed(error.wanted, 'or')} is wanted here, found {shown(node)}"
+    return _nearest_of(node.value, error.wanted, error.schema)
+
+
+def _nearest_of(found: str, known: Sequence[str], schema: Any) -> str:
+    close = nearest(found, known)
+    if close is not None:
+        return f"`{_cut(found)}` is not known here: did you mean `{close}`?"
+    wanted = f"{schema['x-wanted']}: " if "x-wanted" in schema else ""
+    return f"`{_cut(found)}` is not known here: wanted is {wanted}{_listed(list(known), 'or')}"
+
+
+def _required(name: str, error: Misshape) -> str:
+    text = error.schema.get("properties", {}).get(name, {}).get("description", "")
+    about = f" ({_first_sentence(text)})" if text else ""
+    return f"`{name}` is missing{_in(error)}{about}"
+
+
+def _one_of(error: Misshape, node: Node) -> str:
+    names = [branch["required"][0] for branch in error.wanted]
+    given = [name for name in names if name in error.found]
+    wanted = _listed([f"`{name}`" for name in names], "or")
+    if len(given) > 1:
+        return (
+            f"{_listed([f'`{name}`' for name in given], 'and')} exclude each other: exactly one of {wanted} is wanted"
+        )
+    return f"exactly one of {wanted} is wanted{_in(error)}, found none of them"
+
+
+def _any_of(error: Misshape, node: Node) -> str:
+    names = [f"`{branch['required'][0]}`" for branch in error.wanted]
+    return f"at least one of {_listed(names, 'or')} is wanted{_in(error)}"
+
+
+def _dependent(error: Misshape, node: Node) -> str:
+    for given, needed in error.wanted.items():
+        for name in needed:
+            if given in error.found and name not in error.found:
+                return f"`{given}` needs `{name}` beside it"
+    return _other(error, node)
+
+
+def _wanted_here(error: Misshape, node: Node) -> str:
+    return f"{_wanted(error)} is wanted here, found {shown(node)}"
+
+
+def _repeated(error: Misshape, node: Node) -> str:
+    return "an entry of this list is written twice"
+
+
+def _other(error: Misshape, node: Node) -> str:
+    said = error.schema.get("x-say")
+    if said is not None:
+        return str(said).replace("{found}", _cut(str(error.found)))
+    return f"this is not what the format allows here, found {shown(node)}"
+
+
+_WORDS: dict[str, Callable[[Misshape, Node], str]] = {
+    "type": _type,
+    "enum": _enum,
+    "const": _other,
+    "oneOf": _one_of,
+    "anyOf": _any_of,
+    "dependentRequired": _dependent,
+    "format": _wanted_here,
+    "minItems": _wanted_here,
+    "maxItems": _wanted_here,
+    "minProperties": _wanted_here,
+    "pattern": _wanted_here,
+    "minimum": _wanted_here,
+    "maximum": _wanted_here,
+    "uniqueItems": _repeated,
+}
+
+
+def _in(error: Misshape) -> str:
+    title = error.schema.get("title")
+    return f" in {title}" if title else ""
+
+
+def _first_sentence(text: str) -> str:
+    return text.split(". ")[0].rstrip(".")
+
+
+def _listed(words: Sequence[object], joint: str) -> str:
+    texts = [str(word) for word in words]
+    return texts[0] if len(texts) == 1 else f"{', '.join(texts[:-1])} {joint} {texts[-1]}"
+
+
+def _cut(text: str) -> str:
+    return text if len(text) <= 60 else text[:59] + "…"
