@@ -13,9 +13,9 @@ from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, evaluate, infer, written_numbers
 from specgate.project.percent import refuse_ambiguous, relative_to_change
 from specgate.project.rational_forms import refuse_written_rate
-from specgate.project.signals import LoopSignals, span
+from specgate.project.signals import LoopSignals
 from specgate.project.subsystem_checks import wants
-from specgate.project.types import Criterion, Limit, Project, Requirement, Value
+from specgate.project.types import Criterion, Limit, Requirement, Value
 from specgate.terms.dimensions import DIMENSIONLESS, RATE, TIME, Dimension
 from specgate.terms.expressions import PercentOf, as_dimension, literal_unit
 from specgate.terms.unit import ONE, Unit
@@ -58,19 +58,15 @@ _ONE_SIDED = {("maximum_value", "at_most"), ("minimum_value", "at_least")}
 class CriterionCheck:
     """The checks of one criterion; `unit` is that of the signal it is about, 1 for a break or a loop."""
 
-    def __init__(self, project: Project, criterion: Criterion, values: Values) -> None:
-        self.project, self.criterion, self.values = project, criterion, values
+    def __init__(self, signals: LoopSignals, criterion: Criterion, values: Values) -> None:
+        self.criterion, self.values = criterion, values
         self.measure: Measure = MEASURES[criterion.measure]
-        self.unit, self.span = self._signal()
-
-    def _signal(self) -> tuple[Unit, fmpq | None]:
-        """Return the unit and the span of the signal that the criterion is about. Raises Fault."""
-        subject = self.criterion.subject
-        loop = self.project.loops[subject.loop]
-        if subject.kind != "response" or subject.name is None:
-            return ONE, None
-        to = loop.responses[subject.name].to
-        return LoopSignals(self.project, loop, self.values).unit(to), span(self.project, loop.name, to, self.values)
+        self.unit: Unit = ONE
+        self.span: fmpq | None = None
+        subject = criterion.subject
+        if subject.kind == "response" and subject.name is not None:
+            to = signals.loop.responses[subject.name].to
+            self.unit, self.span = signals.unit(to), signals.span(to)
 
     # --- limits -------------------------------------------------------------------------------------------
 
@@ -216,9 +212,14 @@ class CriterionCheck:
             raise Fault(faults.DIMENSION, message, value.place)
 
 
-def check_requirement(project: Project, requirement: Requirement, values: Values, found: Faults) -> None:
-    """Note everything wrong with the limits, arguments and claims of a requirement."""
-    checks = [_check_criterion(project, criterion, values, found, requirement.id) for criterion in requirement.criteria]
+def check_requirement(
+    requirement: Requirement, signals: Mapping[str, LoopSignals], values: Values, found: Faults
+) -> None:
+    """Note everything wrong with the limits, arguments and claims of a requirement; `signals` by loop."""
+    checks = [
+        _check_criterion(signals[criterion.subject.loop], criterion, values, found, requirement.id)
+        for criterion in requirement.criteria
+    ]
     claimed = requirement.basis.claimed if requirement.basis is not None else None
     usable = [check for check in checks if check is not None]
     if claimed is None or not usable:
@@ -234,10 +235,10 @@ def check_requirement(project: Project, requirement: Requirement, values: Values
 
 
 def _check_criterion(
-    project: Project, criterion: Criterion, values: Values, found: Faults, requirement: str
+    signals: LoopSignals, criterion: Criterion, values: Values, found: Faults, requirement: str
 ) -> CriterionCheck | None:
     try:
-        check = CriterionCheck(project, criterion, values)
+        check = CriterionCheck(signals, criterion, values)
     except Fault:
         return None  # the signal has no unit: said where the loop is checked
     with found.noted(requirement=requirement):

@@ -7,6 +7,7 @@ from specgate.project.criterion_checks import check_requirement
 from specgate.project.faults import Fault, Faults
 from specgate.project.loop_checks import check_loop
 from specgate.project.parameters import settle
+from specgate.project.signals import LoopSignals
 from specgate.project.subsystem_checks import check_subsystem
 from specgate.project.types import Project
 from specgate.terms.findings import Finding, in_order
@@ -25,10 +26,11 @@ def check(project: Project) -> tuple[Finding, ...]:
         built = check_subsystem(subsystem, values, found)
         if built is not None:
             blocks[name] = built
-    for loop in project.loops.values():
-        check_loop(project, loop, blocks, values, found)
+    signals = {name: LoopSignals(project, loop, values) for name, loop in project.loops.items()}
+    for name in project.loops:
+        check_loop(signals[name], blocks, found)
     for requirement in project.requirements.values():
-        check_requirement(project, requirement, values, found)
+        check_requirement(requirement, signals, values, found)
     return in_order((*findings, *found.findings))
 
 

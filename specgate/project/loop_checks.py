@@ -12,7 +12,7 @@ from specgate.project.percent import refuse_ambiguous
 from specgate.project.rational_forms import refuse_written_rate
 from specgate.project.signals import LoopSignals
 from specgate.project.subsystem_checks import wants
-from specgate.project.types import Excitation, Loop, Project, Value
+from specgate.project.types import Excitation, Value
 from specgate.project.wiring import wire
 from specgate.terms.dimensions import RATE, TIME, Dimension
 from specgate.terms.expressions import literal_unit
@@ -34,9 +34,9 @@ _QUANTITIES: Mapping[str, Callable[[Dimension], Dimension]] = {
 _NOT_ZERO = frozenset({"size", "amplitude", "slope", "curvature", "area", "density"})
 
 
-def check_loop(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values: Values, found: Faults) -> None:
+def check_loop(signals: LoopSignals, blocks: Mapping[str, BuiltBlock], found: Faults) -> None:
     """Note everything wrong with a loop; `blocks` are those of its subsystems that could be built."""
-    signals = LoopSignals(project, loop, values)
+    project, loop, values = signals.project, signals.loop, signals.values
     before = len(found.findings)
     for name in loop.signals:
         with found.noted(loop=loop.name):

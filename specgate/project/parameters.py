@@ -227,6 +227,9 @@ def _read(value: Value, values: Values, scope: str | None) -> dict[str, str]:
     known, read = values.scopes[scope], {}
     for node in expressions.references(value.expression):
         if isinstance(node, PercentOf) and node.name in SIGNAL_WORDS:
+            if node.name in known:
+                message = f"`{value.as_written}`: the signal's {node.name}, or the parameter of that name? Rename it"
+                raise Fault(faults.NAME, message, value.place)
             continue
         qualified = known.get(node.name)
         if qualified is None:

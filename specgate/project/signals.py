@@ -102,6 +102,14 @@ class LoopSignals:
         message = f"the unit of `{name}` cannot be told: it is made of nothing but itself"
         raise Fault(faults.DIMENSION, message, self.loop.signals[name].place)
 
+    def span(self, name: str) -> fmpq | None:
+        """Return high minus low of the span of the port that gives a signal; None without a span. Raises Fault."""
+        giver = self.givers.get(name)
+        if not isinstance(giver, Port) or giver.span is None:
+            return None
+        low, high = (evaluate(value, self.values, owner(self.project, giver)) for value in giver.span)
+        return high - low
+
     def _giver(self, node: SignalExpression) -> Giver | None:
         if isinstance(node, SignalName):
             return self.givers.get(node.name)
@@ -227,11 +235,7 @@ def span(project: Project, loop: str, signal: str, known: Values) -> fmpq | None
 
     Raises Fault.
     """
-    giver = LoopSignals(project, project.loops[loop], known).givers.get(signal)
-    if not isinstance(giver, Port) or giver.span is None:
-        return None
-    low, high = (evaluate(value, known, owner(project, giver)) for value in giver.span)
-    return high - low
+    return LoopSignals(project, project.loops[loop], known).span(signal)
 
 
 def owner(project: Project, port: Port) -> str | None:

@@ -30,8 +30,8 @@ __all__ = [
     "frequency_problem",
 ]
 
-RESERVED = frozenset({"s", "z", "pi", "of", "change", "span"})
-"""Names with a meaning of their own in expressions and in `% of …`: no unit may take them."""
+RESERVED = frozenset({"s", "z", "pi"})
+"""Names with a meaning of their own: no unit and no parameter may take them."""
 
 _LONGEST = 60
 _GREATEST_POWER = 9
