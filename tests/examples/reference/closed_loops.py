@@ -1,0 +1,196 @@
+"""Step figures of wired loops without specgate: state equations, matrix exponentials, bracketing.
+
+Blocks are state-space realisations, wired by solving one linear system for all signals. The response at a time is
+`scipy.linalg.expm` of the state matrix with the constant input appended; extremes and crossings are bracketed on an
+even grid of steps and closed by `scipy.optimize.brentq` on that same exponential, never on the grid's values.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from scipy.linalg import block_diag, expm
+from scipy.optimize import brentq
+from scipy.signal import tf2ss
+
+Matrix = np.ndarray
+Block = tuple[Matrix, Matrix, Matrix, Matrix]
+Sources = Mapping[object, float]
+"""Coefficients by what they multiply: an input, a signal, a block, or (block, index of its output)."""
+
+_TIGHT = {"xtol": 1e-13, "rtol": 1e-14}
+
+
+def transfer(numerator: list[float], denominator: list[float]) -> Block:
+    """Realise a transfer function, coefficients with the highest power first."""
+    if len(denominator) == 1:
+        return np.zeros((0, 0)), np.zeros((0, 1)), np.zeros((1, 0)), np.array([[numerator[0] / denominator[0]]])
+    return tf2ss(numerator, denominator)
+
+
+def gain(value: float) -> Block:
+    """Realise a constant."""
+    return transfer([value], [1.0])
+
+
+def lag(time: float, value: float = 1.0) -> Block:
+    """Realise value / (1 + time s)."""
+    return transfer([value], [time, 1.0])
+
+
+class Loop:
+    """Blocks, what feeds each of their inputs, and the signals; everything in SI."""
+
+    def __init__(
+        self,
+        inputs: list[str],
+        blocks: Mapping[str, Block],
+        feeds: Mapping[str, Sources | list[Sources]],
+        signals: Mapping[str, Sources],
+    ) -> None:
+        self.inputs, self.signals = inputs, list(signals)
+        names = list(blocks)
+        a, b, c, d = (_stack([blocks[name][k] for name in names]) for k in range(4))
+        fed = [(name, k) for name in names for k in range(blocks[name][1].shape[1])]
+        given = [(name, k) for name in names for k in range(blocks[name][2].shape[0])]
+        # unknowns are the signals, then the blocks' inputs, then their outputs
+        unknown: list[object] = [*signals, *(("into", *pair) for pair in fed), *given]
+        place = {name: row for row, name in enumerate(unknown)} | {
+            n: len(signals) + len(fed) + given.index((n, 0)) for n in names
+        }
+        left, from_inputs = np.eye(len(unknown)), np.zeros((len(unknown), len(inputs)))
+        rows: list[tuple[object, Sources]] = list(signals.items())
+        for name, feed in feeds.items():
+            rows += [
+                (("into", name, k), sources) for k, sources in enumerate(feed if isinstance(feed, list) else [feed])
+            ]
+        for target, sources in rows:
+            for source, factor in sources.items():
+                if source in inputs:
+                    from_inputs[place[target], inputs.index(str(source))] += factor
+                else:
+                    left[place[target], place[source]] -= factor
+        into, out = slice(len(signals), len(signals) + len(fed)), slice(len(signals) + len(fed), None)
+        left[out, into] -= d
+        from_states = np.zeros((len(unknown), a.shape[0]))
+        from_states[out] = c
+        by_states, by_inputs = np.linalg.solve(left, from_states), np.linalg.solve(left, from_inputs)
+        self.a, self.b = a + b @ by_states[into], b @ by_inputs[into]
+        self.c, self.d = by_states[: len(signals)], by_inputs[: len(signals)]
+
+    @property
+    def poles(self) -> list[complex]:
+        """Return every mode of the loop, sorted by real and imaginary part."""
+        return [complex(pole) for pole in np.sort_complex(np.linalg.eigvals(self.a))]
+
+    def step(self, source: str, target: str, size: float, horizon: float, final: float | None = None) -> Step:
+        """Drive one input with a step and look at one signal, up to a time by which nothing moves any more."""
+        j, i = self.inputs.index(source), self.signals.index(target)
+        return Step(self.a, self.b[:, j] * size, self.c[i], self.d[i, j] * size, horizon, final)
+
+
+def _stack(parts: list[Matrix]) -> Matrix:
+    stacked = block_diag(*parts)
+    shape = (sum(part.shape[0] for part in parts), sum(part.shape[1] for part in parts))
+    return np.asarray(stacked, float).reshape(shape)
+
+
+@dataclass(frozen=True)
+class Step:
+    """A step response; `final` is given by hand where the state matrix is singular (an integrator on the side)."""
+
+    a: Matrix
+    b: Matrix
+    c: Matrix
+    jump: float
+    horizon: float
+    known_final: float | None = None
+
+    @cached_property
+    def _matrix(self) -> Matrix:
+        order = len(self.b)
+        return np.block([[self.a, self.b.reshape(order, 1)], [np.zeros((1, order + 1))]])
+
+    @cached_property
+    def _row(self) -> Matrix:
+        return np.append(self.c, self.jump)
+
+    def at(self, time: float) -> float:
+        """Return the response at a time."""
+        return float(self._row @ expm(self._matrix * time)[:, -1])
+
+    def rate(self, time: float) -> float:
+        """Return the first derivative at a time."""
+        return float(self._row @ self._matrix @ expm(self._matrix * time)[:, -1])
+
+    @cached_property
+    def grid(self) -> tuple[Matrix, Matrix]:
+        """Return 20,000 even steps of time and the response there: brackets only."""
+        count = 20_000
+        advance = expm(self._matrix * (self.horizon / count))
+        state = np.append(np.zeros(len(self.b)), 1.0)
+        values = np.empty(count + 1)
+        for k in range(count + 1):
+            values[k] = self._row @ state
+            state = advance @ state
+        return np.linspace(0, self.horizon, count + 1), values
+
+    @cached_property
+    def final(self) -> float:
+        """Return the final value."""
+        if self.known_final is not None:
+            return self.known_final
+        return float(self.jump - self.c @ np.linalg.solve(self.a, self.b))
+
+    def extreme(self, sign: int) -> tuple[float, float | None]:
+        """Return the greatest (or least) value over t > 0 and its time; none where it is only approached."""
+        times, values = self.grid
+        scale = max(abs(self.final), float(np.max(np.abs(values))))
+        assert abs(values[-1] - self.final) < 1e-6 * scale, "the horizon is too short"
+        k = int(np.argmax(sign * values))
+        if k == len(times) - 1 or sign * (values[k] - self.final) <= 1e-9 * scale:
+            return self.final, None
+        if k == 0:
+            return self.jump, 0.0
+        time = float(brentq(self.rate, times[k - 1], times[k + 1], **_TIGHT))
+        return self.at(time), time
+
+    def settling(self, distance: float) -> float:
+        """Return the time after which the response stays within a distance of its final value."""
+        times, values = self.grid
+        k = int(np.nonzero(np.abs(values - self.final) > distance)[0][-1])
+        assert k < len(times) - 2, "the horizon is too short"
+        return float(brentq(lambda t: abs(self.at(t) - self.final) - distance, times[k], times[k + 1], **_TIGHT))
+
+    def arrival(self, fraction: float) -> float:
+        """Return the first time at which the response has come a fraction of the way to its final value."""
+        times, values = self.grid
+        k = int(np.nonzero(values / self.final >= fraction)[0][0])
+        if k == 0:
+            return 0.0
+        return float(brentq(lambda t: self.at(t) / self.final - fraction, times[k - 1], times[k], **_TIGHT))
+
+    def figures(self) -> dict[str, float | None]:
+        """Return the figures of a response that settles, in SI and per cent."""
+        (greatest, when), (least, when_least) = self.extreme(1), self.extreme(-1)
+        found: dict[str, float | None] = {
+            "final_value": self.final,
+            "initial_value": self.jump,
+            "maximum_value": max(greatest, self.jump),
+            "minimum_value": min(least, self.jump),
+        }
+        found["peak_deviation"] = max(abs(greatest), abs(least))
+        if self.final == 0:
+            return found
+        up = self.final > 0
+        past, back = (greatest, least) if up else (least, greatest)
+        found["overshoot"] = max(0.0, (past / self.final - 1) * 100)
+        found["undershoot"] = max(0.0, -back / self.final * 100)
+        found["peak_time"] = when if up else when_least
+        found["settling_time"] = self.settling(abs(self.final) * 0.02)
+        found["rise_time"] = self.arrival(0.9) - self.arrival(0.1)
+        found["delay_time"] = self.arrival(0.5)
+        return found
