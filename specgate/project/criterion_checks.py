@@ -89,6 +89,9 @@ class CriterionCheck:
     def counted(self, value: Value) -> None:
         """Check that a limit or a claim is in a unit of the measure. Raises Fault."""
         rule = self.measure.unit
+        if rule is UnitRule.YES_NO:
+            message = f"`{value.as_written}`: {self.measure.name} is yes or no, which no value can stand for"
+            raise Fault(faults.DIMENSION, message, value.place)
         self._decibel(value)
         if rule in _OF_SIGNAL:
             refuse_ambiguous(value, self.unit)
