@@ -26,9 +26,10 @@ class Found:
 class Condition:
     """One condition of an approximation's range.
 
-    key: short name by which a project's policy may tighten `threshold`. required: words with `{threshold}`.
-    tighter: the direction in which a threshold gets stricter. source: published (author, year, place),
-    "common practice" or "derived".
+    key: short name by which a project's policy may tighten `threshold`. name, required: words in which
+    `{threshold}` may stand (see `named`, `asked`). tighter: the direction in which a threshold gets stricter.
+    source: published (author, year, place), "common practice" or "derived". concerns: the measures for whose
+    estimate it is needed; all if empty.
     """
 
     key: str
@@ -38,6 +39,26 @@ class Condition:
     find: Callable[[Features, Arguments, fmpq | None], Found]
     threshold: fmpq | None = None
     tighter: Literal["larger", "smaller"] = "larger"
+    concerns: tuple[str, ...] = ()
+
+    def named(self, threshold: fmpq | None) -> str:
+        """Return the condition in words, with the threshold in force."""
+        return self.name.format(threshold=_plain(threshold))
+
+    def asked(self, threshold: fmpq | None) -> str:
+        """Return what is required, with the threshold in force."""
+        return self.required.format(threshold=_plain(threshold))
+
+    def stricter(self, threshold: fmpq) -> bool:
+        """Whether a threshold tightens the row's own (the same counts); a project may not loosen it."""
+        if self.threshold is None:
+            return False
+        return threshold >= self.threshold if self.tighter == "larger" else threshold <= self.threshold
+
+
+def _plain(threshold: fmpq | None) -> str:
+    """Return a threshold as a short decimal."""
+    return "" if threshold is None else f"{int(threshold.p) / int(threshold.q):.6g}"
 
 
 @dataclass(frozen=True)
@@ -53,10 +74,11 @@ class Accuracy:
 class Approximation:
     """One row: formula, range, stated accuracy, source.
 
-    estimates: names of the measures it estimates. evaluate: formula on this response, in the unit in which the
-    measure is read (SI, ratios plain); absent where the features it needs do not exist.
+    estimates: names of the measures it estimates; `Arguments.measure` says which one is asked for (the first, if
+    it is not set). evaluate: formula on this response, in the unit in which the measure is read (SI, ratios plain);
+    absent where the features it needs do not exist.
     accuracy: None where nothing is stated for these arguments.
-    premises: names of approximations whose conditions belong to this one.
+    premises: names of approximations whose conditions belong to this one (see `table.conditions`).
     text: the user's text (the module's docstring).
     """
 

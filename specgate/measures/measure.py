@@ -59,6 +59,8 @@ class Arguments:
 
     absolute: overshoot and undershoot are asked for in the signal's unit instead of as a fraction of the change.
     time: instant at which `value_at` is read, seconds from the step.
+    measure: name of the measure that is asked for; set wherever approximations are evaluated, because several of
+        them estimate more than one.
     """
 
     band: Band | None = None
@@ -66,6 +68,7 @@ class Arguments:
     upper: fmpq = fmpq(9, 10)
     absolute: bool = False
     time: fmpq | None = None
+    measure: str = ""
 
 
 Reader = Callable[[Any, Arguments], Answer]

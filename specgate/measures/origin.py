@@ -2,16 +2,10 @@
 
 from __future__ import annotations
 
-from flint import fmpq_poly
-
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.answers import Answer
-
-
-def order_at_origin(polynomial: fmpq_poly) -> int:
-    """Return how often s divides a polynomial that is not zero."""
-    return next(power for power, coefficient in enumerate(polynomial.coeffs()) if coefficient != 0)
+from specgate.systems.polynomials import order_at_origin
 
 
 def _poles(subject: ResponseSubject, _: Arguments) -> Answer:
@@ -20,7 +14,7 @@ def _poles(subject: ResponseSubject, _: Arguments) -> Answer:
 
 def _zeros(subject: ResponseSubject, _: Arguments) -> Answer:
     numerator = subject.channel.reduced().numerator
-    if numerator == 0:
+    if not numerator:
         return Answer.nothing("the signal does not react to this input at all")
     return Answer.of_exact(order_at_origin(numerator))
 

@@ -1,0 +1,139 @@
+"""Comparisons that conditions are made of. What cannot be decided is not taken to hold."""
+
+from __future__ import annotations
+
+from collections.abc import Collection
+
+from flint import arb, fmpq
+
+from specgate.approximations.approximation import Condition, Found
+from specgate.approximations.features import Features
+from specgate.approximations.figures import SHOWN
+from specgate.measures.measure import Arguments
+from specgate.measures.reading import sign_of
+from specgate.response.answers import Answer
+from specgate.terms.precision import working_precision
+from specgate.terms.verdicts import Trilean
+
+
+def words(text: str, holds: bool) -> Found:
+    """Return a finding in words on a question that is decided."""
+    return Found(text, Trilean.of(holds))
+
+
+def count(number: int, holds: bool) -> Found:
+    """Return a whole number that was found."""
+    return Found(number, Trilean.of(holds))
+
+
+def _settles(features: Features, _: Arguments, __: fmpq | None) -> Found:
+    if features.hidden_instability is not None:
+        return words(features.hidden_instability.reason, False)
+    return words("all are" if features.stable else "at least one is not", features.stable)
+
+
+SETTLES = Condition(
+    key="stable",
+    name="the response settles",
+    source="derived",
+    required="all poles strictly left of the imaginary axis",
+    find=_settles,
+)
+"""That the response has a final value at all, decided exactly."""
+
+
+def _no_zeros(features: Features, _: Arguments, __: fmpq | None) -> Found:
+    return count(len(features.zeros), not features.zeros)
+
+
+NO_ZEROS = Condition(key="zeros", name="no zeros", source="derived", required="0 zeros", find=_no_zeros)
+"""That the numerator is a constant."""
+
+
+def percent(part: fmpq) -> str:
+    """Return a fraction as per cent in words."""
+    return f"{100 * int(part.p) / int(part.q):g} %"
+
+
+def relative_band(arguments: Arguments) -> fmpq | None:
+    """Return the settling band as a fraction of the change, None where it is a distance or not given."""
+    band = arguments.band
+    return band.size if band is not None and band.relative else None
+
+
+def band_condition(allowed: Collection[fmpq], source: str) -> Condition:
+    """Return the condition that the band is one of those the formula has a number for."""
+
+    def find(_: Features, arguments: Arguments, __: fmpq | None) -> Found:
+        band = relative_band(arguments)
+        if band is None:
+            return words("a distance in the signal's unit", False)
+        return words(f"{percent(band)} of the change", band in allowed)
+
+    names = [percent(band) for band in allowed]
+    return Condition(
+        key="band",
+        name="settling band",
+        source=source,
+        required=f"{' or '.join(names)} of the change",
+        find=find,
+        concerns=("settling_time",),
+    )
+
+
+def narrow_band_condition(widest: fmpq) -> Condition:
+    """Return the condition that the band is in per cent of the change and not wider than the accuracy was shown for."""
+
+    def find(_: Features, arguments: Arguments, threshold: fmpq | None) -> Found:
+        band = relative_band(arguments)
+        if band is None:
+            return words("a distance in the signal's unit", False)
+        return words(f"{percent(band)} of the change", threshold is not None and band <= threshold)
+
+    return Condition(
+        key="band",
+        name="settling band",
+        source="derived",
+        required="a band of at most {threshold} of the change",
+        find=find,
+        threshold=widest,
+        tighter="smaller",
+        concerns=("settling_time",),
+    )
+
+
+def at_least(value: Answer, threshold: fmpq) -> Found:
+    """Return what was found against a lower threshold."""
+    return Found(value.enclose(SHOWN), _decided(_sign(value, threshold), 1))
+
+
+def at_most(value: Answer, threshold: fmpq) -> Found:
+    """Return what was found against an upper threshold."""
+    return Found(value.enclose(SHOWN), _decided(_sign(value, threshold), -1))
+
+
+def between(value: Answer, low: fmpq, high: fmpq) -> Found:
+    """Return what was found against a range, its ends included."""
+    both = (_decided(_sign(value, low), 1), _decided(_sign(value, high), -1))
+    if any(side is Trilean.NO for side in both):
+        holds = Trilean.NO
+    else:
+        holds = Trilean.of(True) if all(side is Trilean.YES for side in both) else Trilean.UNKNOWN
+    return Found(value.enclose(SHOWN), holds)
+
+
+def _sign(value: Answer, threshold: fmpq) -> int | None:
+    """Return the sign of value minus threshold, None where it stays undecided."""
+    if value.exact is not None:
+        return int(value.exact > threshold) - int(value.exact < threshold)
+
+    def difference(bits: int) -> arb:
+        ball = value.enclose(bits)
+        with working_precision(bits):
+            return ball - threshold
+
+    return sign_of(difference)
+
+
+def _decided(sign: int | None, wanted: int) -> Trilean:
+    return Trilean.UNKNOWN if sign is None else Trilean.of(sign in (0, wanted))

@@ -1,0 +1,75 @@
+"""How closely other poles and zeros crowd the dominant pair, and the accuracy that is stated for it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from flint import arb, fmpq
+
+from specgate.approximations.approximation import Accuracy
+from specgate.approximations.features import Features
+from specgate.approximations.figures import quotient, total
+from specgate.response.answers import Answer
+from specgate.terms.precision import working_precision
+
+Ranges = Sequence[tuple[int, int]]
+"""Signed ranges in thousandths: pair alone; crowding up to 1/5; up to 2/5."""
+
+SINGLE, SEVERAL = fmpq(1, 5), fmpq(2, 5)
+"""Crowding by one pole or zero at the nearest place allowed; by the most that any accuracy is stated for."""
+
+
+def by_decay_rates(features: Features) -> Answer | None:
+    """Return the sum of sigma/(decay rate of a pole) and sigma/(distance of a zero); None where it has no value."""
+    sigma = features.sigma
+    figures = [pole.decay for pole in features.others] + [zero.distance for zero in features.zeros]
+    if sigma is None or not features.stable or any(figure.exact == 0 for figure in figures):
+        return None
+    return total([quotient(sigma, figure) for figure in figures])
+
+
+def by_distances(features: Features) -> Answer | None:
+    """Return the sum of wn/(distance from the origin) over the other poles and zeros; None where it has no value."""
+    frequency = features.natural_frequency
+    figures = [spot.distance for spot in (*features.others, *features.zeros)]
+    if frequency is None or any(figure.exact == 0 for figure in figures):
+        return None
+    return total([quotient(frequency, figure) for figure in figures])
+
+
+def in_decay_rates(features: Features, ranges: Ranges) -> Accuracy | None:
+    """Return the accuracy that holds for this response, crowding measured in decay rates."""
+    return _stated(features, by_decay_rates(features), ranges)
+
+
+def in_distances(features: Features, ranges: Ranges) -> Accuracy | None:
+    """Return the accuracy that holds for this response, crowding measured in distances from the origin."""
+    return _stated(features, by_distances(features), ranges)
+
+
+def _stated(features: Features, crowding: Answer | None, ranges: Ranges) -> Accuracy | None:
+    alone, single, several = ranges
+    if features.alone:
+        return _accuracy(alone, "the pair alone")
+    if crowding is None:
+        return None
+    if _surely_at_most(crowding, SINGLE):
+        return _accuracy(single, "with another pole or zero at the nearest place allowed, or the like of it")
+    if _surely_at_most(crowding, SEVERAL):
+        return _accuracy(several, "with several other poles or zeros near the nearest place allowed")
+    return None
+
+
+def _surely_at_most(value: Answer, limit: fmpq) -> bool:
+    if value.exact is not None:
+        return value.exact <= limit
+    ball = value.enclose(128)
+    with working_precision(128):
+        return bool(ball <= arb(limit))
+
+
+def _accuracy(thousandths: tuple[int, int], where: str) -> Accuracy:
+    low, high = thousandths
+    if low == high == 0:
+        return Accuracy(fmpq(0), fmpq(0), f"exact ({where})")
+    return Accuracy(fmpq(low, 1000), fmpq(high, 1000), f"{low / 10:+g} to {high / 10:+g} % ({where})")

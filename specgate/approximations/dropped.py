@@ -1,0 +1,67 @@
+"""What is lost when everything but the dominant pair is dropped: other modes, and amplitude of the pair's own."""
+
+from __future__ import annotations
+
+from flint import arb, fmpq
+
+from specgate.approximations.features import Features
+from specgate.approximations.spots import Spot
+from specgate.response.answers import Answer
+from specgate.response.modes import Expansion, Mode, expand
+from specgate.terms.precision import working_precision
+
+
+def dropped_share(features: Features, band: fmpq) -> Answer | None:
+    """Return how much of a settling band the dropped modes may still fill when the pair enters it.
+
+    The bound of their sum at t = ln(1/band)/sigma, in parts of band times change; None where there is no such time.
+    """
+    pair = _simple_pair(features)
+    if pair is None or not 0 < band < 1:
+        return None
+
+    def refine(bits: int) -> arb:
+        expansion = _expansion(features, bits)
+        place = pair.at(bits)
+        with working_precision(expansion.bits):
+            time = -arb(band).log() / -place.real
+            left = [_envelope(mode, time) for mode in expansion.modes if not mode.pole.overlaps(place)]
+            return sum(left, arb(0)) / (band * abs(arb(expansion.offset)))
+
+    return Answer.of_ball(refine)
+
+
+def pair_amplitude(features: Features) -> Answer | None:
+    """Return the amplitude of the pair's oscillation in parts of what it has in the response of the pair alone."""
+    pair = _simple_pair(features)
+    if pair is None:
+        return None
+
+    def refine(bits: int) -> arb:
+        expansion = _expansion(features, bits)
+        place = pair.at(bits)
+        with working_precision(expansion.bits):
+            full = next(mode for mode in expansion.modes if mode.pole.overlaps(place))
+            alone = abs(place) / place.imag
+            return abs(full.coefficients[0]) / (abs(arb(expansion.offset)) * alone)
+
+    return Answer.of_ball(refine)
+
+
+def _simple_pair(features: Features) -> Spot | None:
+    """Return the pair where it is simple and decays, and the change is not zero."""
+    pair = features.pair
+    if pair is None or not features.stable or not features.steady_gain:
+        return None
+    return None if any(pole.index == pair.index for pole in features.others) else pair
+
+
+def _expansion(features: Features, bits: int) -> Expansion:
+    channel = features.channel
+    return expand(channel.numerator, channel.denominator, fmpq(1), bits)
+
+
+def _envelope(mode: Mode, time: arb) -> arb:
+    """Return the bound of a mode at a time."""
+    powers = [abs(coefficient) * time**j for j, coefficient in enumerate(mode.coefficients)]
+    return sum(powers, arb(0)) * (mode.pole.real * time).exp()

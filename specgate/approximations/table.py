@@ -1,0 +1,88 @@
+"""The catalogue of approximations: rows of this version, and the names of those that come later."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+
+from specgate.approximations import (
+    distant_zero,
+    dominant_pair,
+    final_value_theorem,
+    first_order_settling,
+    real_poles_settling,
+    second_order_overshoot,
+    second_order_peak_time,
+    second_order_settling,
+    slowest_pole_settling,
+)
+from specgate.approximations.approximation import Approximation, Condition
+
+_ROWS = (
+    final_value_theorem,
+    first_order_settling,
+    second_order_settling,
+    slowest_pole_settling,
+    real_poles_settling,
+    second_order_overshoot,
+    second_order_peak_time,
+    dominant_pair,
+    distant_zero,
+)
+
+APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for module in _ROWS}
+"""Every approximation that this version audits, by its name in the format."""
+
+LATER: Mapping[str, str] = {
+    "first_order_rise": "rise time of a single lag",
+    "settling_envelope": "upper bound of the settling time from the envelope of a pair",
+    "second_order_rise": "rise time of a pair, in five published variants",
+    "second_order_rise_full": "time of a pair to its first arrival at the final value",
+    "second_order_delay": "delay time of a pair",
+    "near_cancellation": "a pole is dropped with a zero beside it",
+    "right_half_plane_undershoot": "least undershoot that a zero to the right of the axis forces",
+    "damping_from_phase_margin": "damping ratio as phase margin over 100 deg",
+    "overshoot_from_phase_margin": "overshoot by way of the damping ratio from the phase margin",
+    "bandwidth_from_pair": "bandwidth of a pair",
+    "rise_from_bandwidth": "rise time as 2.2 over bandwidth",
+    "resonance_from_damping": "resonance peak of a pair",
+    "margins_from_sensitivity": "least margins that a sensitivity peak leaves",
+    "delay_margin_from_phase_margin": "delay margin as phase margin over crossover frequency",
+    "static_error_constants": "steady-state errors from the error constants",
+    "pade_dead_time": "dead time as a rational function",
+    "half_rule": "a high-order model as one of low order with dead time",
+    "hold_as_delay": "a hold as a dead time of half the period",
+    "fast_sampling_as_continuous": "a sampled controller as a continuous one",
+    "dead_time_limit": "highest crossover frequency that a dead time leaves",
+    "right_half_plane_zero_limit": "highest crossover frequency that a zero to the right of the axis leaves",
+    "unstable_pole_limit": "lowest crossover frequency that an unstable pole asks for",
+    "inner_loop_as_lag": "an inner loop as a single lag",
+    "desired_lag": "a closed loop as the lag it was tuned for",
+    "linear_range": "the linear model itself, within the range of its signals",
+    "small_tail": "a very slow pole as an integrator, or not at all",
+}
+"""Names of the catalogue that are read and kept, and not audited yet: name and what it is."""
+
+
+def conditions(name: str, measure: str) -> tuple[tuple[Approximation, Condition], ...]:
+    """Return every condition on an estimate of `measure`, with the row it belongs to: those of premises first.
+
+    Each row counts once, however often it is a premise. Raises KeyError for a name that is not in the table.
+    """
+    return tuple(
+        (row, condition)
+        for row in chain(name)
+        for condition in row.conditions
+        if not condition.concerns or measure in condition.concerns
+    )
+
+
+def chain(name: str) -> tuple[Approximation, ...]:
+    """Return an approximation with all its premises before it. Raises KeyError for an unknown name."""
+    return tuple({row.name: row for row in _with_premises(name)}.values())
+
+
+def _with_premises(name: str) -> Iterator[Approximation]:
+    row = APPROXIMATIONS[name]
+    for premise in row.premises:
+        yield from _with_premises(premise)
+    yield row

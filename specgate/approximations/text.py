@@ -1,0 +1,38 @@
+"""What `specgate explain` says of an approximation."""
+
+from __future__ import annotations
+
+from specgate.approximations.approximation import Approximation
+from specgate.approximations.table import APPROXIMATIONS, LATER, chain
+from specgate.measures.text import Explanation
+
+
+def describe(name: str) -> Explanation:
+    """Return the text on an approximation. Raises KeyError for a name that the catalogue does not know."""
+    if name in LATER:
+        what = f"{LATER[name][0].upper()}{LATER[name][1:]}."
+        return Explanation(name, f"{what}\n\nThis version reads and keeps it, and does not audit it yet.", "")
+    row = APPROXIMATIONS[name]
+    parts = (
+        row.text.strip(),
+        f"Formula: {row.formula}.",
+        f"Estimates: {', '.join(row.estimates)}.",
+        _range(name),
+        _alternatives(row),
+    )
+    return Explanation(row.title, "\n\n".join(part for part in parts if part), row.source)
+
+
+def _range(name: str) -> str:
+    lines = []
+    for row in chain(name):
+        for condition in row.conditions:
+            words = f"  {condition.named(condition.threshold)}: {condition.asked(condition.threshold)}"
+            whose = "" if row.name == name else f" (premise {row.name})"
+            needed = f" [for {', '.join(condition.concerns)}]" if condition.concerns else ""
+            lines.append(f"{words}{whose}{needed}; {condition.source}")
+    return "\n".join(["Range:", *lines])
+
+
+def _alternatives(row: Approximation) -> str:
+    return f"Where it does not apply: {', '.join((*row.alternatives, 'the computed value'))}."
