@@ -129,14 +129,16 @@ class Step:
     @cached_property
     def grid(self) -> tuple[Matrix, Matrix]:
         """Return 20,000 even steps of time and the response there: brackets only."""
-        count = 20_000
+        count, block = 20_000, 200
         advance = expm(self._matrix * (self.horizon / count))
-        state = np.append(np.zeros(len(self.b)), 1.0)
-        values = np.empty(count + 1)
-        for k in range(count + 1):
-            values[k] = self._row @ state
-            state = advance @ state
-        return np.linspace(0, self.horizon, count + 1), values
+        states = [np.append(np.zeros(len(self.b)), 1.0)]
+        for _ in range(block - 1):
+            states.append(advance @ states[-1])
+        part, leap, values = np.array(states).T, np.linalg.matrix_power(advance, block), []
+        for _ in range(count // block + 1):
+            values.append(self._row @ part)
+            part = leap @ part
+        return np.linspace(0, self.horizon, count + 1), np.concatenate(values)[: count + 1]
 
     @cached_property
     def final(self) -> float:
