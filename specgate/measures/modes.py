@@ -2,13 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 
-from flint import acb, arb
+from flint import acb, arb, fmpq, fmpq_poly
 
-from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
+from specgate.measures.measure import Argument, Arguments, Comparer, Measure, UnitRule
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
+from specgate.systems.regions import (
+    Sign,
+    compare_damping_ratio,
+    compare_decay_rate,
+    compare_natural_frequency,
+)
 from specgate.systems.roots import certified_roots
 from specgate.terms.precision import working_precision
 
@@ -30,16 +36,11 @@ def _stable(subject: LoopSubject) -> Answer:
     return Answer.of_truth(subject.solution.stable)
 
 
-def _least(values: Iterable[arb]) -> arb:
-    return min_ball(list(values))
+def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
+    def comparer(subject: LoopSubject, _: Arguments, limit: fmpq) -> Sign | None:
+        return compare(subject.solution.determinant, limit)
 
-
-def min_ball(values: list[arb]) -> arb:
-    """Return a ball that contains the smallest of the numbers enclosed by balls."""
-    smallest = values[0]
-    for value in values[1:]:
-        smallest = smallest.min(value)
-    return smallest
+    return comparer
 
 
 def _over_poles(subject: LoopSubject, of: Callable[[acb], arb], which: Callable[[acb], bool], reason: str) -> Answer:
@@ -49,7 +50,10 @@ def _over_poles(subject: LoopSubject, of: Callable[[acb], arb], which: Callable[
     def refine(bits: int) -> arb:
         poles = [root.value for root in certified_roots(polynomial, bits + 16)]
         with working_precision(bits + 16):
-            return _least(of(pole) for pole in poles if which(pole))
+            first, *rest = (of(pole) for pole in poles if which(pole))
+            for value in rest:
+                first = first.min(value)
+            return first
 
     if not any(which(root.value) for root in certified_roots(polynomial, 64)):
         return Answer.nothing(reason)
@@ -116,6 +120,7 @@ ROWS = (
         source="IEC 60050-351:2013, 351-45-19 (damping ratio), of the least damped mode",
         method=_ROOTS,
         read=_well_posed(_damping_ratio),
+        at_limit=_at_limit(compare_damping_ratio),
         arguments=_RANGE,
         signed=True,
         always=True,
@@ -133,6 +138,7 @@ ROWS = (
         source="characteristic angular frequency of a second-order lag element, IEC 60050-351:2013, 351-50-03",
         method=_ROOTS,
         read=_well_posed(_natural_frequency),
+        at_limit=_at_limit(compare_natural_frequency),
         arguments=_RANGE,
         always=True,
     ),
@@ -149,6 +155,7 @@ ROWS = (
         source="specgate's own definition: minus the largest real part of the poles",
         method=_ROOTS,
         read=_well_posed(_decay_rate),
+        at_limit=_at_limit(compare_decay_rate),
         arguments=_RANGE,
         signed=True,
         always=True,
