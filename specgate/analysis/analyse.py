@@ -1,0 +1,69 @@
+"""A project to its analyses: each loop instantiated and solved once, each declared response and break a subject."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
+from specgate.analysis.responses import response_analysis
+from specgate.analysis.wiring import subsystems_of
+from specgate.measures.subjects import BreakSubject, LoopSubject
+from specgate.project.instantiate import InstantiatedLoop, instantiate
+from specgate.project.parameters import Values, depends_on_pi, values
+from specgate.project.types import Break, Loop, Project
+from specgate.response.answers import Answer
+from specgate.systems.solution import LoopSolution, solve
+from specgate.terms.unit import PRECISE_PI
+
+
+def analyse(project: Project) -> Analyses:
+    """Compute a project with its nominal values, and what rests on pi or on a ratio in dB a second time.
+
+    Raises Fault for a project that its checks refuse.
+    """
+    nominal_values, precise_values = values(project), values(project, PRECISE_PI)
+    built = instantiate(project, nominal_values)
+    nominal = {name: _loop(project, project.loops[name], one, nominal_values) for name, one in built.items()}
+    rounded = [name for name, one in built.items() if _rests_on_pi(project.loops[name], one, nominal_values)]
+    precise = instantiate(project, precise_values) if rounded else {}
+    again = {name: _loop(project, project.loops[name], precise[name], precise_values) for name in rounded}
+    return Analyses(Study(nominal_values, nominal), Study(precise_values, {**nominal, **again}))
+
+
+def _rests_on_pi(loop: Loop, built: InstantiatedLoop, known: Values) -> bool:
+    return built.depends_on_pi or any(
+        depends_on_pi(value.expression, known)
+        for response in loop.responses.values()
+        for excitation in response.excitations
+        for value in excitation.quantities.values()
+    )
+
+
+def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) -> LoopAnalysis:
+    solution = solve(built.wiring)
+    return LoopAnalysis(
+        loop=loop,
+        subsystems=subsystems_of(project, loop),
+        solution=solution,
+        subject=LoopSubject(solution) if built.unsupported is None else Missing(built.unsupported, later=True),
+        responses={
+            name: response_analysis(project, loop, response, solution, built.responses.get(name), known)
+            for name, response in loop.responses.items()
+        },
+        breaks=_breaks(loop, solution, built.breaks),
+    )
+
+
+def _breaks(loop: Loop, solution: LoopSolution, unsupported: Mapping[str, str]) -> Mapping[str, BreakAnalysis]:
+    return {name: _break(one, solution, unsupported.get(name)) for name, one in loop.breaks.items()}
+
+
+def _break(declared: Break, solution: LoopSolution, unsupported: str | None) -> BreakAnalysis:
+    if unsupported is not None:
+        return BreakAnalysis(declared, Missing(unsupported, later=True))
+    if solution.algebraic_loop is not None:
+        return BreakAnalysis(declared, Missing(solution.algebraic_loop.reason))
+    opened = solution.open_at(declared.at)
+    if opened.algebraic_loop is not None:
+        return BreakAnalysis(declared, Missing(opened.algebraic_loop.reason), opened)
+    return BreakAnalysis(declared, BreakSubject(opened.transfer, Answer.of_truth(opened.stable)), opened)

@@ -1,0 +1,125 @@
+"""What is computed of a project: loops solved, and the subjects from which measures are read."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+
+from flint import fmpq
+
+from specgate.approximations.features import Features
+from specgate.measures.measure import Arguments, Measure
+from specgate.measures.subjects import BreakSubject, LoopSubject, ResponseSubject
+from specgate.project import types as project_types
+from specgate.project.parameters import Values
+from specgate.response.answers import Absent, Answer
+from specgate.systems.solution import Channel, LoopSolution, OpenLoop
+from specgate.terms.unit import Unit
+from specgate.terms.verdicts import Proof
+
+
+@dataclass(frozen=True)
+class Missing:
+    """Why there is nothing to read from.
+
+    reason: a sentence. proved: that there is nothing is a fact of the loop. later: it is only this version that does
+    not answer it.
+    """
+
+    reason: str
+    proved: bool = False
+    later: bool = False
+
+    def answer(self) -> Answer:
+        """Return it as the answer to every question."""
+        return Answer(Proof.EXACT if self.proved else Proof.ESTIMATED, absent=Absent(self.reason, self.proved))
+
+
+@dataclass(frozen=True)
+class ResponseAnalysis:
+    """A declared response. unit: of the signal that is looked at."""
+
+    response: project_types.Response
+    unit: Unit
+    subject: ResponseSubject | Missing
+    channel: Channel | None = None
+
+    @cached_property
+    def features(self) -> Features | None:
+        """What approximations look at; None where there is no response to look at."""
+        return None if isinstance(self.subject, Missing) else Features(self.subject)
+
+    @property
+    def improper(self) -> bool:
+        """Whether the channel has more zeros than poles, so that no step response exists."""
+        return self.channel is not None and not self.channel.transfer.proper
+
+
+@dataclass(frozen=True)
+class BreakAnalysis:
+    """A declared break."""
+
+    declared: project_types.Break
+    subject: BreakSubject | Missing
+    opened: OpenLoop | None = None
+
+
+@dataclass(frozen=True)
+class LoopAnalysis:
+    """A loop, solved once.
+
+    subsystems: names of those it is wired from, in the order of the files. solution: where the subject is missing, that
+    of what is left without the blocks that this version does not answer.
+    """
+
+    loop: project_types.Loop
+    subsystems: tuple[str, ...]
+    solution: LoopSolution
+    subject: LoopSubject | Missing
+    responses: Mapping[str, ResponseAnalysis]
+    breaks: Mapping[str, BreakAnalysis]
+
+
+@dataclass(frozen=True)
+class Study:
+    """Every loop for one set of parameter values and one decimal for pi."""
+
+    values: Values
+    loops: Mapping[str, LoopAnalysis]
+
+    @property
+    def pi(self) -> fmpq:
+        """The decimal that stands for pi."""
+        return self.values.pi
+
+    def subject(self, about: project_types.Subject) -> ResponseSubject | BreakSubject | LoopSubject | Missing:
+        """Return what a criterion is about."""
+        loop = self.loops[about.loop]
+        if about.kind == "loop" or about.name is None:
+            return loop.subject
+        return (loop.responses if about.kind == "response" else loop.breaks)[about.name].subject
+
+    def read(self, about: project_types.Subject, measure: Measure, arguments: Arguments) -> Answer:
+        """Read a measure; `measure.read` must not be None."""
+        subject = self.subject(about)
+        if isinstance(subject, Missing):
+            return subject.answer()
+        assert measure.read is not None
+        return measure.read(subject, arguments)
+
+
+@dataclass(frozen=True)
+class Analyses:
+    """A project computed with nominal values.
+
+    again: the same with more digits of pi; loops that pi has no part in are the same objects as in `nominal`.
+    """
+
+    nominal: Study
+    again: Study
+
+    @property
+    def loops(self) -> Mapping[str, LoopAnalysis]:
+        """The loops with nominal values."""
+        return self.nominal.loops
