@@ -21,6 +21,9 @@ from specgate.terms.verdicts import Proof
 DIGITS = 12
 """Significant digits of a printed number."""
 
+SHORT = 6
+"""Significant digits of what is only drawn or shown beside a number that matters."""
+
 _FINE = fmpq(1, 10**14)
 """Relative radius below which the bounds of a ball are printed."""
 
@@ -99,6 +102,17 @@ def printed(refine: Refine, scale: fmpq | None = None) -> Enclosed:
         if _fine(low, high) and rounded(low) == rounded(high) and rounded(low, "down") == rounded(high, "down"):
             break
     return _settled(low, high)
+
+
+def printed_short(ball: arb, scale: fmpq | None = None) -> float:
+    """Return the middle of a narrow ball to 6 significant digits, for drawing and for what is shown beside a claim.
+
+    scale: what a number is small against; next to it, noise prints as 0.
+    """
+    low, high = ends(ball)
+    if scale is not None and max(abs(low), abs(high)) <= abs(scale) * _NOTHING:
+        return 0.0
+    return to_float(rounded(rounded((low + high) / 2, "nearest", DIGITS), "nearest", SHORT))
 
 
 def _nearly_zero(low: fmpq, high: fmpq, nothing: fmpq) -> Enclosed:

@@ -1,0 +1,145 @@
+"""What is found about a requirement: verdicts, standings, audits, as values that can still be refined."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Literal
+
+from flint import fmpq
+
+from specgate.approximations.approximation import Condition, Found
+from specgate.compliance.compare import Limits
+from specgate.compliance.readings import Reading
+from specgate.measures.measure import Arguments, Measure
+from specgate.project.types import Claim, Criterion, Method, Requirement
+from specgate.response.answers import Answer
+from specgate.terms.places import Place
+from specgate.terms.unit import Unit
+from specgate.terms.verdicts import Standing, Verdict
+
+Side = Literal["safe", "unsafe", "none"]
+"""Of an error or a slip: whether it promises more than there is (unsafe), less (safe), or neither."""
+
+
+@dataclass(frozen=True)
+class Unanswered:
+    """Something the format allows and this version does not answer, and where it is written.
+
+    decides: whether the verdict is open because of it; else it would only have qualified the verdict.
+    """
+
+    place: Place
+    what: str
+    decides: bool = True
+
+
+@dataclass(frozen=True)
+class AuditedCondition:
+    """A condition of an approximation against this response.
+
+    approximation: whose condition it is. threshold: the one in force. policy: words where the project's own is.
+    """
+
+    approximation: str
+    condition: Condition
+    threshold: fmpq | None
+    found: Found
+    policy: str | None = None
+
+
+@dataclass(frozen=True)
+class FormulaError:
+    """Formula against proved value; relative = formula / true - 1 (None where the true value is 0)."""
+
+    absolute: Answer
+    relative: Answer | None
+    side: Side
+
+
+@dataclass(frozen=True)
+class Slip:
+    """A claim that is further from its own formula than half a unit of its last digit."""
+
+    side: Side
+
+
+@dataclass(frozen=True)
+class Instead:
+    """What to use in place of a basis that does not stand; `computed` or a row of the catalogue (values in SI)."""
+
+    name: str
+    value: Answer | None
+
+
+@dataclass(frozen=True)
+class Audit:
+    """The audit of a basis; all values in coherent SI, `unit` is that of the claim.
+
+    agrees: whether the claim agrees with its formula (None: no claim, no formula, or undecided).
+    implied: interval that the stated accuracy leaves for the truth.
+    """
+
+    kind: Literal["computed", "approximation", "evidence"]
+    standing: Standing
+    place: Place
+    reason: str | None = None
+    unit: Unit | None = None
+    chain: tuple[str, ...] = ()
+    claim: Claim | None = None
+    claimed: fmpq | None = None
+    formula: Answer | None = None
+    formula_text: str | None = None
+    error: FormulaError | None = None
+    agrees: bool | None = None
+    slip: Slip | None = None
+    implied: tuple[Answer, Answer] | None = None
+    accuracy: str | None = None
+    conditions: tuple[AuditedCondition, ...] = ()
+    instead: Instead | None = None
+
+
+@dataclass(frozen=True)
+class CriterionAssessment:
+    """One limit: what was read, how it compares, what the claim rests on.
+
+    reading: the measure in coherent SI. unit: in which it is printed. scale: what a number is small against (SI).
+    beside: a second value printed next to the first.
+    """
+
+    criterion: Criterion
+    measure: Measure
+    arguments: Arguments
+    reading: Reading
+    limits: Limits
+    unit: Unit | None
+    scale: fmpq | None
+    verdict: Verdict
+    audit: Audit
+    reason: str | None = None
+    beside: Reading | None = None
+    unanswered: tuple[Unanswered, ...] = ()
+
+
+@dataclass(frozen=True)
+class MethodAssessment:
+    """A verification method and how it concludes."""
+
+    method: Method
+    outcome: Verdict | Literal["due_later", "no_record"]
+
+
+@dataclass(frozen=True)
+class Assessment:
+    """A requirement, judged. verdict None: it does not apply.
+
+    due: whether its verdict counts at this stage; where it does not, an open verdict waits for a later stage.
+    """
+
+    requirement: Requirement
+    verdict: Verdict | None
+    standing: Standing | None = None
+    criteria: tuple[CriterionAssessment, ...] = ()
+    methods: tuple[MethodAssessment, ...] = ()
+    due: bool = True
+    reason: str | None = None
+    unanswered: tuple[Unanswered, ...] = ()

@@ -1,0 +1,207 @@
+"""The audit of a basis: does the formula apply, is the claim its value, how far is it off, does it decide, what else.
+
+The five questions of the catalogue of approximations, answered for one criterion. The verdict never comes from here: it
+comes from the computed response; the audit says whether the claim stands.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass, replace
+
+from flint import arb, fmpq
+
+from specgate.approximations.approximation import Accuracy, Approximation, Found
+from specgate.approximations.features import Features
+from specgate.approximations.table import APPROXIMATIONS, chain, conditions
+from specgate.compliance.assessment import Audit, AuditedCondition, Instead, Side, Slip
+from specgate.compliance.claims import claim_range, claim_unit
+from specgate.compliance.compare import Limits, sign
+from specgate.compliance.readings import PI_DECIDES, Reading
+from specgate.compliance.sides import formula_error, side
+from specgate.compliance.thresholds import Policy
+from specgate.compliance.wording import condition_words
+from specgate.measures.measure import Arguments
+from specgate.project.parameters import Values, evaluate
+from specgate.project.types import Basis, Claim
+from specgate.response.answers import Answer
+from specgate.terms.enclosed import ends, rounded
+from specgate.terms.precision import working_precision
+from specgate.terms.unit import Unit
+from specgate.terms.verdicts import Standing, Trilean
+
+
+@dataclass(frozen=True)
+class Matter:
+    """What a basis is audited against.
+
+    features, again: of the response, with the fixed decimal for pi and with more digits (the same object where pi has
+    no part in it). reading: the proved value of the criterion's measure. unit: of the result.
+    """
+
+    features: Features
+    again: Features
+    arguments: Arguments
+    reading: Reading
+    limits: Limits
+    values: Values
+    unit: Unit
+
+    @property
+    def truth(self) -> Answer | None:
+        """The proved value; None where there is none."""
+        answer = self.reading.settled
+        return None if answer.absent is not None or answer.truth is not None else answer
+
+
+def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
+    """Audit an approximation. Raises Fault for a claim that cannot be evaluated."""
+    unit = matter.unit if basis.claimed is None else claim_unit(basis.claimed, matter.unit)
+    claimed = None if basis.claimed is None else evaluate(basis.claimed.value, matter.values)
+    started = Audit(
+        "approximation", Standing.INCONCLUSIVE, basis.place, None, unit, basis.chain, basis.claimed, claimed
+    )
+    unknown = next((name for name in basis.chain if name not in APPROXIMATIONS), None)
+    if unknown is not None:
+        return replace(started, reason=f"{unknown} is in the catalogue and not audited by this version")
+    row = APPROXIMATIONS[basis.chain[-1]]
+    stray = next((name for name in basis.chain[:-1] if APPROXIMATIONS[name] not in chain(row.name)), None)
+    if stray is not None:
+        return replace(started, reason=f"{row.name} does not build on {stray}: chains of that kind are not audited yet")
+    audited = replace(started, conditions=tuple(_audited(row, matter, policy)))
+    audited = _evaluated(audited, row, matter)
+    return _offered(_stood(audited, matter), matter, policy)
+
+
+# --- 1: does it apply ---------------------------------------------------------------------------------------
+
+
+def _audited(row: Approximation, matter: Matter, policy: Policy) -> Iterator[AuditedCondition]:
+    """Yield every condition of a row, those of its premises first, with what was found."""
+    for owner, condition in conditions(row.name, matter.arguments.measure):
+        threshold, words = policy.in_force(owner.name, condition)
+        found = condition.find(matter.features, matter.arguments, threshold)
+        if matter.again is not matter.features:
+            again = condition.find(matter.again, matter.arguments, threshold)
+            found = found if again.holds is found.holds else Found(PI_DECIDES, Trilean.UNKNOWN)
+        yield AuditedCondition(owner.name, condition, threshold, found, words)
+
+
+# --- 2, 3 and 4: the claim, the error, what is left open ------------------------------------------------------
+
+
+def _evaluated(audited: Audit, row: Approximation, matter: Matter) -> Audit:
+    formula = row.evaluate(matter.features, matter.arguments)
+    accuracy = row.accuracy(matter.features, matter.arguments)
+    audited = replace(
+        audited, formula=formula, formula_text=row.formula, accuracy=None if accuracy is None else accuracy.text
+    )
+    if formula.absent is None and matter.truth is not None:
+        audited = replace(audited, error=formula_error(formula, matter.truth, matter.limits))
+    if formula.absent is None and audited.claim is not None:
+        agrees = _agrees(audited.claim, formula, matter)
+        slip = Slip(_slip_side(audited, formula, matter)) if agrees is False else None
+        audited = replace(audited, agrees=agrees, slip=slip)
+    return replace(audited, implied=_implied(audited, formula, accuracy))
+
+
+def _agrees(claim: Claim, formula: Answer, matter: Matter) -> bool | None:
+    """Whether a claim is its formula, rounded; None where that cannot be told."""
+    low, high = claim_range(claim, claim_unit(claim, matter.unit), matter.values)
+    above, below = sign(formula, low), sign(formula, high)
+    if above == -1 or below == 1:
+        return False
+    return None if above is None or below is None else True
+
+
+def _slip_side(audited: Audit, formula: Answer, matter: Matter) -> Side:
+    assert audited.claimed is not None
+    return side(Answer.of_exact(audited.claimed), formula, matter.limits)
+
+
+def _implied(audited: Audit, formula: Answer, accuracy: Accuracy | None) -> tuple[Answer, Answer] | None:
+    """Return the interval in which the truth lies if the claim errs as stated: claim/(1+e)."""
+    if accuracy is None or formula.absent is not None:
+        return None
+    base = formula if audited.claimed is None else Answer.of_exact(audited.claimed)
+    low, high = _divided(base, 1 + accuracy.upper), _divided(base, 1 + accuracy.lower)
+    return (high, low) if sign(base, fmpq(0)) == -1 else (low, high)
+
+
+def _divided(value: Answer, by: fmpq) -> Answer:
+    if value.exact is not None:
+        return Answer.of_exact(value.exact / by)
+
+    def refine(bits: int) -> arb:
+        ball = value.enclose(bits)
+        with working_precision(bits):
+            return ball / by
+
+    return Answer.of_ball(refine)
+
+
+def _stood(audited: Audit, matter: Matter) -> Audit:
+    """Return the audit with its standing and the reason for it."""
+    standing, reason = _standing(audited, matter)
+    return replace(audited, standing=standing, reason=reason)
+
+
+def _standing(audited: Audit, matter: Matter) -> tuple[Standing, str | None]:
+    broken = [one for one in audited.conditions if one.found.holds is Trilean.NO]
+    if broken:
+        return Standing.OUT_OF_RANGE, "; ".join(condition_words(one) for one in broken)
+    formula = audited.formula
+    if formula is None or formula.absent is not None:
+        why = formula.absent.reason if formula is not None and formula.absent is not None else "no value"
+        return Standing.OUT_OF_RANGE, f"the formula has no value here: {why}"
+    undecided = [one for one in audited.conditions if one.found.holds is Trilean.UNKNOWN]
+    if undecided:
+        named = "; ".join(one.condition.named(one.threshold) for one in undecided)
+        return Standing.INCONCLUSIVE, f"it cannot be decided whether this holds: {named}"
+    if audited.implied is None:
+        return Standing.INCONCLUSIVE, "no accuracy is stated for this formula with these arguments"
+    inside = [limit for limit in (matter.limits.least, matter.limits.most) if _holds(audited.implied, limit)]
+    if inside:
+        return Standing.INCONCLUSIVE, "the limit lies inside what its accuracy leaves open for the truth"
+    return Standing.SOUND, None
+
+
+def _holds(interval: tuple[Answer, Answer], limit: fmpq | None) -> bool:
+    """Whether a limit lies strictly inside an interval."""
+    return limit is not None and sign(interval[0], limit) == -1 and sign(interval[1], limit) == 1
+
+
+# --- 5: what instead --------------------------------------------------------------------------------------------
+
+
+def _offered(audited: Audit, matter: Matter, policy: Policy) -> Audit:
+    if audited.standing is Standing.SOUND:
+        return audited
+    truth = matter.truth
+    if truth is None:
+        return replace(audited, instead=Instead("computed", None))
+    candidates = [Instead(row.name, value) for row, value in _applicable(audited.chain, matter, policy)]
+    safe = [one for one in candidates if one.value is not None and side(one.value, truth, matter.limits) != "unsafe"]
+    nearest = min(safe, key=lambda one: _distance(one.value, truth), default=Instead("computed", truth))
+    return replace(audited, instead=nearest)
+
+
+def _applicable(chain: tuple[str, ...], matter: Matter, policy: Policy) -> Iterator[tuple[Approximation, Answer]]:
+    """Yield the rows of the catalogue that estimate the measure, apply here and have a value; alternatives first."""
+    named = APPROXIMATIONS[chain[-1]].alternatives
+    rows = dict.fromkeys([*(name for name in named if name in APPROXIMATIONS), *APPROXIMATIONS])
+    for name in rows:
+        row = APPROXIMATIONS[name]
+        if name in chain or matter.arguments.measure not in row.estimates:
+            continue
+        if all(one.found.holds is Trilean.YES for one in _audited(row, matter, policy)):
+            value = row.evaluate(matter.features, matter.arguments)
+            if value.absent is None:
+                yield row, value
+
+
+def _distance(value: Answer | None, truth: Answer) -> fmpq:
+    """Return how far an estimate is from the truth, to the digits that are printed (ties go to the first)."""
+    assert value is not None
+    with working_precision(128):
+        return rounded(ends(abs(value.enclose(128) - truth.enclose(128)))[1], "up")

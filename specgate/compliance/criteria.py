@@ -1,0 +1,105 @@
+"""One criterion to its assessment: what is read, in which unit, against which limit, on which basis."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from specgate.analysis.analyses import Analyses, Missing
+from specgate.compliance.asking import Asked, ask
+from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
+from specgate.compliance.audit import Matter, audit
+from specgate.compliance.compare import Comparison, compare
+from specgate.compliance.readings import PI_DECIDES, Reading
+from specgate.compliance.thresholds import Policy
+from specgate.compliance.units import default_unit, limit_unit, smallness
+from specgate.measures.measure import Measure, Reader
+from specgate.measures.table import MEASURES
+from specgate.project.types import Basis, Criterion, Project
+from specgate.response.answers import Answer
+from specgate.terms.unit import ONE, Unit
+from specgate.terms.verdicts import Standing, Verdict
+
+_KEPT = {"over": "a restricted range (`over`)", "cases": "a list of cases (`cases`)", "mask": "a mask"}
+_LATER = "is not answered by this version"
+
+
+class Criteria:
+    """Judges the criteria of one project; each question is decided again with more digits of pi where those matter."""
+
+    def __init__(self, project: Project, analyses: Analyses, policy: Policy) -> None:
+        self.project, self.analyses, self.policy = project, analyses, policy
+
+    def assess(self, criterion: Criterion, basis: Basis | None) -> CriterionAssessment:
+        """Judge one criterion; `basis` None means computed."""
+        measure = MEASURES[criterion.measure]
+        nominal = ask(self.project, self.analyses.nominal, criterion, measure)
+        again = ask(self.project, self.analyses.again, criterion, measure)
+        again = nominal if again.same_as(nominal) else again
+        unanswered = tuple(self._unanswered(criterion, measure, basis, nominal))
+        deciding = next((one for one in unanswered if one.decides), None)
+        reading = _reading(nominal, again, measure.read, deciding)
+        comparison = _compared(nominal, again, reading)
+        unit = self._unit(nominal)
+        return CriterionAssessment(
+            criterion=criterion,
+            measure=measure,
+            arguments=nominal.arguments,
+            reading=reading,
+            limits=nominal.limits,
+            unit=unit,
+            scale=smallness(measure, nominal.arguments, nominal.subject, unit),
+            verdict=comparison.verdict,
+            audit=self._audit(nominal, again, basis, reading, unit or ONE),
+            reason=comparison.reason,
+            beside=_reading(nominal, again, measure.beside, deciding) if measure.beside else None,
+            unanswered=unanswered,
+        )
+
+    def _unit(self, asked: Asked) -> Unit | None:
+        """Return the unit of the limit, else that of the measure; None for whole numbers and yes/no."""
+        otherwise = default_unit(asked.measure, asked.arguments, asked.signal)
+        return otherwise and (limit_unit(asked.criterion.limit, asked.study.values) or otherwise)
+
+    def _unanswered(
+        self, criterion: Criterion, measure: Measure, basis: Basis | None, asked: Asked
+    ) -> Iterator[Unanswered]:
+        place, evaluate = criterion.place, criterion.evaluate or self.project.evaluate
+        if measure.read is None:
+            yield Unanswered(place, f"the measure {measure.name} {_LATER}")
+        elif isinstance(asked.subject, Missing) and asked.subject.later:
+            yield Unanswered(place, asked.subject.reason)
+        if evaluate != "nominal":
+            yield Unanswered(place, f"`evaluate: {evaluate}` {_LATER}")
+        for key, what in _KEPT.items():
+            if key in criterion.kept and measure.read is not None:
+                yield Unanswered(place, f"{what} {_LATER}")
+        if basis is not None and basis.kind == "evidence":
+            yield Unanswered(basis.place, f"the evidence {basis.evidence} is kept and not judged by this version")
+
+    def _audit(self, nominal: Asked, again: Asked, basis: Basis | None, reading: Reading, unit: Unit) -> Audit:
+        if basis is None or basis.kind == "computed":
+            return Audit("computed", Standing.SOUND, basis.place if basis else nominal.criterion.place)
+        if basis.kind == "evidence":
+            reason = f"the evidence {basis.evidence} is not judged by this version"
+            return Audit("evidence", Standing.INCONCLUSIVE, basis.place, reason)
+        features, precise = nominal.features, again.features
+        if features is None or precise is None:
+            reason = nominal.subject.reason if isinstance(nominal.subject, Missing) else "it is no response"
+            return Audit("approximation", Standing.INCONCLUSIVE, basis.place, reason, chain=basis.chain)
+        matter = Matter(features, precise, nominal.arguments, reading, nominal.limits, nominal.study.values, unit)
+        return audit(basis, matter, self.policy)
+
+
+def _reading(nominal: Asked, again: Asked, read: Reader | None, deciding: Unanswered | None) -> Reading:
+    if deciding is not None or read is None:
+        return Reading.once(Answer.undecided(deciding.what if deciding else f"the measure {_LATER}"))
+    answer = nominal.read(read)
+    return Reading.once(answer) if again is nominal else Reading(answer, again.read(read))
+
+
+def _compared(nominal: Asked, again: Asked, reading: Reading) -> Comparison:
+    first = compare(reading.answer, nominal.limits, nominal.at_limit)
+    if again is nominal:
+        return first
+    second = compare(reading.again, again.limits, again.at_limit)
+    return first if first.verdict is second.verdict else Comparison(Verdict.OPEN, PI_DECIDES)

@@ -1,0 +1,154 @@
+"""Numbers and limits in the words of a message: few digits, but enough to tell a result from its limit."""
+
+from __future__ import annotations
+
+from flint import fmpq, fmpq_poly
+
+from specgate.approximations.approximation import Found
+from specgate.compliance.assessment import AuditedCondition, CriterionAssessment
+from specgate.compliance.readings import Reading
+from specgate.project.types import Limit
+from specgate.response.answers import Answer
+from specgate.systems.roots import Root, certified_roots
+from specgate.terms.enclosed import DIGITS, printed, printed_exact, printed_short
+from specgate.terms.unit import Unit
+from specgate.terms.verdicts import Verdict
+
+_FEW = 4
+_MODE_BITS = 128
+
+
+def number(value: float, digits: int = _FEW) -> str:
+    """Write a number with so many significant digits, without an exponent from 1e-4 to 1e7."""
+    text = f"{value:.{digits}g}"
+    if "e" not in text or not 1e-4 <= abs(value) < 1e7:
+        return text
+    return f"{float(text):.0f}"
+
+
+def with_unit(text: str, unit: Unit | None) -> str:
+    """Put a unit behind a number; plain numbers have none."""
+    return text if unit is None or unit.symbol == "1" else f"{text} {unit.symbol}"
+
+
+def figure(answer: Answer, unit: Unit | None, scale: fmpq | None = None, digits: int = _FEW) -> str:
+    """Write an answer that is in `unit` (as `scale` is), or the reason why it has no value."""
+    value = _value(answer, scale)
+    return value if isinstance(value, str) else with_unit(number(value, digits), unit)
+
+
+def _value(answer: Answer, scale: fmpq | None) -> float | str:
+    if answer.absent is not None:
+        return "without limit" if answer.absent.infinite else f"not there ({answer.absent.reason})"
+    if answer.truth is not None:
+        return "yes" if answer.truth else "no"
+    return (printed_exact(answer.exact) if answer.exact is not None else printed(answer.enclose, scale)).value
+
+
+def limit_words(limit: Limit) -> str:
+    """Write a limit as the file has it."""
+    if limit.truth is not None:
+        return "yes" if limit.truth else "no"
+    texts = [value.as_written for value in limit.values]
+    if limit.kind == "between":
+        return f"between {texts[0]} and {texts[1]}"
+    if limit.kind == "within":
+        return f"within {texts[0]} of {texts[1]}"
+    return {"at_most": "at most ", "at_least": "at least ", "equals": "equal to "}[limit.kind] + texts[0]
+
+
+def subject(assessed: CriterionAssessment) -> str:
+    """Name the measure and what it is read from."""
+    about = assessed.criterion.subject
+    return f"{assessed.measure.name} of {about.loop if about.name is None else f'{about.loop}.{about.name}'}"
+
+
+def result(assessed: CriterionAssessment) -> str:
+    """Write what was found, with enough digits to tell it from the limit."""
+    unit = assessed.unit
+    value = _value(assessed.reading.settled if unit is None else assessed.reading.in_unit(unit), assessed.scale)
+    if isinstance(value, str):
+        return value
+    limits = [
+        _printed_limit(limit, unit) for limit in (assessed.limits.least, assessed.limits.most) if limit is not None
+    ]
+    enough = (
+        digits
+        for digits in range(_FEW, DIGITS)
+        if all(number(value, digits) != number(limit, digits) or value == limit for limit in limits)
+    )
+    return with_unit(number(value, next(enough, DIGITS)), unit)
+
+
+def _printed_limit(limit: fmpq, unit: Unit | None) -> float:
+    answer = Answer.of_exact(limit)
+    value = _value(answer if unit is None else Reading.once(answer).in_unit(unit), None)
+    assert not isinstance(value, str)
+    return value
+
+
+def criterion_words(assessed: CriterionAssessment) -> str:
+    """Say what a criterion found against its limit."""
+    reason = assessed.reason or ""
+    if assessed.verdict is Verdict.OPEN or assessed.reading.settled.absent is not None:
+        return f"{subject(assessed)}: {reason}"
+    wanted = limit_words(assessed.criterion.limit)
+    return f"{subject(assessed)} is {result(assessed)}, and {wanted} is required"
+
+
+def condition_words(audited: AuditedCondition) -> str:
+    """Say what a condition requires and what was found."""
+    condition = audited.condition
+    found = found_value(audited.found)
+    wanted = f"{condition.named(audited.threshold)} ({condition.asked(audited.threshold)})"
+    if found is None:
+        return f"{wanted} is not given"
+    return f"{wanted} is not given: {number(found, 3) if isinstance(found, float) else found}"
+
+
+def found_value(found: Found) -> float | str | None:
+    """Return what a condition met, as printed: 6 significant digits, or words."""
+    if found.value is None or isinstance(found.value, str):
+        return found.value
+    if isinstance(found.value, int):
+        return float(found.value)
+    return printed_short(found.value)
+
+
+def instead_words(assessed: CriterionAssessment) -> str:
+    """Say what to use in place of a basis that does not stand."""
+    instead = assessed.audit.instead
+    if instead is None or instead.value is None or assessed.audit.unit is None:
+        return "rest the claim on `basis: computed`"
+    unit = assessed.audit.unit
+    shown = figure(Reading.once(instead.value).in_unit(unit), unit)
+    if instead.name == "computed":
+        return f"rest the claim on `basis: computed`, which gives {shown}"
+    return f"{instead.name} applies and gives {shown}; or rest the claim on `basis: computed`"
+
+
+def claim_words(assessed: CriterionAssessment) -> str:
+    """Write the claimed value as the file has it."""
+    claim = assessed.audit.claim
+    return claim.value.as_written if claim is not None else "nothing"
+
+
+def formula_words(assessed: CriterionAssessment) -> str:
+    """Write the value of the formula, in the unit of the claim."""
+    audit = assessed.audit
+    assert audit.formula is not None
+    assert audit.unit is not None
+    return figure(Reading.once(audit.formula).in_unit(audit.unit), audit.unit)
+
+
+def modes(polynomial: fmpq_poly) -> str:
+    """Name the modes of a polynomial by their poles: `a mode at 0.5 1/s`, `modes at -1 ± 2j 1/s`."""
+    shown = [_pole(root) for root in certified_roots(polynomial, _MODE_BITS) if not root.value.imag < 0]
+    return f"{'modes' if polynomial.degree() > 1 else 'a mode'} at {', '.join(shown)} 1/s"
+
+
+def _pole(root: Root) -> str:
+    real = number(printed_short(root.value.real))
+    imaginary = printed_short(root.value.imag)
+    place = real if imaginary == 0 else f"{real} ± {number(imaginary)}j"
+    return place if root.multiplicity == 1 else f"{place} ({root.multiplicity} times)"
