@@ -1,0 +1,38 @@
+"""The shape of a row of the rule table, and what every rule may look at."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass
+
+from specgate.analysis.analyses import Analyses
+from specgate.compliance.assessment import Assessment
+from specgate.project.types import Project
+from specgate.terms.findings import Finding
+from specgate.terms.verdicts import Level, Standing, Verdict
+from specgate.traceability.graph import Graph
+
+
+@dataclass(frozen=True)
+class Facts:
+    """A project and everything that was found about it."""
+
+    project: Project
+    analyses: Analyses
+    graph: Graph
+    assessments: Mapping[str, Assessment]
+
+    def restating(self, what: Verdict | Standing) -> Level:
+        """Return the level of a finding that only restates a verdict or a standing."""
+        return Level.ERROR if what.value in self.project.gate.hold_on else Level.WARNING
+
+
+@dataclass(frozen=True)
+class Rule:
+    """One row: the slug, a title, the levels in words, the check, and the user's text (the module's docstring)."""
+
+    name: str
+    title: str
+    level: str
+    check: Callable[[Facts], Iterator[Finding]]
+    text: str
