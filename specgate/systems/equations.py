@@ -10,7 +10,8 @@ from flint import fmpq, fmpq_mat, fmpq_poly, fmpz
 
 from specgate.systems.blocks import Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.elimination import Row
-from specgate.systems.graph import strong_components
+from specgate.systems.graph import is_cycle, strong_components
+from specgate.systems.polynomials import ONE
 
 Reference = SignalRef | OutputRef
 Combination = Mapping[Reference, fmpq]
@@ -38,7 +39,7 @@ class Equations:
 
     @cached_property
     def outputs(self) -> tuple[OutputRef, ...]:
-        """All outputs of all applied blocks: the unknowns of P."""
+        """All outputs of all applied blocks."""
         return tuple(OutputRef(i.name, output) for i in self.wiring.instances for output in i.block.outputs)
 
     @cached_property
@@ -85,54 +86,80 @@ class Equations:
         return {node: tuple(fed) for node, fed in arcs.items()}
 
     @cached_property
-    def static(self) -> Mapping[Reference, Combination]:
-        """Every signal, output and input as a combination of outputs and inputs: the sums solved for the signals.
+    def implicit(self) -> tuple[SignalRef, ...]:
+        """Signals that sums alone do not determine (x = x + block(x)): they stay unknowns beside the outputs."""
+        signals = [SignalRef(name) for name in self.forms]
+        sums = {node: [fed for fed in self.arcs[node] if isinstance(fed, SignalRef)] for node in signals}
+        cycles = [component for component in strong_components(sums) if is_cycle(component, sums)]
+        return tuple(node for cycle in cycles if self._without(cycle).det() == 0 for node in cycle)
 
-        Raises ZeroDivisionError if the sums do not determine the signals.
-        """
-        names = list(self.forms)
-        knowns: list[Reference] = [*self.outputs, *self.inputs]
-        result: dict[Reference, Combination] = {known: {known: fmpq(1)} for known in knowns}
-        row = {SignalRef(name): index for index, name in enumerate(names)}
-        column = {known: index for index, known in enumerate(knowns)}
-        left = fmpq_mat(len(names), len(names))
-        right = fmpq_mat(len(names), len(knowns))
-        for name, form in self.forms.items():
-            index = row[SignalRef(name)]
-            left[index, index] = fmpq(1)
-            for reference, factor in form.items():
-                if isinstance(reference, SignalRef) and reference in row:
-                    left[index, row[reference]] -= factor
-                else:
-                    right[index, column[reference]] += factor
-        solved = left.solve(right).tolist()
-        for name, entries in zip(names, solved, strict=True):
-            result[SignalRef(name)] = {known: entries[i] for known, i in column.items() if entries[i] != 0}
-        return result
+    def _without(self, nodes: Sequence[SignalRef]) -> fmpq_mat:
+        """Return I - S over some signals, S[i, j] being the factor of signal j in the sum of signal i."""
+        return fmpq_mat(
+            [
+                [fmpq(int(row == column)) - self.forms[row.name].get(column, fmpq(0)) for column in nodes]
+                for row in nodes
+            ]
+        )
+
+    @cached_property
+    def unknowns(self) -> tuple[Reference, ...]:
+        """The unknowns of P: the outputs, and what sums do not determine."""
+        return (*self.outputs, *self.implicit)
 
     @cached_property
     def variables(self) -> Mapping[Reference, int]:
-        """Numbers of the unknowns (outputs), then of the inputs."""
-        known: tuple[Reference, ...] = (*self.outputs, *self.inputs)
-        return {reference: index for index, reference in enumerate(known)}
+        """Numbers of the unknowns, then of the inputs."""
+        return {reference: index for index, reference in enumerate((*self.unknowns, *self.inputs))}
+
+    @cached_property
+    def static(self) -> Mapping[Reference, Combination]:
+        """Every signal, output and input as a combination of unknowns and inputs: the sums solved for the signals."""
+        result: dict[Reference, Combination] = {known: {known: fmpq(1)} for known in self.variables}
+        signals = [SignalRef(name) for name in self.forms if SignalRef(name) not in result]
+        right = fmpq_mat(len(signals), len(self.variables))
+        for index, signal in enumerate(signals):
+            for reference, factor in self.forms[signal.name].items():
+                if reference in self.variables:
+                    right[index, self.variables[reference]] += factor
+        solved = self._without(signals).solve(right).tolist() if signals else []
+        for signal, entries in zip(signals, solved, strict=True):
+            result[signal] = {known: entries[i] for known, i in self.variables.items() if entries[i] != 0}
+        return result
 
     @cached_property
     def rows(self) -> tuple[Row, ...]:
-        """One row for each output: denominator times output - sum of numerators times arguments = 0."""
-        return tuple(self._row(output) for output in self.outputs)
+        """One row for each unknown, in whole coefficients without a common divisor."""
+        return tuple(self._row(unknown) for unknown in self.unknowns)
 
-    def _row(self, output: OutputRef) -> Row:
-        entries = {self.variables[output]: self.instances[output.instance].block.denominator}
-        for numerator, argument in self.read_by(output):
-            for reference, factor in argument.items():
+    def terms(self, unknown: Reference) -> Iterable[tuple[fmpq_poly, Combination]]:
+        """Yield the terms of an unknown's equation, all on one side: polynomials with what they are applied to.
+
+        An output: denominator times output - sum of numerators times arguments = 0. A signal: signal - sum = 0.
+        """
+        if isinstance(unknown, SignalRef):
+            yield ONE, {unknown: fmpq(1)}
+            yield -ONE, self.forms[unknown.name]
+            return
+        yield self.instances[unknown.instance].block.denominator, {unknown: fmpq(1)}
+        for numerator, argument in self.read_by(unknown):
+            yield -numerator, argument
+
+    def _row(self, unknown: Reference) -> Row:
+        entries: dict[int, fmpq_poly] = {}
+        for polynomial, combination in self.terms(unknown):
+            for reference, factor in combination.items():
                 for known, share in self.static[reference].items():
                     number = self.variables[known]
-                    entries[number] = entries.get(number, fmpq_poly()) - numerator * (factor * share)
+                    entries[number] = entries.get(number, fmpq_poly()) + polynomial * (factor * share)
         entries = {number: entry for number, entry in entries.items() if entry}
-        common = fmpz(1)
+        common, divisor = fmpz(1), fmpz(0)
         for entry in entries.values():
             common = common.lcm(entry.denom())
-        return {number: (entry * common).numer() for number, entry in entries.items()}
+        whole = {number: (entry * common).numer() for number, entry in entries.items()}
+        for numerator in whole.values():
+            divisor = divisor.gcd(numerator.content())
+        return {number: numerator // divisor for number, numerator in whole.items()}
 
     @cached_property
     def components(self) -> tuple[tuple[Reference, ...], ...]:

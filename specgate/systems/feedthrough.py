@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from flint import fmpq, fmpq_mat, fmpz_poly
 
 from specgate.systems.assignment import heaviest_assignment
-from specgate.systems.blocks import OutputRef, SignalRef
+from specgate.systems.blocks import SignalRef
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.graph import is_cycle, strong_components
 
@@ -50,47 +50,47 @@ class DirectCycle:
 
 
 def undetermined(equations: Equations) -> AlgebraicLoop | None:
-    """Return the first algebraic loop among plain sums, or among blocks that are all proper; None if there is none.
+    """Return the first algebraic loop among sums and blocks that are all proper; None if there is none.
 
     With proper blocks det P loses degree if and only if the feed-through of some cycle is singular.
     """
     for component in equations.components:
-        proper = all(is_proper(equations, node) for node in component if isinstance(node, OutputRef))
-        nodes = component if proper else [node for node in component if isinstance(node, SignalRef)]
-        for cycle in direct_cycles(equations, nodes):
-            if cycle.determinant == 0:
-                return AlgebraicLoop(cycle.signals, _not_determined(cycle.signals))
+        if all(is_proper(equations, node) for node in component):
+            for cycle in direct_cycles(equations, component):
+                if cycle.determinant == 0:
+                    return AlgebraicLoop(cycle.signals, _not_determined(cycle.signals))
     return None
 
 
 def differentiating_loop(equations: Equations, block: Sequence[int], determinant: fmpz_poly) -> AlgebraicLoop | None:
     """Return the algebraic loop of a component with improper blocks, None if it is well posed.
 
-    det P of a well-posed component has the degree that the degrees of its blocks give it. Where its leading
-    coefficients cancel, some closed channel differentiates more often than the blocks on its way, and the smallest
-    change of a gain sends a pole to plus or minus infinity.
+    block: the unknowns of the component. Its part of det P has the degree that the degrees of its blocks give it,
+    unless the leading coefficients cancel: then some closed channel differentiates more often than the blocks on its
+    way do, and the smallest change of a gain brings in a pole from infinity.
     """
-    outputs = [equations.outputs[variable] for variable in block]
-    if all(is_proper(equations, output) for output in outputs):
+    unknowns = [equations.unknowns[variable] for variable in block]
+    if all(is_proper(equations, unknown) for unknown in unknowns):
         return None
-    expected = heaviest_assignment([_degrees(equations, output, block) for output in outputs])
-    if determinant and determinant.degree() == expected:
+    nodes = next(component for component in equations.components if unknowns[0] in component)
+    if determinant and determinant.degree() == heaviest_assignment(_degrees(equations, nodes)):
         return None
-    members = next(component for component in equations.components if outputs[0] in component)
-    signals = signals_of(members)
+    signals = signals_of(nodes)
     if not determinant:
         return AlgebraicLoop(signals, _not_determined(signals))
     return AlgebraicLoop(
         signals,
-        f"the loop of {_listed(signals)} is ill-posed: its feed-through cancels at infinite frequency, and closed it "
-        "differentiates more often than its blocks do",
+        f"algebraic loop: the loop of {_listed(signals)} is ill-posed, for its leading terms cancel at infinite "
+        "frequency; closed, it differentiates more often than its blocks do",
     )
 
 
-def is_proper(equations: Equations, output: OutputRef) -> bool:
-    """Whether an output of a block follows its inputs without differentiating them."""
-    degree = equations.instances[output.instance].block.denominator.degree()
-    return all(numerator.degree() <= degree for numerator, _ in equations.read_by(output))
+def is_proper(equations: Equations, node: Reference) -> bool:
+    """Whether a node follows what it reads without differentiating it; sums and inputs do."""
+    if isinstance(node, SignalRef):
+        return True
+    degree = equations.instances[node.instance].block.denominator.degree()
+    return all(numerator.degree() <= degree for numerator, _ in equations.read_by(node))
 
 
 def direct_cycles(equations: Equations, nodes: Iterable[Reference]) -> tuple[DirectCycle, ...]:
@@ -127,16 +127,18 @@ def _direct_gains(equations: Equations, node: Reference) -> Mapping[Reference, f
     return {reference: gain for reference, gain in gains.items() if gain != 0}
 
 
-def _degrees(equations: Equations, output: OutputRef, block: Sequence[int]) -> dict[int, int]:
-    """Return the degrees of an output's row in P over the variables of its component, before anything cancels."""
-    degrees = {equations.variables[output]: equations.instances[output.instance].block.denominator.degree()}
-    for numerator, argument in equations.read_by(output):
-        for reference in argument:
-            for known in equations.static[reference]:
-                variable = equations.variables[known]
-                if variable in block:
-                    degrees[variable] = max(numerator.degree(), degrees.get(variable, 0))
-    return degrees
+def _degrees(equations: Equations, nodes: Sequence[Reference]) -> list[dict[int, int]]:
+    """Return the degrees of P, sums included, over the nodes of a component."""
+    index = {node: i for i, node in enumerate(nodes)}
+    rows: list[dict[int, int]] = []
+    for node in nodes:
+        row: dict[int, int] = {}
+        for polynomial, combination in equations.terms(node):
+            for reference in combination:
+                if reference in index:
+                    row[index[reference]] = max(polynomial.degree(), row.get(index[reference], 0))
+        rows.append(row)
+    return rows
 
 
 def _complement(gains: fmpq_mat) -> fmpq_mat:
@@ -145,13 +147,11 @@ def _complement(gains: fmpq_mat) -> fmpq_mat:
 
 
 def _not_determined(signals: Sequence[str]) -> str:
-    return (
-        f"algebraic loop: {_listed(signals)} feed each other at once with a gain of exactly 1 round the loop, so that "
-        "their equations have no unique solution"
-        if len(signals) > 1
-        else f"algebraic loop: {_listed(signals)} feeds itself at once with a gain of exactly 1, so that its equation "
-        "has no unique solution"
-    )
+    if len(signals) == 1:
+        return (
+            f"algebraic loop: the equation of {signals[0]} passes it back to itself at once and does not determine it"
+        )
+    return f"algebraic loop: {_listed(signals)} act on each other at once, and their equations do not determine them"
 
 
 def _listed(signals: Sequence[str]) -> str:

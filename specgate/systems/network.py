@@ -34,12 +34,9 @@ class Network:
 
     @cached_property
     def blocks(self) -> tuple[tuple[int, ...], ...]:
-        """The strongly connected components as numbers of outputs, those upstream first."""
-        variables = self.equations.variables
-        found = (
-            tuple(variables[node] for node in component if isinstance(node, OutputRef))
-            for component in self.equations.components
-        )
+        """The strongly connected components as numbers of unknowns, those upstream first."""
+        numbers = {node: self.equations.variables[node] for node in self.equations.unknowns}
+        found = (tuple(numbers[n] for n in component if n in numbers) for component in self.equations.components)
         return tuple(block for block in found if block)
 
     @cached_property
@@ -71,7 +68,8 @@ class Network:
         return tuple(self._group(members, determinants) for members in merged)
 
     def _group(self, members: Sequence[int], determinants: Sequence[fmpq_poly]) -> Group:
-        outputs = tuple(self.equations.outputs[variable] for index in members for variable in self.blocks[index])
+        unknowns = [self.equations.unknowns[variable] for index in members for variable in self.blocks[index]]
+        outputs = tuple(unknown for unknown in unknowns if isinstance(unknown, OutputRef))
         instances = tuple(dict.fromkeys(output.instance for output in outputs))
         blocks = [self.equations.instances[name].block for name in instances]
         # P has each denominator once for every output of its block; the modes are there once.
@@ -96,7 +94,7 @@ def _merged(blocks: Sequence[Sequence[int]], owner: Sequence[str]) -> list[list[
     """Return the numbers of the blocks in sets that share no owner with each other, in the order of their first."""
     sets: list[tuple[set[str], list[int]]] = []
     for index, block in enumerate(blocks):
-        owners, members = {owner[variable] for variable in block}, [index]
+        owners, members = {owner[variable] for variable in block if variable < len(owner)}, [index]
         for known in [known for known in sets if known[0] & owners]:
             sets.remove(known)
             owners, members = owners | known[0], known[1] + members

@@ -10,7 +10,7 @@ from functools import cached_property
 
 from flint import fmpq, fmpq_poly, fmpz_poly
 
-from specgate.systems.blocks import Instance, LinearForm, OutputRef, SignalRef, Wiring
+from specgate.systems.blocks import Instance, LinearForm, SignalRef, Wiring
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.feedthrough import (
     AlgebraicLoop,
@@ -213,7 +213,7 @@ class LoopSolution:
     def _cycles(self, component: tuple[Reference, ...]) -> list[list[tuple[str, fmpq | None]]]:
         """Return the cycles of direct feed-through of a component: signals with their L at infinite frequency."""
         equations = self.network.equations
-        if all(is_proper(equations, node) for node in component if isinstance(node, OutputRef)):
+        if all(is_proper(equations, node) for node in component):
             return [list(cycle.loop_gains()) for cycle in direct_cycles(equations, component)]
         gains: list[tuple[str, fmpq | None]] = []
         for name in signals_of(component):
@@ -237,7 +237,7 @@ class LoopSolution:
         """Return why the loop opened at a node is not well posed, None if it is."""
         equations = self.network.equations
         component = next(component for component in equations.components if node in component)
-        proper = all(is_proper(equations, other) for other in component if isinstance(other, OutputRef))
+        proper = all(is_proper(equations, other) for other in component)
         if opened and (not proper or opened.degree() == closed.degree()):
             return None
         signals = tuple(name for name in signals_of(component) if name != node.name)
