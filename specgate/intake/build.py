@@ -31,10 +31,10 @@ def build(root: Table, inputs: tuple[InputFile, ...], collector: Collector) -> P
         return None
     context = _context(root, title, units, collector)
     shared = parameters(root.get("parameters"), None, context)
-    subsystems = _each(root, "subsystems", lambda entry: subsystem(entry, context))
+    subsystems = _each(root, "subsystem", lambda entry: subsystem(entry, context), collector)
     built = frozenset(subsystems)
-    loops = _each(root, "loops", lambda entry: loop(entry, built, context))
-    requirements = _each(root, "requirements", lambda entry: requirement(entry, context))
+    loops = _each(root, "loop", lambda entry: loop(entry, built, context), collector)
+    requirements = _each(root, "requirement", lambda entry: requirement(entry, context), collector)
     return Project(
         info=policy.info(title, context),
         parameters=shared,
@@ -98,9 +98,15 @@ def _parameter_nodes(node: Node) -> dict[str, Node]:
     return {} if nodes is None else {key.value: value for key, value in nodes.items()}
 
 
-def _each(root: Table, name: str, read: Callable[[Entry], _Thing | None]) -> dict[str, _Thing]:
-    found = {key: read(entry) for key, entry in section(root, name).items()}
-    return {key: thing for key, thing in found.items() if thing is not None}
+def _each(root: Table, kind: str, read: Callable[[Entry], _Thing | None], collector: Collector) -> dict[str, _Thing]:
+    """Read every entry of a section, leaving out those in which something was reported."""
+    found: dict[str, _Thing] = {}
+    for key, entry in section(root, f"{kind}s").items():
+        with collector.about(**{kind: key}):
+            thing = read(entry)
+        if thing is not None:
+            found[key] = thing
+    return found
 
 
 def _about(requirements: dict[str, Requirement], loops: dict[str, Loop]) -> dict[str, Requirement]:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+from contextlib import contextmanager
 from dataclasses import dataclass, field
 
 from specgate.project.types import InputFile
@@ -27,10 +29,21 @@ class Collector:
 
     findings: list[Finding] = field(default_factory=list)
     left_out: int = 0
+    topic: dict[str, str] = field(default_factory=dict)
 
-    def error(self, rule: str, message: str, place: Place, *related: Related, **about: str | None) -> None:
+    def error(self, rule: str, message: str, place: Place, *related: Related, **about: str) -> None:
         """Add an error; `about` may name the requirement, loop, response or subsystem that it is about."""
-        self.add(Finding(rule, Level.ERROR, message, place, related=related, **about))  # type: ignore[arg-type]
+        named: dict[str, str] = {**self.topic, **about}
+        self.add(Finding(rule, Level.ERROR, message, place, related=related, **named))  # type: ignore[arg-type]
+
+    @contextmanager
+    def about(self, **topic: str) -> Iterator[None]:
+        """Run the body with findings that are about this requirement, loop or subsystem."""
+        before, self.topic = self.topic, topic
+        try:
+            yield
+        finally:
+            self.topic = before
 
     def add(self, finding: Finding) -> None:
         """Add a finding, unless there are far too many already."""

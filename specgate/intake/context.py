@@ -64,8 +64,8 @@ class Context:
             self.units_read.add(text)
         return unit
 
-    def unknown(self, what: str, name: str, known: Iterable[str], place: Place) -> None:
-        """Report a name that nothing in the project has."""
+    def unknown(self, what: str, name: str, known: Iterable[str], place: Place, owner: str | None = None) -> None:
+        """Report a name that nothing in the project (or nothing of its `owner`) has."""
         names = tuple(known)
         close = nearest(name, names)
         if close is not None:
@@ -73,8 +73,9 @@ class Context:
         elif 0 < len(names) <= 12:
             ending = f": there is {', '.join(names)}"
         else:
-            ending = "" if names else ": there is none at all"
-        self.collector.error("name-unknown", f"there is no {what} `{name[:80]}`{ending}", place)
+            ending = "" if names else ": none is defined"
+        start = "there is no" if owner is None else f"`{owner}` has no"
+        self.collector.error("name-unknown", f"{start} {what} `{name[:80]}`{ending}", place)
 
 
 # --- what stands at a node, or a default: shapes are the schema's business and have been reported ---------------------

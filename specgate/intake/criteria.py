@@ -83,7 +83,7 @@ def _part_of_loop(kind: Literal["response", "break"], node: Text, context: Conte
         message = f"`{loop}.{name}` is a {right}: write `{right}: {loop}.{name}`"
         context.collector.error("name-unknown", message, node.spot.place)
     else:
-        context.unknown(f"{kind} of `{loop}`", name, wanted, node.spot.place)
+        context.unknown(kind, name, wanted, node.spot.place, loop)
     return None
 
 

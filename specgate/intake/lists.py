@@ -68,8 +68,13 @@ def _arguments() -> list[dict[str, Any]]:
             if argument.required:
                 needing.setdefault(argument.name, []).append(name)
     refused = [{"if": _measure_in(names), "else": _refused(key, names)} for key, names in taking.items()]
-    needed = [{"if": _measure_in(names), "then": {"required": [key]}} for key, names in needing.items()]
+    needed = [{"if": _measure_in(names), "then": _needed(key, names)} for key, names in needing.items()]
     return refused + needed
+
+
+def _needed(key: str, names: list[str]) -> dict[str, Any]:
+    verb = "needs" if len(names) == 1 else "need"
+    return {"required": [key], "x-say": f"`{{missing}}` is missing: {_listed(names)} {verb} it"}
 
 
 def _refused(key: str, names: list[str]) -> dict[str, Any]:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sized
+from collections.abc import Iterator, Mapping
 
 from specgate.intake.context import Context, LoopNames, entries, items, keys, table, text, texts
 from specgate.intake.nodes import Entry, Node, Number, Table, Text
@@ -85,9 +85,9 @@ class _Loop:
 
     def rest(self) -> Iterator[tuple[str, Value]]:
         for key, node in entries(self.node.get("rest")):
-            self._known("signal or input", key, (*self.names.signals, *self.names.inputs))
+            known = self._known("signal or input", key, (*self.names.signals, *self.names.inputs))
             value = self.reader.value(node)
-            if value is not None:
+            if known and value is not None:
                 yield key.value, value
 
     def breaks(self) -> Iterator[tuple[str, Break]]:
@@ -158,7 +158,7 @@ class _Loop:
 
     def _duplicate(self, message: str, key: Text, related: Related) -> None:
         self.broken = True
-        self.context.collector.error("id-duplicate", message, key.spot.place, related, loop=self.name)
+        self.context.collector.error("id-duplicate", message, key.spot.place, related)
 
     def blocks(self, signals: dict[str, Signal]) -> None:
         """See whether a block that is used could not be built; that has been reported."""

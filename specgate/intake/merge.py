@@ -24,6 +24,10 @@ NAMED = (
 """Sections of named things: what several files hold is put together."""
 ONE_NAMESPACE = ("subsystems", "loops", "requirements", "evidence", "waivers", "documents")
 """Sections whose ids must differ from each other's as well: they are referred to without saying which it is."""
+KNOWN = frozenset(
+    (*NAMED, "$schema", "specgate", "project", "include", "gate", "evaluate", "decision_rule", "model_agreement")
+)
+"""All sections."""
 _REPEATABLE = ("specgate", "include", "$schema")
 
 
@@ -82,7 +86,8 @@ def readable(roots: Iterable[Node]) -> bool:
 def _readable(root: Node) -> bool:
     if not isinstance(root, Table):
         return False
-    return all(isinstance(node, Table) for name in NAMED if (node := root.get(name)) is not None)
+    named = [node for name in NAMED if (node := root.get(name)) is not None]
+    return all(isinstance(node, Table) for node in named) and root.entries.keys() <= KNOWN
 
 
 def section(root: Table, name: str) -> Mapping[str, Entry]:

@@ -64,6 +64,8 @@ def _factored(node: Table, reader: Reader, ports: Ports) -> FactoredModel | None
     if gain is None or lags is None or leads is None or pairs is None or zero_pairs is None:
         return None
     integrators, differentiators = _whole(node.get("integrators")), _whole(node.get("differentiators"))
+    if integrators is None or differentiators is None:
+        return None
     return FactoredModel(gain, integrators, differentiators, lags, leads, pairs, zero_pairs)
 
 
@@ -186,9 +188,10 @@ def _sampled(node: Table, reader: Reader, ports: Ports) -> SampledModel | None:
     return SampledModel(period, numerator, denominator, controller, text(sampled.get("rule")), wait)
 
 
-def _whole(node: Node | None) -> int:
-    exact = node.exact if isinstance(node, Number) else 0
-    return exact if isinstance(exact, int) else 0
+def _whole(node: Node | None) -> int | None:
+    """Return a whole number, 0 where it is left out, None where something else was reported."""
+    exact = node.exact if isinstance(node, Number) else None
+    return 0 if node is None else exact if isinstance(exact, int) else None
 
 
 _FORMS: dict[str, Callable[[Table, Reader, Ports], Model | None]] = {

@@ -167,6 +167,8 @@ def shown(node: Node | None, longest: int = 40) -> str:
         case Truth(value=value):
             return "true" if value else "false"
         case Items(nodes=nodes):
-            return f"a list of {len(nodes)}" if nodes else "an empty list"
+            return f"a list of {len(nodes)} entries" if len(nodes) > 1 else f"a list of {len(nodes) or 'no'} entry"
+        case Table(entries=entries):
+            return "a table with keys" if entries else "an empty table"
         case _:
-            return "a table with keys"
+            return "something unreadable"

@@ -83,7 +83,7 @@ def _allowed(name: str, key: Text, value: Value, context: Context) -> bool:
     conditions = {condition.key: condition for condition in row.conditions if condition.threshold is not None}
     condition = conditions.get(key.value)
     if condition is None:
-        context.unknown(f"threshold of `{name}`", key.value, conditions, key.spot.place)
+        context.unknown("threshold", key.value, conditions, key.spot.place, name)
         return False
     if expressions.names(value.expression):
         _refuse("a threshold is a number", value.place, context)

@@ -81,8 +81,10 @@ def _locate(root: Node, path: Path) -> tuple[Node | None, Text | None]:
 
 def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
     """Leave out what only follows from another error: a rule for a kind that is unknown, a key that is misspelt."""
-    unknown_kind = {e.path[:-1] for e in errors if e.keyword == "enum" and not e.conditional and e.path}
-    wrong = {e.path for e in errors if not e.conditional}
+    certain = [error for error in errors if not error.conditional]
+    unsettled = {e.path[:-1] for e in certain if e.keyword == "enum" and e.path}
+    unsettled |= {e.path for e in certain if e.keyword == "oneOf"}
+    wrong = {error.path for error in certain}
     meant: dict[Path, set[str | None]] = {}
     for error in errors:
         names = meant.setdefault(error.path, set())
@@ -90,11 +92,13 @@ def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
             names.update(error.unexpected)
             names.update(nearest(key, error.schema["properties"]) for key in error.unexpected)
         if error.keyword == "dependentRequired":
-            names.update(error.found)
+            names.update(error.missing)
     for error in errors:
-        if error.conditional and (error.path in unknown_kind or _repeats(error, meant[error.path], wrong)):
+        if error.conditional and not unsettled.isdisjoint((error.path, error.path[:-1])):
             continue
-        if meant[error.path].isdisjoint(error.missing):
+        if error.conditional and _repeats(error, meant[error.path], wrong):
+            continue
+        if error.keyword == "dependentRequired" or meant[error.path].isdisjoint(error.missing):
             yield error
 
 

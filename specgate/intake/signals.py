@@ -194,7 +194,7 @@ class _Parser:
         if name.kind != "name" or equals.text != "=":
             raise _Refused("an input and its signal are wanted here, `name=signal`", name.at)
         if name.text not in inputs:
-            self._unknown(name, f"input of `{block.text}`", inputs)
+            self._unknown(name, "input", inputs, block.text)
         if name.text in found:
             raise _Refused(f"the input `{name.text}` is given twice", name.at, "id-duplicate")
         start = self._now.at
@@ -209,7 +209,7 @@ class _Parser:
         self._take()
         name = self._take()
         if name.text not in outputs:
-            self._unknown(name, f"output of `{block.text}`", outputs)
+            self._unknown(name, "output", outputs, block.text)
         return name.text
 
     def _name(self, token: _Token) -> _Part:
@@ -271,8 +271,8 @@ class _Parser:
             raise _Refused(f"the bracket opened at character {opening.at + 1} is not closed", opening.at)
         self._take()
 
-    def _unknown(self, token: _Token, what: str, known: tuple[str, ...]) -> NoReturn:
-        self.context.unknown(what, token.text, known, self.node.place_of(token.at))
+    def _unknown(self, token: _Token, what: str, known: tuple[str, ...], owner: str | None = None) -> NoReturn:
+        self.context.unknown(what, token.text, known, self.node.place_of(token.at), owner)
         raise _Refused(None)
 
 

@@ -11,6 +11,8 @@ _UNDERSCORES = re.compile(r"[+-]?[0-9]+(_[0-9]+)+(\.[0-9_]+)?")
 _CLOCK = re.compile(r"[0-9]+(:[0-9]{2}){1,2}")
 _COMMA = re.compile(r"[+-]?[0-9]+,[0-9]+")
 
+_NO_NUMBER = re.compile(r"[+-]?\.(inf|Inf|INF|nan|NaN|NAN)")
+
 _INDICATORS = {
     "%": "a value that begins with % needs quotes: write '%'",
     "@": "a value that begins with @ needs quotes",
@@ -30,8 +32,10 @@ def scalar_hint(text: str) -> str | None:
         return f"`{number}` is text in YAML 1.2: write {number.replace('_', '')}"
     if _CLOCK.fullmatch(number):
         return f"`{number}` is text in YAML 1.2, not a number in base 60: write a quantity with its unit"
+    if _NO_NUMBER.fullmatch(number):
+        return f"`{number}`: what is infinite or undefined has no place in a specification"
     if _COMMA.fullmatch(number):
-        return f"the decimal sign is a point: write {number.replace(',', '.')}"
+        return f"`{number}`: the decimal sign is a point, write {number.replace(',', '.')}"
     return None
 
 
@@ -60,8 +64,8 @@ def syntax_hint(lines: list[str], line: int, column: int, opened: tuple[int, int
         return f"a quote or bracket {where} is never closed"
     if rest[:1] in _INDICATORS:
         return _INDICATORS[rest[0]]
-    if before[-1:] in ("|", ">"):
-        return _INDICATORS[before[-1]]
+    if before.rstrip()[-1:] in ("|", ">") and "line break" in problem:
+        return _INDICATORS[before.rstrip()[-1]]
     if "mapping values" in problem and before.strip().count(":") >= 1 and rest.startswith(":"):
         return "a colon inside plain text: put the text in quotes"
     if "mapping values" in problem:
@@ -71,7 +75,7 @@ def syntax_hint(lines: list[str], line: int, column: int, opened: tuple[int, int
     if "escape" in problem:
         return "a backslash inside double quotes begins an escape: use single quotes"
     if re.search(r"""(['"\]}])\s*$""", before):
-        return "text goes on after a closing quote or bracket: put the whole value in quotes"
+        return "text goes on after a closing quote or bracket: put the whole value in quotes, or close a quote above"
     if "or ']'" in problem or "or '}'" in problem:
         where = f" opened in line {opened[0] + 1}" if opened else ""
         return f"a comma or the closing bracket of the list or braces{where} is missing"

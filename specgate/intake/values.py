@@ -75,7 +75,7 @@ class Reader:
         hint = scalar_hint(node.value) if isinstance(node, Text) else None
         place = node.place_of(error.offset) if isinstance(node, Text) else node.spot.place
         message = f"`{_cut(text(node) or '')}`: {error.message}" if text(node) else error.message
-        self.context.collector.error(rule, f"{message} ({hint})" if hint else message, place)
+        self.context.collector.error(rule, hint or message, place)
 
     def _named(self, parsed: Expression, node: Text | Number) -> bool:
         """Report the names that are no parameters; return whether all can be read."""

@@ -51,13 +51,21 @@ class Misshape:
 
     @property
     def missing(self) -> tuple[str, ...]:
-        """The keys one of which would have put a `required`, `oneOf` or `anyOf` error right."""
+        """The keys that would have put a `required`, `dependentRequired`, `oneOf` or `anyOf` error right."""
         if self.keyword == "required":
             return tuple(key for key in self.wanted if key not in self.found)
+        if self.keyword == "dependentRequired":
+            return tuple(dict.fromkeys(name for names in self.dependents.values() for name in names))
         if self.keyword in ("oneOf", "anyOf"):
             names = tuple(key for branch in self.wanted for key in branch["required"])
             return () if any(name in self.found for name in names) else names
         return ()
+
+    @property
+    def dependents(self) -> dict[str, list[str]]:
+        """What is missing beside each key of a `dependentRequired` error."""
+        given = {key: names for key, names in self.wanted.items() if key in self.found}
+        return {key: [name for name in names if name not in self.found] for key, names in given.items()}
 
 
 _ABOUT_KEYS = ("required", "oneOf", "anyOf", "not", "dependentRequired", "minProperties")
@@ -153,6 +161,8 @@ def _nearest_of(found: str, known: Sequence[str], schema: Any) -> str:
 
 
 def _required(name: str, error: Misshape) -> str:
+    if "x-say" in error.schema:
+        return str(error.schema["x-say"]).replace("{missing}", name)
     text = error.schema.get("properties", {}).get(name, {}).get("description", "")
     about = f" ({_first_sentence(text)})" if text else ""
     return f"`{name}` is missing{_in(error)}{about}"
@@ -166,7 +176,8 @@ def _one_of(error: Misshape, node: Node) -> str:
         return (
             f"{_listed([f'`{name}`' for name in given], 'and')} exclude each other: exactly one of {wanted} is wanted"
         )
-    return f"exactly one of {wanted} is wanted{_in(error)}, found none of them"
+    forms = [f"`{branch['required'][0]}`{_titled(branch)}" for branch in error.wanted]
+    return f"exactly one of {_listed(forms, 'or')} is wanted{_in(error)}, found none of them"
 
 
 def _any_of(error: Misshape, node: Node) -> str:
@@ -175,15 +186,17 @@ def _any_of(error: Misshape, node: Node) -> str:
 
 
 def _dependent(error: Misshape, node: Node) -> str:
-    for given, needed in error.wanted.items():
-        for name in needed:
-            if given in error.found and name not in error.found:
-                return f"`{given}` needs `{name}` beside it"
-    return _other(error, node)
+    missing = error.missing[0]
+    needing = [f"`{key}`" for key, names in error.dependents.items() if missing in names]
+    return f"{_listed(needing, 'and')} {'needs' if len(needing) == 1 else 'need'} `{missing}` beside it"
 
 
 def _wanted_here(error: Misshape, node: Node) -> str:
     return f"{_wanted(error)} is wanted here, found {shown(node)}"
+
+
+def _empty(error: Misshape, node: Node) -> str:
+    return f"at least one entry is wanted here, found {shown(node)}"
 
 
 def _repeated(error: Misshape, node: Node) -> str:
@@ -207,7 +220,7 @@ _WORDS: dict[str, Callable[[Misshape, Node], str]] = {
     "format": _wanted_here,
     "minItems": _wanted_here,
     "maxItems": _wanted_here,
-    "minProperties": _wanted_here,
+    "minProperties": _empty,
     "pattern": _wanted_here,
     "minimum": _wanted_here,
     "maximum": _wanted_here,
@@ -218,6 +231,10 @@ _WORDS: dict[str, Callable[[Misshape, Node], str]] = {
 def _in(error: Misshape) -> str:
     title = error.schema.get("title")
     return f" in {title}" if title else ""
+
+
+def _titled(branch: Mapping[str, Any]) -> str:
+    return f" ({branch['title']})" if "title" in branch else ""
 
 
 def _first_sentence(text: str) -> str:
