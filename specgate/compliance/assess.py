@@ -12,7 +12,7 @@ from specgate.compliance.compare import worst
 from specgate.compliance.criteria import Criteria
 from specgate.compliance.methods import conclude
 from specgate.compliance.thresholds import policy
-from specgate.compliance.wording import criterion_words
+from specgate.compliance.wording import criterion_words, subject
 from specgate.project.types import Basis, Criterion, Kept, Project, Requirement
 from specgate.terms.verdicts import Standing, Verdict
 from specgate.traceability.graph import Graph
@@ -105,7 +105,8 @@ class _Judging:
         self, requirement: Requirement, criteria: tuple[CriterionAssessment, ...], recorded: tuple[Kept, ...]
     ) -> Iterator[Unanswered]:
         for criterion in criteria:
-            yield from criterion.unanswered
+            for one in criterion.unanswered:
+                yield Unanswered(one.place, f"{subject(criterion)}: {one.what}", one.decides)
         if requirement.decided_by == "evidence" and not recorded:
             yield Unanswered(requirement.place, "evidence is not judged by this version")
         if requirement.budget is not None:

@@ -49,11 +49,12 @@ class AuditedCondition:
 
 @dataclass(frozen=True)
 class FormulaError:
-    """Formula against proved value; relative = formula / true - 1 (None where the true value is 0)."""
+    """Formula against proved value; relative = formula / truth - 1 (None where the truth is 0)."""
 
     absolute: Answer
     relative: Answer | None
     side: Side
+    truth: Answer
 
 
 @dataclass(frozen=True)
@@ -102,7 +103,8 @@ class Audit:
 class CriterionAssessment:
     """One limit: what was read, how it compares, what the claim rests on.
 
-    reading: the measure in coherent SI. unit: in which it is printed. scale: what a number is small against (SI).
+    reading: the measure in coherent SI. limits, limits_again: with the fixed decimal for pi, and with more digits.
+    unit: in which it is printed (None: a whole number, yes or no). scale: what a number is small against, in that unit.
     beside: a second value printed next to the first.
     """
 
@@ -111,6 +113,7 @@ class CriterionAssessment:
     arguments: Arguments
     reading: Reading
     limits: Limits
+    limits_again: Limits
     unit: Unit | None
     scale: fmpq | None
     verdict: Verdict
@@ -118,6 +121,22 @@ class CriterionAssessment:
     reason: str | None = None
     beside: Reading | None = None
     unanswered: tuple[Unanswered, ...] = ()
+
+    @property
+    def least(self) -> Reading | None:
+        """The lower limit."""
+        return _limit(self.limits.least, self.limits_again.least)
+
+    @property
+    def most(self) -> Reading | None:
+        """The upper limit."""
+        return _limit(self.limits.most, self.limits_again.most)
+
+
+def _limit(first: fmpq | None, again: fmpq | None) -> Reading | None:
+    if first is None or again is None:
+        return None
+    return Reading(Answer.of_exact(first), Answer.of_exact(again))
 
 
 @dataclass(frozen=True)

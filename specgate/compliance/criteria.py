@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from specgate.analysis.analyses import Analyses, Missing
+from specgate.approximations.table import LATER
 from specgate.compliance.asking import Asked, ask
 from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
 from specgate.compliance.audit import Matter, audit
@@ -20,7 +21,7 @@ from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Standing, Verdict
 
 _KEPT = {"over": "a restricted range (`over`)", "cases": "a list of cases (`cases`)", "mask": "a mask"}
-_LATER = "is not answered by this version"
+_LATER = "not answered by this version"
 
 
 class Criteria:
@@ -46,6 +47,7 @@ class Criteria:
             arguments=nominal.arguments,
             reading=reading,
             limits=nominal.limits,
+            limits_again=again.limits,
             unit=unit,
             scale=smallness(measure, nominal.arguments, nominal.subject, unit),
             verdict=comparison.verdict,
@@ -65,16 +67,19 @@ class Criteria:
     ) -> Iterator[Unanswered]:
         place, evaluate = criterion.place, criterion.evaluate or self.project.evaluate
         if measure.read is None:
-            yield Unanswered(place, f"the measure {measure.name} {_LATER}")
+            yield Unanswered(place, _LATER)
         elif isinstance(asked.subject, Missing) and asked.subject.later:
             yield Unanswered(place, asked.subject.reason)
         if evaluate != "nominal":
-            yield Unanswered(place, f"`evaluate: {evaluate}` {_LATER}")
+            yield Unanswered(place, f"`evaluate: {evaluate}` is {_LATER}")
         for key, what in _KEPT.items():
             if key in criterion.kept and measure.read is not None:
-                yield Unanswered(place, f"{what} {_LATER}")
+                yield Unanswered(place, f"{what} is {_LATER}")
         if basis is not None and basis.kind == "evidence":
             yield Unanswered(basis.place, f"the evidence {basis.evidence} is kept and not judged by this version")
+        elif basis is not None and basis.kind == "approximation" and any(name in LATER for name in basis.chain):
+            named = ", ".join(name for name in basis.chain if name in LATER)
+            yield Unanswered(basis.place, f"the approximation {named} is not audited by this version", decides=False)
 
     def _audit(self, nominal: Asked, again: Asked, basis: Basis | None, reading: Reading, unit: Unit) -> Audit:
         if basis is None or basis.kind == "computed":
@@ -92,7 +97,7 @@ class Criteria:
 
 def _reading(nominal: Asked, again: Asked, read: Reader | None, deciding: Unanswered | None) -> Reading:
     if deciding is not None or read is None:
-        return Reading.once(Answer.undecided(deciding.what if deciding else f"the measure {_LATER}"))
+        return Reading.once(Answer.undecided(deciding.what if deciding else _LATER))
     answer = nominal.read(read)
     return Reading.once(answer) if again is nominal else Reading(answer, again.read(read))
 

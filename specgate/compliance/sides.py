@@ -29,7 +29,7 @@ def formula_error(formula: Answer, truth: Answer, limits: Limits) -> FormulaErro
     else:
         absolute = Answer.of_ball(lambda bits: _difference(formula, truth, bits))
         relative = None if _may_be_zero(truth) else Answer.of_ball(lambda bits: _ratio(formula, truth, bits))
-    return FormulaError(absolute, relative, side(formula, truth, limits))
+    return FormulaError(absolute, relative, side(formula, truth, limits), truth)
 
 
 def _leaning(promise: Answer, truth: Answer, limits: Limits) -> int:

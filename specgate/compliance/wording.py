@@ -59,8 +59,13 @@ def limit_words(limit: Limit) -> str:
 
 def subject(assessed: CriterionAssessment) -> str:
     """Name the measure and what it is read from."""
+    return f"{assessed.measure.name} of {subject_name(assessed)}"
+
+
+def subject_name(assessed: CriterionAssessment) -> str:
+    """Name what a measure is read from: a loop, or loop and response or break."""
     about = assessed.criterion.subject
-    return f"{assessed.measure.name} of {about.loop if about.name is None else f'{about.loop}.{about.name}'}"
+    return about.loop if about.name is None else f"{about.loop}.{about.name}"
 
 
 def result(assessed: CriterionAssessment) -> str:
@@ -69,9 +74,7 @@ def result(assessed: CriterionAssessment) -> str:
     value = _value(assessed.reading.settled if unit is None else assessed.reading.in_unit(unit), assessed.scale)
     if isinstance(value, str):
         return value
-    limits = [
-        _printed_limit(limit, unit) for limit in (assessed.limits.least, assessed.limits.most) if limit is not None
-    ]
+    limits = [_printed_limit(limit, unit) for limit in (assessed.least, assessed.most) if limit is not None]
     enough = (
         digits
         for digits in range(_FEW, DIGITS)
@@ -80,9 +83,8 @@ def result(assessed: CriterionAssessment) -> str:
     return with_unit(number(value, next(enough, DIGITS)), unit)
 
 
-def _printed_limit(limit: fmpq, unit: Unit | None) -> float:
-    answer = Answer.of_exact(limit)
-    value = _value(answer if unit is None else Reading.once(answer).in_unit(unit), None)
+def _printed_limit(limit: Reading, unit: Unit | None) -> float:
+    value = _value(limit.settled if unit is None else limit.in_unit(unit), None)
     assert not isinstance(value, str)
     return value
 
@@ -98,12 +100,10 @@ def criterion_words(assessed: CriterionAssessment) -> str:
 
 def condition_words(audited: AuditedCondition) -> str:
     """Say what a condition requires and what was found."""
-    condition = audited.condition
     found = found_value(audited.found)
-    wanted = f"{condition.named(audited.threshold)} ({condition.asked(audited.threshold)})"
-    if found is None:
-        return f"{wanted} is not given"
-    return f"{wanted} is not given: {number(found, 3) if isinstance(found, float) else found}"
+    shown = "nothing" if found is None else number(found) if isinstance(found, float) else found
+    condition = audited.condition
+    return f"{condition.named(audited.threshold)} (required {condition.asked(audited.threshold)}, found {shown})"
 
 
 def found_value(found: Found) -> float | str | None:
@@ -115,16 +115,25 @@ def found_value(found: Found) -> float | str | None:
     return printed_short(found.value)
 
 
+def promise_words(assessed: CriterionAssessment) -> str:
+    """Put the promised value beside the computed one."""
+    audit = assessed.audit
+    promised = f"claimed {audit.claim.value.as_written}" if audit.claim is not None else ""
+    if not promised and audit.formula is not None and audit.formula.absent is None:
+        promised = f"its formula gives {formula_words(assessed)}"
+    computed = assessed.reading.settled
+    if not promised or computed.absent is not None or assessed.unit is None:
+        return promised
+    return f"{promised}, computed {result(assessed)}"
+
+
 def instead_words(assessed: CriterionAssessment) -> str:
     """Say what to use in place of a basis that does not stand."""
-    instead = assessed.audit.instead
-    if instead is None or instead.value is None or assessed.audit.unit is None:
+    instead, unit = assessed.audit.instead, assessed.audit.unit
+    if instead is None or instead.value is None or unit is None or instead.name == "computed":
         return "rest the claim on `basis: computed`"
-    unit = assessed.audit.unit
     shown = figure(Reading.once(instead.value).in_unit(unit), unit)
-    if instead.name == "computed":
-        return f"rest the claim on `basis: computed`, which gives {shown}"
-    return f"{instead.name} applies and gives {shown}; or rest the claim on `basis: computed`"
+    return f"{instead.name} applies, errs on the safe side and gives {shown}; or rest the claim on `basis: computed`"
 
 
 def claim_words(assessed: CriterionAssessment) -> str:

@@ -143,10 +143,11 @@ class LoopReview:
 
 @dataclass(frozen=True)
 class ParameterReview:
-    """A parameter with its nominal value, in the unit it was written in."""
+    """A parameter with its nominal value in coherent SI; in dB, and in units that hold pi, as it was written."""
 
     value: float
-    exact: str
+    exact: str | None
+    """None for a formula that rests on pi."""
     unit: str
     as_written: str
     location: Location

@@ -11,7 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from specgate.compliance.wording import instead_words, subject
+from specgate.compliance.wording import instead_words, promise_words, subject
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Standing
@@ -30,7 +30,7 @@ def check(facts: Facts) -> Iterator[Finding]:
                     level=facts.restating(Standing.INCONCLUSIVE),
                     message=(
                         f"{name}: {' + '.join(audit.chain)} does not decide {subject(criterion)}: {audit.reason}; "
-                        f"{instead_words(criterion)}"
+                        f"{promise_words(criterion)}; {instead_words(criterion)}"
                     ),
                     place=audit.place,
                     requirement=name,

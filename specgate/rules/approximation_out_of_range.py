@@ -9,8 +9,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from specgate.compliance.assessment import Audit, AuditedCondition
-from specgate.compliance.wording import condition_words, instead_words, subject
+from specgate.compliance.assessment import Audit
+from specgate.compliance.wording import condition_words, instead_words, promise_words, subject
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Standing, Trilean
@@ -28,8 +28,8 @@ def check(facts: Facts) -> Iterator[Finding]:
                     rule=NAME,
                     level=facts.restating(Standing.OUT_OF_RANGE),
                     message=(
-                        f"{name}: {' + '.join(audit.chain)} does not apply to {subject(criterion)}: "
-                        f"{_violated(audit)}; {instead_words(criterion)}"
+                        f"{name}: {' + '.join(audit.chain)} is out of its range for {subject(criterion)}: "
+                        f"{_violated(audit)}; {promise_words(criterion)}; {instead_words(criterion)}"
                     ),
                     place=audit.place,
                     requirement=name,
@@ -38,8 +38,14 @@ def check(facts: Facts) -> Iterator[Finding]:
 
 
 def _violated(audit: Audit) -> str:
-    broken: list[AuditedCondition] = [one for one in audit.conditions if one.found.holds is Trilean.NO]
-    return "; ".join(condition_words(one) for one in broken)
+    """Say the first condition that does not hold, and how many more there are; the review lists all of them."""
+    broken = [one for one in audit.conditions if one.found.holds is Trilean.NO]
+    if not broken:
+        return audit.reason or "it has no value here"
+    if len(broken) == 1:
+        return condition_words(broken[0])
+    more = "1 more condition" if len(broken) == 2 else f"{len(broken) - 1} more conditions"
+    return f"{condition_words(broken[0])}, and {more} do{'es' if len(broken) == 2 else ''} not hold"
 
 
 RULE = Rule(NAME, "Approximation out of range", "error or warning (restates the standing)", check, __doc__)

@@ -1,0 +1,160 @@
+"""The machine-readable result: a Review written as JSON and read back, nothing added, nothing lost.
+
+`read(write(review)) == review` holds for every Review. Keys are the field names of `specgate.review.types`; what is
+None and marked `omit` there is left out. Lists of plain values stand on one line, so that a difference between two
+results is read line by line.
+"""
+
+from __future__ import annotations
+
+import dataclasses
+import json
+import types
+import typing
+from collections.abc import Iterator, Mapping
+from functools import cache
+from typing import Any
+
+from specgate.review.types import Review, Unusable
+
+_WIDTH = 120
+
+
+def write(review: Review | Unusable) -> str:
+    """Write a result as JSON text that ends with a line break."""
+    return "".join(_lines(_plain(review), "")) + "\n"
+
+
+def read(text: str) -> Review | Unusable:
+    """Read a result back. Raises ValueError where the text is no result of the format."""
+    tree = json.loads(text)
+    if not isinstance(tree, dict) or "format" not in tree:
+        raise ValueError("this is not a result of specgate: the key `format` is missing")
+    return typing.cast("Review | Unusable", _build(Review if "project" in tree else Unusable, tree, "result"))
+
+
+# --- from types to plain values ----------------------------------------------------------------------------
+
+
+@dataclasses.dataclass(frozen=True)
+class _Field:
+    name: str
+    key: str
+    omit: bool
+    type: Any
+
+
+@cache
+def _fields(kind: type) -> tuple[_Field, ...]:
+    """Return the fields of a type in writing order: what it adds to its base comes first."""
+    hints = typing.get_type_hints(kind)
+    base = kind.__mro__[1]
+    inherited = {one.name for one in dataclasses.fields(base)} if dataclasses.is_dataclass(base) else set()
+    every = sorted(dataclasses.fields(kind), key=lambda one: one.name in inherited)
+    return tuple(
+        _Field(one.name, one.metadata.get("json", one.name), one.metadata.get("omit", False), hints[one.name])
+        for one in every
+    )
+
+
+def _plain(value: Any) -> Any:
+    if dataclasses.is_dataclass(value) and not isinstance(value, type):
+        pairs = ((one, getattr(value, one.name)) for one in _fields(type(value)))
+        return {one.key: _plain(part) for one, part in pairs if not (one.omit and part is None)}
+    if isinstance(value, Mapping):
+        return {str(key): _plain(part) for key, part in value.items()}
+    if isinstance(value, list | tuple):
+        return [_plain(part) for part in value]
+    return value
+
+
+# --- from plain values to text -----------------------------------------------------------------------------
+
+
+def _lines(value: Any, indent: str) -> Iterator[str]:
+    """Yield the text of a plain value; `indent` is that of the line on which it begins."""
+    if isinstance(value, dict) and value:
+        entries: list[tuple[str, Any]] = [(f"{_scalar(key)}: ", part) for key, part in value.items()]
+        yield from _block("{", "}", entries, indent)
+    elif isinstance(value, list) and not all(_is_scalar(part) for part in value):
+        yield from _block("[", "]", [("", part) for part in value], indent)
+    elif isinstance(value, list):
+        yield "[" + ", ".join(_scalar(part) for part in value) + "]"
+    else:
+        yield _scalar(value)
+
+
+def _block(opening: str, closing: str, entries: list[tuple[str, Any]], indent: str) -> Iterator[str]:
+    within = indent + "  "
+    short = _short(opening, closing, entries, indent)
+    if short is not None:
+        yield short
+        return
+    yield opening
+    for number, (label, part) in enumerate(entries):
+        yield f"{',' if number else ''}\n{within}{label}"
+        yield from _lines(part, within)
+    yield f"\n{indent}{closing}"
+
+
+def _short(opening: str, closing: str, entries: list[tuple[str, Any]], indent: str) -> str | None:
+    """Return a block of plain values on one line, where it fits."""
+    if not all(_is_scalar(part) for _, part in entries):
+        return None
+    text = opening + ", ".join(label + _scalar(part) for label, part in entries) + closing
+    return text if len(indent) + len(text) <= _WIDTH else None
+
+
+def _is_scalar(value: Any) -> bool:
+    return not isinstance(value, dict | list) or not value
+
+
+def _scalar(value: Any) -> str:
+    return json.dumps(value, ensure_ascii=False, allow_nan=False)
+
+
+# --- from plain values to types ----------------------------------------------------------------------------
+
+
+def _build(kind: Any, value: Any, where: str) -> Any:
+    """Build a value of the annotated type `kind` from plain values."""
+    origin, inner = typing.get_origin(kind), typing.get_args(kind)
+    if dataclasses.is_dataclass(kind):
+        return _record(typing.cast(type, kind), value, where)
+    if origin in (typing.Union, types.UnionType):
+        return _one_of(inner, value, where)
+    if origin is tuple:
+        return _sequence(inner, value, where)
+    if origin is Mapping:
+        if not isinstance(value, dict):
+            raise ValueError(f"{where}: an object is wanted")
+        return {key: _build(inner[1], part, f"{where}.{key}") for key, part in value.items()}
+    return value
+
+
+def _record(kind: type, value: Any, where: str) -> Any:
+    if not isinstance(value, dict):
+        raise ValueError(f"{where}: an object is wanted")
+    known = {one.key: one for one in _fields(kind)}
+    unknown = [key for key in value if key not in known]
+    if unknown:
+        raise ValueError(f"{where}: the key `{unknown[0]}` is not one of this format")
+    try:
+        return kind(**{known[key].name: _build(known[key].type, part, f"{where}.{key}") for key, part in value.items()})
+    except TypeError as problem:
+        raise ValueError(f"{where}: {problem}") from None
+
+
+def _one_of(kinds: tuple[Any, ...], value: Any, where: str) -> Any:
+    """Take the only alternative that is not plain (the format has no union of two records)."""
+    if value is None:
+        return None
+    shaped = [one for one in kinds if dataclasses.is_dataclass(one) or typing.get_origin(one) in (tuple, Mapping)]
+    return _build(shaped[0], value, where) if shaped else value
+
+
+def _sequence(inner: tuple[Any, ...], value: Any, where: str) -> tuple[Any, ...]:
+    if not isinstance(value, list):
+        raise ValueError(f"{where}: a list is wanted")
+    kind = inner[0]
+    return tuple(_build(kind, part, f"{where}[{number}]") for number, part in enumerate(value))

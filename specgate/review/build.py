@@ -1,0 +1,115 @@
+"""A project to its Review: everything computed, judged and said, in plain values."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from typing import TYPE_CHECKING
+
+from specgate import __version__
+from specgate.analysis.analyse import analyse
+from specgate.compliance.assess import assess
+from specgate.compliance.thresholds import policy
+from specgate.project.types import InputFile, Project
+from specgate.review.definitions import definitions
+from specgate.review.gate import gate
+from specgate.review.loops import LoopReviews
+from specgate.review.printing import location, short
+from specgate.review.requirements import requirement
+from specgate.review.specification import specification
+from specgate.review.types import (
+    FindingReview,
+    GateReview,
+    InputReview,
+    PolicyReview,
+    ProjectReview,
+    Review,
+    ToolReview,
+    Unusable,
+)
+from specgate.rules.rule import Facts
+from specgate.rules.table import findings
+from specgate.terms.findings import Finding, in_order
+from specgate.traceability.graph import trace
+
+if TYPE_CHECKING:
+    from specgate.intake.load import Problems
+
+FORMAT = 1
+"""Version of the results format."""
+
+
+def review(project: Project) -> Review:
+    """Compute and judge a project. Raises Fault for a project that its checks refuse."""
+    analyses, graph = analyse(project), trace(project)
+    assessments = assess(project, analyses, graph)
+    warned = (one for one in project.warnings if isinstance(one, Finding))
+    said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments))))
+    printer = LoopReviews(project, analyses)
+    loops = {name: printer.loop(name) for name in project.loops}
+    requirements = {name: requirement(name, one, project, analyses, graph) for name, one in assessments.items()}
+    shown = tuple(_finding(one) for one in said)
+    info = project.info
+    return Review(
+        format=FORMAT,
+        tool=_tool(),
+        project=ProjectReview(info.id, info.title, info.revision, info.date, info.stage, info.stages, info.sign_off),
+        inputs=_inputs(project.inputs),
+        policy=PolicyReview(
+            hold_on=project.gate.hold_on,
+            evaluate=project.evaluate,
+            changed_thresholds=tuple(
+                {
+                    "approximation": one.approximation,
+                    "condition": one.key,
+                    "catalogue": short(one.catalogue),
+                    "project": one.as_written,
+                    "effect": "tightened" if one.applied else "looser, not applied",
+                }
+                for one in policy(project, analyses.nominal.values).stated
+            ),
+        ),
+        units=project.units_read,
+        specification=specification(project, analyses),
+        loops=loops,
+        requirements=requirements,
+        trace={name: one.derived_from for name, one in requirements.items() if one.derived_from},
+        definitions=definitions(loops, requirements, shown),
+        findings=shown,
+        gate=gate(project.gate, assessments, said),
+    )
+
+
+def unusable(problems: Problems) -> Unusable:
+    """Say why a project could not be built."""
+    found = in_order(problems.findings)
+    count = len(found)
+    reason = f"the project could not be built: {count} problem{'s' if count > 1 else ''} in its files"
+    return Unusable(
+        format=FORMAT,
+        tool=_tool(),
+        inputs=_inputs(problems.inputs),
+        findings=tuple(_finding(one) for one in found),
+        gate=GateReview("unusable", (reason,)),
+    )
+
+
+def _tool() -> ToolReview:
+    return ToolReview("specgate", __version__)
+
+
+def _inputs(files: Iterable[InputFile]) -> tuple[InputReview, ...]:
+    return tuple(InputReview(one.path, one.sha256) for one in files)
+
+
+def _finding(finding: Finding) -> FindingReview:
+    return FindingReview(
+        rule=finding.rule,
+        level=finding.level.value,
+        message=finding.message,
+        location=location(finding.place),
+        requirement=finding.requirement,
+        loop=finding.loop,
+        response=finding.response,
+        subsystem=finding.subsystem,
+        related=tuple(location(one.place, one.message) for one in finding.related),
+    )

@@ -1,0 +1,42 @@
+"""The gate: passes or holds, by the project's policy over verdicts, standings and findings; each reason a sentence."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+
+from specgate.compliance.assessment import Assessment
+from specgate.project.types import GatePolicy
+from specgate.review.types import GateReview
+from specgate.terms.findings import Finding
+from specgate.terms.verdicts import Level, Standing, Verdict
+
+_WORDS = {
+    Verdict.NON_COMPLIANT.value: "not met",
+    Verdict.OPEN.value: "open",
+    Standing.OUT_OF_RANGE.value: "rests on an approximation outside its range",
+    Standing.INCONCLUSIVE.value: "rests on a basis that does not decide it",
+}
+
+
+def gate(policy: GatePolicy, assessments: Mapping[str, Assessment], findings: tuple[Finding, ...]) -> GateReview:
+    """Return the outcome and what holds it."""
+    reasons = (*_verdicts(policy, assessments), *_errors(findings))
+    return GateReview("hold" if reasons else "pass", reasons)
+
+
+def _verdicts(policy: GatePolicy, assessments: Mapping[str, Assessment]) -> Iterator[str]:
+    for name, assessment in assessments.items():
+        if not assessment.due or assessment.verdict is None:
+            continue
+        if assessment.verdict.value in policy.hold_on:
+            why = f": {assessment.reason}" if assessment.reason else ""
+            yield f"{name} is {_WORDS[assessment.verdict.value]}{why}"
+        if assessment.standing is not None and assessment.standing.value in policy.hold_on:
+            yield f"{name} {_WORDS[assessment.standing.value]}"
+
+
+def _errors(findings: tuple[Finding, ...]) -> Iterator[str]:
+    """Yield the errors that do not only restate a verdict or a standing."""
+    for finding in findings:
+        if finding.level is Level.ERROR and not finding.restates:
+            yield f"{finding.message} ({finding.place})"

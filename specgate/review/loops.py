@@ -1,0 +1,169 @@
+"""Loops, responses and breaks as they stand in a Review."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import fields, replace
+
+from flint import arb, fmpq
+
+from specgate.analysis.analyses import Analyses, LoopAnalysis, Missing, ResponseAnalysis
+from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID
+from specgate.compliance.readings import Reading
+from specgate.compliance.units import default_unit, smallness
+from specgate.measures.measure import Arguments, Measure, Reader, SubjectKind
+from specgate.measures.subjects import ResponseSubject, Subject
+from specgate.measures.table import MEASURES
+from specgate.project.signals import signal_unit
+from specgate.project.types import Project, Response
+from specgate.response.answers import Absent
+from specgate.review.printing import coefficients, poles, result
+from specgate.review.types import (
+    BreakReview,
+    Curve,
+    HiddenMode,
+    LoopReview,
+    MeasureResult,
+    ResponseReview,
+    Result,
+)
+from specgate.systems.roots import certified_roots
+from specgate.terms.enclosed import ends, printed_short, rounded
+from specgate.terms.unit import ONE, Unit
+
+_SHOWN = 128
+"""Bits at which poles are certified for printing."""
+
+_POINTS = 400
+
+
+class LoopReviews:
+    """Prints the loops of one project."""
+
+    def __init__(self, project: Project, analyses: Analyses) -> None:
+        self.project, self.analyses = project, analyses
+
+    def loop(self, name: str) -> LoopReview:
+        """Print one loop with everything that is reported on it, asked for or not."""
+        found, again = self.analyses.nominal.loops[name], self.analyses.again.loops[name]
+        declared = found.loop
+        reason = _reason(found)
+        modes = None if reason else found.solution.determinant
+        return LoopReview(
+            title=declared.title,
+            wiring={key: signal.as_written for key, signal in declared.signals.items()},
+            inputs={key: one.unit.symbol for key, one in declared.inputs.items()},
+            signal_units={key: self._unit(name, key).symbol for key in declared.signals},
+            rest={key: value.as_written for key, value in declared.rest.items()},
+            subsystems=found.subsystems,
+            characteristic_polynomial=() if modes is None else coefficients(modes),
+            poles=() if modes is None else poles(certified_roots(modes, _SHOWN)),
+            hidden_modes=tuple(_hidden(found)),
+            measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
+            responses={key: _response(one, again.responses[key]) for key, one in found.responses.items()},
+            breaks={key: self._break(found, again, key) for key in found.breaks},
+            reason=reason,
+        )
+
+    def _unit(self, loop: str, signal: str) -> Unit:
+        return signal_unit(self.project, loop, signal, self.analyses.nominal.values)
+
+    def _break(self, found: LoopAnalysis, again: LoopAnalysis, name: str) -> BreakReview:
+        one = found.breaks[name]
+        if isinstance(one.subject, Missing):
+            return BreakReview(one.declared.at, (), reason=one.subject.reason)
+        opened = one.subject.open_loop
+        return BreakReview(
+            at=one.declared.at,
+            measures=_measures("break", one.subject, again.breaks[name].subject, ONE),
+            numerator=coefficients(opened.numerator),
+            denominator=coefficients(opened.denominator),
+        )
+
+
+def _reason(found: LoopAnalysis) -> str | None:
+    if isinstance(found.subject, Missing):
+        return found.subject.reason
+    return None if found.solution.algebraic_loop is None else found.solution.algebraic_loop.reason
+
+
+def _hidden(found: LoopAnalysis) -> Iterator[HiddenMode]:
+    for name, response in found.responses.items():
+        channel = response.channel
+        if channel is not None and channel.hidden.degree() > 0:
+            roots = poles(certified_roots(channel.hidden, _SHOWN))
+            yield HiddenMode(name, coefficients(channel.hidden), not channel.hides_instability, roots)
+
+
+def _response(found: ResponseAnalysis, again: ResponseAnalysis) -> ResponseReview:
+    declared, subject = found.response, found.subject
+    reduced = None if found.channel is None else found.channel.transfer.reduced()
+    missing = isinstance(subject, Missing)
+    return ResponseReview(
+        from_=" + ".join(one.source for one in declared.excitations),
+        to=declared.to,
+        input=_input(declared),
+        unit=found.unit.symbol,
+        numerator=() if reduced is None else coefficients(reduced.numerator),
+        denominator=() if reduced is None else coefficients(reduced.denominator),
+        measures=() if missing else _measures("response", subject, again.subject, found.unit),
+        poles=() if reduced is None else poles(certified_roots(reduced.denominator, _SHOWN)),
+        zeros=() if reduced is None or not reduced.numerator else poles(certified_roots(reduced.numerator, _SHOWN)),
+        curve=_curve(found),
+        reason=subject.reason if isinstance(subject, Missing) else None,
+    )
+
+
+def _input(declared: Response) -> dict[str, str]:
+    """Print what drives a response; of several at once each as one text."""
+    if len(declared.excitations) == 1:
+        one = declared.excitations[0]
+        return {"kind": one.kind, **{key: value.as_written for key, value in one.quantities.items()}, **one.options}
+    texts = {
+        one.source: " ".join((one.kind, *(f"{key} {value.as_written}" for key, value in one.quantities.items())))
+        for one in declared.excitations
+    }
+    return {"kind": "several", **texts}
+
+
+def _measures(
+    kind: SubjectKind, subject: Subject | Missing, again: Subject | Missing, signal: Unit
+) -> tuple[MeasureResult, ...]:
+    """Print every measure that is always reported on a subject of this kind."""
+    if isinstance(subject, Missing) or isinstance(again, Missing):
+        return ()
+    rows = (row for row in MEASURES.values() if row.always and row.read is not None and kind in row.subjects)
+    return tuple(_measure(row, subject, again, signal) for row in rows)
+
+
+def _measure(row: Measure, subject: Subject, again: Subject, signal: Unit) -> MeasureResult:
+    arguments = replace(ALWAYS, measure=row.name)
+    unit = default_unit(row, arguments, signal)
+    readings = [_read(row, reader, subject, again, arguments) for reader in (row.read, row.beside)]
+    assert readings[0] is not None
+    found = result(readings[0], unit, smallness(row, arguments, subject, unit), readings[1])
+    plain = {one.name: getattr(found, one.name) for one in fields(Result)}
+    return MeasureResult(**plain, measure=row.name, arguments=ALWAYS_SAID.get(row.name))
+
+
+def _read(
+    row: Measure, reader: Reader | None, subject: Subject, again: Subject, arguments: Arguments
+) -> Reading | None:
+    if reader is None:
+        return None
+    answer = reader(subject, arguments)
+    return Reading.once(answer) if again is subject else Reading(answer, reader(again, arguments))
+
+
+def _curve(found: ResponseAnalysis) -> Curve | None:
+    subject = found.subject
+    if not isinstance(subject, ResponseSubject) or isinstance(subject.response, Absent) or subject.void is not None:
+        return None
+    factor = found.unit.si_factor
+    points = [(arb(time), value / factor) for time, value in subject.response.curve(_POINTS)]
+    peak = max((abs(end) for _, value in points for end in ends(value)), default=fmpq(0))
+    scale = rounded(peak, "up", 2)
+    return Curve(
+        tuple(printed_short(time) for time, _ in points),
+        tuple(printed_short(value, scale) for _, value in points),
+    )

@@ -1,0 +1,133 @@
+"""From exact and enclosed values to the plain values of a Review."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+from typing import Any
+
+from flint import fmpq, fmpq_poly
+
+from specgate.compliance.readings import Reading
+from specgate.response.answers import Answer, Fragile
+from specgate.review.types import Amount, Location, Pole, Result
+from specgate.systems.roots import Root
+from specgate.terms.decimals import power_of_ten
+from specgate.terms.enclosed import DIGITS, Enclosed, ends, in_unit, magnitude, printed, printed_exact, to_float
+from specgate.terms.places import Place
+from specgate.terms.unit import Unit
+from specgate.terms.verdicts import Proof
+
+
+def location(place: Place, message: str | None = None) -> Location:
+    """Print a place."""
+    return Location(place.path, place.line, place.column, message)
+
+
+def fraction(value: fmpq) -> str:
+    """Print a rational as a fraction, or as a whole number."""
+    return str(value.p) if value.q == 1 else f"{value.p}/{value.q}"
+
+
+def short(value: fmpq) -> str:
+    """Print a rational in few digits."""
+    return f"{printed_exact(value).value:.6g}"
+
+
+def coefficients(polynomial: fmpq_poly) -> tuple[str, ...]:
+    """Print a polynomial: exact coefficients, highest power first."""
+    return tuple(fraction(value) for value in reversed(polynomial.coeffs())) or ("0",)
+
+
+def poles(roots: Iterable[Root]) -> tuple[Pole, ...]:
+    """Print certified roots; the radius holds the rounding of what is printed."""
+    return tuple(_pole(root) for root in roots)
+
+
+def _pole(root: Root) -> Pole:
+    size = max(abs(end) for ball in (root.value.real, root.value.imag) for end in ends(ball))
+    radius = 0.0 if size == 0 else to_float(power_of_ten(magnitude(size) - DIGITS + 1))
+    real = 0.0 if root.value.real.contains(0) else printed(lambda _: root.value.real).value
+    imaginary = 0.0 if root.value.imag.contains(0) else printed(lambda _: root.value.imag).value
+    return Pole(real, imaginary, root.multiplicity, radius)
+
+
+def amount(reading: Reading, unit: Unit, as_written: str | None = None) -> Amount:
+    """Print a number in coherent SI as an amount in `unit`."""
+    form = _form(reading.in_unit(unit), None)
+    return Amount(form.value, unit.symbol, form.exact, as_written)
+
+
+def stated(value: fmpq, unit: Unit, as_written: str) -> Amount:
+    """Print a literal of the file, in coherent SI, as an amount in the unit it is written in."""
+    if unit.kind == "decibel":
+        return amount(Reading.once(Answer.of_exact(value)), unit, as_written)
+    form = printed_exact(value / unit.si_factor)
+    return Amount(form.value, unit.symbol, form.exact, as_written)
+
+
+def amount_of(answer: Answer, unit: Unit, scale: fmpq | None = None) -> Amount | None:
+    """Print an answer in coherent SI as an amount in `unit`; None where it has no value."""
+    if answer.absent is not None or answer.truth is not None:
+        return None
+    form = _form(Reading.once(answer).in_unit(unit), scale)
+    return Amount(form.value, unit.symbol, form.exact)
+
+
+def plain_number(answer: Answer, scale: fmpq | None = None) -> float:
+    """Print an answer that has a value, in the unit in which it is."""
+    return _form(answer, scale).value
+
+
+def result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Reading | None = None) -> Result:
+    """Print what was read. unit None: a whole number, yes or no. scale: what it is small against, in that unit."""
+    answer = reading.settled
+    if answer.absent is not None:
+        infinite = True if answer.absent.infinite else None
+        return Result(
+            None, proof=answer.proof.value if infinite else None, reason=answer.absent.reason, infinite=infinite
+        )
+    if answer.truth is not None:
+        return Result(answer.truth, proof=answer.proof.value)
+    if unit is None:
+        return _counted(answer)
+    stated = reading.in_unit(unit)
+    form = _form(stated, scale)
+    signed = None if beside is None or beside.settled.absent is not None else _form(beside.in_unit(unit), scale).value
+    return Result(
+        form.value,
+        form.lower,
+        form.upper,
+        form.exact,
+        unit.symbol,
+        form.proof.value,
+        fragile=_fragile(answer.fragile, unit),
+        signed=signed,
+    )
+
+
+def _counted(answer: Answer) -> Result:
+    if answer.exact is None or answer.exact.q != 1:
+        raise ValueError("a whole number is wanted")
+    return Result(int(answer.exact.p), proof=Proof.EXACT.value)
+
+
+def _form(answer: Answer, scale: fmpq | None) -> Enclosed:
+    return printed_exact(answer.exact) if answer.exact is not None else printed(answer.enclose, scale)
+
+
+def _fragile(fragile: Fragile | None, unit: Unit) -> str | None:
+    if fragile is None:
+        return None
+    if fragile.other is None:
+        return fragile.reason
+    other = printed(in_unit(fragile.other, unit))
+    return f"{fragile.reason}; the other candidate is {other.value:.6g} {unit.symbol}"
+
+
+def as_plain(value: Any) -> Any:
+    """Turn kept content into what JSON can hold: tables, lists, texts, whole numbers, yes/no and null."""
+    if isinstance(value, Mapping):
+        return {str(key): as_plain(part) for key, part in value.items()}
+    if isinstance(value, list | tuple):
+        return [as_plain(part) for part in value]
+    return value if value is None or isinstance(value, bool | int | float | str) else str(value)

@@ -1,0 +1,210 @@
+"""Requirements with their criteria and audits as they stand in a Review."""
+
+from __future__ import annotations
+
+from flint import fmpq
+
+from specgate.analysis.analyses import Analyses
+from specgate.analysis.arguments import said
+from specgate.analysis.reads import parameters_read
+from specgate.compliance.assessment import (
+    Assessment,
+    Audit,
+    AuditedCondition,
+    CriterionAssessment,
+    FormulaError,
+    MethodAssessment,
+)
+from specgate.compliance.readings import Reading
+from specgate.compliance.reserves import reserve
+from specgate.compliance.wording import found_value, subject_name
+from specgate.project.types import Project
+from specgate.response.answers import Answer
+from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
+from specgate.review.types import (
+    BasisReview,
+    ConditionReview,
+    CriterionReview,
+    ErrorReview,
+    InsteadReview,
+    LimitReview,
+    MethodReview,
+    RequirementReview,
+    ReserveReview,
+)
+from specgate.terms.enclosed import ends, rounded
+from specgate.terms.unit import ONE, Unit
+from specgate.terms.verdicts import Trilean, Verdict
+from specgate.traceability.graph import Graph
+
+
+def requirement(
+    name: str, assessment: Assessment, project: Project, analyses: Analyses, graph: Graph
+) -> RequirementReview:
+    """Print one requirement."""
+    declared = assessment.requirement
+    exempt = declared.not_applicable
+    return RequirementReview(
+        text=declared.text,
+        title=declared.title,
+        rationale=declared.rationale,
+        owner=declared.owner,
+        location=location(declared.place),
+        derived_from=tuple(link.id for link in declared.derived_from),
+        allocated_to=tuple(link.id for link in declared.allocated_to),
+        verdict="not_applicable" if assessment.verdict is None else assessment.verdict.value,
+        standing=None if assessment.standing is None else assessment.standing.value,
+        decided_by=declared.decided_by,
+        methods=tuple(_method(one) for one in assessment.methods),
+        criteria=tuple(_criterion(one, project) for one in assessment.criteria),
+        rests_on=_rests_on(assessment, project, analyses),
+        derived=graph.children[name],
+        evidence=tuple(
+            {"id": kept.id, **as_plain(kept.content)}
+            for kept in project.evidence.values()
+            if kept.content.get("requirement") == name
+        ),
+        reason=assessment.reason,
+        not_applicable=None
+        if exempt is None
+        else {"reason": exempt.reason, "approved_by": exempt.approved_by, "approved_on": exempt.approved_on},
+        external=None if declared.external is None else as_plain(declared.external),
+    )
+
+
+def _method(assessed: MethodAssessment) -> MethodReview:
+    outcome = assessed.outcome
+    return MethodReview(
+        assessed.method.method, assessed.method.stage, outcome.value if isinstance(outcome, Verdict) else outcome
+    )
+
+
+def _rests_on(assessment: Assessment, project: Project, analyses: Analyses) -> tuple[str, ...]:
+    """Return the parameters, the subsystems, and the responses, breaks and loops that the criteria rest on."""
+    loops = dict.fromkeys(one.criterion.subject.loop for one in assessment.criteria)
+    used = dict.fromkeys(name for loop in loops for name in analyses.loops[loop].subsystems)
+    values = analyses.nominal.values
+    read = [name for block in used for name in parameters_read(project.subsystems[block], values)]
+    return tuple(dict.fromkeys((*read, *used, *(subject_name(one) for one in assessment.criteria))))
+
+
+# --- a criterion --------------------------------------------------------------------------------------------
+
+
+def _criterion(assessed: CriterionAssessment, project: Project) -> CriterionReview:
+    criterion = assessed.criterion
+    return CriterionReview(
+        measure=assessed.measure.name,
+        on=subject_name(assessed),
+        arguments=said(criterion),
+        limit=_limit(assessed),
+        evaluate=criterion.evaluate or project.evaluate,
+        verdict=assessed.verdict.value,
+        result=result(assessed.reading, assessed.unit, assessed.scale, assessed.beside),
+        reserve=_reserve(assessed),
+        basis=_basis(assessed.audit),
+        location=location(criterion.place),
+        reason=assessed.reason,
+    )
+
+
+def _limit(assessed: CriterionAssessment) -> LimitReview:
+    limit, unit = assessed.criterion.limit, assessed.unit or ONE
+    least, most = assessed.least, assessed.most
+    if limit.truth is not None:
+        return LimitReview(equals=limit.truth)
+    texts = [value.as_written for value in limit.values]
+    if limit.kind == "equals" and assessed.limits.most is not None:
+        return LimitReview(equals=int(assessed.limits.most.p))
+    if least is None or most is None:
+        return LimitReview(
+            at_most=None if most is None else amount(most, unit, texts[0]),
+            at_least=None if least is None else amount(least, unit, texts[0]),
+        )
+    if limit.kind == "between":
+        return LimitReview(between=(amount(least, unit, texts[0]), amount(most, unit, texts[1])))
+    half = Reading(_mean(most.answer, least.answer, -1), _mean(most.again, least.again, -1))
+    centre = Reading(_mean(most.answer, least.answer, 1), _mean(most.again, least.again, 1))
+    return LimitReview(within=amount(half, unit, texts[0]), of=amount(centre, unit, texts[1]))
+
+
+def _mean(high: Answer, low: Answer, sign: int) -> Answer:
+    assert high.exact is not None
+    assert low.exact is not None
+    return Answer.of_exact((high.exact + sign * low.exact) / 2)
+
+
+def _reserve(assessed: CriterionAssessment) -> ReserveReview | None:
+    found = reserve(assessed)
+    if found is None:
+        return None
+    unit = "1" if assessed.unit is None else assessed.unit.symbol
+    if found.value is None:
+        return ReserveReview(None, unit, None, infinite=True)
+    relative = None if found.relative is None else plain_number(found.relative, found.relative_scale)
+    return ReserveReview(plain_number(found.value, found.scale), unit, relative)
+
+
+# --- an audit -----------------------------------------------------------------------------------------------
+
+
+def _basis(audit: Audit) -> BasisReview:
+    unit = audit.unit or ONE
+    implied = audit.implied
+    return BasisReview(
+        kind=audit.kind,
+        standing=audit.standing.value,
+        chain=audit.chain,
+        claimed=None
+        if audit.claimed is None or audit.claim is None
+        else stated(audit.claimed, unit, audit.claim.value.as_written),
+        formula=None if audit.formula is None else amount_of(audit.formula, unit),
+        formula_text=audit.formula_text,
+        error=None if audit.error is None else _error(audit.error, unit),
+        claim_agrees=audit.agrees,
+        implied=None
+        if implied is None
+        else {key: plain_number(Reading.once(end).in_unit(unit)) for key, end in zip(_ENDS, implied, strict=True)},
+        accuracy=audit.accuracy,
+        conditions=tuple(_condition(one) for one in audit.conditions),
+        instead=_instead(audit, unit),
+        reason=audit.reason,
+    )
+
+
+_ENDS = ("lower", "upper")
+
+
+def _error(error: FormulaError, unit: Unit) -> ErrorReview:
+    relative = None if error.relative is None else plain_number(error.relative, fmpq(1))
+    return ErrorReview(relative, error.side, amount_of(error.absolute, unit, _size(error.truth, unit)))
+
+
+def _size(truth: Answer, unit: Unit) -> fmpq | None:
+    """Return the truth to two digits, as what an error is small against."""
+    if unit.kind == "decibel":
+        return None
+    size = rounded(ends(abs(truth.enclose(64)))[1], "up", 2) / unit.si_factor
+    return size if size != 0 else None
+
+
+def _condition(audited: AuditedCondition) -> ConditionReview:
+    holds = audited.found.holds
+    return ConditionReview(
+        key=audited.condition.key,
+        name=audited.condition.named(audited.threshold),
+        source=audited.condition.source,
+        required=audited.condition.asked(audited.threshold),
+        found=found_value(audited.found),
+        holds=None if holds is Trilean.UNKNOWN else holds is Trilean.YES,
+        approximation=audited.approximation,
+        policy=audited.policy,
+    )
+
+
+def _instead(audit: Audit, unit: Unit) -> InsteadReview | None:
+    instead = audit.instead
+    if instead is None:
+        return None
+    value = None if instead.value is None else amount_of(instead.value, unit)
+    return InsteadReview(instead.name, None if value is None else value.value, unit.symbol)

@@ -1,0 +1,141 @@
+"""Parameters, subsystems and documents as they stand in a Review."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+from flint import fmpq
+
+from specgate.analysis.analyses import Analyses
+from specgate.analysis.reads import parameters_read
+from specgate.compliance.readings import Reading
+from specgate.project.blocks import build
+from specgate.project.parameters import Values, parameters
+from specgate.project.types import (
+    FactoredModel,
+    MatrixModel,
+    Parameter,
+    PidModel,
+    PoleZeroModel,
+    PolynomialModel,
+    Port,
+    Project,
+    SampledModel,
+    StateSpaceModel,
+    Subsystem,
+)
+from specgate.response.answers import Answer
+from specgate.review.printing import as_plain, coefficients, location
+from specgate.review.types import ParameterReview, SpecificationReview, SubsystemReview
+from specgate.terms.dimensions import DIMENSIONLESS, Dimension
+from specgate.terms.enclosed import printed, printed_exact
+from specgate.terms.expressions import Expression, Number, as_dimension, literal_unit
+from specgate.terms.unit import ONE, Unit
+from specgate.terms.units import UnitTable
+
+_FORMS: Mapping[type, str] = {
+    PolynomialModel: "polynomials in s",
+    FactoredModel: "factors",
+    PoleZeroModel: "poles and zeros",
+    StateSpaceModel: "state space",
+    PidModel: "controller",
+    MatrixModel: "polynomials in s, several inputs or outputs",
+    SampledModel: "sampled controller",
+}
+
+
+def specification(project: Project, analyses: Analyses) -> SpecificationReview:
+    """Print what the files say, evaluated."""
+    values = analyses.nominal.values
+    used = {name for loop in analyses.loops.values() for name in loop.subsystems}
+    return SpecificationReview(
+        parameters={name: _parameter(one, name, analyses) for name, (one, _) in parameters(project).items()},
+        subsystems={
+            name: _subsystem(one, values, name in used, name in project.units_by_fit)
+            for name, one in project.subsystems.items()
+        },
+        documents={name: as_plain(kept.content) for name, kept in project.documents.items()},
+    )
+
+
+def _parameter(parameter: Parameter, name: str, analyses: Analyses) -> ParameterReview:
+    values, again = analyses.nominal.values, analyses.again.values
+    expression = parameter.value.expression
+    unit = _shown_unit(expression, as_dimension(values.inferred[name]))
+    if isinstance(expression, Number) and unit.kind == "decibel":
+        form = printed_exact(expression.value)
+    else:
+        number = Reading(Answer.of_exact(values.numbers[name]), Answer.of_exact(again.numbers[name])).in_unit(unit)
+        form = printed_exact(number.exact) if number.exact is not None else printed(number.enclose)
+    return ParameterReview(
+        value=form.value,
+        exact=form.exact,
+        unit=unit.symbol,
+        as_written=parameter.value.as_written,
+        location=location(parameter.place),
+        tolerance=_tolerance(parameter),
+        source=parameter.value.source,
+    )
+
+
+def _shown_unit(expression: Expression, dimension: Dimension) -> Unit:
+    """Return the coherent unit of a value, by the name it was written with or has in the table; dB and pi stay."""
+    written = literal_unit(expression)
+    if written is not None and (written.kind == "decibel" or written.pi_power != 0 or written.factor == 1):
+        return written
+    if dimension == DIMENSIONLESS and (written is None or written.angle == 0):
+        return ONE
+    angle = 0 if written is None else written.angle
+    listed = (unit for unit in UnitTable.standard().units.values() if unit.factor == 1 and unit.pi_power == 0)
+    named = (unit for unit in listed if (unit.dimension, unit.angle) == (dimension, angle))
+    plain = (unit for unit in named if unit.kind in ("linear", "temperature_difference"))
+    return next(plain, Unit(str(dimension), fmpq(1), 0, dimension))
+
+
+def _tolerance(parameter: Parameter) -> Mapping[str, str] | None:
+    tolerance = parameter.value.tolerance
+    if tolerance is None:
+        return None
+    said = {"as_written": tolerance.as_written}
+    if tolerance.distribution is not None:
+        said["distribution"] = tolerance.distribution
+    return said
+
+
+def _subsystem(subsystem: Subsystem, values: Values, used: bool, by_fit: bool) -> SubsystemReview:
+    block = build(subsystem, values).block
+    numerators = {} if block is None else {key: coefficients(one) for key, one in block.numerators.items()}
+    single = len(subsystem.inputs) == 1 and len(subsystem.outputs) == 1
+    return SubsystemReview(
+        title=subsystem.title,
+        owner=subsystem.owner,
+        inputs=_units(subsystem.inputs),
+        outputs=_units(subsystem.outputs),
+        model=_form(subsystem),
+        numerators={_channel(output, source, subsystem): one for (output, source), one in numerators.items()},
+        numerator=next(iter(numerators.values()), ()) if single else (),
+        denominator=() if block is None else coefficients(block.denominator),
+        reads=parameters_read(subsystem, values),
+        used=used,
+        location=location(subsystem.place),
+        realised=subsystem.realised,
+        by_fit=by_fit,
+    )
+
+
+def _form(subsystem: Subsystem) -> str:
+    model = subsystem.model
+    form = _FORMS[type(model)]
+    if isinstance(model, PidModel):
+        form = f"controller, {model.form} form"
+    elif isinstance(model, PolynomialModel) and model.written_as == "equation":
+        form = "differential equation"
+    return form if subsystem.dead_time is None else f"{form}, dead time {subsystem.dead_time.as_written}"
+
+
+def _channel(output: str, source: str, subsystem: Subsystem) -> str:
+    return output if len(subsystem.inputs) == 1 else f"{output}/{source}"
+
+
+def _units(ports: Mapping[str, Port]) -> dict[str, str]:
+    return {name: port.unit.symbol for name, port in ports.items()}
