@@ -71,7 +71,7 @@ def block_of(space: StateSpace, name: str) -> Block:
 
 
 def random_space(random: Random) -> StateSpace:
-    n, m, p = random.choice([0, 1, 1, 2, 2]), random.choice([1, 1, 2]), random.choice([1, 1, 2])
+    n, m, p = random.choice([0, 1, 1, 2, 2, 3]), random.choice([1, 1, 2, 3]), random.choice([1, 1, 2, 3])
     direct = random.choice([0, 0, 1])
 
     def matrix(rows: int, columns: int, factor: int = 1) -> fmpq_mat:
