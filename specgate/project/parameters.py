@@ -11,6 +11,7 @@ from flint import fmpq
 from specgate.project import faults
 from specgate.project.faults import Fault, Faults
 from specgate.project.types import Parameter, Project, Tolerance, Value
+from specgate.systems.graph import strong_components
 from specgate.terms import expressions
 from specgate.terms.expressions import (
     PLAIN,
@@ -30,9 +31,6 @@ Scopes = Mapping[str | None, Mapping[str, str]]
 
 SIGNAL_WORDS = frozenset({"span", "change"})
 """What `% of …` may say of the signal instead of a parameter."""
-
-LONGEST_CHAIN = 100
-"""Most formulas that may read one another in a row."""
 
 
 @dataclass(frozen=True)
@@ -91,13 +89,12 @@ def settle(
 ) -> tuple[Values, tuple[Finding, ...]]:
     """Evaluate every parameter that can be; also return what is wrong with the others."""
     work = _Settling(project, pi, replaced or {})
-    for name in work.every:
-        work.visit(name, ())
+    work.run()
     return work.values(), tuple(work.faults.findings)
 
 
 class _Settling:
-    """Depth-first over the names that formulas read."""
+    """Evaluation in the order in which formulas read one another."""
 
     def __init__(self, project: Project, pi: fmpq, replaced: Mapping[str, fmpq]) -> None:
         self.every, self.scopes, self.pi, self.replaced = parameters(project), scopes(project), pi, replaced
@@ -119,29 +116,36 @@ class _Settling:
             frozenset(self.broken),
         )
 
-    def visit(self, name: str, path: tuple[str, ...]) -> None:
-        if name in self.numbers or name in self.broken:
-            return
-        if name in path:
-            self._cycle(path[path.index(name) :])
-            return
-        parameter, scope = self.every[name]
-        if len(path) > LONGEST_CHAIN:
-            self.broken.add(name)
-            message = f"more than {LONGEST_CHAIN} formulas read one another in a row"
-            self.faults.findings.append(Fault(faults.VALUE, message, parameter.value.place).finding())
-            return
-        for read in expressions.names(parameter.value.expression):
-            if read in self.scopes[scope]:
-                self.visit(self.scopes[scope][read], (*path, name))
-        if name not in self.broken:
-            self._evaluate(name, parameter, scope)
+    def run(self) -> None:
+        for component in strong_components(self._arcs()):
+            if len(component) > 1 or component[0] in self._reads(component[0]):
+                self._circle(component)
+            else:
+                self._evaluate(component[0], *self.every[component[0]])
 
-    def _cycle(self, cycle: tuple[str, ...]) -> None:
-        self.broken.update(cycle)
-        first = self.every[cycle[0]][0]
-        others = (Related(self.every[name][0].place, f"`{name}` is read on the way") for name in cycle[1:])
-        message = f"the formulas go round in a circle: {' → '.join((*cycle, cycle[0]))}"
+    def _reads(self, name: str) -> list[str]:
+        """Return the qualified names that a parameter reads; unknown ones are said when it is evaluated."""
+        expression, scope = self.written[name]
+        known = self.scopes[scope]
+        return [known[read] for read in expressions.names(expression) if read in known]
+
+    def _arcs(self) -> dict[str, list[str]]:
+        arcs: dict[str, list[str]] = {name: [] for name in self.every}
+        for name in self.every:
+            for read in self._reads(name):
+                arcs[read].append(name)
+        return arcs
+
+    def _circle(self, component: tuple[str, ...]) -> None:
+        """Report formulas that read one another, along one way round."""
+        self.broken.update(component)
+        way = [component[0]]
+        while way[-1] not in way[:-1]:
+            way.append(next(read for read in self._reads(way[-1]) if read in component))
+        way = way[way.index(way[-1]) :]
+        first = self.every[way[0]][0]
+        others = (Related(self.every[name][0].place, f"`{name}` is read on the way") for name in way[1:-1])
+        message = f"the formulas go round in a circle: {' → '.join(way)}"
         self.faults.findings.append(Fault(faults.VALUE, message, first.value.place, *others).finding())
 
     def _evaluate(self, name: str, parameter: Parameter, scope: str | None) -> None:
