@@ -2,35 +2,29 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Answer
+from specgate.response.course import Course
+from specgate.response.extremes import Extreme, greater, highest, mirrored
+from specgate.response.settling import first_arrival, settling
 from specgate.systems.roots import Root, certified_roots
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
 
+__all__ = ["Extreme", "StepResponse"]
+
 POLE_BITS = 128
 """Precision at which poles and zeros are shown; questions about the response refine them as needed."""
-
-_NOT_SEARCHED = "the time search of this response is not answered by this version"
-
-
-@dataclass(frozen=True)
-class Extreme:
-    """An extreme value and when it is taken; the time is absent where the value is only approached."""
-
-    value: Answer
-    time: Answer
 
 
 class StepResponse:
     """Response y(t), t > 0, of numerator/denominator to a step of `size` at t = 0, as deviation from rest.
 
     The fraction is reduced on construction; all quantities are coherent SI. Every question is answered once and
-    kept. Raises ValueError for an improper fraction or a zero denominator.
+    kept. Raises ValueError for an improper fraction.
     """
 
     def __init__(self, numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> None:
@@ -40,11 +34,13 @@ class StepResponse:
         self.numerator: fmpq_poly = reduced.numerator
         self.denominator: fmpq_poly = reduced.denominator
         self.size = size
+        self._settling: dict[fmpq, Answer] = {}
+        self._arrivals: dict[fmpq, Answer] = {}
 
     @cached_property
     def poles(self) -> tuple[Root, ...]:
         """Certified poles of the reduced fraction, with multiplicities (1/s)."""
-        return certified_roots(self.denominator, POLE_BITS)
+        return certified_roots(self.denominator, POLE_BITS) if self.denominator.degree() > 0 else ()
 
     @cached_property
     def zeros(self) -> tuple[Root, ...]:
@@ -54,12 +50,23 @@ class StepResponse:
     @cached_property
     def settles(self) -> bool:
         """Whether all poles lie strictly left of the imaginary axis, decided exactly."""
-        return self.denominator.degree() == 0 or is_hurwitz(self.denominator)
+        return is_hurwitz(self.denominator)
+
+    @cached_property
+    def _jump(self) -> fmpq:
+        return self.numerator[self.denominator.degree()] / self.denominator.leading_coefficient() * self.size
+
+    @cached_property
+    def _moves(self) -> bool:
+        return self.denominator.degree() > 0 and bool(self.numerator) and self.size != 0
+
+    @cached_property
+    def _course(self) -> Course:
+        return Course(self.numerator, self.denominator, self.size)
 
     def initial_value(self) -> Answer:
         """Return y(0+), the jump: exact."""
-        jump = self.numerator[self.denominator.degree()] / self.denominator.leading_coefficient()
-        return Answer.of_exact(jump * self.size)
+        return Answer.of_exact(self._jump)
 
     def final_value(self) -> Answer:
         """Return the limit of y for large t: exact, or the reason why there is none."""
@@ -69,34 +76,61 @@ class StepResponse:
 
     def greatest(self) -> Extreme:
         """Return sup y over t > 0, the jump and values that are only approached included."""
-        return self._unsearched()
+        return self._highest
 
     def least(self) -> Extreme:
         """Return inf y over t > 0, the jump and values that are only approached included."""
-        return self._unsearched()
+        return self._lowest
+
+    @cached_property
+    def _highest(self) -> Extreme:
+        return self._extreme(1)
+
+    @cached_property
+    def _lowest(self) -> Extreme:
+        return self._extreme(-1)
+
+    def _extreme(self, sign: int) -> Extreme:
+        if not self._moves:
+            return Extreme(Answer.of_exact(self._jump), Answer.of_exact(0))
+        if not self.settles:
+            open_question = Answer.undecided("the extremes of a response that does not settle are not searched")
+            return Extreme(open_question, open_question)
+        return highest(self._course, sign)
+
+    @cached_property
+    def _peak(self) -> Extreme:
+        return greater(self._highest, mirrored(self._lowest))
 
     def peak_deviation(self) -> Extreme:
-        """Return sup |y| over t > 0."""
-        return self._unsearched()
+        """Return sup |y| over t > 0, the jump and values that are only approached included."""
+        return self._peak
 
     def settling(self, distance: fmpq) -> Answer:
         """Return the least T with |y(t) - final| <= distance for all t >= T (s). Raises ValueError unless > 0."""
         if distance <= 0:
             raise ValueError("a settling band needs a positive half-width")
-        return self.final_value() if not self.settles else Answer.undecided(_NOT_SEARCHED)
+        if not self.settles:
+            return self.final_value()
+        if not self._moves:
+            return Answer.of_exact(0)
+        if distance not in self._settling:
+            self._settling[distance] = settling(self._course, distance)
+        return self._settling[distance]
 
     def first_arrival(self, level: fmpq) -> Answer:
-        """Return the first t with y(t) >= level, or <= level where the level is negative (s)."""
-        return self.final_value() if not self.settles else Answer.undecided(_NOT_SEARCHED)
+        """Return the first t > 0 with y(t) >= level, or <= level where the level is negative (s)."""
+        if not self.settles:
+            return self.final_value()
+        if not self._moves:
+            there = self._jump <= level if level < 0 else self._jump >= level
+            return Answer.of_exact(0) if there else Answer.nothing("the response never reaches the level")
+        if level not in self._arrivals:
+            self._arrivals[level] = first_arrival(self._course, level)
+        return self._arrivals[level]
 
     def enclose(self, time: fmpq | arb, bits: int) -> arb:
-        """Return a ball that contains y(time) for time > 0 (y(0+) at 0), computed with `bits` of precision."""
-        raise NotImplementedError
-
-    def curve(self, points: int = 400) -> tuple[tuple[fmpq, arb], ...]:
-        """Return at most `points` pairs (time, value) for drawing, in order of time."""
-        raise NotImplementedError
-
-    @staticmethod
-    def _unsearched() -> Extreme:
-        return Extreme(Answer.undecided(_NOT_SEARCHED), Answer.undecided(_NOT_SEARCHED))
+        """Return a ball that contains y(time) for time > 0 (y(0+) at 0), of relative radius 2^-bits where it can be."""
+        if not self._moves or (isinstance(time, fmpq) and time == 0):
+            return Answer.of_exact(self._jump).enclose(bits)
+        return self._course.deviation.value_at(time, bits)

@@ -1,4 +1,4 @@
-"""The one place where FLINT's working precision is set; everywhere else precision is an argument."""
+"""The one place where FLINT's working precision and series length are set; everywhere else they are arguments."""
 
 from __future__ import annotations
 
@@ -20,3 +20,14 @@ def working_precision(bits: int) -> Iterator[None]:
         yield
     finally:
         ctx.prec = before
+
+
+@contextmanager
+def series_terms(count: int) -> Iterator[None]:
+    """Run the body with power series kept to `count` terms and restore what was set before."""
+    before = ctx.cap
+    ctx.cap = count
+    try:
+        yield
+    finally:
+        ctx.cap = before

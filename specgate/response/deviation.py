@@ -1,0 +1,110 @@
+"""The deviation of a response from its offset, scaled by powers of two so that poles and modes have size one."""
+
+from __future__ import annotations
+
+from functools import cached_property
+from math import frexp
+
+from flint import arb, fmpq, fmpq_poly
+
+from specgate.response.early import lengthened
+from specgate.response.modes import GUARD, Expansion, dyadic, expand, power_of_two
+from specgate.response.start import Start, first_stretch
+from specgate.response.tables import FloatModes
+from specgate.terms.precision import HIGHEST, working_precision
+
+LOWEST = 128
+"""Bits of the expansion that floats are made from and that most questions are settled with."""
+
+_LADDER = (LOWEST, 256, 512, 1024, 2048, HIGHEST, HIGHEST + 512)
+
+
+class Deviation:
+    """g(t) = 2^-b (y(2^-a t) - offset), of the response y of a coprime, proper fraction with monic denominator.
+
+    time_exponent is a, value_exponent b. `initial` is g(0+) and `offset` the offset, both exact and in units of 2^b;
+    the offset is the final value where the response settles.
+    """
+
+    def __init__(self, numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> None:
+        self._fraction = (numerator, denominator, size)
+        first = expand(numerator, denominator, size, LOWEST)
+        speed = max((float(abs(mode.pole).upper()) for mode in first.modes), default=0.0)
+        self.time_exponent = frexp(speed)[1] if speed > 0.0 else 0
+        in_time = first.rescaled(self.time_exponent, 0)
+        self.value_exponent = frexp(_amplitude(in_time))[1]
+        self._expansions = {LOWEST: in_time.rescaled(0, self.value_exponent)}
+        order = denominator.degree()
+        jump = numerator[order] / denominator[order] * size
+        self.offset: fmpq = self.to_units(first.offset)
+        self.initial: fmpq = self.to_units(jump) - self.offset
+
+    def to_units(self, value: fmpq) -> fmpq:
+        """Return a value of the response in units of 2^b."""
+        return value * dyadic(-self.value_exponent)
+
+    def response(self, deviation: arb) -> arb:
+        """Return y where g is `deviation`, with an error that is relative to g, however small g is beside y."""
+        bits = max(LOWEST, deviation.rel_accuracy_bits()) + GUARD
+        gap = 0 if deviation.contains(0) else _exponent(arb(self.offset)) - _exponent(deviation)
+        with working_precision(bits + max(0, gap)):
+            return (arb(self.offset) + deviation) * power_of_two(self.value_exponent)
+
+    def to_time(self, time: arb, bits: int) -> arb:
+        """Return a normalised time in seconds."""
+        with working_precision(bits):
+            return time * power_of_two(-self.time_exponent)
+
+    def value_at(self, time: fmpq | arb, bits: int) -> arb:
+        """Return a ball of y at a time in seconds, of relative radius 2^-bits if the time is known well enough."""
+        precision, accuracy = max(LOWEST, bits), -(10**9)
+        while True:
+            expansion = self.at(precision)
+            with working_precision(expansion.bits):
+                value = self.response(expansion.deviation(arb(time) * power_of_two(self.time_exponent))[0])
+            if value.rel_accuracy_bits() >= bits or value.rel_accuracy_bits() <= accuracy or precision > HIGHEST:
+                return value
+            accuracy, precision = value.rel_accuracy_bits(), 2 * precision
+
+    def at(self, bits: int) -> Expansion:
+        """Return the expansion at the first precision of the ladder that is at least `bits` (or at its last)."""
+        step = next((rung for rung in _LADDER if rung >= bits), _LADDER[-1])
+        if step not in self._expansions:
+            whole = expand(*self._fraction, step)
+            self._expansions[step] = whole.rescaled(self.time_exponent, self.value_exponent)
+        return self._expansions[step]
+
+    @cached_property
+    def table(self) -> FloatModes:
+        """The modes in floats, times counted from the step."""
+        return FloatModes.of(self.at(LOWEST), fmpq(0))
+
+    @cached_property
+    def start(self) -> Start | None:
+        """The monotone start of g, None where the response never moves."""
+        numerator, denominator, size = self._fraction
+        scaled = numerator * (size * dyadic(-self.value_exponent))
+        top, bottom = _stretched(scaled, self.time_exponent), _stretched(denominator, self.time_exponent)
+        start = first_stretch(top, bottom)
+        return None if start is None else lengthened(start, top, bottom, self.at(LOWEST))
+
+
+def _exponent(value: arb) -> int:
+    """Return the binary exponent of the middle of a ball, about that of every number in it."""
+    mantissa, exponent = value.mid().man_exp()
+    return int(mantissa).bit_length() + int(exponent)
+
+
+def _amplitude(expansion: Expansion) -> float:
+    """Return the sum of the sizes of the modes, of t^j e^{pt} at its summit where it has one."""
+    total = 0.0
+    for mode in expansion.modes:
+        for j, c in enumerate(mode.coefficients):
+            decay = -float(mode.pole.real)
+            total += float(c.abs_upper()) * ((j / (2.718 * decay)) ** j if j and decay > 0.0 else 1.0)
+    return total if total > 0.0 else 1.0
+
+
+def _stretched(polynomial: fmpq_poly, exponent: int) -> fmpq_poly:
+    """Return the polynomial in s / 2^exponent."""
+    return fmpq_poly([c * dyadic(exponent * power) for power, c in enumerate(polynomial.coeffs())])

@@ -1,0 +1,132 @@
+"""The greatest value of a deviation: every summit that may be it, found without a sampling grid."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from specgate.response.budget import Budget, OutOfWork
+from specgate.response.cells import Cells
+from specgate.response.certify import Zero, float_of
+from specgate.response.deviation import Deviation
+from specgate.response.grid import split
+from specgate.response.segments import exact
+from specgate.response.signs import before_time, ends, slope_bracket, turning_point
+from specgate.response.tables import SLACK
+
+_CLOSE = 4
+_DEEPEST = 12
+_GROUP = 64
+_MOST = 4096
+"""Summits of one response kept for comparison."""
+
+
+@dataclass(frozen=True)
+class Summit:
+    """A turning point at which sign * g is greatest nearby; floats that enclose sign * g there."""
+
+    zero: Zero
+    low: float
+    high: float
+
+
+class Climb:
+    """Search for the supremum of sign * g above a floor that is known to be reached or approached."""
+
+    def __init__(self, deviation: Deviation, sign: int, floor: float, budget: Budget) -> None:
+        self._deviation = deviation
+        self._sign = sign
+        self._budget = budget
+        self.best = floor
+        self.summits: list[Summit] = []
+        self._known: float | None = None
+        self._last: float | None = None
+
+    def over(self, chunks: Iterable[Cells], end: Callable[[float], float | None]) -> None:
+        """Search the chunks up to the time end(best) from which on nothing exceeds `best` (None: not known yet)."""
+        for cells in chunks:
+            self._look_to(end)
+            self._search(cells, 0)
+            self._look_to(end)
+            if self._last is not None and float_of(ends(cells, -1)[1]) >= self._last:
+                return
+
+    def _look_to(self, end: Callable[[float], float | None]) -> None:
+        """Bring the end of the search up to date and drop the summits that are too low by now."""
+        if self.best == self._known:
+            return
+        self.summits = [summit for summit in self.summits if summit.high >= self.best]
+        if len(self.summits) > _MOST:
+            raise OutOfWork(f"more than {_MOST} peaks of the response are too close in height to be told apart")
+        self._last, self._known = end(self.best), self.best
+
+    def _search(self, cells: Cells, depth: int) -> None:
+        """Take up the summits of the cells that may exceed the best value, splitting where that is not told.
+
+        A cell on which g is monotone or bent upwards holds no summit: its greatest value is at an end, which is a node
+        or belongs to a neighbour. One that is bent downwards, rising at its left and falling at its right end, holds
+        exactly one.
+        """
+        sign = self._sign
+        high, upward = (cells.high, cells.bend_low > 0.0) if sign > 0 else (-cells.low, cells.bend_high < 0.0)
+        domed = cells.bend_high < 0.0 if sign > 0 else cells.bend_low > 0.0
+        before, after = sign * cells.before, sign * cells.after
+        nodes = np.maximum(before[:, 0] - cells.before_error[:, 0], after[:, 0] - cells.after_error[:, 0])
+        self.best = max(self.best, float(nodes.max()))
+        turning = (cells.slope_low <= 0.0) & (cells.slope_high >= 0.0) & ~upward & before_time(cells, self._last)
+        single = domed & (before[:, 1] > cells.before_error[:, 1]) & (after[:, 1] < -cells.after_error[:, 1])
+        self._take(cells, np.flatnonzero(turning & single & (high >= self.best)))
+        unknown = turning & ~single
+        while True:
+            pending = np.flatnonzero(unknown & (high >= self.best))
+            if not len(pending):
+                return
+            if depth >= _CLOSE:
+                group = pending[:1]
+                self._closely(cells, int(group[0]), bool(domed[group[0]]), float(high[group[0]]), depth)
+            else:
+                group = np.sort(pending[np.argsort(-high[pending], kind="stable")[:_GROUP]])
+                self._search(split(cells, group, self._budget), depth + 1)
+            unknown[group] = False
+
+    def _take(self, cells: Cells, which: NDArray[np.intp]) -> None:
+        """Keep the summits of cells that hold exactly one, with their heights.
+
+        Where |g''| >= m on the cell, the summit is at most g'(t)^2 / (2 m) above the value at any t of it.
+        """
+        if not len(which):
+            return
+        sign, left, right = self._sign, cells.left[which], cells.right[which]
+        rise, fall = cells.before[which, 1], cells.after[which, 1]
+        times = left + (right - left) * (rise / (rise - fall))
+        for _ in range(2):
+            values, _ = cells.segment.sample(times)
+            times = np.clip(times - values[:, 1] / values[:, 2], left, right)
+        values, errors = cells.segment.sample(times)
+        least_bend = np.abs(cells.bend_high[which] if sign > 0 else cells.bend_low[which])
+        low = sign * values[:, 0] - errors[:, 0]
+        over = (np.abs(values[:, 1]) + errors[:, 1]) ** 2 / (2.0 * least_bend)
+        high = sign * values[:, 0] + errors[:, 0] + SLACK * over
+        self.best = max(self.best, float(low.max()))
+        for k in np.flatnonzero(high >= self.best):
+            index = int(which[k])
+            bracket = slope_bracket(cells, index, cells.segment.start + exact(float(times[k])))
+            self.summits.append(Summit(Zero(self._deviation, bracket), float(low[k]), float(high[k])))
+
+    def _closely(self, cells: Cells, index: int, domed: bool, high: float, depth: int) -> None:
+        """Settle in balls a cell whose slope floats cannot tell from zero."""
+        if domed:
+            turning = turning_point(self._deviation, cells, index)
+            if isinstance(turning, Zero):
+                self.summits.append(Summit(turning, self.best, high))
+            elif turning == 0:
+                raise OutOfWork(
+                    "whether the response turns within a stretch of time is not told at the highest precision"
+                )
+            return
+        if depth >= _DEEPEST:
+            raise OutOfWork("a flat stretch of the response may hold its greatest value and cannot be decided")
+        self._search(split(cells, np.array([index]), self._budget), depth + 1)

@@ -1,0 +1,87 @@
+"""Questions about one instant or one cell that floats leave open, settled in balls."""
+
+from __future__ import annotations
+
+import numpy as np
+from flint import arb, fmpq
+from numpy.typing import NDArray
+
+from specgate.response.cells import Cells
+from specgate.response.certify import Bracket, Zero, float_of
+from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.segments import exact
+from specgate.terms.precision import HIGHEST, working_precision
+
+
+def sign_at(deviation: Deviation, time: fmpq, order: int, target: fmpq) -> int:
+    """Return the sign of g^(order)(time) - target, 0 where even the highest precision cannot tell it from zero."""
+    if time == 0 and order == 0:
+        difference = deviation.initial - target
+        return (difference > 0) - (difference < 0)
+    bits = LOWEST
+    while bits <= HIGHEST:
+        expansion = deviation.at(bits)
+        with working_precision(expansion.bits):
+            value = expansion.deviation(arb(time))[order] - arb(target)
+        if value > 0:
+            return 1
+        if value < 0:
+            return -1
+        bits *= 2
+    return 0
+
+
+def ends(cells: Cells, index: int) -> tuple[fmpq, fmpq]:
+    """Return both ends of a cell as exact normalised times."""
+    start = cells.segment.start
+    return start + exact(float(cells.left[index])), start + exact(float(cells.right[index]))
+
+
+def before_time(cells: Cells, time: float | None) -> NDArray[np.bool_]:
+    """Return which cells begin before a normalised time (None: all)."""
+    if time is None:
+        return np.ones(len(cells.left), dtype=np.bool_)
+    local = float(np.nextafter(float_of(exact(time) - cells.segment.start), np.inf))
+    return np.asarray(cells.left < local, dtype=np.bool_)
+
+
+def turning_point(deviation: Deviation, cells: Cells, index: int) -> Zero | int:
+    """Return the zero of g' in a cell on which g'' has one sign, or the sign of g' throughout (0: not told)."""
+    left, right = ends(cells, index)
+    before = sign_at(deviation, left, 1, fmpq(0))
+    after = sign_at(deviation, right, 1, fmpq(0))
+    if before == after or before == 0 or after == 0:
+        return before or after
+    return Zero(deviation, slope_bracket(cells, index, (left + right) / 2))
+
+
+def slope_bracket(cells: Cells, index: int, guess: fmpq) -> Bracket:
+    """Return the bracket of the zero of g' in a cell where g' changes sign and g'' does not."""
+    left, right = ends(cells, index)
+    return Bracket(1, fmpq(0), left, right, bool(cells.bend_low[index] > 0.0), float(cells.jerk[index]), guess)
+
+
+def value_bracket(cells: Cells, index: int, target: fmpq) -> Bracket:
+    """Return the bracket of the zero of g - target in a cell where g is monotone and crosses it."""
+    left, right = ends(cells, index)
+    bend = max(-float(cells.bend_low[index]), float(cells.bend_high[index]))
+    share = _cubic_share(cells, index, float_of(target))
+    rising = bool(cells.slope_low[index] > 0.0)
+    return Bracket(0, target, left, right, rising, bend, left + (right - left) * exact(share))
+
+
+def _cubic_share(cells: Cells, index: int, target: float) -> float:
+    """Return the fraction of the cell at which its Hermite cubic takes the value, about: a starting point only."""
+    width = float(cells.right[index] - cells.left[index])
+    f0, f1 = float(cells.before[index, 0]) - target, float(cells.after[index, 0]) - target
+    d0, d1 = width * float(cells.before[index, 1]), width * float(cells.after[index, 1])
+    low, high = 0.0, 1.0
+    x = f0 / (f0 - f1) if f0 != f1 else 0.5
+    for _ in range(8):
+        y = 1.0 - x
+        value = y * y * ((1.0 + 2.0 * x) * f0 + x * d0) + x * x * ((1.0 + 2.0 * y) * f1 - y * d1)
+        slope = 6.0 * x * y * (f1 - f0) + y * (1.0 - 3.0 * x) * d0 + x * (3.0 * x - 2.0) * d1
+        low, high = (x, high) if (value < 0.0) == (f0 < 0.0) else (low, x)
+        step = x - value / slope if slope != 0.0 else -1.0
+        x = step if low < step < high else 0.5 * (low + high)
+    return min(max(x, 0.0), 1.0)
