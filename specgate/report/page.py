@@ -5,12 +5,13 @@ from __future__ import annotations
 import base64
 import hashlib
 import json
+import re
 from functools import cache
 from importlib.resources import files
 from typing import Any
 
 from jinja2 import Environment, FunctionLoader, StrictUndefined
-from markupsafe import Markup
+from markupsafe import Markup, escape
 
 from specgate.report.figures import poles, reserve, step
 from specgate.report.parts import matrix
@@ -83,6 +84,21 @@ def short(text: str, length: int) -> str:
     return (cut.rsplit(" ", 1)[0] if " " in cut[length // 2 :] else cut) + "…"
 
 
+def quoted(text: str) -> Markup:
+    """Return text with the names that stand between backticks set as names; all else is escaped."""
+    parts = text.split("`")
+    if len(parts) % 2 == 0:
+        return escape(text)
+    return Markup("").join(
+        Markup('<span class="name">{}</span>').format(part) if k % 2 else escape(part) for k, part in enumerate(parts)
+    )
+
+
+def breakable(name: str) -> Markup:
+    """Return a name or a place in which a line may break after a dot, a slash, a colon or an underscore."""
+    return Markup("<wbr>").join(escape(part) for part in re.split(r"(?<=[./:_])", name))
+
+
 @cache
 def environment() -> Environment:
     """Return the template environment: everything is escaped, nothing may be undefined."""
@@ -90,6 +106,8 @@ def environment() -> Environment:
         loader=FunctionLoader(_text), autoescape=True, undefined=StrictUndefined, trim_blocks=True, lstrip_blocks=True
     )
     env.filters["short"] = short
+    env.filters["quoted"] = quoted
+    env.filters["breakable"] = breakable
     env.globals.update(draw=draw, draw_bar=draw_bar, readings=readings)
     return env
 
@@ -129,7 +147,13 @@ def on_paper(view: View, paper: str) -> str:
     """Return the document that is laid out as PDF; `paper` is A4 or Letter. Long tables are cut, and say so."""
     styles = [("", _text("report/base.css")), ("", _text("report/print.css").replace("size: A4", f"size: {paper}"))]
     groups, left_out = matrix.printed(view.groups)
-    return _render(view, False, styles, groups, left_out, LINES_AT_MOST, LINES_AT_MOST)
+    html = _render(view, False, styles, groups, left_out, LINES_AT_MOST, LINES_AT_MOST)
+    return _BLANK_BEFORE.sub(r"\1 ", html)
+
+
+_BLANK_BEFORE = re.compile(r" (<(?:span|a|b)\b[^>]*>)")
+"""A blank before an inline element is moved into it: the layout engine breaks a line after its first word where the
+text before such an element fills the line but for that blank (WeasyPrint 70)."""
 
 
 def _render(

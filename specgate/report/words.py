@@ -61,7 +61,7 @@ def spaced(name: str) -> str:
 
 def titled(name: str, definitions: Mapping[str, DefinitionReview]) -> str:
     """Return the title of a measure, approximation or rule, from its definition where there is one."""
-    return definitions[name].title if name in definitions else spaced(name)
+    return definitions[name].title if name in definitions else spaced(name).capitalize()
 
 
 def with_unit(text: str, unit: str | None) -> str:

@@ -136,9 +136,8 @@ def _forbidden(edge: Edge, x: Scale, y: Scale, hatch: str) -> str:
         start, end = (start, min(end, start + STRIP)) if above else (max(start, end - STRIP), end)
         return svg.rectangle(start, TOP, end - start, HEIGHT - BOTTOM - TOP, fill)
     high, low = (min(max(y(v), TOP), HEIGHT - BOTTOM) for v in (max(edge.outside), min(edge.outside)))
-    return svg.rectangle(start, TOP, end - start, high - TOP, fill) + svg.rectangle(
-        start, low, end - start, HEIGHT - BOTTOM - low, fill
-    )
+    upper = svg.rectangle(start, TOP, end - start, high - TOP, fill, fill_opacity=0.6)
+    return upper + svg.rectangle(start, low, end - start, HEIGHT - BOTTOM - low, fill, fill_opacity=0.6)
 
 
 def _limit_lines(edges: list[Edge], x: Scale, y: Scale) -> list[str]:
@@ -172,11 +171,11 @@ def _label(content: str, at: float, baseline: float, taken: list[float]) -> str:
 
 
 def _cross(cross: Cross, x: Scale, y: Scale) -> str:
-    at, level, half = x(cross.time), y(cross.value), 5.0
-    parts = [
-        svg.line(at - half, level, at + half, level, width=1.3),
-        svg.line(at, level - half, at, level + half, width=1.3),
-    ]
+    at, level, half = x(cross.time), y(cross.value), 4.5
+    parts = []
+    for stroke, width in ((svg.PAPER, 4.5), (svg.INK, 1.7)):
+        parts.append(svg.line(at - half, level - half, at + half, level + half, stroke, width))
+        parts.append(svg.line(at - half, level + half, at + half, level - half, stroke, width))
     scale = x if cross.axis == "time" else y
     low, high = (scale(min(max(v, scale.low), scale.high)) for v in (cross.low, cross.high))
     if abs(high - low) > 2 * half:
@@ -185,14 +184,18 @@ def _cross(cross: Cross, x: Scale, y: Scale) -> str:
     return "".join(parts)
 
 
-def _ring(ring: Ring, x: Scale, y: Scale) -> str:
-    return svg.tag(
-        "circle",
-        cx=x(ring.time),
-        cy=y(ring.value),
-        r=4.5,
-        fill="none",
-        stroke=svg.CLAIM,
-        stroke_width=1.6,
-        class_=svg.colour_class(svg.CLAIM),
+def _ring(claim: Ring, x: Scale, y: Scale) -> str:
+    halo, ring = (
+        svg.tag(
+            "circle",
+            cx=x(claim.time),
+            cy=y(claim.value),
+            r=5.0,
+            fill="none",
+            stroke=stroke,
+            stroke_width=width,
+            class_=svg.colour_class(stroke),
+        )
+        for stroke, width in ((svg.PAPER, 4.0), (svg.CLAIM, 1.8))
     )
+    return halo + ring

@@ -94,14 +94,9 @@ def rectangle(x: float, y: float, width: float, height: float, fill: str, **more
 
 def hatching(name: str, colour: str = FORBIDDEN) -> str:
     """Return the definition of the hatching of forbidden sides; use it as `fill="url(#name)"`."""
-    stroke = tag(
-        "path",
-        d="M0 6L6 0M-1.5 1.5L1.5 -1.5M4.5 7.5L7.5 4.5",
-        stroke=colour,
-        stroke_width=0.8,
-        class_=colour_class(colour),
-    )
-    pattern = tag("pattern", stroke, id=name, width=6, height=6, patternUnits="userSpaceOnUse")
+    lines = "M0 7L7 0M-1.75 1.75L1.75 -1.75M5.25 8.75L8.75 5.25"
+    stroke = tag("path", d=lines, stroke=colour, stroke_width=0.6, class_=colour_class(colour))
+    pattern = tag("pattern", stroke, id=name, width=7, height=7, patternUnits="userSpaceOnUse")
     return tag("defs", pattern)
 
 

@@ -106,7 +106,7 @@ def _title(review: Review) -> Title:
         title=project.title,
         revision=project.revision,
         date=project.date or "undated",
-        stage=f"{project.stage} of {', '.join(project.stages)}"
+        stage=f"{project.stage}, one of {', '.join(project.stages)}"
         if project.stage and project.stages
         else project.stage or "",
         purpose=f"Compliance of the closed loops with their requirements{stage}, for signature",

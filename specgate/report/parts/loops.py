@@ -123,7 +123,7 @@ class LoopSheet:
     title: str
     reason: str
     stable: Status | None
-    inputs: tuple[tuple[str, str], ...]
+    inputs: tuple[Signal, ...]
     signals: tuple[Signal, ...]
     wiring: Mapping[str, str]
     characteristic: str
@@ -158,7 +158,7 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
         title=loop.title or name,
         reason=loop.reason or "",
         stable=None if stable is None else STABLE if stable else UNSTABLE,
-        inputs=tuple(loop.inputs.items()),
+        inputs=tuple(Signal(name, "from outside", unit, loop.rest.get(name, "")) for name, unit in loop.inputs.items()),
         signals=tuple(
             Signal(signal, made_of, loop.signal_units.get(signal, ""), loop.rest.get(signal, ""))
             for signal, made_of in loop.wiring.items()

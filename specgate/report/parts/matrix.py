@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from specgate.report import anchors, digits
 from specgate.report.figures.reserve import ReserveBar
 from specgate.report.parts import shown
-from specgate.report.words import METHODS, STANDINGS, VERDICTS, Status, arguments, limit, spaced, titled
+from specgate.report.words import METHODS, STANDINGS, VERDICTS, Status, arguments, limit, listed, spaced, titled
 from specgate.review.types import CriterionReview, RequirementReview, Review
 
 ROWS_AT_MOST = 400
@@ -62,6 +62,7 @@ class Row:
     lines: tuple[Line, ...]
     reason: str
     decided_by: str
+    decided: str
     loops: tuple[str, ...]
     also_under: tuple[str, ...]
     place: str
@@ -113,6 +114,7 @@ def row(review: Review, name: str) -> Row:
         lines=lines,
         reason=requirement.reason or _exemption(requirement),
         decided_by=requirement.decided_by,
+        decided=_decided(requirement),
         loops=_loops(requirement, review.loops),
         also_under=requirement.derived_from[1:],
         place=f"{requirement.location.path}:{requirement.location.line}",
@@ -120,9 +122,16 @@ def row(review: Review, name: str) -> Row:
 
 
 def _with_value(line: Line, value: str) -> Line:
-    from dataclasses import replace
-
     return replace(line, value=value)
+
+
+def _decided(requirement: RequirementReview) -> str:
+    """Return what decides a requirement that has no limit of its own."""
+    if requirement.criteria or requirement.verdict == "not_applicable":
+        return ""
+    if requirement.decided_by == "derived":
+        return f"decided by {listed(requirement.derived)}" if requirement.derived else "nothing is derived from it"
+    return "decided by evidence" if requirement.decided_by == "evidence" else "no limit"
 
 
 def _exemption(requirement: RequirementReview) -> str:
