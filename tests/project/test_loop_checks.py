@@ -126,11 +126,19 @@ def test_a_range_is_in_the_unit_of_its_port(findings: Findings, high: str, messa
     assert found[0].subsystem == "tank"
 
 
+OVEN = """
+subsystems:
+  oven:
+    input: {{unit: W}}
+    output: {{unit: {unit}, linear_range: [{low}, {high}]}}
+    model: {{gain: 2 K/W}}
+"""
+
+
 def test_a_range_of_temperatures_is_absolute(findings: Findings) -> None:
-    block = "subsystems: {{oven: {{input: {{unit: W}}, output: {{unit: {unit}, linear_range: [{low}, {high}]}}, model: {{gain: 2 K/W}}}}}}"
-    assert not findings(block.format(unit="K", low="300 K", high="30 degC"))
-    assert "is empty" in findings(block.format(unit="K", low="300 K", high="20 degC"))[0].message
-    assert not findings(block.format(unit="degC", low="-20 degC", high="300 K"))
+    assert not findings(OVEN.format(unit="K", low="300 K", high="30 degC"))
+    assert "is empty" in findings(OVEN.format(unit="K", low="300 K", high="20 degC"))[0].message
+    assert not findings(OVEN.format(unit="degC", low="-20 degC", high="300 K"))
 
 
 def test_a_signal_is_not_in_decibels(findings: Findings) -> None:
