@@ -35,13 +35,13 @@ def parameters_read(subsystem: Subsystem, values: Values) -> tuple[str, ...]:
 
 
 def literals(subsystem: Subsystem) -> tuple[Value, ...]:
-    """Return the values of a model that hold a number with a unit and read no parameter: data of their own."""
-    return tuple(
-        value
-        for value in model_values(subsystem)
-        if not expressions.names(value.expression)
-        and any(isinstance(node, expressions.Number) and node.unit for node in value.expression.walk())
-    )
+    """Return the values of a model that are data of their own: they read no parameter and hold a number with a unit."""
+    return tuple(value for value in model_values(subsystem) if _own_data(value.expression))
+
+
+def _own_data(expression: Expression) -> bool:
+    numbers = (node for node in expression.walk() if isinstance(node, expressions.Number))
+    return not expressions.names(expression) and any(node.unit is not None and node.value != 0 for node in numbers)
 
 
 def _values(node: object) -> Iterator[Value]:

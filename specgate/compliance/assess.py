@@ -153,15 +153,18 @@ def _with_methods(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ru
     verdict = worst(one.outcome if isinstance(one.outcome, Verdict) else Verdict.OPEN for one in due)
     if verdict is Verdict.COMPLIANT:
         return Ruling(verdict)
-    by_analysis = [one for one in due if one.method.method == "analysis"]
-    reasons = [analysed.reason] if by_analysis and analysed.verdict is verdict else []
-    others = [one.method.method for one in due if one not in by_analysis] if verdict is Verdict.OPEN else []
-    if others:
-        reasons.append(
-            f"{_listed(others)} {'are' if len(others) > 1 else 'is'} due and nothing judged records the outcome"
-        )
-    held = analysed.due if reasons == [analysed.reason] else True
-    return Ruling(verdict, "; ".join(reason for reason in reasons if reason), held)
+    by_analysis = any(one.method.method == "analysis" for one in due)
+    reasons = [analysed.reason] if by_analysis and analysed.verdict is verdict and analysed.reason else []
+    others = [one for one in due if one.method.method != "analysis"] if verdict is Verdict.OPEN else []
+    reasons += [_unrecorded(one) for one in others]
+    return Ruling(verdict, "; ".join(reasons), True if others else analysed.due)
+
+
+def _unrecorded(one: MethodAssessment) -> str:
+    name = one.method.method.replace("_", " ")
+    if one.outcome == "no_record":
+        return f"{name} is due and has no record"
+    return f"{name} is due and its evidence is not judged by this version"
 
 
 def _later(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ruling:
@@ -175,7 +178,8 @@ def _later(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ruling:
     later = f"nothing is due yet ({when})"
     if analysed.verdict is Verdict.COMPLIANT:
         return Ruling(Verdict.COMPLIANT, None, due=False)
-    return Ruling(analysed.verdict, f"{analysed.reason}; {later}", due=False)
+    waiting = analysed.verdict is Verdict.OPEN
+    return Ruling(analysed.verdict, later if waiting else f"{analysed.reason}; {later}", due=False)
 
 
 def _standing(criteria: Iterable[CriterionAssessment]) -> Standing | None:

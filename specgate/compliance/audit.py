@@ -20,7 +20,7 @@ from specgate.compliance.compare import Limits, sign
 from specgate.compliance.readings import PI_DECIDES, Reading
 from specgate.compliance.sides import formula_error, side
 from specgate.compliance.thresholds import Policy
-from specgate.compliance.wording import condition_words
+from specgate.compliance.wording import condition_words, figure
 from specgate.measures.measure import Arguments
 from specgate.project.parameters import Values, evaluate
 from specgate.project.types import Basis, Claim
@@ -160,9 +160,10 @@ def _standing(audited: Audit, matter: Matter) -> tuple[Standing, str | None]:
         return Standing.INCONCLUSIVE, f"it cannot be decided whether this holds: {named}"
     if audited.implied is None:
         return Standing.INCONCLUSIVE, "no accuracy is stated for this formula with these arguments"
-    inside = [limit for limit in (matter.limits.least, matter.limits.most) if _holds(audited.implied, limit)]
-    if inside:
-        return Standing.INCONCLUSIVE, "the limit lies inside what its accuracy leaves open for the truth"
+    if any(_holds(audited.implied, limit) for limit in (matter.limits.least, matter.limits.most)):
+        low, high = (figure(Reading.once(end).in_unit(matter.unit), matter.unit) for end in audited.implied)
+        reason = f"its accuracy leaves {low} to {high} for the truth, and the limit lies between them"
+        return Standing.INCONCLUSIVE, reason
     return Standing.SOUND, None
 
 

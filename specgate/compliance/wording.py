@@ -133,7 +133,7 @@ def instead_words(assessed: CriterionAssessment) -> str:
     if instead is None or instead.value is None or unit is None or instead.name == "computed":
         return "rest the claim on `basis: computed`"
     shown = figure(Reading.once(instead.value).in_unit(unit), unit)
-    return f"{instead.name} applies, errs on the safe side and gives {shown}; or rest the claim on `basis: computed`"
+    return f"rest the claim on {instead.name}, which applies and gives {shown}, or on `basis: computed`"
 
 
 def claim_words(assessed: CriterionAssessment) -> str:

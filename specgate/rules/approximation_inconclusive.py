@@ -27,7 +27,7 @@ def check(facts: Facts) -> Iterator[Finding]:
             if audit.kind == "approximation" and audit.standing is Standing.INCONCLUSIVE:
                 yield Finding(
                     rule=NAME,
-                    level=facts.restating(Standing.INCONCLUSIVE),
+                    level=facts.restating(Standing.INCONCLUSIVE, assessment),
                     message=(
                         f"{name}: {' + '.join(audit.chain)} does not decide {subject(criterion)}: {audit.reason}; "
                         f"{promise_words(criterion)}; {instead_words(criterion)}"
@@ -38,4 +38,4 @@ def check(facts: Facts) -> Iterator[Finding]:
                 )
 
 
-RULE = Rule(NAME, "Approximation inconclusive", "error or warning (restates the standing)", check, __doc__)
+RULE = Rule(NAME, "Approximation inconclusive", "error, warning or note (restates the standing)", check, __doc__)

@@ -26,7 +26,7 @@ def check(facts: Facts) -> Iterator[Finding]:
             if audit.standing is Standing.OUT_OF_RANGE:
                 yield Finding(
                     rule=NAME,
-                    level=facts.restating(Standing.OUT_OF_RANGE),
+                    level=facts.restating(Standing.OUT_OF_RANGE, assessment),
                     message=(
                         f"{name}: {' + '.join(audit.chain)} is out of its range for {subject(criterion)}: "
                         f"{_violated(audit)}; {promise_words(criterion)}; {instead_words(criterion)}"
@@ -48,4 +48,4 @@ def _violated(audit: Audit) -> str:
     return f"{condition_words(broken[0])}, and {more} do{'es' if len(broken) == 2 else ''} not hold"
 
 
-RULE = Rule(NAME, "Approximation out of range", "error or warning (restates the standing)", check, __doc__)
+RULE = Rule(NAME, "Approximation out of range", "error, warning or note (restates the standing)", check, __doc__)

@@ -25,7 +25,7 @@ def check(facts: Facts) -> Iterator[Finding]:
             if absent is not None and absent.proved and not absent.infinite:
                 yield Finding(
                     rule=NAME,
-                    level=facts.restating(Verdict.NON_COMPLIANT),
+                    level=facts.restating(Verdict.NON_COMPLIANT, assessment),
                     message=(
                         f"{name}: {subject(criterion)} does not exist: {absent.reason}; change the design, or limit a "
                         "measure that exists here"
@@ -36,4 +36,4 @@ def check(facts: Facts) -> Iterator[Finding]:
                 )
 
 
-RULE = Rule(NAME, "Measure does not exist", "error or warning (explains the verdict)", check, __doc__)
+RULE = Rule(NAME, "Measure does not exist", "error, warning or note (explains the verdict)", check, __doc__)

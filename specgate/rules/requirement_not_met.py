@@ -2,7 +2,8 @@
 
 The verdict comes from the computed response, whatever the claim rests on. Put it right by changing the design, or
 the limit with those who own it. The finding restates the verdict: it is an error where `gate: hold_on` names
-non_compliant, else a warning, and does not hold the gate by itself.
+non_compliant, else a warning; a note where its methods are all due at a later stage. It does not hold the gate by
+itself.
 """
 
 from __future__ import annotations
@@ -22,7 +23,7 @@ def check(facts: Facts) -> Iterator[Finding]:
         if assessment.verdict is Verdict.NON_COMPLIANT:
             yield Finding(
                 rule=NAME,
-                level=facts.restating(Verdict.NON_COMPLIANT),
+                level=facts.restating(Verdict.NON_COMPLIANT, assessment),
                 message=f"{name} is not met: {assessment.reason}",
                 place=assessment.requirement.place,
                 requirement=name,
@@ -30,4 +31,4 @@ def check(facts: Facts) -> Iterator[Finding]:
             )
 
 
-RULE = Rule(NAME, "Requirement not met", "error or warning (restates the verdict)", check, __doc__)
+RULE = Rule(NAME, "Requirement not met", "error, warning or note (restates the verdict)", check, __doc__)

@@ -12,7 +12,7 @@ from collections.abc import Iterator
 
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
-from specgate.terms.verdicts import Level, Verdict
+from specgate.terms.verdicts import Verdict
 
 NAME = "requirement-open"
 
@@ -23,7 +23,7 @@ def check(facts: Facts) -> Iterator[Finding]:
         if assessment.verdict is Verdict.OPEN:
             yield Finding(
                 rule=NAME,
-                level=facts.restating(Verdict.OPEN) if assessment.due else Level.NOTE,
+                level=facts.restating(Verdict.OPEN, assessment),
                 message=f"{name} is open: {assessment.reason}",
                 place=assessment.requirement.place,
                 requirement=name,

@@ -22,8 +22,10 @@ class Facts:
     graph: Graph
     assessments: Mapping[str, Assessment]
 
-    def restating(self, what: Verdict | Standing) -> Level:
-        """Return the level of a finding that only restates a verdict or a standing."""
+    def restating(self, what: Verdict | Standing, assessment: Assessment) -> Level:
+        """Return the level of a finding that only restates a verdict or a standing: a note where nothing is due yet."""
+        if not assessment.due:
+            return Level.NOTE
         return Level.ERROR if what.value in self.project.gate.hold_on else Level.WARNING
 
 

@@ -141,14 +141,14 @@ def _known_digits(low: fmpq, high: fmpq) -> int:
     width, size = high - low, max(abs(low), abs(high))
     if width == 0 or size == 0:
         return DIGITS
-    return max(2, min(DIGITS, _exponent(size) - _exponent(width) + 3))
+    return max(2, min(DIGITS, magnitude(size) - magnitude(width) + 3))
 
 
 def rounded(value: fmpq, direction: Literal["nearest", "down", "up"] = "nearest", digits: int = DIGITS) -> fmpq:
     """Round to a decimal of so many significant digits; `nearest` takes ties to even, down and up are signed."""
     if value == 0:
         return value
-    unit = power_of_ten(_exponent(value) - digits + 1)
+    unit = power_of_ten(magnitude(value) - digits + 1)
     scaled = value / unit
     if direction == "down":
         return fmpq(scaled.floor()) * unit
@@ -173,7 +173,7 @@ def to_float(value: fmpq) -> float:
         return sys.float_info.max if value > 0 else -sys.float_info.max
 
 
-def _exponent(value: fmpq) -> int:
+def magnitude(value: fmpq) -> int:
     """Return e with 10^e <= |value| < 10^(e+1)."""
     size = abs(value)
     guess = int((int(size.p).bit_length() - int(size.q).bit_length()) * 0.30103)
