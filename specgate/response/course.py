@@ -2,24 +2,32 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from functools import cached_property
+from typing import TypeVar
 
 import numpy as np
 from flint import fmpq, fmpq_poly
 
 from specgate.response.asymptote import Lasting, lasting_sign
-from specgate.response.budget import Budget
+from specgate.response.budget import Budget, OutOfWork
 from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.grid import Grid
 from specgate.response.layout import FloatLayout
+from specgate.response.panels import PanelLayout
 from specgate.response.start import Start
 
 RESOLUTION = 2e-3
 """How closely cells follow the response at first, in parts of its change."""
 
+CANCELLING = 1e-5
+"""Change, in units of the sum of the modes, below which the modes cancel too far for floats."""
+
 WORK = 2_000_000
 """Cells that one search may look at."""
+
+Found = TypeVar("Found")
 
 
 class Course:
@@ -33,10 +41,32 @@ class Course:
         self.start: Start = start
 
     @cached_property
-    def grid(self) -> Grid:
-        """The shared grid of cells, from the end of the monotone start on."""
-        change = max(abs(float_of(self.deviation.offset)), abs(float_of(self.deviation.initial)), 0.05)
-        return Grid(FloatLayout(self.deviation, self.start.length, RESOLUTION * change).block)
+    def _change(self) -> float:
+        """How far the response moves, in units of the sum of its modes; 1 where it returns to where it was."""
+        change = max(abs(float_of(self.deviation.offset)), abs(float_of(self.deviation.initial)))
+        return change if change > 0.0 else 1.0
+
+    @cached_property
+    def _float_grid(self) -> Grid:
+        resolution = RESOLUTION * self._change
+        return Grid(FloatLayout(self.deviation, self.start.length, resolution).block)
+
+    @cached_property
+    def _panel_grid(self) -> Grid:
+        resolution = RESOLUTION * self._change
+        return Grid(PanelLayout(self.deviation, self.start.length, resolution, self._change).block)
+
+    def search(self, on: Callable[[Grid, Budget], Found]) -> Found:
+        """Search on the grid of floats, or on that of panels where modes cancel or the first one does not decide.
+
+        Raises OutOfWork if neither does.
+        """
+        if self._change > CANCELLING:
+            try:
+                return on(self._float_grid, Budget(WORK))
+            except OutOfWork:
+                pass
+        return on(self._panel_grid, Budget(WORK))
 
     @cached_property
     def lasting(self) -> Lasting | None:
@@ -47,8 +77,3 @@ class Course:
     def start_bend(self) -> float:
         """A bound of |g''| over the monotone start."""
         return float(self.deviation.table.bounds(np.array([0.0]), np.array([self.start.length]))[0, 0])
-
-    @staticmethod
-    def budget() -> Budget:
-        """Return the work limit of one search."""
-        return Budget(WORK)

@@ -12,9 +12,10 @@ import numpy as np
 from flint import arb, fmpq
 
 from specgate.response.answers import Answer, Fragile
-from specgate.response.budget import OutOfWork
+from specgate.response.budget import Budget, OutOfWork
 from specgate.response.certify import Zero, float_of
 from specgate.response.course import Course
+from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
 from specgate.response.peak import Climb
 from specgate.response.tail import tail
@@ -44,11 +45,8 @@ def highest(course: Course, sign: int) -> Extreme:
     deviation = course.deviation
     jump = sign * deviation.initial
     floor = max(jump, fmpq(0))
-    budget = course.budget()
-    climb = Climb(deviation, sign, float(np.nextafter(float_of(floor), -inf)), budget)
     try:
-        climb.over(course.grid.upward(budget), lambda best: _end(course, sign, best))
-        summits, clear = _tallest([summit.zero for summit in climb.summits], sign, floor)
+        summits, clear = course.search(lambda grid, budget: _summits(course, sign, floor, grid, budget))
     except OutOfWork as limit:
         return Extreme(Answer.undecided(limit.reason), Answer.undecided(limit.reason))
     at_floor = _at_floor(course, sign * floor, taken=jump > 0)
@@ -86,6 +84,13 @@ def mirrored(extreme: Extreme) -> Extreme:
     if value.refine is not None:
         return Extreme(Answer.of_ball(lambda bits: -value.enclose(bits), value.fragile), extreme.time)
     return extreme
+
+
+def _summits(course: Course, sign: int, floor: fmpq, grid: Grid, budget: Budget) -> tuple[list[Zero], bool]:
+    """Return the highest summits, and whether they are proved to be above the floor."""
+    climb = Climb(course.deviation, sign, float(np.nextafter(float_of(floor), -inf)), budget)
+    climb.over(grid.upward(budget), lambda best: _end(course, sign, best))
+    return _tallest([summit.zero for summit in climb.summits], sign, floor)
 
 
 def _end(course: Course, sign: int, best: float) -> float | None:

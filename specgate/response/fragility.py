@@ -14,7 +14,7 @@ from specgate.response.cells import Cells
 from specgate.response.certify import Zero, float_of
 from specgate.response.course import Course
 from specgate.response.deviation import LOWEST
-from specgate.response.grid import split
+from specgate.response.grid import Grid, split
 from specgate.response.modes import GUARD
 from specgate.response.segments import Floats, exact
 from specgate.response.signs import ends, slope_bracket
@@ -59,7 +59,7 @@ class Target:
 
 
 def fragility(
-    course: Course, target: Target, passage: Passage, again: Callable[[Band], Passage], budget: Budget
+    course: Course, target: Target, passage: Passage, again: Callable[[Band], Passage], grid: Grid, budget: Budget
 ) -> Fragile | None:
     """Return why the crossing of a passage is fragile and where else it might be, None if it is not.
 
@@ -71,7 +71,7 @@ def fragility(
         zero = _near_turn(course, target, cells, index, time, budget)
         if zero is not None:
             return _fragile(course, zero, "turns within 1 % of the edge without crossing it")
-    if passage.crossing is None or _goes_well_beyond(course, target, time, budget):
+    if passage.crossing is None or _goes_well_beyond(grid, target, time, budget):
         return None
     wider = again(target.band(1 + NEAR)).crossing
     if wider is None or not _differs(wider.guess, time) or not _dips(course, target, time, wider.guess):
@@ -106,9 +106,9 @@ def _near_turn(course: Course, target: Target, cells: Cells, index: int, time: f
     return Zero(course.deviation, slope_bracket(parts, part, parts.segment.start + middle))
 
 
-def _goes_well_beyond(course: Course, target: Target, time: float, budget: Budget) -> bool:
+def _goes_well_beyond(grid: Grid, target: Target, time: float, budget: Budget) -> bool:
     """Whether the nodes next to the crossing show that the response goes beyond by more than the margin: no proof."""
-    cells = course.grid.around(time, budget)
+    cells = grid.around(time, budget)
     start = float_of(cells.segment.start)
     ratio = target.ratio(cells.before[:, 0])
     instants = start + cells.left

@@ -82,6 +82,10 @@ class Expansion:
             )
         return Expansion(self.offset * dyadic(-value), modes, self.bits)
 
+    def only(self, which: Sequence[int]) -> Expansion:
+        """Return the expansion with some of its modes."""
+        return Expansion(self.offset, tuple(self.modes[index] for index in which), self.bits)
+
     def rebased(self, start: fmpq) -> Expansion:
         """Return the expansion in the time from `start` on: sum c t^j e^{pt} written about t = start."""
         with working_precision(self.bits):

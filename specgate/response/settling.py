@@ -7,11 +7,12 @@ from functools import reduce
 
 from flint import arb, fmpq
 
-from specgate.response.answers import Answer
+from specgate.response.answers import Answer, Fragile
 from specgate.response.budget import Budget, OutOfWork
 from specgate.response.certify import Bracket, Zero, float_of
 from specgate.response.course import Course
 from specgate.response.fragility import Target, fragility
+from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
 from specgate.response.segments import exact
 from specgate.response.signs import sign_at
@@ -20,7 +21,7 @@ from specgate.response.walk import Band, Passage, Walk
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Proof
 
-Search = Callable[[Course, Target, Band, Budget], Passage]
+Search = Callable[[Course, Target, Band, Grid, Budget], Passage]
 
 
 def settling(course: Course, distance: fmpq) -> Answer:
@@ -45,10 +46,15 @@ def first_arrival(course: Course, level: fmpq) -> Answer:
 
 
 def _answer(course: Course, target: Target, search: Search, without: Answer) -> Answer:
-    budget = course.budget()
+    def on(grid: Grid, budget: Budget) -> tuple[Passage, Fragile | None]:
+        def walk(band: Band) -> Passage:
+            return search(course, target, band, grid, budget)
+
+        passage = walk(target.band(fmpq(1)))
+        return passage, fragility(course, target, passage, walk, grid, budget)
+
     try:
-        passage = search(course, target, target.band(fmpq(1)), budget)
-        fragile = fragility(course, target, passage, lambda band: search(course, target, band, budget), budget)
+        passage, fragile = course.search(on)
     except OutOfWork as limit:
         return Answer.undecided(limit.reason)
     zeros = passage.touching if passage.crossing is None else (passage.crossing, *passage.touching)
@@ -68,21 +74,21 @@ def _span(course: Course, zeros: tuple[Zero, ...], from_start: bool, bits: int) 
         return reduce(lambda one, other: one.union(other), [*balls, *([arb(0)] if from_start else [])])
 
 
-def _settled(course: Course, target: Target, band: Band, budget: Budget) -> Passage:
+def _settled(course: Course, target: Target, band: Band, grid: Grid, budget: Budget) -> Passage:
     assert band.high is not None
     since = tail(course.deviation.table, float_of(band.high))
     if since is None:
         raise OutOfWork("the band is too narrow beside the response to be followed")
     walk = Walk(course.deviation, band, budget, backward=True, end=since, margin=target.margin)
-    crossing = walk.through(course.grid.downward(since, budget))
+    crossing = walk.through(grid.downward(since, budget))
     return walk.passage(crossing or _in_start(course, band, backward=True))
 
 
-def _arrived(course: Course, target: Target, band: Band, budget: Budget) -> Passage:
+def _arrived(course: Course, target: Target, band: Band, grid: Grid, budget: Budget) -> Passage:
     end = _last_chance(course, band)
     walk = Walk(course.deviation, band, budget, backward=False, end=end, margin=target.margin)
     crossing = _in_start(course, band, backward=False)
-    return walk.passage(crossing or walk.through(course.grid.upward(budget)))
+    return walk.passage(crossing or walk.through(grid.upward(budget)))
 
 
 def _last_chance(course: Course, band: Band) -> float | None:

@@ -128,9 +128,9 @@ class FloatModes:
         """Return bounds of the derivatives 2 ... 5 over intervals: every factor of a column at its worst end."""
         return SLACK * (self._worst(left, right) @ self.size[:, 2:]) + TINY
 
-    def envelope(self, left: Floats, right: Floats) -> Floats:
-        """Return bounds of |g| over intervals, shape (n,)."""
-        return SLACK * (self._worst(left, right) @ self.size[:, 0]) + TINY
+    def envelopes(self, left: Floats, right: Floats) -> Floats:
+        """Return bounds of the derivatives 0 ... 5 of every column over intervals, shape (n, M, 6)."""
+        return SLACK * self._worst(left, right)[:, :, None] * self.size
 
     def _worst(self, left: Floats, right: Floats) -> Floats:
         instants = np.where(self.decay > 0.0, right[:, None], left[:, None])

@@ -1,0 +1,205 @@
+"""Taylor panels: a response whose modes all but cancel, sampled from its own Taylor polynomials.
+
+About the centre c of a panel of half-width r every living mode c' t^i e^(pt) has the coefficients
+c' p^(k-i) / (k-i)! of t^k. They are summed in balls, where the cancellation happens at full precision, and only the sum
+becomes floats.
+
+Errors, for x = t / r in [-1, 1] and the coefficients b_k of x^k: the rounding of x, of its powers, of b_k and of the
+sum is below (3 n + 6) u sum |b_k|; to it come the radii of the b_k, the remainder and the modes that are left out. The
+remainder after t^n of a derivative of order d is at most sup |f^(q)| r^(q-d) / (q-d)! with q = n + 1, and
+|f^(q)| <= |c'| e^(|sigma| r) |p|^(q-i) (|p| r + q)^i for every term. A mode is left out (it is dead) once its envelope
+is 2^-100 of the largest one; the envelopes of its derivatives over the panel are added to every bound.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+from math import ceil, exp, factorial, log2, perm
+
+import numpy as np
+from flint import acb, acb_mat, arb, fmpq
+from numpy.typing import NDArray
+
+from specgate.response.cells import Cells, cells_between
+from specgate.response.certify import float_of
+from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.grid import Block
+from specgate.response.modes import Expansion, Mode
+from specgate.response.segments import UNIT_ROUNDOFF, Floats, at_most, exact
+from specgate.response.tables import SLACK, TINY
+from specgate.terms.precision import working_precision
+
+_REACH = 2.0
+"""Half-width of a panel in time constants of the fastest living mode."""
+
+_DEAD = 2.0**-100
+_ORDERS = 6
+_MOST_HALVINGS = 6
+
+
+@dataclass(frozen=True)
+class TaylorPanel:
+    """g(start + t) for 0 <= t <= 2 half, as polynomials in x = t / half - 1.
+
+    weights: coefficients of g, g', g'', shape (n + 1, 3). errors: their error bounds, shape (3,). limits: bounds of the
+    derivatives 2 ... 5, shape (4,).
+    """
+
+    start: fmpq
+    half: float
+    weights: Floats
+    errors: Floats
+    limits: Floats
+
+    def sample(self, times: Floats) -> tuple[Floats, Floats]:
+        """Return g, g', g'' and their error bounds, both of shape (n, 3)."""
+        powers = np.empty((len(times), len(self.weights)))
+        powers[:, 0] = 1.0
+        powers[:, 1:] = (times / self.half - 1.0)[:, None]
+        np.multiply.accumulate(powers, axis=1, out=powers)
+        return powers @ self.weights, np.broadcast_to(self.errors, (len(times), 3))
+
+    def bounds(self, left: Floats, right: Floats) -> Floats:
+        """Return bounds of the derivatives 2 ... 5, the same on the whole panel."""
+        return np.broadcast_to(self.limits, (len(left), 4))
+
+
+class PanelLayout:
+    """Plans the blocks: one octave each, in equal panels.
+
+    cancellation: the change of the response in units of the sum of its modes, a hint for the precision.
+    """
+
+    def __init__(self, deviation: Deviation, first: float, resolution: float, cancellation: float) -> None:
+        self._first = first
+        self._resolution = resolution
+        self._maker = PanelMaker(deviation, *_precision(cancellation))
+
+    def block(self, before: list[Block]) -> Block:
+        """Return the block that follows."""
+        left = before[-1].end if before else self._first
+        speed = self._maker.speed(left)
+        wanted = left * speed / (2.0 * _REACH)
+        return _Octave(self._maker, left, 1 << max(1, ceil(log2(max(wanted, 1.0)))), self._resolution)
+
+
+def _precision(cancellation: float) -> tuple[int, int]:
+    """Return bits and degree that leave some 20 digits of what is left after cancellation."""
+    if cancellation > 2.0**-60:
+        return LOWEST, 40
+    return (256, 56) if cancellation > 2.0**-160 else (512, 96)
+
+
+@dataclass(frozen=True)
+class _Octave:
+    """The octave [left, 2 left] in `chunks` panels."""
+
+    maker: PanelMaker
+    left: float
+    chunks: int
+    resolution: float
+
+    @property
+    def end(self) -> float:
+        return 2.0 * self.left
+
+    def index(self, time: float) -> int:
+        return min(self.chunks - 1, max(0, int((time - self.left) / self.left * self.chunks)))
+
+    def cells(self, index: int) -> Cells:
+        width = self.left / self.chunks
+        panel = self.maker.panel(exact(self.left) + index * exact(width), width / 2.0)
+        wanted = width * (float(panel.limits[2]) / 384.0 / self.resolution) ** 0.25
+        count = 1 << max(0, min(ceil(log2(max(wanted, 1.0))), _MOST_HALVINGS))
+        nodes: Floats = width / count * np.arange(count + 1, dtype=np.float64)
+        return cells_between(panel, nodes[None, :])
+
+
+class PanelMaker:
+    """Makes panels of one response; the matrix from modes to Taylor coefficients is kept for equal panels."""
+
+    def __init__(self, deviation: Deviation, bits: int, degree: int) -> None:
+        self._deviation = deviation
+        self._expansion = deviation.at(bits)
+        self._degree = degree
+        self._matrices: dict[tuple[float, tuple[int, ...]], acb_mat] = {}
+
+    def speed(self, left: float) -> float:
+        """Return the largest |p| of a mode that lives at `left`."""
+        speeds = self._speeds[self._living(left, 1.5 * left)[0]]
+        return float(speeds.max(initial=0.0))
+
+    @cached_property
+    def _speeds(self) -> Floats:
+        return np.array([float(abs(mode.pole).upper()) for mode in self._expansion.modes])
+
+    def _living(self, left: float, right: float) -> tuple[NDArray[np.intp], Floats]:
+        """Return the modes that live on an interval and bounds of the derivatives 0 ... 5 of all others together."""
+        columns = self._deviation.table.envelopes(np.array([left]), np.array([right]))[0]
+        lengths = [len(mode.coefficients) for mode in self._expansion.modes]
+        modes = np.add.reduceat(columns, np.cumsum([0, *lengths[:-1]]), axis=0)
+        last = self._deviation.table.envelopes(np.array([right]), np.array([right]))[0, :, 0].max()
+        living = modes[:, 0] > _DEAD * last
+        return np.flatnonzero(living), modes[~living].sum(axis=0)
+
+    def panel(self, start: fmpq, half: float) -> TaylorPanel:
+        """Return the Taylor polynomials of g about start + half."""
+        left = float_of(start)
+        living, dead = self._living(left, left + 2.0 * half)
+        local = self._expansion.only(living.tolist()).rebased(start + exact(half))
+        with working_precision(local.bits):
+            columns = [c for mode in local.modes for c in mode.coefficients]
+            matrix = self._matrix(half, tuple(living.tolist()), local)
+            balls = [entry.real for entry in (matrix * acb_mat(len(columns), 1, columns)).entries()]
+        rest = [sum(_remainder(mode, half, self._degree, d) for mode in local.modes) for d in range(_ORDERS)]
+        return _in_floats(balls, start, half, np.array(rest) + dead)
+
+    def _matrix(self, half: float, living: tuple[int, ...], local: Expansion) -> acb_mat:
+        """Return the coefficients of x^k, k = 0 ... n, of every t^i e^(pt)."""
+        key = (half, living)
+        if key not in self._matrices:
+            columns = [
+                _powers(mode.pole, i, half, self._degree) for mode in local.modes for i in range(len(mode.coefficients))
+            ]
+            entries = [column[k] for k in range(self._degree + 1) for column in columns]
+            self._matrices[key] = acb_mat(self._degree + 1, len(columns), entries)
+        return self._matrices[key]
+
+
+def _powers(pole: acb, i: int, half: float, degree: int) -> list[acb]:
+    """Return p^(k-i) half^k / (k-i)! for k = 0 ... degree, zero for k < i."""
+    column = [acb(0)] * min(i, degree + 1)
+    term = acb(arb(half) ** i)
+    for k in range(i, degree + 1):
+        column.append(term)
+        term = term * pole * half / (k - i + 1)
+    return column
+
+
+def _remainder(mode: Mode, half: float, degree: int, order: int) -> float:
+    """Return a bound of what the derivative of this order of a mode lacks beyond its polynomial."""
+    speed, decay = at_most(abs(mode.pole)), at_most(abs(mode.pole.real))
+    q = degree + 1
+    scale = exp(min(decay * half, 700.0)) * half ** (q - order) / factorial(q - order)
+    terms = (
+        at_most(abs(c)) * speed ** max(q - i, 0) * (speed * half + q) ** i for i, c in enumerate(mode.coefficients)
+    )
+    return SLACK * scale * sum(terms)
+
+
+def _in_floats(balls: list[arb], start: fmpq, half: float, rest: Floats) -> TaylorPanel:
+    """Round the coefficients of x^k to floats; rest: bounds of what they lack, for the derivatives 0 ... 5."""
+    count = len(balls)
+    middle = np.array([float(ball) for ball in balls])
+    radius = np.array([float(ball.rad()) for ball in balls])
+    weights, errors, limits = np.zeros((count, 3)), np.zeros(3), np.zeros(_ORDERS)
+    for order in range(_ORDERS):
+        factor = np.array([perm(k, order) for k in range(order, count)], dtype=np.float64) / half**order
+        derived, width = middle[order:] * factor, radius[order:] * factor
+        size = float(np.abs(derived).sum())
+        if order < 3:
+            weights[: count - order, order] = derived
+            errors[order] = (3 * count + 10) * UNIT_ROUNDOFF * size + width.sum() + rest[order]
+        limits[order] = size + width.sum() + rest[order]
+    return TaylorPanel(start, half, weights, SLACK * errors + TINY, SLACK * limits[2:] + TINY)
