@@ -1,0 +1,78 @@
+"""The measure table against the format: every name of it is a row, and says what it is."""
+
+from __future__ import annotations
+
+from specgate.measures.table import MEASURES
+from specgate.measures.text import describe
+
+ANSWERED = {
+    "response": """
+        final_value initial_value maximum_value minimum_value value_at peak_deviation overshoot undershoot
+        settling_time rise_time delay_time peak_time steady_state_error poles_at_origin zeros_at_origin
+    """,
+    "break": "loop_type position_constant velocity_constant acceleration_constant",
+    "loop": "stable hidden_modes damping_ratio natural_frequency decay_rate",
+}
+LATER = {
+    "response": """
+        deviation_after within_mask peak_rate integral_absolute_error integral_squared_error standard_deviation
+        bandwidth resonance_peak gain_at phase_at
+    """,
+    "break": """
+        gain_margin gain_margin_up gain_margin_down phase_margin phase_margin_lag phase_margin_lead delay_margin
+        least_distance sensitivity_peak crossover_frequency phase_crossover_frequency gain_at phase_at peak_gain
+    """,
+}
+ON_EVERY_STEP = """
+    final_value initial_value maximum_value minimum_value peak_deviation overshoot undershoot settling_time rise_time
+    delay_time peak_time steady_state_error poles_at_origin zeros_at_origin
+"""
+
+
+def test_every_measure_of_the_format_is_a_row() -> None:
+    for kinds, answered in ((ANSWERED, True), (LATER, False)):
+        for kind, names in kinds.items():
+            for name in names.split():
+                assert kind in MEASURES[name].subjects, name
+                assert (MEASURES[name].read is not None) is answered, name
+    named = {name for kinds in (ANSWERED, LATER) for names in kinds.values() for name in names.split()}
+    assert set(MEASURES) == named
+
+
+def test_rows_are_filed_under_their_names() -> None:
+    assert all(name == row.name for name, row in MEASURES.items())
+
+
+def test_what_is_reported_on_every_step_response() -> None:
+    assert [row.name for row in MEASURES.values() if row.always and "response" in row.subjects] == ON_EVERY_STEP.split()
+
+
+def test_signed_measures_are_marked() -> None:
+    signed = {name for name, row in MEASURES.items() if row.signed}
+    assert {"final_value", "initial_value", "maximum_value", "minimum_value", "value_at"} <= signed
+    assert not signed & {"peak_deviation", "overshoot", "undershoot", "settling_time", "steady_state_error"}
+
+
+def test_required_arguments() -> None:
+    required = {name: [a.name for a in row.arguments if a.required] for name, row in MEASURES.items()}
+    assert required["settling_time"] == ["band"]
+    assert required["value_at"] == ["time"]
+    assert required["rise_time"] == []
+    assert [argument.name for argument in MEASURES["rise_time"].arguments] == ["from", "to"]
+
+
+def test_every_row_is_explained() -> None:
+    for name, row in MEASURES.items():
+        explained = describe(name)
+        assert explained.title == row.title
+        assert row.definition in explained.text
+        assert row.absent_when in explained.text
+        assert explained.source
+        assert ("does not answer it yet" in explained.text) is (row.read is None)
+
+
+def test_terms_of_the_standard_are_named() -> None:
+    """Numbers of IEC 60050-351:2013."""
+    numbers = {"settling_time": "351-45-37", "overshoot": "351-45-38", "damping_ratio": "351-45-19"}
+    for name, number in {**numbers, "phase_margin": "351-46-05", "gain_margin": "351-46-07"}.items():
+        assert number in describe(name).source
