@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from flint import fmpq
 
-from specgate.systems.stability import classify
+from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
 
 
@@ -27,6 +27,6 @@ def final_value(channel: TransferFunction, size: fmpq) -> fmpq | None:
     (the limit theorem alone would give a number for an unstable channel too), or the channel is zero.
     """
     reduced = channel.reduced()
-    if not classify(reduced.denominator).stable:
+    if not is_hurwitz(reduced.denominator):
         return None
     return size * reduced.numerator[0] / reduced.denominator[0]

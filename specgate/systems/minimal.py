@@ -16,7 +16,7 @@ def shown_modes(matrix: Sequence[Sequence[TransferFunction]]) -> fmpq_poly:
     """Return the characteristic polynomial of the smallest system with these transfer functions, monic.
 
     matrix[target][source], reduced. With d the common denominator, the rows of d times the matrix and of d times the
-    identity have a greatest common right divisor R; the polynomial is d^sources / det R (Kailath 1980, section 6.2).
+    identity have a greatest common right divisor R; the polynomial is d^sources / det R (Kailath 1980, chapter 6).
     Two equal poles that reach two signals on ways of their own are two modes; the common denominator alone has one.
     """
     common = least_common_multiple(entry.denominator for row in matrix for entry in row)

@@ -99,4 +99,4 @@ def _merged(blocks: Sequence[Sequence[int]], owner: Sequence[str]) -> list[list[
             sets.remove(known)
             owners, members = owners | known[0], known[1] + members
         sets.append((owners, members))
-    return sorted((members for _, members in sets), key=min)
+    return sorted(sorted(members) for _, members in sets)

@@ -8,23 +8,20 @@ from __future__ import annotations
 from dataclasses import dataclass
 from functools import cached_property
 
-from flint import fmpq, fmpq_poly, fmpz_poly
+from flint import fmpq, fmpq_poly
 
-from specgate.systems.blocks import Instance, LinearForm, SignalRef, Wiring
+from specgate.systems.blocks import SignalRef, Wiring
 from specgate.systems.equations import Equations, Reference
-from specgate.systems.feedthrough import (
-    AlgebraicLoop,
-    differentiating_loop,
-    direct_cycles,
-    is_proper,
-    signals_of,
-    undetermined,
-)
+from specgate.systems.feedthrough import AlgebraicLoop, direct_cycles, is_proper, signals_of
 from specgate.systems.hidden import hidden_modes
 from specgate.systems.network import Group, Network
-from specgate.systems.polynomials import ONE, exact_quotient, product
+from specgate.systems.opening import OpenLoop, opened
+from specgate.systems.polynomials import exact_quotient, product
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
+from specgate.systems.wellposed import algebraic_loop
+
+__all__ = ["AlgebraicLoop", "Channel", "Component", "LoopSolution", "OpenLoop", "StrongFeedThrough", "solve"]
 
 
 @dataclass(frozen=True)
@@ -78,29 +75,6 @@ class Channel:
 
 
 @dataclass(frozen=True)
-class OpenLoop:
-    """The loop opened for all users of a signal.
-
-    transfer: L = det P / det P_open - 1, minus the transfer function from the injected to the returned signal, not
-    reduced: its denominator has every mode of the opened component. stable: whether every mode of the closed component
-    decays. algebraic_loop: set where the opened loop is not well posed; then L is infinite at infinity or everywhere.
-    """
-
-    signal: str
-    numerator: fmpq_poly
-    denominator: fmpq_poly
-    stable: bool
-    algebraic_loop: AlgebraicLoop | None = None
-
-    @property
-    def transfer(self) -> TransferFunction:
-        """L. Raises ValueError where the opened loop is not well posed."""
-        if self.algebraic_loop is not None:
-            raise ValueError(self.algebraic_loop.reason)
-        return TransferFunction(self.numerator, self.denominator)
-
-
-@dataclass(frozen=True)
 class StrongFeedThrough:
     """A well-posed loop that passes its signals on at once, with a gain of magnitude one or more.
 
@@ -110,9 +84,6 @@ class StrongFeedThrough:
 
     signals: tuple[str, ...]
     gain: fmpq | None
-
-
-_INJECTED = "(injected)"
 
 
 @dataclass(frozen=True)
@@ -181,21 +152,7 @@ class LoopSolution:
 
     def open_at(self, signal: str) -> OpenLoop:
         """Return the loop opened at a signal. Raises KeyError for an unknown name."""
-        opened = Network(Equations(_with_injection(self.wiring, signal)))
-        node = SignalRef(signal)
-        returned = opened.fraction(node, SignalRef(_INJECTED))
-        closed_modes = self._modes_around(node)
-        # returned = -L/(1 + L), and 1/(1 + L) = det P_open / det P.
-        hidden = exact_quotient(closed_modes, returned.denominator)
-        open_determinant = (returned.numerator + returned.denominator) * hidden
-        lead = open_determinant.leading_coefficient() if open_determinant else fmpq(1)
-        return OpenLoop(
-            signal,
-            -returned.numerator * hidden / lead,
-            open_determinant / lead,
-            is_hurwitz(closed_modes),
-            self._opened_badly(node, open_determinant, closed_modes),
-        )
+        return opened(self.network, signal)
 
     @cached_property
     def strong_feed_through(self) -> tuple[StrongFeedThrough, ...]:
@@ -217,47 +174,19 @@ class LoopSolution:
             return [list(cycle.loop_gains()) for cycle in direct_cycles(equations, component)]
         gains: list[tuple[str, fmpq | None]] = []
         for name in signals_of(component):
-            opened = self.open_at(name)
-            excess = opened.numerator.degree() - opened.denominator.degree()
-            if opened.algebraic_loop is not None or excess > 0:
+            loop = self.open_at(name)
+            excess = loop.numerator.degree() - loop.denominator.degree()
+            if loop.algebraic_loop is not None or excess > 0:
                 gains.append((name, None))
             elif excess == 0:
-                gains.append((name, opened.numerator.leading_coefficient() / opened.denominator.leading_coefficient()))
+                gains.append((name, loop.numerator.leading_coefficient() / loop.denominator.leading_coefficient()))
         return [gains] if gains else []
-
-    def _modes_around(self, node: Reference) -> fmpq_poly:
-        """Return the modes of the group of blocks that stand in a cycle with a node; 1 if it stands in none."""
-        component = next(component for component in self.network.equations.components if node in component)
-        for group in self.network.groups:
-            if any(output in component for output in group.outputs):
-                return group.modes
-        return ONE
-
-    def _opened_badly(self, node: SignalRef, opened: fmpq_poly, closed: fmpq_poly) -> AlgebraicLoop | None:
-        """Return why the loop opened at a node is not well posed, None if it is."""
-        equations = self.network.equations
-        component = next(component for component in equations.components if node in component)
-        proper = all(is_proper(equations, other) for other in component)
-        if opened and (not proper or opened.degree() == closed.degree()):
-            return None
-        signals = tuple(name for name in signals_of(component) if name != node.name)
-        reason = (
-            f"opened at {node.name}, the loop leaves an algebraic loop behind: its other signals are not determined"
-        )
-        return AlgebraicLoop(signals, reason)
 
 
 def solve(wiring: Wiring) -> LoopSolution:
     """Solve a wiring. Raises KeyError for a reference to nothing; an algebraic loop is part of the answer."""
-    equations = Equations(wiring)
-    network = Network(equations)
-    found = undetermined(equations)
-    if found is None:
-        # The elimination stops at a singular block: its determinant is zero.
-        determinants = (*network.triangle.determinants, fmpz_poly())
-        for block, determinant in zip(network.blocks, determinants, strict=False):
-            found = found or differentiating_loop(equations, block, determinant)
-    return LoopSolution(wiring, found, network)
+    network = Network(Equations(wiring))
+    return LoopSolution(wiring, algebraic_loop(network), network)
 
 
 def _carriers(network: Network, group: Group) -> tuple[str, ...]:
@@ -276,22 +205,3 @@ def _carriers(network: Network, group: Group) -> tuple[str, ...]:
             else:
                 waiting.append(fed)
     return tuple(name for name in equations.forms if name in carried)
-
-
-def _with_injection(wiring: Wiring, signal: str) -> Wiring:
-    """Return the wiring with an input of its own added to every use of a signal."""
-    if signal not in wiring.signals:
-        raise KeyError(signal)
-
-    def injected(form: LinearForm) -> LinearForm:
-        uses = [(factor, SignalRef(_INJECTED)) for factor, used in form.terms if used == SignalRef(signal)]
-        return LinearForm((*form.terms, *uses))
-
-    return Wiring(
-        (*wiring.inputs, _INJECTED),
-        tuple(
-            Instance(i.name, i.block, {name: injected(argument) for name, argument in i.arguments.items()})
-            for i in wiring.instances
-        ),
-        {name: injected(form) for name, form in wiring.signals.items()},
-    )

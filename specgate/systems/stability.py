@@ -60,9 +60,9 @@ def is_hurwitz(p: fmpq_poly) -> bool:
 def classify(p: fmpq_poly) -> RootCount:
     """Count the roots by side. Raises ValueError for zero.
 
-    With n = deg p and (-j)^n p(jw) = A(w) + j B(w), left minus right is the variation lost by Sturm's chain of A and
-    B from minus to plus infinity (Gantmacher 1959, chapter XV); the roots on the axis are the real roots of its last
-    member.
+    With n = deg p and (-j)^n p(jw) = A(w) + j B(w), left minus right is the variation gained by Sturm's chain of A
+    and B from minus to plus infinity (Gantmacher 1959, chapter XV); the roots on the axis are the real roots of its
+    last member.
     """
     if not p:
         raise ValueError("every number is a root of zero")
