@@ -15,32 +15,26 @@ from specgate.project.types import Project, Value
 
 @dataclass(frozen=True)
 class Threshold:
-    """A threshold that a project states: `applied` where it is at least as strict as the catalogue's."""
+    """A threshold that a project states in place of the catalogue's."""
 
     approximation: str
     key: str
     catalogue: fmpq
     stated: fmpq
     as_written: str
-    applied: bool
 
 
 @dataclass(frozen=True)
 class Policy:
-    """The thresholds that a project states."""
+    """The thresholds that a project states; a looser one than the catalogue's has been refused when it was read."""
 
     stated: tuple[Threshold, ...]
 
     def in_force(self, approximation: str, condition: Condition) -> tuple[fmpq | None, str | None]:
-        """Return the threshold of a condition and, where the project states one, what became of it in words."""
+        """Return the threshold of a condition and, where it is the project's own, that in words."""
         for one in self.stated:
             if (one.approximation, one.key) == (approximation, condition.key):
-                if one.applied:
-                    return one.stated, f"tightened by the project to {one.as_written}"
-                return (
-                    condition.threshold,
-                    f"the project's {one.as_written} is looser than the catalogue and not applied",
-                )
+                return one.stated, f"tightened by the project to {one.as_written}"
         return condition.threshold, None
 
 
@@ -63,6 +57,5 @@ def _conditions(approximation: str, key: str) -> Iterator[Condition]:
 
 
 def _threshold(name: str, key: str, value: Value, condition: Condition, values: Values) -> Threshold:
-    stated = evaluate(value, values)
     assert condition.threshold is not None
-    return Threshold(name, key, condition.threshold, stated, value.as_written, condition.stricter(stated))
+    return Threshold(name, key, condition.threshold, evaluate(value, values), value.as_written)

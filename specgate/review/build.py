@@ -63,7 +63,6 @@ def review(project: Project) -> Review:
                     "condition": one.key,
                     "catalogue": short(one.catalogue),
                     "project": one.as_written,
-                    "effect": "tightened" if one.applied else "looser, not applied",
                 }
                 for one in policy(project, analyses.nominal.values).stated
             ),
