@@ -102,6 +102,8 @@ def _each(root: Table, kind: str, read: Callable[[Entry], _Thing | None], collec
     """Read every entry of a section, leaving out those in which something was reported."""
     found: dict[str, _Thing] = {}
     for key, entry in section(root, f"{kind}s").items():
+        if collector.full:
+            break
         with collector.about(**{kind: key}):
             thing = read(entry)
         if thing is not None:

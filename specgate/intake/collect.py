@@ -2,17 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 
 from specgate.project.types import InputFile
 from specgate.terms.findings import Finding, Related, in_order
+from specgate.terms.names import nearest
 from specgate.terms.places import Place
 from specgate.terms.verdicts import Level
 
-MOST = 1000
-"""Findings after which the rest is only counted: a file with more is not the file that was meant."""
+MOST = 300
+"""Findings after which no more are taken: a file with more is not the file that was meant."""
+MOST_COMPARISONS = 20_000
+"""Known names that unknown ones are compared with, in all: enough for every misspelling that a person makes."""
 
 
 @dataclass(frozen=True)
@@ -28,8 +31,8 @@ class Collector:
     """Takes what is found on the way."""
 
     findings: list[Finding] = field(default_factory=list)
-    left_out: int = 0
     topic: dict[str, str] = field(default_factory=dict)
+    comparisons: int = MOST_COMPARISONS
 
     def error(self, rule: str, message: str, place: Place, *related: Related, **about: str) -> None:
         """Add an error; `about` may name the requirement, loop, response or subsystem that it is about."""
@@ -47,10 +50,16 @@ class Collector:
 
     def add(self, finding: Finding) -> None:
         """Add a finding, unless there are far too many already."""
-        if self.full:
-            self.left_out += 1
-        else:
+        if not self.full:
             self.findings.append(finding)
+
+    def nearest(self, word: str, known: Iterable[str]) -> str | None:
+        """Return the known name that `word` was most likely meant to be, or None; after very many, always None."""
+        names = tuple(known)
+        if self.comparisons < len(names):
+            return None
+        self.comparisons -= len(names)
+        return nearest(word, names)
 
     @property
     def full(self) -> bool:
@@ -65,8 +74,7 @@ class Collector:
     def problems(self, inputs: tuple[InputFile, ...]) -> Problems:
         """Return what was found, in order."""
         found = in_order(self.findings)
-        if self.left_out:
-            first = found[0]
-            words = f"{self.left_out} more findings are left out: put these right first"
-            found = (*found, Finding(first.rule, Level.ERROR, words, found[-1].place))
+        if self.full:
+            words = f"only the first {MOST} findings are shown: put these right first"
+            found = (*found, Finding(found[-1].rule, Level.ERROR, words, found[-1].place))
         return Problems(found, inputs)

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from specgate.intake.collect import Collector
 from specgate.intake.nodes import Items, Node, Number, Table, Text
-from specgate.terms.names import nearest
+from specgate.terms.expressions import Expression, ExpressionError, parse
 from specgate.terms.places import Place
 from specgate.terms.units import Unit, UnitError, UnitTable
 
@@ -49,6 +49,21 @@ class Context:
     stages: tuple[str, ...] = ()
     broken: set[str] = field(default_factory=set)
     units_read: set[str] = field(default_factory=set)
+    parsed: dict[str, Expression | ExpressionError] = field(default_factory=dict)
+    """Every text that was read as an expression, with what came of it."""
+
+    def parse(self, written: str) -> Expression:
+        """Read an expression. Raises ExpressionError."""
+        found = self.parsed.get(written)
+        if found is None:
+            try:
+                found = parse(written, self.units)
+            except ExpressionError as error:
+                found = error
+            self.parsed[written] = found
+        if isinstance(found, ExpressionError):
+            raise found
+        return found
 
     def unit(self, node: Node | None) -> Unit | None:
         """Read the unit at a node (`m/s`, or 1 for none)."""
@@ -67,7 +82,7 @@ class Context:
     def unknown(self, what: str, name: str, known: Iterable[str], place: Place, owner: str | None = None) -> None:
         """Report a name that nothing in the project (or nothing of its `owner`) has."""
         names = tuple(known)
-        close = nearest(name, names)
+        close = self.collector.nearest(name, names)
         if close is not None:
             ending = f": did you mean `{close}`?"
         elif 0 < len(names) <= 12:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from decimal import Decimal
-from typing import Any
+from typing import Any, NamedTuple
 
 from specgate.terms.places import Place
 
@@ -18,8 +18,7 @@ class Origin:
     via: Place | None = None
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class Spot:
+class Spot(NamedTuple):
     """Where a node begins: `line` and `column` counted from 1. The place is only made when it is asked for."""
 
     origin: Origin

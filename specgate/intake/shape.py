@@ -12,8 +12,7 @@ from typing import TYPE_CHECKING, Any
 
 from specgate.intake.collect import MOST, Collector
 from specgate.intake.nodes import Broken, Items, Node, Table, Text, plain
-from specgate.intake.wording import Misshape, Path, worded
-from specgate.terms.names import nearest
+from specgate.intake.wording import Misshape, Nearest, Path, worded
 
 if TYPE_CHECKING:
     from jsonschema.exceptions import ValidationError
@@ -46,11 +45,11 @@ def check(root: Node, collector: Collector, part: str | None = None) -> None:
     if isinstance(root, Broken):
         return
     errors = islice(_validator(part).iter_errors(plain(root)), 2 * MOST)
-    for error in _telling([_misshape(root, error) for error in errors]):
+    for error in _telling([_misshape(root, error, collector.nearest) for error in errors]):
         _report(error, collector)
 
 
-def _misshape(root: Node, error: ValidationError) -> Misshape:
+def _misshape(root: Node, error: ValidationError, near: Nearest) -> Misshape:
     path = tuple(error.absolute_path)
     node, key = _locate(root, path)
     passed = set(error.absolute_schema_path)
@@ -64,6 +63,7 @@ def _misshape(root: Node, error: ValidationError) -> Misshape:
         key=key,
         conditional=not passed.isdisjoint({"then", "else"}),
         of_name="propertyNames" in passed,
+        nearest=near,
     )
 
 
@@ -90,7 +90,7 @@ def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
         names = meant.setdefault(error.path, set())
         if error.keyword == "additionalProperties":
             names.update(error.unexpected)
-            names.update(nearest(key, error.schema["properties"]) for key in error.unexpected)
+            names.update(error.nearest(key, error.schema["properties"]) for key in error.unexpected)
         if error.keyword == "dependentRequired":
             names.update(error.missing)
     for error in errors:

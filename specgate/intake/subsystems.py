@@ -33,10 +33,12 @@ def find_broken(declared: Mapping[str, tuple[Node, str | None]], context: Contex
 
     declared: node and subsystem by qualified name. Nothing is reported here: `parameter` does that.
     """
-    quiet = Context(Collector(), context.units, context.shared, context.own)
+    quiet = Context(Collector(), context.units, context.shared, context.own, parsed=context.parsed)
     readers: dict[str, list[str]] = {}
     waiting: list[str] = []
     for name, (node, scope) in declared.items():
+        if quiet.collector.full:
+            return
         reader, written = Reader(quiet, scope), _written(node)
         parsed = reader.parsed(written) if written is not None else None
         reads = [reader.qualified(read) for read in expressions.names(parsed)] if parsed is not None else [None]
@@ -62,6 +64,8 @@ def parameters(node: Node | None, scope: str | None, context: Context) -> dict[s
     """Read the parameters of the project (scope None) or of a subsystem, by their names as written."""
     found: dict[str, Parameter] = {}
     for key, value in entries(node):
+        if context.collector.full:
+            break
         qualified = f"{scope}.{key.value}" if scope else key.value
         if context.units.is_unit(key.value) or key.value in RESERVED:
             what = "a unit" if context.units.is_unit(key.value) else "a word of the format"

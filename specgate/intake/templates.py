@@ -9,7 +9,6 @@ from specgate.intake.collect import Collector
 from specgate.intake.context import table, text
 from specgate.intake.nodes import Broken, Entry, Items, Node, Nothing, Number, Origin, Spot, Table, Text, Truth
 from specgate.terms.findings import Related
-from specgate.terms.names import nearest
 from specgate.terms.places import Place
 
 _PLACEHOLDER = re.compile(r"\{([A-Za-z_][A-Za-z0-9_]*)\}", re.ASCII)
@@ -38,7 +37,7 @@ def _expanded(entry: Entry, templates: Mapping[str, Entry], collector: Collector
         return entry
     template = templates.get(name)
     if template is None:
-        close = nearest(name, templates)
+        close = collector.nearest(name, templates)
         ending = f": did you mean `{close}`?" if close else ""
         collector.error("name-unknown", f"there is no template `{name[:80]}`{ending}", use.spot.place)
         return Entry(entry.key, Broken(node.spot))
@@ -69,7 +68,7 @@ class _Filling:
             self.collector.error("schema-violation", message, self.via, there)
         for name, entry in self.given.items():
             if name not in self.used:
-                close = nearest(name, [*self.missing, *self.used])
+                close = self.collector.nearest(name, [*self.missing, *self.used])
                 ending = f": did you mean `{close}`?" if close else ""
                 message = f"the template has no placeholder `{name}`{ending}"
                 self.collector.error("schema-violation", message, entry.key.spot.place)

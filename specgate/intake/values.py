@@ -63,7 +63,7 @@ class Reader:
         """Read an expression whatever the names in it."""
         written = node.value if isinstance(node, Text) else node.text
         try:
-            parsed = expressions.parse(written, self.context.units)
+            parsed = self.context.parse(written)
         except ExpressionError as error:
             self._unreadable(node, error)
             return None

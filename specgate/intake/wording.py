@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import islice
 from typing import Any
 
+from specgate.intake.collect import MOST
 from specgate.intake.nodes import Items, Node, Nothing, Number, Spot, Table, Text, Truth, shown
 from specgate.intake.traps import scalar_hint, split_by_comma
-from specgate.terms.names import nearest
 
 Path = tuple[str | int, ...]
 Said = tuple[str, str, Spot]
@@ -22,6 +23,10 @@ _TYPES = {
     "array": "a list",
     "object": "a table of keys",
 }
+
+
+Nearest = Callable[[str, Iterable[str]], "str | None"]
+"""The known name that a word was most likely meant to be."""
 
 
 @dataclass(frozen=True)
@@ -43,11 +48,12 @@ class Misshape:
     key: Text | None
     conditional: bool
     of_name: bool
+    nearest: Nearest
 
     @property
     def unexpected(self) -> list[str]:
-        """The keys that an `additionalProperties` error is about, in the order of the file."""
-        return [key for key in self.found if key not in self.schema["properties"]]
+        """The keys that an `additionalProperties` error is about, in the order of the file, up to far too many."""
+        return list(islice((key for key in self.found if key not in self.schema["properties"]), MOST + 1))
 
     @property
     def missing(self) -> tuple[str, ...]:
@@ -96,7 +102,7 @@ def _unexpected(name: str, error: Misshape, table: Table) -> str:
     if comma is not None:
         return f"`{name}` is no key: {comma}"
     known = error.schema["properties"]
-    close = nearest(name, known)
+    close = error.nearest(name, known)
     where = f"`{_cut(name)}` is not a key of {error.schema.get('title', 'this table')}"
     if close is not None:
         return f"{where}: did you mean `{close}`?"
@@ -110,7 +116,7 @@ def _name(error: Misshape) -> str:
     if said is not None:
         return str(said).replace("{found}", _cut(found))
     if error.keyword == "enum":
-        return _nearest_of(found, error.wanted, error.schema)
+        return _nearest_of(found, error)
     return f"`{_cut(found)}` is not {error.schema.get('x-wanted', 'a name that can be used here')}"
 
 
@@ -149,15 +155,16 @@ def _enum(error: Misshape, node: Node) -> str:
         return str(error.schema["x-say"]).replace("{found}", _cut(str(error.found)))
     if not isinstance(node, Text):
         return f"{_listed(error.wanted, 'or')} is wanted here, found {shown(node)}"
-    return _nearest_of(node.value, error.wanted, error.schema)
+    return _nearest_of(node.value, error)
 
 
-def _nearest_of(found: str, known: Sequence[str], schema: Any) -> str:
-    close = nearest(found, known)
+def _nearest_of(found: str, error: Misshape) -> str:
+    known: Sequence[str] = error.wanted
+    close = error.nearest(found, known)
     if close is not None:
         return f"`{_cut(found)}` is not known here: did you mean `{close}`?"
-    wanted = f"{schema['x-wanted']}: " if "x-wanted" in schema else ""
-    return f"`{_cut(found)}` is not known here: wanted is {wanted}{_listed(list(known), 'or')}"
+    wanted = f"{error.schema['x-wanted']}: " if "x-wanted" in error.schema else ""
+    return f"`{_cut(found)}` is not known here: wanted is {wanted}{_listed(known, 'or')}"
 
 
 def _required(name: str, error: Misshape) -> str:

@@ -62,7 +62,13 @@ class FolderSource:
         fixed = tuple(takewhile(lambda part: not set(part) & _WILD, wanted))
         if fixed == wanted:
             return ["/".join(wanted)] if self.root.joinpath(*wanted).is_file() else []
+        if not self._inside(fixed):
+            raise SourceError(f"`{pattern}` leads out of the project folder")
         return sorted(path for path in self._files(fixed) if _matches(tuple(path.split("/")), wanted))
+
+    def _inside(self, below: tuple[str, ...]) -> bool:
+        """Whether a folder is inside, wherever a link on the way to it leads."""
+        return self.root.joinpath(*below).resolve().is_relative_to(self.root.resolve())
 
     def _files(self, below: tuple[str, ...]) -> Iterator[str]:
         """Give all files below a folder; hidden ones and links to folders are left out."""
