@@ -13,7 +13,7 @@ from typing import Any
 from jinja2 import Environment, FunctionLoader, StrictUndefined
 from markupsafe import Markup, escape
 
-from specgate.report.figures import poles, reserve, step
+from specgate.report.figures import poles, reserve, step, wiring
 from specgate.report.parts import matrix
 from specgate.report.view import View
 
@@ -46,14 +46,20 @@ def _text(name: str) -> str:
     return resource(name).decode()
 
 
-def draw(figure: step.StepFigure | poles.PoleFigure) -> Markup:
+Figure = step.StepFigure | poles.PoleFigure | reserve.ReserveBar | wiring.WiringFigure
+
+
+def draw(figure: Figure) -> Markup:
     """Return a figure as SVG; its texts are escaped where they are written."""
-    return Markup(step.draw(figure) if isinstance(figure, step.StepFigure) else poles.draw(figure))
-
-
-def draw_bar(bar: reserve.ReserveBar) -> Markup:
-    """Return a reserve bar as SVG."""
-    return Markup(reserve.draw(bar))
+    match figure:
+        case step.StepFigure():
+            return Markup(step.draw(figure))
+        case poles.PoleFigure():
+            return Markup(poles.draw(figure))
+        case reserve.ReserveBar():
+            return Markup(reserve.draw(figure))
+        case wiring.WiringFigure():
+            return Markup(wiring.draw(figure))
 
 
 def readings(figure: step.StepFigure) -> str:
@@ -108,7 +114,7 @@ def environment() -> Environment:
     env.filters["short"] = short
     env.filters["quoted"] = quoted
     env.filters["breakable"] = breakable
-    env.globals.update(draw=draw, draw_bar=draw_bar, readings=readings)
+    env.globals.update(draw=draw, readings=readings)
     return env
 
 

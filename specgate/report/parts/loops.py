@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from specgate.report import anchors, digits
 from specgate.report.figures.poles import Point, PoleFigure
 from specgate.report.figures.step import StepFigure
+from specgate.report.figures.wiring import WiringFigure
 from specgate.report.parts import plots, shown
 from specgate.report.words import VERDICTS, Status, arguments, counted, limit, titled
 from specgate.review.types import (
@@ -125,7 +126,7 @@ class LoopSheet:
     stable: Status | None
     inputs: tuple[Signal, ...]
     signals: tuple[Signal, ...]
-    wiring: Mapping[str, str]
+    diagram: WiringFigure
     characteristic: str
     order: str
     poles: tuple[PoleRow, ...]
@@ -163,7 +164,13 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
             Signal(signal, made_of, loop.signal_units.get(signal, ""), loop.rest.get(signal, ""))
             for signal, made_of in loop.wiring.items()
         ),
-        wiring=loop.wiring,
+        diagram=WiringFigure(
+            name=anchors.anchor("wiring", name),
+            title=f"Wiring of {name}, as in the table below",
+            inputs=tuple(loop.inputs),
+            wiring=loop.wiring,
+            channels=tuple((response.from_, response.to) for response in loop.responses.values()),
+        ),
         characteristic=shown.polynomial(loop.characteristic_polynomial) if loop.characteristic_polynomial else "",
         order=counted(max(0, len(loop.characteristic_polynomial) - 1), "mode"),
         poles=pole_rows(loop.poles),
