@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from flint import fmpq
 
-from specgate.approximations.figures import combined, quotient
+from specgate.approximations.figures import combined, quotient, smallest
 from specgate.compliance.assessment import CriterionAssessment
 from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer
@@ -38,7 +38,7 @@ def reserve(assessed: CriterionAssessment) -> Reserve | None:
     least, most = assessed.least, assessed.most
     left = [_difference(value, least.in_unit(unit))] if least is not None else []
     left += [_difference(most.in_unit(unit), value)] if most is not None else []
-    distance = left[0] if len(left) == 1 else combined(lambda x, y: x.min(y), *left)
+    distance = smallest(left)
     yardstick = None if unit.kind == "decibel" else _yardstick(least, most, unit)
     if yardstick is None:
         return Reserve(distance, None, assessed.scale)

@@ -145,7 +145,9 @@ def test_a_chain_names_its_premises_and_nothing_else(audited: Callable[..., Audi
     assert chained.standing is Standing.SOUND
     stray = audited(PAIR, "at_most: 9 s", basis("[distant_zero, second_order_settling]", "8.0 s"))
     assert stray.standing is Standing.INCONCLUSIVE
-    assert stray.reason == "second_order_settling does not build on distant_zero: chains of that kind are not audited yet"
+    assert (
+        stray.reason == "second_order_settling does not build on distant_zero: chains of that kind are not audited yet"
+    )
 
 
 def test_the_limit_theorem_on_a_response_that_does_not_settle(judge: Judge) -> None:

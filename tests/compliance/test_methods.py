@@ -63,7 +63,13 @@ MET, MISSED = "4 s", "3 s"
         ("[{method: test, stage: acceptance}]", MET, Verdict.COMPLIANT, False, ["due_later"]),
         ("[{method: test, stage: acceptance}]", MISSED, Verdict.NON_COMPLIANT, True, ["due_later"]),
         ("[{method: analysis, stage: acceptance}]", MISSED, Verdict.NON_COMPLIANT, False, ["due_later"]),
-        ("[analysis, {method: test, stage: acceptance}]", MET, Verdict.COMPLIANT, True, [Verdict.COMPLIANT, "due_later"]),
+        (
+            "[analysis, {method: test, stage: acceptance}]",
+            MET,
+            Verdict.COMPLIANT,
+            True,
+            [Verdict.COMPLIANT, "due_later"],
+        ),
     ],
 )
 def test_verdict_by_methods(
