@@ -13,7 +13,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from flint import arb
 
 from specgate.response.modes import Expansion, Mode
 from specgate.response.segments import Floats, at_most
@@ -29,34 +28,44 @@ class Lasting:
     since: float
 
 
-def lasting_sign(expansion: Expansion) -> Lasting | None:
-    """Return from when on g keeps one sign; None if it changes sign for ever, or if that is not told."""
+def lasting_sign(expansion: Expansion, share: float = 1.0) -> Lasting | None:
+    """Return from when on g keeps one sign; None if it changes sign for ever, or if that is not told.
+
+    From then on |g| is at least 1 - `share` of its leading term.
+    """
     with working_precision(expansion.bits):
-        slowest = max(expansion.modes, key=lambda mode: float(mode.pole.real))
-        others = [mode for mode in expansion.modes if mode is not slowest]
-        if slowest.oscillates or any(mode.pole.real.overlaps(slowest.pole.real) for mode in others):
+        lead = max(expansion.modes, key=_slowness)
+        top = lead.coefficients[-1].real
+        if lead.oscillates or top.contains(0):
             return None
-        lead = slowest.coefficients[-1].real
-        if lead.contains(0):
-            return None
-        sign = 1 if lead > 0 else -1
-        terms = [(mode, j, c) for mode in expansion.modes for j, c in enumerate(mode.coefficients)]
-        opposing = [
-            _ratio(mode, j, slowest, lead)
-            for mode, j, c in terms
-            if not (mode is slowest and j == len(slowest.coefficients) - 1)
-            and (mode.oscillates or not c.real * sign > 0)
-        ]
+        sign = 1 if top > 0 else -1
+        opposing: list[tuple[float, float, float]] = []
+        for mode in expansion.modes:
+            rate = _rate(mode, lead)
+            if rate is None:
+                return None
+            for j, c in enumerate(mode.coefficients):
+                power = j - (len(lead.coefficients) - 1)
+                if (mode is not lead or power != 0) and (mode.oscillates or not c.real * sign > 0):
+                    opposing.append((at_most(abs(c) / abs(top)), float(power), rate))
     rows = np.array(opposing, dtype=np.float64).reshape(-1, 3)
-    since = smallest(lambda times: _sum(rows, times), 1.0 - 1e-9)
+    if (rows[:, 1][rows[:, 2] == 0.0] > 0.0).any():
+        return None
+    since = smallest(lambda times: _sum(rows, times), share * (1.0 - 1e-9))
     return None if since is None else Lasting(sign, since)
 
 
-def _ratio(mode: Mode, j: int, slowest: Mode, lead: arb) -> tuple[float, float, float]:
-    """Return size, power and rate of |D| t^j e^(sigma t) over the leading term; the rate is not above zero."""
-    power = j - (len(slowest.coefficients) - 1)
-    rate = 0.0 if mode is slowest else min(0.0, at_most(mode.pole.real - slowest.pole.real))
-    return at_most(abs(mode.coefficients[j]) / abs(lead)), float(power), rate
+def _slowness(mode: Mode) -> tuple[float, bool, int]:
+    """Order modes by real part; among equals real ones come last, then the higher power."""
+    return float(mode.pole.real), not mode.oscillates, len(mode.coefficients)
+
+
+def _rate(mode: Mode, lead: Mode) -> float | None:
+    """Return an upper bound, not above zero, of the growth of a mode against the leading one, None if not told."""
+    if mode is lead or (mode.pole.real.is_zero() and lead.pole.real.is_zero()):
+        return 0.0
+    rate = at_most(mode.pole.real - lead.pole.real)
+    return rate if rate < 0.0 else None
 
 
 def _sum(rows: Floats, times: Floats) -> Floats:

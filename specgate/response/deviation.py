@@ -45,7 +45,7 @@ class Deviation:
 
     def response(self, deviation: arb) -> arb:
         """Return y where g is `deviation`, with an error that is relative to g, however small g is beside y."""
-        bits = max(LOWEST, deviation.rel_accuracy_bits()) + GUARD
+        bits = min(max(LOWEST, deviation.rel_accuracy_bits()), HIGHEST) + GUARD
         gap = 0 if deviation.contains(0) else _exponent(arb(self.offset)) - _exponent(deviation)
         with working_precision(bits + max(0, gap)):
             return (arb(self.offset) + deviation) * power_of_two(self.value_exponent)

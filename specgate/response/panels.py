@@ -181,9 +181,10 @@ def _remainder(mode: Mode, half: float, degree: int, order: int) -> float:
     """Return a bound of what the derivative of this order of a mode lacks beyond its polynomial."""
     speed, decay = at_most(abs(mode.pole)), at_most(abs(mode.pole.real))
     q = degree + 1
-    scale = exp(min(decay * half, 700.0)) * half ** (q - order) / factorial(q - order)
+    scale = exp(min(decay * half, 700.0)) / factorial(q - order)
     terms = (
-        at_most(abs(c)) * speed ** max(q - i, 0) * (speed * half + q) ** i for i, c in enumerate(mode.coefficients)
+        at_most(abs(c)) * (speed * half) ** (q - i) * half ** (i - order) * (speed * half + q) ** i
+        for i, c in enumerate(mode.coefficients)
     )
     return SLACK * scale * sum(terms)
 

@@ -8,8 +8,12 @@ from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Answer
 from specgate.response.course import Course
-from specgate.response.extremes import Extreme, greater, highest, mirrored
+from specgate.response.curve import points as curve_points
+from specgate.response.curve import settled_window, unsettled_window
+from specgate.response.extremes import Extreme, greater, mirrored
 from specgate.response.settling import first_arrival, settling
+from specgate.response.supremum import highest
+from specgate.response.unsettled import unsettled_extreme
 from specgate.systems.roots import Root, certified_roots
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
@@ -94,8 +98,7 @@ class StepResponse:
         if not self._moves:
             return Extreme(Answer.of_exact(self._jump), Answer.of_exact(0))
         if not self.settles:
-            open_question = Answer.undecided("the extremes of a response that does not settle are not searched")
-            return Extreme(open_question, open_question)
+            return unsettled_extreme(self._course, sign)
         return highest(self._course, sign)
 
     @cached_property
@@ -134,3 +137,35 @@ class StepResponse:
         if not self._moves or (isinstance(time, fmpq) and time == 0):
             return Answer.of_exact(self._jump).enclose(bits)
         return self._course.deviation.value_at(time, bits)
+
+    def curve(self, points: int = 400) -> tuple[tuple[fmpq, arb], ...]:
+        """Return at most `points` pairs (time in s, ball of y) for drawing, in order of time, from t = 0 (y(0+)) on.
+
+        The window ends when the response has settled, or after a few periods or growth times if it does not. Extremes
+        and every crossing that was asked for so far are among the points; values carry far more than six digits.
+        """
+        if not self._moves:
+            return tuple((fmpq(time), Answer.of_exact(self._jump).enclose(POLE_BITS)) for time in (0, 1))
+        deviation = self._course.deviation
+        if self.settles:
+            window = settled_window(deviation, self._drawn_settling())
+        else:
+            window = unsettled_window(deviation.at(POLE_BITS).modes, deviation.time_exponent)
+        return curve_points(deviation, window, self._known_times(), self._jump, points)
+
+    def _drawn_settling(self) -> float | None:
+        """Return the time after which 2 % of the change, or of the peak where there is none, is left; None: unknown."""
+        final = self.numerator[0] / self.denominator[0] * self.size
+        band = abs(final) / 50
+        if band == 0:
+            peak = self.peak_deviation().value
+            band = fmpq(0) if peak.absent else peak.enclose(64).mid().fmpq() / 50
+        settled = self.settling(band) if band > 0 else None
+        return None if settled is None or settled.absent else float(settled.enclose(64))
+
+    def _known_times(self) -> list[fmpq]:
+        """Return the times of the extremes and of all crossings that were asked for."""
+        extremes = [self._highest.time, self._lowest.time]
+        answers = [*extremes, *self._settling.values(), *self._arrivals.values()]
+        balls = [answer.enclose(64) for answer in answers if answer.absent is None]
+        return [ball.mid().fmpq() for ball in balls]

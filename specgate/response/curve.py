@@ -1,0 +1,131 @@
+"""Points of a response for drawing: where it settles within the window, fast beginnings and known instants included."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from itertools import accumulate, repeat
+from math import pi
+from operator import mul
+
+from flint import acb, acb_mat, arb, fmpq
+
+from specgate.response.certify import float_of
+from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.modes import Expansion, Mode, dyadic, power_of_two
+from specgate.response.tail import tail
+from specgate.terms.precision import working_precision
+
+Point = tuple[fmpq, arb]
+
+_EARLY = 48
+"""Points at most in the first step of the even ones, ever closer to the jump."""
+
+_DENSE = 8
+"""Even points that a period needs to be drawn as it is; where there are fewer, its two edges are drawn."""
+
+_BAND = 0.01
+"""Part of its change within which an unsearched response counts as settled for drawing."""
+
+
+def points(deviation: Deviation, window: fmpq, known: Iterable[fmpq], jump: fmpq, most: int) -> tuple[Point, ...]:
+    """Return at most `most` points (time in s, value), in order of time, the first just after the step.
+
+    window: the last time (s). known: instants that must be among them. The others are even in time, with ever closer
+    ones before the first of them.
+    """
+    fixed = sorted({time for time in known if 0 < time < window})[: most // 2]
+    early = _early(deviation, window, most)
+    even = most - 1 - len(fixed) - len(early)
+    scale = dyadic(deviation.time_exponent)
+    expansion = deviation.at(LOWEST)
+    step = window * scale / even
+    edges = _edges(expansion, step, even)
+    values = dict(zip(edges, _at(expansion, edges), strict=True)) if edges else dict(_even(expansion, step, even))
+    single = [time * scale for time in [*fixed, *early]]
+    values.update(zip(single, _at(expansion, single), strict=True))
+    with working_precision(LOWEST):
+        unit, offset = power_of_two(deviation.value_exponent), arb(deviation.offset)
+        return ((fmpq(0), arb(jump)), *((time / scale, (offset + values[time]) * unit) for time in sorted(values)))
+
+
+def settled_window(deviation: Deviation, settled: float | None) -> fmpq:
+    """Return a window (s) that ends a quarter after the settling time, or where the envelope is small."""
+    end = 1.25 * settled if settled else None
+    if end is None:
+        level = _BAND * max(abs(float_of(deviation.initial)), abs(float_of(deviation.offset)), 1e-12)
+        since = tail(deviation.table, level)
+        end = (since or 1.0) * 2.0**-deviation.time_exponent
+    return _round_up(end)
+
+
+def unsettled_window(modes: Sequence[Mode], time_exponent: int) -> fmpq:
+    """Return a window (s): six growth times, or eight periods of a lasting oscillation, or five decay times."""
+    decay = [float(mode.pole.real) for mode in modes]
+    growing = [rate for rate in decay if rate > 0.0]
+    swings = [float(mode.pole.imag) for mode in modes if mode.oscillates and mode.pole.real.is_zero()]
+    fading = [-rate for rate in decay if rate < 0.0]
+    if growing:
+        end = 6.0 / max(growing)
+    else:
+        end = max([16.0 * pi / swing for swing in swings] + [5.0 / rate for rate in fading], default=10.0)
+    return _round_up(end * 2.0**-time_exponent)
+
+
+def _round_up(value: float) -> fmpq:
+    """Return the next number of two significant digits."""
+    digits, exponent = f"{value:.16e}".split("e")
+    tenths = int(float(digits) * 10.0) + 1
+    power = int(exponent) - 1
+    return fmpq(tenths * 10**power) if power >= 0 else fmpq(tenths, 10**-power)
+
+
+def _early(deviation: Deviation, window: fmpq, most: int) -> list[fmpq]:
+    """Return halvings of the even step down to a sixteenth of the shortest time constant."""
+    shortest = dyadic(-deviation.time_exponent - 4)
+    times: list[fmpq] = []
+    time = window / most
+    while time > shortest and len(times) < _EARLY:
+        time = time / 2
+        times.append(time)
+    return times
+
+
+def _edges(expansion: Expansion, step: fmpq, count: int) -> list[fmpq]:
+    """Return summits and troughs of the strongest oscillation in turn, if its periods are too dense for even times."""
+    swings = [mode for mode in expansion.modes if mode.oscillates]
+    strongest = max(swings, key=lambda mode: float(abs(mode.coefficients[0]).mid()), default=None)
+    if strongest is None or float_of(step) * float(strongest.pole.imag) * _DENSE < 2.0 * pi:
+        return []
+    with working_precision(expansion.bits):
+        half_turn = arb.pi() / strongest.pole.imag
+        first = -strongest.coefficients[0].arg() / strongest.pole.imag
+        times = {_edge(step * k, k, first, half_turn) for k in range(1, count + 1)}
+    return sorted(time for time in times if time > 0)
+
+
+def _edge(time: fmpq, k: int, first: arb, half_turn: arb) -> fmpq:
+    """Return the summit (even k) or trough (odd k) of an oscillation just before a time."""
+    turns = ((arb(time) - first) / half_turn).mid().fmpq().floor()
+    turns -= (turns + k) % 2
+    return (first + turns * half_turn).mid().fmpq()
+
+
+def _at(expansion: Expansion, times: Sequence[fmpq]) -> list[arb]:
+    """Return g at some times."""
+    with working_precision(expansion.bits):
+        return [expansion.deviation(arb(time))[0] for time in times]
+
+
+def _even(expansion: Expansion, step: fmpq, count: int) -> list[tuple[fmpq, arb]]:
+    """Return (time, g) at count multiples of a step; e^(pt) goes from one to the next by a factor."""
+    times = [step * k for k in range(1, count + 1)]
+    with working_precision(expansion.bits):
+        coefficients = [c for mode in expansion.modes for c in mode.coefficients]
+        rows: list[list[acb]] = []
+        for mode in expansion.modes:
+            row = list(accumulate(repeat((mode.pole * arb(step)).exp(), count), mul))
+            for j in range(len(mode.coefficients)):
+                rows.append([value * arb(time) ** j for value, time in zip(row, times, strict=True)] if j else row)
+        basis = acb_mat(len(rows), count, [value for row in rows for value in row])
+        values = (acb_mat(1, len(coefficients), coefficients) * basis).entries()
+        return [(time, value.real) for time, value in zip(times, values, strict=True)]

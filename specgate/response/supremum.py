@@ -1,0 +1,116 @@
+"""The supremum of a response over all time after the step, and the first time at which it is taken."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from itertools import compress
+from math import inf
+
+import numpy as np
+from flint import arb, fmpq
+
+from specgate.response.answers import Answer
+from specgate.response.budget import Budget, OutOfWork
+from specgate.response.certify import Zero, float_of
+from specgate.response.course import Course
+from specgate.response.extremes import EQUAL_BITS, Extreme, joined
+from specgate.response.grid import Grid
+from specgate.response.modes import GUARD
+from specgate.response.peak import Climb
+from specgate.response.tail import tail
+from specgate.terms.precision import working_precision
+
+APPROACHED = "the value is approached and never taken"
+
+Last = Callable[[float], float | None]
+"""`last(best)`: a time from which on sign * g does not exceed `best`, None if none is known."""
+
+
+@dataclass(frozen=True)
+class Floor:
+    """What is reached or approached whatever the summits are.
+
+    level: ball of sign * g there, by bits. low: a float not above it. extreme: the answer if no summit is higher.
+    """
+
+    level: Callable[[int], arb]
+    low: float
+    extreme: Extreme
+
+
+def highest(course: Course, sign: int) -> Extreme:
+    """Return the supremum over t > 0 of sign * y of a settling response, as a value of y, and its first time.
+
+    Candidates are y(0+), which counts as taken at time 0, the final value, which is approached, and every summit of
+    sign * (y - final) above both up to the time from which on it is proved to stay below the best one: there the
+    envelope is below it, or, as long as nothing above the final value was found, the deviation has the other sign for
+    good.
+    """
+    jump = sign * course.deviation.initial
+
+    def last(best: float) -> float | None:
+        if best > 0.0:
+            return tail(course.deviation.table, best)
+        lasting = course.lasting
+        return lasting.since if lasting is not None and lasting.sign != sign else None
+
+    return above(course, sign, exact_floor(course, sign, max(jump, fmpq(0)), taken=jump > 0), last)
+
+
+def above(course: Course, sign: int, floor: Floor, last: Last) -> Extreme:
+    """Return the highest summit of sign * g that is above the floor, or else the floor."""
+    try:
+        summits, clear = course.search(lambda grid, budget: _summits(course, sign, floor, last, grid, budget))
+    except OutOfWork as limit:
+        return Extreme.undecided(limit.reason)
+    if not summits:
+        return floor.extreme
+    equal = [_at(course, summit) for summit in summits]
+    return joined(equal if clear else [*equal, floor.extreme])
+
+
+def exact_floor(course: Course, sign: int, level: fmpq, *, taken: bool) -> Floor:
+    """Return the floor at a rational value of sign * g: the jump (taken, at time 0) or one that is approached."""
+    shared = course.deviation
+    value = (shared.offset + sign * level) / shared.to_units(fmpq(1))
+    time = Answer.of_exact(0) if taken else Answer.nothing(APPROACHED)
+    return Floor(
+        lambda bits: Answer.of_exact(level).enclose(bits),
+        float(np.nextafter(float_of(level), -inf)),
+        Extreme(Answer.of_exact(value), time),
+    )
+
+
+def _summits(
+    course: Course, sign: int, floor: Floor, last: Last, grid: Grid, budget: Budget
+) -> tuple[list[Zero], bool]:
+    climb = Climb(course.deviation, sign, floor.low, budget)
+    climb.over(grid.upward(budget), last)
+    return _tallest([summit.zero for summit in climb.summits], sign, floor)
+
+
+def _tallest(summits: Sequence[Zero], sign: int, floor: Floor) -> tuple[list[Zero], bool]:
+    """Return the summits that are not proved lower than another one or the floor, and whether they are above it."""
+    left, clear, bits = list(summits), True, 64
+    while left and bits <= EQUAL_BITS:
+        with working_precision(bits + 64):
+            level = floor.level(bits + 64)
+            heights = [sign * summit.value(bits) for summit in left]
+            best = max(height.lower().mid().fmpq() for height in heights)
+            kept = [not (height < arb(best) or height < level) for height in heights]
+            clear = all(height > level for height in compress(heights, kept))
+        left = list(compress(left, kept))
+        if len(left) == 1 and clear:
+            break
+        bits *= 2
+    return left, clear
+
+
+def _at(course: Course, summit: Zero) -> Extreme:
+    deviation = course.deviation
+
+    def time(bits: int) -> arb:
+        return deviation.to_time(summit.enclose(bits), bits + GUARD)
+
+    return Extreme(Answer.of_ball(lambda bits: deviation.response(summit.value(bits))), Answer.of_ball(time))
