@@ -3,9 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from itertools import accumulate, repeat
 from math import pi
-from operator import mul
 
 from flint import acb, acb_mat, arb, fmpq
 
@@ -22,6 +20,8 @@ _EARLY = 48
 
 _DENSE = 8
 """Even points that a period needs to be drawn as it is; where there are fewer, its two edges are drawn."""
+
+_FINE = 20
 
 _BAND = 0.01
 """Part of its change within which an unsearched response counts as settled for drawing."""
@@ -117,13 +117,18 @@ def _at(expansion: Expansion, times: Sequence[fmpq]) -> list[arb]:
 
 
 def _even(expansion: Expansion, step: fmpq, count: int) -> list[tuple[fmpq, arb]]:
-    """Return (time, g) at count multiples of a step; e^(pt) goes from one to the next by a factor."""
+    """Return (time, g) at count multiples of a step; e^(pt) is the product of a coarse and a fine exponential.
+
+    One factor from step to step would not do: the boxes around complex numbers grow with every turn.
+    """
     times = [step * k for k in range(1, count + 1)]
     with working_precision(expansion.bits):
         coefficients = [c for mode in expansion.modes for c in mode.coefficients]
         rows: list[list[acb]] = []
         for mode in expansion.modes:
-            row = list(accumulate(repeat((mode.pole * arb(step)).exp(), count), mul))
+            fine = [(mode.pole * arb(step * k)).exp() for k in range(1, _FINE + 1)]
+            coarse = [(mode.pole * arb(step * k)).exp() for k in range(0, count, _FINE)]
+            row = [large * small for large in coarse for small in fine][:count]
             for j in range(len(mode.coefficients)):
                 rows.append([value * arb(time) ** j for value, time in zip(row, times, strict=True)] if j else row)
         basis = acb_mat(len(rows), count, [value for row in rows for value in row])
