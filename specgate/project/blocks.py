@@ -20,7 +20,6 @@ from specgate.project.types import (
     MatrixModel,
     PidModel,
     PoleZeroModel,
-    Polynomial,
     PolynomialModel,
     Project,
     SampledModel,
@@ -89,13 +88,12 @@ def transfer(project: Project, subsystem: str, values: Values) -> Mapping[tuple[
     }
 
 
-def memoryless(block: Block | None) -> bool:
-    """Whether a block is a plain gain, so that two of it hold no more than one."""
-    return (
-        block is not None
-        and block.denominator.degree() == 0
-        and all(numerator.degree() <= 0 for numerator in block.numerators.values())
-    )
+def memoryless(built: BuiltBlock) -> bool:
+    """Whether a block is a plain gain without dead time, so that two of it hold no more than one."""
+    block = built.block
+    if block is None or built.unsupported is not None or block.denominator.degree() > 0:
+        return False
+    return all(numerator.degree() <= 0 for numerator in block.numerators.values())
 
 
 def _dead_time(subsystem: Subsystem, values: Values) -> str | None:
@@ -112,6 +110,3 @@ def _dead_time(subsystem: Subsystem, values: Values) -> str | None:
     if delay == 0:
         return None
     return f"`{subsystem.name}` has a dead time of {value.as_written}, which this version does not answer"
-
-
-__all__ = ["BuiltBlock", "Polynomial", "build", "memoryless", "transfer"]

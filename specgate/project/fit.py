@@ -13,7 +13,7 @@ from flint import fmpq
 
 from specgate.project import faults
 from specgate.project.faults import Fault
-from specgate.project.reader import ModelReader
+from specgate.project.reader import ModelReader, is_zero
 from specgate.project.types import Polynomial
 from specgate.terms.dimensions import DIMENSIONLESS, TIME, Dimension
 from specgate.terms.expressions import PLAIN, Inferred, as_dimension
@@ -24,10 +24,14 @@ Pair = tuple[str, str]
 
 @dataclass(frozen=True)
 class _Case:
-    """One numerator over the denominator: dimensions, the ratio that is wanted, and the size of the declared units."""
+    """One numerator over the denominator: dimensions, the ratio that is wanted, and the size of the declared units.
+
+    terms: how many coefficients the numerator has. degree: that of the denominator as written.
+    """
 
     pair: Pair
     numerator: Inferred
+    terms: int
     denominator: Inferred
     degree: int
     ratio: Dimension
@@ -43,10 +47,14 @@ def scales(reader: ModelReader, numerators: Mapping[Pair, Polynomial], denominat
     result: dict[Pair, fmpq] = {}
     carried: Dimension | None = None
     for (output, source), coefficients in numerators.items():
+        if all(is_zero(value) for value in coefficients):
+            result[output, source] = fmpq(1)
+            continue
         above = reader.polynomial_dimension(coefficients)
         case = _Case(
             (output, source),
             above,
+            len(coefficients),
             below,
             len(denominator) - 1,
             reader.ratio(output, source),
@@ -73,6 +81,7 @@ def _scale(reader: ModelReader, case: _Case) -> fmpq:
         reader.by_fit = reader.by_fit or _power_of_time(case.ratio) is None
         return plain_gain(reader, case.pair, case.ratio, case.conversion)
     if _power_of_time(needed) is not None:
+        reader.by_fit = reader.by_fit or case.terms > 1 or needed != DIMENSIONLESS
         return fmpq(1)
     _coherent(reader, case, "numerator", needed)
     return fmpq(1)

@@ -61,6 +61,7 @@ def matrix(reader: ModelReader, model: MatrixModel) -> Rational:
 
 
 def _over(reader: ModelReader, numerators: Mapping[Pair, Polynomial], denominator: Polynomial) -> Rational:
+    reader.check_order(len(denominator) - 1, *(len(written) - 1 for written in numerators.values()))
     factors = scales(reader, numerators, denominator)
     below = reader.polynomial(denominator)
     if not below:
@@ -72,6 +73,10 @@ def _over(reader: ModelReader, numerators: Mapping[Pair, Polynomial], denominato
 def factored(reader: ModelReader, model: FactoredModel) -> Rational:
     """Read a gain with integrators, lags, leads and pairs. Raises Fault."""
     pair = only_pair(reader)
+    reader.check_order(
+        model.differentiators + len(model.leads) + 2 * len(model.zero_pairs),
+        model.integrators + len(model.lags) + 2 * len(model.pairs),
+    )
     order = model.differentiators - model.integrators
     above = _lags(reader, model.leads) * _pairs(reader, model.zero_pairs) * S**model.differentiators
     below = _lags(reader, model.lags) * _pairs(reader, model.pairs) * S**model.integrators
@@ -81,6 +86,7 @@ def factored(reader: ModelReader, model: FactoredModel) -> Rational:
 def poles_and_zeros(reader: ModelReader, model: PoleZeroModel) -> Rational:
     """Read roots in 1/s with a leading coefficient. Raises Fault."""
     pair = only_pair(reader)
+    reader.check_order(len(model.zeros), len(model.poles))
     above, below = _roots(reader, model.zeros), _roots(reader, model.poles)
     order = above.degree() - below.degree()
     return Rational({pair: above * _gain(reader, pair, model.leading_coefficient, TIME**order)}, below)

@@ -13,6 +13,8 @@ from specgate.terms.expressions import PLAIN, Inferred, Number, as_dimension
 
 S = fmpq_poly([0, 1])
 """The variable s."""
+HIGHEST_ORDER = 100
+"""Highest power of s, and most states, of one subsystem: more is no model that a person has written."""
 
 
 class ModelReader:
@@ -45,6 +47,12 @@ class ModelReader:
         above, below = self._output(output).unit, self._input(source).unit
         self.rounded = self.rounded or above.pi_power != below.pi_power
         return above.factor_with(self.values.pi) / below.factor_with(self.values.pi)
+
+    def check_order(self, *orders: int) -> None:
+        """Refuse a model that is too large to be meant. Raises Fault."""
+        if max(orders) > HIGHEST_ORDER:
+            message = f"a model of order {max(orders)} is more than the {HIGHEST_ORDER} that are worked with"
+            raise Fault(faults.VALUE, message, self.subsystem.model_place)
 
     def polynomial(self, coefficients: Polynomial) -> fmpq_poly:
         """Return a polynomial in s from its coefficients, highest power first. Raises Fault."""

@@ -8,7 +8,8 @@ from flint import fmpq
 
 from specgate.project import faults
 from specgate.project.faults import Fault
-from specgate.project.parameters import Values, evaluate, infer, values
+from specgate.project.parameters import Values, infer, values
+from specgate.project.temperatures import absolute
 from specgate.project.types import (
     Call,
     Loop,
@@ -72,8 +73,13 @@ class LoopSignals:
             # to and fro, so that what is told in one place of a circle goes round it in two passes
             left = [name for name in reversed(waiting) if not self._told(name)]
             if len(left) == len(waiting):
+                self.faults.update({name: self._circle(name, repeats=name != circle[0]) for name in left})
                 return
             waiting = left
+
+    def _circle(self, name: str, *, repeats: bool) -> Fault:
+        message = f"the unit of `{name}` cannot be told: it is made of nothing but itself"
+        return Fault(faults.DIMENSION, message, self.loop.signals[name].place, repeats=repeats)
 
     def _told(self, name: str) -> bool:
         expression = self.loop.signals[name].expression
@@ -97,17 +103,15 @@ class LoopSignals:
             return self.units[name]
         if name in self.faults:
             raise self.faults[name]
-        if name not in self.loop.signals:
-            raise Fault(faults.NAME, f"the loop has no input or signal `{name}`", self.loop.place)
-        message = f"the unit of `{name}` cannot be told: it is made of nothing but itself"
-        raise Fault(faults.DIMENSION, message, self.loop.signals[name].place)
+        raise Fault(faults.NAME, f"the loop has no input or signal `{name}`", self.loop.place)
 
     def span(self, name: str) -> fmpq | None:
         """Return high minus low of the span of the port that gives a signal; None without a span. Raises Fault."""
         giver = self.givers.get(name)
         if not isinstance(giver, Port) or giver.span is None:
             return None
-        low, high = (evaluate(value, self.values, owner(self.project, giver)) for value in giver.span)
+        scope = owner(self.project, giver)
+        low, high = (absolute(value, giver.unit, self.values, scope) for value in giver.span)
         return high - low
 
     def _giver(self, node: SignalExpression) -> Giver | None:

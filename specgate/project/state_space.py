@@ -24,6 +24,7 @@ def state_space(reader: ModelReader, model: StateSpaceModel) -> Rational:
     matrix determinant lemma det(sI - A + b c) = det(sI - A) + c adj(sI - A) b, so a numerator is the difference
     of two characteristic polynomials. Raises Fault.
     """
+    reader.check_order(len(model.states))
     _shapes(reader, model)
     by_fit = all(reader.infer(value) is PLAIN for _, _, _, value in _entries(model))
     if not by_fit:

@@ -84,7 +84,7 @@ class Drawn:
             found[uses[0].call.subsystem].append(number)
         for name, numbers in found.items():
             subsystem = self.project.subsystems[name]
-            if len(numbers) > 1 and not subsystem.separate_instances and not memoryless(self.blocks[name].block):
+            if len(numbers) > 1 and not subsystem.separate_instances and not memoryless(self.blocks[name]):
                 first, second = (self.classes[number][0].call.place for number in numbers[:2])
                 raise Fault(
                     faults.VALUE,

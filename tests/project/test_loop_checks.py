@@ -75,6 +75,13 @@ def test_the_span_is_that_of_the_port_that_gives_the_signal(project: ProjectOf) 
     assert span(made, "level", "ask", known) is None
 
 
+def test_a_span_of_temperatures_counts_degrees(project: ProjectOf) -> None:
+    oven = "oven: {input: {unit: W}, output: {unit: degC, span: [0 degC, 283.15 K]}, model: {gain: 2 K/W}}"
+    loop = "loops: {heat: {inputs: {power: {unit: W}}, signals: {warmth: oven(power)}}}"
+    made = project(f"subsystems: {{{oven}}}\n{loop}")
+    assert span(made, "heat", "warmth", values(made)) == 10
+
+
 def test_signals_in_a_circle_of_sums_find_their_unit(project: ProjectOf) -> None:
     made = project(text("one: two - 2*three; two: three; three: one + height"))
     assert {signal_unit(made, "level", name).symbol for name in ("one", "two", "three")} == {"mm"}
@@ -165,6 +172,20 @@ def test_inputs_are_in_units_that_fit(findings: Findings, response: str, message
     found = findings(text(responses=response))
     assert [message in finding.message for finding in found] == [True], [finding.message for finding in found]
     assert found[0].response == "a"
+
+
+def test_a_step_of_a_signal_in_per_cent_says_per_cent_of_what(findings: Findings) -> None:
+    valve = """
+subsystems: {{valve: {{input: {{unit: "%"}}, output: {{unit: "%"}}, model: {{gain: 1, lags: [2 s]}}}}}}
+loops:
+  flow:
+    inputs: {{ask: {{unit: "%"}}}}
+    signals: {{opening: valve(ask)}}
+    rest: {{opening: 40 %, ask: 40 %}}
+    responses: {{open: {{from: ask, to: opening, input: step, size: {size}}}}}
+"""
+    assert not findings(valve.format(size="5 points"))
+    assert ["`5 %` of what?" in finding.message for finding in findings(valve.format(size="5 %"))] == [True]
 
 
 def test_good_inputs_pass(findings: Findings) -> None:

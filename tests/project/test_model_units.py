@@ -43,6 +43,7 @@ def gain(project: Project, pi: fmpq = PI) -> fmpq:
         ("{poles: [-2], zeros: [], leading_coefficient: 3}", "V", "mm/s", fmpq(3, 2000)),
         ("{pid: {form: parallel, proportional: 2, integral: 5}}", "mm", "V", fmpq(5000)),
         ("{state_space: {states: [x], A: [[-2]], B: [[4]], C: [[1]]}}", "V", "mm", fmpq(2, 1000)),
+        ("{numerator: [0, 3 mm/m], denominator: [2 s, 1]}", "m", "mm", fmpq(3, 1000)),
         # equal units leave a plain gain as it is
         ("{gain: 3}", "mm", "mm", fmpq(3)),
         ("{gain: 3, integrators: 1}", "mm/s", "mm", fmpq(3)),
@@ -93,6 +94,9 @@ def test_conversions_with_pi_are_known_to_be_rounded(
         ("{gain: 2 m/V, lags: [3]}", "V", "m", True),
         ("{numerator: [2 m/V], denominator: [3, 1]}", "V", "m", True),
         ("{numerator: [2], denominator: [3 s, 1]}", "V", "m", True),
+        ("{equation: {output: [4 kg, 5 N*s/m, 20 kN/m], input: [1]}}", "N", "mm", False),
+        ("{equation: {output: [4 kg, 5 N*s/m, 20 kN/m], input: [2, 1]}}", "N", "mm", True),
+        ("{equation: {output: [4 kg, 5 N*s/m, 20 kN/m], input: [1, 0]}}", "N", "mm", True),
         ("{state_space: {states: [x], A: [[-2]], B: [[4]], C: [[1]]}}", "V", "V", True),
     ],
 )

@@ -149,6 +149,13 @@ def test_a_plain_gain_may_be_used_anywhere(project: ProjectOf) -> None:
     assert instances(made) == ["winder", "dancer", "trim", "trim (2)", "readout"]
 
 
+def test_a_gain_with_a_dead_time_has_a_memory(findings: Findings) -> None:
+    delayed = text(SIGNALS + "      other: trim(ask)\n").replace(
+        "{gain: 0.03 V/mm}", "{gain: 0.03 V/mm, dead_time: 1 ms}"
+    )
+    assert ["`trim` is applied to different" in finding.message for finding in findings(delayed)] == [True]
+
+
 def test_constants_in_sums_are_coherent_si(project: ProjectOf) -> None:
     made = loop(project(text(SIGNALS + "      mixed: 2*ask - 50 % * place - (3 mm/s)*speed/(1 m/s)*(1 s)\n")))
     assert made.wiring.signals["mixed"].terms == (
