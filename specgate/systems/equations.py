@@ -95,12 +95,14 @@ class Equations:
 
     def _without(self, nodes: Sequence[SignalRef]) -> fmpq_mat:
         """Return I - S over some signals, S[i, j] being the factor of signal j in the sum of signal i."""
-        return fmpq_mat(
-            [
-                [fmpq(int(row == column)) - self.forms[row.name].get(column, fmpq(0)) for column in nodes]
-                for row in nodes
-            ]
-        )
+        column = {node: index for index, node in enumerate(nodes)}
+        matrix = fmpq_mat(len(nodes), len(nodes))
+        for node, row in column.items():
+            matrix[row, row] = fmpq(1)
+            for reference, factor in self.forms[node.name].items():
+                if isinstance(reference, SignalRef) and reference in column:
+                    matrix[row, column[reference]] -= factor
+        return matrix
 
     @cached_property
     def unknowns(self) -> tuple[Reference, ...]:
@@ -124,7 +126,7 @@ class Equations:
                     right[index, self.variables[reference]] += factor
         solved = self._without(signals).solve(right).tolist() if signals else []
         for signal, entries in zip(signals, solved, strict=True):
-            result[signal] = {known: entries[i] for known, i in self.variables.items() if entries[i] != 0}
+            result[signal] = {known: entry for known, entry in zip(self.variables, entries, strict=True) if entry}
         return result
 
     @cached_property
