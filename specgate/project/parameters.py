@@ -14,7 +14,6 @@ from specgate.project.types import Parameter, Project, Tolerance, Value
 from specgate.systems.graph import strong_components
 from specgate.terms import expressions
 from specgate.terms.expressions import (
-    PLAIN,
     Expression,
     ExpressionError,
     Inferred,
@@ -242,8 +241,3 @@ def _read(value: Value, values: Values, scope: str | None) -> dict[str, str]:
             raise Fault(faults.VALUE, f"`{node.name}` has no value", value.place, repeats=True)
         read[node.name] = qualified
     return read
-
-
-def is_plain(value: Value, values: Values, scope: str | None = None) -> bool:
-    """Whether no unit comes into a value. Raises Fault."""
-    return infer(value, values, scope) is PLAIN

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import time
 from collections.abc import Callable
 
 import pytest
@@ -169,6 +170,22 @@ def test_what_does_not_fit_is_refused(findings: Findings, model: str, source: st
     assert found[0].rule in ("dimension-mismatch", "schema-violation")
     assert found[0].subsystem == "block"
     assert found[0].place.line >= 3
+
+
+@pytest.mark.parametrize(
+    "model",
+    [
+        "{gain: 1, lags: [" + ", ".join(["2"] * 3000) + "]}",
+        "{numerator: [1], denominator: [" + ", ".join(["2"] * 3000) + "]}",
+        "{poles: [" + ", ".join(["-2"] * 101) + "], zeros: [], leading_coefficient: 1}",
+        "{gain: 1, integrators: 20, lags: [" + ", ".join(["2"] * 81) + "]}",
+    ],
+)
+def test_a_model_that_nobody_has_written_is_refused_before_it_is_multiplied_out(findings: Findings, model: str) -> None:
+    before = time.process_time()
+    found = findings(f"subsystems: {{block: {{input: {{unit: 1}}, output: {{unit: 1}}, model: {model}}}}}")
+    assert ["more than the 100" in finding.message for finding in found] == [True]
+    assert time.process_time() - before < 2
 
 
 STATES = """
