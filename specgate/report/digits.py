@@ -44,7 +44,8 @@ def last_place(
         return 0
     place = value.adjusted() - (SIGNIFICANT - 1)
     left = [gap.adjusted() for gap in (abs(value - decimal(limit)) for limit in limits) if gap]
-    place = min([place, *(gap - 1 for gap in left)])
+    met = [int(value.normalize().as_tuple().exponent) for limit in limits if value == decimal(limit)]
+    place = min([place, *(gap - 1 for gap in left), *met])
     lower, upper = bounds
     if lower is not None and upper is not None and upper != lower:
         proved = (decimal(upper) - decimal(lower)).adjusted() + 1

@@ -79,11 +79,6 @@ def _review(review: Review, width: int, paint: _Paint) -> Iterator[str]:
         )
     yield ""
     yield from _table(review, width, paint)
-    if page.holds:
-        yield ""
-        yield paint("What holds the gate", "bold")
-        for reason in review.gate.reasons:
-            yield from wrapped(reason, width, "  - ", "    ")
     if review.findings:
         yield ""
         yield paint(f"Findings ({_levels(review.findings)})", "bold")

@@ -706,12 +706,16 @@ FINDINGS = (
 )
 
 REASONS = (
-    "2 requirements are non-compliant: BD-SYS-11, BD-SYS-13",
-    "BD-SYS-11: settling_time is 5.037 s, limit at most 1 s",
-    "BD-SYS-13: the response has no final value",
+    "BD-NEED-1 is not met: BD-SYS-11 and BD-SYS-13 are non-compliant",
+    "BD-NEED-2 is open: BD-SYS-14 is open",
+    "BD-SYS-11 is not met: settles in 5.037 s where at most 1 s is allowed",
+    "BD-SYS-11 rests on an approximation outside its range",
+    "BD-SYS-13 is not met: the response has no final value: 2 poles at the origin",
+    "BD-SYS-13 rests on an approximation outside its range",
     "BD-SYS-14 is open: gain_margin is not answered by this version",
-    "BD-SUB-40 is derived from nothing (requirement-orphan)",
-    "hidden-unstable-mode in grain_temperature",
+    "The mode s = 0.125 1/s of `heat_loss` is unstable and does not show in `warm_up`. (specgate.yaml:72:5)",
+    "The loop bypass_damper has no solution: the feed-through around `angle` is exactly -1. (specgate.yaml:90:7)",
+    "BD-SUB-40 is derived from nothing. Name its parent in `derived_from`, or say it is a need. (specgate.yaml:170:3)",
 )
 
 

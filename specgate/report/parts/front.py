@@ -25,7 +25,7 @@ from specgate.report.words import (
 )
 from specgate.review.types import CriterionReview, InputReview, RequirementReview, Review
 
-HOLDS_AT_MOST = 12
+HOLDS_AT_MOST = 10
 
 
 @dataclass(frozen=True)
@@ -52,8 +52,9 @@ class Count:
 
 @dataclass(frozen=True)
 class Hold:
-    """One thing that holds the gate: the sentence, the number that matters, where to read on."""
+    """One thing that holds the gate: the requirement (None: none), the sentence, the number, where to read on."""
 
+    requirement: str | None
     sentence: str
     number: str
     anchor: str | None
@@ -81,7 +82,7 @@ def front(review: Review) -> Front:
     """Return page one of a review."""
     verdicts = Counter(r.verdict for r in review.requirements.values())
     standings = Counter(r.standing for r in review.requirements.values() if r.standing)
-    holds = [_hold(review, reason) for reason in review.gate.reasons]
+    holds = _holds(review)
     return Front(
         title=_title(review),
         outcome=OUTCOMES[review.gate.outcome],
@@ -90,7 +91,7 @@ def front(review: Review) -> Front:
         standings=tuple(Count(status, standings[key]) for key, status in STANDINGS.items()),
         waived=sum(r.waiver is not None for r in review.requirements.values()),
         requirements=len(review.requirements),
-        holds=tuple(holds[:HOLDS_AT_MOST]),
+        holds=holds[:HOLDS_AT_MOST],
         more_holds=max(0, len(holds) - HOLDS_AT_MOST),
         roles=review.project.sign_off,
         digest=digest(review.inputs),
@@ -117,63 +118,60 @@ def _title(review: Review) -> Title:
 
 def sentence(review: Review) -> str:
     """Return the gate's outcome in a sentence."""
-    requirements = review.requirements.values()
     if review.gate.outcome == "pass":
-        exempt = sum(r.verdict == "not_applicable" for r in requirements)
-        rest = f"; {exempt} not applicable" if exempt else ""
-        count = len(review.requirements) - exempt
-        return f"Nothing in the project's policy holds the gate: {counted(count, 'requirement')} judged{rest}."
+        exempt = sum(r.verdict == "not_applicable" for r in review.requirements.values())
+        rest = f", {exempt} not applicable" if exempt else ""
+        judged = counted(len(review.requirements) - exempt, "requirement")
+        return f"Nothing that the project's policy names holds the gate: {judged} judged{rest}."
+    holds = _holds(review)
+    named = sum(hold.requirement is not None for hold in holds)
+    others = len(holds) - named
+    parts = [counted(named, "requirement")] if named else []
+    parts += [counted(others, "other error" if named else "error")] if others else []
+    return f"It is held by {listed(parts)}." if parts else "It is held."
+
+
+def _holds(review: Review) -> tuple[Hold, ...]:
+    """Return what holds the gate, all that holds it for one requirement together, what only passes it on last."""
+    reasons: dict[str, list[str]] = {}
+    for reason in review.gate.reasons:
+        first = reason.partition(" ")[0].rstrip(":")
+        reasons.setdefault(first if first in review.requirements else reason, []).append(reason)
+    passed_on = {name for name, r in review.requirements.items() if r.decided_by == "derived" and r.derived}
+    ordered = sorted(reasons.items(), key=lambda item: item[0] in passed_on)
+    return tuple(_hold(review, key, said) for key, said in ordered)
+
+
+def _hold(review: Review, key: str, said: list[str]) -> Hold:
+    if key not in review.requirements:
+        loop = next((word for word in re.findall(r"[\w.-]+", key) if word in review.loops), None)
+        return Hold(None, key, "", anchors.sheet(loop) if loop else "findings")
+    words = "; ".join([said[0], *(reason.removeprefix(key).lstrip(": ") for reason in said[1:])])
+    return Hold(key, words, deciding_numbers(review, review.requirements[key]), anchors.row(key))
+
+
+def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
+    """Return the numbers that decide a requirement: result against limit, and the error of a formula that fails."""
     parts = []
-    for key, word in (("non_compliant", "not met"), ("open", "open")):
-        count = sum(r.verdict == key for r in requirements)
-        if count:
-            parts.append(f"{counted(count, 'requirement')} {word}")
-    outside = sum(r.standing == "out_of_range" for r in requirements)
-    if outside:
-        parts.append(f"{counted(outside, 'claim')} outside the range of {'its' if outside == 1 else 'their'} formula")
-    errors = sum(f.level == "error" for f in review.findings)
-    if errors:
-        parts.append(counted(errors, "finding of level error", "findings of level error"))
-    return f"{listed(parts)[:1].upper()}{listed(parts)[1:]}." if parts else "See the reasons below."
+    judged = min(requirement.criteria, key=lambda c: VERDICTS[c.verdict].weight, default=None)
+    if judged is not None and judged.verdict != "compliant":
+        found = shown.result(judged.result, judged.limit)
+        if found.value != "none":
+            name = titled(judged.measure, review.definitions)
+            parts.append(f"{name} {found.whole}, allowed {limit_in_words(judged.limit)}")
+    audited = min(requirement.criteria, key=lambda c: STANDINGS[c.basis.standing].weight, default=None)
+    if audited is not None and audited.basis.standing != "sound":
+        parts.append(_missed(audited))
+    return "; ".join(filter(None, parts))
 
 
-def _hold(review: Review, reason: str) -> Hold:
-    named = next((word for word in _names(reason) if word in review.requirements), None)
-    if named is None:
-        loop = next((word for word in _names(reason) if word in review.loops), None)
-        return Hold(reason, "", anchors.sheet(loop) if loop else "findings")
-    requirement = review.requirements[named]
-    return Hold(reason, deciding_number(review, requirement, reason), anchors.row(named))
-
-
-def _names(text: str) -> Iterable[str]:
-    return (word.strip(".") for word in re.findall(r"[\w.\-]+", text))
-
-
-def deciding(requirement: RequirementReview) -> CriterionReview | None:
-    """Return the criterion that decides a requirement: the worst verdict, then the worst standing, first as written."""
-    return min(
-        requirement.criteria,
-        key=lambda c: (VERDICTS[c.verdict].weight, STANDINGS[c.basis.standing].weight),
-        default=None,
-    )
-
-
-def deciding_number(review: Review, requirement: RequirementReview, reason: str = "") -> str:
-    """Return the one number that matters of a requirement, in a phrase; empty where there is none."""
-    criterion = deciding(requirement)
-    if criterion is None:
-        return ""
-    found = shown.result(criterion.result, criterion.limit)
-    if found.value == "none":
-        return ""
+def _missed(criterion: CriterionReview) -> str:
     basis = criterion.basis
-    error = basis.error.relative if basis.error else None
-    if error is not None and basis.formula and (criterion.verdict == "compliant" or "range" in reason):
-        side = SIDES.get(basis.error.side, "") if basis.error else ""
-        return f"formula {amount(basis.formula)}, proved {found.whole}: {percent(error)} {side}".strip()
-    name = titled(criterion.measure, review.definitions).lower()
-    return f"{name} {found.whole}, allowed {limit_in_words(criterion.limit)}"
+    if basis.error is None or basis.error.relative is None or basis.formula is None:
+        return ""
+    true = shown.result(criterion.result, criterion.limit).whole
+    side = SIDES.get(basis.error.side, "")
+    return f"formula {amount(basis.formula)}, true {true}: {percent(basis.error.relative)} {side}".strip()
 
 
 def digest(inputs: Iterable[InputReview]) -> str:
