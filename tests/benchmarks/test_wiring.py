@@ -60,7 +60,6 @@ def test_price_of_a_wiring(blocks: int, ceiling: float, nested: bool) -> None:
     assert solution.determinant.degree() == blocks
     channel = price(lambda: solve(wiring).channel("r", f"x{blocks - 1}")) - solved
     opened = price(lambda: solution.open_at("x0"))
-    print(
-        f"{blocks} signals, nested {nested}: det P {solved:.2f} ms, first channel +{channel:.2f} ms, break {opened:.2f} ms"
-    )
+    figures = f"det P {solved:.2f} ms, first channel +{channel:.2f} ms, break {opened:.2f} ms"
+    print(f"{blocks} signals, nested {nested}: {figures}")
     assert solved + channel < ceiling
