@@ -97,7 +97,7 @@ class FloatModes:
 
     def alive(self, time: float) -> FloatModes:
         """Return the table without the columns that stay below 1e-285 from `time` on (TINY covers them)."""
-        with np.errstate(divide="ignore"):
+        with np.errstate(divide="ignore", invalid="ignore"):
             size = np.log(self.size[:, 0]) + self.decay * time + self.power * np.log(2.0 * time * self.scale)
         keep = (size > -656.0) | (self.decay >= 0.0) | (self.power > -self.decay * time)
         if keep.all():
@@ -141,7 +141,7 @@ class FloatModes:
 
         A column rises up to j / |sigma| and falls beyond. No slack: the relative error is below `parts_error`.
         """
-        with np.errstate(divide="ignore"):
+        with np.errstate(divide="ignore", invalid="ignore"):
             summit = np.where(self.power > 0.0, self.power / -self.decay, 0.0)
         instants = np.maximum(times[:, None], summit)
         return self._columns(instants, instants) * self.size[:, 0]
