@@ -7,7 +7,7 @@ from math import frexp
 
 from flint import arb, fmpq
 
-from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.deviation import LOWEST, Modal
 from specgate.response.modes import GUARD
 from specgate.terms.precision import HIGHEST, working_precision
 
@@ -35,7 +35,7 @@ class Bracket:
 class Zero:
     """The zero in a bracket, enclosed ever more narrowly by interval Newton steps."""
 
-    def __init__(self, deviation: Deviation, bracket: Bracket) -> None:
+    def __init__(self, deviation: Modal, bracket: Bracket) -> None:
         self._deviation = deviation
         self._bracket = bracket
         self._ball: arb | None = None

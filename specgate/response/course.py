@@ -13,16 +13,21 @@ from specgate.response.asymptote import Lasting, lasting_sign
 from specgate.response.budget import Budget, OutOfWork
 from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.far import keeps_sign
 from specgate.response.grid import Grid
 from specgate.response.layout import FloatLayout
 from specgate.response.panels import PanelLayout
 from specgate.response.start import Start
+from specgate.response.tail import tail
 
 RESOLUTION = 2e-3
 """How closely cells follow the response at first, in parts of its change."""
 
 CANCELLING = 1e-5
 """Change, in units of the sum of the modes, below which the modes cancel too far for floats."""
+
+FAINT = 1e-200
+"""Deviation, in units of the sum of the modes, below which floats are not trusted with its sign."""
 
 WORK = 2_000_000
 """Cells that one search may look at."""
@@ -41,27 +46,27 @@ class Course:
         self.start: Start = start
 
     @cached_property
-    def _change(self) -> float:
+    def change(self) -> float:
         """How far the response moves, in units of the sum of its modes; 1 where it returns to where it was."""
         change = max(abs(float_of(self.deviation.offset)), abs(float_of(self.deviation.initial)))
         return change if change > 0.0 else 1.0
 
     @cached_property
     def _float_grid(self) -> Grid:
-        resolution = RESOLUTION * self._change
+        resolution = RESOLUTION * self.change
         return Grid(FloatLayout(self.deviation, self.start.length, resolution).block)
 
     @cached_property
     def _panel_grid(self) -> Grid:
-        resolution = RESOLUTION * self._change
-        return Grid(PanelLayout(self.deviation, self.start.length, resolution, self._change).block)
+        resolution = RESOLUTION * self.change
+        return Grid(PanelLayout(self.deviation, self.start.length, resolution, self.change).block)
 
     def search(self, on: Callable[[Grid, Budget], Found]) -> Found:
         """Search on the grid of floats, or on that of panels where modes cancel or the first one does not decide.
 
         Raises OutOfWork if neither does.
         """
-        if self._change > CANCELLING:
+        if self.change > CANCELLING:
             try:
                 return on(self._float_grid, Budget(WORK))
             except OutOfWork:
@@ -71,7 +76,29 @@ class Course:
     @cached_property
     def lasting(self) -> Lasting | None:
         """The sign that the deviation keeps in the end, if it keeps one and settles."""
-        return lasting_sign(self.deviation.at(LOWEST))
+        return lasting_sign(self.deviation.at(LOWEST), self.deviation.denominator)
+
+    def below_from(self, sign: int) -> float | None:
+        """Return a time from which on sign * g is proved to be negative, None if there is none or it is not told.
+
+        Where g gets too small for floats before its leading mode outweighs the others, the stretch between is walked
+        through with that mode divided out; up to there the search itself has to see the sign.
+        """
+        lasting = self.lasting
+        if lasting is None or lasting.sign == sign:
+            return None
+        if self._faint is None or lasting.since <= self._faint:
+            return lasting.since
+        return self._faint if self._faint_of_one_sign else None
+
+    @cached_property
+    def _faint(self) -> float | None:
+        return tail(self.deviation.table, FAINT)
+
+    @cached_property
+    def _faint_of_one_sign(self) -> bool:
+        lasting, faint = self.lasting, self._faint
+        return lasting is not None and faint is not None and keeps_sign(self.deviation, lasting, faint, Budget(WORK))
 
     @cached_property
     def start_bend(self) -> float:

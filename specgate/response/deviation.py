@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from functools import cached_property
 from math import frexp
+from typing import Protocol
 
 from flint import arb, fmpq, fmpq_poly
 
@@ -19,7 +20,22 @@ LOWEST = 128
 _LADDER = (LOWEST, 256, 512, 1024, 2048, HIGHEST, HIGHEST + 512)
 
 
-class Deviation:
+class Modal(Protocol):
+    """A sum of modes in normalised units that can be refined: what walks, panels and zeros work on."""
+
+    @property
+    def initial(self) -> fmpq:
+        """Its value just after the step."""
+
+    @property
+    def table(self) -> FloatModes:
+        """The modes in floats, times counted from the step."""
+
+    def at(self, bits: int) -> Expansion:
+        """Return the expansion at a precision of the ladder that is at least `bits`."""
+
+
+class Deviation(Modal):
     """g(t) = 2^-b (y(2^-a t) - offset), of the response y of a coprime, proper fraction with monic denominator.
 
     time_exponent is a, value_exponent b. `initial` is g(0+) and `offset` the offset, both exact and in units of 2^b;
@@ -37,7 +53,12 @@ class Deviation:
         order = denominator.degree()
         jump = numerator[order] / denominator[order] * size
         self.offset: fmpq = self.to_units(first.offset)
-        self.initial: fmpq = self.to_units(jump) - self.offset
+        self._initial: fmpq = self.to_units(jump) - self.offset
+
+    @property
+    def initial(self) -> fmpq:
+        """g(0+)."""
+        return self._initial
 
     def to_units(self, value: fmpq) -> fmpq:
         """Return a value of the response in units of 2^b."""
@@ -80,11 +101,16 @@ class Deviation:
         return FloatModes.of(self.at(LOWEST), fmpq(0))
 
     @cached_property
+    def denominator(self) -> fmpq_poly:
+        """The polynomial whose roots are the poles in normalised time."""
+        return _stretched(self._fraction[1], self.time_exponent)
+
+    @cached_property
     def start(self) -> Start | None:
         """The monotone start of g, None where the response never moves."""
-        numerator, denominator, size = self._fraction
-        scaled = numerator * (size * dyadic(-self.value_exponent))
-        top, bottom = _stretched(scaled, self.time_exponent), _stretched(denominator, self.time_exponent)
+        numerator, _, size = self._fraction
+        top = _stretched(numerator * (size * dyadic(-self.value_exponent)), self.time_exponent)
+        bottom = self.denominator
         start = first_stretch(top, bottom)
         return None if start is None else lengthened(start, top, bottom, self.at(LOWEST))
 

@@ -17,7 +17,7 @@ GUARD = 32
 """Bits beyond the asked precision at which poles and residues are computed."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Mode:
     """Re(sum of coefficients[j] t^j e^{pole t}); a conjugate pair is one mode, its upper pole, with twice the residue.
 

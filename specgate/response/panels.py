@@ -23,7 +23,7 @@ from numpy.typing import NDArray
 
 from specgate.response.cells import Cells, cells_between
 from specgate.response.certify import float_of
-from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import Block
 from specgate.response.modes import Expansion, Mode
 from specgate.response.segments import UNIT_ROUNDOFF, Floats, at_most, exact
@@ -71,7 +71,7 @@ class PanelLayout:
     cancellation: the change of the response in units of the sum of its modes, a hint for the precision.
     """
 
-    def __init__(self, deviation: Deviation, first: float, resolution: float, cancellation: float) -> None:
+    def __init__(self, deviation: Modal, first: float, resolution: float, cancellation: float) -> None:
         self._first = first
         self._resolution = resolution
         self._maker = PanelMaker(deviation, *_precision(cancellation))
@@ -119,7 +119,7 @@ class _Octave:
 class PanelMaker:
     """Makes panels of one response; the matrix from modes to Taylor coefficients is kept for equal panels."""
 
-    def __init__(self, deviation: Deviation, bits: int, degree: int) -> None:
+    def __init__(self, deviation: Modal, bits: int, degree: int) -> None:
         self._deviation = deviation
         self._expansion = deviation.at(bits)
         self._degree = degree

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from specgate.response.budget import Budget, OutOfWork
 from specgate.response.cells import Cells
 from specgate.response.certify import Zero, float_of
-from specgate.response.deviation import Deviation
+from specgate.response.deviation import Modal
 from specgate.response.grid import split
 from specgate.response.segments import exact
 from specgate.response.signs import before_time, ends, slope_bracket, turning_point
@@ -34,9 +34,13 @@ class Summit:
 
 
 class Climb:
-    """Search for the supremum of sign * g above a floor that is known to be reached or approached."""
+    """Search for the supremum of sign * g above a floor that is known to be reached or approached.
 
-    def __init__(self, deviation: Deviation, sign: int, floor: float, budget: Budget) -> None:
+    `best` is a value that is reached or approached, all others are at most best + slack or on one of the summits.
+    """
+
+    def __init__(self, deviation: Modal, sign: int, floor: float, budget: Budget, slack: float = 0.0) -> None:
+        self._slack = slack
         self._deviation = deviation
         self._sign = sign
         self._budget = budget
@@ -54,11 +58,16 @@ class Climb:
             if self._last is not None and float_of(ends(cells, -1)[1]) >= self._last:
                 return
 
+    @property
+    def _bar(self) -> float:
+        """What a cell has to reach to be of interest."""
+        return self.best + self._slack
+
     def _look_to(self, end: Callable[[float], float | None]) -> None:
         """Bring the end of the search up to date and drop the summits that are too low by now."""
         if self.best == self._known:
             return
-        self.summits = [summit for summit in self.summits if summit.high >= self.best]
+        self.summits = [summit for summit in self.summits if summit.high >= self._bar]
         if len(self.summits) > _MOST:
             raise OutOfWork(f"more than {_MOST} peaks of the response are too close in height to be told apart")
         self._last, self._known = end(self.best), self.best
@@ -78,10 +87,10 @@ class Climb:
         self.best = max(self.best, float(nodes.max()))
         turning = (cells.slope_low <= 0.0) & (cells.slope_high >= 0.0) & ~upward & before_time(cells, self._last)
         single = domed & (before[:, 1] > cells.before_error[:, 1]) & (after[:, 1] < -cells.after_error[:, 1])
-        self._take(cells, np.flatnonzero(turning & single & (high >= self.best)))
+        self._take(cells, np.flatnonzero(turning & single & (high >= self._bar)))
         unknown = turning & ~single
         while True:
-            pending = np.flatnonzero(unknown & (high >= self.best))
+            pending = np.flatnonzero(unknown & (high >= self._bar))
             if not len(pending):
                 return
             if depth >= _CLOSE:
@@ -111,7 +120,7 @@ class Climb:
         over = (np.abs(values[:, 1]) + errors[:, 1]) ** 2 / (2.0 * least_bend)
         high = sign * values[:, 0] + errors[:, 0] + SLACK * over
         self.best = max(self.best, float(low.max()))
-        for k in np.flatnonzero(high >= self.best):
+        for k in np.flatnonzero(high >= self._bar):
             index = int(which[k])
             bracket = slope_bracket(cells, index, cells.segment.start + exact(float(times[k])))
             self.summits.append(Summit(Zero(self._deviation, bracket), float(low[k]), float(high[k])))

@@ -57,6 +57,10 @@ def _answer(course: Course, target: Target, search: Search, without: Answer) -> 
         passage, fragile = course.search(on)
     except OutOfWork as limit:
         return Answer.undecided(limit.reason)
+    if passage.touching:
+        fragile = Fragile(
+            "whether the response crosses the edge or only touches it is not told at the highest precision"
+        )
     zeros = passage.touching if passage.crossing is None else (passage.crossing, *passage.touching)
     if not zeros:
         return (

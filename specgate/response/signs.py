@@ -8,12 +8,12 @@ from numpy.typing import NDArray
 
 from specgate.response.cells import Cells
 from specgate.response.certify import Bracket, Zero, float_of
-from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.deviation import LOWEST, Modal
 from specgate.response.segments import exact
 from specgate.terms.precision import HIGHEST, working_precision
 
 
-def sign_at(deviation: Deviation, time: fmpq, order: int, target: fmpq) -> int:
+def sign_at(deviation: Modal, time: fmpq, order: int, target: fmpq) -> int:
     """Return the sign of g^(order)(time) - target, 0 where even the highest precision cannot tell it from zero."""
     if time == 0 and order == 0:
         difference = deviation.initial - target
@@ -45,7 +45,7 @@ def before_time(cells: Cells, time: float | None) -> NDArray[np.bool_]:
     return np.asarray(cells.left < local, dtype=np.bool_)
 
 
-def turning_point(deviation: Deviation, cells: Cells, index: int) -> Zero | int:
+def turning_point(deviation: Modal, cells: Cells, index: int) -> Zero | int:
     """Return the zero of g' in a cell on which g'' has one sign, or the sign of g' throughout (0: not told)."""
     left, right = ends(cells, index)
     before = sign_at(deviation, left, 1, fmpq(0))

@@ -18,10 +18,14 @@ from specgate.response.extremes import EQUAL_BITS, Extreme, joined
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
 from specgate.response.peak import Climb
+from specgate.response.segments import exact
 from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
 
 APPROACHED = "the value is approached and never taken"
+
+SLACK = 2.0**-44
+"""Parts of the change within which a supremum is known where its summit is not."""
 
 Last = Callable[[float], float | None]
 """`last(best)`: a time from which on sign * g does not exceed `best`, None if none is known."""
@@ -49,13 +53,40 @@ def highest(course: Course, sign: int) -> Extreme:
     """
     jump = sign * course.deviation.initial
 
-    def last(best: float) -> float | None:
-        if best > 0.0:
-            return tail(course.deviation.table, best)
-        lasting = course.lasting
-        return lasting.since if lasting is not None and lasting.sign != sign else None
+    floor = exact_floor(course, sign, max(jump, fmpq(0)), taken=jump > 0)
 
-    return above(course, sign, exact_floor(course, sign, max(jump, fmpq(0)), taken=jump > 0), last)
+    def last(best: float) -> float | None:
+        return tail(course.deviation.table, best) if best > 0.0 else course.below_from(sign)
+
+    extreme = above(course, sign, floor, last)
+    return extreme if extreme.value.absent is None else _nearly(course, sign, floor, extreme)
+
+
+def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extreme:
+    """Return the supremum within SLACK of the change, without its time, where the exact search did not end."""
+    slack = SLACK * course.change
+
+    def last(best: float) -> float | None:
+        return tail(course.deviation.table, max(best, 0.0) + slack)
+
+    def on(grid: Grid, budget: Budget) -> float:
+        climb = Climb(course.deviation, sign, floor.low, budget, slack)
+        climb.over(grid.upward(budget), last)
+        if climb.summits:
+            raise OutOfWork("peaks of the response are not told apart")
+        return climb.best
+
+    try:
+        best = exact(course.search(on))
+    except OutOfWork:
+        return undecided
+
+    def value(bits: int) -> arb:
+        with working_precision(bits):
+            height = arb(sign * best).union(sign * (arb(best) + arb(exact(slack))))
+        return course.deviation.response(height)
+
+    return Extreme(Answer.of_ball(value), undecided.time)
 
 
 def above(course: Course, sign: int, floor: Floor, last: Last) -> Extreme:

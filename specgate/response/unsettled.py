@@ -10,7 +10,7 @@ import numpy as np
 from flint import arb, fmpq
 
 from specgate.response.answers import Answer
-from specgate.response.asymptote import lasting_sign
+from specgate.response.asymptote import Lasting, lasting_sign, leading_mode
 from specgate.response.course import Course
 from specgate.response.deviation import LOWEST
 from specgate.response.extremes import Extreme
@@ -39,13 +39,15 @@ def _grows_on_axis(mode: Mode) -> bool:
 
 def _growing(course: Course, sign: int, expansion: Expansion) -> Extreme:
     """Answer for a response without bound: to one side if one real term leads, to both if oscillations do."""
-    lasting = lasting_sign(expansion, 0.5)
+    lasting = lasting_sign(expansion, course.deviation.denominator, 0.5)
     if lasting is None:
         return _without_bound() if _swings_wider(expansion) else Extreme.undecided(_NOT_TOLD)
     if lasting.sign == sign:
         return _without_bound()
     jump = sign * course.deviation.initial
-    return above(course, sign, exact_floor(course, sign, jump, taken=True), lambda best: _left_behind(expansion, best))
+    return above(
+        course, sign, exact_floor(course, sign, jump, taken=True), lambda best: _left_behind(expansion, lasting, best)
+    )
 
 
 def _without_bound() -> Extreme:
@@ -68,12 +70,9 @@ def _both_on_axis(one: Mode, other: Mode) -> bool:
     return bool(one.pole.real.is_zero() and other.pole.real.is_zero())
 
 
-def _left_behind(expansion: Expansion, best: float) -> float | None:
+def _left_behind(expansion: Expansion, lasting: Lasting, best: float) -> float | None:
     """Return a time from which on sign * g is below `best`: it is negative and at least half its leading term."""
-    lasting = lasting_sign(expansion, 0.5)
-    lead = max(expansion.modes, key=lambda mode: (float(mode.pole.real), not mode.oscillates, len(mode.coefficients)))
-    if lasting is None:
-        return None
+    lead = leading_mode(expansion)
     half = 0.5 * at_least(abs(lead.coefficients[-1]))
     power, rate = len(lead.coefficients) - 1, max(0.0, at_least(lead.pole.real))
 
@@ -143,7 +142,7 @@ def _swing_with_transient(course: Course, sign: int, index: int) -> Extreme:
         excess = (best - top) * (1.0 - 1e-9) - 1e-15 * top
         if excess > 0.0:
             return tail(table, excess)
-        lasting = lasting_sign(transient)
+        lasting = lasting_sign(transient, deviation.denominator)
         return lasting.since if lasting is not None and lasting.sign != sign else None
 
     jump = sign * deviation.initial

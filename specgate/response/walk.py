@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 from specgate.response.budget import Budget, OutOfWork
 from specgate.response.cells import Cells
 from specgate.response.certify import Bracket, Zero, float_of
-from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import split
 from specgate.response.signs import before_time, ends, sign_at, turning_point, value_bracket
 from specgate.terms.precision import HIGHEST, working_precision
@@ -75,7 +75,7 @@ class Walk:
 
     def __init__(
         self,
-        deviation: Deviation,
+        deviation: Modal,
         band: Band,
         budget: Budget,
         *,
