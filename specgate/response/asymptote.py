@@ -15,9 +15,9 @@ from dataclasses import dataclass
 import numpy as np
 from flint import arb, fmpq, fmpq_poly
 
+from specgate.response.falling import smallest
 from specgate.response.modes import Expansion, Mode
 from specgate.response.segments import Floats, at_most
-from specgate.response.tail import smallest
 from specgate.systems.polynomials import primitive
 from specgate.systems.stability import classify
 from specgate.terms.precision import working_precision

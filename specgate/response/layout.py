@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cached_property
-from math import ceil, log2
+from math import frexp
 
 import numpy as np
 from flint import fmpq
@@ -22,6 +22,7 @@ FAR = 2.0**17
 """|p| t beyond which modes are written about the start of the chunk, or their phase would lose its digits."""
 
 _MOST = 2.0**60
+_AT_ONCE = 32
 
 
 class FloatLayout:
@@ -31,6 +32,7 @@ class FloatLayout:
         self._deviation = deviation
         self._first = first
         self._resolution = resolution
+        self._counts: list[int] = []
 
     def block(self, before: list[Block]) -> Block:
         """Return the block that follows."""
@@ -39,7 +41,7 @@ class FloatLayout:
         octaves: list[tuple[float, int]] = []
         total, end = 0, left
         while total <= CHUNK:
-            count = self._count(table, end)
+            count = self._count(end)
             if octaves and (total + count > CHUNK or 2.0 * end * table.speed > FAR):
                 break
             octaves.append((end, count))
@@ -49,11 +51,18 @@ class FloatLayout:
             return _Octave(self._deviation, table, left, octaves[0][1])
         return _Octaves(table, tuple(octaves))
 
-    def _count(self, table: FloatModes, left: float) -> int:
+    def _count(self, left: float) -> int:
         """Return a power of two: cells of the octave so narrow that M4 h^4 / 384 is about the resolution."""
-        fourth = float(table.bounds(np.array([left]), np.array([2.0 * left]))[0, 2])
-        wanted = left * (fourth / 384.0 / self._resolution) ** 0.25
-        return 1 << max(0, ceil(log2(min(max(wanted, 1.0), _MOST))))
+        number = frexp(left / self._first)[1] - 1
+        while number >= len(self._counts):
+            self._counts += self._further_counts(len(self._counts))
+        return self._counts[number]
+
+    def _further_counts(self, number: int) -> list[int]:
+        left = self._first * 2.0 ** np.arange(number, number + _AT_ONCE, dtype=np.float64)
+        fourth = self._deviation.table.bounds(left, 2.0 * left)[:, 2]
+        wanted = np.clip(left * (fourth / 384.0 / self._resolution) ** 0.25, 1.0, _MOST)
+        return [1 << int(power) for power in np.ceil(np.log2(wanted))]
 
 
 @dataclass(frozen=True)

@@ -25,6 +25,7 @@ import numpy as np
 from flint import acb, fmpq
 from numpy.typing import NDArray
 
+from specgate.response.falling import DOUBLINGS
 from specgate.response.modes import Expansion, power_of_two
 from specgate.response.segments import UNIT_ROUNDOFF, Floats
 
@@ -145,6 +146,12 @@ class FloatModes:
             summit = np.where(self.power > 0.0, self.power / -self.decay, 0.0)
         instants = np.maximum(times[:, None], summit)
         return self._columns(instants, instants) * self.size[:, 0]
+
+    @cached_property
+    def parts_at_doublings(self) -> Floats:
+        """The sum of the parts at the times 0 and 2^-40, 2^-39 ... 2^399."""
+        total: Floats = self.parts(DOUBLINGS).sum(axis=1)
+        return total
 
     @cached_property
     def parts_error(self) -> float:

@@ -14,11 +14,12 @@ from specgate.response.asymptote import Lasting, lasting_sign, leading_mode
 from specgate.response.course import Course
 from specgate.response.deviation import LOWEST
 from specgate.response.extremes import Extreme
+from specgate.response.falling import smallest
 from specgate.response.modes import Expansion, Mode
 from specgate.response.segments import Floats, at_least, at_most
 from specgate.response.supremum import APPROACHED, Floor, above, exact_floor
 from specgate.response.tables import FloatModes
-from specgate.response.tail import smallest, tail
+from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
 
 _NOT_TOLD = "whether the growth of the response is one-sided is not told"

@@ -2,32 +2,34 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from contextlib import contextmanager
-
 from flint import ctx
 
 HIGHEST = 4096
 """Bits beyond which a question stays open."""
 
 
-@contextmanager
-def working_precision(bits: int) -> Iterator[None]:
-    """Run the body at `bits` of binary precision and restore what was set before."""
-    before = ctx.prec
-    ctx.prec = bits
-    try:
-        yield
-    finally:
-        ctx.prec = before
+class _Setting:
+    """A context that sets one attribute of FLINT's and restores what was set before."""
+
+    __slots__ = ("_before", "_name", "_value")
+
+    def __init__(self, name: str, value: int) -> None:
+        self._name = name
+        self._value = value
+
+    def __enter__(self) -> None:
+        self._before: int = getattr(ctx, self._name)
+        setattr(ctx, self._name, self._value)
+
+    def __exit__(self, *_: object) -> None:
+        setattr(ctx, self._name, self._before)
 
 
-@contextmanager
-def series_terms(count: int) -> Iterator[None]:
-    """Run the body with power series kept to `count` terms and restore what was set before."""
-    before = ctx.cap
-    ctx.cap = count
-    try:
-        yield
-    finally:
-        ctx.cap = before
+def working_precision(bits: int) -> _Setting:
+    """Run the body of `with` at `bits` of binary precision and restore what was set before."""
+    return _Setting("prec", bits)
+
+
+def series_terms(count: int) -> _Setting:
+    """Run the body of `with` with power series kept to `count` terms and restore what was set before."""
+    return _Setting("cap", count)
