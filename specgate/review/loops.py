@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import fields, replace
 
-from flint import arb, fmpq
+from flint import arb
 
 from specgate.analysis.analyses import Analyses, LoopAnalysis, Missing, ResponseAnalysis
 from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID
@@ -28,7 +28,7 @@ from specgate.review.types import (
     Result,
 )
 from specgate.systems.roots import certified_roots
-from specgate.terms.enclosed import ends, printed_short, rounded
+from specgate.terms.enclosed import printed_short
 from specgate.terms.unit import ONE, Unit
 
 _SHOWN = 128
@@ -159,11 +159,11 @@ def _curve(found: ResponseAnalysis) -> Curve | None:
     subject = found.subject
     if not isinstance(subject, ResponseSubject) or isinstance(subject.response, Absent) or subject.void is not None:
         return None
+    points = subject.response.curve(_POINTS)
     factor = found.unit.si_factor
-    points = [(arb(time), value / factor) for time, value in subject.response.curve(_POINTS)]
-    peak = max((abs(end) for _, value in points for end in ends(value)), default=fmpq(0))
-    scale = rounded(peak, "up", 2)
+    values = [value / factor for _, value in points]
+    peak = max((abs(float(value.mid())) for value in values), default=0.0)
     return Curve(
-        tuple(printed_short(time) for time, _ in points),
-        tuple(printed_short(value, scale) for _, value in points),
+        tuple(printed_short(arb(time)) for time, _ in points),
+        tuple(printed_short(value, peak) for value in values),
     )

@@ -30,6 +30,9 @@ _FINE = fmpq(1, 10**14)
 _NOTHING = fmpq(1, 10**12)
 """Part of the scale (the change of a response) below which a number that is not proved to be zero prints as 0."""
 
+_NOISE = 1e-12
+"""The same for numbers of few digits."""
+
 _TINY = fmpq(1, 2**4000)
 """Far below the smallest float: rationals need no more digits than this."""
 
@@ -104,15 +107,15 @@ def printed(refine: Refine, scale: fmpq | None = None) -> Enclosed:
     return _settled(low, high)
 
 
-def printed_short(ball: arb, scale: fmpq | None = None) -> float:
+def printed_short(ball: arb, scale: float | None = None) -> float:
     """Return the middle of a narrow ball to 6 significant digits, for drawing and for what is shown beside a claim.
 
     scale: what a number is small against; next to it, noise prints as 0.
     """
-    low, high = ends(ball)
-    if scale is not None and max(abs(low), abs(high)) <= abs(scale) * _NOTHING:
+    middle = float(ball.mid())
+    if scale is not None and abs(middle) + float(ball.rad()) <= scale * _NOISE:
         return 0.0
-    return to_float(rounded(rounded((low + high) / 2, "nearest", DIGITS), "nearest", SHORT))
+    return float(f"{middle:.{SHORT}g}")
 
 
 def _nearly_zero(low: fmpq, high: fmpq, nothing: fmpq) -> Enclosed:
