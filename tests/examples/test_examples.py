@@ -108,6 +108,13 @@ def test_poles_of_every_loop(name: str, revision: str) -> None:
             assert complex(*nearest) == pytest.approx(complex(real, imaginary), rel=1e-6), loop
 
 
+@pytest.mark.parametrize("revision", ["rev_a", "rev_b"])
+def test_damping_ratio_is_that_of_the_least_damped_pole(revision: str) -> None:
+    poles = [complex(*pole) for pole in figures("survey_airship", revision)["poles"]["pitch_trim"]]
+    (criterion,) = example("survey_airship", revision).requirements["SAS-SYS-106"].criteria
+    assert criterion.result.value == pytest.approx(min(-pole.real / abs(pole) for pole in poles), rel=RELATIVE)
+
+
 @EACH
 def test_settling_into_bands_of_their_own(name: str, revision: str) -> None:
     for key, seconds in figures(name, revision)["settling_times"].items():
