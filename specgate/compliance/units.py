@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Mapping
+from functools import cache
+
 from flint import fmpq
 
 from specgate.measures.measure import Arguments, Measure, UnitRule
@@ -43,16 +46,23 @@ def default_unit(measure: Measure, arguments: Arguments, signal: Unit) -> Unit |
     if rule in (UnitRule.COUNT, UnitRule.YES_NO):
         return None
     if rule in _FIXED:
-        return UnitTable.standard().parse(_FIXED[rule])
+        return _unit(_FIXED[rule])
     if rule is UnitRule.CHANGE and not arguments.absolute:
-        return UnitTable.standard().parse("%")
-    second = UnitTable.standard().parse("s")
-    rates = {
-        UnitRule.SIGNAL_RATE: signal / second,
-        UnitRule.SIGNAL_SECOND: signal * second,
-        UnitRule.SIGNAL_SQUARED_SECOND: signal**2 * second,
-    }
-    return rates.get(rule, signal)
+        return _unit("%")
+    of_signal = _OF_SIGNAL.get(rule)
+    return signal if of_signal is None else of_signal(signal)
+
+
+@cache
+def _unit(symbol: str) -> Unit:
+    return UnitTable.standard().parse(symbol)
+
+
+_OF_SIGNAL: Mapping[UnitRule, Callable[[Unit], Unit]] = {
+    UnitRule.SIGNAL_RATE: lambda signal: signal / _unit("s"),
+    UnitRule.SIGNAL_SECOND: lambda signal: signal * _unit("s"),
+    UnitRule.SIGNAL_SQUARED_SECOND: lambda signal: signal**2 * _unit("s"),
+}
 
 
 def smallness(measure: Measure, arguments: Arguments, subject: object, unit: Unit | None) -> fmpq | None:

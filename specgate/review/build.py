@@ -14,7 +14,7 @@ from specgate.review.definitions import definitions
 from specgate.review.gate import gate
 from specgate.review.loops import LoopReviews
 from specgate.review.printing import location, short
-from specgate.review.requirements import requirement
+from specgate.review.requirements import requirement, resting
 from specgate.review.specification import specification
 from specgate.review.types import (
     FindingReview,
@@ -46,7 +46,8 @@ def review(project: Project) -> Review:
     said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments))))
     printer = LoopReviews(project, analyses)
     loops = {name: printer.loop(name) for name in project.loops}
-    requirements = {name: requirement(name, one, project, analyses, graph) for name, one in assessments.items()}
+    rests = resting(project, analyses)
+    requirements = {name: requirement(name, one, project, rests, graph) for name, one in assessments.items()}
     shown = tuple(_finding(one) for one in said)
     info = project.info
     return Review(

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+
 from flint import fmpq
 
 from specgate.analysis.analyses import Analyses
@@ -39,9 +41,9 @@ from specgate.traceability.graph import Graph
 
 
 def requirement(
-    name: str, assessment: Assessment, project: Project, analyses: Analyses, graph: Graph
+    name: str, assessment: Assessment, project: Project, rests: Mapping[str, tuple[str, ...]], graph: Graph
 ) -> RequirementReview:
-    """Print one requirement."""
+    """Print one requirement. rests: what each loop rests on (`resting`)."""
     declared = assessment.requirement
     exempt = declared.not_applicable
     return RequirementReview(
@@ -57,7 +59,7 @@ def requirement(
         decided_by=declared.decided_by,
         methods=tuple(_method(one) for one in assessment.methods),
         criteria=tuple(_criterion(one, project) for one in assessment.criteria),
-        rests_on=_rests_on(assessment, project, analyses),
+        rests_on=_rests_on(assessment, rests),
         derived=graph.children[name],
         evidence=tuple(
             {"id": kept.id, **as_plain(kept.content)}
@@ -79,13 +81,21 @@ def _method(assessed: MethodAssessment) -> MethodReview:
     )
 
 
-def _rests_on(assessment: Assessment, project: Project, analyses: Analyses) -> tuple[str, ...]:
-    """Return the parameters, the subsystems, and the responses, breaks and loops that the criteria rest on."""
-    loops = dict.fromkeys(one.criterion.subject.loop for one in assessment.criteria)
-    used = dict.fromkeys(name for loop in loops for name in analyses.loops[loop].subsystems)
+def resting(project: Project, analyses: Analyses) -> Mapping[str, tuple[str, ...]]:
+    """Return for each loop the parameters that its models read, then its subsystems."""
     values = analyses.nominal.values
-    read = [name for block in used for name in parameters_read(project.subsystems[block], values)]
-    return tuple(dict.fromkeys((*read, *used, *(subject_name(one) for one in assessment.criteria))))
+    read = {name: parameters_read(one, values) for name, one in project.subsystems.items()}
+    return {
+        name: tuple(dict.fromkeys((*(one for block in loop.subsystems for one in read[block]), *loop.subsystems)))
+        for name, loop in analyses.loops.items()
+    }
+
+
+def _rests_on(assessment: Assessment, rests: Mapping[str, tuple[str, ...]]) -> tuple[str, ...]:
+    """Return the parameters and subsystems, then the responses, breaks and loops, that the criteria rest on."""
+    loops = dict.fromkeys(one.criterion.subject.loop for one in assessment.criteria)
+    below = (one for loop in loops for one in rests[loop])
+    return tuple(dict.fromkeys((*below, *(subject_name(one) for one in assessment.criteria))))
 
 
 # --- a criterion --------------------------------------------------------------------------------------------

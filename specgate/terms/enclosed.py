@@ -9,6 +9,7 @@ from __future__ import annotations
 import sys
 from collections.abc import Callable
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Literal
 
 from flint import arb, fmpq, fmpz
@@ -151,7 +152,7 @@ def rounded(value: fmpq, direction: Literal["nearest", "down", "up"] = "nearest"
     """Round to a decimal of so many significant digits; `nearest` takes ties to even, down and up are signed."""
     if value == 0:
         return value
-    unit = power_of_ten(magnitude(value) - digits + 1)
+    unit = _power_of_ten(magnitude(value) - digits + 1)
     scaled = value / unit
     if direction == "down":
         return fmpq(scaled.floor()) * unit
@@ -180,11 +181,14 @@ def magnitude(value: fmpq) -> int:
     """Return e with 10^e <= |value| < 10^(e+1)."""
     size = abs(value)
     guess = int((int(size.p).bit_length() - int(size.q).bit_length()) * 0.30103)
-    while power_of_ten(guess) > size:
+    while _power_of_ten(guess) > size:
         guess -= 1
-    while power_of_ten(guess + 1) <= size:
+    while _power_of_ten(guess + 1) <= size:
         guess += 1
     return guess
+
+
+_power_of_ten = lru_cache(1024)(power_of_ten)
 
 
 def _rational(exact: arb) -> fmpq:
