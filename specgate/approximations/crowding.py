@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from flint import arb, fmpq
 
 from specgate.approximations.approximation import Accuracy
+from specgate.approximations.dropped import dropped_at_peak
 from specgate.approximations.features import Features
 from specgate.approximations.figures import quotient, total
 from specgate.response.answers import Answer
@@ -17,6 +18,9 @@ Ranges = Sequence[tuple[int, int]]
 
 SINGLE, SEVERAL = fmpq(1, 5), fmpq(2, 5)
 """Crowding by one pole or zero at the nearest place allowed; by the most that any accuracy is stated for."""
+
+
+_QUIET = fmpq(1, 50)
 
 
 def by_decay_rates(features: Features) -> Answer | None:
@@ -43,17 +47,22 @@ def in_decay_rates(features: Features, ranges: Ranges) -> Accuracy | None:
 
 
 def in_distances(features: Features, ranges: Ranges) -> Accuracy | None:
-    """Return the accuracy that holds for this response, crowding measured in distances from the origin."""
-    return _stated(features, by_distances(features), ranges)
+    """Return the accuracy that holds for this response, crowding measured in distances from the origin.
+
+    The middle range asks besides that the dropped modes add at most a fiftieth of the overshoot at the pair's peak.
+    """
+    ringing = dropped_at_peak(features)
+    quiet = ringing is not None and _surely_at_most(ringing, _QUIET)
+    return _stated(features, by_distances(features), ranges, quiet)
 
 
-def _stated(features: Features, crowding: Answer | None, ranges: Ranges) -> Accuracy | None:
+def _stated(features: Features, crowding: Answer | None, ranges: Ranges, quiet: bool = True) -> Accuracy | None:
     alone, single, several = ranges
     if features.alone:
         return _accuracy(alone, "the pair alone")
     if crowding is None:
         return None
-    if _surely_at_most(crowding, SINGLE):
+    if quiet and _surely_at_most(crowding, SINGLE):
         return _accuracy(single, "with another pole or zero at the nearest place allowed, or the like of it")
     if _surely_at_most(crowding, SEVERAL):
         return _accuracy(several, "with several other poles or zeros near the nearest place allowed")

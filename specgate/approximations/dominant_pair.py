@@ -10,7 +10,8 @@ not changed the amplitude of the pair's own oscillation by more than a factor of
 
 For overshoot, peak time and rise time the yardstick is the natural frequency, not the decay rate: everything else
 must be at least five times wn from the origin. A lightly damped pair decays slowly and yet moves fast; a pole or zero
-five decay rates away is then in its midst.
+five decay rates away is then in its midst. Far poles that are themselves hardly damped and near each other ring up
+together; so it is also asked that what is dropped adds no more than a twentieth of the overshoot at the pair's peak.
 
 As a basis of its own it promises what the pair alone would do, computed and proved.
 """
@@ -24,7 +25,7 @@ from flint import fmpq
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
 from specgate.approximations.conditions import SETTLES, at_least, at_most, between, relative_band, words
 from specgate.approximations.crowding import Ranges, by_decay_rates, by_distances, in_decay_rates, in_distances
-from specgate.approximations.dropped import dropped_share, pair_amplitude
+from specgate.approximations.dropped import dropped_at_peak, dropped_in_band, pair_amplitude
 from specgate.approximations.features import Features
 from specgate.approximations.figures import quotient, smallest
 from specgate.approximations.pair_measures import of_the_pair
@@ -81,7 +82,11 @@ def _dropped(features: Features, arguments: Arguments, threshold: fmpq | None) -
     band = relative_band(arguments)
     if band is None:
         return words("the band is no part of the change", False)
-    return _within(dropped_share(features, band), threshold)
+    return _within(dropped_in_band(features, band), threshold)
+
+
+def _dropped_at_peak(features: Features, _: Arguments, threshold: fmpq | None) -> Found:
+    return _within(dropped_at_peak(features), threshold)
 
 
 def _within(value: Answer | None, threshold: fmpq | None) -> Found:
@@ -210,6 +215,16 @@ _FOR_SHAPE = (
         required="<= {threshold}",
         find=_distance_crowding,
         threshold=fmpq(2, 5),
+        tighter="smaller",
+        concerns=_SHAPE,
+    ),
+    Condition(
+        key="dropped_at_peak",
+        name="what the dropped modes still add when the pair peaks, in parts of its overshoot",
+        source="derived",
+        required="<= {threshold}",
+        find=_dropped_at_peak,
+        threshold=fmpq(1, 20),
         tighter="smaller",
         concerns=_SHAPE,
     ),

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from flint import arb, fmpq
 
 from specgate.approximations.features import Features
@@ -11,7 +13,7 @@ from specgate.response.modes import Expansion, Mode, expand
 from specgate.terms.precision import working_precision
 
 
-def dropped_share(features: Features, band: fmpq) -> Answer | None:
+def dropped_in_band(features: Features, band: fmpq) -> Answer | None:
     """Return how much of a settling band the dropped modes may still fill when the pair enters it.
 
     The bound of their sum at t = ln(1/band)/sigma, in parts of band times change; None where there is no such time.
@@ -19,16 +21,17 @@ def dropped_share(features: Features, band: fmpq) -> Answer | None:
     pair = _simple_pair(features)
     if pair is None or not 0 < band < 1:
         return None
+    return _left(features, pair, lambda sigma, _: -arb(band).log() / sigma, lambda _, __: arb(band))
 
-    def refine(bits: int) -> arb:
-        expansion = _expansion(features, bits)
-        place = pair.at(bits)
-        with working_precision(expansion.bits):
-            time = -arb(band).log() / -place.real
-            left = [_envelope(mode, time) for mode in expansion.modes if not mode.pole.overlaps(place)]
-            return sum(left, arb(0)) / (band * abs(arb(expansion.offset)))
 
-    return Answer.of_ball(refine)
+def dropped_at_peak(features: Features) -> Answer | None:
+    """Return how much the dropped modes may still add at the pair's first peak, in parts of its overshoot."""
+    pair = _simple_pair(features)
+    if pair is None:
+        return None
+    return _left(
+        features, pair, lambda _, omega: arb.pi() / omega, lambda sigma, omega: (-arb.pi() * sigma / omega).exp()
+    )
 
 
 def pair_amplitude(features: Features) -> Answer | None:
@@ -44,6 +47,26 @@ def pair_amplitude(features: Features) -> Answer | None:
             full = next(mode for mode in expansion.modes if mode.pole.overlaps(place))
             alone = abs(place) / place.imag
             return abs(full.coefficients[0]) / (abs(arb(expansion.offset)) * alone)
+
+    return Answer.of_ball(refine)
+
+
+def _left(
+    features: Features, pair: Spot, instant: Callable[[arb, arb], arb], yardstick: Callable[[arb, arb], arb]
+) -> Answer:
+    """Return the bound of the dropped modes at an instant, in parts of a yardstick times the change.
+
+    Instant and yardstick are functions of sigma and wd.
+    """
+
+    def refine(bits: int) -> arb:
+        expansion = _expansion(features, bits)
+        place = pair.at(bits)
+        with working_precision(expansion.bits):
+            parts = -place.real, place.imag
+            time = instant(*parts)
+            left = [_envelope(mode, time) for mode in expansion.modes if not mode.pole.overlaps(place)]
+            return sum(left, arb(0)) / (yardstick(*parts) * abs(arb(expansion.offset)))
 
     return Answer.of_ball(refine)
 
