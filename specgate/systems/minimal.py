@@ -32,25 +32,20 @@ def shown_modes(matrix: Sequence[Sequence[TransferFunction]]) -> fmpq_poly:
 def _collected(rows: Sequence[_Row], column: int, common: fmpq_poly) -> tuple[fmpq_poly, list[_Row]]:
     """Return the greatest common divisor of a column with `common`, and rows for the columns after it.
 
-    Entries are taken modulo `common`: `common` times each unit row is among the generators.
+    Euclid's steps turn `common` times the unit row and the rows given into one row that has the divisor and others
+    that have zero. Entries are taken modulo `common`, whose multiples of the later unit rows are still to come.
     """
-    pivot = [fmpq_poly() for _ in rows[0]] if rows else []
+    head, pivot = common, [fmpq_poly()] * len(rows[0]) if rows else []
     rest: list[_Row] = []
-    head = common
     for row in rows:
         if not row[column]:
-            rest.append(list(row))
+            rest.append(row)
             continue
         divisor, of_head, of_row = head.xgcd(row[column])
         drop, keep = row[column] // divisor, head // divisor
-        combined = [(of_head * p + of_row * r) % common for p, r in zip(pivot, row, strict=True)]
-        left = [(drop * p - keep * r) % common for p, r in zip(pivot, row, strict=True)]
-        head, pivot = divisor, combined
-        rest.append(_scaled(left))
-    if not rows:
-        return head, rest
-    # head times its cofactor is common, and common times the unit row has nothing in the later columns.
-    rest.append(_scaled([exact_quotient(common, head) * p % common for p in pivot]))
+        rest.append(_scaled([(drop * p - keep * r) % common for p, r in zip(pivot, row, strict=True)]))
+        pivot = [(of_head * p + of_row * r) % common for p, r in zip(pivot, row, strict=True)]
+        head = divisor
     return head, [row for row in rest if any(row[column + 1 :])]
 
 

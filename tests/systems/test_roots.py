@@ -58,6 +58,25 @@ def test_roots_on_the_axis_are_exactly_on_it() -> None:
     assert on_axis[1].value.is_zero()
 
 
+@pytest.mark.parametrize("bits", [64, 300])
+def test_balls_that_touch_the_axis_are_put_on_it(bits: int) -> None:
+    """One square-free factor with roots on and off the axis: the finder alone leaves real parts of about 1e-38."""
+    p = highest_first([1, 0, 2]) * highest_first([1, -3]) * highest_first([1, fmpq(1, 10**50)])
+    found = certified_roots(p, bits)
+    assert [root.value.real.is_zero() for root in found] == [False, True, True, False]
+    assert found[0].value.real < 0
+
+
+@pytest.mark.parametrize("digits", [30, 45, 60, 200, 600])
+def test_index_of_roots_with_nearly_equal_real_parts(digits: int) -> None:
+    """What looks equal at one precision is told apart at another: the order must not change with it."""
+    gap = fmpq(1, 10**digits)
+    p = highest_first([1, 2 + 2 * gap, (1 + gap) ** 2 + 4]) * highest_first([1, 2, 2])
+    orders = [[round(float(root.value.imag.mid())) for root in certified_roots(p, bits)] for bits in (64, 300, 3000)]
+    assert sorted(orders[0]) == [-2, -1, 1, 2]
+    assert orders == [orders[0]] * 3
+
+
 @given(st.lists(st.integers(-20, 20), min_size=3, max_size=8).filter(lambda c: c[0] != 0))
 def test_a_root_keeps_its_index_at_every_precision(coefficients: list[int]) -> None:
     p = highest_first(coefficients)

@@ -188,15 +188,17 @@ def test_factor_written_on_both_sides_of_a_block_is_kept() -> None:
     assert solution.channel("r", "y").hidden == poly(1, 3)
 
 
-def test_only_the_component_that_hides_a_mode_is_named() -> None:
+@pytest.mark.parametrize("turned", [False, True])
+def test_only_the_component_that_hides_a_mode_is_named(turned: bool) -> None:
     """Two integrators: one in plain sight of r, one behind a differentiator of d."""
+    instances = [
+        applied("seen", [1], [1, 0], (1, "r")),
+        applied("rate", [1, 0], [1, 9], (1, "d")),
+        applied("unseen", [1], [1, 0], (1, "rate.y")),
+    ]
     solution = wired(
-        "r d",
-        [
-            applied("seen", [1], [1, 0], (1, "r")),
-            applied("rate", [1, 0], [1, 9], (1, "d")),
-            applied("unseen", [1], [1, 0], (1, "rate.y")),
-        ],
+        "d r" if turned else "r d",
+        instances[::-1] if turned else instances,
         a=[(1, "seen.y")],
         b=[(1, "unseen.y")],
     )
