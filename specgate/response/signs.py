@@ -41,7 +41,8 @@ def before_time(cells: Cells, time: float | None) -> NDArray[np.bool_]:
     """Return which cells begin before a normalised time (None: all)."""
     if time is None:
         return np.ones(len(cells.left), dtype=np.bool_)
-    local = float(np.nextafter(float_of(exact(time) - cells.segment.start), np.inf))
+    start = cells.segment.start
+    local = time if start == 0 else float(np.nextafter(float_of(exact(time) - start), np.inf))
     return np.asarray(cells.left < local, dtype=np.bool_)
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from functools import cached_property
 from math import inf
 
 import numpy as np
@@ -41,13 +42,13 @@ class Band:
             raise ValueError("a band without edges is never left")
         return self.low
 
-    @property
+    @cached_property
     def inner(self) -> tuple[float, float]:
         """Floats that are not outside of the edges."""
         low = -inf if self.low is None else float(np.nextafter(float_of(self.low), inf))
         return low, inf if self.high is None else float(np.nextafter(float_of(self.high), -inf))
 
-    @property
+    @cached_property
     def outer(self) -> tuple[float, float]:
         """Floats that are not inside of the edges."""
         low = -inf if self.low is None else float(np.nextafter(float_of(self.low), -inf))
