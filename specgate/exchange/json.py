@@ -74,14 +74,12 @@ def _plain(value: Any) -> Any:
 def _lines(value: Any, indent: str) -> Iterator[str]:
     """Yield the text of a plain value; `indent` is that of the line on which it begins."""
     if isinstance(value, dict) and value:
-        entries: list[tuple[str, Any]] = [(f"{_scalar(key)}: ", part) for key, part in value.items()]
+        entries: list[tuple[str, Any]] = [(f"{_encode(key)}: ", part) for key, part in value.items()]
         yield from _block("{", "}", entries, indent)
     elif isinstance(value, list) and not all(_is_scalar(part) for part in value):
         yield from _block("[", "]", [("", part) for part in value], indent)
-    elif isinstance(value, list):
-        yield "[" + ", ".join(_scalar(part) for part in value) + "]"
     else:
-        yield _scalar(value)
+        yield _encode(value)
 
 
 def _block(opening: str, closing: str, entries: list[tuple[str, Any]], indent: str) -> Iterator[str]:
@@ -101,7 +99,7 @@ def _short(opening: str, closing: str, entries: list[tuple[str, Any]], indent: s
     """Return a block of plain values on one line, where it fits."""
     if not all(_is_scalar(part) for _, part in entries):
         return None
-    text = opening + ", ".join(label + _scalar(part) for label, part in entries) + closing
+    text = opening + ", ".join(label + _encode(part) for label, part in entries) + closing
     return text if len(indent) + len(text) <= _WIDTH else None
 
 
@@ -109,8 +107,7 @@ def _is_scalar(value: Any) -> bool:
     return not isinstance(value, dict | list) or not value
 
 
-def _scalar(value: Any) -> str:
-    return json.dumps(value, ensure_ascii=False, allow_nan=False)
+_encode = json.JSONEncoder(ensure_ascii=False, allow_nan=False).encode
 
 
 # --- from plain values to types ----------------------------------------------------------------------------

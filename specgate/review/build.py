@@ -38,13 +38,16 @@ FORMAT = 1
 """Version of the results format."""
 
 
-def review(project: Project) -> Review:
-    """Compute and judge a project. Raises Fault for a project that its checks refuse."""
+def review(project: Project, *, curves: bool = True) -> Review:
+    """Compute and judge a project. Raises Fault for a project that its checks refuse.
+
+    curves: whether to compute the points of responses, which only drawings need.
+    """
     analyses, graph = analyse(project), trace(project)
     assessments = assess(project, analyses, graph)
     warned = (one for one in project.warnings if isinstance(one, Finding))
     said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments))))
-    printer = LoopReviews(project, analyses)
+    printer = LoopReviews(project, analyses, curves=curves)
     loops = {name: printer.loop(name) for name in project.loops}
     rests = resting(project, analyses)
     requirements = {name: requirement(name, one, project, rests, graph) for name, one in assessments.items()}

@@ -34,14 +34,15 @@ from specgate.terms.unit import ONE, Unit
 _SHOWN = 128
 """Bits at which poles are certified for printing."""
 
-_POINTS = 400
+_POINTS = 256
+"""Points of a curve: two pixels each in the widest plot; the format allows 400."""
 
 
 class LoopReviews:
     """Prints the loops of one project."""
 
-    def __init__(self, project: Project, analyses: Analyses) -> None:
-        self.project, self.analyses = project, analyses
+    def __init__(self, project: Project, analyses: Analyses, *, curves: bool) -> None:
+        self.project, self.analyses, self.curves = project, analyses, curves
 
     def loop(self, name: str) -> LoopReview:
         """Print one loop with everything that is reported on it, asked for or not."""
@@ -60,7 +61,9 @@ class LoopReviews:
             poles=() if modes is None else poles(certified_roots(modes, _SHOWN)),
             hidden_modes=tuple(_hidden(found)),
             measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
-            responses={key: _response(one, again.responses[key]) for key, one in found.responses.items()},
+            responses={
+                key: _response(one, again.responses[key], curve=self.curves) for key, one in found.responses.items()
+            },
             breaks={key: self._break(found, again, key) for key in found.breaks},
             reason=reason,
         )
@@ -95,7 +98,7 @@ def _hidden(found: LoopAnalysis) -> Iterator[HiddenMode]:
             yield HiddenMode(name, coefficients(channel.hidden), not channel.hides_instability, roots)
 
 
-def _response(found: ResponseAnalysis, again: ResponseAnalysis) -> ResponseReview:
+def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) -> ResponseReview:
     declared, subject = found.response, found.subject
     reduced = None if found.channel is None else found.channel.transfer.reduced()
     missing = isinstance(subject, Missing)
@@ -109,7 +112,7 @@ def _response(found: ResponseAnalysis, again: ResponseAnalysis) -> ResponseRevie
         measures=() if missing else _measures("response", subject, again.subject, found.unit),
         poles=() if reduced is None else poles(certified_roots(reduced.denominator, _SHOWN)),
         zeros=() if reduced is None or not reduced.numerator else poles(certified_roots(reduced.numerator, _SHOWN)),
-        curve=_curve(found),
+        curve=_curve(found) if curve else None,
         reason=subject.reason if isinstance(subject, Missing) else None,
     )
 
