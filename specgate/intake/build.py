@@ -99,14 +99,17 @@ def _parameter_nodes(node: Node) -> dict[str, Node]:
 
 
 def _each(root: Table, kind: str, read: Callable[[Entry], _Thing | None], collector: Collector) -> dict[str, _Thing]:
-    """Read every entry of a section, leaving out those in which something was reported."""
+    """Read every entry of a section, leaving out those in which something was reported.
+
+    What is not of the right shape is read all the same, for the names and units in it; a key too many does no harm.
+    """
     found: dict[str, _Thing] = {}
     for key, entry in section(root, f"{kind}s").items():
         if collector.full:
             break
         with collector.about(**{kind: key}):
             thing = read(entry)
-        if thing is not None:
+        if thing is not None and (kind, key) not in collector.misshapen:
             found[key] = thing
     return found
 

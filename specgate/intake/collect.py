@@ -32,6 +32,8 @@ class Collector:
 
     findings: list[Finding] = field(default_factory=list)
     topic: dict[str, str] = field(default_factory=dict)
+    misshapen: set[tuple[str, str]] = field(default_factory=set)
+    """Kind and name of the subsystems, loops and requirements that are not of the shape that others rely on."""
     comparisons: int = MOST_COMPARISONS
 
     def error(self, rule: str, message: str, place: Place, *related: Related, **about: str) -> None:

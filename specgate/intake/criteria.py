@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from typing import Literal
+
+from flint import fmpq
 
 from specgate.approximations.table import APPROXIMATIONS
 from specgate.intake.context import Context, items, table, text, texts
 from specgate.intake.nodes import Node, Spot, Table, Text, Truth, as_kept
 from specgate.intake.values import Reader, complete
 from specgate.measures.table import MEASURES
-from specgate.project.types import Basis, Claim, Criterion, Limit, Subject
+from specgate.project.percent import relative_to_change
+from specgate.project.types import Basis, Claim, Criterion, Limit, Subject, Value
 
 _ARGUMENTS = ("band", "from", "to", "time", "frequency")
 _LIMITS: tuple[Literal["at_most", "at_least", "between", "within", "equals"], ...] = (
@@ -45,7 +48,22 @@ def criterion(node: Node, place: Spot, context: Context) -> Criterion | None:
         return None
     if rests_on is not None and not estimates_one(rests_on, (measure,), context):
         return None
+    if not _rising(given, place, context):
+        return None
     return Criterion(subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept)
+
+
+def _rising(arguments: Mapping[str, Value], place: Spot, context: Context) -> bool:
+    """See that `from` lies below `to`, where either may be left out."""
+    if not {"from", "to"} & set(arguments):
+        return True
+    low, high = (relative_to_change(arguments[name]) if name in arguments else None for name in ("from", "to"))
+    low, high = fmpq(1, 10) if low is None else low, fmpq(9, 10) if high is None else high
+    if low < high:
+        return True
+    message = "`from` has to be less than `to`, which are 10 % and 90 % where they are left out"
+    context.collector.error("schema-violation", message, place.place)
+    return False
 
 
 # --- subject -------------------------------------------------------------------------------------------------

@@ -137,8 +137,8 @@ class _Loop:
         return Excitation(source.value.strip(), kind, given, options, source.spot.place)
 
     def _known(self, what: str, node: Node | None, names: tuple[str, ...]) -> bool:
-        """Report a name that this loop does not have; what is left out is not unknown."""
-        if not isinstance(node, Text) or node.value.strip() in names:
+        """Report a name that this loop does not have; what is left out, by it or by the loop, is reported elsewhere."""
+        if not names or not isinstance(node, Text) or node.value.strip() in names:
             return True
         self.context.unknown(what, node.value.strip(), names, node.spot.place)
         return False

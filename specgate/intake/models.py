@@ -131,19 +131,22 @@ def _matrix(node: Node | None, reader: Reader, rows: tuple[str, ...], columns: t
 
 def _named_matrix(node: Table, reader: Reader, rows: tuple[str, ...], columns: tuple[str, ...]) -> Matrix | None:
     cells: dict[tuple[str, str], Value | None] = {}
+    good = True
     for row, line in entries(node):
-        _known("row", row, rows, reader)
+        good = _known("row", row, rows, reader) and good
         for column, cell in entries(line):
-            _known("column", column, columns, reader)
+            good = _known("column", column, columns, reader) and good
             cells[row.value, column.value] = reader.value(cell)
-    if None in cells.values() or not {pair[0] for pair in cells} <= set(rows):
+    if None in cells.values() or not good:
         return None
     return tuple(tuple(cells.get((row, column)) or whole(0, node) for column in columns) for row in rows)
 
 
-def _known(what: str, key: Text, names: tuple[str, ...], reader: Reader) -> None:
-    if key.value not in names:
-        reader.context.unknown(what, key.value, names, key.spot.place)
+def _known(what: str, key: Text, names: tuple[str, ...], reader: Reader) -> bool:
+    if key.value in names:
+        return True
+    reader.context.unknown(what, key.value, names, key.spot.place)
+    return False
 
 
 def _pid(node: Table, reader: Reader, ports: Ports) -> PidModel | None:
@@ -164,15 +167,16 @@ def pid(node: Table, reader: Reader) -> PidModel | None:
 def _numerators(node: Table, reader: Reader, ports: Ports) -> MatrixModel | None:
     denominator = reader.several(node.get("denominator"))
     found: dict[tuple[str, str], Polynomial | None] = {}
+    good = True
     for output, row in entries(node.get("numerators")):
-        _known("output", output, ports.outputs, reader)
+        good = _known("output", output, ports.outputs, reader) and good
         for source, coefficients in entries(row):
-            _known("input", source, ports.inputs, reader)
+            good = _known("input", source, ports.inputs, reader) and good
             found[output.value, source.value] = reader.several(coefficients)
-    good = {pair: numerator for pair, numerator in found.items() if numerator}
-    if not denominator or not good or len(good) < len(found):
+    numerators = {pair: numerator for pair, numerator in found.items() if numerator}
+    if not denominator or not numerators or not good or len(numerators) < len(found):
         return None
-    return MatrixModel(good, denominator)
+    return MatrixModel(numerators, denominator)
 
 
 def _sampled(node: Table, reader: Reader, ports: Ports) -> SampledModel | None:

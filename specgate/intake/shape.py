@@ -81,6 +81,8 @@ def _locate(root: Node, path: Path) -> tuple[Node | None, Text | None]:
 
 def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
     """Leave out what only follows from another error: a rule for a kind that is unknown, a key that is misspelt."""
+    # on what is no table, `required` holds, so that all alternatives do: that it is no table is said by `type`
+    errors = [error for error in errors if error.keyword != "oneOf" or isinstance(error.found, dict)]
     certain = [error for error in errors if not error.conditional]
     unsettled = {e.path[:-1] for e in certain if e.keyword == "enum" and e.path}
     unsettled |= {e.path for e in certain if e.keyword == "oneOf"}
@@ -112,6 +114,9 @@ def _repeats(error: Misshape, meant: set[str | None], wrong: set[Path]) -> bool:
 def _report(error: Misshape, collector: Collector) -> None:
     about = {}
     if len(error.path) > 1 and error.path[0] in _ABOUT:
-        about[_ABOUT[str(error.path[0])]] = str(error.path[1])
+        kind, name = _ABOUT[str(error.path[0])], str(error.path[1])
+        about[kind] = name
+        if error.keyword != "additionalProperties":
+            collector.misshapen.add((kind, name))
     for rule, message, spot in worded(error):
         collector.error(rule, message, spot.place, **about)

@@ -23,10 +23,10 @@ _ROWS = (
     Slug(
         "yaml-invalid",
         "File that cannot be read",
-        "A file is not YAML 1.2 as specgate reads it: broken syntax, a tab, an alias, a tag, a duplicate key's syntax, "
-        "nesting or numbers beyond any sensible size, bytes that are not UTF-8; or an `include` names nothing, leaves "
-        "the project folder or goes in a circle. Aliases and tags are refused on purpose: a reviewer must be able to "
-        "read each value where it stands.",
+        "A file is not YAML 1.2 as specgate reads it: broken syntax, a tab, an alias, a tag, nesting or numbers "
+        "beyond any sensible size, bytes that are not UTF-8; or an `include` names nothing, leaves the project folder "
+        "or goes in a circle. Aliases and tags are refused on purpose: a reviewer must be able to read each value "
+        "where it stands.",
     ),
     Slug(
         "schema-violation",
@@ -38,14 +38,14 @@ _ROWS = (
         "unit-unknown",
         "Unit that is not in the table",
         "Units come from a closed table of exact factors and from the project's own `units`. A unit that is not in "
-        "either is refused, with the nearest one that is; so is a frequency in 1/s, for it leaves open whether cycles "
-        "or radians are meant.",
+        "either is refused, with the nearest one that is.",
     ),
     Slug(
         "dimension-mismatch",
         "Dimensions that do not fit",
         "The terms of a polynomial, a wire between two blocks, a limit and its measure, a sum: both sides must be of "
-        "one dimension. Units of one dimension are converted, different dimensions never are.",
+        "one dimension. Units of one dimension are converted, different dimensions never are. A frequency in 1/s is "
+        "refused as well, for it leaves open whether cycles or radians are meant.",
     ),
     Slug(
         "name-unknown",
