@@ -30,7 +30,7 @@ def run(options: argparse.Namespace) -> int:
     from specgate.cli.files import write
     from specgate.cli.judge import judge
 
-    judged = judge(options.project)
+    judged = judge(options.project, curves=options.format == "json")
     if options.format == "json":
         from specgate.exchange import json
 

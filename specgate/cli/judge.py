@@ -23,12 +23,15 @@ class Judged:
     status: int
 
 
-def judge(project: str) -> Judged:
-    """Read, compute and judge the project at the path `project` (a folder or one YAML file)."""
+def judge(project: str, *, curves: bool = True) -> Judged:
+    """Read, compute and judge the project at the path `project` (a folder or one YAML file).
+
+    curves: whether the points that drawings need are computed too.
+    """
     from specgate.intake.load import Problems, load
     from specgate.review.build import review, unusable
 
     with progress("reading and computing"):
         loaded = load(Path(project))
-        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded)
+        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, curves=curves)
     return Judged(result, _STATUS[result.gate.outcome])
