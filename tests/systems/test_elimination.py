@@ -6,13 +6,14 @@ from itertools import permutations
 from random import Random
 
 from flint import fmpq, fmpq_mat, fmpz_poly
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from specgate.systems.assignment import heaviest_assignment
 from specgate.systems.elimination import Row, triangulate
 from specgate.systems.graph import is_cycle, reached, reversed_arcs, strong_components
 
+few = settings(max_examples=50, deadline=None)
 seeds = st.integers(0, 2**40)
 
 
@@ -33,6 +34,7 @@ def at(rows: list[Row], s: int) -> tuple[fmpq_mat, fmpq_mat]:
     return left, fmpq_mat([[fmpq(row.get(n + k, zero)(s)) for k in range(2)] for row in rows])
 
 
+@few
 @given(seeds, st.integers(1, 6))
 def test_determinant_and_solution_at_points(seed: int, n: int) -> None:
     rows = random_rows(Random(seed), n)
@@ -70,6 +72,7 @@ def test_singular_block_ends_the_list_of_determinants() -> None:
     assert triangle.determinants == (one,)
 
 
+@few
 @given(seeds, st.integers(1, 9))
 def test_strong_components_are_classes_of_mutual_reach_in_topological_order(seed: int, n: int) -> None:
     random = Random(seed)
@@ -92,6 +95,7 @@ def test_long_chain_meets_no_recursion_limit() -> None:
     assert len(strong_components({node: [node + 1] if node < n else [] for node in range(n + 1)})) == n + 1
 
 
+@few
 @given(seeds, st.integers(1, 6))
 def test_heaviest_assignment_by_trying_all(seed: int, n: int) -> None:
     random = Random(seed)

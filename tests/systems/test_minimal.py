@@ -72,7 +72,7 @@ def transfer(entry: tuple[list[int], list[int]]) -> TransferFunction:
     return TransferFunction(highest_first(entry[0]) % denominator, denominator).reduced()
 
 
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(st.integers(1, 3).flatmap(lambda m: st.lists(st.lists(entries, min_size=m, max_size=m), min_size=1, max_size=3)))
 def test_shown_modes_have_the_order_of_the_smallest_realisation(
     drawn: list[list[tuple[list[int], list[int]]]],

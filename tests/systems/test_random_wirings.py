@@ -173,7 +173,7 @@ def minimal_order(space: StateSpace) -> int:
 # --- what must agree -------------------------------------------------------------------------------------
 
 
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=80, deadline=None)
 @given(seeds)
 def test_agrees_with_one_state_space_of_everything(seed: int) -> None:
     wiring, realised = proper_wiring(seed)
@@ -199,7 +199,7 @@ def test_agrees_with_one_state_space_of_everything(seed: int) -> None:
                     assert channel.transfer.numerator(s) / channel.modes(s) == closed.at(s)[i, j]
 
 
-@settings(max_examples=100, deadline=None)
+@settings(max_examples=60, deadline=None)
 @given(seeds)
 def test_open_loop_is_minus_injected_to_returned(seed: int) -> None:
     wiring, realised = proper_wiring(seed)
@@ -275,7 +275,7 @@ def matrix_at(wiring: Wiring, s: fmpq) -> tuple[fmpq_mat, fmpq_mat]:
     return left, right
 
 
-@settings(max_examples=150, deadline=None)
+@settings(max_examples=80, deadline=None)
 @given(seeds)
 def test_improper_blocks_agree_with_plain_solves(seed: int) -> None:
     wiring = improper_wiring(seed)

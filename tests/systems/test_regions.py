@@ -4,12 +4,13 @@ from __future__ import annotations
 
 import pytest
 from flint import fmpq, fmpq_poly
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from specgate.systems.polynomials import highest_first, product
 from specgate.systems.regions import compare_damping_ratio, compare_decay_rate, compare_natural_frequency
 
+few = settings(max_examples=50, deadline=None)
 TINY = fmpq(1, 10**40)
 
 
@@ -34,6 +35,7 @@ def sign(value: fmpq) -> int:
 pairs = st.lists(st.tuples(damping, frequency, st.integers(1, 2)), min_size=1, max_size=4)
 
 
+@few
 @given(pairs, frequency, st.integers(0, 2), damping)
 def test_least_damping(chosen: list[tuple[fmpq, fmpq, int]], real: fmpq, integrators: int, other: fmpq) -> None:
     p = product(pair(zeta, w) ** power for zeta, w, power in chosen) * highest_first([1, real])
@@ -43,6 +45,7 @@ def test_least_damping(chosen: list[tuple[fmpq, fmpq, int]], real: fmpq, integra
         assert compare_damping_ratio(p, limit) == sign(least - limit)
 
 
+@few
 @given(pairs, frequency, st.sampled_from([1, -1]), frequency)
 def test_least_natural_frequency_counts_no_real_root(
     chosen: list[tuple[fmpq, fmpq, int]], real: fmpq, side: int, other: fmpq
@@ -55,6 +58,7 @@ def test_least_natural_frequency_counts_no_real_root(
         assert compare_natural_frequency(p, limit) == sign(least - limit)
 
 
+@few
 @given(st.lists(st.tuples(rational("-9", "9"), rational("0", "9")), min_size=1, max_size=4), rational("-9", "9"))
 def test_least_decay(chosen: list[tuple[fmpq, fmpq]], other: fmpq) -> None:
     p = product(highest_first([1, 2 * a, a * a + b * b]) for a, b in chosen)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import mpmath
 import pytest
 from flint import acb, arb, fmpq, fmpq_poly
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from specgate.systems.polynomials import highest_first, product
@@ -13,6 +13,7 @@ from specgate.systems.roots import certified_roots
 from specgate.systems.stability import classify
 from specgate.terms.precision import working_precision
 
+few = settings(max_examples=50, deadline=None)
 rational = st.fractions(min_value=-100, max_value=100, max_denominator=50).map(
     lambda q: fmpq(q.numerator, q.denominator)
 )
@@ -23,6 +24,7 @@ def contains(ball: arb, value: fmpq) -> bool:
         return (ball * value.q - value.p).contains(0)
 
 
+@few
 @given(st.dictionaries(rational, st.integers(1, 4), min_size=1, max_size=6), st.sampled_from([64, 200, 700]))
 def test_rational_roots_with_their_multiplicities(known: dict[fmpq, int], bits: int) -> None:
     found = certified_roots(product(highest_first([1, -root]) ** power for root, power in known.items()), bits)
@@ -33,6 +35,7 @@ def test_rational_roots_with_their_multiplicities(known: dict[fmpq, int], bits: 
         assert root.value.real.rad() <= arb(2) ** -bits * (1 + abs(arb(value)))
 
 
+@few
 @given(
     st.lists(
         st.tuples(rational, rational.filter(bool)),
@@ -77,6 +80,7 @@ def test_index_of_roots_with_nearly_equal_real_parts(digits: int) -> None:
     assert orders == [orders[0]] * 3
 
 
+@few
 @given(st.lists(st.integers(-20, 20), min_size=3, max_size=8).filter(lambda c: c[0] != 0))
 def test_a_root_keeps_its_index_at_every_precision(coefficients: list[int]) -> None:
     p = highest_first(coefficients)
@@ -89,6 +93,7 @@ def test_a_root_keeps_its_index_at_every_precision(coefficients: list[int]) -> N
     assert sum(root.multiplicity for root in first if root.value.real > 0) == classify(p).right
 
 
+@few
 @given(st.lists(st.integers(-20, 20), min_size=3, max_size=8).filter(lambda c: c[0] != 0))
 def test_balls_of_different_roots_are_disjoint(coefficients: list[int]) -> None:
     found = certified_roots(highest_first(coefficients), 64)

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 import pytest
 from flint import fmpq, fmpq_mat, fmpq_poly
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from specgate.systems.polynomials import highest_first, product
 from specgate.systems.stability import RootCount, classify, count_positive_roots, count_real_roots, is_hurwitz
 
+few = settings(max_examples=50, deadline=None)
 positive = st.fractions(min_value="1/1000", max_value=1000, max_denominator=1000).map(
     lambda q: fmpq(q.numerator, q.denominator)
 )
@@ -36,6 +37,7 @@ factors = st.one_of(
 )
 
 
+@few
 @given(st.lists(st.tuples(factors, st.integers(1, 3)), min_size=1, max_size=6), positive)
 def test_counts_of_known_roots(chosen: list[tuple[Factor, int]], gain: fmpq) -> None:
     p = product(factor**power for (factor, _), power in chosen) * -gain
@@ -54,12 +56,14 @@ def hurwitz_minors_positive(p: fmpq_poly) -> bool:
     return all(fmpq_mat([row[:k] for row in rows[:k]]).det() > 0 for k in range(1, n + 1))
 
 
+@few
 @given(st.lists(st.integers(min_value=-2, max_value=30), min_size=2, max_size=8).filter(lambda c: c[0] != 0))
 def test_agrees_with_the_determinants_of_hurwitz(coefficients: list[int]) -> None:
     p = highest_first(coefficients)
     assert is_hurwitz(p) == hurwitz_minors_positive(p) == classify(p).stable
 
 
+@few
 @given(st.lists(whole, min_size=2, max_size=9).filter(lambda c: c[0] != 0))
 def test_mirroring_exchanges_left_and_right(coefficients: list[int]) -> None:
     p = highest_first(coefficients)
