@@ -14,8 +14,9 @@ from __future__ import annotations
 from flint import fmpq, fmpq_poly
 
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
-from specgate.approximations.conditions import at_least, relative_band, words
+from specgate.approximations.conditions import at_least, between, relative_band, words
 from specgate.approximations.crowding import Ranges, in_decay_rates, in_distances
+from specgate.approximations.dropped import zeros_amplitude
 from specgate.approximations.features import Features
 from specgate.approximations.figures import quotient, smallest
 from specgate.measures.measure import Arguments
@@ -67,11 +68,18 @@ def _by_decay_rate(features: Features, _: Arguments, threshold: fmpq | None) -> 
     return _in_units(features, features.sigma, threshold)
 
 
+def _amplitude(features: Features, _: Arguments, threshold: fmpq | None) -> Found:
+    value = zeros_amplitude(features)
+    if value is None or threshold is None:
+        return words("no zero, or no complex pair that decays", False)
+    return between(value, 1 / threshold, threshold)
+
+
 def _by_frequency(features: Features, _: Arguments, threshold: fmpq | None) -> Found:
     return _in_units(features, features.natural_frequency, threshold)
 
 
-_SETTLING_RANGES: Ranges = ((0, 0), (-412, 666), (-440, 830))
+_SETTLING_RANGES: Ranges = ((0, 0), (-412, 668), (-456, 862))
 _OVERSHOOT_RANGES: Ranges = ((0, 0), (-26, 11), (-51, 43))
 _PEAK_RANGES: Ranges = ((0, 0), (-61, 69), (-115, 148))
 _RISE_RANGES: Ranges = ((0, 0), (-45, 60), (-80, 120))
@@ -105,6 +113,16 @@ ROW = Approximation(
             required=">= {threshold}",
             find=_by_decay_rate,
             threshold=fmpq(5),
+            concerns=_SETTLING,
+        ),
+        Condition(
+            key="zeros_amplitude",
+            name="change of the amplitude of the pair's oscillation by the zeros",
+            source="derived",
+            required="by a factor of at most {threshold} more or less",
+            find=_amplitude,
+            threshold=fmpq(11, 5),
+            tighter="smaller",
             concerns=_SETTLING,
         ),
         Condition(

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from math import prod
 
 from flint import arb, fmpq
 
@@ -51,6 +52,40 @@ def pair_amplitude(features: Features) -> Answer | None:
     return Answer.of_ball(refine)
 
 
+def ringing(features: Features) -> Answer | None:
+    """Return a bound of all dropped oscillating modes together at any time, in parts of the change.
+
+    A mode e^(-s t)(a cos w t + b sin w t) stays below |a| + |b| sin f e^(-f/tan f), f = atan(w/s), where its sine term
+    is greatest: a pair that is as good as real does not ring.
+    """
+    pair = _simple_pair(features)
+    if pair is None:
+        return None
+
+    def refine(bits: int) -> arb:
+        expansion = _expansion(features, bits)
+        place = pair.at(bits)
+        with working_precision(expansion.bits):
+            dropped = [mode for mode in expansion.modes if mode.oscillates and not mode.pole.overlaps(place)]
+            return sum((_crest(mode) for mode in dropped), arb(0)) / abs(arb(expansion.offset))
+
+    return Answer.of_ball(refine)
+
+
+def zeros_amplitude(features: Features) -> Answer | None:
+    """Return the factor by which the zeros change the amplitude of the pair's oscillation: product of |1 - p/z|."""
+    pair = _simple_pair(features)
+    if pair is None:
+        return None
+
+    def refine(bits: int) -> arb:
+        place, zeros = pair.at(bits), [zero.at(bits) for zero in features.zeros]
+        with working_precision(bits):
+            return prod((abs(1 - place / zero) for zero in zeros), start=arb(1))
+
+    return Answer.of_ball(refine)
+
+
 def _left(
     features: Features, pair: Spot, instant: Callable[[arb, arb], arb], yardstick: Callable[[arb, arb], arb]
 ) -> Answer:
@@ -88,3 +123,14 @@ def _envelope(mode: Mode, time: arb) -> arb:
     """Return the bound of a mode at a time."""
     powers = [abs(coefficient) * time**j for j, coefficient in enumerate(mode.coefficients)]
     return sum(powers, arb(0)) * (mode.pole.real * time).exp()
+
+
+def _crest(mode: Mode) -> arb:
+    """Return a bound of a decaying oscillating mode at any time."""
+    decay, omega = -mode.pole.real, mode.pole.imag
+    angle = (omega / decay).atan()
+    first, *higher = mode.coefficients
+    crest = abs(first.real) + abs(first.imag) * angle.sin() * (-angle / angle.tan()).exp()
+    for power, coefficient in enumerate(higher, start=1):
+        crest += abs(coefficient) * (power / (arb(1).exp() * decay)) ** power
+    return crest

@@ -18,7 +18,7 @@ from specgate.response.answers import Answer
 
 _ROUND = {fmpq(1, 50): fmpq(4), fmpq(1, 20): fmpq(3), fmpq(1, 100): fmpq(23, 5)}
 _ACCURACY = {
-    fmpq(1, 50): Accuracy(fmpq(2249, 100000), fmpq(225, 10000), "+2.25 %: 4 stands for ln 50"),
+    fmpq(1, 50): Accuracy(fmpq(2248, 100000), fmpq(2249, 100000), "+2.25 %: 4 stands for ln 50"),
     fmpq(1, 20): Accuracy(fmpq(142, 100000), fmpq(143, 100000), "+0.14 %: 3 stands for ln 20"),
     fmpq(1, 100): Accuracy(fmpq(-113, 100000), fmpq(-112, 100000), "-0.11 %: 4.6 stands for ln 100"),
 }

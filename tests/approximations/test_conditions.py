@@ -120,6 +120,26 @@ def test_far_poles_that_ring_together(build: Any) -> None:
     assert "dropped_at_peak" not in broken("second_order_overshoot", build.pair("0.2", [("-0.2", 25)]), OVERSHOOT)
 
 
+def test_ringing_that_has_died_away_at_the_peak_still_counts(build: Any) -> None:
+    """Zeros make a fast, well damped cluster start with a burst larger than the change."""
+    burst = build.pair("0.2", [(-50, 5000), (-50, 5010)], [("-3", 6)])
+    found = audited("second_order_overshoot", burst, OVERSHOOT)
+    assert found["dropped_at_peak"].holds is Trilean.YES
+    assert found["ringing"].holds is Trilean.NO
+    assert number(found["ringing"]) > 1
+
+
+def test_a_pair_that_is_as_good_as_real_does_not_ring(build: Any) -> None:
+    assert not broken("second_order_overshoot", build.pair("0.3", [(-11, "0.01")]), OVERSHOOT)
+
+
+def test_three_zeros_and_no_pole_near_make_a_spike(build: Any) -> None:
+    spike = build.pair("0.4", [-1000], [-8, -8, -8])
+    assert broken("second_order_overshoot", spike, OVERSHOOT) == {"excess_of_zeros"}
+    assert spike.subject.response.greatest().value.enclose(64) > 1.9
+    assert "excess_of_zeros" not in broken("second_order_overshoot", build.pair("0.4", [-7], [-8, -8, -9]), OVERSHOOT)
+
+
 def test_a_repeated_pair_does_not_dominate_itself(build: Any) -> None:
     twice = build.roots([(-1, 2), (-1, 2)])
     assert "separation" in broken("second_order_settling", twice, TWO)
