@@ -1,7 +1,10 @@
 from __future__ import annotations
 
 import importlib.util
+import os
+import shutil
 import sys
+from collections.abc import Callable
 from pathlib import Path
 from types import ModuleType
 
@@ -19,3 +22,44 @@ def sample() -> ModuleType:
     sys.modules[name] = module
     spec.loader.exec_module(module)
     return module
+
+
+@pytest.fixture(scope="session")
+def tool() -> Callable[[str], str]:
+    """Return the path of a program of the machine; without it a test is skipped, but not where CI is set."""
+
+    def find(name: str) -> str:
+        path = shutil.which(name)
+        if path is None:
+            message = f"{name} is not on this machine (apt-get install poppler-utils qpdf)"
+            if os.environ.get("CI"):
+                pytest.fail(message)
+            pytest.skip(message)
+        return path
+
+    return find
+
+
+ATTACHMENTS = {"specgate.yaml": b"specgate: 1\n", "subsystems/air.yaml": b"subsystems: {}\n", "results.json": b"{}\n"}
+
+
+@pytest.fixture(scope="session")
+def attached() -> dict[str, bytes]:
+    """Files that go into the sample's PDF."""
+    return dict(ATTACHMENTS)
+
+
+@pytest.fixture(scope="session")
+def sample_pdf(sample: ModuleType, attached: dict[str, bytes]) -> bytes:
+    """The sample as a PDF."""
+    from specgate.report import pdf
+
+    return pdf.render(sample.review(), attached)
+
+
+@pytest.fixture(scope="session")
+def sample_html(sample: ModuleType) -> str:
+    """The sample as an HTML document."""
+    from specgate.report import html
+
+    return html.render(sample.review())

@@ -849,6 +849,21 @@ def review(requirements: Mapping[str, r.RequirementReview] | None = None, **chan
     return r.Review(**(fields | changes))
 
 
+def small() -> r.Review:
+    """Return the sample with one loop and what is asked of it."""
+    whole = review()
+    kept = ("BD-NEED-1", "BD-SYS-11", "BD-SYS-14", "BD-SYS-19")
+    return review(
+        requirements={name: whole.requirements[name] for name in kept},
+        loops={"duct_pressure": whole.loops["duct_pressure"]},
+    )
+
+
+def bare() -> r.Review:
+    """Return a review of next to nothing."""
+    return review(requirements={}, loops={}, findings=(), definitions={})
+
+
 def unusable() -> r.Unusable:
     """Return the result of a project that could not be built."""
     return r.Unusable(
