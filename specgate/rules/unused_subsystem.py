@@ -1,6 +1,7 @@
 """A subsystem is in no loop: no verdict says anything about it.
 
-Put it right by wiring it into a loop, or by taking it out of the specification.
+A block that stands beside the loops looks covered to a reader and is not. Put it right by wiring it into a loop, or
+by taking it out of the specification.
 """
 
 from __future__ import annotations
