@@ -21,7 +21,7 @@ def rewritten(text: str) -> str:
     """Return the text of the schema with its lists made anew."""
     schema = json.loads(text)
     schema["$defs"]["measure"] = _measure()
-    schema["$defs"]["measure_arguments"] = {"allOf": [*_subjects(), *_arguments()]}
+    schema["$defs"]["measure_arguments"] = _measure_arguments()
     schema["$defs"]["approximation"] = _approximation()
     schema["$defs"]["unit"]["examples"] = sorted(UnitTable.standard().units)
     return json.dumps(schema, indent=2, ensure_ascii=False) + "\n"
@@ -47,19 +47,11 @@ def _approximation() -> dict[str, Any]:
     }
 
 
-def _subjects() -> list[dict[str, Any]]:
-    """Which measures are read on what the criterion is about."""
-    rows = []
-    for kind, words in _SUBJECTS.items():
-        fitting = [name for name, row in MEASURES.items() if kind in row.subjects]
-        say = f"`{{found}}` is not read on {words}: `specgate explain {{found}}` tells where it is"
-        then = {"properties": {"measure": {"enum": fitting, "x-say": say}}}
-        rows.append({"if": {"required": [kind]}, "then": then})
-    return rows
+def _measure_arguments() -> dict[str, Any]:
+    """Which measures are read on what a criterion is about, and which arguments each takes and needs.
 
-
-def _arguments() -> list[dict[str, Any]]:
-    """Which arguments a measure takes, and which it needs."""
+    `dependentSchemas` is only looked at for keys that are there, which makes it quick.
+    """
     taking: dict[str, list[str]] = {}
     needing: dict[str, list[str]] = {}
     for name, row in MEASURES.items():
@@ -67,19 +59,31 @@ def _arguments() -> list[dict[str, Any]]:
             taking.setdefault(argument.name, []).append(name)
             if argument.required:
                 needing.setdefault(argument.name, []).append(name)
-    refused = [{"if": _measure_in(names), "else": _refused(key, names)} for key, names in taking.items()]
-    needed = [{"if": _measure_in(names), "then": _needed(key, names)} for key, names in needing.items()]
-    return refused + needed
+    fitting = {kind: [name for name, row in MEASURES.items() if kind in row.subjects] for kind in _SUBJECTS}
+    subjects = {kind: _measure_among(names, _not_read_on(_SUBJECTS[kind])) for kind, names in fitting.items()}
+    arguments = {key: _measure_among(names, _belongs(key, names), key) for key, names in taking.items()}
+    return {
+        "dependentSchemas": {**subjects, **arguments},
+        "allOf": [{"if": _measure_in(names), "then": _needed(key, names)} for key, names in needing.items()],
+    }
+
+
+def _measure_among(names: list[str], say: str, key: str = "measure") -> dict[str, Any]:
+    """Return what `measure` may be; where it is not, `say` is said at `key`."""
+    return {"properties": {"measure": {"enum": names, "x-say": say, "x-key": key}}}
+
+
+def _not_read_on(subject: str) -> str:
+    return f"`{{found}}` is not read on {subject}: `specgate explain {{found}}` tells where it is"
+
+
+def _belongs(key: str, names: list[str]) -> str:
+    return f"`{key}` does not belong to `{{found}}`: it is an argument of {_listed(names)}"
 
 
 def _needed(key: str, names: list[str]) -> dict[str, Any]:
     verb = "needs" if len(names) == 1 else "need"
     return {"required": [key], "x-say": f"`{{missing}}` is missing: {_listed(names)} {verb} it"}
-
-
-def _refused(key: str, names: list[str]) -> dict[str, Any]:
-    say = f"`{key}` does not belong to this measure: it is an argument of {_listed(names)}"
-    return {"propertyNames": {"not": {"const": key}, "x-say": say}}
 
 
 def _measure_in(names: list[str]) -> dict[str, Any]:

@@ -1,4 +1,8 @@
-"""The shape of a file: checked against the JSON Schema, which is the only statement of it."""
+"""The shape of a file: checked against the JSON Schema, which is the only statement of it.
+
+Keywords of our own in the schema, which editors pass over: `x-wanted` (what is wanted, in words), `x-say` (the whole
+message; `{found}` and `{missing}` are filled in), `x-key` (the key at which it is said), `x-rule` (its slug).
+"""
 
 from __future__ import annotations
 
@@ -36,8 +40,25 @@ def _validator(part: str | None) -> Validator:
     from jsonschema import Draft202012Validator, FormatChecker
 
     whole = schema()
-    wanted = whole if part is None else {"$ref": f"#/$defs/{part}", "$defs": whole["$defs"]}
-    return Draft202012Validator(wanted, format_checker=FormatChecker(["date"]))
+    wanted = whole if part is None else whole["$defs"][part]
+    return Draft202012Validator(_written_out(wanted, whole["$defs"], {}), format_checker=FormatChecker(["date"]))
+
+
+def _written_out(node: Any, definitions: Mapping[str, Any], known: dict[str, Any]) -> Any:
+    """Return a schema with what its `$ref`s lead to in their place: looking them up is a third of the work."""
+    if isinstance(node, list):
+        return [_written_out(item, definitions, known) for item in node]
+    if not isinstance(node, dict):
+        return node
+    beside = {
+        key: _written_out(value, definitions, known) for key, value in node.items() if key not in ("$ref", "$defs")
+    }
+    if "$ref" not in node:
+        return beside
+    name = node["$ref"].removeprefix("#/$defs/")
+    if name not in known:
+        known[name] = _written_out(definitions[name], definitions, known)
+    return {**known[name], **beside}
 
 
 def check(root: Node, collector: Collector, part: str | None = None) -> None:
@@ -51,7 +72,7 @@ def check(root: Node, collector: Collector, part: str | None = None) -> None:
 
 def _misshape(root: Node, error: ValidationError, near: Nearest) -> Misshape:
     path = tuple(error.absolute_path)
-    node, key = _locate(root, path)
+    node, key, around = _locate(root, path)
     passed = set(error.absolute_schema_path)
     return Misshape(
         keyword=str(error.validator),
@@ -61,22 +82,25 @@ def _misshape(root: Node, error: ValidationError, near: Nearest) -> Misshape:
         path=path,
         node=node,
         key=key,
-        conditional=not passed.isdisjoint({"then", "else"}),
+        around=around,
+        conditional=not passed.isdisjoint({"then", "else", "dependentSchemas"}),
         of_name="propertyNames" in passed,
         nearest=near,
     )
 
 
-def _locate(root: Node, path: Path) -> tuple[Node | None, Text | None]:
-    """Return the node at a path and its key; the node is None where something on the way was not readable."""
+def _locate(root: Node, path: Path) -> tuple[Node | None, Text | None, Node | None]:
+    """Return the node at a path, its key and what holds it; the node is None where something was not readable."""
     node, key = root, None
+    around: Node | None = None
     for step in path:
+        around = node
         if isinstance(node, Table) and isinstance(step, str):
             entry = node.entries[step]
             node, key = entry.value, entry.key
         elif isinstance(node, Items) and isinstance(step, int):
             node, key = node.nodes[step], None
-    return (None if isinstance(node, Broken) else node), key
+    return (None if isinstance(node, Broken) else node), key, around
 
 
 def _telling(errors: list[Misshape]) -> Iterable[Misshape]:

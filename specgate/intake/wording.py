@@ -35,8 +35,8 @@ class Misshape:
 
     keyword: what of the schema is violated; wanted: the value of that keyword; schema: what surrounds it.
     found: the plain value (the name itself where `of_name`, for a name of a key that is not allowed).
-    node: what stands there, None where it could not be read; key: the key before it.
-    conditional: whether this holds only because of something else (`then`, `else`).
+    node: what stands there, None where it could not be read; key: the key before it; around: what holds both.
+    conditional: whether this holds only because of something else (`then`, `else`, `dependentSchemas`).
     """
 
     keyword: str
@@ -46,6 +46,7 @@ class Misshape:
     path: Path
     node: Node | None
     key: Text | None
+    around: Node | None
     conditional: bool
     of_name: bool
     nearest: Nearest
@@ -94,7 +95,16 @@ def worded(error: Misshape) -> Iterator[Said]:
         yield rule, _name(error), node.entries[str(error.found)].key.spot
     else:
         speak = _WORDS.get(error.keyword, _other)
-        yield rule, speak(error, node), key.spot if error.keyword in _ABOUT_KEYS and key is not None else node.spot
+        yield rule, speak(error, node), _spot(error, node)
+
+
+def _spot(error: Misshape, node: Node) -> Spot:
+    """Return where an error is said: at the key that it is about, or at the value."""
+    named = error.schema.get("x-key")
+    if named is not None and isinstance(error.around, Table) and named in error.around.entries:
+        key = error.around.entries[named].key
+        return key.spot if named != str(error.path[-1]) else node.spot
+    return error.key.spot if error.keyword in _ABOUT_KEYS and error.key is not None else node.spot
 
 
 def _unexpected(name: str, error: Misshape, table: Table) -> str:
