@@ -12,6 +12,8 @@ from specgate.terms.precision import series_terms, working_precision
 
 _BITS = 128
 _LONGEST, _SHORTEST = 4, -400
+_SLOWEST = 2.0**-20
+"""Least rho: zero, for poles that all lie at the origin, would bound nothing."""
 
 
 @dataclass(frozen=True)
@@ -68,7 +70,7 @@ def _growth(denominator: fmpq_poly) -> float:
     """Return rho, rounded up."""
     order, lead = denominator.degree(), denominator.leading_coefficient()
     rates = [2 * abs(arb(denominator[order - i] / lead)).root(i) for i in range(1, order + 1)]
-    return max(at_most(rate) for rate in rates)
+    return max(_SLOWEST, *(at_most(rate) for rate in rates))
 
 
 def _remainder(time: float, first: int, ratios: list[float], tail: float, rate: float) -> float:
