@@ -3,7 +3,8 @@
 Tolerable where the zeros are far from the dominant pair: five decay rates away for the settling time, five natural
 frequencies for overshoot, peak time and rise time. A zero to the left quickens the response and raises the overshoot,
 so that dropping it is unsafe there: three decay rates away it adds 27 points of overshoot to a pair of damping ratio
-0.3, five away 10 points. A zero at the origin can never be dropped: the response then returns to where it was.
+0.3, five away 10 points. A zero at the origin can never be dropped: the response then returns to where it was. Zeros
+beside other complex poles may be there to quieten them, and are not dropped for the shape of a response.
 
 The formula's value is that of the same response without the zeros, computed and proved. Where the response is a pair
 and one zero, no approximation is needed: keep the zero and use the computed value.
@@ -64,6 +65,11 @@ def _in_units(features: Features, yardstick: Answer | None, threshold: fmpq | No
     return at_least(quotient(smallest([zero.distance for zero in features.zeros]), yardstick), threshold)
 
 
+def _others_real(features: Features, _: Arguments, __: fmpq | None) -> Found:
+    oscillating = sum(pole.oscillates for pole in features.others)
+    return words(f"{oscillating} are not" if oscillating else "all are", oscillating == 0)
+
+
 def _by_decay_rate(features: Features, _: Arguments, threshold: fmpq | None) -> Found:
     return _in_units(features, features.sigma, threshold)
 
@@ -80,9 +86,9 @@ def _by_frequency(features: Features, _: Arguments, threshold: fmpq | None) -> F
 
 
 _SETTLING_RANGES: Ranges = ((0, 0), (-412, 668), (-456, 862))
-_OVERSHOOT_RANGES: Ranges = ((0, 0), (-26, 11), (-51, 43))
-_PEAK_RANGES: Ranges = ((0, 0), (-61, 69), (-115, 148))
-_RISE_RANGES: Ranges = ((0, 0), (-45, 60), (-80, 120))
+_OVERSHOOT_RANGES: Ranges = ((0, 0), (-27, 11), (-52, 43))
+_PEAK_RANGES: Ranges = ((0, 0), (-61, 70), (-114, 149))
+_RISE_RANGES: Ranges = ((0, 0), (-20, 38), (-82, 75))
 _OF_SHAPE = {"overshoot": _OVERSHOOT_RANGES, "peak_time": _PEAK_RANGES, "rise_time": _RISE_RANGES}
 
 
@@ -132,6 +138,14 @@ ROW = Approximation(
             required=">= {threshold}",
             find=_by_frequency,
             threshold=fmpq(5),
+            concerns=_SHAPE,
+        ),
+        Condition(
+            key="other_poles",
+            name="poles beside the pair are real",
+            source="derived",
+            required="all real",
+            find=_others_real,
             concerns=_SHAPE,
         ),
     ),

@@ -136,9 +136,9 @@ def _measure(arguments: Arguments) -> str:
 
 
 _SETTLING_RANGES: Ranges = ((0, 0), (-412, 668), (-456, 862))
-_OVERSHOOT_RANGES: Ranges = ((0, 0), (-27, 28), (-76, 54))
-_PEAK_RANGES: Ranges = ((0, 0), (-62, 72), (-118, 165))
-_RISE_RANGES: Ranges = ((0, 0), (-35, 38), (-80, 120))
+_OVERSHOOT_RANGES: Ranges = ((0, 0), (-27, 28), (-80, 54))
+_PEAK_RANGES: Ranges = ((0, 0), (-62, 72), (-120, 168))
+_RISE_RANGES: Ranges = ((0, 0), (-35, 38), (-166, 166))
 
 
 def _accuracy(features: Features, arguments: Arguments) -> Accuracy | None:

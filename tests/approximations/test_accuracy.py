@@ -208,28 +208,47 @@ def test_settling_without_the_dropped_part(sweep: Sweep, name: str) -> None:
 
 # --- shape of a dominant pair ---
 
-NEAR = (("0.2", ["-5"], []), ("0.2", [], ["-5"]), ("0.9", ["-5"], []), ("0.9", [], ["-5"]))
-NEAR_LIGHT = (("0.05", ["-5"], []), ("0.05", [], ["-5"]))
+NEAR: tuple[Extreme, ...] = (
+    ("0.2", ["-5"], []),
+    ("0.2", [], ["-5"]),
+    ("0.9", ["-5"], []),
+    ("0.9", [], ["-5"]),
+    ("0.05", ["-5"], []),
+    ("0.05", [], ["-5"]),
+    ("0.05", [], ["5"]),
+    ("0.18", [], [("-0.18", "10")]),
+    ("0.051", [], [("-0.07", "10")]),
+)
 CROWDED: tuple[Extreme, ...] = (
     ("0.2", ["-5", "-5.001"], []),
-    ("0.2", [], [("-5.5", "0.1")]),
+    ("0.2", [], [("-5.01", "0.001")]),
     ("0.9", ["-5", "-5.001"], []),
-    ("0.6", [("-2.15", "184.87"), ("-2.15", "185.8")], [("-5.238", "0.979")]),
+    ("0.9", [], ["-5", "-5.001"]),
+    ("0.86", [], [("-0.862", "4.926")]),
+    ("0.05", [], ["5", "5.001"]),
+    ("0.0503", [], [("-0.015", "5.001")]),
+    ("0.051", [], [("-5.001", "0.008")]),
+    ("0.05", [("-0.285", "4.993")], []),
+    ("0.9", [("-1", "482")], [("-5.1", "0.001")]),
+    ("0.06", [("-0.667", "157.1")], [("-0.127", "5.2")]),
 )
 RANGES: Mapping[tuple[str, str], tuple[Key, ...]] = {
-    ("second_order_overshoot", "overshoot"): (thousandths(-27, 28), thousandths(-76, 54)),
-    ("second_order_peak_time", "peak_time"): (thousandths(-62, 72), thousandths(-118, 165)),
-    ("dominant_pair", "overshoot"): (thousandths(-27, 28), thousandths(-76, 54)),
-    ("dominant_pair", "peak_time"): (thousandths(-62, 72), thousandths(-118, 165)),
-    ("dominant_pair", "rise_time"): (thousandths(-35, 38), thousandths(-80, 120)),
+    ("second_order_overshoot", "overshoot"): (thousandths(-27, 28), thousandths(-80, 54)),
+    ("second_order_peak_time", "peak_time"): (thousandths(-62, 72), thousandths(-120, 168)),
+    ("dominant_pair", "overshoot"): (thousandths(-27, 28), thousandths(-80, 54)),
+    ("dominant_pair", "peak_time"): (thousandths(-62, 72), thousandths(-120, 168)),
+    ("dominant_pair", "rise_time"): (thousandths(-35, 38), thousandths(-166, 166)),
+    ("distant_zero", "overshoot"): (thousandths(-27, 11), thousandths(-52, 43)),
+    ("distant_zero", "peak_time"): (thousandths(-61, 70), thousandths(-114, 149)),
+    ("distant_zero", "rise_time"): (thousandths(-20, 38), thousandths(-82, 75)),
 }
 
 
 @pytest.mark.parametrize(("name", "measure"), RANGES)
 def test_shape_of_a_dominant_pair(sweep: Sweep, name: str, measure: str) -> None:
-    extremes = [sweep.named(*system) for system in (*NEAR, *NEAR_LIGHT, *CROWDED)]
+    extremes = [sweep.named(*system) for system in (*NEAR, *CROWDED)]
     found = errors(APPROXIMATIONS[name], SHAPE[measure], sweep.for_shape + extremes)
-    assert set(found) == {(fmpq(0), fmpq(0)), *RANGES[name, measure]}
+    assert set(found) - {(fmpq(0), fmpq(0))} == set(RANGES[name, measure])
     for stated in RANGES[name, measure]:
         reached(found, stated)
 
