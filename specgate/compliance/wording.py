@@ -42,7 +42,10 @@ def _value(answer: Answer, scale: fmpq | None) -> float | str:
         return "without limit" if answer.absent.infinite else f"not there ({answer.absent.reason})"
     if answer.truth is not None:
         return "yes" if answer.truth else "no"
-    return (printed_exact(answer.exact) if answer.exact is not None else printed(answer.enclose, scale)).value
+    try:
+        return (printed_exact(answer.exact) if answer.exact is not None else printed(answer.enclose, scale)).value
+    except OverflowError as problem:
+        return str(problem)
 
 
 def limit_words(limit: Limit) -> str:

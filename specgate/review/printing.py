@@ -69,13 +69,19 @@ def amount_of(answer: Answer, unit: Unit, scale: fmpq | None = None) -> Amount |
     """Print an answer in coherent SI as an amount in `unit`; None where it has no value."""
     if answer.absent is not None or answer.truth is not None:
         return None
-    form = _form(Reading.once(answer).in_unit(unit), scale)
+    try:
+        form = _form(Reading.once(answer).in_unit(unit), scale)
+    except OverflowError:
+        return None
     return Amount(form.value, unit.symbol, form.exact)
 
 
-def plain_number(answer: Answer, scale: fmpq | None = None) -> float:
-    """Print an answer that has a value, in the unit in which it is."""
-    return _form(answer, scale).value
+def plain_number(answer: Answer, scale: fmpq | None = None) -> float | None:
+    """Print an answer that has a value, in the unit in which it is; None where it is too large for that."""
+    try:
+        return _form(answer, scale).value
+    except OverflowError:
+        return None
 
 
 def result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Reading | None = None) -> Result:
@@ -90,8 +96,10 @@ def result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Read
         return Result(answer.truth, proof=answer.proof.value)
     if unit is None:
         return _counted(answer)
-    stated = reading.in_unit(unit)
-    form = _form(stated, scale)
+    try:
+        form = _form(reading.in_unit(unit), scale)
+    except OverflowError as problem:
+        return Result(None, reason=str(problem))
     signed = None if beside is None or beside.settled.absent is not None else _form(beside.in_unit(unit), scale).value
     return Result(
         form.value,

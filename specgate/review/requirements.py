@@ -160,7 +160,6 @@ def _reserve(assessed: CriterionAssessment) -> ReserveReview | None:
 
 def _basis(audit: Audit) -> BasisReview:
     unit = audit.unit or ONE
-    implied = audit.implied
     return BasisReview(
         kind=audit.kind,
         standing=audit.standing.value,
@@ -172,9 +171,7 @@ def _basis(audit: Audit) -> BasisReview:
         formula_text=audit.formula_text,
         error=None if audit.error is None else _error(audit.error, unit),
         claim_agrees=audit.agrees,
-        implied=None
-        if implied is None
-        else {key: plain_number(Reading.once(end).in_unit(unit)) for key, end in zip(_ENDS, implied, strict=True)},
+        implied=_implied(audit, unit),
         accuracy=audit.accuracy,
         conditions=tuple(_condition(one) for one in audit.conditions),
         instead=_instead(audit, unit),
@@ -182,7 +179,11 @@ def _basis(audit: Audit) -> BasisReview:
     )
 
 
-_ENDS = ("lower", "upper")
+def _implied(audit: Audit, unit: Unit) -> Mapping[str, float] | None:
+    if audit.implied is None:
+        return None
+    low, high = (plain_number(Reading.once(end).in_unit(unit)) for end in audit.implied)
+    return None if low is None or high is None else {"lower": low, "upper": high}
 
 
 def _error(error: FormulaError, unit: Unit) -> ErrorReview:

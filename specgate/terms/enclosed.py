@@ -34,6 +34,8 @@ _NOTHING = fmpq(1, 10**12)
 _NOISE = 1e-12
 """The same for numbers of few digits."""
 
+_GREATEST = fmpq(int(sys.float_info.max))
+
 _TINY = fmpq(1, 2**4000)
 """Far below the smallest float: rationals need no more digits than this."""
 
@@ -62,11 +64,19 @@ class Enclosed:
 
 
 def ends(ball: arb) -> tuple[fmpq, fmpq]:
-    """Return the exact lower and upper end of a finite ball; what is below every printable number ends at _TINY."""
-    if ball.abs_upper() < arb(_TINY):
-        return -_TINY, _TINY
-    middle, radius = _rational(ball.mid()), _rational(ball.rad())
-    return middle - radius, middle + radius
+    """Return the lower and upper end of a ball; a middle or radius below _TINY counts as _TINY of radius.
+
+    Raises OverflowError for a ball beyond the numbers that can be printed.
+    """
+    if not ball.is_finite() or ball.abs_upper() > arb(1 / _TINY):
+        raise OverflowError("this number is too large to be printed")
+    middle, radius = ball.mid(), ball.rad()
+    doubt = fmpq(0) if radius == 0 else _TINY if radius < arb(_TINY) else _rational(radius)
+    if middle == 0:
+        return -doubt, doubt
+    if abs(middle) < arb(_TINY):
+        return -doubt - _TINY, doubt + _TINY
+    return _rational(middle) - doubt, _rational(middle) + doubt
 
 
 def in_unit(refine: Refine, unit: Unit) -> Refine:
@@ -96,6 +106,7 @@ def printed(refine: Refine, scale: fmpq | None = None) -> Enclosed:
 
     scale: what a number is small against (the change of a response, same unit); without it only the relative
     width counts. Where the ball cannot be refined further, the bounds are those of the widest digits known.
+    Raises OverflowError for a number beyond the range of floats.
     """
     nothing = None if scale is None else abs(scale) * _NOTHING
     low = high = fmpq(0)
@@ -105,6 +116,8 @@ def printed(refine: Refine, scale: fmpq | None = None) -> Enclosed:
             return _nearly_zero(low, high, nothing)
         if _fine(low, high) and rounded(low) == rounded(high) and rounded(low, "down") == rounded(high, "down"):
             break
+    if min(abs(low), abs(high)) > _GREATEST:
+        raise OverflowError("this number is too large to be printed")
     return _settled(low, high)
 
 

@@ -134,6 +134,20 @@ def test_units(unit: str, value: arb, expected: float) -> None:
     assert printed(in_unit(lambda bits: value, UNITS.parse(unit))).value == pytest.approx(expected, rel=1e-11)
 
 
+def test_what_is_too_large_to_print_says_so() -> None:
+    for exponent in (500, 10**7):
+        with pytest.raises(OverflowError, match="too large to be printed"):
+            printed(known(lambda exponent=exponent: arb(exponent).exp() ** 3))  # type: ignore[misc]
+
+
+def test_a_middle_or_radius_far_below_every_float_prints() -> None:
+    tiny = (arb(-(10**9))).exp()
+    assert printed(lambda bits: tiny).value == 0.0
+    assert printed(lambda bits: arb(2) + arb(0, 1) * tiny).value == 2.0
+    low, high = ends(arb(2) + arb(0, 1) * tiny)
+    assert low < 2 < high
+
+
 def test_out_of_the_range_of_floats() -> None:
     assert to_float(fmpq(10) ** 400) == 1.7976931348623157e308
     assert to_float(-(fmpq(10) ** 400)) == -1.7976931348623157e308
