@@ -21,7 +21,7 @@ CHUNK = 512
 FAR = 2.0**17
 """|p| t beyond which modes are written about the start of the chunk, or their phase would lose its digits."""
 
-_MOST = 2.0**60
+_MOST = 2.0**900
 _AT_ONCE = 32
 
 
@@ -60,7 +60,8 @@ class FloatLayout:
 
     def _further_counts(self, number: int) -> list[int]:
         left = self._first * 2.0 ** np.arange(number, number + _AT_ONCE, dtype=np.float64)
-        fourth = self._deviation.table.bounds(left, 2.0 * left)[:, 2]
+        with np.errstate(over="ignore"):  # a growing mode: without bound is a bound, and clipped below
+            fourth = self._deviation.table.bounds(left, 2.0 * left)[:, 2]
         wanted = np.clip(left * (fourth / 384.0 / self._resolution) ** 0.25, 1.0, _MOST)
         return [1 << int(power) for power in np.ceil(np.log2(wanted))]
 
@@ -77,7 +78,7 @@ class _Octaves:
     def end(self) -> float:
         return 2.0 * self.octaves[-1][0]
 
-    def index(self, time: float) -> int:
+    def index(self, time: fmpq) -> int:
         return 0
 
     def cells(self, index: int) -> Cells:
@@ -102,8 +103,9 @@ class _Octave:
     def chunks(self) -> int:
         return max(1, self.count // CHUNK)
 
-    def index(self, time: float) -> int:
-        return min(self.chunks - 1, max(0, int((time - self.left) / self.left * self.chunks)))
+    def index(self, time: fmpq) -> int:
+        number = ((time / exact(self.left) - 1) * self.chunks).floor()
+        return min(self.chunks - 1, max(0, int(number)))
 
     def cells(self, index: int) -> Cells:
         width = self.left / self.count
