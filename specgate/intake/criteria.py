@@ -10,7 +10,7 @@ from flint import fmpq
 
 from specgate.approximations.table import APPROXIMATIONS
 from specgate.intake.context import Context, items, table, text, texts
-from specgate.intake.nodes import Node, Spot, Table, Text, Truth, as_kept
+from specgate.intake.nodes import Node, Number, Spot, Table, Text, Truth, as_kept
 from specgate.intake.values import Reader, complete
 from specgate.measures.table import MEASURES
 from specgate.project.percent import relative_to_change
@@ -86,7 +86,9 @@ def _subject(node: Table, context: Context) -> Subject | None:
 
 
 def _part_of_loop(kind: Literal["response", "break"], node: Text, context: Context) -> Subject | None:
-    loop, _, name = node.value.strip().partition(".")
+    loop, dot, name = node.value.strip().partition(".")
+    if not dot:
+        return None  # the schema wants `loop.name`
     names = context.loops.get(loop)
     if names is None:
         context.unknown("loop", loop, context.loops, node.spot.place)
@@ -114,8 +116,8 @@ def _limit(node: Table, place: Spot, reader: Reader) -> Limit | None:
         if entry is None:
             continue
         where = entry.key.spot.place
-        if kind == "equals" and isinstance(entry.value, Truth):
-            return Limit("equals", (), where, truth=entry.value.value)
+        if kind == "equals" and not isinstance(entry.value, Number):
+            return Limit("equals", (), where, truth=entry.value.value) if isinstance(entry.value, Truth) else None
         values = complete([reader.value(part) for part in _limit_nodes(kind, node, entry.value)])
         return Limit(kind, values, where) if values else None
     return None

@@ -76,7 +76,9 @@ class _Loop:
                 yield key.value, LoopInput(key.value, unit, key.spot.place)
 
     def signals(self) -> Iterator[tuple[str, Signal]]:
-        for key, value in entries(self.node.get("signals")):
+        # where the inputs cannot be read, to call a name unknown would mislead
+        known = table(self.node.get("inputs")) is not None
+        for key, value in entries(self.node.get("signals")) if known else ():
             if not isinstance(value, Text):
                 continue
             expression = signal_expression(value, self.names, self.context)

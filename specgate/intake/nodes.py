@@ -166,7 +166,8 @@ def shown(node: Node | None, longest: int = 40) -> str:
         case Truth(value=value):
             return "true" if value else "false"
         case Items(nodes=nodes):
-            return f"a list of {len(nodes)} entries" if len(nodes) > 1 else f"a list of {len(nodes) or 'no'} entry"
+            entries = "1 entry" if len(nodes) == 1 else f"{len(nodes)} entries"
+            return f"a list of {entries}" if nodes else "an empty list"
         case Table(entries=entries):
             return "a table with keys" if entries else "an empty table"
         case _:

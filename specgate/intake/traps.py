@@ -11,6 +11,7 @@ _UNDERSCORES = re.compile(r"[+-]?[0-9]+(_[0-9]+)+(\.[0-9_]+)?")
 _CLOCK = re.compile(r"[0-9]+(:[0-9]{2}){1,2}")
 _COMMA = re.compile(r"[+-]?[0-9]+,[0-9]+")
 
+_QUANTITY = re.compile(r"[-+]?[0-9.]")
 _NO_NUMBER = re.compile(r"[+-]?\.(inf|Inf|INF|nan|NaN|NAN)")
 
 _INDICATORS = {
@@ -50,6 +51,8 @@ def split_by_comma(table: Table, key: Text) -> str | None:
         return None
     before = table.entries[names[position - 1]]
     start = before.value.value if isinstance(before.value, Text) else "…"
+    if _QUANTITY.match(start) and _QUANTITY.match(key.value):
+        return f"a comma inside braces splits: write a list, `{before.key.value}: [{start}, {key.value}]`"
     return f'a comma inside braces splits: put the text in quotes, `{before.key.value}: "{start}, {key.value}"`'
 
 
@@ -66,7 +69,7 @@ def syntax_hint(lines: list[str], line: int, column: int, opened: tuple[int, int
         return _INDICATORS[rest[0]]
     if before.rstrip()[-1:] in ("|", ">") and "line break" in problem:
         return _INDICATORS[before.rstrip()[-1]]
-    if "mapping values" in problem and before.strip().count(":") >= 1 and rest.startswith(":"):
+    if rest.startswith(":") and before.count(":") >= 1:
         return "a colon inside plain text: put the text in quotes"
     if "mapping values" in problem:
         return "a key stands deeper than the line above allows: check the indentation and the quotes of the line above"
