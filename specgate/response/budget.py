@@ -11,6 +11,9 @@ class OutOfWork(Exception):
         self.reason = reason
 
 
+BALLS = 500
+"""Cells that could be looked at in the time that settling one of them in balls takes, about."""
+
 _LOOK = 200
 """Cells that could be looked at in the time that a look at none of them takes."""
 

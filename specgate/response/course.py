@@ -7,7 +7,7 @@ from functools import cached_property
 from typing import TypeVar
 
 import numpy as np
-from flint import fmpq, fmpq_poly
+from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.asymptote import Lasting, lasting_sign
 from specgate.response.budget import Budget, OutOfWork
@@ -17,6 +17,7 @@ from specgate.response.far import keeps_sign
 from specgate.response.grid import Grid
 from specgate.response.layout import FloatLayout
 from specgate.response.panels import PanelLayout
+from specgate.response.segments import exact
 from specgate.response.start import Start
 from specgate.response.tail import tail
 
@@ -29,7 +30,7 @@ CANCELLING = 1e-5
 FAINT = 1e-200
 """Deviation, in units of the sum of the modes, below which floats are not trusted with its sign."""
 
-WORK = 2_000_000
+WORK = 1_000_000
 """Cells that one search may look at."""
 
 Found = TypeVar("Found")
@@ -78,7 +79,7 @@ class Course:
         """The sign that the deviation keeps in the end, if it keeps one and settles."""
         return lasting_sign(self.deviation.at(LOWEST), self.deviation.denominator)
 
-    def below_from(self, sign: int) -> float | None:
+    def below_from(self, sign: int) -> fmpq | None:
         """Return a time from which on sign * g is proved to be negative, None if there is none or it is not told.
 
         Where g gets too small for floats before its leading mode outweighs the others, the stretch between is walked
@@ -87,13 +88,14 @@ class Course:
         lasting = self.lasting
         if lasting is None or lasting.sign == sign:
             return None
-        if self._faint is None or lasting.since <= self._faint:
-            return lasting.since
+        since = exact(lasting.since)
+        if self._faint is None or since <= self._faint:
+            return since
         return self._faint if self._faint_of_one_sign else None
 
     @cached_property
-    def _faint(self) -> float | None:
-        return tail(self.deviation.table, FAINT)
+    def _faint(self) -> fmpq | None:
+        return tail(self.deviation, FAINT, lambda: arb(FAINT))
 
     @cached_property
     def _faint_of_one_sign(self) -> bool:

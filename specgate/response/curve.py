@@ -10,7 +10,7 @@ from flint import acb, acb_mat, arb, fmpq
 from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.modes import Expansion, Mode, dyadic, power_of_two
-from specgate.response.tail import tail
+from specgate.response.tail import float_tail
 from specgate.terms.precision import working_precision
 
 Point = tuple[fmpq, arb]
@@ -53,7 +53,7 @@ def settled_window(deviation: Deviation, settled: float | None) -> fmpq:
     end = 1.25 * settled if settled else None
     if end is None:
         level = _BAND * max(abs(float_of(deviation.initial)), abs(float_of(deviation.offset)), 1e-12)
-        since = tail(deviation.table, level)
+        since = float_tail(deviation.table, level)
         end = (since or 1.0) * 2.0**-deviation.time_exponent
     return _round_up(end)
 

@@ -9,6 +9,7 @@ from flint import arb, fmpq
 
 from specgate.response.asymptote import Lasting, leading_mode
 from specgate.response.budget import Budget, OutOfWork
+from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation, Modal
 from specgate.response.grid import Grid
 from specgate.response.modes import Expansion, Mode
@@ -41,14 +42,14 @@ class Lifted(Modal):
         return FloatModes.of(self.at(LOWEST), fmpq(0))
 
 
-def keeps_sign(deviation: Deviation, lasting: Lasting, since: float, budget: Budget) -> bool:
+def keeps_sign(deviation: Deviation, lasting: Lasting, since: fmpq, budget: Budget) -> bool:
     """Whether g is proved to have its lasting sign from `since` on, where it is known to have it."""
     lead = leading_mode(deviation.at(LOWEST))
     lifted = Lifted(deviation, exact(float(lead.pole.real)))
     size = at_least(abs(lead.coefficients[-1]))
-    first = 2.0 ** (frexp(since)[1] - 1)
+    first = 2.0 ** (frexp(float_of(since))[1] - 1)
     band = Band(None, fmpq(0)) if lasting.sign < 0 else Band(fmpq(0), None)
-    walk = Walk(lifted, band, budget, backward=False, end=lasting.since, margin=0.0)
+    walk = Walk(lifted, band, budget, backward=False, end=exact(lasting.since), margin=0.0)
     grid = Grid(PanelLayout(lifted, first, 0.01 * size, size).block)
     try:
         return walk.through(grid.upward(budget)) is None and not walk.passage(None).touching

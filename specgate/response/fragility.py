@@ -108,7 +108,7 @@ def _near_turn(course: Course, target: Target, cells: Cells, index: int, time: f
 
 def _goes_well_beyond(grid: Grid, target: Target, time: float, budget: Budget) -> bool:
     """Whether the nodes next to the crossing show that the response goes beyond by more than the margin: no proof."""
-    cells = grid.around(time, budget)
+    cells = grid.around(exact(time), budget)
     start = float_of(cells.segment.start)
     ratio = target.ratio(cells.before[:, 0])
     instants = start + cells.left

@@ -7,9 +7,11 @@ from collections.abc import Callable, Iterator
 from typing import Protocol
 
 import numpy as np
+from flint import fmpq
 
 from specgate.response.budget import Budget
 from specgate.response.cells import Cells, cells_between
+from specgate.response.segments import exact
 
 _KEPT = 256
 """Chunks kept in memory; older ones are made again when they are asked for again."""
@@ -31,7 +33,7 @@ class Block(Protocol):
     def chunks(self) -> int:
         """Number of chunks."""
 
-    def index(self, time: float) -> int:
+    def index(self, time: fmpq) -> int:
         """Return the chunk that holds `time`, the first or last where it lies outside."""
 
     def cells(self, index: int) -> Cells:
@@ -54,10 +56,10 @@ class Grid:
                 yield self._chunk(number, index, budget)
             number += 1
 
-    def downward(self, time: float, budget: Budget) -> Iterator[Cells]:
+    def downward(self, time: fmpq, budget: Budget) -> Iterator[Cells]:
         """Yield chunks from the one that holds `time` down to the start of the grid."""
         number = 0
-        while self._block(number).end < time:
+        while exact(self._block(number).end) < time:
             number += 1
         index = self._blocks[number].index(time)
         while True:
@@ -69,7 +71,7 @@ class Grid:
                 return
             index = self._blocks[number].chunks - 1
 
-    def around(self, time: float, budget: Budget) -> Cells:
+    def around(self, time: fmpq, budget: Budget) -> Cells:
         """Return the chunk that holds `time`."""
         return next(self.downward(time, budget))
 

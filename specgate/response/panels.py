@@ -104,8 +104,9 @@ class _Octave:
     def end(self) -> float:
         return 2.0 * self.left
 
-    def index(self, time: float) -> int:
-        return min(self.chunks - 1, max(0, int((time - self.left) / self.left * self.chunks)))
+    def index(self, time: fmpq) -> int:
+        number = ((time / exact(self.left) - 1) * self.chunks).floor()
+        return min(self.chunks - 1, max(0, int(number)))
 
     def cells(self, index: int) -> Cells:
         width = self.left / self.chunks

@@ -4,22 +4,27 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
+from functools import reduce
+from typing import Protocol
 
 import numpy as np
+from flint import arb, fmpq
 from numpy.typing import NDArray
 
-from specgate.response.budget import Budget, OutOfWork
+from specgate.response.budget import BALLS, Budget, OutOfWork
 from specgate.response.cells import Cells
-from specgate.response.certify import Zero, float_of
-from specgate.response.deviation import Modal
+from specgate.response.certify import Zero
+from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import split
 from specgate.response.segments import exact
 from specgate.response.signs import before_time, ends, slope_bracket, turning_point
 from specgate.response.tables import SLACK
+from specgate.terms.precision import working_precision
 
 _CLOSE = 4
 _DEEPEST = 12
 _GROUP = 64
+_FEW = 4
 _MOST = 4096
 """Summits of one response kept for comparison."""
 
@@ -33,29 +38,45 @@ class Summit:
     high: float
 
 
+class Floor(Protocol):
+    """What is reached or approached whatever the summits are."""
+
+    @property
+    def low(self) -> float:
+        """A float not above it."""
+
+    def level(self, bits: int) -> arb:
+        """Return a ball of it."""
+
+
+Last = Callable[[float, Callable[[], arb]], fmpq | None]
+"""`last(best, firm)`: a time from which on sign * g does not exceed `best`, in balls `firm()`; None: none is known."""
+
+
 class Climb:
     """Search for the supremum of sign * g above a floor that is known to be reached or approached.
 
     `best` is a value that is reached or approached, all others are at most best + slack or on one of the summits.
     """
 
-    def __init__(self, deviation: Modal, sign: int, floor: float, budget: Budget, slack: float = 0.0) -> None:
+    def __init__(self, deviation: Modal, sign: int, floor: Floor, budget: Budget, slack: float = 0.0) -> None:
         self._slack = slack
+        self._floor = floor
         self._deviation = deviation
         self._sign = sign
         self._budget = budget
-        self.best = floor
+        self.best = floor.low
         self.summits: list[Summit] = []
         self._known: float | None = None
-        self._last: float | None = None
+        self._last: fmpq | None = None
 
-    def over(self, chunks: Iterable[Cells], end: Callable[[float], float | None]) -> None:
+    def over(self, chunks: Iterable[Cells], end: Last) -> None:
         """Search the chunks up to the time end(best) from which on nothing exceeds `best` (None: not known yet)."""
         for cells in chunks:
             self._look_to(end)
             self._search(cells, 0)
             self._look_to(end)
-            if self._last is not None and float_of(ends(cells, -1)[1]) >= self._last:
+            if self._last is not None and ends(cells, -1)[1] >= self._last:
                 return
 
     @property
@@ -63,14 +84,20 @@ class Climb:
         """What a cell has to reach to be of interest."""
         return self.best + self._slack
 
-    def _look_to(self, end: Callable[[float], float | None]) -> None:
+    def firm(self) -> arb:
+        """Return the best value in balls, from the summits that may have it."""
+        heights = [self._sign * summit.zero.value(LOWEST) for summit in self.summits[:_FEW]]
+        with working_precision(LOWEST):
+            return reduce(lambda one, other: one.max(other), heights, self._floor.level(LOWEST)).lower()
+
+    def _look_to(self, end: Last) -> None:
         """Bring the end of the search up to date and drop the summits that are too low by now."""
         if self.best == self._known:
             return
         self.summits = [summit for summit in self.summits if summit.high >= self._bar]
         if len(self.summits) > _MOST:
             raise OutOfWork(f"more than {_MOST} peaks of the response are too close in height to be told apart")
-        self._last, self._known = end(self.best), self.best
+        self._last, self._known = end(self.best, self.firm), self.best
 
     def _search(self, cells: Cells, depth: int) -> None:
         """Take up the summits of the cells that may exceed the best value, splitting where that is not told.
@@ -127,6 +154,7 @@ class Climb:
 
     def _closely(self, cells: Cells, index: int, domed: bool, high: float, depth: int) -> None:
         """Settle in balls a cell whose slope floats cannot tell from zero."""
+        self._budget.spend(BALLS)
         if domed:
             turning = turning_point(self._deviation, cells, index)
             if isinstance(turning, Zero):

@@ -80,7 +80,8 @@ def _span(course: Course, zeros: tuple[Zero, ...], from_start: bool, bits: int) 
 
 def _settled(course: Course, target: Target, band: Band, grid: Grid, budget: Budget) -> Passage:
     assert band.high is not None
-    since = tail(course.deviation.table, float_of(band.high))
+    edge = band.high
+    since = tail(course.deviation, float_of(edge), lambda: arb(edge))
     if since is None:
         raise OutOfWork("the band is too narrow beside the response to be followed")
     walk = Walk(course.deviation, band, budget, backward=True, end=since, margin=target.margin)
@@ -95,7 +96,7 @@ def _arrived(course: Course, target: Target, band: Band, grid: Grid, budget: Bud
     return walk.passage(crossing or walk.through(grid.upward(budget)))
 
 
-def _last_chance(course: Course, band: Band) -> float | None:
+def _last_chance(course: Course, band: Band) -> fmpq | None:
     """Return a time from which on the one edge of a band is not crossed any more, None if that is not known.
 
     An edge on the far side of the final value is out of reach once the envelope is below its distance; the final value
@@ -104,9 +105,8 @@ def _last_chance(course: Course, band: Band) -> float | None:
     edge, side = (band.high, 1) if band.high is not None else (band.low, -1)
     assert edge is not None
     if edge * side > 0:
-        return tail(course.deviation.table, float_of(abs(edge)))
-    lasting = course.lasting
-    return lasting.since if edge == 0 and lasting is not None and lasting.sign != side else None
+        return tail(course.deviation, float_of(abs(edge)), lambda: arb(abs(edge)))
+    return course.below_from(side) if edge == 0 else None
 
 
 def _in_start(course: Course, band: Band, *, backward: bool) -> Zero | None:

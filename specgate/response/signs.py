@@ -37,12 +37,11 @@ def ends(cells: Cells, index: int) -> tuple[fmpq, fmpq]:
     return start + exact(float(cells.left[index])), start + exact(float(cells.right[index]))
 
 
-def before_time(cells: Cells, time: float | None) -> NDArray[np.bool_]:
+def before_time(cells: Cells, time: fmpq | None) -> NDArray[np.bool_]:
     """Return which cells begin before a normalised time (None: all)."""
     if time is None:
         return np.ones(len(cells.left), dtype=np.bool_)
-    start = cells.segment.start
-    local = time if start == 0 else float(np.nextafter(float_of(exact(time) - start), np.inf))
+    local = float(np.nextafter(float_of(time - cells.segment.start), np.inf))
     return np.asarray(cells.left < local, dtype=np.bool_)
 
 

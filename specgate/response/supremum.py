@@ -17,7 +17,7 @@ from specgate.response.course import Course
 from specgate.response.extremes import EQUAL_BITS, Extreme, joined
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
-from specgate.response.peak import Climb
+from specgate.response.peak import Climb, Last
 from specgate.response.segments import exact
 from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
@@ -26,9 +26,6 @@ APPROACHED = "the value is approached and never taken"
 
 SLACK = 2.0**-44
 """Parts of the change within which a supremum is known where its summit is not."""
-
-Last = Callable[[float], float | None]
-"""`last(best)`: a time from which on sign * g does not exceed `best`, None if none is known."""
 
 
 @dataclass(frozen=True)
@@ -55,8 +52,8 @@ def highest(course: Course, sign: int) -> Extreme:
 
     floor = exact_floor(course, sign, max(jump, fmpq(0)), taken=jump > 0)
 
-    def last(best: float) -> float | None:
-        return tail(course.deviation.table, best) if best > 0.0 else course.below_from(sign)
+    def last(best: float, firm: Callable[[], arb]) -> fmpq | None:
+        return tail(course.deviation, best, firm) if best > 0.0 else course.below_from(sign)
 
     extreme = above(course, sign, floor, last)
     return extreme if extreme.value.absent is None else _nearly(course, sign, floor, extreme)
@@ -66,11 +63,12 @@ def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extr
     """Return the supremum within SLACK of the change, without its time, where the exact search did not end."""
     slack = SLACK * course.change
 
-    def last(best: float) -> float | None:
-        return tail(course.deviation.table, max(best, 0.0) + slack)
+    def last(best: float, _: Callable[[], arb]) -> fmpq | None:
+        level = max(best, 0.0) + slack
+        return tail(course.deviation, level, lambda: arb(level))
 
     def on(grid: Grid, budget: Budget) -> float:
-        climb = Climb(course.deviation, sign, floor.low, budget, slack)
+        climb = Climb(course.deviation, sign, floor, budget, slack)
         climb.over(grid.upward(budget), last)
         if climb.summits:
             raise OutOfWork("peaks of the response are not told apart")
@@ -116,7 +114,7 @@ def exact_floor(course: Course, sign: int, level: fmpq, *, taken: bool) -> Floor
 def _summits(
     course: Course, sign: int, floor: Floor, last: Last, grid: Grid, budget: Budget
 ) -> tuple[list[Zero], bool]:
-    climb = Climb(course.deviation, sign, floor.low, budget)
+    climb = Climb(course.deviation, sign, floor, budget)
     climb.over(grid.upward(budget), last)
     return _tallest([summit.zero for summit in climb.summits], sign, floor)
 

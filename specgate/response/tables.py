@@ -154,6 +154,11 @@ class FloatModes:
         return total
 
     @cached_property
+    def slowest(self) -> float:
+        """The smallest decay rate of a column."""
+        return float(-self.decay.max(initial=-np.inf))
+
+    @cached_property
     def parts_error(self) -> float:
         """Relative error of a sum of `parts` while no exponent is below -700."""
         return float(len(self.power) + 2 * self.power.max(initial=0.0) + 1500) * UNIT_ROUNDOFF

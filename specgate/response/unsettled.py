@@ -6,6 +6,8 @@ exactly zero, so that what neither grows nor decays is known exactly.
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 import numpy as np
 from flint import arb, fmpq
 
@@ -16,10 +18,10 @@ from specgate.response.deviation import LOWEST
 from specgate.response.extremes import Extreme
 from specgate.response.falling import smallest
 from specgate.response.modes import Expansion, Mode
-from specgate.response.segments import Floats, at_least, at_most
+from specgate.response.segments import Floats, at_least, at_most, exact
 from specgate.response.supremum import APPROACHED, Floor, above, exact_floor
 from specgate.response.tables import FloatModes
-from specgate.response.tail import tail
+from specgate.response.tail import float_tail
 from specgate.terms.precision import working_precision
 
 _NOT_TOLD = "whether the growth of the response is one-sided is not told"
@@ -45,10 +47,8 @@ def _growing(course: Course, sign: int, expansion: Expansion) -> Extreme:
         return _without_bound() if _swings_wider(expansion) else Extreme.undecided(_NOT_TOLD)
     if lasting.sign == sign:
         return _without_bound()
-    jump = sign * course.deviation.initial
-    return above(
-        course, sign, exact_floor(course, sign, jump, taken=True), lambda best: _left_behind(expansion, lasting, best)
-    )
+    floor = exact_floor(course, sign, sign * course.deviation.initial, taken=True)
+    return above(course, sign, floor, lambda best, _: _left_behind(expansion, lasting, best))
 
 
 def _without_bound() -> Extreme:
@@ -71,7 +71,7 @@ def _both_on_axis(one: Mode, other: Mode) -> bool:
     return bool(one.pole.real.is_zero() and other.pole.real.is_zero())
 
 
-def _left_behind(expansion: Expansion, lasting: Lasting, best: float) -> float | None:
+def _left_behind(expansion: Expansion, lasting: Lasting, best: float) -> fmpq | None:
     """Return a time from which on sign * g is below `best`: it is negative and at least half its leading term."""
     lead = leading_mode(expansion)
     half = 0.5 * at_least(abs(lead.coefficients[-1]))
@@ -82,7 +82,7 @@ def _left_behind(expansion: Expansion, lasting: Lasting, best: float) -> float |
             return np.asarray(-best - half * times**power * np.exp(rate * times), dtype=np.float64)
 
     since = smallest(shortfall, 0.0)
-    return None if since is None else max(since, lasting.since)
+    return None if since is None else exact(max(since, lasting.since))
 
 
 def _swinging(course: Course, sign: int, expansion: Expansion) -> Extreme:
@@ -139,12 +139,13 @@ def _swing_with_transient(course: Course, sign: int, index: int) -> Extreme:
     amplitude = _amplitude(course, index, LOWEST)
     top = at_most(amplitude)
 
-    def last(best: float) -> float | None:
+    def last(best: float, _: Callable[[], arb]) -> fmpq | None:
         excess = (best - top) * (1.0 - 1e-9) - 1e-15 * top
         if excess > 0.0:
-            return tail(table, excess)
+            since = float_tail(table, excess)
+            return None if since is None else exact(since)
         lasting = lasting_sign(transient, deviation.denominator)
-        return lasting.since if lasting is not None and lasting.sign != sign else None
+        return exact(lasting.since) if lasting is not None and lasting.sign != sign else None
 
     jump = sign * deviation.initial
     with working_precision(expansion.bits):

@@ -11,7 +11,7 @@ import numpy as np
 from flint import arb, fmpq
 from numpy.typing import NDArray
 
-from specgate.response.budget import Budget, OutOfWork
+from specgate.response.budget import BALLS, Budget, OutOfWork
 from specgate.response.cells import Cells
 from specgate.response.certify import Bracket, Zero, float_of
 from specgate.response.deviation import LOWEST, Modal
@@ -81,7 +81,7 @@ class Walk:
         budget: Budget,
         *,
         backward: bool,
-        end: float | None,
+        end: fmpq | None,
         margin: float,
     ) -> None:
         self._deviation = deviation
@@ -152,6 +152,7 @@ class Walk:
 
     def _closely(self, cells: Cells, index: int, depth: int) -> Zero | None:
         """Settle in balls a cell that floats leave open: too close to an edge for them."""
+        self._budget.spend(BALLS)
         if float(cells.slope_low[index]) > 0.0 or float(cells.slope_high[index]) < 0.0:
             return self._monotone(cells, index)
         if float(cells.bend_low[index]) > 0.0 or float(cells.bend_high[index]) < 0.0:
