@@ -9,6 +9,7 @@ from flint import arb, fmpq
 
 from specgate.response.deviation import LOWEST, Modal
 from specgate.response.modes import GUARD
+from specgate.response.segments import float_of
 from specgate.terms.precision import HIGHEST, working_precision
 
 _MARGIN = 16
@@ -117,8 +118,3 @@ def _gain(before: arb, after: arb) -> int:
 def _radius_exponent(ball: arb) -> int:
     mantissa, exponent = ball.rad().man_exp()
     return int(mantissa).bit_length() + int(exponent) if mantissa != 0 else -(10**9)
-
-
-def float_of(value: fmpq) -> float:
-    """Return the float nearest to a rational."""
-    return int(value.p) / int(value.q)

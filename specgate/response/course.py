@@ -11,11 +11,10 @@ from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.asymptote import Lasting, lasting_sign
 from specgate.response.budget import Budget, OutOfWork
-from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.far import keeps_sign
 from specgate.response.grid import Grid
-from specgate.response.layout import FloatLayout
+from specgate.response.mixed import MixedLayout
 from specgate.response.panels import PanelLayout
 from specgate.response.segments import exact
 from specgate.response.start import Start
@@ -23,9 +22,6 @@ from specgate.response.tail import tail
 
 RESOLUTION = 2e-3
 """How closely cells follow the response at first, in parts of its change."""
-
-CANCELLING = 1e-5
-"""Change, in units of the sum of the modes, below which the modes cancel too far for floats."""
 
 FAINT = 1e-200
 """Deviation, in units of the sum of the modes, below which floats are not trusted with its sign."""
@@ -47,32 +43,21 @@ class Course:
         self.start: Start = start
 
     @cached_property
-    def change(self) -> float:
-        """How far the response moves, in units of the sum of its modes; 1 where it returns to where it was."""
-        change = max(abs(float_of(self.deviation.offset)), abs(float_of(self.deviation.initial)))
-        return change if change > 0.0 else 1.0
-
-    @cached_property
-    def _float_grid(self) -> Grid:
-        resolution = RESOLUTION * self.change
-        return Grid(FloatLayout(self.deviation, self.start.length, resolution).block)
+    def _grid(self) -> Grid:
+        resolution = RESOLUTION * self.deviation.change
+        return Grid(MixedLayout(self.deviation, self.start.length, resolution).block)
 
     @cached_property
     def _panel_grid(self) -> Grid:
-        resolution = RESOLUTION * self.change
-        return Grid(PanelLayout(self.deviation, self.start.length, resolution, self.change).block)
+        resolution = RESOLUTION * self.deviation.change
+        return Grid(PanelLayout(self.deviation, self.start.length, resolution).block)
 
     def search(self, on: Callable[[Grid, Budget], Found]) -> Found:
-        """Search on the grid of floats, or on that of panels where modes cancel or the first one does not decide.
-
-        Raises OutOfWork if neither does.
-        """
-        if self.change > CANCELLING:
-            try:
-                return on(self._float_grid, Budget(WORK))
-            except OutOfWork:
-                pass
-        return on(self._panel_grid, Budget(WORK))
+        """Search on the grid, or on panels alone where that does not decide. Raises OutOfWork if neither does."""
+        try:
+            return on(self._grid, Budget(WORK))
+        except OutOfWork:
+            return on(self._panel_grid, Budget(WORK))
 
     @cached_property
     def lasting(self) -> Lasting | None:

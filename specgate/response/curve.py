@@ -7,9 +7,9 @@ from math import pi
 
 from flint import acb, acb_mat, arb, fmpq
 
-from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.modes import Expansion, Mode, dyadic, power_of_two
+from specgate.response.segments import float_of
 from specgate.response.tail import float_tail
 from specgate.terms.precision import working_precision
 

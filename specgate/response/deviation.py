@@ -10,6 +10,7 @@ from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.early import lengthened
 from specgate.response.modes import GUARD, Expansion, dyadic, expand, power_of_two
+from specgate.response.segments import float_of
 from specgate.response.start import Start, first_stretch
 from specgate.response.tables import FloatModes
 from specgate.terms.precision import HIGHEST, working_precision
@@ -30,6 +31,10 @@ class Modal(Protocol):
     @property
     def table(self) -> FloatModes:
         """The modes in floats, times counted from the step."""
+
+    @property
+    def change(self) -> float:
+        """How far it moves, in units of the sum of its modes; a hint of how far they cancel."""
 
     def at(self, bits: int) -> Expansion:
         """Return the expansion at a precision of the ladder that is at least `bits`."""
@@ -94,6 +99,12 @@ class Deviation(Modal):
             whole = expand(*self._fraction, step)
             self._expansions[step] = whole.rescaled(self.time_exponent, self.value_exponent)
         return self._expansions[step]
+
+    @cached_property
+    def change(self) -> float:
+        """The larger of offset and jump beside it, in units of 2^b; 1 where the response returns to where it was."""
+        change = max(abs(float_of(self.offset)), abs(float_of(self.initial)))
+        return change if change > 0.0 else 1.0
 
     @cached_property
     def table(self) -> FloatModes:

@@ -26,7 +26,7 @@ _BITS = 512
 _TERMS = 192
 _CELLS = 128
 _LONGEST = 16.0
-_ENOUGH = 1e-9
+_ENOUGH = 1e-12
 """Slope, in units of the sum of the modes, that floats resolve well."""
 
 
@@ -58,11 +58,12 @@ def lengthened(start: Start, numerator: fmpq_poly, denominator: fmpq_poly, expan
 def _positive(coefficients: Floats, left: float, remainder: float) -> bool:
     """Whether P is proved positive on [left, 2 left]."""
     times = left * (1.0 + np.arange(_CELLS + 1) / _CELLS)
-    value, size, bend = np.zeros_like(times), np.zeros_like(times), np.zeros_like(times)
-    for k in range(len(coefficients) - 1, -1, -1):
-        value = value * times + coefficients[k]
-        size = size * times + abs(coefficients[k])
-        bend = bend * times + (abs(coefficients[k + 2]) * (k + 1) * (k + 2) if k + 2 < len(coefficients) else 0.0)
+    powers = np.empty((len(times), len(coefficients)))
+    powers[:, 0], powers[:, 1:] = 1.0, times[:, None]
+    np.multiply.accumulate(powers, axis=1, out=powers)
+    k = np.arange(2, len(coefficients))
+    value, size = powers @ coefficients, powers @ np.abs(coefficients)
+    bend = powers[:, :-2] @ (np.abs(coefficients[2:]) * k * (k - 1))
     error = (2 * len(coefficients) + 4) * UNIT_ROUNDOFF * size[1:] + remainder
     chord = bend[1:] * (left / _CELLS) ** 2 / 8.0
     return bool((np.minimum(value[:-1], value[1:]) > 1.01 * (chord + error)).all())

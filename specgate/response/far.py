@@ -9,12 +9,11 @@ from flint import arb, fmpq
 
 from specgate.response.asymptote import Lasting, leading_mode
 from specgate.response.budget import Budget, OutOfWork
-from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation, Modal
 from specgate.response.grid import Grid
 from specgate.response.modes import Expansion, Mode
 from specgate.response.panels import PanelLayout
-from specgate.response.segments import at_least, exact
+from specgate.response.segments import at_least, exact, float_of
 from specgate.response.tables import FloatModes
 from specgate.response.walk import Band, Walk
 from specgate.terms.precision import working_precision
@@ -25,9 +24,15 @@ class Lifted(Modal):
 
     initial = fmpq(0)
 
-    def __init__(self, deviation: Deviation, rate: fmpq) -> None:
+    def __init__(self, deviation: Deviation, rate: fmpq, change: float) -> None:
         self._deviation = deviation
         self._rate = rate
+        self._change = change
+
+    @property
+    def change(self) -> float:
+        """The size of the leading mode, which does not decay any more."""
+        return self._change
 
     def at(self, bits: int) -> Expansion:
         """Return the expansion at a precision of the ladder that is at least `bits`."""
@@ -45,12 +50,12 @@ class Lifted(Modal):
 def keeps_sign(deviation: Deviation, lasting: Lasting, since: fmpq, budget: Budget) -> bool:
     """Whether g is proved to have its lasting sign from `since` on, where it is known to have it."""
     lead = leading_mode(deviation.at(LOWEST))
-    lifted = Lifted(deviation, exact(float(lead.pole.real)))
     size = at_least(abs(lead.coefficients[-1]))
+    lifted = Lifted(deviation, exact(float(lead.pole.real)), size)
     first = 2.0 ** (frexp(float_of(since))[1] - 1)
     band = Band(None, fmpq(0)) if lasting.sign < 0 else Band(fmpq(0), None)
     walk = Walk(lifted, band, budget, backward=False, end=exact(lasting.since), margin=0.0)
-    grid = Grid(PanelLayout(lifted, first, 0.01 * size, size).block)
+    grid = Grid(PanelLayout(lifted, first, 0.01 * size).block)
     try:
         return walk.through(grid.upward(budget)) is None and not walk.passage(None).touching
     except OutOfWork:

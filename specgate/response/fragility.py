@@ -11,12 +11,12 @@ from flint import arb, fmpq
 from specgate.response.answers import Fragile
 from specgate.response.budget import Budget
 from specgate.response.cells import Cells
-from specgate.response.certify import Zero, float_of
+from specgate.response.certify import Zero
 from specgate.response.course import Course
 from specgate.response.deviation import LOWEST
 from specgate.response.grid import Grid, split
 from specgate.response.modes import GUARD
-from specgate.response.segments import Floats, exact
+from specgate.response.segments import Floats, exact, float_of
 from specgate.response.signs import ends, slope_bracket
 from specgate.response.walk import Band, Passage
 from specgate.terms.precision import working_precision

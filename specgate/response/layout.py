@@ -10,7 +10,7 @@ import numpy as np
 from flint import fmpq
 
 from specgate.response.cells import Cells, cells_between
-from specgate.response.deviation import LOWEST, Deviation
+from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import Block
 from specgate.response.segments import Floats, exact
 from specgate.response.tables import FloatModes
@@ -28,7 +28,7 @@ _AT_ONCE = 32
 class FloatLayout:
     """Plans the blocks: several short octaves make one chunk, a long octave many."""
 
-    def __init__(self, deviation: Deviation, first: float, resolution: float) -> None:
+    def __init__(self, deviation: Modal, first: float, resolution: float) -> None:
         self._deviation = deviation
         self._first = first
         self._resolution = resolution
@@ -90,7 +90,7 @@ class _Octaves:
 class _Octave:
     """The octave [left, 2 left] in `count` equal cells; both powers of two, so every node is exact."""
 
-    deviation: Deviation
+    deviation: Modal
     table: FloatModes
     left: float
     count: int

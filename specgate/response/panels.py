@@ -5,35 +5,34 @@ c' p^(k-i) / (k-i)! of t^k. They are summed in balls, where the cancellation hap
 becomes floats.
 
 Errors, for x = t / r in [-1, 1] and the coefficients b_k of x^k: the rounding of x, of its powers, of b_k and of the
-sum is below (3 n + 6) u sum |b_k|; to it come the radii of the b_k, the remainder and the modes that are left out. The
+sum is below (5 n + 6) u sum |b_k|; to it come the radii of the b_k, the remainder and the modes that are left out. The
 remainder after t^n of a derivative of order d is at most sup |f^(q)| r^(q-d) / (q-d)! with q = n + 1, and
 |f^(q)| <= |c'| e^(|sigma| r) |p|^(q-i) (|p| r + q)^i for every term. A mode is left out (it is dead) once its envelope
-is 2^-100 of the largest one; the envelopes of its derivatives over the panel are added to every bound.
+is 2^-80 of the largest one; the envelopes of its derivatives over the panel are added to every bound.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
-from functools import cached_property
-from math import ceil, exp, factorial, log2, perm
+from functools import cache, cached_property
+from math import ceil, factorial, log2, perm
 
 import numpy as np
 from flint import acb, acb_mat, arb, fmpq
 from numpy.typing import NDArray
 
 from specgate.response.cells import Cells, cells_between
-from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import Block
-from specgate.response.modes import Expansion, Mode
-from specgate.response.segments import UNIT_ROUNDOFF, Floats, at_most, exact
+from specgate.response.modes import Expansion
+from specgate.response.segments import UNIT_ROUNDOFF, Floats, at_most, exact, float_of
 from specgate.response.tables import SLACK, TINY
 from specgate.terms.precision import working_precision
 
 _REACH = 2.0
 """Half-width of a panel in time constants of the fastest living mode."""
 
-_DEAD = 2.0**-100
+_DEAD, _QUITE_DEAD = 2.0**-80, 2.0**-200
 _ORDERS = 6
 _MOST_HALVINGS = 6
 
@@ -66,15 +65,16 @@ class TaylorPanel:
 
 
 class PanelLayout:
-    """Plans the blocks: one octave each, in equal panels.
+    """Plans the blocks: one octave each, in equal panels."""
 
-    cancellation: the change of the response in units of the sum of its modes, a hint for the precision.
-    """
-
-    def __init__(self, deviation: Modal, first: float, resolution: float, cancellation: float) -> None:
+    def __init__(self, deviation: Modal, first: float, resolution: float) -> None:
         self._first = first
         self._resolution = resolution
-        self._maker = PanelMaker(deviation, *_precision(cancellation))
+        self._deviation = deviation
+
+    @cached_property
+    def _maker(self) -> PanelMaker:
+        return PanelMaker(self._deviation)
 
     def block(self, before: list[Block]) -> Block:
         """Return the block that follows."""
@@ -84,11 +84,11 @@ class PanelLayout:
         return _Octave(self._maker, left, 1 << max(1, ceil(log2(max(wanted, 1.0)))), self._resolution)
 
 
-def _precision(cancellation: float) -> tuple[int, int]:
+def _precision(change: float) -> tuple[int, int]:
     """Return bits and degree that leave some 20 digits of what is left after cancellation."""
-    if cancellation > 2.0**-60:
+    if change > 2.0**-60:
         return LOWEST, 40
-    return (256, 56) if cancellation > 2.0**-160 else (512, 96)
+    return (256, 56) if change > 2.0**-160 else (512, 96)
 
 
 @dataclass(frozen=True)
@@ -120,7 +120,8 @@ class _Octave:
 class PanelMaker:
     """Makes panels of one response; the matrix from modes to Taylor coefficients is kept for equal panels."""
 
-    def __init__(self, deviation: Modal, bits: int, degree: int) -> None:
+    def __init__(self, deviation: Modal) -> None:
+        bits, degree = _precision(deviation.change)
         self._deviation = deviation
         self._expansion = deviation.at(bits)
         self._degree = degree
@@ -135,26 +136,32 @@ class PanelMaker:
     def _speeds(self) -> Floats:
         return np.array([float(abs(mode.pole).upper()) for mode in self._expansion.modes])
 
-    def _living(self, left: float, right: float) -> tuple[NDArray[np.intp], Floats]:
+    def _living(self, left: float, right: float, dead: float = _DEAD) -> tuple[NDArray[np.intp], Floats]:
         """Return the modes that live on an interval and bounds of the derivatives 0 ... 5 of all others together."""
         columns = self._deviation.table.envelopes(np.array([left]), np.array([right]))[0]
         lengths = [len(mode.coefficients) for mode in self._expansion.modes]
         modes = np.add.reduceat(columns, np.cumsum([0, *lengths[:-1]]), axis=0)
         last = self._deviation.table.envelopes(np.array([right]), np.array([right]))[0, :, 0].max()
-        living = modes[:, 0] > _DEAD * last
+        living = modes[:, 0] > dead * last
         return np.flatnonzero(living), modes[~living].sum(axis=0)
 
-    def panel(self, start: fmpq, half: float) -> TaylorPanel:
-        """Return the Taylor polynomials of g about start + half."""
+    def panel(self, start: fmpq, half: float, dead_below: float = _DEAD) -> TaylorPanel:
+        """Return the Taylor polynomials of g about start + half, without modes below a part of the largest one."""
         left = float_of(start)
-        living, dead = self._living(left, left + 2.0 * half)
+        living, dead = self._living(left, left + 2.0 * half, dead_below)
         local = self._expansion.only(living.tolist()).rebased(start + exact(half))
         with working_precision(local.bits):
             columns = [c for mode in local.modes for c in mode.coefficients]
             matrix = self._matrix(half, tuple(living.tolist()), local)
             balls = [entry.real for entry in (matrix * acb_mat(len(columns), 1, columns)).entries()]
-        rest = [sum(_remainder(mode, half, self._degree, d) for mode in local.modes) for d in range(_ORDERS)]
-        return _in_floats(balls, start, half, np.array(rest) + dead)
+        return _in_floats(balls, start, half, _remainders(local, half, self._degree) + dead)
+
+    def closer(self, cells: Cells, first: int, last: int, parts: int) -> Cells:
+        """Return a run of cells, in equal parts, on a panel of its own that rounds in the measure of what it sees."""
+        start = cells.segment.start + exact(float(cells.left[first]))
+        width = float(cells.right[last]) - float(cells.left[first])
+        nodes: Floats = width / parts * np.arange(parts + 1, dtype=np.float64)
+        return cells_between(self.panel(start, width / 2.0, _QUITE_DEAD), nodes[None, :])
 
     def _matrix(self, half: float, living: tuple[int, ...], local: Expansion) -> acb_mat:
         """Return the coefficients of x^k, k = 0 ... n, of every t^i e^(pt)."""
@@ -178,16 +185,25 @@ def _powers(pole: acb, i: int, half: float, degree: int) -> list[acb]:
     return column
 
 
-def _remainder(mode: Mode, half: float, degree: int, order: int) -> float:
-    """Return a bound of what the derivative of this order of a mode lacks beyond its polynomial."""
-    speed, decay = at_most(abs(mode.pole)), at_most(abs(mode.pole.real))
-    q = degree + 1
-    scale = exp(min(decay * half, 700.0)) / factorial(q - order)
-    terms = (
-        at_most(abs(c)) * (speed * half) ** (q - i) * half ** (i - order) * (speed * half + q) ** i
+def _remainders(local: Expansion, half: float, degree: int) -> Floats:
+    """Return bounds of what the derivatives 0 ... 5 lack beyond the polynomials."""
+    rows = [
+        (at_most(abs(c)), float(i), speed, decay)
+        for mode in local.modes
+        for speed, decay in [(at_most(abs(mode.pole)), at_most(abs(mode.pole.real)))]
         for i, c in enumerate(mode.coefficients)
-    )
-    return SLACK * scale * sum(terms)
+    ]
+    size, power, speed, decay = np.array(rows, dtype=np.float64).reshape(-1, 4).T
+    q, turns = degree + 1, speed * half
+    parts = size * np.exp(np.minimum(decay * half, 700.0)) * turns ** (q - power) * (turns + q) ** power * half**power
+    scales = np.array([half**d * factorial(q - d) for d in range(_ORDERS)], dtype=np.float64)
+    return np.asarray(SLACK * parts.sum() / scales, dtype=np.float64)
+
+
+@cache
+def _factors(count: int) -> list[Floats]:
+    """Return k! / (k - order)! for k = order ... count - 1, for the orders 0 ... 5."""
+    return [np.array([perm(k, order) for k in range(order, count)], dtype=np.float64) for order in range(_ORDERS)]
 
 
 def _in_floats(balls: list[arb], start: fmpq, half: float, rest: Floats) -> TaylorPanel:
@@ -196,12 +212,11 @@ def _in_floats(balls: list[arb], start: fmpq, half: float, rest: Floats) -> Tayl
     middle = np.array([float(ball) for ball in balls])
     radius = np.array([float(ball.rad()) for ball in balls])
     weights, errors, limits = np.zeros((count, 3)), np.zeros(3), np.zeros(_ORDERS)
-    for order in range(_ORDERS):
-        factor = np.array([perm(k, order) for k in range(order, count)], dtype=np.float64) / half**order
-        derived, width = middle[order:] * factor, radius[order:] * factor
+    for order, factor in enumerate(_factors(count)):
+        derived = middle[order:] * factor / half**order
         size = float(np.abs(derived).sum())
+        limits[order] = size + float((radius[order:] * factor).sum()) / half**order + rest[order]
         if order < 3:
             weights[: count - order, order] = derived
-            errors[order] = (3 * count + 10) * UNIT_ROUNDOFF * size + width.sum() + rest[order]
-        limits[order] = size + width.sum() + rest[order]
+            errors[order] = (5 * count + 10) * UNIT_ROUNDOFF * size + limits[order] - size
     return TaylorPanel(start, half, weights, SLACK * errors + TINY, SLACK * limits[2:] + TINY)

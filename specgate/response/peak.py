@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
-from functools import reduce
+from functools import cached_property, reduce
 from typing import Protocol
 
 import numpy as np
@@ -15,7 +15,8 @@ from specgate.response.budget import BALLS, Budget, OutOfWork
 from specgate.response.cells import Cells
 from specgate.response.certify import Zero
 from specgate.response.deviation import LOWEST, Modal
-from specgate.response.grid import split
+from specgate.response.grid import SPLIT, split
+from specgate.response.panels import PanelMaker
 from specgate.response.segments import exact
 from specgate.response.signs import before_time, ends, slope_bracket, turning_point
 from specgate.response.tables import SLACK
@@ -24,6 +25,7 @@ from specgate.terms.precision import working_precision
 _CLOSE = 4
 _DEEPEST = 12
 _GROUP = 64
+_BLUR = 8.0
 _FEW = 4
 _MOST = 4096
 """Summits of one response kept for comparison."""
@@ -74,10 +76,14 @@ class Climb:
         """Search the chunks up to the time end(best) from which on nothing exceeds `best` (None: not known yet)."""
         for cells in chunks:
             self._look_to(end)
-            self._search(cells, 0)
+            self._search(cells, 0, local=False)
             self._look_to(end)
             if self._last is not None and ends(cells, -1)[1] >= self._last:
                 return
+
+    @cached_property
+    def _panels(self) -> PanelMaker:
+        return PanelMaker(self._deviation)
 
     @property
     def _bar(self) -> float:
@@ -99,8 +105,10 @@ class Climb:
             raise OutOfWork(f"more than {_MOST} peaks of the response are too close in height to be told apart")
         self._last, self._known = end(self.best, self.firm), self.best
 
-    def _search(self, cells: Cells, depth: int) -> None:
+    def _search(self, cells: Cells, depth: int, *, local: bool) -> None:
         """Take up the summits of the cells that may exceed the best value, splitting where that is not told.
+
+        Where rounding hides the slope a panel of its own shows it (`local`: this is one), and balls where that fails.
 
         A cell on which g is monotone or bent upwards holds no summit: its greatest value is at an end, which is a node
         or belongs to a neighbour. One that is bent downwards, rising at its left and falling at its right end, holds
@@ -116,16 +124,22 @@ class Climb:
         single = domed & (before[:, 1] > cells.before_error[:, 1]) & (after[:, 1] < -cells.after_error[:, 1])
         self._take(cells, np.flatnonzero(turning & single & (high >= self._bar)))
         unknown = turning & ~single
+        blurred = _blurred(cells)
         while True:
             pending = np.flatnonzero(unknown & (high >= self._bar))
             if not len(pending):
                 return
-            if depth >= _CLOSE:
-                group = pending[:1]
+            group = pending[:1]
+            if depth >= _CLOSE or (local and blurred[group[0]]):
                 self._closely(cells, int(group[0]), bool(domed[group[0]]), float(high[group[0]]), depth)
+            elif blurred[group[0]]:
+                group = _run(cells, pending[blurred[pending]])
+                self._budget.spend(BALLS)
+                self._search(self._panels.closer(cells, int(group[0]), int(group[-1]), 2 * SPLIT), 0, local=True)
             else:
-                group = np.sort(pending[np.argsort(-high[pending], kind="stable")[:_GROUP]])
-                self._search(split(cells, group, self._budget), depth + 1)
+                sharp = pending[~blurred[pending]]
+                group = np.sort(sharp[np.argsort(-high[sharp], kind="stable")[:_GROUP]])
+                self._search(split(cells, group, self._budget), depth + 1, local=local)
             unknown[group] = False
 
     def _take(self, cells: Cells, which: NDArray[np.intp]) -> None:
@@ -166,4 +180,16 @@ class Climb:
             return
         if depth >= _DEEPEST:
             raise OutOfWork("a flat stretch of the response may hold its greatest value and cannot be decided")
-        self._search(split(cells, np.array([index]), self._budget), depth + 1)
+        self._search(self._panels.closer(cells, index, index, SPLIT), depth + 1, local=True)
+
+
+def _blurred(cells: Cells) -> NDArray[np.bool_]:
+    """Return the cells on which rounding hides the slope, so that splitting them shows nothing new."""
+    error = np.maximum(cells.before_error[:, 1], cells.after_error[:, 1])
+    return np.asarray(np.maximum(-cells.slope_low, cells.slope_high) < _BLUR * error, dtype=np.bool_)
+
+
+def _run(cells: Cells, which: NDArray[np.intp]) -> NDArray[np.intp]:
+    """Return the first ones of these cells that follow each other without a gap."""
+    gaps = np.flatnonzero(cells.left[which[1:]] != cells.right[which[:-1]])
+    return which[: int(gaps[0]) + 1] if len(gaps) else which

@@ -40,3 +40,8 @@ def at_most(value: arb) -> float:
 def exact(value: float) -> fmpq:
     """Return the rational that a float is."""
     return fmpq(*value.as_integer_ratio())
+
+
+def float_of(value: fmpq) -> float:
+    """Return the float nearest to a rational."""
+    return int(value.p) / int(value.q)

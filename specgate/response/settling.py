@@ -9,12 +9,12 @@ from flint import arb, fmpq
 
 from specgate.response.answers import Answer, Fragile
 from specgate.response.budget import Budget, OutOfWork
-from specgate.response.certify import Bracket, Zero, float_of
+from specgate.response.certify import Bracket, Zero
 from specgate.response.course import Course
 from specgate.response.fragility import Target, fragility
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
-from specgate.response.segments import exact
+from specgate.response.segments import exact, float_of
 from specgate.response.signs import sign_at
 from specgate.response.tail import tail
 from specgate.response.walk import Band, Passage, Walk

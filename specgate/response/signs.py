@@ -7,9 +7,9 @@ from flint import arb, fmpq
 from numpy.typing import NDArray
 
 from specgate.response.cells import Cells
-from specgate.response.certify import Bracket, Zero, float_of
+from specgate.response.certify import Bracket, Zero
 from specgate.response.deviation import LOWEST, Modal
-from specgate.response.segments import exact
+from specgate.response.segments import exact, float_of
 from specgate.terms.precision import HIGHEST, working_precision
 
 

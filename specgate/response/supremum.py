@@ -12,13 +12,13 @@ from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.response.budget import Budget, OutOfWork
-from specgate.response.certify import Zero, float_of
+from specgate.response.certify import Zero
 from specgate.response.course import Course
 from specgate.response.extremes import EQUAL_BITS, Extreme, joined
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
 from specgate.response.peak import Climb, Last
-from specgate.response.segments import exact
+from specgate.response.segments import exact, float_of
 from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
 
@@ -61,7 +61,7 @@ def highest(course: Course, sign: int) -> Extreme:
 
 def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extreme:
     """Return the supremum within SLACK of the change, without its time, where the exact search did not end."""
-    slack = SLACK * course.change
+    slack = SLACK * course.deviation.change
 
     def last(best: float, _: Callable[[], arb]) -> fmpq | None:
         level = max(best, 0.0) + slack

@@ -13,9 +13,11 @@ from numpy.typing import NDArray
 
 from specgate.response.budget import BALLS, Budget, OutOfWork
 from specgate.response.cells import Cells
-from specgate.response.certify import Bracket, Zero, float_of
+from specgate.response.certify import Bracket, Zero
 from specgate.response.deviation import LOWEST, Modal
-from specgate.response.grid import split
+from specgate.response.grid import SPLIT, split
+from specgate.response.panels import PanelMaker
+from specgate.response.segments import float_of
 from specgate.response.signs import before_time, ends, sign_at, turning_point, value_bracket
 from specgate.terms.precision import HIGHEST, working_precision
 
@@ -105,6 +107,10 @@ class Walk:
         """Return what was met so far, with the crossing that ended the walk."""
         return Passage(crossing, tuple(self._touching), tuple(self._near))
 
+    @cached_property
+    def _panels(self) -> PanelMaker:
+        return PanelMaker(self._deviation)
+
     def _first(self, cells: Cells, depth: int) -> Zero | None:
         passes, leaves = self._sorted(cells)
         pending = np.flatnonzero(~passes & before_time(cells, self._end))
@@ -163,7 +169,7 @@ class Walk:
                 return self._monotone(cells, index)
         if depth >= _DEEPEST:
             raise OutOfWork("a flat stretch of the response is too close to the edge of the band to be decided")
-        return self._first(split(cells, np.array([index]), self._budget), depth + 1)
+        return self._first(self._panels.closer(cells, index, index, SPLIT), depth + 1)
 
     def _monotone(self, cells: Cells, index: int) -> Zero | None:
         """Pass a monotone cell if its far end is inside."""

@@ -9,10 +9,9 @@ from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
 from specgate.response.cells import Cells, cells_between
-from specgate.response.certify import float_of
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.panels import PanelMaker
-from specgate.response.segments import Floats, Segment, exact
+from specgate.response.segments import Floats, Segment, exact, float_of
 from specgate.response.tables import FloatModes
 from specgate.systems.polynomials import highest_first
 from specgate.terms.precision import working_precision
@@ -89,7 +88,7 @@ def test_cells_of_float_modes(parts: list[tuple[fmpq_poly, int]], zero: object, 
 def test_taylor_panels(parts: list[tuple[fmpq_poly, int]], zero: object, exponent: int, halvings: int) -> None:
     shared = deviation(parts, zero)
     half = 2.0 ** (exponent - halvings)
-    panel = PanelMaker(shared, LOWEST, 40).panel(exact(2.0**exponent), half)
+    panel = PanelMaker(shared).panel(exact(2.0**exponent), half)
     assert_sampled(shared, panel, np.linspace(0.0, 2.0 * half, 9))
     assert_enclosed(shared, cells_between(panel, np.linspace(0.0, 2.0 * half, 5)[None, :]))
 
