@@ -13,7 +13,7 @@ from specgate.response.segments import float_of
 from specgate.terms.precision import HIGHEST, working_precision
 
 _MARGIN = 16
-_STEPS = 400
+_STEPS = 6000
 
 
 @dataclass(frozen=True)
@@ -34,12 +34,16 @@ class Bracket:
 
 
 class Zero:
-    """The zero in a bracket, enclosed ever more narrowly by interval Newton steps."""
+    """The zero in a bracket, enclosed ever more narrowly by interval Newton steps.
+
+    The ends are kept as exact numbers: a ball has a radius of 30 bits and would reach over the end of the bracket.
+    """
 
     def __init__(self, deviation: Modal, bracket: Bracket) -> None:
         self._deviation = deviation
         self._bracket = bracket
-        self._ball: arb | None = None
+        self._ends = (_point(bracket.left), _point(bracket.right))
+        self._next: arb | None = _point(bracket.guess)
 
     @property
     def guess(self) -> float:
@@ -48,20 +52,16 @@ class Zero:
 
     def enclose(self, bits: int) -> arb:
         """Return a ball of relative radius 2^-bits, or as narrow as the highest precision allows (normalised time)."""
-        wanted = bits + 2
         precision = max(LOWEST, bits + _MARGIN + self._digits_of_phase())
-        ball = self._first(precision) if self._ball is None else self._ball
         for _ in range(_STEPS):
-            if ball.rel_accuracy_bits() >= wanted:
-                break
-            smaller = self._step(ball, precision)
-            if _gain(ball, smaller) == 0:
+            ball = self._ball(precision)
+            if ball.rel_accuracy_bits() >= bits + 1:
+                return ball
+            if not self._step(precision):
                 if precision >= HIGHEST + GUARD:
                     break
                 precision = min(2 * precision, HIGHEST + GUARD)
-            ball = smaller
-        self._ball = ball
-        return ball
+        return self._ball(precision)
 
     def value(self, bits: int) -> arb:
         """Return g at a zero of g': within max|g''| r^2 / 2 of g at the middle of the enclosure of radius r."""
@@ -82,39 +82,60 @@ class Zero:
         """Bits that the exponent p t takes before the point."""
         return max(0, frexp(float_of(self._bracket.right))[1])
 
-    def _first(self, precision: int) -> arb:
+    def _ball(self, precision: int) -> arb:
+        low, high = self._ends
         with working_precision(precision):
-            whole = arb(self._bracket.left).union(arb(self._bracket.right))
-        return self._step(whole, precision, self._bracket.guess)
+            return low.union(high)
 
-    def _step(self, ball: arb, precision: int, at: fmpq | None = None) -> arb:
-        """Return an enclosure within `ball` of the zero.
+    def _step(self, precision: int) -> bool:
+        """Narrow the ends, by at least a half; return False where the precision does not suffice for that.
 
-        With x in the ball and G a ball of the slopes over it, the zero is in x - (g(x) - target) / G (mean value
-        theorem); where G holds zero, the sign of g(x) - target says on which side of x it is.
+        With x in an interval that holds the zero and G a ball of the slopes over it, the zero is in
+        x - (g(x) - target) / G (mean value theorem). An interval within the bracket that comes back into itself holds
+        the zero (interval Newton), so one of a few Newton steps is tried before the whole one. Where G holds zero, the
+        sign of g(x) - target says on which side of x the zero is.
         """
-        bracket = self._bracket
+        bracket, (low, high) = self._bracket, self._ends
         with working_precision(precision):
-            middle = arb(at) if at is not None else ball.mid()
+            middle = self._next if self._next is not None else ((low + high) / 2).mid()
+            self._next = None
+            if not low < middle < high:
+                return False
             values = self._deviation.at(precision - GUARD).deviation(middle)
-            offset = values[bracket.order] - arb(bracket.target)
-            reach = (ball - middle).abs_upper()
-            slope = values[bracket.order + 1] + arb(0, (reach * arb(bracket.bend)).upper())
+            offset, slope = values[bracket.order] - arb(bracket.target), values[bracket.order + 1]
             if not slope.contains(0):
-                smaller = ball.intersection(middle - offset / slope)
-                if _gain(ball, smaller) > 0:
-                    return smaller
+                near = 4 * abs(offset / slope).upper()
+                found = _newton(middle, offset, slope, arb(bracket.bend) * near)
+                inside = middle - near > arb(bracket.left) and middle + near < arb(bracket.right)
+                if inside and found is not None and abs(found - middle) < near and self._meet(found):
+                    return True
+            reach = arb(bracket.bend) * (high - middle).max(middle - low)
+            found = _newton(middle, offset, slope, reach)
+            if found is not None and self._meet(found):
+                return True
             if offset.contains(0):
-                return ball
-            after = (offset < 0) == bracket.rising
-            return middle.union(ball.upper()) if after else ball.lower().union(middle)
+                return False
+            self._ends = (middle, high) if (offset < 0) == bracket.rising else (low, middle)
+            return True
+
+    def _meet(self, found: arb) -> bool:
+        """Keep what the ends and a ball have in common, if that is at most half of what there was."""
+        low, high = self._ends
+        below, above = found.lower(), found.upper()
+        left, right = (below if below > low else low), (above if above < high else high)
+        if 2 * (right - left) > high - low:
+            return False
+        self._ends = (left, right)
+        return True
 
 
-def _gain(before: arb, after: arb) -> int:
-    """Return by how many bits a ball became narrower."""
-    return _radius_exponent(before) - _radius_exponent(after)
+def _newton(middle: arb, offset: arb, slope: arb, spread: arb) -> arb | None:
+    """Return middle - offset / G for the slopes G within `spread` of `slope`, None if they hold zero."""
+    slopes = slope + arb(0, spread.upper())
+    return None if slopes.contains(0) else middle - offset / slopes
 
 
-def _radius_exponent(ball: arb) -> int:
-    mantissa, exponent = ball.rad().man_exp()
-    return int(mantissa).bit_length() + int(exponent) if mantissa != 0 else -(10**9)
+def _point(value: fmpq) -> arb:
+    """Return a dyadic number as it is."""
+    with working_precision(int(value.p).bit_length() + 2):
+        return arb(value)

@@ -18,6 +18,9 @@ from specgate.terms.precision import HIGHEST, working_precision
 LOWEST = 128
 """Bits of the expansion that floats are made from and that most questions are settled with."""
 
+_RESOLVED = 80
+"""Accuracy, in bits, of the highest coefficient of a mode."""
+
 _LADDER = (LOWEST, 256, 512, 1024, 2048, HIGHEST, HIGHEST + 512)
 
 
@@ -49,12 +52,12 @@ class Deviation(Modal):
 
     def __init__(self, numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> None:
         self._fraction = (numerator, denominator, size)
-        first = expand(numerator, denominator, size, LOWEST)
+        self._base, first = _resolved(numerator, denominator, size)
         speed = max((float(abs(mode.pole).upper()) for mode in first.modes), default=0.0)
         self.time_exponent = frexp(speed)[1] if speed > 0.0 else 0
         in_time = first.rescaled(self.time_exponent, 0)
         self.value_exponent = frexp(_amplitude(in_time))[1]
-        self._expansions = {LOWEST: in_time.rescaled(0, self.value_exponent)}
+        self._expansions = {self._base: in_time.rescaled(0, self.value_exponent)}
         order = denominator.degree()
         jump = numerator[order] / denominator[order] * size
         self.offset: fmpq = self.to_units(first.offset)
@@ -94,7 +97,7 @@ class Deviation(Modal):
 
     def at(self, bits: int) -> Expansion:
         """Return the expansion at the first precision of the ladder that is at least `bits` (or at its last)."""
-        step = next((rung for rung in _LADDER if rung >= bits), _LADDER[-1])
+        step = next((rung for rung in _LADDER if rung >= max(bits, self._base)), _LADDER[-1])
         if step not in self._expansions:
             whole = expand(*self._fraction, step)
             self._expansions[step] = whole.rescaled(self.time_exponent, self.value_exponent)
@@ -124,6 +127,18 @@ class Deviation(Modal):
         bottom = self.denominator
         start = first_stretch(top, bottom)
         return None if start is None else lengthened(start, top, bottom, self.at(LOWEST))
+
+
+def _resolved(numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> tuple[int, Expansion]:
+    """Return the first expansion of the ladder that resolves the highest coefficient of every mode.
+
+    None of them is zero, because the fraction is coprime; beside a zero that all but cancels its pole it is small.
+    """
+    for bits in _LADDER:
+        expansion = expand(numerator, denominator, size, bits)
+        if all(mode.coefficients[-1].rel_accuracy_bits() >= _RESOLVED for mode in expansion.modes):
+            break
+    return bits, expansion
 
 
 def _exponent(value: arb) -> int:

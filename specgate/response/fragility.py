@@ -73,10 +73,13 @@ def fragility(
             return _fragile(course, zero, "turns within 1 % of the edge without crossing it")
     if passage.crossing is None or _goes_well_beyond(grid, target, time, budget):
         return None
+    reason = "crosses the edge by less than 1 % before it turns back"
     wider = again(target.band(1 + NEAR)).crossing
-    if wider is None or not _differs(wider.guess, time) or not _dips(course, target, time, wider.guess):
+    if wider is None:
+        return Fragile(f"the response {reason}, and nowhere else", (lambda _: arb(0)) if target.backward else None)
+    if not _differs(wider.guess, time) or not _dips(course, target, time, wider.guess):
         return None
-    return _fragile(course, wider, "crosses the edge by less than 1 % before it turns back")
+    return _fragile(course, wider, reason)
 
 
 def _fragile(course: Course, zero: Zero, reason: str) -> Fragile:

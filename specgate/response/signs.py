@@ -65,23 +65,30 @@ def value_bracket(cells: Cells, index: int, target: fmpq) -> Bracket:
     """Return the bracket of the zero of g - target in a cell where g is monotone and crosses it."""
     left, right = ends(cells, index)
     bend = max(-float(cells.bend_low[index]), float(cells.bend_high[index]))
-    share = _cubic_share(cells, index, float_of(target))
+    share = _share(cells, index, float_of(target))
     rising = bool(cells.slope_low[index] > 0.0)
     return Bracket(0, target, left, right, rising, bend, left + (right - left) * exact(share))
 
 
-def _cubic_share(cells: Cells, index: int, target: float) -> float:
-    """Return the fraction of the cell at which its Hermite cubic takes the value, about: a starting point only."""
+def _share(cells: Cells, index: int, target: float) -> float:
+    """Return the fraction of the cell at which its Hermite quintic takes the value, about: a starting point only."""
     width = float(cells.right[index] - cells.left[index])
-    f0, f1 = float(cells.before[index, 0]) - target, float(cells.after[index, 0]) - target
-    d0, d1 = width * float(cells.before[index, 1]), width * float(cells.after[index, 1])
+    f0, d0, c0 = (float(value) for value in cells.before[index])
+    f1, d1, c1 = (float(value) for value in cells.after[index])
+    f0, f1, d0, d1 = f0 - target, f1 - target, width * d0, width * d1
+    c0, c1 = 0.5 * width * width * c0, 0.5 * width * width * c1
+    rise, slope, bend = f1 - f0 - d0 - c0, d1 - d0 - 2.0 * c0, c1 - c0
+    a3, a4, a5 = (
+        10.0 * rise - 4.0 * slope + bend,
+        -15.0 * rise + 7.0 * slope - 2.0 * bend,
+        6.0 * rise - 3.0 * slope + bend,
+    )
     low, high = 0.0, 1.0
-    x = f0 / (f0 - f1) if f0 != f1 else 0.5
-    for _ in range(8):
-        y = 1.0 - x
-        value = y * y * ((1.0 + 2.0 * x) * f0 + x * d0) + x * x * ((1.0 + 2.0 * y) * f1 - y * d1)
-        slope = 6.0 * x * y * (f1 - f0) + y * (1.0 - 3.0 * x) * d0 + x * (3.0 * x - 2.0) * d1
+    x = f0 / (f0 - f1) if f0 * f1 < 0.0 else 0.5
+    for _ in range(6):
+        value = f0 + x * (d0 + x * (c0 + x * (a3 + x * (a4 + x * a5))))
+        steep = d0 + x * (2.0 * c0 + x * (3.0 * a3 + x * (4.0 * a4 + x * 5.0 * a5)))
         low, high = (x, high) if (value < 0.0) == (f0 < 0.0) else (low, x)
-        step = x - value / slope if slope != 0.0 else -1.0
+        step = x - value / steep if steep != 0.0 else -1.0
         x = step if low < step < high else 0.5 * (low + high)
-    return min(max(x, 0.0), 1.0)
+    return x

@@ -193,24 +193,32 @@ class Walk:
             if excess < 0:
                 return self._monotone(cells, index)
             if excess > 0:
-                return self._up_to(turning, cells, index, edge, excess, bits)
+                return self._up_to(turning, cells, index, 1 if top else -1, excess)
             bits *= 2
         self._touching.append(turning)
         return None
 
-    def _up_to(self, turning: Zero, cells: Cells, index: int, edge: fmpq, excess: arb, bits: int) -> Zero:
+    def _up_to(self, turning: Zero, cells: Cells, index: int, outward: int, excess: arb) -> Zero:
         """Return the crossing between the near end of a cell and the turning point beyond the edge.
 
-        At a distance d = sqrt(excess / max|g''|) / 2 from it, g is still beyond the edge by 7/8 of the excess.
+        At a distance of sqrt(excess / max|g''|) / 2 from it, g is still beyond the edge by 7/8 of the excess; the sign
+        of g' there shows that it is on the near side. The crossing is about sqrt(2 excess / |g''|) away.
         """
         left, right = ends(cells, index)
+        edge = self._band.high if outward > 0 else self._band.low
+        assert edge is not None
         bend = max(-float(cells.bend_low[index]), float(cells.bend_high[index]))
-        with working_precision(bits):
-            distance = (excess.lower() / bend).sqrt() / 2
+        bits = LOWEST
+        while bits <= HIGHEST:
             summit = turning.enclose(bits)
-            if self._backward:
-                left = max(left, (summit.upper() + distance).mid().fmpq())
-            else:
-                right = min(right, (summit.lower() - distance).mid().fmpq())
-        rising = (edge == self._band.high) != self._backward
-        return Zero(self._deviation, Bracket(0, edge, left, right, rising, bend, (left + right) / 2))
+            with working_precision(2 * bits):
+                distance = (excess.lower() / bend).sqrt() * (1 if self._backward else -1)
+                inner, guess = ((summit + distance * share).mid().fmpq() for share in (arb(0.5), arb(2).sqrt()))
+            beyond = left < inner < right and sign_at(self._deviation, inner, 0, edge) == outward
+            if beyond and sign_at(self._deviation, inner, 1, fmpq(0)) == (-outward if self._backward else outward):
+                left, right = (inner, right) if self._backward else (left, inner)
+                guess = guess if left < guess < right else (left + right) / 2
+                rising = (outward > 0) != self._backward
+                return Zero(self._deviation, Bracket(0, edge, left, right, rising, bend, guess))
+            bits *= 2
+        raise OutOfWork("a crossing next to a turning point is not told from it at the highest precision")
