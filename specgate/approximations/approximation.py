@@ -26,7 +26,7 @@ class Found:
 class Condition:
     """One condition of an approximation's range.
 
-    key: short name by which a project's policy may tighten `threshold`. name, required: words in which
+    key: short name by which a project's policy may change `threshold`. name, required: words in which
     `{threshold}` may stand (see `named`, `asked`). tighter: the direction in which a threshold gets stricter.
     source: published (author, year, place), "common practice" or "derived". concerns: the measures for whose
     estimate it is needed; all if empty.
@@ -50,7 +50,7 @@ class Condition:
         return self.required.format(threshold=_plain(threshold))
 
     def stricter(self, threshold: fmpq) -> bool:
-        """Whether a threshold tightens the row's own (the same counts); a project may not loosen it."""
+        """Whether a threshold tightens the row's own (the same counts)."""
         if self.threshold is None:
             return False
         return threshold >= self.threshold if self.tighter == "larger" else threshold <= self.threshold

@@ -37,6 +37,11 @@ def total(parts: Sequence[Answer]) -> Answer:
     return combined(lambda *balls: sum(balls, arb(0)), *parts)
 
 
+def negative(value: Answer) -> Answer:
+    """Return minus a number."""
+    return Answer.of_exact(-value.exact) if value.exact is not None else combined(lambda ball: -ball, value)
+
+
 def smallest(parts: Sequence[Answer]) -> Answer:
     """Return the smallest of some numbers: the very one where it is certain which that is, its exactness kept."""
     balls = [part.enclose(SHOWN) for part in parts]

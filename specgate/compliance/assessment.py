@@ -38,6 +38,7 @@ class AuditedCondition:
     """A condition of an approximation against this response.
 
     approximation: whose condition it is. threshold: the one in force. policy: words where the project's own is.
+    beyond: it would not hold with the catalogue's own threshold, which the project has loosened.
     """
 
     approximation: str
@@ -45,6 +46,7 @@ class AuditedCondition:
     threshold: fmpq | None
     found: Found
     policy: str | None = None
+    beyond: bool = False
 
 
 @dataclass(frozen=True)

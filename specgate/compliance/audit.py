@@ -11,8 +11,9 @@ from dataclasses import dataclass, replace
 
 from flint import arb, fmpq
 
-from specgate.approximations.approximation import Accuracy, Approximation, Found
+from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
 from specgate.approximations.features import Features
+from specgate.approximations.figures import negative, smallest
 from specgate.approximations.table import APPROXIMATIONS, chain, conditions
 from specgate.compliance.assessment import Audit, AuditedCondition, Instead, Side, Slip
 from specgate.compliance.claims import claim_range, claim_unit
@@ -20,7 +21,7 @@ from specgate.compliance.compare import Limits, sign
 from specgate.compliance.readings import PI_DECIDES, Reading
 from specgate.compliance.sides import formula_error, side
 from specgate.compliance.thresholds import Policy
-from specgate.compliance.wording import condition_words, figure
+from specgate.compliance.wording import apart, condition_words
 from specgate.measures.measure import Arguments
 from specgate.project.parameters import Values, evaluate
 from specgate.project.types import Basis, Claim
@@ -79,12 +80,19 @@ def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
 def _audited(row: Approximation, matter: Matter, policy: Policy) -> Iterator[AuditedCondition]:
     """Yield every condition of a row, those of its premises first, with what was found."""
     for owner, condition in conditions(row.name, matter.arguments.measure):
-        threshold, words = policy.in_force(owner.name, condition)
-        found = condition.find(matter.features, matter.arguments, threshold)
-        if matter.again is not matter.features:
-            again = condition.find(matter.again, matter.arguments, threshold)
-            found = found if again.holds is found.holds else Found(PI_DECIDES, Trilean.UNKNOWN)
-        yield AuditedCondition(owner.name, condition, threshold, found, words)
+        own = policy.own(owner.name, condition)
+        threshold = condition.threshold if own is None else own.stated
+        found = _found(condition, matter, threshold)
+        beyond = own is not None and own.looser and _found(condition, matter, own.catalogue).holds is not Trilean.YES
+        yield AuditedCondition(owner.name, condition, threshold, found, None if own is None else own.words, beyond)
+
+
+def _found(condition: Condition, matter: Matter, threshold: fmpq | None) -> Found:
+    found = condition.find(matter.features, matter.arguments, threshold)
+    if matter.again is matter.features:
+        return found
+    again = condition.find(matter.again, matter.arguments, threshold)
+    return found if again.holds is found.holds else Found(PI_DECIDES, Trilean.UNKNOWN)
 
 
 # --- 2, 3 and 4: the claim, the error, what is left open ------------------------------------------------------
@@ -92,7 +100,8 @@ def _audited(row: Approximation, matter: Matter, policy: Policy) -> Iterator[Aud
 
 def _evaluated(audited: Audit, row: Approximation, matter: Matter) -> Audit:
     formula = row.evaluate(matter.features, matter.arguments)
-    accuracy = row.accuracy(matter.features, matter.arguments)
+    beyond = any(one.beyond for one in audited.conditions)
+    accuracy = None if beyond else row.accuracy(matter.features, matter.arguments)
     audited = replace(
         audited, formula=formula, formula_text=row.formula, accuracy=None if accuracy is None else accuracy.text
     )
@@ -120,12 +129,16 @@ def _slip_side(audited: Audit, formula: Answer, matter: Matter) -> Side:
 
 
 def _implied(audited: Audit, formula: Answer, accuracy: Accuracy | None) -> tuple[Answer, Answer] | None:
-    """Return the interval in which the truth lies if the claim errs as stated: claim/(1+e)."""
+    """Return the interval in which the truth lies if the claim errs as stated: claim/(1+e).
+
+    A claim is its formula rounded, and it is the formula that errs as stated: the interval runs over both, so that the
+    truth is in it however few digits the claim has.
+    """
     if accuracy is None or formula.absent is not None:
         return None
-    base = formula if audited.claimed is None else Answer.of_exact(audited.claimed)
-    low, high = _divided(base, 1 + accuracy.upper), _divided(base, 1 + accuracy.lower)
-    return (high, low) if sign(base, fmpq(0)) == -1 else (low, high)
+    bases = [formula] if audited.claimed is None else [Answer.of_exact(audited.claimed), formula]
+    ends = [_divided(base, 1 + error) for base in bases for error in (accuracy.lower, accuracy.upper)]
+    return smallest(ends), negative(smallest([negative(end) for end in ends]))
 
 
 def _divided(value: Answer, by: fmpq) -> Answer:
@@ -158,18 +171,26 @@ def _standing(audited: Audit, matter: Matter) -> tuple[Standing, str | None]:
     if undecided:
         named = "; ".join(one.condition.named(one.threshold) for one in undecided)
         return Standing.INCONCLUSIVE, f"it cannot be decided whether this holds: {named}"
+    beyond = [one for one in audited.conditions if one.beyond]
+    if beyond:
+        named = "; ".join(one.condition.named(one.condition.threshold) for one in beyond)
+        return Standing.INCONCLUSIVE, f"no accuracy is stated beyond the catalogue's own range: {named}"
     if audited.implied is None:
         return Standing.INCONCLUSIVE, "no accuracy is stated for this formula with these arguments"
-    if any(_holds(audited.implied, limit) for limit in (matter.limits.least, matter.limits.most)):
-        low, high = (figure(Reading.once(end).in_unit(matter.unit), matter.unit) for end in audited.implied)
+    if _leaves_open(audited.implied, matter.limits):
+        low, high = apart([Reading.once(end).in_unit(matter.unit) for end in audited.implied], matter.unit)
         reason = f"its accuracy leaves {low} to {high} for the truth, and the limit lies between them"
         return Standing.INCONCLUSIVE, reason
     return Standing.SOUND, None
 
 
-def _holds(interval: tuple[Answer, Answer], limit: fmpq | None) -> bool:
-    """Whether a limit lies strictly inside an interval."""
-    return limit is not None and sign(interval[0], limit) == -1 and sign(interval[1], limit) == 1
+def _leaves_open(interval: tuple[Answer, Answer], limits: Limits) -> bool:
+    """Whether some of an interval meets a limit and some does not; touching a limit meets it."""
+    low, high = interval
+    least, most = limits.least, limits.most
+    below = least is not None and sign(low, least) == -1 and sign(high, least) != -1
+    above = most is not None and sign(high, most) == 1 and sign(low, most) != 1
+    return below or above
 
 
 # --- 5: what instead --------------------------------------------------------------------------------------------

@@ -1,4 +1,4 @@
-"""A project's own thresholds for the conditions of approximations: they may tighten a condition, never loosen it."""
+"""A project's own thresholds for the conditions of approximations, tighter or looser than the catalogue's."""
 
 from __future__ import annotations
 
@@ -11,43 +11,51 @@ from specgate.approximations.approximation import Condition
 from specgate.approximations.table import APPROXIMATIONS
 from specgate.project.parameters import Values, evaluate
 from specgate.project.types import Project, Value
+from specgate.terms.places import Place
 
 
 @dataclass(frozen=True)
 class Threshold:
-    """A threshold that a project states in place of the catalogue's."""
+    """A threshold that a project states in place of the catalogue's.
+
+    looser: it lets in what the catalogue does not, for which no accuracy has been shown.
+    """
 
     approximation: str
     key: str
     catalogue: fmpq
     stated: fmpq
     as_written: str
+    looser: bool
+    place: Place
+
+    @property
+    def words(self) -> str:
+        """What the project has done."""
+        return f"{'loosened' if self.looser else 'tightened'} by the project to {self.as_written}"
 
 
 @dataclass(frozen=True)
 class Policy:
-    """The thresholds that a project states; a looser one than the catalogue's has been refused when it was read."""
+    """The thresholds that a project states and that differ from the catalogue's."""
 
     stated: tuple[Threshold, ...]
 
-    def in_force(self, approximation: str, condition: Condition) -> tuple[fmpq | None, str | None]:
-        """Return the threshold of a condition and, where it is the project's own, that in words."""
-        for one in self.stated:
-            if (one.approximation, one.key) == (approximation, condition.key):
-                return one.stated, f"tightened by the project to {one.as_written}"
-        return condition.threshold, None
+    def own(self, approximation: str, condition: Condition) -> Threshold | None:
+        """Return the project's own threshold of a condition, if it has one."""
+        named = (one for one in self.stated if (one.approximation, one.key) == (approximation, condition.key))
+        return next(named, None)
 
 
 def policy(project: Project, values: Values) -> Policy:
     """Read the thresholds of a project. Raises Fault for a value that cannot be evaluated."""
-    return Policy(
-        tuple(
-            _threshold(name, key, value, condition, values)
-            for name, stated in project.approximations.items()
-            for key, value in stated.items()
-            for condition in _conditions(name, key)
-        )
+    every = (
+        _threshold(name, value, condition, values)
+        for name, stated in project.approximations.items()
+        for key, value in stated.items()
+        for condition in _conditions(name, key)
     )
+    return Policy(tuple(one for one in every if one.stated != one.catalogue))
 
 
 def _conditions(approximation: str, key: str) -> Iterator[Condition]:
@@ -56,6 +64,9 @@ def _conditions(approximation: str, key: str) -> Iterator[Condition]:
         yield from (one for one in row.conditions if one.key == key and one.threshold is not None)
 
 
-def _threshold(name: str, key: str, value: Value, condition: Condition, values: Values) -> Threshold:
+def _threshold(name: str, value: Value, condition: Condition, values: Values) -> Threshold:
     assert condition.threshold is not None
-    return Threshold(name, key, condition.threshold, evaluate(value, values), value.as_written)
+    stated = evaluate(value, values)
+    return Threshold(
+        name, condition.key, condition.threshold, stated, value.as_written, not condition.stricter(stated), value.place
+    )

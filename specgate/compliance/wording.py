@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from flint import fmpq, fmpq_poly
 
 from specgate.approximations.approximation import Found
@@ -35,6 +37,12 @@ def figure(answer: Answer, unit: Unit | None, scale: fmpq | None = None, digits:
     """Write an answer that is in `unit` (as `scale` is), or the reason why it has no value."""
     value = _value(answer, scale)
     return value if isinstance(value, str) else with_unit(number(value, digits), unit)
+
+
+def apart(answers: Sequence[Answer], unit: Unit) -> list[str]:
+    """Write answers with as many digits as it takes to tell them from each other."""
+    texts = ([figure(one, unit, digits=digits) for one in answers] for digits in range(_FEW, DIGITS))
+    return next((found for found in texts if len(set(found)) == len(found)), [figure(one, unit) for one in answers])
 
 
 def _value(answer: Answer, scale: fmpq | None) -> float | str:

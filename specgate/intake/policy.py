@@ -1,4 +1,4 @@
-"""The title block and the project's policy: own units, gate, evaluation, tightened thresholds."""
+"""The title block and the project's policy: own units, gate, evaluation, thresholds of its own."""
 
 from __future__ import annotations
 
@@ -11,7 +11,7 @@ from specgate.intake.nodes import Node, Table, Text
 from specgate.intake.values import Reader
 from specgate.project.types import GatePolicy, ProjectInfo, Value
 from specgate.terms import expressions
-from specgate.terms.places import Place
+from specgate.terms.dimensions import DIMENSIONLESS
 from specgate.terms.units import UnitTable
 
 Holding = Literal["non_compliant", "open", "out_of_range", "inconclusive"]
@@ -65,7 +65,7 @@ def gate(node: Node | None) -> GatePolicy:
 
 
 def thresholds(node: Node | None, context: Context) -> dict[str, dict[str, Value]]:
-    """Read the project's own thresholds of conditions. They may only be tighter than the catalogue's."""
+    """Read the project's own thresholds of conditions, tighter or looser than the catalogue's."""
     found: dict[str, dict[str, Value]] = {}
     for name, body in entries(node):
         for key, value in entries(body):
@@ -76,24 +76,26 @@ def thresholds(node: Node | None, context: Context) -> dict[str, dict[str, Value
 
 
 def _allowed(name: str, key: Text, value: Value, context: Context) -> bool:
-    """Whether a threshold is one of the approximation's, and no looser; approximations answered later have none yet."""
+    """Whether a threshold is one of the approximation's; approximations answered later have none yet."""
     row = APPROXIMATIONS.get(name)
     if row is None:
         return True
-    conditions = {condition.key: condition for condition in row.conditions if condition.threshold is not None}
-    condition = conditions.get(key.value)
-    if condition is None:
-        context.unknown("threshold", key.value, conditions, key.spot.place, name)
+    known = [condition.key for condition in row.conditions if condition.threshold is not None]
+    if key.value not in known:
+        context.unknown("threshold", key.value, known, key.spot.place, name)
         return False
-    if expressions.names(value.expression):
-        _refuse("a threshold is a number", value.place, context)
-        return False
-    if not condition.stricter(expressions.evaluate(value.expression, {})):
-        message = f"`{value.as_written}` is looser than the catalogue's own: a threshold may only be tightened"
-        _refuse(message, value.place, context)
+    if not _is_plain_number(value.expression):
+        message = f"`{value.as_written}`: a threshold is a number greater than zero, without a unit"
+        context.collector.error("schema-violation", message, value.place)
         return False
     return True
 
 
-def _refuse(message: str, place: Place, context: Context) -> None:
-    context.collector.error("schema-violation", message, place)
+def _is_plain_number(expression: expressions.Expression) -> bool:
+    if expressions.names(expression):
+        return False
+    try:
+        dimension = expressions.as_dimension(expressions.dimension(expression, {}))
+        return dimension == DIMENSIONLESS and expressions.evaluate(expression, {}) > 0
+    except expressions.ExpressionError:
+        return False

@@ -67,6 +67,7 @@ def review(project: Project, *, curves: bool = True) -> Review:
                     "condition": one.key,
                     "catalogue": short(one.catalogue),
                     "project": one.as_written,
+                    "change": "looser" if one.looser else "tighter",
                 }
                 for one in policy(project, analyses.nominal.values).stated
             ),

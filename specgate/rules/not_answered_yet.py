@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from specgate.approximations.table import LATER
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Level
@@ -27,9 +28,19 @@ def check(facts: Facts) -> Iterator[Finding]:
             message = f"{name}: {', '.join(subsystem.kept)}: kept, and not audited by this version"
             yield Finding(NAME, Level.NOTE, message, subsystem.place, subsystem=name)
     yield from _ranges(facts)
+    yield from _thresholds(facts)
     for name in _POLICIES:
         for kept in facts.project.kept.get(name, ()):
             yield Finding(NAME, Level.NOTE, f"{name}: kept, and not applied by this version", kept.place)
+
+
+def _thresholds(facts: Facts) -> Iterator[Finding]:
+    """Report thresholds of approximations that are not audited yet."""
+    for name, stated in facts.project.approximations.items():
+        for key, value in stated.items():
+            if name in LATER:
+                message = f"{name}: the threshold `{key}` is kept, and not applied by this version"
+                yield Finding(NAME, Level.NOTE, message, value.place)
 
 
 def _ranges(facts: Facts) -> Iterator[Finding]:

@@ -19,6 +19,7 @@ from specgate.rules import (
     requirement_not_met,
     requirement_open,
     requirement_orphan,
+    threshold_loosened,
     unused_subsystem,
     value_without_source,
 )
@@ -32,6 +33,7 @@ _ROWS = (
     approximation_out_of_range,
     approximation_inconclusive,
     claim_disagrees_with_formula,
+    threshold_loosened,
     hidden_unstable_mode,
     hidden_mode,
     algebraic_loop,

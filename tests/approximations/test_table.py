@@ -90,7 +90,7 @@ def test_thresholds_in_words() -> None:
     assert separation.asked(fmpq(15, 2)) == ">= 7.5"
 
 
-def test_a_project_may_only_tighten() -> None:
+def test_which_thresholds_are_stricter() -> None:
     by_key = {c.key: c for c in APPROXIMATIONS["dominant_pair"].conditions}
     assert by_key["separation"].stricter(fmpq(10))
     assert by_key["separation"].stricter(fmpq(5))

@@ -5,9 +5,10 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 
 import pytest
-from flint import fmpq
+from flint import arb, fmpq
 
 from specgate.compliance.assessment import Assessment, Audit
+from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Standing, Trilean, Verdict
 
 Judge = Callable[[str], Mapping[str, Assessment]]
@@ -138,6 +139,49 @@ def test_a_project_may_tighten_a_threshold(audited: Callable[..., Audit]) -> Non
     separation = next(one for one in tight.conditions if one.condition.key == "separation")
     assert separation.threshold == 10
     assert separation.policy == "tightened by the project to 10"
+
+
+def test_what_only_a_loosened_threshold_lets_in_is_never_sound(audited: Callable[..., Audit]) -> None:
+    model = "{poles: [{real: -1, imaginary: 1}, -4.5], leading_coefficient: 9}"  # 4.5 times faster
+    claim = basis("second_order_settling", "4.0 s")
+    own = audited(model, "at_most: 20 s", claim)
+    loosened = audited(model, "at_most: 20 s", claim, policy="approximations: {dominant_pair: {separation: 4}}")
+    assert (own.standing, loosened.standing) == (Standing.OUT_OF_RANGE, Standing.INCONCLUSIVE)
+    separation = next(one for one in loosened.conditions if one.condition.key == "separation")
+    assert separation.found.holds is Trilean.YES
+    assert separation.policy == "loosened by the project to 4"
+    assert loosened.implied is None
+    unneeded = audited(
+        model.replace("-4.5", "-20").replace("9}", "40}"),
+        "at_most: 20 s",
+        claim,
+        policy="approximations: {dominant_pair: {separation: 4}}",
+    )
+    assert unneeded.standing is Standing.SOUND
+
+
+@pytest.mark.parametrize(
+    ("claimed", "limit", "standing"),
+    [
+        ("16.3 %", "at_most: 17 %", Standing.SOUND),
+        ("16.3 %", "at_most: 16.302 %", Standing.INCONCLUSIVE),  # the formula, and the truth, are 16.3034 %
+        ("16.3 %", "at_most: 16.3 %", Standing.INCONCLUSIVE),
+        ("16.303 %", "at_most: 16.3034 %", Standing.SOUND),
+        ("16.3 %", "at_most: 16 %", Standing.SOUND),  # claim and truth agree that it is not met
+        ("20 %", "at_most: 17 %", Standing.INCONCLUSIVE),  # the claim says that it is not met
+    ],
+)
+def test_between_a_claim_and_its_formula_nothing_is_decided(
+    audited: Callable[..., Audit], claimed: str, limit: str, standing: Standing
+) -> None:
+    found = audited(PAIR, limit, basis("second_order_overshoot", claimed), measure="overshoot")
+    assert found.standing is standing
+    assert found.implied is not None
+    low, high = found.implied
+    with working_precision(128):
+        truth = (-arb.pi() / arb(3).sqrt()).exp()
+        assert not low.enclose(128) > truth
+        assert not high.enclose(128) < truth
 
 
 def test_a_chain_names_its_premises_and_nothing_else(audited: Callable[..., Audit]) -> None:

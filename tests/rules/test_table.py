@@ -15,11 +15,12 @@ CONTRACT = {
     *("hidden-mode", "algebraic-loop", "improper-model", "unused-subsystem", "value-without-source"),
     *("requirement-orphan", "dangling-link", "derivation-cycle"),
 }
+ADDED = {"threshold-loosened"}
 NO_ROWS = {"__init__", "rule", "table"}
 
 
 def test_the_slugs_are_those_of_the_contract() -> None:
-    assert set(RULES) == CONTRACT
+    assert set(RULES) == CONTRACT | ADDED
 
 
 def test_every_file_is_a_row_and_every_row_a_file() -> None:
