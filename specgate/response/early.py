@@ -47,15 +47,16 @@ def lengthened(start: Start, numerator: fmpq_poly, denominator: fmpq_poly, expan
             ratios.append(term * factor)
             factor = factor / (start.power + k + 1)
     coefficients = np.array([float(ratio) for ratio in ratios])
+    radii = np.array([float(ratio.rad()) for ratio in ratios])
     while start.length < _LONGEST:
         remainder = _remainder(expansion, start, lead, 2.0 * start.length)
-        if not _positive(coefficients, start.length, remainder):
+        if not _positive(coefficients, radii, start.length, remainder):
             break
         start = replace(start, length=2.0 * start.length)
     return start
 
 
-def _positive(coefficients: Floats, left: float, remainder: float) -> bool:
+def _positive(coefficients: Floats, radii: Floats, left: float, remainder: float) -> bool:
     """Whether P is proved positive on [left, 2 left]."""
     times = left * (1.0 + np.arange(_CELLS + 1) / _CELLS)
     powers = np.empty((len(times), len(coefficients)))
@@ -64,7 +65,7 @@ def _positive(coefficients: Floats, left: float, remainder: float) -> bool:
     k = np.arange(2, len(coefficients))
     value, size = powers @ coefficients, powers @ np.abs(coefficients)
     bend = powers[:, :-2] @ (np.abs(coefficients[2:]) * k * (k - 1))
-    error = (2 * len(coefficients) + 4) * UNIT_ROUNDOFF * size[1:] + remainder
+    error = (2 * len(coefficients) + 4) * UNIT_ROUNDOFF * size[1:] + (powers @ radii)[1:] + remainder
     chord = bend[1:] * (left / _CELLS) ** 2 / 8.0
     return bool((np.minimum(value[:-1], value[1:]) > 1.01 * (chord + error)).all())
 

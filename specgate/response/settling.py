@@ -57,6 +57,8 @@ def _answer(course: Course, target: Target, search: Search, without: Answer) -> 
         passage, fragile = course.search(on)
     except OutOfWork as limit:
         return Answer.undecided(limit.reason)
+    if passage.touching and passage.crossing is None and not target.backward:
+        return Answer.undecided("whether the response reaches the level or stays just off it is not told")
     if passage.touching:
         fragile = Fragile(
             "whether the response crosses the edge or only touches it is not told at the highest precision"

@@ -61,12 +61,11 @@ def slope_bracket(cells: Cells, index: int, guess: fmpq) -> Bracket:
     return Bracket(1, fmpq(0), left, right, bool(cells.bend_low[index] > 0.0), float(cells.jerk[index]), guess)
 
 
-def value_bracket(cells: Cells, index: int, target: fmpq) -> Bracket:
-    """Return the bracket of the zero of g - target in a cell where g is monotone and crosses it."""
+def value_bracket(cells: Cells, index: int, target: fmpq, *, rising: bool) -> Bracket:
+    """Return the bracket of the zero of g - target in a cell that g crosses it in once."""
     left, right = ends(cells, index)
     bend = max(-float(cells.bend_low[index]), float(cells.bend_high[index]))
     share = _share(cells, index, float_of(target))
-    rising = bool(cells.slope_low[index] > 0.0)
     return Bracket(0, target, left, right, rising, bend, left + (right - left) * exact(share))
 
 

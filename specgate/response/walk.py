@@ -153,31 +153,36 @@ class Walk:
         self._near.extend((cells, int(index)) for index in np.flatnonzero(close))
 
     def _crossing(self, cells: Cells, index: int) -> Zero:
-        outside = cells.before[index, 0] if self._backward else cells.after[index, 0]
-        return Zero(self._deviation, value_bracket(cells, index, self._band.edge_towards(float(outside))))
+        outside = float((cells.before if self._backward else cells.after)[index, 0])
+        edge = self._band.edge_towards(outside)
+        return self._leaving(cells, index, edge, 1 if edge == self._band.high else -1)
+
+    def _leaving(self, cells: Cells, index: int, edge: fmpq, outward: int) -> Zero:
+        rising = (outward > 0) != self._backward
+        return Zero(self._deviation, value_bracket(cells, index, edge, rising=rising))
 
     def _closely(self, cells: Cells, index: int, depth: int) -> Zero | None:
         """Settle in balls a cell that floats leave open: too close to an edge for them."""
         self._budget.spend(BALLS)
         if float(cells.slope_low[index]) > 0.0 or float(cells.slope_high[index]) < 0.0:
-            return self._monotone(cells, index)
+            return self._to_far_end(cells, index)
         if float(cells.bend_low[index]) > 0.0 or float(cells.bend_high[index]) < 0.0:
             turning = turning_point(self._deviation, cells, index)
             if isinstance(turning, Zero):
                 return self._over(turning, cells, index)
             if turning != 0:
-                return self._monotone(cells, index)
+                return self._to_far_end(cells, index)
         if depth >= _DEEPEST:
             raise OutOfWork("a flat stretch of the response is too close to the edge of the band to be decided")
         return self._first(self._panels.closer(cells, index, index, SPLIT), depth + 1)
 
-    def _monotone(self, cells: Cells, index: int) -> Zero | None:
-        """Pass a monotone cell if its far end is inside."""
+    def _to_far_end(self, cells: Cells, index: int) -> Zero | None:
+        """Pass a cell if its far end is inside; it is monotone, or turns without leaving the band."""
         left, right = ends(cells, index)
         far = left if self._backward else right
-        for edge, beyond in ((self._band.low, -1), (self._band.high, 1)):
-            if edge is not None and sign_at(self._deviation, far, 0, edge) == beyond:
-                return Zero(self._deviation, value_bracket(cells, index, edge))
+        for edge, outward in ((self._band.low, -1), (self._band.high, 1)):
+            if edge is not None and sign_at(self._deviation, far, 0, edge) == outward:
+                return self._leaving(cells, index, edge, outward)
         return None
 
     def _over(self, turning: Zero, cells: Cells, index: int) -> Zero | None:
@@ -185,13 +190,13 @@ class Walk:
         top = float(cells.bend_high[index]) < 0.0
         edge = self._band.high if top else self._band.low
         if edge is None:
-            return self._monotone(cells, index)
+            return self._to_far_end(cells, index)
         bits = LOWEST
         while bits <= HIGHEST:
             with working_precision(bits + 64):
                 excess = (turning.value(bits) - arb(edge)) * (1 if top else -1)
             if excess < 0:
-                return self._monotone(cells, index)
+                return self._to_far_end(cells, index)
             if excess > 0:
                 return self._up_to(turning, cells, index, 1 if top else -1, excess)
             bits *= 2
