@@ -23,7 +23,7 @@ from specgate.response.tail import tail
 RESOLUTION = 2e-3
 """How closely cells follow the response at first, in parts of its change."""
 
-FAINT = 1e-200
+FAINT = 1e-30
 """Deviation, in units of the sum of the modes, below which floats are not trusted with its sign."""
 
 WORK = 1_000_000

@@ -38,10 +38,9 @@ def points(deviation: Deviation, window: fmpq, known: Iterable[fmpq], jump: fmpq
     even = most - 1 - len(fixed) - len(early)
     scale = dyadic(deviation.time_exponent)
     expansion = deviation.at(LOWEST)
-    step = window * scale / even
-    edges = _edges(expansion, step, even)
-    values = dict(zip(edges, _at(expansion, edges), strict=True)) if edges else dict(_even(expansion, step, even))
-    single = [time * scale for time in [*fixed, *early]]
+    edges = _edges(expansion, window * scale, even)
+    values = dict(_even(expansion, window * scale, even - len(edges)))
+    single = [*edges, *(time * scale for time in [*fixed, *early])]
     values.update(zip(single, _at(expansion, single), strict=True))
     with working_precision(LOWEST):
         unit, offset = power_of_two(deviation.value_exponent), arb(deviation.offset)
@@ -90,16 +89,23 @@ def _early(deviation: Deviation, window: fmpq, most: int) -> list[fmpq]:
     return times
 
 
-def _edges(expansion: Expansion, step: fmpq, count: int) -> list[fmpq]:
-    """Return summits and troughs of the strongest oscillation in turn, if its periods are too dense for even times."""
+def _edges(expansion: Expansion, window: fmpq, count: int) -> list[fmpq]:
+    """Return summits and troughs of the strongest oscillation, if its periods are too dense for `count` even times.
+
+    All of them, or, where they are too many, one of either kind in turn.
+    """
     swings = [mode for mode in expansion.modes if mode.oscillates]
     strongest = max(swings, key=lambda mode: float(abs(mode.coefficients[0]).mid()), default=None)
-    if strongest is None or float_of(step) * float(strongest.pole.imag) * _DENSE < 2.0 * pi:
+    if strongest is None or float_of(window) * float(strongest.pole.imag) * _DENSE < 2.0 * pi * count:
         return []
     with working_precision(expansion.bits):
         half_turn = arb.pi() / strongest.pole.imag
         first = -strongest.coefficients[0].arg() / strongest.pole.imag
-        times = {_edge(step * k, k, first, half_turn) for k in range(1, count + 1)}
+        turns = ((arb(window) - first) / half_turn).mid().fmpq().floor()
+        if 2 * turns <= count:
+            times = {(first + k * half_turn).mid().fmpq() for k in range(int(turns) + 1)}
+        else:
+            times = {_edge(window * k / count, k, first, half_turn) for k in range(1, count + 1)}
     return sorted(time for time in times if time > 0)
 
 
@@ -116,11 +122,14 @@ def _at(expansion: Expansion, times: Sequence[fmpq]) -> list[arb]:
         return [expansion.deviation(arb(time))[0] for time in times]
 
 
-def _even(expansion: Expansion, step: fmpq, count: int) -> list[tuple[fmpq, arb]]:
-    """Return (time, g) at count multiples of a step; e^(pt) is the product of a coarse and a fine exponential.
+def _even(expansion: Expansion, window: fmpq, count: int) -> list[tuple[fmpq, arb]]:
+    """Return (time, g) at count even times; e^(pt) is the product of a coarse and a fine exponential.
 
     One factor from step to step would not do: the boxes around complex numbers grow with every turn.
     """
+    if count == 0:
+        return []
+    step = window / count
     times = [step * k for k in range(1, count + 1)]
     with working_precision(expansion.bits):
         coefficients = [c for mode in expansion.modes for c in mode.coefficients]

@@ -156,10 +156,17 @@ class PanelMaker:
             balls = [entry.real for entry in (matrix * acb_mat(len(columns), 1, columns)).entries()]
         return _in_floats(balls, start, half, _remainders(local, half, self._degree) + dead)
 
-    def closer(self, cells: Cells, first: int, last: int, parts: int) -> Cells:
-        """Return a run of cells, in equal parts, on a panel of its own that rounds in the measure of what it sees."""
+    def closer(self, cells: Cells, first: int, last: int, parts: int) -> Cells | None:
+        """Return a run of cells, in equal parts, on a panel of its own that rounds in the measure of what it sees.
+
+        None: the run is too long for one panel.
+        """
         start = cells.segment.start + exact(float(cells.left[first]))
         width = float(cells.right[last]) - float(cells.left[first])
+        left = float_of(start)
+        living, _ = self._living(left, left + width, _QUITE_DEAD)
+        if width * float(self._speeds[living].max(initial=0.0)) > 2.0 * _REACH:
+            return None
         nodes: Floats = width / parts * np.arange(parts + 1, dtype=np.float64)
         return cells_between(self.panel(start, width / 2.0, _QUITE_DEAD), nodes[None, :])
 

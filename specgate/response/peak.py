@@ -133,14 +133,26 @@ class Climb:
             if depth >= _CLOSE or (local and blurred[group[0]]):
                 self._closely(cells, int(group[0]), bool(domed[group[0]]), float(high[group[0]]), depth)
             elif blurred[group[0]]:
-                group = _run(cells, pending[blurred[pending]])
-                self._budget.spend(BALLS)
-                self._search(self._panels.closer(cells, int(group[0]), int(group[-1]), 2 * SPLIT), 0, local=True)
+                group = self._sharpen(cells, _run(cells, pending[blurred[pending]]), depth)
             else:
                 sharp = pending[~blurred[pending]]
                 group = np.sort(sharp[np.argsort(-high[sharp], kind="stable")[:_GROUP]])
                 self._search(split(cells, group, self._budget), depth + 1, local=local)
             unknown[group] = False
+
+    def _sharpen(self, cells: Cells, run: NDArray[np.intp], depth: int) -> NDArray[np.intp]:
+        """Search the first of a run of blurred cells on panels of their own, or split where that is too long for one.
+
+        Return the cells that were searched.
+        """
+        self._budget.spend(BALLS)
+        for group in (run, run[:1]):
+            closer = self._panels.closer(cells, int(group[0]), int(group[-1]), 2 * SPLIT)
+            if closer is not None:
+                self._search(closer, 0, local=True)
+                return group
+        self._search(split(cells, run[:1], self._budget), depth + 1, local=False)
+        return run[:1]
 
     def _take(self, cells: Cells, which: NDArray[np.intp]) -> None:
         """Keep the summits of cells that hold exactly one, with their heights.
@@ -180,7 +192,9 @@ class Climb:
             return
         if depth >= _DEEPEST:
             raise OutOfWork("a flat stretch of the response may hold its greatest value and cannot be decided")
-        self._search(self._panels.closer(cells, index, index, SPLIT), depth + 1, local=True)
+        closer = self._panels.closer(cells, index, index, SPLIT)
+        parts = split(cells, np.array([index]), self._budget) if closer is None else closer
+        self._search(parts, depth + 1, local=closer is not None)
 
 
 def _blurred(cells: Cells) -> NDArray[np.bool_]:

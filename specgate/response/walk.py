@@ -174,7 +174,9 @@ class Walk:
                 return self._to_far_end(cells, index)
         if depth >= _DEEPEST:
             raise OutOfWork("a flat stretch of the response is too close to the edge of the band to be decided")
-        return self._first(self._panels.closer(cells, index, index, SPLIT), depth + 1)
+        closer = self._panels.closer(cells, index, index, SPLIT)
+        parts = split(cells, np.array([index]), self._budget) if closer is None else closer
+        return self._first(parts, depth + 1)
 
     def _to_far_end(self, cells: Cells, index: int) -> Zero | None:
         """Pass a cell if its far end is inside; it is monotone, or turns without leaving the band."""

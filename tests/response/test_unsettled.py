@@ -1,0 +1,114 @@
+"""Responses that do not settle: what grows, what swings for ever, and what is still finite, in closed form."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import pytest
+from flint import arb, fmpq
+
+from specgate.response.answers import Answer
+from specgate.response.step import StepResponse
+from specgate.terms.precision import working_precision
+
+Make = Callable[..., StepResponse]
+
+BOUND = "the response grows without bound"
+
+
+def assert_is(answer: Answer, value: arb) -> None:
+    assert answer.absent is None
+    with working_precision(300):
+        assert answer.enclose(200).overlaps(value)
+        assert answer.enclose(200).rel_accuracy_bits() >= 100
+
+
+def unbounded(answer: Answer) -> bool:
+    return answer.absent is not None and answer.absent.proved and answer.absent.reason == BOUND
+
+
+@pytest.mark.parametrize(
+    ("numerator", "denominator", "up", "down"),
+    [
+        ([1], [1, 0], True, False),  # t
+        ([-1], [1, 1, 0], False, True),  # -(t - 1 + e^-t)
+        ([1], [1, 0, 0], True, False),  # t^2 / 2
+        ([1], [1, -1], True, False),  # e^t - 1
+        ([1], [1, "-1e-9", 1], True, True),  # a pair that grows by 1e-9 a radian or so
+        ([1, 0], [1, 0, 2, 0, 1], True, True),  # t sin(t) / 2
+        ([2], [1, 1, "-1e-7"], True, False),  # a pole at 1e-7
+    ],
+)
+def test_growth_to_one_side_or_both(
+    numerator: list[str | int], denominator: list[str | int], up: bool, down: bool, respond: Make
+) -> None:
+    response = respond(numerator, denominator)
+    assert not response.settles
+    assert unbounded(response.greatest().value) is up
+    assert unbounded(response.least().value) is down
+    assert unbounded(response.peak_deviation().value)
+    for extreme, grows in ((response.greatest(), up), (response.least(), down)):
+        if not grows:
+            assert extreme.value.exact == 0
+            assert extreme.time.exact == 0
+
+
+def test_the_finite_side_of_a_growing_response(respond: Make) -> None:
+    """y = 2 - t - 2 e^-t of (1 - s)/(s^2 + s) is greatest, 1 - ln 2, at t = ln 2, and falls without bound."""
+    response = respond([-1, 1], [-1, -1, 0])
+    with working_precision(300):
+        assert_is(response.greatest().value, 1 - arb(2).log())
+        assert_is(response.greatest().time, arb(2).log())
+    assert unbounded(response.least().value)
+
+
+def test_a_lasting_swing(respond: Make) -> None:
+    """y = 1 - cos t, and y = sin t, and y = cos t: taken exactly where it starts at a summit or in a trough."""
+    one = respond([1], [1, 0, 1])
+    with working_precision(300):
+        assert_is(one.greatest().value, arb(2))
+        assert_is(one.greatest().time, arb.pi())
+    assert (one.least().value.exact, one.least().time.exact) == (0, 0)
+    sine = respond([1, 0], [1, 0, 1])
+    with working_precision(300):
+        assert_is(sine.greatest().time, arb.pi() / 2)
+        assert_is(sine.least().time, 3 * arb.pi() / 2)
+        assert_is(sine.peak_deviation().value, arb(1))
+    cosine = respond([1, 0, 0], [1, 0, 1])
+    assert (cosine.greatest().value.exact, cosine.greatest().time.exact) == (1, 0)
+
+
+def test_a_lasting_swing_with_a_transient(respond: Make) -> None:
+    """1/((s+1)(s^2+1)): y = 1 - e^-t/2 - (cos t + sin t)/2 comes up to 1 + 1/sqrt(2) from below and never takes it."""
+    response = respond([1], [1, 1, 1, 1])
+    with working_precision(300):
+        assert_is(response.greatest().value, 1 + 1 / arb(2).sqrt())
+    assert response.greatest().time.absent is not None
+    assert response.greatest().time.absent.proved
+    assert response.least().value.exact == 0
+
+
+def test_a_transient_that_helps_the_first_summit(respond: Make) -> None:
+    """(s^2+3s+1)/((s+1)(s^2+1)): y = 1 + e^-t/2 + ... goes above what it swings to in the end, once, and takes it."""
+    response = respond([1, 3, 1], [1, 1, 1, 1])
+    extreme = response.greatest()
+    assert extreme.time.absent is None
+    value = extreme.value.enclose(128)
+    with working_precision(256):
+        assert response.enclose(extreme.time.enclose(128).mid().fmpq(), 128).overlaps(value)
+        late = max(float(response.enclose(fmpq(2000 + k, 20), 64)) for k in range(200))
+    assert late < float(value) - 1e-3
+
+
+def test_several_lasting_swings_are_left_open(respond: Make) -> None:
+    extreme = respond([1, 1], [1, 0, 5, 0, 4]).greatest()
+    assert extreme.value.absent is not None
+    assert not extreme.value.absent.proved
+
+
+def test_values_exist_all_the_same(respond: Make) -> None:
+    response = respond([1], [1, 1, 0])
+    with working_precision(200):
+        assert response.enclose(fmpq(3), 128).overlaps(2 + (-arb(3)).exp())
+    assert response.initial_value().exact == 0
+    assert response.enclose(fmpq(0), 64).contains(0)
