@@ -29,8 +29,11 @@ def expected() -> set[str]:
 def build(folder: Path) -> Path:
     """Build the wheel; an old build folder would ship renamed files."""
     shutil.rmtree(ROOT / "build", ignore_errors=True)
-    subprocess.run([sys.executable, "-m", "build", "--wheel", "--outdir", str(folder), str(ROOT)], check=True,
-                   stdout=subprocess.DEVNULL)
+    subprocess.run(
+        [sys.executable, "-m", "build", "--wheel", "--outdir", str(folder), str(ROOT)],
+        check=True,
+        stdout=subprocess.DEVNULL,
+    )
     (wheel,) = folder.glob("*.whl")
     return wheel
 
@@ -55,7 +58,10 @@ def run_elsewhere(wheel: Path, folder: Path) -> None:
     for interpreter in (python, Path(sys.executable)):
         run = subprocess.run(
             [interpreter, "-m", "specgate", "check", str(example), "--format", "json"],
-            cwd="/", capture_output=True, text=True, check=False,
+            cwd="/",
+            capture_output=True,
+            text=True,
+            check=False,
         )
         if run.returncode not in (0, 1):
             sys.exit(f"{interpreter}: exit {run.returncode}\n{run.stderr}")

@@ -107,7 +107,9 @@ def test_unusable_input_is_status_2_with_a_place(tmp_path: Path) -> None:
     jsonschema.Draft202012Validator(schema).validate(as_json)
 
 
-@pytest.mark.parametrize("arguments", [("check",), ("chekc", HELD), ("check", HELD, "--format", "xml"), ("report", HELD)])
+@pytest.mark.parametrize(
+    "arguments", [("check",), ("chekc", HELD), ("check", HELD, "--format", "xml"), ("report", HELD)]
+)
 def test_an_unusable_call_is_status_2(arguments: tuple[str, ...]) -> None:
     done = run(*arguments)
     assert done.returncode == status.UNUSABLE

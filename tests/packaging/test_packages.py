@@ -14,9 +14,10 @@ PYPROJECT = tomllib.loads((ROOT / "pyproject.toml").read_text())
 
 
 def test_packages_match_the_disk() -> None:
-    on_disk = {
-        ".".join(init.parent.relative_to(ROOT).parts) for init in (ROOT / "specgate").rglob("__init__.py")
-    } | {"specgate.schemas", "specgate.templates"}
+    on_disk = {".".join(init.parent.relative_to(ROOT).parts) for init in (ROOT / "specgate").rglob("__init__.py")} | {
+        "specgate.schemas",
+        "specgate.templates",
+    }
     assert set(PYPROJECT["tool"]["setuptools"]["packages"]) == on_disk
 
 
