@@ -77,15 +77,15 @@ def number(value: float, significant: int = SIGNIFICANT) -> str:
     return written(exact, min(place, 0) if exact.adjusted() < SHORT else place)
 
 
-def fraction(text: str) -> str:
-    """Return an exact rational of the results format: itself where short, else a decimal marked as rounded (`≈`)."""
+def fraction(text: str) -> tuple[str, bool]:
+    """Return an exact rational of the results format as printed, and whether that is rounded: it is not where short."""
     value = Fraction(text)
     quotient = Decimal(value.numerator) / Decimal(value.denominator)
     if _short(quotient) and Fraction(quotient) == value:
-        return written(quotient, last_place(quotient, exact=True))
+        return written(quotient, last_place(quotient, exact=True)), False
     if len(text) <= RATIO:
-        return text.replace("-", MINUS)
-    return "≈" + written(quotient, quotient.adjusted() - (SIGNIFICANT + 1))
+        return text.replace("-", MINUS), False
+    return written(quotient, quotient.adjusted() - (SIGNIFICANT + 1)), True
 
 
 def half_width(value: float, lower: float, upper: float) -> str:

@@ -119,27 +119,31 @@ _BLANKS = {ord(FIGURE_SPACE): " ", ord(POINT_SPACE): " "}
 
 
 def _rows(row: matrix.Row) -> Iterator[tuple[list[Cell], str]]:
-    """Yield a requirement as lines: its id stands on the first, what the columns cannot say below the line."""
-    if not row.lines:
-        how = row.decided_by if row.decided_by != "criteria" else ""
-        empty = [_state(row.verdict), Cell(row.id), Cell(how, "quiet"), *[Cell("")] * (len(COLUMNS) - 3)]
-        yield empty, "" if row.verdict.weight >= 2 else row.reason
-        return
-    for number, line in enumerate(row.lines):
-        verdict = line.verdict if len(row.lines) > 1 else row.verdict
-        standing = line.standing
-        shown = [
-            _state(verdict),
-            Cell(row.id if number == 0 else ""),
+    """Yield a requirement as lines, what the columns cannot say below each; several limits follow their requirement."""
+    if len(row.lines) != 1:
+        how = f"{len(row.lines)} limits" if row.lines else row.decided_by if row.decided_by != "criteria" else ""
+        blank = [Cell("")] * (len(COLUMNS) - 3)
+        yield [_state(row.verdict), Cell(row.id), Cell(how, "quiet"), *blank], "" if _calm(row) else row.reason
+    for line in row.lines:
+        several = len(row.lines) > 1
+        verdict = _state(line.verdict if several else row.verdict)
+        cells = [
+            Cell(f"  {verdict.text}", verdict.key) if several else verdict,
+            Cell("" if several else row.id),
             Cell(line.measure.lower()),
             Cell(line.on),
             Cell(line.result.whole),
             Cell(line.limit),
             Cell(f"{line.reserve} {line.reserve_unit}".strip()),
-            _standing(standing),
+            _standing(line.standing),
             Cell(line.basis.rpartition(" and ")[2]),
         ]
-        yield shown, (line.reason or line.result.note) if line.result.value == "none" else ""
+        yield cells, (line.reason or line.result.note) if line.result.value == "none" else ""
+
+
+def _calm(row: matrix.Row) -> bool:
+    """Tell whether a requirement needs no word of explanation here: it is met, or its limits stand below it."""
+    return row.verdict.weight >= 2 or bool(row.lines)
 
 
 def _levels(findings: tuple[FindingReview, ...]) -> str:

@@ -107,6 +107,11 @@ def limit_in_words(of: LimitReview) -> str:
     return yes_no(of.equals) if isinstance(of.equals, bool) else f"exactly {of.equals}"
 
 
+def demanded(of: LimitReview) -> str:
+    """Return a limit as what is allowed or required: `allowed at most 1.2 s`, `required at least 6 dB`."""
+    return f"{'allowed' if of.at_most is not None else 'required'} {limit_in_words(of)}"
+
+
 def edges(of: LimitReview) -> tuple[float, ...]:
     """Return the numbers at which the limit lies, in its own unit; none for yes/no and for unlike units."""
     if of.between is not None:

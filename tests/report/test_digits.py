@@ -90,7 +90,7 @@ def test_numbers_meet_at_the_decimal_sign() -> None:
         (("1",), "1"),
         (("-7",), "−7"),
         ((), "0"),
-        (("123456789/1000000007", "0"), "≈0.123457 s"),
+        (("123456789/1000000007", "0"), "≈ 0.123457 s"),
     ],
 )
 def test_polynomials(coefficients: tuple[str, ...], printed: str) -> None:

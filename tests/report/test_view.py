@@ -82,13 +82,13 @@ def test_claims_out_of_range_come_first(sample: ModuleType) -> None:
 
 def test_what_holds_the_gate_is_said_once_per_requirement_with_its_number(sample: ModuleType) -> None:
     holds = {hold.requirement: hold for hold in front.front(sample.review()).holds}
-    assert holds["BD-SYS-11"].sentence == (
-        "BD-SYS-11 is not met: settles in 5.037 s where at most 1 s is allowed; "
-        "rests on an approximation outside its range"
-    )
-    assert holds["BD-SYS-11"].number == (
+    assert [state.key for state in holds["BD-SYS-11"].states] == ["non_compliant", "out_of_range"]
+    assert holds["BD-SYS-11"].words == (
         "Settling time 5.037 s, allowed at most 1 s; formula 0.8 s, true 5.037 s: −84 % on the unsafe side"
     )
+    assert holds["BD-SYS-13"].words == "the response has no final value: 2 poles at the origin"
+    assert [state.key for state in holds["BD-SYS-14"].states] == ["open"]
+    assert list(holds)[-2:] == ["BD-NEED-1", "BD-NEED-2"]
     assert front.sentence(sample.review()) == "It is held by 6 requirements and 2 other errors."
 
 

@@ -10,7 +10,7 @@ from specgate.report.digits import number
 from specgate.report.figures import svg
 from specgate.report.figures.scales import Scale
 
-WIDTH, HEIGHT = 310.0, 236.0
+WIDTH, HEIGHT = 310.0, 200.0
 LEFT, RIGHT, TOP, BOTTOM = 40.0, 12.0, 16.0, 34.0
 CROWD = 12.0
 """Points more than this many times farther out than the middle one are named at the edge instead of drawn."""
@@ -68,35 +68,29 @@ def draw(figure: PoleFigure) -> str:
 
 
 def _frame(x: Scale, y: Scale) -> list[str]:
-    bottom, parts = HEIGHT - BOTTOM, []
-    for value, label in x.ticks(5):
-        parts += [
-            svg.line(x(value), bottom, x(value), bottom + 4, width=0.7),
-            svg.text(x(value), bottom + 13, label, 8, "middle"),
-        ]
-    for value, label in y.ticks(5):
-        parts += [
-            svg.line(LEFT - 4, y(value), LEFT, y(value), width=0.7),
-            svg.text(LEFT - 6, y(value) + 3, label, 8, "end"),
-        ]
-    parts += [svg.line(LEFT, bottom, WIDTH - RIGHT, bottom, width=0.8), svg.line(LEFT, TOP, LEFT, bottom, width=0.8)]
-    parts += [svg.line(LEFT, y(0), WIDTH - RIGHT, y(0), svg.QUIET, 0.6), svg.line(x(0), TOP, x(0), bottom, width=1.0)]
-    parts.append(svg.text((LEFT + WIDTH - RIGHT) / 2, HEIGHT - 6, "real part, 1/s", 8, "middle", svg.QUIET))
+    bottom, right = HEIGHT - BOTTOM, WIDTH - RIGHT
+    across, upwards = list(x.ticks(5)), list(y.ticks(5))
+    parts = [svg.text(x(value), bottom + 13, label, 8, "middle") for value, label in across]
+    parts += [svg.text(LEFT - 6, y(value) + 3, label, 8, "end") for value, label in upwards]
+    ticks = [(x(value), bottom, x(value), bottom + 4) for value, _ in across]
+    ticks += [(LEFT - 4, y(value), LEFT, y(value)) for value, _ in upwards]
+    axes = [(LEFT, bottom, right, bottom), (LEFT, TOP, LEFT, bottom), (x(0), TOP, x(0), bottom)]
+    parts.append(svg.strokes([*axes, *ticks], svg.INK, 0.8))
+    parts.append(svg.line(LEFT, y(0), right, y(0), svg.QUIET, 0.6))
+    parts.append(svg.text((LEFT + right) / 2, HEIGHT - 6, "real part, 1/s", 8, "middle", svg.QUIET))
     parts.append(svg.text(2, 9, "imaginary part, 1/s", 8, fill=svg.QUIET))
     return parts
 
 
 def _rays(x: Scale, y: Scale) -> list[str]:
     """Draw a ray for each damping, with its figure where the upper one leaves the frame."""
-    parts = []
+    rays, labels = [], []
     for damping in DAMPINGS:
         slope = math.sqrt(1 - damping**2) / damping
         real = min(-x.low, y.high / slope)
-        for side in (1, -1):
-            parts.append(svg.line(x(0), y(0), x(-real), y(side * real * slope), svg.HAIR, 0.6))
-        edge = (x(-real) + 3, y(real * slope) + 9)
-        parts.append(svg.text(*edge, f"{damping}", 7, fill=svg.QUIET))
-    return parts
+        rays += [(x(0), y(0), x(-real), y(side * real * slope)) for side in (1, -1)]
+        labels.append(svg.text(x(-real) + 3, y(real * slope) + 9, f"{damping}", 7, fill=svg.QUIET))
+    return [svg.strokes(rays, svg.HAIR, 0.6), *labels]
 
 
 def _mark(point: Point, x: Scale, y: Scale) -> str:
@@ -107,9 +101,8 @@ def _mark(point: Point, x: Scale, y: Scale) -> str:
         )
     else:
         colour = svg.FORBIDDEN if point.real >= 0 else svg.INK
-        mark = svg.line(at - r, level - r, at + r, level + r, colour, 1.6) + svg.line(
-            at - r, level + r, at + r, level - r, colour, 1.6
-        )
+        saltire = [(at - r, level - r, at + r, level + r), (at - r, level + r, at + r, level - r)]
+        mark = svg.strokes(saltire, colour, 1.6)
     if point.kind == "hidden":
         mark += svg.tag(
             "rect",

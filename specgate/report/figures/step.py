@@ -8,7 +8,7 @@ from typing import Literal
 from specgate.report.figures import svg
 from specgate.report.figures.scales import Scale, widened
 
-WIDTH, HEIGHT = 640.0, 236.0
+WIDTH, HEIGHT = 640.0, 186.0
 LEFT, RIGHT, TOP, BOTTOM = 58.0, 14.0, 24.0, 38.0
 STRIP = 9.0
 """Breadth of the hatching along a limit, pixels."""
@@ -103,20 +103,17 @@ def draw(figure: StepFigure) -> str:
 
 
 def _frame(figure: StepFigure, x: Scale, y: Scale) -> list[str]:
-    bottom = HEIGHT - BOTTOM
-    parts = []
-    for value, label in x.ticks(8):
-        parts += [svg.line(x(value), bottom, x(value), bottom + 4, width=0.7)]
-        parts += [svg.text(x(value), bottom + 14, label, anchor="middle")]
-    for value, label in y.ticks(5):
-        parts += [svg.line(LEFT, y(value), WIDTH - RIGHT, y(value), svg.HAIR, 0.5)]
-        parts += [svg.text(LEFT - 5, y(value) + 3, label, anchor="end")]
+    bottom, right = HEIGHT - BOTTOM, WIDTH - RIGHT
+    across, upwards = list(x.ticks(6)), list(y.ticks(4))
+    parts = [svg.strokes([(LEFT, y(value), right, y(value)) for value, _ in upwards], svg.HAIR, 0.5)]
+    parts += [svg.text(LEFT - 5, y(value) + 3, label, anchor="end") for value, label in upwards]
+    parts += [svg.text(x(value), bottom + 14, label, anchor="middle") for value, label in across]
     if figure.final is not None and y.holds(figure.final):
         level = y(figure.final)
-        parts.append(svg.line(LEFT, level, WIDTH - RIGHT, level, svg.QUIET, 0.7, stroke_dasharray="5 3"))
-    parts.append(svg.line(LEFT, bottom, WIDTH - RIGHT, bottom, width=0.8))
-    parts.append(svg.line(LEFT, TOP, LEFT, bottom, width=0.8))
-    parts.append(svg.text((LEFT + WIDTH - RIGHT) / 2, HEIGHT - 6, "time, s", anchor="middle", fill=svg.QUIET))
+        parts.append(svg.line(LEFT, level, right, level, svg.QUIET, 0.7, stroke_dasharray="5 3"))
+    ticks = [(x(value), bottom, x(value), bottom + 4) for value, _ in across]
+    parts.append(svg.strokes([(LEFT, bottom, right, bottom), (LEFT, TOP, LEFT, bottom), *ticks], svg.INK, 0.8))
+    parts.append(svg.text((LEFT + right) / 2, HEIGHT - 6, "time, s", anchor="middle", fill=svg.QUIET))
     unit = f", {figure.unit}" if figure.unit not in ("", "1") else ""
     name = figure.signal if len(figure.signal) <= 40 else figure.signal[:39] + "…"
     parts.append(svg.text(4, 12, f"{name}{unit}", fill=svg.QUIET))
@@ -172,10 +169,8 @@ def _label(content: str, at: float, baseline: float, taken: list[float]) -> str:
 
 def _cross(cross: Cross, x: Scale, y: Scale) -> str:
     at, level, half = x(cross.time), y(cross.value), 4.5
-    parts = []
-    for stroke, width in ((svg.PAPER, 4.5), (svg.INK, 1.7)):
-        parts.append(svg.line(at - half, level - half, at + half, level + half, stroke, width))
-        parts.append(svg.line(at - half, level + half, at + half, level - half, stroke, width))
+    saltire = [(at - half, level - half, at + half, level + half), (at - half, level + half, at + half, level - half)]
+    parts = [svg.strokes(saltire, svg.PAPER, 4.5), svg.strokes(saltire, svg.INK, 1.7)]
     scale = x if cross.axis == "time" else y
     low, high = (scale(min(max(v, scale.low), scale.high)) for v in (cross.low, cross.high))
     if abs(high - low) > 2 * half:

@@ -87,6 +87,12 @@ def path(points: Iterable[tuple[float, float]], stroke: str, width: float, **mor
     )
 
 
+def strokes(segments: Iterable[tuple[float, float, float, float]], stroke: str, width: float, **more: object) -> str:
+    """Return straight lines, each from (x1, y1) to (x2, y2), as one element: many elements are slow to lay out."""
+    moves = "".join(f"M{short(x1)} {short(y1)}L{short(x2)} {short(y2)}" for x1, y1, x2, y2 in segments)
+    return tag("path", d=moves, fill="none", stroke=stroke, stroke_width=width, class_=colour_class(stroke), **more)
+
+
 def rectangle(x: float, y: float, width: float, height: float, fill: str, **more: object) -> str:
     """Return a filled rectangle."""
     return tag("rect", x=float(x), y=float(y), width=float(width), height=float(height), fill=fill, **more)

@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from itertools import pairwise
 
 from specgate.report.figures import svg
 from specgate.report.figures.wiring_graph import Graph, NotDrawable, graph
-from specgate.report.figures.wiring_layout import Box, Layout, Run, layouts, two_lines
+from specgate.report.figures.wiring_layout import Box, Layout, layouts, two_lines
 
 MONO = "DejaVu Sans Mono"
 MARGIN, BETWEEN = 6.0, 18.0
@@ -51,28 +52,26 @@ def draw(figure: WiringFigure) -> str:
 
 
 def _picture(wired: Graph, picture: Layout) -> list[str]:
-    parts = [part for run in picture.runs for part in _run(run)]
-    parts += [part for box in picture.boxes.values() for part in _box(wired, box)]
-    parts += [
+    segments, heads, dots = [], [], []
+    for run in picture.runs:
+        (x0, y0), (x1, y1) = run.corners[-2:]
+        length = max(abs(x1 - x0), abs(y1 - y0)) or 1.0
+        ux, uy = (x1 - x0) / length, (y1 - y0) / length
+        back = (x1 - 6 * ux, y1 - 6 * uy)
+        corners = [*run.corners[:-1], back]
+        segments += [(*start, *end) for start, end in pairwise(corners)]
+        wings = [(back[0] - 2.6 * uy, back[1] + 2.6 * ux), (back[0] + 2.6 * uy, back[1] - 2.6 * ux)]
+        heads.append("L".join(f"{svg.short(x)} {svg.short(y)}" for x, y in [(x1, y1), *wings]))
+        if run.tapped:
+            dots.append(svg.tag("circle", cx=corners[0][0], cy=corners[0][1], r=2.0, fill=svg.INK, class_="f-ink"))
+    lines = svg.strokes(segments, svg.INK, 0.9)
+    arrows = svg.tag("path", d="".join(f"M{head}Z" for head in heads), fill=svg.INK, class_="f-ink")
+    boxes = [part for box in picture.boxes.values() for part in _box(wired, box)]
+    labels = [
         svg.text(label.x, label.y, label.words, 8, label.anchor, svg.QUIET, font_family=MONO)
         for label in picture.labels
     ]
-    return parts
-
-
-def _run(run: Run) -> list[str]:
-    (x0, y0), (x1, y1) = run.corners[-2:]
-    length = max(abs(x1 - x0), abs(y1 - y0)) or 1.0
-    ux, uy = (x1 - x0) / length, (y1 - y0) / length
-    back = (x1 - 6 * ux, y1 - 6 * uy)
-    wings = [(back[0] - 2.6 * uy, back[1] + 2.6 * ux), (back[0] + 2.6 * uy, back[1] - 2.6 * ux)]
-    points = " ".join(f"{svg.short(x)},{svg.short(y)}" for x, y in [(x1, y1), *wings])
-    parts = [svg.path([*run.corners[:-1], back], svg.INK, 0.9)]
-    parts.append(svg.tag("polygon", points=points, fill=svg.INK, class_="f-ink"))
-    if run.tapped:
-        x, y = run.corners[0]
-        parts.append(svg.tag("circle", cx=x, cy=y, r=2.0, fill=svg.INK, class_="f-ink"))
-    return parts
+    return [lines, arrows, *dots, *boxes, *labels]
 
 
 def _box(wired: Graph, box: Box) -> list[str]:

@@ -37,8 +37,9 @@ class Condition:
 
 @dataclass(frozen=True)
 class Audit:
-    """One basis, audited."""
+    """One basis, audited. One that stands, and agrees with its formula, is `brief`: a line says all of it."""
 
+    brief: bool
     anchor: str
     requirement: str
     requirement_anchor: str
@@ -76,6 +77,7 @@ def audits(review: Review) -> tuple[Audit, ...]:
 def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -> Audit:
     basis = criterion.basis
     return Audit(
+        brief=basis.standing == "sound" and basis.claim_agrees is not False,
         anchor=anchors.audit(name, number),
         requirement=name,
         requirement_anchor=anchors.row(name),
@@ -96,7 +98,7 @@ def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -
         implied=_implied(basis),
         conditions=tuple(_condition(review, item) for item in basis.conditions),
         instead=_instead(review, basis),
-        reason=basis.reason or "",
+        reason="" if any(item.holds is False for item in basis.conditions) else basis.reason or "",
         picture=_picture(review, name, number, criterion),
     )
 
@@ -118,6 +120,8 @@ def _error(basis: BasisReview) -> str:
     if basis.error.absolute is not None and basis.error.absolute.value is not None:
         absolute = basis.error.absolute
         parts.append(with_unit(digits.signed(digits.number(absolute.value or 0.0)), absolute.unit))
+    if basis.error.relative == 0:
+        return "none"
     size = f"{parts[0]} ({parts[1]})" if len(parts) == 2 else "".join(parts)
     return f"{size} {SIDES.get(basis.error.side, basis.error.side)}".strip()
 

@@ -12,6 +12,7 @@ from specgate.report import anchors
 from specgate.report.digits import percent
 from specgate.report.parts import shown
 from specgate.report.words import (
+    LEVELS,
     OUTCOMES,
     SIDES,
     STANDINGS,
@@ -19,7 +20,7 @@ from specgate.report.words import (
     Status,
     amount,
     counted,
-    limit_in_words,
+    demanded,
     listed,
     titled,
 )
@@ -52,12 +53,12 @@ class Count:
 
 @dataclass(frozen=True)
 class Hold:
-    """One thing that holds the gate: the requirement (None: none), the sentence, the number, where to read on."""
+    """One thing that holds the gate: a requirement (or none) with its states, the number that decides it, else why."""
 
-    requirement: str | None
-    sentence: str
-    number: str
-    anchor: str | None
+    requirement: str
+    states: tuple[Status, ...]
+    words: str
+    anchor: str
 
 
 @dataclass(frozen=True)
@@ -124,7 +125,7 @@ def sentence(review: Review) -> str:
         judged = counted(len(review.requirements) - exempt, "requirement")
         return f"Nothing that the project's policy names holds the gate: {judged} judged{rest}."
     holds = _holds(review)
-    named = sum(hold.requirement is not None for hold in holds)
+    named = sum(bool(hold.requirement) for hold in holds)
     others = len(holds) - named
     parts = [counted(named, "requirement")] if named else []
     parts += [counted(others, "other error" if named else "error")] if others else []
@@ -145,9 +146,15 @@ def _holds(review: Review) -> tuple[Hold, ...]:
 def _hold(review: Review, key: str, said: list[str]) -> Hold:
     if key not in review.requirements:
         loop = next((word for word in re.findall(r"[\w.-]+", key) if word in review.loops), None)
-        return Hold(None, key, "", anchors.sheet(loop) if loop else "findings")
-    words = "; ".join([said[0], *(reason.removeprefix(key).lstrip(": ") for reason in said[1:])])
-    return Hold(key, words, deciding_numbers(review, review.requirements[key]), anchors.row(key))
+        return Hold("", (), key, anchors.sheet(loop) if loop else "findings")
+    requirement = review.requirements[key]
+    states = [VERDICTS[requirement.verdict]] if requirement.verdict in ("non_compliant", "open") else []
+    if requirement.standing in ("out_of_range", "inconclusive"):
+        states.append(STANDINGS[requirement.standing])
+    words = requirement.reason if states and requirement.reason else said[0].removeprefix(key).lstrip(": ")
+    return Hold(
+        key, tuple(states) or (LEVELS["error"],), deciding_numbers(review, requirement) or words, anchors.row(key)
+    )
 
 
 def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
@@ -158,7 +165,7 @@ def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
         found = shown.result(judged.result, judged.limit)
         if found.value != "none":
             name = titled(judged.measure, review.definitions)
-            parts.append(f"{name} {found.whole}, allowed {limit_in_words(judged.limit)}")
+            parts.append(f"{name} {found.whole}, {demanded(judged.limit)}")
     audited = min(requirement.criteria, key=lambda c: STANDINGS[c.basis.standing].weight, default=None)
     if audited is not None and audited.basis.standing != "sound":
         parts.append(_missed(audited))

@@ -11,7 +11,7 @@ from specgate.report.figures.poles import Point, PoleFigure
 from specgate.report.figures.step import StepFigure
 from specgate.report.figures.wiring import WiringFigure
 from specgate.report.parts import plots, shown
-from specgate.report.words import VERDICTS, Status, arguments, counted, limit, titled
+from specgate.report.words import VERDICTS, Status, arguments, counted, limit, listed, titled
 from specgate.review.types import (
     BreakReview,
     CriterionReview,
@@ -61,6 +61,14 @@ class MeasureRow:
 
 
 @dataclass(frozen=True)
+class MeasureTable:
+    """Measures with a value as rows; those without one together, by the reason."""
+
+    rows: tuple[MeasureRow, ...]
+    absent: tuple[tuple[str, str], ...]
+
+
+@dataclass(frozen=True)
 class CriterionRow:
     """A limit drawn in a figure."""
 
@@ -90,7 +98,7 @@ class ResponseSheet:
     figure: StepFigure | None
     said: str
     criteria: tuple[CriterionRow, ...]
-    measures: tuple[MeasureRow, ...]
+    measures: MeasureTable
 
 
 @dataclass(frozen=True)
@@ -102,7 +110,7 @@ class BreakSheet:
     numerator: str
     denominator: str
     reason: str
-    measures: tuple[MeasureRow, ...]
+    measures: MeasureTable
 
 
 @dataclass(frozen=True)
@@ -132,7 +140,7 @@ class LoopSheet:
     poles: tuple[PoleRow, ...]
     hidden: tuple[Hidden, ...]
     map: PoleFigure | None
-    measures: tuple[MeasureRow, ...]
+    measures: MeasureTable
     responses: tuple[ResponseSheet, ...]
     breaks: tuple[BreakSheet, ...]
 
@@ -176,9 +184,16 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
         poles=pole_rows(loop.poles),
         hidden=tuple(_hidden(mode) for mode in loop.hidden_modes),
         map=_map(name, loop),
-        measures=measure_rows(loop.measures, review.definitions),
+        measures=measure_table(loop.measures, review.definitions),
         responses=tuple(
-            _response(name, key, response, review.definitions, subjects.get(f"{name}.{key}", []))
+            _response(
+                name,
+                key,
+                response,
+                loop.characteristic_polynomial,
+                review.definitions,
+                subjects.get(f"{name}.{key}", []),
+            )
             for key, response in loop.responses.items()
         ),
         breaks=tuple(_break(key, opened, review.definitions) for key, opened in loop.breaks.items()),
@@ -186,7 +201,12 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
 
 
 def _response(
-    loop: str, name: str, response: ResponseReview, definitions: Mapping[str, DefinitionReview], criteria: Criteria
+    loop: str,
+    name: str,
+    response: ResponseReview,
+    characteristic: tuple[str, ...],
+    definitions: Mapping[str, DefinitionReview],
+    criteria: Criteria,
 ) -> ResponseSheet:
     return ResponseSheet(
         name=name,
@@ -196,14 +216,20 @@ def _response(
         drive=" ".join(str(v) for k, v in sorted(response.input.items(), key=lambda item: item[0] != "kind")),
         unit=response.unit,
         numerator=shown.polynomial(response.numerator),
-        denominator=shown.polynomial(response.denominator),
+        denominator=_denominator(response, characteristic),
         zeros=_listed(response.zeros),
         reason=response.reason or "",
         figure=plots.response_figure(loop, name, response, criteria),
         said=plots.caption(response, criteria),
         criteria=tuple(_criterion(requirement, c, definitions) for requirement, c in criteria),
-        measures=measure_rows(response.measures, definitions),
+        measures=measure_table(response.measures, definitions),
     )
+
+
+def _denominator(response: ResponseReview, characteristic: tuple[str, ...]) -> str:
+    """Return the denominator of a response, or that it is the loop's characteristic polynomial."""
+    same = response.denominator == characteristic
+    return "the characteristic polynomial" if same else shown.polynomial(response.denominator)
 
 
 def _criterion(requirement: str, c: CriterionReview, definitions: Mapping[str, DefinitionReview]) -> CriterionRow:
@@ -226,19 +252,25 @@ def _break(name: str, opened: BreakReview, definitions: Mapping[str, DefinitionR
         numerator=shown.polynomial(opened.numerator) if opened.numerator else "",
         denominator=shown.polynomial(opened.denominator) if opened.denominator else "",
         reason=opened.reason or "",
-        measures=measure_rows(opened.measures, definitions),
+        measures=measure_table(opened.measures, definitions),
     )
 
 
-def measure_rows(
-    measures: Iterable[MeasureResult], definitions: Mapping[str, DefinitionReview]
-) -> tuple[MeasureRow, ...]:
-    """Return measures as rows, their numbers aligned on the decimal sign."""
+def measure_table(measures: Iterable[MeasureResult], definitions: Mapping[str, DefinitionReview]) -> MeasureTable:
+    """Return measures as rows, their numbers aligned on the decimal sign; those without a value by their reason."""
     found = [(m, shown.result(m)) for m in measures]
-    values = digits.aligned([result.value for _, result in found])
-    return tuple(
-        MeasureRow(titled(m.measure, definitions), arguments(m.arguments), result, value)
-        for (m, result), value in zip(found, values, strict=True)
+    present = [(m, result) for m, result in found if result.value != "none"]
+    values = digits.aligned([result.value for _, result in present])
+    absent: dict[str, list[str]] = {}
+    for m, result in found:
+        if result.value == "none":
+            absent.setdefault(result.note, []).append(titled(m.measure, definitions))
+    return MeasureTable(
+        rows=tuple(
+            MeasureRow(titled(m.measure, definitions), arguments(m.arguments), result, value)
+            for (m, result), value in zip(present, values, strict=True)
+        ),
+        absent=tuple((listed(names), reason) for reason, names in absent.items()),
     )
 
 

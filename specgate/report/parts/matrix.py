@@ -62,7 +62,8 @@ class Row:
     lines: tuple[Line, ...]
     reason: str
     decided_by: str
-    decided: str
+    aside: str
+    """Who owns it, how it is verified, what decides it."""
     loops: tuple[str, ...]
     also_under: tuple[str, ...]
     place: str
@@ -114,7 +115,7 @@ def row(review: Review, name: str) -> Row:
         lines=lines,
         reason=requirement.reason or _exemption(requirement),
         decided_by=requirement.decided_by,
-        decided=_decided(requirement),
+        aside=_aside(requirement),
         loops=_loops(requirement, review.loops),
         also_under=requirement.derived_from[1:],
         place=f"{requirement.location.path}:{requirement.location.line}",
@@ -123,6 +124,14 @@ def row(review: Review, name: str) -> Row:
 
 def _with_value(line: Line, value: str) -> Line:
     return replace(line, value=value)
+
+
+def _aside(requirement: RequirementReview) -> str:
+    methods = " · ".join(
+        f"{spaced(m.method)}{f' ({m.stage})' if m.stage else ''}: {METHODS.get(m.outcome, METHODS['no_record']).word}"
+        for m in requirement.methods
+    )
+    return "; ".join(filter(None, (requirement.owner, methods, _decided(requirement))))
 
 
 def _decided(requirement: RequirementReview) -> str:

@@ -68,17 +68,22 @@ def reserve(left: ReserveReview | None, found: Result, limit: LimitReview) -> st
 
 
 def polynomial(coefficients: tuple[str, ...], variable: str = "s") -> str:
-    """Return exact coefficients, highest power first, as a polynomial: `s³ + 10.4 s² + 65 s + 24.4`."""
+    """Return exact coefficients, highest power first, as a polynomial: `s³ + 10.4 s² + 65 s + 24.4`.
+
+    It begins with `≈` where a coefficient is too long to be printed whole.
+    """
     terms: list[str] = []
+    rounded = False
     for power, text in zip(range(len(coefficients) - 1, -1, -1), coefficients, strict=True):
         if text == "0":
             continue
-        size = digits.fraction(text.removeprefix("-"))
+        size, cut = digits.fraction(text.removeprefix("-"))
+        rounded = rounded or cut
         symbol = variable if power == 1 else variable + str(power).translate(_RAISED) if power else ""
         body = symbol if size == "1" and symbol else f"{size} {symbol}".strip()
         sign = digits.MINUS if text.startswith("-") else "+"
         terms.append(f"{sign} {body}" if terms else body if sign == "+" else digits.MINUS + body)
-    return " ".join(terms) or "0"
+    return ("≈ " if rounded else "") + (" ".join(terms) or "0")
 
 
 def pole(of: Pole) -> str:

@@ -119,7 +119,7 @@ def _parameter(name: str, p: ParameterReview) -> Parameter:
     value = with_unit(number(p.value, 6), p.unit)
     written = f"{value} (written {p.as_written})" if p.as_written and p.as_written != value else value
     tolerance = p.tolerance or {}
-    limits = " … ".join(str(tolerance[key]) for key in ("lower", "upper") if key in tolerance)
+    limits = tolerance.get("as_written") or " … ".join(tolerance[key] for key in ("lower", "upper") if key in tolerance)
     return Parameter(name, written, limits, p.source or "", f"{p.location.path}:{p.location.line}")
 
 
