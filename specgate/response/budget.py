@@ -18,6 +18,10 @@ _LOOK = 200
 """Cells that could be looked at in the time that a look at none of them takes."""
 
 
+class Exhausted(OutOfWork):
+    """A search looked at as many cells as it may."""
+
+
 class Budget:
     """Counts the work of one search in cells."""
 
@@ -26,7 +30,7 @@ class Budget:
         self._limit = cells
 
     def spend(self, cells: int) -> None:
-        """Take one look at `cells` cells off. Raises OutOfWork when there are none left."""
+        """Take one look at `cells` cells off. Raises Exhausted when there are none left."""
         self._left -= cells + _LOOK
         if self._left < 0:
-            raise OutOfWork(f"not decided within the work limit of {self._limit} cells")
+            raise Exhausted(f"not decided within the work limit of {self._limit} cells")

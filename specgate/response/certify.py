@@ -50,6 +50,11 @@ class Zero:
         """Where the zero lies, about (normalised time)."""
         return float_of(self._bracket.guess)
 
+    def is_also(self, other: Zero) -> bool:
+        """Whether two zeros of g' are the same: brackets that overlap hold but one, for g'' keeps its sign on both."""
+        one, two = self._bracket, other._bracket
+        return one.left < two.right and two.left < one.right
+
     def enclose(self, bits: int) -> arb:
         """Return a ball of relative radius 2^-bits, or as narrow as the highest precision allows (normalised time)."""
         precision = max(LOWEST, bits + _MARGIN + self._digits_of_phase())

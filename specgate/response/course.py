@@ -10,24 +10,26 @@ import numpy as np
 from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.asymptote import Lasting, lasting_sign
-from specgate.response.budget import Budget, OutOfWork
+from specgate.response.budget import Budget, Exhausted, OutOfWork
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.far import keeps_sign
 from specgate.response.grid import Grid
-from specgate.response.mixed import MixedLayout
+from specgate.response.mixed import CANCELLING, MixedLayout
 from specgate.response.panels import PanelLayout
 from specgate.response.segments import exact
 from specgate.response.start import Start
 from specgate.response.tail import tail
 
 RESOLUTION = 2e-3
-"""How closely cells follow the response at first, in parts of its change."""
+"""How closely cells follow the response at first, in parts of its size."""
 
 FAINT = 1e-30
 """Deviation, in units of the sum of the modes, below which floats are not trusted with its sign."""
 
 WORK = 1_000_000
 """Cells that one search may look at."""
+
+_LOOKS = 2.0 ** np.arange(-6.0, 24.0)
 
 Found = TypeVar("Found")
 
@@ -43,20 +45,29 @@ class Course:
         self.start: Start = start
 
     @cached_property
+    def _reach(self) -> float:
+        """How far the response goes, at least, in units of the sum of its modes."""
+        table, change = self.deviation.table, self.deviation.change
+        if (table.decay >= 0.0).any():
+            return change
+        values, errors = table.sample(_LOOKS)
+        return max(change, float((np.abs(values[:, 0]) - errors[:, 0]).max()))
+
+    @cached_property
     def _grid(self) -> Grid:
-        resolution = RESOLUTION * self.deviation.change
-        return Grid(MixedLayout(self.deviation, self.start.length, resolution).block)
+        return Grid(MixedLayout(self.deviation, self.start.length, RESOLUTION * self._reach, self._reach).block)
 
     @cached_property
     def _panel_grid(self) -> Grid:
-        resolution = RESOLUTION * self.deviation.change
-        return Grid(PanelLayout(self.deviation, self.start.length, resolution).block)
+        return Grid(PanelLayout(self.deviation, self.start.length, RESOLUTION * self._reach).block)
 
     def search(self, on: Callable[[Grid, Budget], Found]) -> Found:
         """Search on the grid, or on panels alone where that does not decide. Raises OutOfWork if neither does."""
         try:
             return on(self._grid, Budget(WORK))
-        except OutOfWork:
+        except OutOfWork as limit:
+            if isinstance(limit, Exhausted) and self._reach > CANCELLING:
+                raise
             return on(self._panel_grid, Budget(WORK))
 
     @cached_property

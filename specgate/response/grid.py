@@ -33,11 +33,24 @@ class Block(Protocol):
     def chunks(self) -> int:
         """Number of chunks."""
 
+    def time(self, index: int) -> float:
+        """Return the time at which a chunk begins, the end of the block for the number of chunks."""
+
     def index(self, time: fmpq) -> int:
         """Return the chunk that holds `time`, the first or last where it lies outside."""
 
     def cells(self, index: int) -> Cells:
         """Make a chunk."""
+
+
+class Scope(Protocol):
+    """What a search that goes upward wants to see."""
+
+    def skips(self, left: float, right: float) -> bool:
+        """Whether the stretch between two times is of no interest."""
+
+    def is_over(self, time: float) -> bool:
+        """Whether nothing from `time` on is of interest."""
 
 
 class Grid:
@@ -48,11 +61,14 @@ class Grid:
         self._blocks: list[Block] = []
         self._chunks: OrderedDict[tuple[int, int], Cells] = OrderedDict()
 
-    def upward(self, budget: Budget) -> Iterator[Cells]:
-        """Yield chunks from the start of the grid on, without end."""
+    def upward(self, budget: Budget, scope: Scope | None = None) -> Iterator[Cells]:
+        """Yield chunks from the start of the grid on, those in scope, without end unless the scope has one."""
         number = 0
         while True:
-            for index in range(self._block(number).chunks):
+            block = self._block(number)
+            if scope is not None and scope.is_over(block.time(0)):
+                return
+            for index in _in_scope(block, scope):
                 yield self._chunk(number, index, budget)
             number += 1
 
@@ -90,6 +106,20 @@ class Grid:
                 self._chunks.popitem(last=False)
         budget.spend(len(self._chunks[key].left))
         return self._chunks[key]
+
+
+def _in_scope(block: Block, scope: Scope | None) -> Iterator[int]:
+    """Yield the chunks of a block that a scope does not skip, halving the block until it is told."""
+    stack = [(0, block.chunks)]
+    while stack:
+        first, end = stack.pop()
+        if scope is not None and block.chunks > 1 and scope.skips(block.time(first), block.time(end)):
+            continue
+        if end - first == 1:
+            yield first
+        else:
+            middle = (first + end) // 2
+            stack += [(middle, end), (first, middle)]
 
 
 def split(cells: Cells, which: np.ndarray, budget: Budget) -> Cells:

@@ -81,6 +81,9 @@ class _Octaves:
     def index(self, time: fmpq) -> int:
         return 0
 
+    def time(self, index: int) -> float:
+        return self.octaves[0][0] if index == 0 else self.end
+
     def cells(self, index: int) -> Cells:
         nodes = [left + left / count * np.arange(count, dtype=np.float64) for left, count in self.octaves]
         return cells_between(self.table, np.concatenate([*nodes, [self.end]])[None, :])
@@ -106,6 +109,9 @@ class _Octave:
     def index(self, time: fmpq) -> int:
         number = ((time / exact(self.left) - 1) * self.chunks).floor()
         return min(self.chunks - 1, max(0, int(number)))
+
+    def time(self, index: int) -> float:
+        return self.left * (1.0 + index / self.chunks)
 
     def cells(self, index: int) -> Cells:
         width = self.left / self.count

@@ -9,8 +9,8 @@ from specgate.response.grid import Block
 from specgate.response.layout import FloatLayout
 from specgate.response.panels import PanelLayout
 
-_CANCELLING = 1e-3
-"""Change, in units of the sum of the modes, from which on floats are sharp everywhere."""
+CANCELLING = 1e-3
+"""Size of the response, in units of the sum of the modes, from which on floats are sharp everywhere."""
 
 _SHARP = 1e-8
 """Error of samples, in parts of the largest of them, up to which floats are sharp."""
@@ -19,10 +19,14 @@ _LOOKS = np.arange(1.0, 2.0, 0.125)
 
 
 class MixedLayout:
-    """Plans each block by what floats resolve of the octave that it begins with."""
+    """Plans each block by what floats resolve of the octave that it begins with.
 
-    def __init__(self, deviation: Modal, first: float, resolution: float) -> None:
+    reach: the size of the response, in units of the sum of its modes.
+    """
+
+    def __init__(self, deviation: Modal, first: float, resolution: float, reach: float) -> None:
         self._deviation = deviation
+        self._clear = reach > CANCELLING
         self._first = first
         self._floats = FloatLayout(deviation, first, resolution)
         self._panels = PanelLayout(deviation, first, resolution)
@@ -34,7 +38,7 @@ class MixedLayout:
         return layout.block(before)
 
     def _sharp(self, left: float) -> bool:
-        if self._deviation.change > _CANCELLING:
+        if self._clear:
             return True
         values, errors = self._deviation.table.alive(left).sample(left * _LOOKS)
         return bool(errors[:, 0].max() < _SHARP * np.abs(values[:, 0]).max())

@@ -108,6 +108,9 @@ class _Octave:
         number = ((time / exact(self.left) - 1) * self.chunks).floor()
         return min(self.chunks - 1, max(0, int(number)))
 
+    def time(self, index: int) -> float:
+        return self.left * (1.0 + index / self.chunks)
+
     def cells(self, index: int) -> Cells:
         width = self.left / self.chunks
         panel = self.maker.panel(exact(self.left) + index * exact(width), width / 2.0)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property, reduce
 from typing import Protocol
@@ -15,10 +15,10 @@ from specgate.response.budget import BALLS, Budget, OutOfWork
 from specgate.response.cells import Cells
 from specgate.response.certify import Zero
 from specgate.response.deviation import LOWEST, Modal
-from specgate.response.grid import SPLIT, split
+from specgate.response.grid import SPLIT, Grid, split
 from specgate.response.panels import PanelMaker
 from specgate.response.segments import exact
-from specgate.response.signs import before_time, ends, slope_bracket, turning_point
+from specgate.response.signs import before_time, slope_bracket, turning_point
 from specgate.response.tables import SLACK
 from specgate.terms.precision import working_precision
 
@@ -72,14 +72,28 @@ class Climb:
         self._known: float | None = None
         self._last: fmpq | None = None
 
-    def over(self, chunks: Iterable[Cells], end: Last) -> None:
-        """Search the chunks up to the time end(best) from which on nothing exceeds `best` (None: not known yet)."""
-        for cells in chunks:
-            self._look_to(end)
+    def over(self, grid: Grid, end: Last) -> None:
+        """Search the grid up to the time end(best) from which on nothing exceeds `best` (None: not known yet).
+
+        Where the envelope first rises its crest is looked at before all else: a good value there saves the way up.
+        """
+        crest = self._deviation.table.crest_time()
+        if crest is not None:
+            self._search(grid.around(exact(crest), self._budget), 0, local=False)
+            self.summits.clear()
+        self._look_to(end)
+        for cells in grid.upward(self._budget, self):
             self._search(cells, 0, local=False)
             self._look_to(end)
-            if self._last is not None and ends(cells, -1)[1] >= self._last:
-                return
+
+    def skips(self, left: float, right: float) -> bool:
+        """Whether the envelope shows that nothing between two times is of interest."""
+        table = self._deviation.table
+        return self._last is not None and table.crest(left, right) * (1.0 + 2.0 * table.parts_error) < self._bar
+
+    def is_over(self, time: float) -> bool:
+        """Whether nothing from `time` on is of interest."""
+        return self._last is not None and exact(time) >= self._last
 
     @cached_property
     def _panels(self) -> PanelMaker:
@@ -184,7 +198,8 @@ class Climb:
         if domed:
             turning = turning_point(self._deviation, cells, index)
             if isinstance(turning, Zero):
-                self.summits.append(Summit(turning, self.best, high))
+                if not any(summit.zero.is_also(turning) for summit in self.summits):
+                    self.summits.append(Summit(turning, self.best, high))
             elif turning == 0:
                 raise OutOfWork(
                     "whether the response turns within a stretch of time is not told at the highest precision"

@@ -12,6 +12,9 @@ from specgate.response.deviation import LOWEST, Modal
 from specgate.response.segments import exact, float_of
 from specgate.terms.precision import HIGHEST, working_precision
 
+_CLOSER = (8, 24, 72, 216)
+"""Widths of intervals about a node, in halvings of a cell's."""
+
 
 def sign_at(deviation: Modal, time: fmpq, order: int, target: fmpq) -> int:
     """Return the sign of g^(order)(time) - target, 0 where even the highest precision cannot tell it from zero."""
@@ -46,13 +49,39 @@ def before_time(cells: Cells, time: fmpq | None) -> NDArray[np.bool_]:
 
 
 def turning_point(deviation: Modal, cells: Cells, index: int) -> Zero | int:
-    """Return the zero of g' in a cell on which g'' has one sign, or the sign of g' throughout (0: not told)."""
+    """Return the zero of g' in a cell on which g'' has one sign, or the sign of g' throughout (0: not told).
+
+    A turning point on the very end of a cell (repeated real poles have rational ones) belongs to both cells there.
+    """
     left, right = ends(cells, index)
     before = sign_at(deviation, left, 1, fmpq(0))
     after = sign_at(deviation, right, 1, fmpq(0))
-    if before == after or before == 0 or after == 0:
-        return before or after
+    if before == 0 or after == 0:
+        return _turning_at(deviation, left if before == 0 else right, right - left) or 0
+    if before == after:
+        return before
     return Zero(deviation, slope_bracket(cells, index, (left + right) / 2))
+
+
+def _turning_at(deviation: Modal, node: fmpq, width: fmpq) -> Zero | None:
+    """Return the zero of g' next to a node where g' is not told from zero, None if none is proved to be there.
+
+    On an interval about the node that is narrow enough g'' keeps its sign, so that a change of sign of g' from end to
+    end leaves exactly one zero.
+    """
+    for halvings in _CLOSER:
+        reach = width / 2**halvings
+        low, high = node - reach, node + reach
+        expansion = deviation.at(LOWEST + halvings)
+        with working_precision(expansion.bits):
+            _, _, bend, jerk = expansion.deviation(arb(low).union(arb(high)))
+            curved, steepest = not bend.contains(0), float(jerk.abs_upper() * (1 + arb(2) ** -20))
+        if not curved:
+            continue
+        rising = sign_at(deviation, high, 1, fmpq(0))
+        if rising != 0 and sign_at(deviation, low, 1, fmpq(0)) == -rising:
+            return Zero(deviation, Bracket(1, fmpq(0), low, high, rising > 0, steepest, node))
+    return None
 
 
 def slope_bracket(cells: Cells, index: int, guess: fmpq) -> Bracket:

@@ -11,7 +11,7 @@ import numpy as np
 from flint import arb, fmpq
 
 from specgate.response.answers import Answer
-from specgate.response.budget import Budget, OutOfWork
+from specgate.response.budget import Budget, Exhausted, OutOfWork
 from specgate.response.certify import Zero
 from specgate.response.course import Course
 from specgate.response.extremes import EQUAL_BITS, Extreme, joined
@@ -49,14 +49,17 @@ def highest(course: Course, sign: int) -> Extreme:
     good.
     """
     jump = sign * course.deviation.initial
-
-    floor = exact_floor(course, sign, max(jump, fmpq(0)), taken=jump > 0)
+    floor = exact_floor(course, sign, max(jump, fmpq(0)), taken=jump >= 0)
 
     def last(best: float, firm: Callable[[], arb]) -> fmpq | None:
         return tail(course.deviation, best, firm) if best > 0.0 else course.below_from(sign)
 
-    extreme = above(course, sign, floor, last)
-    return extreme if extreme.value.absent is None else _nearly(course, sign, floor, extreme)
+    try:
+        return _highest_above(course, sign, floor, last)
+    except Exhausted as limit:
+        return Extreme.undecided(limit.reason)
+    except OutOfWork as limit:
+        return _nearly(course, sign, floor, Extreme.undecided(limit.reason))
 
 
 def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extreme:
@@ -69,7 +72,7 @@ def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extr
 
     def on(grid: Grid, budget: Budget) -> float:
         climb = Climb(course.deviation, sign, floor, budget, slack)
-        climb.over(grid.upward(budget), last)
+        climb.over(grid, last)
         if climb.summits:
             raise OutOfWork("peaks of the response are not told apart")
         return climb.best
@@ -90,9 +93,13 @@ def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extr
 def above(course: Course, sign: int, floor: Floor, last: Last) -> Extreme:
     """Return the highest summit of sign * g that is above the floor, or else the floor."""
     try:
-        summits, clear = course.search(lambda grid, budget: _summits(course, sign, floor, last, grid, budget))
+        return _highest_above(course, sign, floor, last)
     except OutOfWork as limit:
         return Extreme.undecided(limit.reason)
+
+
+def _highest_above(course: Course, sign: int, floor: Floor, last: Last) -> Extreme:
+    summits, clear = course.search(lambda grid, budget: _summits(course, sign, floor, last, grid, budget))
     if not summits:
         return floor.extreme
     equal = [_at(course, summit) for summit in summits]
@@ -115,7 +122,7 @@ def _summits(
     course: Course, sign: int, floor: Floor, last: Last, grid: Grid, budget: Budget
 ) -> tuple[list[Zero], bool]:
     climb = Climb(course.deviation, sign, floor, budget)
-    climb.over(grid.upward(budget), last)
+    climb.over(grid, last)
     return _tallest([summit.zero for summit in climb.summits], sign, floor)
 
 

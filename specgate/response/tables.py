@@ -99,7 +99,7 @@ class FloatModes:
     def alive(self, time: float) -> FloatModes:
         """Return the table without the columns that stay below 1e-285 from `time` on (TINY covers them)."""
         with np.errstate(divide="ignore", invalid="ignore"):
-            size = np.log(self.size[:, 0]) + self.decay * time + self.power * np.log(2.0 * time * self.scale)
+            size = np.log(self.size.max(axis=1)) + self.decay * time + self.power * np.log(2.0 * time * self.scale)
         keep = (size > -656.0) | (self.decay >= 0.0) | (self.power > -self.decay * time)
         if keep.all():
             return self
@@ -142,10 +142,30 @@ class FloatModes:
 
         A column rises up to j / |sigma| and falls beyond. No slack: the relative error is below `parts_error`.
         """
-        with np.errstate(divide="ignore", invalid="ignore"):
-            summit = np.where(self.power > 0.0, self.power / -self.decay, 0.0)
-        instants = np.maximum(times[:, None], summit)
+        instants = np.maximum(times[:, None], self._summit)
         return self._columns(instants, instants) * self.size[:, 0]
+
+    @cached_property
+    def _summit(self) -> Floats:
+        """Where decaying columns are largest."""
+        with np.errstate(divide="ignore", invalid="ignore"):
+            return np.where(self.power > 0.0, self.power / -self.decay, 0.0)
+
+    def crest(self, left: float, right: float) -> float:
+        """Return a bound of |g| on an interval, the sum of the suprema of decaying columns, but for `parts_error`."""
+        instants = np.clip(self._summit, left, right)[None, :]
+        return float((self._columns(instants, instants) * self.size[:, 0]).sum())
+
+    def crest_time(self) -> float | None:
+        """Return where the envelope of decaying columns is largest, about; None: it never rises."""
+        if not self.power.any():
+            return None
+        times = np.concatenate([self._summit[np.isfinite(self._summit) & (self._summit > 0.0)], DOUBLINGS])
+        for _ in range(2):
+            instants = times[:, None]
+            best = float(times[(self._columns(instants, instants) @ self.size[:, 0]).argmax()])
+            times = best * np.linspace(0.5, 2.0, 193)
+        return best if best > 0.0 else None
 
     @cached_property
     def parts_at_doublings(self) -> Floats:
