@@ -49,8 +49,8 @@ def _plain(text: str, key: str) -> str:
 
 
 def _painted(text: str, key: str) -> str:
-    code = _COLOURS.get(key)
-    return f"\x1b[{code}m{text}\x1b[0m" if code and text.strip() else text
+    code, words = _COLOURS.get(key), text.rstrip()
+    return f"\x1b[{code}m{words}\x1b[0m{text[len(words) :]}" if code and words else text
 
 
 def _state(status: Status) -> Cell:
