@@ -78,13 +78,11 @@ def number(value: float, significant: int = SIGNIFICANT) -> str:
 
 
 def fraction(text: str) -> tuple[str, bool]:
-    """Return an exact rational of the results format as printed, and whether that is rounded: it is not where short."""
+    """Return an exact rational of the results format as a decimal, and whether it had to be rounded."""
     value = Fraction(text)
     quotient = Decimal(value.numerator) / Decimal(value.denominator)
     if _short(quotient) and Fraction(quotient) == value:
         return written(quotient, last_place(quotient, exact=True)), False
-    if len(text) <= RATIO:
-        return text.replace("-", MINUS), False
     return written(quotient, quotient.adjusted() - (SIGNIFICANT + 1)), True
 
 

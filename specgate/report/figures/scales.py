@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from specgate.report.digits import MINUS
@@ -34,6 +34,31 @@ class Scale:
         decimals = max(0, -math.floor(math.log10(step) + 1e-9))
         for k in range(first, last + 1):
             yield k * step, tick_text(k * step, decimals)
+
+
+def simplified(points: Sequence[tuple[float, float]], tolerance: float) -> list[tuple[float, float]]:
+    """Return the points that a line needs to stay within `tolerance` of all of them (Douglas, Peucker 1973)."""
+    kept = {0, len(points) - 1}
+    waiting = [(0, len(points) - 1)]
+    while waiting:
+        first, last = waiting.pop()
+        farthest, distance = first, tolerance
+        for k in range(first + 1, last):
+            off = _off(points[k], points[first], points[last])
+            if off > distance:
+                farthest, distance = k, off
+        if farthest != first:
+            kept.add(farthest)
+            waiting += [(first, farthest), (farthest, last)]
+    return [points[k] for k in sorted(kept)]
+
+
+def _off(point: tuple[float, float], start: tuple[float, float], end: tuple[float, float]) -> float:
+    """Return the distance of a point from the line through two others."""
+    dx, dy = end[0] - start[0], end[1] - start[1]
+    length = math.hypot(dx, dy)
+    across, down = point[0] - start[0], point[1] - start[1]
+    return math.hypot(across, down) if length == 0 else abs(across * dy - down * dx) / length
 
 
 def round_step(at_least: float) -> float:

@@ -6,10 +6,12 @@ from dataclasses import dataclass
 from typing import Literal
 
 from specgate.report.figures import svg
-from specgate.report.figures.scales import Scale, widened
+from specgate.report.figures.scales import Scale, simplified, widened
 
 WIDTH, HEIGHT = 640.0, 186.0
 LEFT, RIGHT, TOP, BOTTOM = 58.0, 14.0, 24.0, 38.0
+SMOOTH = 0.15
+"""How far the drawn line may leave the points of the curve, pixels."""
 STRIP = 9.0
 """Breadth of the hatching along a limit, pixels."""
 
@@ -84,8 +86,8 @@ def draw(figure: StepFigure) -> str:
     """Return the figure as SVG."""
     x, y = axes(figure)
     hatch = f"hatch-{figure.name}"
-    points = zip(figure.time, figure.value, strict=True)
-    curve = svg.path(((x(t), y(v)) for t, v in points), svg.CURVE, 1.6)
+    points = [(x(t), y(v)) for t, v in zip(figure.time, figure.value, strict=True)]
+    curve = svg.path(simplified(points, SMOOTH), svg.CURVE, 1.6)
     shown = [edge for edge in figure.edges if (x if edge.axis == "time" else y).holds(edge.at)]
     return svg.figure(
         WIDTH,
@@ -94,7 +96,7 @@ def draw(figure: StepFigure) -> str:
         svg.hatching(hatch),
         *_frame(figure, x, y),
         *(_forbidden(edge, x, y, hatch) for edge in shown),
-        *_limit_lines(shown, x, y),
+        *_limit_lines(figure, shown, x, y),
         curve,
         *(_ring(ring, x, y) for ring in figure.rings if x.holds(ring.time) and y.holds(ring.value)),
         *(_cross(cross, x, y) for cross in figure.crosses if x.holds(cross.time) and y.holds(cross.value)),
@@ -137,7 +139,7 @@ def _forbidden(edge: Edge, x: Scale, y: Scale, hatch: str) -> str:
     return upper + svg.rectangle(start, low, end - start, HEIGHT - BOTTOM - low, fill, fill_opacity=0.6)
 
 
-def _limit_lines(edges: list[Edge], x: Scale, y: Scale) -> list[str]:
+def _limit_lines(figure: StepFigure, edges: list[Edge], x: Scale, y: Scale) -> list[str]:
     parts = []
     taken: list[float] = []
     for edge in sorted(edges, key=lambda e: (e.axis, e.at)):
@@ -151,11 +153,29 @@ def _limit_lines(edges: list[Edge], x: Scale, y: Scale) -> list[str]:
             level = y(edge.at)
             left = LEFT + 0.72 * (WIDTH - RIGHT - LEFT) if edge.at_the_end else LEFT
             parts.append(svg.line(left, level, WIDTH - RIGHT, level, svg.FORBIDDEN, 1.1))
-            below = edge.forbidden == "above"
-            parts.append(
-                svg.text(WIDTH - RIGHT - 4, level + (10 if below else -4), edge.label, 8, "end", svg.FORBIDDEN)
-            )
+            parts += _level_label(figure, edge, x, y)
     return parts
+
+
+def _level_label(figure: StepFigure, edge: Edge, x: Scale, y: Scale) -> list[str]:
+    """Return the label of a limit on a level, at the end where the curve leaves more room."""
+    right = WIDTH - RIGHT
+    if edge.at_the_end:
+        if edge.forbidden == "below":
+            return []
+        left = LEFT + 0.72 * (right - LEFT)
+        return [svg.text(left - 4, y(edge.at) + 3, edge.label, 8, "end", svg.FORBIDDEN)]
+    level = y(edge.at) + (10 if edge.forbidden == "above" else -4)
+    length = 4.6 * len(edge.label)
+    ends = [(LEFT + 5, "start", LEFT, LEFT + length), (right - 4, "end", right - length, right)]
+    at, anchor, _, _ = max(ends, key=lambda end: _room(figure, x, y, level, end[2], end[3]))
+    return [svg.text(at, level, edge.label, 8, anchor, svg.FORBIDDEN)]
+
+
+def _room(figure: StepFigure, x: Scale, y: Scale, level: float, start: float, end: float) -> float:
+    """Return how near the curve comes to a level between two pixels of the time axis."""
+    points = zip(figure.time, figure.value, strict=True)
+    return min((abs(y(v) - level) for t, v in points if start <= x(t) <= end), default=HEIGHT)
 
 
 def _label(content: str, at: float, baseline: float, taken: list[float]) -> str:

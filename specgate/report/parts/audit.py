@@ -16,6 +16,7 @@ from specgate.report.words import (
     amount,
     arguments,
     limit_in_words,
+    spaced,
     titled,
     with_unit,
 )
@@ -26,7 +27,6 @@ from specgate.review.types import BasisReview, ConditionReview, CriterionReview,
 class Condition:
     """A condition of an approximation."""
 
-    approximation: str
     name: str
     required: str
     found: str
@@ -57,7 +57,8 @@ class Audit:
     agreement: str
     accuracy: str
     implied: str
-    conditions: tuple[Condition, ...]
+    conditions: tuple[tuple[str, tuple[Condition, ...]], ...]
+    """By the approximation whose they are."""
     instead: str
     reason: str
     picture: StepFigure | None
@@ -88,7 +89,7 @@ def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -
         limit=limit_in_words(criterion.limit),
         standing=STANDINGS[basis.standing],
         verdict=VERDICTS[criterion.verdict],
-        approximation=" and ".join(titled(item, review.definitions) for item in basis.chain),
+        approximation=" and ".join(spaced(item) for item in basis.chain),
         claimed=amount(basis.claimed) if basis.claimed else "no value claimed",
         formula=_formula(basis),
         proved=shown.result(criterion.result, criterion.limit),
@@ -96,7 +97,7 @@ def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -
         agreement=_agreement(basis),
         accuracy=basis.accuracy or "",
         implied=_implied(basis),
-        conditions=tuple(_condition(review, item) for item in basis.conditions),
+        conditions=_conditions(basis),
         instead=_instead(review, basis),
         reason="" if any(item.holds is False for item in basis.conditions) else basis.reason or "",
         picture=_picture(review, name, number, criterion),
@@ -120,7 +121,7 @@ def _error(basis: BasisReview) -> str:
     if basis.error.absolute is not None and basis.error.absolute.value is not None:
         absolute = basis.error.absolute
         parts.append(with_unit(digits.signed(digits.number(absolute.value or 0.0)), absolute.unit))
-    if basis.error.relative == 0:
+    if basis.error.relative == 0 or (basis.error.relative is None and basis.error.side == "none"):
         return "none"
     size = f"{parts[0]} ({parts[1]})" if len(parts) == 2 else "".join(parts)
     return f"{size} {SIDES.get(basis.error.side, basis.error.side)}".strip()
@@ -139,12 +140,19 @@ def _implied(basis: BasisReview) -> str:
     return with_unit(f"{low} … {high}", basis.claimed.unit)
 
 
-def _condition(review: Review, item: ConditionReview) -> Condition:
-    found = (
-        "undecided" if item.found is None else item.found if isinstance(item.found, str) else digits.number(item.found)
-    )
+def _conditions(basis: BasisReview) -> tuple[tuple[str, tuple[Condition, ...]], ...]:
+    groups: dict[str, list[Condition]] = {}
+    for item in basis.conditions:
+        groups.setdefault(spaced(item.approximation), []).append(_condition(item))
+    return tuple((name, tuple(items)) for name, items in groups.items())
+
+
+def _condition(item: ConditionReview) -> Condition:
+    if item.found is None:
+        found = "undecided"
+    else:
+        found = item.found if isinstance(item.found, str) else digits.number(float(f"{item.found:.4g}"))
     return Condition(
-        approximation=titled(item.approximation, review.definitions) if item.approximation else "",
         name=item.name,
         required=item.required.replace(">=", "≥").replace("<=", "≤"),
         found=found,

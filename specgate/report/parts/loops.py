@@ -11,14 +11,14 @@ from specgate.report.figures.poles import Point, PoleFigure
 from specgate.report.figures.step import StepFigure
 from specgate.report.figures.wiring import WiringFigure
 from specgate.report.parts import plots, shown
-from specgate.report.words import VERDICTS, Status, arguments, counted, limit, listed, titled
+from specgate.report.parts.measures import Comparison, MeasureTable, comparisons, table
+from specgate.report.words import VERDICTS, Status, counted, limit, titled
 from specgate.review.types import (
     BreakReview,
     CriterionReview,
     DefinitionReview,
     HiddenMode,
     LoopReview,
-    MeasureResult,
     Pole,
     ResponseReview,
     Review,
@@ -48,24 +48,6 @@ class PoleRow:
     time_constant: str
     bound: str
     unstable: bool
-
-
-@dataclass(frozen=True)
-class MeasureRow:
-    """A measure as found."""
-
-    name: str
-    asked: str
-    result: shown.Shown
-    value: str
-
-
-@dataclass(frozen=True)
-class MeasureTable:
-    """Measures with a value as rows; those without one together, by the reason."""
-
-    rows: tuple[MeasureRow, ...]
-    absent: tuple[tuple[str, str], ...]
 
 
 @dataclass(frozen=True)
@@ -142,6 +124,7 @@ class LoopSheet:
     map: PoleFigure | None
     measures: MeasureTable
     responses: tuple[ResponseSheet, ...]
+    comparisons: tuple[Comparison, ...]
     breaks: tuple[BreakSheet, ...]
 
 
@@ -184,7 +167,7 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
         poles=pole_rows(loop.poles),
         hidden=tuple(_hidden(mode) for mode in loop.hidden_modes),
         map=_map(name, loop),
-        measures=measure_table(loop.measures, review.definitions),
+        measures=table(loop.measures, review.definitions),
         responses=tuple(
             _response(
                 name,
@@ -196,6 +179,7 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
             )
             for key, response in loop.responses.items()
         ),
+        comparisons=comparisons(loop.responses, review.definitions),
         breaks=tuple(_break(key, opened, review.definitions) for key, opened in loop.breaks.items()),
     )
 
@@ -222,7 +206,7 @@ def _response(
         figure=plots.response_figure(loop, name, response, criteria),
         said=plots.caption(response, criteria),
         criteria=tuple(_criterion(requirement, c, definitions) for requirement, c in criteria),
-        measures=measure_table(response.measures, definitions),
+        measures=table(response.measures, definitions),
     )
 
 
@@ -252,25 +236,7 @@ def _break(name: str, opened: BreakReview, definitions: Mapping[str, DefinitionR
         numerator=shown.polynomial(opened.numerator) if opened.numerator else "",
         denominator=shown.polynomial(opened.denominator) if opened.denominator else "",
         reason=opened.reason or "",
-        measures=measure_table(opened.measures, definitions),
-    )
-
-
-def measure_table(measures: Iterable[MeasureResult], definitions: Mapping[str, DefinitionReview]) -> MeasureTable:
-    """Return measures as rows, their numbers aligned on the decimal sign; those without a value by their reason."""
-    found = [(m, shown.result(m)) for m in measures]
-    present = [(m, result) for m, result in found if result.value != "none"]
-    values = digits.aligned([result.value for _, result in present])
-    absent: dict[str, list[str]] = {}
-    for m, result in found:
-        if result.value == "none":
-            absent.setdefault(result.note, []).append(titled(m.measure, definitions))
-    return MeasureTable(
-        rows=tuple(
-            MeasureRow(titled(m.measure, definitions), arguments(m.arguments), result, value)
-            for (m, result), value in zip(present, values, strict=True)
-        ),
-        absent=tuple((listed(names), reason) for reason, names in absent.items()),
+        measures=table(opened.measures, definitions),
     )
 
 

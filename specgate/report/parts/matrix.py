@@ -113,7 +113,7 @@ def row(review: Review, name: str) -> Row:
             for m in requirement.methods
         ),
         lines=lines,
-        reason=requirement.reason or _exemption(requirement),
+        reason=_reason(requirement),
         decided_by=requirement.decided_by,
         aside=_aside(requirement),
         loops=_loops(requirement, review.loops),
@@ -141,6 +141,12 @@ def _decided(requirement: RequirementReview) -> str:
     if requirement.decided_by == "derived":
         return f"decided by {listed(requirement.derived)}" if requirement.derived else "nothing is derived from it"
     return "decided by evidence" if requirement.decided_by == "evidence" else "no limit"
+
+
+def _reason(requirement: RequirementReview) -> str:
+    """Return why it is as it is, unless a number in the columns already says so."""
+    told = any(c.verdict == "non_compliant" and c.result.value is not None for c in requirement.criteria)
+    return "" if told else requirement.reason or _exemption(requirement)
 
 
 def _exemption(requirement: RequirementReview) -> str:

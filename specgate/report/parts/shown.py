@@ -38,7 +38,7 @@ def result(found: Result, limit: LimitReview | None = None) -> Shown:
     value = digits.decimal(found.value)
     place = digits.last_place(value, (found.lower, found.upper), edges(limit) if limit else (), found.proof == "exact")
     note = "; ".join(word for word in (found.fragile, found.reason) if word)
-    if found.signed is not None:
+    if found.signed is not None and found.signed != found.value:
         note = "; ".join(filter(None, (f"signed {digits.number(found.signed)}", note)))
     return Shown(digits.written(value, place), unit, _bound(found), note)
 
@@ -73,17 +73,18 @@ def polynomial(coefficients: tuple[str, ...], variable: str = "s") -> str:
     It begins with `≈` where a coefficient is too long to be printed whole.
     """
     terms: list[str] = []
-    rounded = False
-    for power, text in zip(range(len(coefficients) - 1, -1, -1), coefficients, strict=True):
+    sizes = [digits.fraction(text.removeprefix("-")) for text in coefficients]
+    whole = all(not cut or len(text) <= digits.RATIO for text, (_, cut) in zip(coefficients, sizes, strict=True))
+    powers = range(len(coefficients) - 1, -1, -1)
+    for power, text, (size, cut) in zip(powers, coefficients, sizes, strict=True):
         if text == "0":
             continue
-        size, cut = digits.fraction(text.removeprefix("-"))
-        rounded = rounded or cut
+        size = text.removeprefix("-") if cut and whole else size
         symbol = variable if power == 1 else variable + str(power).translate(_RAISED) if power else ""
         body = symbol if size == "1" and symbol else f"{size} {symbol}".strip()
         sign = digits.MINUS if text.startswith("-") else "+"
         terms.append(f"{sign} {body}" if terms else body if sign == "+" else digits.MINUS + body)
-    return ("≈ " if rounded else "") + (" ".join(terms) or "0")
+    return ("" if whole else "≈ ") + (" ".join(terms) or "0")
 
 
 def pole(of: Pole) -> str:
