@@ -59,6 +59,7 @@ class CriterionRow:
     measure: str
     limit: str
     proved: str
+    drawn: bool
     claimed: str
     verdict: Status
 
@@ -78,7 +79,6 @@ class ResponseSheet:
     zeros: str
     reason: str
     figure: StepFigure | None
-    said: str
     criteria: tuple[CriterionRow, ...]
     measures: MeasureTable
 
@@ -204,7 +204,6 @@ def _response(
         zeros=_listed(response.zeros),
         reason=response.reason or "",
         figure=plots.response_figure(loop, name, response, criteria),
-        said=plots.caption(response, criteria),
         criteria=tuple(_criterion(requirement, c, definitions) for requirement, c in criteria),
         measures=table(response.measures, definitions),
     )
@@ -224,6 +223,7 @@ def _criterion(requirement: str, c: CriterionReview, definitions: Mapping[str, D
         measure=titled(c.measure, definitions),
         limit=limit(c.limit),
         proved=shown.result(c.result, c.limit).whole,
+        drawn=plots.drawn(c),
         claimed="" if claimed is None or claimed.value is None else f"{digits.number(claimed.value)} {claimed.unit}",
         verdict=VERDICTS[c.verdict],
     )

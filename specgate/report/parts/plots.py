@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 from bisect import bisect_left
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Sequence
 
 from specgate.report.anchors import anchor
+from specgate.report.digits import number
 from specgate.report.figures.step import Cross, Edge, Ring, StepFigure
-from specgate.report.words import edges, limit, with_unit
+from specgate.report.parts import shown
+from specgate.report.words import amount, edges, limit
 from specgate.review.types import CriterionReview, Curve, MeasureResult, ResponseReview, Result
 
 INSTANTS = {"settling_time", "peak_time", "delay_time"}
@@ -17,18 +19,19 @@ LEVELS = {"final_value", "initial_value", "maximum_value", "minimum_value", "pea
 
 
 def response_figure(
-    loop: str, name: str, response: ResponseReview, criteria: Iterable[tuple[str, CriterionReview]], suffix: str = ""
+    loop: str, name: str, response: ResponseReview, criteria: Sequence[tuple[str, CriterionReview]], suffix: str = ""
 ) -> StepFigure | None:
     """Return the figure of a response with the criteria on it (each with its requirement); None without a curve."""
     curve = response.curve
     if curve is None or len(curve.time) < 2:
         return None
+    title = f"Response of {response.to} to {response.from_} ({loop}.{name}) over {number(curve.time[-1])} s"
     marks = _Marks(response, curve)
     for requirement, criterion in criteria:
         marks.add(requirement, criterion)
     return StepFigure(
         name=anchor("plot", f"{loop}.{name}") + suffix,
-        title=f"Response of {response.to} to {response.from_} ({loop}.{name}) over {curve.time[-1]:.3g} s",
+        title="; ".join([title, *(f"{requirement}: {_said(criterion)}" for requirement, criterion in criteria)]),
         signal=response.to,
         unit=response.unit,
         time=curve.time,
@@ -176,19 +179,16 @@ def _interval(found: Result, value: float) -> tuple[float, float]:
     return (value if found.lower is None else found.lower, value if found.upper is None else found.upper)
 
 
-def caption(response: ResponseReview, criteria: Iterable[tuple[str, CriterionReview]]) -> str:
-    """Return what the figure shows, in words, for those who cannot see it."""
-    from specgate.report.parts.shown import result
+def _said(criterion: CriterionReview) -> str:
+    """Return what the marks of a criterion show, for those who cannot see them."""
+    words = f"{limit(criterion.limit)}, proved {shown.result(criterion.result, criterion.limit).whole}"
+    claim = criterion.basis.claimed
+    return words if claim is None or claim.value is None else f"{words}, claimed {amount(claim)}"
 
-    said = []
-    for requirement, criterion in criteria:
-        proved = result(criterion.result, criterion.limit)
-        claim = criterion.basis.claimed
-        words = f"{requirement}: {limit(criterion.limit)}, proved {proved.whole}"
-        if claim is not None and claim.value is not None:
-            words += f", claimed {with_unit(f'{claim.value:g}', claim.unit)}"
-        said.append(words)
-    return "; ".join(said)
+
+def drawn(criterion: CriterionReview) -> bool:
+    """Tell whether the proved value of a criterion has a place in the picture."""
+    return criterion.measure in INSTANTS | LEVELS and _number(criterion.result) is not None
 
 
 def measures_of(measures: Iterable[MeasureResult]) -> dict[str, MeasureResult]:
