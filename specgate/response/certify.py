@@ -44,6 +44,7 @@ class Zero:
         self._bracket = bracket
         self._ends = (_point(bracket.left), _point(bracket.right))
         self._next: arb | None = _point(bracket.guess)
+        self._value: arb | None = None
 
     @property
     def guess(self) -> float:
@@ -79,8 +80,10 @@ class Zero:
                 values = expansion.deviation(middle)
                 bend = values[2].abs_upper() + radius * arb(self._bracket.bend)
                 value = values[0] + arb(0, (bend * radius * radius / 2).upper())
-            if value.rel_accuracy_bits() >= bits or precision > HIGHEST:
-                return value
+            if self._value is None or value.rad() < self._value.rad():
+                self._value = value
+            if self._value.rel_accuracy_bits() >= bits or precision > HIGHEST:
+                return self._value
             precision *= 2
 
     def _digits_of_phase(self) -> int:

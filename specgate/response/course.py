@@ -26,6 +26,9 @@ RESOLUTION = 2e-3
 FAINT = 1e-30
 """Deviation, in units of the sum of the modes, below which floats are not trusted with its sign."""
 
+HOPELESS = 1e-250
+"""Change, in units of the sum of the modes, below which nothing is searched."""
+
 WORK = 1_000_000
 """Cells that one search may look at."""
 
@@ -35,14 +38,18 @@ Found = TypeVar("Found")
 
 
 class Course:
-    """What all searches of one response share. Raises ValueError for a response that never moves."""
+    """What all searches of one response share; the response moves."""
 
     def __init__(self, numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> None:
         self.deviation = Deviation(numerator, denominator, size)
+
+    @cached_property
+    def start(self) -> Start:
+        """The monotone start. Raises OutOfWork where it is too short for floats, ValueError if nothing ever moves."""
         start = self.deviation.start
         if start is None:
             raise ValueError("a response that never moves has no course")
-        self.start: Start = start
+        return start
 
     @cached_property
     def _reach(self) -> float:
@@ -63,6 +70,8 @@ class Course:
 
     def search(self, on: Callable[[Grid, Budget], Found]) -> Found:
         """Search on the grid, or on panels alone where that does not decide. Raises OutOfWork if neither does."""
+        if self.deviation.change < HOPELESS:
+            raise OutOfWork("the modes of the response cancel beyond the range of floats")
         try:
             return on(self._grid, Budget(WORK))
         except OutOfWork as limit:
@@ -91,7 +100,7 @@ class Course:
 
     @cached_property
     def _faint(self) -> fmpq | None:
-        return tail(self.deviation, FAINT, lambda: arb(FAINT))
+        return tail(self.deviation, FAINT, lambda _: arb(FAINT))
 
     @cached_property
     def _faint_of_one_sign(self) -> bool:

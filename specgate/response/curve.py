@@ -9,7 +9,7 @@ from flint import acb, acb_mat, arb, fmpq
 
 from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.modes import Expansion, Mode, dyadic, power_of_two
-from specgate.response.segments import float_of
+from specgate.response.segments import exact, float_of
 from specgate.response.tail import float_tail
 from specgate.terms.precision import working_precision
 
@@ -47,14 +47,13 @@ def points(deviation: Deviation, window: fmpq, known: Iterable[fmpq], jump: fmpq
         return ((fmpq(0), arb(jump)), *((time / scale, (offset + values[time]) * unit) for time in sorted(values)))
 
 
-def settled_window(deviation: Deviation, settled: float | None) -> fmpq:
+def settled_window(deviation: Deviation, settled: fmpq | None) -> fmpq:
     """Return a window (s) that ends a quarter after the settling time, or where the envelope is small."""
-    end = 1.25 * settled if settled else None
-    if end is None:
-        level = _BAND * max(abs(float_of(deviation.initial)), abs(float_of(deviation.offset)), 1e-12)
-        since = float_tail(deviation.table, level)
-        end = (since or 1.0) * 2.0**-deviation.time_exponent
-    return _round_up(end)
+    if settled:
+        return _round_up(settled * 5 / 4)
+    level = _BAND * max(abs(float_of(deviation.initial)), abs(float_of(deviation.offset)), 1e-12)
+    since = float_tail(deviation.table, level)
+    return _round_up(exact(since or 1.0) * dyadic(-deviation.time_exponent))
 
 
 def unsettled_window(modes: Sequence[Mode], time_exponent: int) -> fmpq:
@@ -67,15 +66,15 @@ def unsettled_window(modes: Sequence[Mode], time_exponent: int) -> fmpq:
         end = 6.0 / max(growing)
     else:
         end = max([16.0 * pi / swing for swing in swings] + [5.0 / rate for rate in fading], default=10.0)
-    return _round_up(end * 2.0**-time_exponent)
+    return _round_up(exact(end) * dyadic(-time_exponent))
 
 
-def _round_up(value: float) -> fmpq:
-    """Return the next number of two significant digits."""
-    digits, exponent = f"{value:.16e}".split("e")
-    tenths = int(float(digits) * 10.0) + 1
-    power = int(exponent) - 1
-    return fmpq(tenths * 10**power) if power >= 0 else fmpq(tenths, 10**-power)
+def _round_up(value: fmpq) -> fmpq:
+    """Return the next number of two significant digits, or close to it."""
+    power = len(str(value.p)) - len(str(value.q)) - 1
+    unit = fmpq(10**power) if power >= 0 else fmpq(1, 10**-power)
+    unit = unit if value >= 10 * unit else unit / 10
+    return unit * ((value / unit).floor() + 1)
 
 
 def _early(deviation: Deviation, window: fmpq, most: int) -> list[fmpq]:

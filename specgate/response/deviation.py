@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from functools import cached_property
-from math import frexp
 from typing import Protocol
 
 from flint import arb, fmpq, fmpq_poly
@@ -53,10 +52,10 @@ class Deviation(Modal):
     def __init__(self, numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> None:
         self._fraction = (numerator, denominator, size)
         self._base, first = _resolved(numerator, denominator, size)
-        speed = max((float(abs(mode.pole).upper()) for mode in first.modes), default=0.0)
-        self.time_exponent = frexp(speed)[1] if speed > 0.0 else 0
+        speeds = [abs(mode.pole) for mode in first.modes]
+        self.time_exponent = max((_exponent(speed) for speed in speeds if not speed.is_zero()), default=0)
         in_time = first.rescaled(self.time_exponent, 0)
-        self.value_exponent = frexp(_amplitude(in_time))[1]
+        self.value_exponent = _exponent(_amplitude(in_time))
         self._expansions = {self._base: in_time.rescaled(0, self.value_exponent)}
         order = denominator.degree()
         jump = numerator[order] / denominator[order] * size
@@ -106,8 +105,9 @@ class Deviation(Modal):
     @cached_property
     def change(self) -> float:
         """The larger of offset and jump beside it, in units of 2^b; 1 where the response returns to where it was."""
-        change = max(abs(float_of(self.offset)), abs(float_of(self.initial)))
-        return change if change > 0.0 else 1.0
+        if self.offset == 0 and self.initial == 0:
+            return 1.0
+        return max(abs(float_of(self.offset)), abs(float_of(self.initial)))
 
     @cached_property
     def table(self) -> FloatModes:
@@ -147,14 +147,16 @@ def _exponent(value: arb) -> int:
     return int(mantissa).bit_length() + int(exponent)
 
 
-def _amplitude(expansion: Expansion) -> float:
+def _amplitude(expansion: Expansion) -> arb:
     """Return the sum of the sizes of the modes, of t^j e^{pt} at its summit where it has one."""
-    total = 0.0
-    for mode in expansion.modes:
-        for j, c in enumerate(mode.coefficients):
-            decay = -float(mode.pole.real)
-            total += float(c.abs_upper()) * ((j / (2.718 * decay)) ** j if j and decay > 0.0 else 1.0)
-    return total if total > 0.0 else 1.0
+    with working_precision(LOWEST):
+        total = arb(0)
+        for mode in expansion.modes:
+            decay = -mode.pole.real
+            for j, c in enumerate(mode.coefficients):
+                summit = (j / (decay * arb(1).exp())) ** j if j and decay > 0 else arb(1)
+                total += abs(c) * summit
+        return total
 
 
 def _stretched(polynomial: fmpq_poly, exponent: int) -> fmpq_poly:

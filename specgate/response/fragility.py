@@ -54,7 +54,8 @@ class Target:
 
     def ratio(self, deviation: Floats) -> Floats:
         """Return how far values of g are from the base, in parts of the size; 1 is the edge."""
-        away = (deviation - float_of(self.base)) / float_of(self.size)
+        with np.errstate(divide="ignore", invalid="ignore"):
+            away = (deviation - float_of(self.base)) / float_of(self.size)
         return np.abs(away) if self.side is None else away * self.side
 
 

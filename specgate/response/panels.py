@@ -8,7 +8,8 @@ Errors, for x = t / r in [-1, 1] and the coefficients b_k of x^k: the rounding o
 sum is below (5 n + 6) u sum |b_k|; to it come the radii of the b_k, the remainder and the modes that are left out. The
 remainder after t^n of a derivative of order d is at most sup |f^(q)| r^(q-d) / (q-d)! with q = n + 1, and
 |f^(q)| <= |c'| e^(|sigma| r) |p|^(q-i) (|p| r + q)^i for every term. A mode is left out (it is dead) once its envelope
-is 2^-80 of the largest one; the envelopes of its derivatives over the panel are added to every bound.
+is 2^-80 of the largest one, less where modes cancel; the envelopes of its derivatives over the panel are added to every
+bound.
 """
 
 from __future__ import annotations
@@ -32,7 +33,11 @@ from specgate.terms.precision import working_precision
 _REACH = 2.0
 """Half-width of a panel in time constants of the fastest living mode."""
 
-_DEAD, _QUITE_DEAD = 2.0**-80, 2.0**-200
+_DEAD = 2.0**-60
+"""Part of the largest envelope, and of what is left of it after cancellation, that a mode must have to be kept."""
+
+_QUITE_DEAD = 2.0**-120
+"""The same for a closer look, in parts of _DEAD."""
 _ORDERS = 6
 _MOST_HALVINGS = 6
 
@@ -128,6 +133,7 @@ class PanelMaker:
         self._deviation = deviation
         self._expansion = deviation.at(bits)
         self._degree = degree
+        self._dead = _DEAD * min(deviation.change, 2.0**-20)
         self._matrices: dict[tuple[float, tuple[int, ...]], acb_mat] = {}
 
     def speed(self, left: float) -> float:
@@ -139,19 +145,19 @@ class PanelMaker:
     def _speeds(self) -> Floats:
         return np.array([float(abs(mode.pole).upper()) for mode in self._expansion.modes])
 
-    def _living(self, left: float, right: float, dead: float = _DEAD) -> tuple[NDArray[np.intp], Floats]:
+    def _living(self, left: float, right: float, closeness: float = 1.0) -> tuple[NDArray[np.intp], Floats]:
         """Return the modes that live on an interval and bounds of the derivatives 0 ... 5 of all others together."""
         columns = self._deviation.table.envelopes(np.array([left]), np.array([right]))[0]
         lengths = [len(mode.coefficients) for mode in self._expansion.modes]
         modes = np.add.reduceat(columns, np.cumsum([0, *lengths[:-1]]), axis=0)
         last = self._deviation.table.envelopes(np.array([right]), np.array([right]))[0, :, 0].max()
-        living = modes[:, 0] > dead * last
+        living = modes[:, 0] > closeness * self._dead * last
         return np.flatnonzero(living), modes[~living].sum(axis=0)
 
-    def panel(self, start: fmpq, half: float, dead_below: float = _DEAD) -> TaylorPanel:
-        """Return the Taylor polynomials of g about start + half, without modes below a part of the largest one."""
+    def panel(self, start: fmpq, half: float, closeness: float = 1.0) -> TaylorPanel:
+        """Return the Taylor polynomials of g about start + half, without modes that are dead (at this closeness)."""
         left = float_of(start)
-        living, dead = self._living(left, left + 2.0 * half, dead_below)
+        living, dead = self._living(left, left + 2.0 * half, closeness)
         local = self._expansion.only(living.tolist()).rebased(start + exact(half))
         with working_precision(local.bits):
             columns = [c for mode in local.modes for c in mode.coefficients]

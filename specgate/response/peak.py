@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 from specgate.response.budget import BALLS, Budget, OutOfWork
 from specgate.response.cells import Cells
 from specgate.response.certify import Zero
-from specgate.response.deviation import LOWEST, Modal
+from specgate.response.deviation import Modal
 from specgate.response.grid import SPLIT, Grid, split
 from specgate.response.panels import PanelMaker
 from specgate.response.segments import exact
@@ -51,8 +51,8 @@ class Floor(Protocol):
         """Return a ball of it."""
 
 
-Last = Callable[[float, Callable[[], arb]], fmpq | None]
-"""`last(best, firm)`: a time from which on sign * g does not exceed `best`, in balls `firm()`; None: none is known."""
+Last = Callable[[float, Callable[[int], arb]], fmpq | None]
+"""`last(best, firm)`: a time from which on sign * g is at most `best`, in balls `firm(bits)`; None: none is known."""
 
 
 class Climb:
@@ -104,11 +104,12 @@ class Climb:
         """What a cell has to reach to be of interest."""
         return self.best + self._slack
 
-    def firm(self) -> arb:
+    def firm(self, bits: int) -> arb:
         """Return the best value in balls, from the summits that may have it."""
-        heights = [self._sign * summit.zero.value(LOWEST) for summit in self.summits[:_FEW]]
-        with working_precision(LOWEST):
-            return reduce(lambda one, other: one.max(other), heights, self._floor.level(LOWEST)).lower()
+        with working_precision(bits):
+            known = self._floor.level(bits).max(arb(self.best))
+            heights = [self._sign * summit.zero.value(bits) for summit in self.summits[:_FEW]]
+            return reduce(lambda one, other: one.max(other), heights, known).lower()
 
     def _look_to(self, end: Last) -> None:
         """Bring the end of the search up to date and drop the summits that are too low by now."""

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from math import inf
 from typing import Protocol
 
 import numpy as np
@@ -43,5 +44,8 @@ def exact(value: float) -> fmpq:
 
 
 def float_of(value: fmpq) -> float:
-    """Return the float nearest to a rational."""
-    return int(value.p) / int(value.q)
+    """Return the float nearest to a rational, an infinite one where it is out of range."""
+    try:
+        return int(value.p) / int(value.q)
+    except OverflowError:
+        return inf if value > 0 else -inf

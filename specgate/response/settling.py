@@ -83,7 +83,7 @@ def _span(course: Course, zeros: tuple[Zero, ...], from_start: bool, bits: int) 
 def _settled(course: Course, target: Target, band: Band, grid: Grid, budget: Budget) -> Passage:
     assert band.high is not None
     edge = band.high
-    since = tail(course.deviation, float_of(edge), lambda: arb(edge))
+    since = tail(course.deviation, float_of(edge), lambda bits: Answer.of_exact(edge).enclose(bits))
     if since is None:
         raise OutOfWork("the band is too narrow beside the response to be followed")
     walk = Walk(course.deviation, band, budget, backward=True, end=since, margin=target.margin)
@@ -107,7 +107,7 @@ def _last_chance(course: Course, band: Band) -> fmpq | None:
     edge, side = (band.high, 1) if band.high is not None else (band.low, -1)
     assert edge is not None
     if edge * side > 0:
-        return tail(course.deviation, float_of(abs(edge)), lambda: arb(abs(edge)))
+        return tail(course.deviation, float_of(abs(edge)), lambda bits: Answer.of_exact(abs(edge)).enclose(bits))
     return course.below_from(side) if edge == 0 else None
 
 

@@ -7,11 +7,12 @@ from math import exp, factorial
 
 from flint import arb, arb_series, fmpq_poly
 
+from specgate.response.budget import OutOfWork
 from specgate.response.segments import at_least, at_most
 from specgate.terms.precision import series_terms, working_precision
 
 _BITS = 128
-_LONGEST, _SHORTEST = 4, -400
+_LONGEST, _SHORTEST = 4, -1000
 _SLOWEST = 2.0**-20
 """Least rho: zero, for poles that all lie at the origin, would bound nothing."""
 
@@ -37,6 +38,7 @@ def first_stretch(numerator: fmpq_poly, denominator: fmpq_poly) -> Start | None:
     k >= 1 if it holds for k <= n and rho^n >= sum |a_i| rho^i, which rho = 2 max |a_{n-i}|^{1/i} fulfils. Then
     y'(t) / (h_m t^{m-1}/(m-1)!) - 1 is at most the sum of the ratios of the further terms up to n and of the tail
     C rho^{n+1} t^n e^{rho t} / n!. The stretch is the longest power of two at which that sum is at most one half.
+    Raises OutOfWork where that is out of the range of floats.
     """
     order = denominator.degree()
     moving = numerator - denominator * (numerator[order] / denominator[order])
@@ -54,7 +56,7 @@ def first_stretch(numerator: fmpq_poly, denominator: fmpq_poly) -> Start | None:
         if _remainder(2.0**exponent, first, ratios, tail, rate) <= 0.499:
             floor = 0.5 * smallest / factorial(first - 1) * (1.0 - 1e-12)
             return Start(2.0**exponent, 1 if terms[0] > 0 else -1, floor, first - 1)
-    return None
+    raise OutOfWork("the response begins to move on a scale of time that is out of range")
 
 
 def in_inverse_powers(moving: fmpq_poly, denominator: fmpq_poly, count: int) -> list[arb]:

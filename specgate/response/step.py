@@ -153,7 +153,7 @@ class StepResponse:
             window = unsettled_window(deviation.at(POLE_BITS).modes, deviation.time_exponent)
         return curve_points(deviation, window, self._known_times(), self._jump, points)
 
-    def _drawn_settling(self) -> float | None:
+    def _drawn_settling(self) -> fmpq | None:
         """Return the time after which 2 % of the change, or of the peak where there is none, is left; None: unknown."""
         final = self.numerator[0] / self.denominator[0] * self.size
         band = abs(final) / 50
@@ -161,7 +161,7 @@ class StepResponse:
             peak = self.peak_deviation().value
             band = fmpq(0) if peak.absent else peak.enclose(64).mid().fmpq() / 50
         settled = self.settling(band) if band > 0 else None
-        return None if settled is None or settled.absent else float(settled.enclose(64))
+        return None if settled is None or settled.absent else settled.enclose(64).mid().fmpq()
 
     def _known_times(self) -> list[fmpq]:
         """Return the times of the extremes and of all crossings that were asked for."""

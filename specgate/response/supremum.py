@@ -51,7 +51,7 @@ def highest(course: Course, sign: int) -> Extreme:
     jump = sign * course.deviation.initial
     floor = exact_floor(course, sign, max(jump, fmpq(0)), taken=jump >= 0)
 
-    def last(best: float, firm: Callable[[], arb]) -> fmpq | None:
+    def last(best: float, firm: Callable[[int], arb]) -> fmpq | None:
         return tail(course.deviation, best, firm) if best > 0.0 else course.below_from(sign)
 
     try:
@@ -66,9 +66,9 @@ def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extr
     """Return the supremum within SLACK of the change, without its time, where the exact search did not end."""
     slack = SLACK * course.deviation.change
 
-    def last(best: float, _: Callable[[], arb]) -> fmpq | None:
+    def last(best: float, _: Callable[[int], arb]) -> fmpq | None:
         level = max(best, 0.0) + slack
-        return tail(course.deviation, level, lambda: arb(level))
+        return tail(course.deviation, level, lambda _: arb(level))
 
     def on(grid: Grid, budget: Budget) -> float:
         climb = Climb(course.deviation, sign, floor, budget, slack)
@@ -84,7 +84,7 @@ def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extr
 
     def value(bits: int) -> arb:
         with working_precision(bits):
-            height = arb(sign * best).union(sign * (arb(best) + arb(exact(slack))))
+            height = arb(sign * best).union(sign * (arb(best) + arb(2 * exact(slack))))
         return course.deviation.response(height)
 
     return Extreme(Answer.of_ball(value), undecided.time)

@@ -11,7 +11,8 @@ at most the sum over all columns (K + 3 |p| t) u |D| t^j e^(sigma t) + r t^j e^(
   sum of at most 2 M terms for M columns, of which those of a pair add to at most |D| sqrt(2): 2 sqrt(2) M u;
 - r is the radius of the ball that D is the middle of (absolute: a relative one would be void for a D that is zero).
 
-So K = 3 M + max j + 24. Second-order terms and the rounding of the bound itself are below 1 %. Results below the
+So K = 3 M + max j + 24, and 10 more for the two halves that the exponential of a repeated pole is made of. Second-order
+terms and the rounding of the bound itself are below 1 %. Results below the
 normal range are off by less than 1e-280, because the response is scaled to modes of size one.
 """
 
@@ -91,7 +92,7 @@ class FloatModes:
     @cached_property
     def _error_weights(self) -> Floats:
         """Shape (M, 6): weights of the columns in the constant and in the time-proportional part of the bound."""
-        fixed = 3 * len(self.power) + self.power.max(initial=0.0) + 24
+        fixed = 3 * len(self.power) + self.power.max(initial=0.0) + 34
         size = self.size[:, :3]
         growing = 3 * np.hypot(self.decay, self.frequency)[:, None] * size
         return SLACK * np.concatenate([fixed * UNIT_ROUNDOFF * size + self.radius, UNIT_ROUNDOFF * growing], axis=1)
@@ -107,13 +108,18 @@ class FloatModes:
         return FloatModes(self.start, *(field[keep] for field in fields))
 
     def _columns(self, instants: Floats, powers_at: Floats) -> Floats:
-        """Return (scale t)^j e^(sigma t) of all columns, the power at `powers_at`, both (n, M) or (n, 1)."""
-        columns: Floats = np.exp(instants * self.decay)
-        if self.power.any():
-            ratio = powers_at * self.scale
-            for j in range(1, int(self.power.max()) + 1):
-                columns = np.where(self.power >= j, columns * ratio, columns)
-        return columns
+        """Return (scale t)^j e^(sigma t) of all columns, the power at `powers_at`, both (n, M) or (n, 1).
+
+        Powers stand between two halves of the exponential, which alone might leave the normal range where they do not.
+        """
+        if not self.power.any():
+            simple: Floats = np.exp(instants * self.decay)
+            return simple
+        half: Floats = np.exp(0.5 * instants * self.decay)
+        columns, ratio = half, powers_at * self.scale
+        for j in range(1, int(self.power.max()) + 1):
+            columns = np.where(self.power >= j, columns * ratio, columns)
+        return columns * half
 
     def sample(self, times: Floats) -> tuple[Floats, Floats]:
         """Return g, g', g'' and their error bounds, both of shape (n, 3)."""
@@ -147,18 +153,19 @@ class FloatModes:
 
     @cached_property
     def _summit(self) -> Floats:
-        """Where decaying columns are largest."""
+        """Where columns are largest; those that do not decay, in the end."""
         with np.errstate(divide="ignore", invalid="ignore"):
-            return np.where(self.power > 0.0, self.power / -self.decay, 0.0)
+            fading = np.where(self.power > 0.0, self.power / -self.decay, 0.0)
+        return np.where(self.decay < 0.0, fading, np.inf)
 
     def crest(self, left: float, right: float) -> float:
-        """Return a bound of |g| on an interval, the sum of the suprema of decaying columns, but for `parts_error`."""
+        """Return a bound of |g| on an interval, the sum of the suprema of all columns, but for `parts_error`."""
         instants = np.clip(self._summit, left, right)[None, :]
         return float((self._columns(instants, instants) * self.size[:, 0]).sum())
 
     def crest_time(self) -> float | None:
-        """Return where the envelope of decaying columns is largest, about; None: it never rises."""
-        if not self.power.any():
+        """Return where the envelope of decaying columns is largest, about; None: it never rises, or for ever."""
+        if not self.power.any() or (self.decay >= 0.0).any():
             return None
         times = np.concatenate([self._summit[np.isfinite(self._summit) & (self._summit > 0.0)], DOUBLINGS])
         for _ in range(2):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from math import frexp
 
 from flint import arb, fmpq
 
@@ -30,8 +31,8 @@ def float_tail(table: FloatModes, level: float) -> float | None:
     return smallest(lambda times: table.parts(times).sum(axis=1), target, table.parts_at_doublings)
 
 
-def tail(modal: Modal, level: float, firm: Callable[[], arb]) -> fmpq | None:
-    """Return the tail for a level, exactly; `firm` encloses the level where floats are too coarse for it.
+def tail(modal: Modal, level: float, firm: Callable[[int], arb]) -> fmpq | None:
+    """Return the tail for a level, exactly; `firm(bits)` encloses the level where floats are too coarse for it.
 
     With next to no damping the rounding of the envelope alone would be many periods: there it is taken in balls.
     """
@@ -40,10 +41,8 @@ def tail(modal: Modal, level: float, firm: Callable[[], arb]) -> fmpq | None:
         return None
     if modal.table.parts_error < modal.table.slowest:
         return exact(since)
-    expansion = modal.at(2 * LOWEST)
-    with working_precision(expansion.bits):
-        level_ball = firm()
-    return _firm_tail(expansion, level_ball, exact(since))
+    bits = LOWEST - 2 * frexp(modal.table.slowest)[1]
+    return _firm_tail(modal.at(bits), firm(bits), exact(since))
 
 
 def _firm_tail(expansion: Expansion, level: arb, since: fmpq) -> fmpq:

@@ -139,7 +139,7 @@ def _swing_with_transient(course: Course, sign: int, index: int) -> Extreme:
     amplitude = _amplitude(course, index, LOWEST)
     top = at_most(amplitude)
 
-    def last(best: float, _: Callable[[], arb]) -> fmpq | None:
+    def last(best: float, _: Callable[[int], arb]) -> fmpq | None:
         excess = (best - top) * (1.0 - 1e-9) - 1e-15 * top
         if excess > 0.0:
             since = float_tail(table, excess)

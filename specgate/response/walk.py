@@ -61,7 +61,7 @@ class Band:
 class Passage:
     """What a walk met: the crossing at which it left the band, if it did.
 
-    touching: turning points before it whose value is not told from an edge at the highest precision.
+    touching: instants before it at which g is not told from an edge at the highest precision.
     near: cells before it on which a turning point may come within the margin of an edge.
     """
 
@@ -183,8 +183,13 @@ class Walk:
         left, right = ends(cells, index)
         far = left if self._backward else right
         for edge, outward in ((self._band.low, -1), (self._band.high, 1)):
-            if edge is not None and sign_at(self._deviation, far, 0, edge) == outward:
+            if edge is None:
+                continue
+            sign = sign_at(self._deviation, far, 0, edge)
+            if sign == outward:
                 return self._leaving(cells, index, edge, outward)
+            if sign == 0:
+                self._touching.append(Zero(self._deviation, Bracket(0, edge, far, far, True, 0.0, far)))
         return None
 
     def _over(self, turning: Zero, cells: Cells, index: int) -> Zero | None:

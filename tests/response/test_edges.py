@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable
 
 import pytest
-from flint import arb, fmpq
+from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Answer
 from specgate.response.step import StepResponse
@@ -115,9 +115,8 @@ def test_a_far_tail_that_floats_cannot_hold(respond: Make) -> None:
     assert response.least().value.exact == 0
 
 
-def _product(rates: list[str]):  # type: ignore[no-untyped-def]
-    from flint import fmpq_poly
-
+def _product(rates: list[str]) -> tuple[fmpq_poly, fmpq_poly]:
+    """Return the product of s + rate and, as a polynomial, its value at zero."""
     result = fmpq_poly([1])
     for rate in rates:
         whole, part = rate.split(".")
@@ -177,3 +176,68 @@ def test_bad_questions_are_refused(respond: Make) -> None:
         respond([1, 0, 0], [1, 1])
     with pytest.raises(ValueError, match="half-width"):
         respond([1], [1, 1]).settling(fmpq(0))
+
+
+def test_a_final_value_touched_at_a_rational_time_is_left_open() -> None:
+    """y = 1 - (t - 2)^2 e^-t touches 1 at t = 2, exactly, and only approaches it afterwards."""
+    line, cube = fmpq_poly([1, 1]), fmpq_poly([1, 1]) ** 3
+    response = StepResponse(cube - fmpq_poly([0, 1]) * (4 * line * line - 4 * line + 2), cube, fmpq(1))
+    with working_precision(200):
+        assert response.enclose(fmpq(2), 128).overlaps(arb(1))
+    answer = response.first_arrival(fmpq(1))
+    assert answer.absent is not None
+    assert not answer.absent.proved
+
+
+def test_far_below_the_range_of_the_exponential(respond: Make) -> None:
+    """1/(s+1)^50: the deviation is e^-t times the first 50 terms of the exponential series, also where e^-t is 0.0."""
+    response = StepResponse(*reversed(_product(["1.0"] * 50)), fmpq(1))
+    edge = fmpq(1, 10**255)
+    time = response.settling(edge).enclose(200)
+    with working_precision(400):
+        series, term = arb(1), arb(1)
+        for k in range(1, 50):
+            term = term * time / k
+            series = series + term
+        assert ((-time).exp() * series).overlaps(arb(edge))
+    assert time.rel_accuracy_bits() > 150
+
+
+@pytest.mark.parametrize("power", [-400, 400])
+def test_sizes_and_times_out_of_the_range_of_floats(power: int, respond: Make) -> None:
+    """A pair of damping 0.5 scaled in value and in time."""
+    unit = fmpq(10) ** power if power > 0 else 1 / fmpq(10) ** -power
+    plain = respond([1], [1, 1, 1])
+    large = StepResponse(plain.numerator, plain.denominator, unit)
+    assert _ratio(large.greatest().value, plain.greatest().value, unit)
+    assert _ratio(large.settling(unit / 50), plain.settling(fmpq(1, 50)), fmpq(1))
+    slow = respond([1], ["1" + "0" * 800, "1" + "0" * 400, 1])
+    assert _ratio(slow.greatest().time, plain.greatest().time, fmpq(10) ** 400)
+    assert plain.settling(fmpq(10) ** 400).exact == 0
+    assert plain.first_arrival(fmpq(10) ** 400).absent is not None
+    assert len(large.curve()) == len(slow.curve()) == 400
+
+
+def _ratio(one: Answer, other: Answer, factor: fmpq) -> bool:
+    with working_precision(200):
+        return bool(one.enclose(100).overlaps(other.enclose(100) * arb(factor)))
+
+
+def test_a_dip_beyond_the_range_of_floats(respond: Make) -> None:
+    """(1 - s/10^125)/(s+1)^2 dips by about 10^-250 / 2; with 10^-700 its beginning is out of range: open, no crash."""
+    dipping = respond(["-1e-125", 1], [1, 2, 1]).least()
+    value = dipping.value.enclose(64)
+    with working_precision(100):
+        assert (value * 2 * arb(10) ** 250 + 1).overlaps(arb(0, "1e-100"))
+    beyond = respond(["-1e-700", 1], [1, 2, 1])
+    for answer in (beyond.greatest().value, beyond.settling(fmpq(1, 50)), beyond.first_arrival(fmpq(1, 2))):
+        assert answer.absent is not None
+        assert not answer.absent.proved
+
+
+def test_modes_that_cancel_beyond_floats_are_left_open() -> None:
+    response = StepResponse(*reversed(_product([f"1.{k:012d}" for k in range(30)])), fmpq(1))
+    assert response.final_value().exact == 1
+    for answer in (response.greatest().value, response.settling(fmpq(1, 50))):
+        assert answer.absent is not None
+        assert not answer.absent.proved
