@@ -148,13 +148,13 @@ def _hold(review: Review, key: str, said: list[str]) -> Hold:
         loop = next((word for word in re.findall(r"[\w.-]+", key) if word in review.loops), None)
         return Hold("", (), key, anchors.sheet(loop) if loop else "findings")
     requirement = review.requirements[key]
-    states = [VERDICTS[requirement.verdict]] if requirement.verdict in ("non_compliant", "open") else []
-    if requirement.standing in ("out_of_range", "inconclusive"):
-        states.append(STANDINGS[requirement.standing])
-    words = requirement.reason if states and requirement.reason else said[0].removeprefix(key).lstrip(": ")
-    return Hold(
-        key, tuple(states) or (LEVELS["error"],), deciding_numbers(review, requirement) or words, anchors.row(key)
-    )
+    held = review.policy.hold_on
+    states = [VERDICTS[requirement.verdict]] if requirement.verdict in held else []
+    states += [STANDINGS[requirement.standing]] if requirement.standing in held else []
+    reason = requirement.reason or ""
+    words = reason if reason and any(reason in one for one in said) else said[0].removeprefix(key).lstrip(": ")
+    numbers = deciding_numbers(review, requirement)
+    return Hold(key, tuple(states) or (LEVELS["error"],), numbers or words, anchors.row(key))
 
 
 def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
