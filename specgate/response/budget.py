@@ -11,7 +11,7 @@ class OutOfWork(Exception):
         self.reason = reason
 
 
-BALLS = 2000
+BALLS = 600
 """Cells that could be looked at in the time that settling one of them in balls takes, about."""
 
 _LOOK = 200

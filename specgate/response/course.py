@@ -29,7 +29,7 @@ FAINT = 1e-30
 HOPELESS = 1e-250
 """Change, in units of the sum of the modes, below which nothing is searched."""
 
-WORK = 1_000_000
+WORK = 600_000
 """Cells that one search may look at."""
 
 _LOOKS = 2.0 ** np.arange(-6.0, 24.0)

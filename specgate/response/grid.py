@@ -66,10 +66,10 @@ class Grid:
         number = 0
         while True:
             block = self._block(number)
-            if scope is not None and scope.is_over(block.time(0)):
-                return
             for index in _in_scope(block, scope):
                 yield self._chunk(number, index, budget)
+            if scope is not None and scope.is_over(block.end):
+                return
             number += 1
 
     def downward(self, time: fmpq, budget: Budget) -> Iterator[Cells]:

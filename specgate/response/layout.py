@@ -24,6 +24,9 @@ FAR = 2.0**17
 _MOST = 2.0**900
 _AT_ONCE = 32
 
+_OCTAVES = 24
+"""Octaves of a chunk at most: beyond the settled ones there is nothing to see."""
+
 
 class FloatLayout:
     """Plans the blocks: several short octaves make one chunk, a long octave many."""
@@ -40,7 +43,7 @@ class FloatLayout:
         table = self._deviation.table.alive(left)
         octaves: list[tuple[float, int]] = []
         total, end = 0, left
-        while total <= CHUNK:
+        while total <= CHUNK and len(octaves) < _OCTAVES:
             count = self._count(end)
             if octaves and (total + count > CHUNK or 2.0 * end * table.speed > FAR):
                 break

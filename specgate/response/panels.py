@@ -22,6 +22,7 @@ import numpy as np
 from flint import acb, acb_mat, arb, fmpq
 from numpy.typing import NDArray
 
+from specgate.response.budget import OutOfWork
 from specgate.response.cells import Cells, cells_between
 from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import Block
@@ -38,6 +39,9 @@ _DEAD = 2.0**-60
 
 _QUITE_DEAD = 2.0**-120
 """The same for a closer look, in parts of _DEAD."""
+_SHORTEST = 2.0**-180
+"""Width of a panel at least: its fifth power is a divisor."""
+
 _ORDERS = 6
 _MOST_HALVINGS = 6
 
@@ -156,6 +160,8 @@ class PanelMaker:
 
     def panel(self, start: fmpq, half: float, closeness: float = 1.0) -> TaylorPanel:
         """Return the Taylor polynomials of g about start + half, without modes that are dead (at this closeness)."""
+        if half < 0.5 * _SHORTEST:
+            raise OutOfWork("a stretch of the response is too short for a panel of its own")
         left = float_of(start)
         living, dead = self._living(left, left + 2.0 * half, closeness)
         local = self._expansion.only(living.tolist()).rebased(start + exact(half))
@@ -168,13 +174,13 @@ class PanelMaker:
     def closer(self, cells: Cells, first: int, last: int, parts: int) -> Cells | None:
         """Return a run of cells, in equal parts, on a panel of its own that rounds in the measure of what it sees.
 
-        None: the run is too long for one panel.
+        None: the run is too long for one panel, or too short for floats to scale.
         """
         start = cells.segment.start + exact(float(cells.left[first]))
         width = float(cells.right[last]) - float(cells.left[first])
         left = float_of(start)
         living, _ = self._living(left, left + width, _QUITE_DEAD)
-        if width * float(self._speeds[living].max(initial=0.0)) > 2.0 * _REACH:
+        if width < _SHORTEST or width * float(self._speeds[living].max(initial=0.0)) > 2.0 * _REACH:
             return None
         nodes: Floats = width / parts * np.arange(parts + 1, dtype=np.float64)
         return cells_between(self.panel(start, width / 2.0, _QUITE_DEAD), nodes[None, :])

@@ -88,8 +88,10 @@ class Climb:
 
     def skips(self, left: float, right: float) -> bool:
         """Whether the envelope shows that nothing between two times is of interest."""
+        if self._last is None:
+            return False
         table = self._deviation.table
-        return self._last is not None and table.crest(left, right) * (1.0 + 2.0 * table.parts_error) < self._bar
+        return exact(left) >= self._last or table.crest(left, right) * (1.0 + 2.0 * table.parts_error) < self._bar
 
     def is_over(self, time: float) -> bool:
         """Whether nothing from `time` on is of interest."""
@@ -145,18 +147,21 @@ class Climb:
             if not len(pending):
                 return
             group = pending[:1]
-            if depth >= _CLOSE or (local and blurred[group[0]]):
+            sharpened = None
+            if blurred[group[0]] and depth < _CLOSE and not local:
+                sharpened = self._sharpen(cells, _run(cells, pending[blurred[pending]]))
+            if sharpened is not None:
+                group = sharpened
+            elif depth >= _CLOSE or blurred[group[0]]:
                 self._closely(cells, int(group[0]), bool(domed[group[0]]), float(high[group[0]]), depth)
-            elif blurred[group[0]]:
-                group = self._sharpen(cells, _run(cells, pending[blurred[pending]]), depth)
             else:
                 sharp = pending[~blurred[pending]]
                 group = np.sort(sharp[np.argsort(-high[sharp], kind="stable")[:_GROUP]])
                 self._search(split(cells, group, self._budget), depth + 1, local=local)
             unknown[group] = False
 
-    def _sharpen(self, cells: Cells, run: NDArray[np.intp], depth: int) -> NDArray[np.intp]:
-        """Search the first of a run of blurred cells on panels of their own, or split where that is too long for one.
+    def _sharpen(self, cells: Cells, run: NDArray[np.intp]) -> NDArray[np.intp] | None:
+        """Search a run of blurred cells, or its first one, on a panel of its own; None: no panel fits it.
 
         Return the cells that were searched.
         """
@@ -166,8 +171,7 @@ class Climb:
             if closer is not None:
                 self._search(closer, 0, local=True)
                 return group
-        self._search(split(cells, run[:1], self._budget), depth + 1, local=False)
-        return run[:1]
+        return None
 
     def _take(self, cells: Cells, which: NDArray[np.intp]) -> None:
         """Keep the summits of cells that hold exactly one, with their heights.
