@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import re
+from collections import Counter
 from collections.abc import Mapping
+from itertools import combinations, pairwise
 
 import pytest
 from hypothesis import given, settings
@@ -13,6 +15,7 @@ from specgate.report.figures import wiring
 from specgate.report.figures.wiring_graph import Graph, NotDrawable, graph
 from specgate.report.figures.wiring_layout import layouts
 from specgate.report.figures.wiring_paths import branches, parts, spine
+from specgate.report.figures.wiring_shapes import Box, Label, Layout, Run
 
 
 def into(of: Graph, label: str) -> list[tuple[str, bool, str]]:
@@ -163,11 +166,45 @@ def test_any_wiring_is_drawn_clean_or_not_at_all(lines: list[str]) -> None:
         return
     for picture in pictures:
         boxes = list(picture.boxes.values())
-        for k, one in enumerate(boxes):
-            for other in boxes[k + 1 :]:
-                apart_x = abs(one.x - other.x) >= (one.width + other.width) / 2
-                apart_y = abs(one.y - other.y) >= (one.height + other.height) / 2
-                assert apart_x or apart_y
+        for one, other in combinations(boxes, 2):
+            apart_x = abs(one.x - other.x) >= (one.width + other.width) / 2
+            apart_y = abs(one.y - other.y) >= (one.height + other.height) / 2
+            assert apart_x or apart_y
         for run in picture.runs:
-            for (x0, y0), (x1, y1) in zip(run.corners, run.corners[1:], strict=False):
+            for (x0, y0), (x1, y1) in pairwise(run.corners):
                 assert abs(x0 - x1) < 0.01 or abs(y0 - y1) < 0.01
+
+
+def arrivals(picture: Layout) -> Counter[tuple[tuple[int, str], int]]:
+    """Which signals arrive at which nodes, as drawn: the ends of lines that touch a box."""
+    found: Counter[tuple[tuple[int, str], int]] = Counter()
+    for run in picture.runs:
+        x, y = run.corners[-1]
+        for box in picture.boxes.values():
+            beside = abs(abs(x - box.x) - box.width / 2) < 0.01 and abs(y - box.y) <= box.height / 2
+            above = abs(abs(y - box.y) - box.height / 2) < 0.01 and abs(x - box.x) <= box.width / 2
+            if beside or above:
+                found[run.net, box.node] += 1
+    return found
+
+
+@pytest.mark.parametrize("number", range(len(LOOPS)))
+def test_the_picture_says_what_the_equations_say(number: int) -> None:
+    inputs, equations, channels = LOOPS[number]
+    wired = graph(inputs, equations)
+    drawn: Counter[tuple[tuple[int, str], int]] = Counter()
+    for picture in layouts(wired, channels):
+        drawn += arrivals(picture)
+    assert drawn == Counter(((line.source, line.output), line.target) for line in wired.lines)
+
+
+def test_lines_of_two_signals_never_lie_on_one_another() -> None:
+    box = Box(0, 0.0, 0.0, 10.0, 10.0, 1)
+    first, second = Run((0, ""), ((20.0, 0.0), (60.0, 0.0))), Run((1, ""), ((40.0, 1.0), (90.0, 1.0)))
+    Layout({0: box}, [first, Run((0, ""), second.corners)]).check()
+    with pytest.raises(NotDrawable, match="on one another"):
+        Layout({0: box}, [first, second]).check()
+    with pytest.raises(NotDrawable, match="through a block"):
+        Layout({0: box}, [Run((1, ""), ((-20.0, 0.0), (20.0, 0.0)))]).check()
+    with pytest.raises(NotDrawable, match="a word on a block"):
+        Layout({0: box}, [], [Label(-2.0, 3.0, "word")]).check()

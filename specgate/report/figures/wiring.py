@@ -8,7 +8,8 @@ from itertools import pairwise
 
 from specgate.report.figures import svg
 from specgate.report.figures.wiring_graph import Graph, NotDrawable, graph
-from specgate.report.figures.wiring_layout import Box, Layout, layouts, two_lines
+from specgate.report.figures.wiring_layout import layouts
+from specgate.report.figures.wiring_shapes import Box, Layout, two_lines
 
 MONO = "DejaVu Sans Mono"
 MARGIN, BETWEEN = 6.0, 18.0
