@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
-from specgate.report.digits import number
+from specgate.report.digits import decimal, number
 from specgate.review.types import Amount, DefinitionReview, LimitReview
 
 
@@ -118,7 +118,9 @@ def edges(of: LimitReview) -> tuple[float, ...]:
         return tuple(a.value for a in of.between if a.value is not None)
     if of.within is not None and of.of is not None:
         middle, half = of.of.value, of.within.value
-        return (middle - half, middle + half) if middle is not None and half is not None and _alike(of) else ()
+        if middle is None or half is None or not _alike(of):
+            return ()
+        return float(decimal(middle) - decimal(half)), float(decimal(middle) + decimal(half))
     one = of.at_most or of.at_least
     return () if one is None or one.value is None else (one.value,)
 

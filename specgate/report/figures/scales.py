@@ -54,11 +54,12 @@ def simplified(points: Sequence[tuple[float, float]], tolerance: float) -> list[
 
 
 def _off(point: tuple[float, float], start: tuple[float, float], end: tuple[float, float]) -> float:
-    """Return the distance of a point from the line through two others."""
+    """Return the distance of a point from the stretch between two others."""
     dx, dy = end[0] - start[0], end[1] - start[1]
-    length = math.hypot(dx, dy)
     across, down = point[0] - start[0], point[1] - start[1]
-    return math.hypot(across, down) if length == 0 else abs(across * dy - down * dx) / length
+    length = dx * dx + dy * dy
+    share = 0.0 if length == 0 else min(1.0, max(0.0, (across * dx + down * dy) / length))
+    return math.hypot(across - share * dx, down - share * dy)
 
 
 def round_step(at_least: float) -> float:
