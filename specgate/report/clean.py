@@ -7,13 +7,19 @@ replaced by its code point (`[U+202E]`), so that two different texts never look 
 
 from __future__ import annotations
 
+import re
 import unicodedata
 from collections.abc import Callable, Mapping
 from dataclasses import fields, is_dataclass, replace
+from functools import cache
+from operator import is_not
 from typing import Any, TypeVar, cast
 
 T = TypeVar("T")
+Shown = Callable[[str], bool]
+"""Whether a character that does not act can be drawn."""
 _ACTS = {"Cc", "Cf", "Cs", "Co", "Cn", "Zl", "Zp"}
+_BREAK = re.compile(r"[^\S ]")
 
 
 def acts(character: str) -> bool:
@@ -21,34 +27,41 @@ def acts(character: str) -> bool:
     return unicodedata.category(character) in _ACTS and character not in "\n\u00ad"
 
 
-def visible(text: str, shown: Callable[[str], bool] = lambda character: True) -> str:
+def visible(text: str, shown: Shown | None = None) -> str:
     """Return `text` on one line, with every character that acts, or that `shown` denies, named by its code point."""
-    joined = " ".join(text.split()) if any(c.isspace() and c != " " for c in text) else text
-    if joined.isascii() and joined.isprintable():
+    joined = " ".join(text.split()) if _BREAK.search(text) else text
+    # nothing that is printable acts: almost every text is left as it is, without a look at its characters
+    if joined.isprintable() and (shown is None or joined.isascii() or all(map(shown, joined))):
         return joined
-    return "".join(c if not acts(c) and shown(c) else f"[U+{ord(c):04X}]" for c in joined)
+    return "".join(c if not acts(c) and (shown is None or shown(c)) else f"[U+{ord(c):04X}]" for c in joined)
 
 
-def cleaned(tree: T, shown: Callable[[str], bool] = lambda character: True) -> T:
-    """Return a copy of a tree of dataclasses, mappings and tuples with every text in it made visible."""
+def cleaned(tree: T, shown: Shown | None = None) -> T:
+    """Return a tree of dataclasses, mappings and tuples with every text in it made visible; itself if all was."""
     return cast(T, _cleaned(tree, shown))
 
 
-def _cleaned(tree: Any, shown: Callable[[str], bool]) -> Any:
+def _cleaned(tree: Any, shown: Shown | None) -> Any:
     if isinstance(tree, str):
         return visible(tree, shown)
-    if isinstance(tree, Mapping):
-        return {_cleaned(key, shown): _cleaned(value, shown) for key, value in tree.items()}
-    if isinstance(tree, tuple | list):
+    if tree is None or isinstance(tree, (float, int)):
+        return tree
+    if isinstance(tree, (tuple, list)):
         if tree and isinstance(tree[0], float):
             return tree
-        return tuple(_cleaned(item, shown) for item in tree)
-    if is_dataclass(tree) and not isinstance(tree, type):
-        changed = {}
-        for item in fields(tree):
-            before = getattr(tree, item.name)
-            after = _cleaned(before, shown)
-            if after is not before:
-                changed[item.name] = after
+        parts = tuple(_cleaned(item, shown) for item in tree)
+        return parts if any(map(is_not, parts, tree)) else tree
+    names = _names(type(tree))
+    if names:
+        before = ((name, getattr(tree, name)) for name in names)
+        changed = {name: after for name, part in before if (after := _cleaned(part, shown)) is not part}
         return replace(tree, **changed) if changed else tree
+    if isinstance(tree, Mapping):
+        return {_cleaned(key, shown): _cleaned(value, shown) for key, value in tree.items()}
     return tree
+
+
+@cache
+def _names(kind: type) -> tuple[str, ...]:
+    """Return the fields of a dataclass, of anything else none."""
+    return tuple(item.name for item in fields(kind)) if is_dataclass(kind) else ()
