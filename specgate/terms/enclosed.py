@@ -28,6 +28,9 @@ SHORT = 6
 _FINE = fmpq(1, 10**14)
 """Relative radius below which the bounds of a ball are printed."""
 
+_LEAST = fmpq(10 ** (DIGITS - 1))
+"""The least number that has DIGITS digits before the point."""
+
 _NOTHING = fmpq(1, 10**12)
 """Part of the scale (the change of a response) below which a number that is not proved to be zero prints as 0."""
 
@@ -110,15 +113,17 @@ def printed(refine: Refine, scale: fmpq | None = None) -> Enclosed:
     """
     nothing = None if scale is None else abs(scale) * _NOTHING
     low = high = fmpq(0)
+    unique = None
     for bits in _PRECISIONS:
         low, high = ends(refine(bits))
         if nothing is not None and -nothing <= low and high <= nothing:
             return _nearly_zero(low, high, nothing)
-        if _fine(low, high) and rounded(low) == rounded(high) and rounded(low, "down") == rounded(high, "down"):
+        unique = _unique(low, high)
+        if unique is not None:
             break
     if min(abs(low), abs(high)) > _GREATEST:
         raise OverflowError("this number is too large to be printed")
-    return _settled(low, high)
+    return unique or _settled(low, high)
 
 
 def printed_short(ball: arb, scale: float | None = None) -> float:
@@ -136,6 +141,20 @@ def _nearly_zero(low: fmpq, high: fmpq, nothing: fmpq) -> Enclosed:
     lower = fmpq(0) if low >= 0 else -nothing
     upper = fmpq(0) if high <= 0 else nothing
     return Enclosed(0.0, to_float(rounded(lower, "down")), to_float(rounded(upper, "up")), None, Proof.ENCLOSED)
+
+
+def _unique(low: fmpq, high: fmpq) -> Enclosed | None:
+    """Round a fine ball all of which rounds to one decimal to nearest, and to one downwards; any other to None."""
+    if not _fine(low, high):
+        return None
+    unit = _power_of_ten(magnitude(low) - DIGITS + 1)
+    first, last = low / unit, high / unit
+    below, value = first.floor(), _nearest(first)
+    # the end nearer to zero may have one digit less
+    if last.floor() != below or _nearest(last) != value or abs(last) < _LEAST:
+        return None
+    above = below if last == below else below + 1
+    return Enclosed(to_float(value * unit), to_float(below * unit), to_float(above * unit), None, Proof.ENCLOSED)
 
 
 def _settled(low: fmpq, high: fmpq) -> Enclosed:
