@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 
 from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
-from specgate.analysis.responses import response_analysis
+from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.wiring import subsystems_of
 from specgate.measures.subjects import BreakSubject, LoopSubject
 from specgate.project.instantiate import InstantiatedLoop, instantiate
@@ -26,8 +27,17 @@ def analyse(project: Project) -> Analyses:
     nominal = {name: _loop(project, project.loops[name], one, nominal_values) for name, one in built.items()}
     rounded = [name for name, one in built.items() if _rests_on_pi(project.loops[name], one, nominal_values)]
     precise = instantiate(project, precise_values) if rounded else {}
-    again = {name: _loop(project, project.loops[name], precise[name], precise_values) for name in rounded}
+    again = {
+        name: _sharing(nominal[name], _loop(project, project.loops[name], precise[name], precise_values))
+        for name in rounded
+    }
     return Analyses(Study(nominal_values, nominal), Study(precise_values, {**nominal, **again}))
+
+
+def _sharing(nominal: LoopAnalysis, again: LoopAnalysis) -> LoopAnalysis:
+    """Return `again` with the responses that more digits of pi do not change taken from `nominal`: searched once."""
+    pairs = {name: (nominal.responses[name], response) for name, response in again.responses.items()}
+    return replace(again, responses={name: one if same(one, other) else other for name, (one, other) in pairs.items()})
 
 
 def _rests_on_pi(loop: Loop, built: InstantiatedLoop, known: Values) -> bool:
@@ -44,10 +54,11 @@ def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) 
     return LoopAnalysis(
         loop=loop,
         subsystems=subsystems_of(project, loop),
+        signals=built.signals,
         solution=solution,
         subject=LoopSubject(solution) if built.unsupported is None else Missing(built.unsupported, later=True),
         responses={
-            name: response_analysis(project, loop, response, solution, built.responses.get(name), known)
+            name: response_analysis(built.signals, response, solution, built.responses.get(name), known)
             for name, response in loop.responses.items()
         },
         breaks=_breaks(loop, solution, built.breaks),

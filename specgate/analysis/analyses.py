@@ -13,6 +13,7 @@ from specgate.measures.measure import Arguments, Measure
 from specgate.measures.subjects import BreakSubject, LoopSubject, ResponseSubject
 from specgate.project import types as project_types
 from specgate.project.parameters import Values
+from specgate.project.signals import LoopSignals
 from specgate.response.answers import Absent, Answer
 from specgate.systems.solution import Channel, LoopSolution, OpenLoop
 from specgate.terms.unit import Unit
@@ -69,12 +70,13 @@ class BreakAnalysis:
 class LoopAnalysis:
     """A loop, solved once.
 
-    subsystems: names of those it is wired from, in the order of the files. solution: where the subject is missing, that
-    of what is left without the blocks that this version does not answer.
+    subsystems: names of those it is wired from, in the order of the files. signals: the unit and span of each.
+    solution: where the subject is missing, that of what is left without the blocks that this version does not answer.
     """
 
     loop: project_types.Loop
     subsystems: tuple[str, ...]
+    signals: LoopSignals
     solution: LoopSolution
     subject: LoopSubject | Missing
     responses: Mapping[str, ResponseAnalysis]

@@ -7,8 +7,8 @@ from flint import fmpq_poly
 from specgate.analysis.analyses import Missing, ResponseAnalysis
 from specgate.measures.subjects import ResponseSubject
 from specgate.project.parameters import Values, evaluate
-from specgate.project.signals import signal_unit
-from specgate.project.types import Loop, Project, Response
+from specgate.project.signals import LoopSignals
+from specgate.project.types import Response
 from specgate.response.answers import Absent
 from specgate.response.step import StepResponse
 from specgate.systems.solution import Channel, LoopSolution
@@ -20,13 +20,13 @@ _ITSELF = TransferFunction(fmpq_poly([1]), fmpq_poly([1]))
 
 
 def response_analysis(
-    project: Project, loop: Loop, response: Response, solution: LoopSolution, unsupported: str | None, known: Values
+    signals: LoopSignals, response: Response, solution: LoopSolution, unsupported: str | None, known: Values
 ) -> ResponseAnalysis:
     """Return a response with its subject, or why there is none.
 
     unsupported: why this version does not answer it (dead time, a sampled block or another input on the way).
     """
-    unit = signal_unit(project, loop.name, response.to, known)
+    unit = signals.unit(response.to)
     if unsupported is not None:
         return ResponseAnalysis(response, unit, Missing(unsupported, later=True))
     if solution.algebraic_loop is not None:
@@ -36,7 +36,7 @@ def response_analysis(
     if not channel.transfer.proper:
         return ResponseAnalysis(response, unit, Missing(_improper(channel)), channel)
     size = evaluate(driven.quantities["size"], known)
-    error = _error(response, solution, channel, signal_unit(project, loop.name, driven.source, known), unit)
+    error = _error(response, solution, channel, signals.unit(driven.source), unit)
     subject = ResponseSubject(
         channel.transfer,
         size,
@@ -45,6 +45,22 @@ def response_analysis(
         _void(channel),
     )
     return ResponseAnalysis(response, unit, subject, channel)
+
+
+def same(one: ResponseAnalysis, other: ResponseAnalysis) -> bool:
+    """Whether two studies look at the same response, so that what is found of one holds for the other."""
+    first, second = one.subject, other.subject
+    if isinstance(first, Missing) or isinstance(second, Missing):
+        return False
+    parts = zip((first.response, first.error), (second.response, second.error), strict=True)
+    return (first.channel, first.size, first.void) == (second.channel, second.size, second.void) and all(
+        _origin(part) == _origin(again) for part, again in parts
+    )
+
+
+def _origin(response: StepResponse | Absent) -> object:
+    """Return what a response is computed from."""
+    return response if isinstance(response, Absent) else (response.numerator, response.denominator, response.size)
 
 
 def _improper(channel: Channel) -> str:

@@ -12,8 +12,7 @@ from specgate.approximations.features import Features
 from specgate.compliance.compare import Limits, Sign
 from specgate.measures.measure import Arguments, Measure, Reader
 from specgate.measures.subjects import Subject
-from specgate.project.signals import span
-from specgate.project.types import Criterion, Limit, Project
+from specgate.project.types import Criterion, Limit
 from specgate.response.answers import Answer
 from specgate.terms.unit import ONE, Unit
 
@@ -53,14 +52,14 @@ class Asked:
         return self.study.loops[about.loop].responses[about.name].features
 
 
-def ask(project: Project, study: Study, criterion: Criterion, measure: Measure) -> Asked:
+def ask(study: Study, criterion: Criterion, measure: Measure) -> Asked:
     """Evaluate a criterion with the values of a study. Raises Fault."""
     about = criterion.subject
     signal, spanned = ONE, None
     if about.kind == "response" and about.name is not None:
-        response = study.loops[about.loop].responses[about.name]
-        signal = response.unit
-        spanned = span(project, about.loop, response.response.to, study.values)
+        loop = study.loops[about.loop]
+        response = loop.responses[about.name]
+        signal, spanned = response.unit, loop.signals.span(response.response.to)
     return Asked(
         study,
         criterion,

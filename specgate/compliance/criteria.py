@@ -33,8 +33,8 @@ class Criteria:
     def assess(self, criterion: Criterion, basis: Basis | None) -> CriterionAssessment:
         """Judge one criterion; `basis` None means computed."""
         measure = MEASURES[criterion.measure]
-        nominal = ask(self.project, self.analyses.nominal, criterion, measure)
-        again = ask(self.project, self.analyses.again, criterion, measure)
+        nominal = ask(self.analyses.nominal, criterion, measure)
+        again = ask(self.analyses.again, criterion, measure)
         again = nominal if again.same_as(nominal) else again
         unanswered = tuple(self._unanswered(criterion, measure, basis, nominal))
         deciding = next((one for one in unanswered if one.decides), None)

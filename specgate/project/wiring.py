@@ -29,13 +29,14 @@ class InstantiatedLoop:
 
     wiring: a block that this version does not answer (dead time, sampled) is left out of it, and its outputs are
     inputs named `block.output`; what no path through such a block reaches is answered as if it stood there.
-    rest: value of every input and signal before the step, temperatures from the zero of the signal's unit.
-    unsupported: why nothing about the loop as a whole is answered. responses, breaks: the same for each of them that
-    is concerned, by name. subsystems: the subsystem of each instance. depends_on_pi: the wiring rests on a rounded
-    decimal, so that a yes or no has to be decided again with a longer one.
+    signals: the unit and the span of each signal. rest: value of every input and signal before the step, temperatures
+    from the zero of the signal's unit. unsupported: why nothing about the loop as a whole is answered. responses,
+    breaks: the same for each of them that is concerned, by name. subsystems: the subsystem of each instance.
+    depends_on_pi: the wiring rests on a rounded decimal, so that a yes or no has to be decided again with a longer one.
     """
 
     wiring: Wiring
+    signals: LoopSignals
     rest: Mapping[str, fmpq]
     unsupported: str | None
     responses: Mapping[str, str]
@@ -52,6 +53,7 @@ def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values:
     rest.update({name: absolute(value, signals.unit(name), values) for name, value in loop.rest.items()})
     return InstantiatedLoop(
         drawn.wiring(),
+        signals,
         rest,
         next(iter(drawn.missing.values()), None),
         {name: reason for name, response in loop.responses.items() if (reason := drawn.response(response))},

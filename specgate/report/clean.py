@@ -51,7 +51,7 @@ def _cleaned(tree: Any, shown: Shown | None) -> Any:
             return tree
         parts = tuple(_cleaned(item, shown) for item in tree)
         return parts if any(map(is_not, parts, tree)) else tree
-    names = _names(type(tree))
+    names = _names(tree.__class__)
     if names:
         before = ((name, getattr(tree, name)) for name in names)
         changed = {name: after for name, part in before if (after := _cleaned(part, shown)) is not part}

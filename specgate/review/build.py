@@ -12,7 +12,7 @@ from specgate.compliance.thresholds import policy
 from specgate.project.types import InputFile, Project
 from specgate.review.definitions import definitions
 from specgate.review.gate import gate
-from specgate.review.loops import LoopReviews
+from specgate.review.loops import loop
 from specgate.review.printing import location, short
 from specgate.review.requirements import requirement, resting
 from specgate.review.specification import specification
@@ -47,8 +47,8 @@ def review(project: Project, *, curves: bool = True) -> Review:
     assessments = assess(project, analyses, graph)
     warned = (one for one in project.warnings if isinstance(one, Finding))
     said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments))))
-    printer = LoopReviews(project, analyses, curves=curves)
-    loops = {name: printer.loop(name) for name in project.loops}
+    again = analyses.again.loops
+    loops = {name: loop(one, again[name], curves=curves) for name, one in analyses.loops.items()}
     rests = resting(project, analyses)
     requirements = {name: requirement(name, one, project, rests, graph) for name, one in assessments.items()}
     shown = tuple(_finding(one) for one in said)

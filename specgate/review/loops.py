@@ -3,19 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import fields, replace
+from dataclasses import replace
 
 from flint import arb
 
-from specgate.analysis.analyses import Analyses, LoopAnalysis, Missing, ResponseAnalysis
+from specgate.analysis.analyses import BreakAnalysis, LoopAnalysis, Missing, ResponseAnalysis
 from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID
 from specgate.compliance.readings import Reading
 from specgate.compliance.units import default_unit, smallness
 from specgate.measures.measure import Arguments, Measure, Reader, SubjectKind
 from specgate.measures.subjects import ResponseSubject, Subject
 from specgate.measures.table import MEASURES
-from specgate.project.signals import signal_unit
-from specgate.project.types import Project, Response
+from specgate.project.types import Response
 from specgate.response.answers import Absent
 from specgate.review.printing import coefficients, poles, result
 from specgate.review.types import (
@@ -25,7 +24,6 @@ from specgate.review.types import (
     LoopReview,
     MeasureResult,
     ResponseReview,
-    Result,
 )
 from specgate.systems.roots import certified_roots
 from specgate.terms.enclosed import printed_short
@@ -38,50 +36,41 @@ _POINTS = 256
 """Points of a curve: two pixels each in the widest plot; the format allows 400."""
 
 
-class LoopReviews:
-    """Prints the loops of one project."""
+def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopReview:
+    """Print one loop with everything that is reported on it, asked for or not.
 
-    def __init__(self, project: Project, analyses: Analyses, *, curves: bool) -> None:
-        self.project, self.analyses, self.curves = project, analyses, curves
+    again: the same loop with more digits of pi.
+    """
+    declared = found.loop
+    reason = _reason(found)
+    modes = None if reason else found.solution.determinant
+    return LoopReview(
+        title=declared.title,
+        wiring={key: signal.as_written for key, signal in declared.signals.items()},
+        inputs={key: one.unit.symbol for key, one in declared.inputs.items()},
+        signal_units={key: found.signals.unit(key).symbol for key in declared.signals},
+        rest={key: value.as_written for key, value in declared.rest.items()},
+        subsystems=found.subsystems,
+        characteristic_polynomial=() if modes is None else coefficients(modes),
+        poles=() if modes is None else poles(certified_roots(modes, _SHOWN)),
+        hidden_modes=tuple(_hidden(found)),
+        measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
+        responses={key: _response(one, again.responses[key], curve=curves) for key, one in found.responses.items()},
+        breaks={key: _break(one, again.breaks[key]) for key, one in found.breaks.items()},
+        reason=reason,
+    )
 
-    def loop(self, name: str) -> LoopReview:
-        """Print one loop with everything that is reported on it, asked for or not."""
-        found, again = self.analyses.nominal.loops[name], self.analyses.again.loops[name]
-        declared = found.loop
-        reason = _reason(found)
-        modes = None if reason else found.solution.determinant
-        return LoopReview(
-            title=declared.title,
-            wiring={key: signal.as_written for key, signal in declared.signals.items()},
-            inputs={key: one.unit.symbol for key, one in declared.inputs.items()},
-            signal_units={key: self._unit(name, key).symbol for key in declared.signals},
-            rest={key: value.as_written for key, value in declared.rest.items()},
-            subsystems=found.subsystems,
-            characteristic_polynomial=() if modes is None else coefficients(modes),
-            poles=() if modes is None else poles(certified_roots(modes, _SHOWN)),
-            hidden_modes=tuple(_hidden(found)),
-            measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
-            responses={
-                key: _response(one, again.responses[key], curve=self.curves) for key, one in found.responses.items()
-            },
-            breaks={key: self._break(found, again, key) for key in found.breaks},
-            reason=reason,
-        )
 
-    def _unit(self, loop: str, signal: str) -> Unit:
-        return signal_unit(self.project, loop, signal, self.analyses.nominal.values)
-
-    def _break(self, found: LoopAnalysis, again: LoopAnalysis, name: str) -> BreakReview:
-        one = found.breaks[name]
-        if isinstance(one.subject, Missing):
-            return BreakReview(one.declared.at, (), reason=one.subject.reason)
-        opened = one.subject.open_loop
-        return BreakReview(
-            at=one.declared.at,
-            measures=_measures("break", one.subject, again.breaks[name].subject, ONE),
-            numerator=coefficients(opened.numerator),
-            denominator=coefficients(opened.denominator),
-        )
+def _break(found: BreakAnalysis, again: BreakAnalysis) -> BreakReview:
+    if isinstance(found.subject, Missing):
+        return BreakReview(found.declared.at, (), reason=found.subject.reason)
+    opened = found.subject.open_loop
+    return BreakReview(
+        at=found.declared.at,
+        measures=_measures("break", found.subject, again.subject, ONE),
+        numerator=coefficients(opened.numerator),
+        denominator=coefficients(opened.denominator),
+    )
 
 
 def _reason(found: LoopAnalysis) -> str | None:
@@ -145,8 +134,7 @@ def _measure(row: Measure, subject: Subject, again: Subject, signal: Unit) -> Me
     readings = [_read(row, reader, subject, again, arguments) for reader in (row.read, row.beside)]
     assert readings[0] is not None
     found = result(readings[0], unit, smallness(row, arguments, subject, unit), readings[1])
-    plain = {one.name: getattr(found, one.name) for one in fields(Result)}
-    return MeasureResult(**plain, measure=row.name, arguments=ALWAYS_SAID.get(row.name))
+    return MeasureResult(**vars(found), measure=row.name, arguments=ALWAYS_SAID.get(row.name))
 
 
 def _read(
