@@ -103,7 +103,8 @@ def _dimensions(reader: ModelReader, model: PidModel, output: str, source: str) 
         elif name == "set_point_weight":
             reader.wants(value, DIMENSIONLESS, "a set-point weight")
         elif not plain:
-            reader.wants(value, ratio * TIME ** _GAINS[name], f"`{name}`")
+            time = TIME ** _GAINS[name]
+            reader.wants(value, ratio * time, f"`{name}`", name=reader.shown_ratio(output, source, time))
     if not plain:
         return fmpq(1)
     reader.by_fit = reader.by_fit or ratio != DIMENSIONLESS or any(_GAINS[name] for name in gains)

@@ -9,6 +9,7 @@ from flint import fmpq
 from specgate.measures.measure import Measure, UnitRule
 from specgate.measures.table import MEASURES
 from specgate.project import faults
+from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, evaluate, infer, written_numbers
 from specgate.project.percent import refuse_ambiguous, relative_to_change
@@ -50,6 +51,9 @@ _RATIOS = frozenset({UnitRule.RATIO, UnitRule.DECIBEL})
 
 _SIGNED = frozenset({UnitRule.SIGNAL, UnitRule.RATIO, UnitRule.PER_SECOND, UnitRule.PER_SECOND_SQUARED})
 """Rules under which a limit has a right and a wrong sign; decibels and phases have none."""
+
+_SECOND = Unit("s", fmpq(1), 0, TIME)
+_FREQUENCY = Unit("rad/s", fmpq(1), 0, RATE)
 
 _ONE_SIDED = {("maximum_value", "at_most"), ("minimum_value", "at_least")}
 """Where a value on the other side of zero is no mistake: a greatest value not to exceed, a least one to stay above."""
@@ -111,12 +115,22 @@ class CriterionCheck:
         plain_zero = as_dimension(inferred) == DIMENSIONLESS and evaluate(value, self.values, None, self.span) == 0
         if as_dimension(inferred) != wanted and not plain_zero:
             offered = " or % of the change" if self.measure.unit is UnitRule.CHANGE else ""
-            shown = self.unit.symbol if wanted == self.unit.dimension else str(wanted)
+            percent = relative_to_change(value) is not None
+            found = "per cent of nothing in particular (`% of span`, `% of` a parameter?)" if percent else ""
             raise Fault(
                 faults.DIMENSION,
-                f"`{value.as_written}`: {self.measure.name} is in {shown}{offered}, this is {inferred}",
+                f"`{value.as_written}`: {self.measure.name} is in {self._shown(wanted)}{offered}, "
+                f"this is {found or shown(value, inferred)}",
                 value.place,
             )
+        if self.measure.unit in (UnitRule.SIGNAL, UnitRule.CHANGE) and not plain_zero:
+            refuse_unsaid(value, self.unit, self.values)
+
+    def _shown(self, wanted: Dimension) -> str:
+        rule = self.measure.unit
+        if rule is UnitRule.RADIAN_PER_SECOND:
+            return str(rule.value)
+        return self.unit.symbol if rule in _OF_SIGNAL and wanted == self.unit.dimension else str(wanted)
 
     def _of_span(self, value: Value) -> None:
         names = {node.name for node in value.expression.walk() if isinstance(node, PercentOf)}
@@ -186,12 +200,12 @@ class CriterionCheck:
         elif kind == "fraction":
             self._fraction(name, value)
         elif kind == "time":
-            wants(value, TIME, self.values)
+            wants(value, _SECOND, self.values)
             if evaluate(value, self.values) < 0:
                 raise Fault(faults.VALUE, f"`{value.as_written}`: time counts from the input on", value.place)
         elif kind in ("frequency", "range"):
             refuse_written_rate(value, self.values)
-            wants(value, RATE, self.values)
+            wants(value, _FREQUENCY, self.values)
 
     def _band(self, value: Value) -> None:
         refuse_ambiguous(value, self.unit)
@@ -202,9 +216,11 @@ class CriterionCheck:
             if as_dimension(inferred) != self.unit.dimension:
                 raise Fault(
                     faults.DIMENSION,
-                    f"`{value.as_written}`: a band is in % of the change or in {self.unit.symbol}, this is {inferred}",
+                    f"`{value.as_written}`: a band is in % of the change or in {self.unit.symbol}, "
+                    f"this is {shown(value, inferred)}",
                     value.place,
                 )
+            refuse_unsaid(value, self.unit, self.values)
         if (evaluate(value, self.values, None, self.span) if relative is None else relative) <= 0:
             raise Fault(faults.VALUE, f"`{value.as_written}`: a band is wider than zero", value.place)
 

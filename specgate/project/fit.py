@@ -94,11 +94,12 @@ def plain_gain(reader: ModelReader, pair: Pair, ratio: Dimension, conversion: fm
     """
     if _power_of_time(ratio) is not None and conversion != 1:
         output, source = (reader.subsystem.outputs[pair[0]].unit, reader.subsystem.inputs[pair[1]].unit)
-        example = f", such as `1 {(output / source).symbol}`" if ratio == DIMENSIONLESS else ""
+        example = (output / source if ratio == DIMENSIONLESS else output / output).symbol
+        pure = "" if ratio == DIMENSIONLESS else " for a pure number"
         raise _fault(
             reader,
             f"a plain gain from `{source.symbol}` to `{output.symbol}` can be read in two ways: "
-            f"give it a unit{example}",
+            f"give it a unit, such as `1 {example}`{pure}",
         )
     return conversion
 
@@ -108,8 +109,8 @@ def _fit_denominator(reader: ModelReader, case: _Case) -> None:
     needed = as_dimension(case.numerator) / case.ratio
     if case.denominator is not PLAIN:
         if case.denominator != needed:
-            found = as_dimension(case.numerator) / case.denominator
-            raise _fault(reader, f"the model {_between(reader, case)} has to be in {case.ratio}, but it is in {found}")
+            found, wanted = as_dimension(case.numerator) / case.denominator, reader.shown_ratio(*case.pair)
+            raise _fault(reader, f"the model {_between(reader, case)} has to be in {wanted}, but it is in {found}")
         return
     power = _power_of_time(needed)
     if power is None:
@@ -118,7 +119,7 @@ def _fit_denominator(reader: ModelReader, case: _Case) -> None:
         found = as_dimension(case.numerator)
         raise _fault(
             reader,
-            f"the numerator is in {found}, {_between(reader, case)} {case.ratio} is wanted, "
+            f"the numerator is in {found}, {_between(reader, case)} {reader.shown_ratio(*case.pair)} is wanted, "
             "and a denominator of plain numbers does not make up for it",
         )
 

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 
+from flint import fmpq
+
 from specgate.project import faults
 from specgate.project.blocks import BuiltBlock
 from specgate.project.faults import Fault, Faults
@@ -14,22 +16,24 @@ from specgate.project.signals import LoopSignals
 from specgate.project.subsystem_checks import wants
 from specgate.project.types import Excitation, Value
 from specgate.project.wiring import wire
-from specgate.terms.dimensions import RATE, TIME, Dimension
+from specgate.terms.dimensions import RATE, TIME
 from specgate.terms.expressions import literal_unit
 from specgate.terms.unit import Unit
 
-_QUANTITIES: Mapping[str, Callable[[Dimension], Dimension]] = {
+_SECOND = Unit("s", fmpq(1), 0, TIME)
+
+_QUANTITIES: Mapping[str, Callable[[Unit], Unit]] = {
     "size": lambda signal: signal,
     "amplitude": lambda signal: signal,
-    "slope": lambda signal: signal / TIME,
-    "curvature": lambda signal: signal / TIME**2,
-    "area": lambda signal: signal * TIME,
-    "density": lambda signal: signal**2 * TIME,
-    "duration": lambda _: TIME,
-    "at": lambda _: TIME,
-    "frequency": lambda _: RATE,
+    "slope": lambda signal: signal / _SECOND,
+    "curvature": lambda signal: signal / _SECOND**2,
+    "area": lambda signal: signal * _SECOND,
+    "density": lambda signal: signal**2 * _SECOND,
+    "duration": lambda _: _SECOND,
+    "at": lambda _: _SECOND,
+    "frequency": lambda _: Unit("rad/s", fmpq(1), 0, RATE),
 }
-"""Dimension of what an input is described by, from the dimension of the signal that it drives."""
+"""Unit of what an input is described by, from the unit of the signal that it drives."""
 
 _NOT_ZERO = frozenset({"size", "amplitude", "slope", "curvature", "area", "density"})
 
@@ -59,8 +63,8 @@ def _check_excitation(excitation: Excitation, signals: LoopSignals, found: Fault
             if name == "frequency":
                 refuse_written_rate(value, signals.values)
             if name in _NOT_ZERO:
-                refuse_ambiguous(value, unit)
-            wants(value, _QUANTITIES[name](unit.dimension), signals.values)
+                refuse_ambiguous(value, unit, of_signal=False)
+            wants(value, _QUANTITIES[name](unit), signals.values)
             _refuse_decibel(value)
             if name in _NOT_ZERO and evaluate(value, signals.values) == 0:
                 raise Fault(faults.VALUE, f"`{value.as_written}`: an input of zero drives nothing", value.place)
@@ -68,7 +72,7 @@ def _check_excitation(excitation: Excitation, signals: LoopSignals, found: Fault
 
 def _check_rest(value: Value, unit: Unit, values: Values) -> None:
     """Check that a value can be counted in a signal's unit. Raises Fault."""
-    wants(value, unit.dimension, values)
+    wants(value, unit, values)
     _refuse_decibel(value)
     evaluate(value, values)
 

@@ -14,6 +14,7 @@ from specgate.project.types import Parameter, Project, Tolerance, Value
 from specgate.systems.graph import strong_components
 from specgate.terms import expressions
 from specgate.terms.expressions import (
+    PLAIN,
     Expression,
     ExpressionError,
     Inferred,
@@ -168,9 +169,14 @@ class _Settling:
             if as_dimension(found) != as_dimension(inferred):
                 raise Fault(
                     faults.DIMENSION,
-                    f"the tolerance is in {found}, the value in {inferred}: give both in one dimension, or per cent",
+                    f"the tolerance is {_in(found)}, the value {_in(inferred)}: give both in one dimension, or the "
+                    "tolerance in per cent",
                     value.place,
                 )
+
+
+def _in(inferred: Inferred) -> str:
+    return str(inferred) if inferred is PLAIN else f"in {inferred}"
 
 
 def _beside(value: Value, expression: Expression, tolerance: Tolerance) -> Value:

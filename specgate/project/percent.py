@@ -22,14 +22,18 @@ def relative_to_change(value: Value) -> fmpq | None:
     return None
 
 
-def refuse_ambiguous(value: Value, signal: Unit) -> None:
-    """Refuse a plain `%` where the signal's own unit is %. Raises Fault."""
+def refuse_ambiguous(value: Value, signal: Unit, *, of_signal: bool = True) -> None:
+    """Refuse a plain `%` where the signal's own unit is %. Raises Fault.
+
+    of_signal: whether parts of the change and of the span can be meant here.
+    """
     written = (node.unit for node in value.expression.walk() if isinstance(node, Number))
     if signal.kind in ("percent", "points") and any(unit is not None and unit.kind == "percent" for unit in written):
         number = value.as_written.replace("%", "").strip()
+        others = f"`{number} % of change`, `{number} % of span`, " if of_signal else ""
         raise Fault(
             faults.DIMENSION,
             f"`{value.as_written}` of what? The signal itself is in {signal.symbol}: write `{number} points` for "
-            f"percentage points, or `{number} % of change`, `{number} % of span`, `{number} % of` a parameter",
+            f"percentage points, or {others}`{number} % of` a parameter",
             value.place,
         )

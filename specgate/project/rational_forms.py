@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from flint import fmpq, fmpq_poly
 
 from specgate.project import faults
+from specgate.project.counting import shown
 from specgate.project.faults import Fault
 from specgate.project.fit import Pair, plain_gain, scales
 from specgate.project.parameters import Values, written_numbers
@@ -104,8 +105,8 @@ def _gain(reader: ModelReader, pair: Pair, value: Value, time: Dimension) -> fmp
         output, source = (reader.subsystem.outputs[pair[0]].unit, reader.subsystem.inputs[pair[1]].unit)
         raise Fault(
             faults.DIMENSION,
-            f"`{value.as_written}`: from `{source.symbol}` to `{output.symbol}` this gain is in {wanted}, "
-            f"not in {inferred}",
+            f"`{value.as_written}`: from `{source.symbol}` to `{output.symbol}` this factor has to be in "
+            f"{reader.shown_ratio(*pair, time)}, but it is in {shown(value, inferred)}",
             value.place,
         )
     return reader.number(value)

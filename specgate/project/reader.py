@@ -5,6 +5,7 @@ from __future__ import annotations
 from flint import fmpq, fmpq_poly
 
 from specgate.project import faults
+from specgate.project.counting import shown, shown_ratio
 from specgate.project.faults import Fault
 from specgate.project.parameters import Values, depends_on_pi, evaluate, infer
 from specgate.project.types import Polynomial, Port, Subsystem, Value
@@ -37,6 +38,10 @@ class ModelReader:
     def infer(self, value: Value) -> Inferred:
         """Return the dimension of a value. Raises Fault."""
         return infer(value, self.values, self.subsystem.name)
+
+    def shown_ratio(self, output: str, source: str, time: Dimension = DIMENSIONLESS) -> str:
+        """Name the unit that a transfer function from an input to an output has, times a power of time."""
+        return shown_ratio(self._output(output).unit, self._input(source).unit, time)
 
     def ratio(self, output: str, source: str) -> Dimension:
         """Return the dimension that a transfer function from an input to an output has."""
@@ -78,16 +83,21 @@ class ModelReader:
                 raise Fault(faults.DIMENSION, _odd_term(value, power, inferred, united[0], wanted), value.place)
         return common
 
-    def wants(self, value: Value, wanted: Dimension, what: str, plain_as: str | None = None) -> None:
-        """Check the dimension of a value. `plain_as`: the unit that a plain number is taken in. Raises Fault."""
+    def wants(
+        self, value: Value, wanted: Dimension, what: str, plain_as: str | None = None, name: str | None = None
+    ) -> None:
+        """Check the dimension of a value. Raises Fault.
+
+        plain_as: the unit that a plain number is taken in. name: of the unit that is wanted.
+        """
         inferred = self.infer(value)
         if inferred is PLAIN and (plain_as is not None or is_zero(value)):
             self.by_fit = self.by_fit or (wanted != DIMENSIONLESS and not is_zero(value))
             return
         if as_dimension(inferred) != wanted:
-            raise Fault(
-                faults.DIMENSION, f"`{value.as_written}`: {what} is in {wanted}, this is {inferred}", value.place
-            )
+            unit = name or plain_as or str(wanted)
+            message = f"`{value.as_written}`: {what} is in {unit}, this is {shown(value, inferred)}"
+            raise Fault(faults.DIMENSION, message, value.place)
 
     def _output(self, name: str) -> Port:
         return self.subsystem.outputs[name]
@@ -103,7 +113,8 @@ def is_zero(value: Value) -> bool:
 
 def _odd_term(value: Value, power: int, inferred: Inferred, beside: Value, wanted: Dimension) -> str:
     plain = " (beside a unit a plain number is dimensionless)" if inferred is PLAIN else ""
+    said = str(inferred) if inferred is PLAIN else f"in {shown(value, inferred)}"
     return (
-        f"`{value.as_written}`, the coefficient of s^{power}, is {inferred}{plain}; "
+        f"`{value.as_written}`, the coefficient of s^{power}, is {said}{plain}; "
         f"beside `{beside.as_written}` it has to be in {wanted}"
     )

@@ -144,8 +144,8 @@ class LoopSignals:
     def _declared(self, dimension: Dimension) -> Unit:
         """Return the first unit of this dimension that the project declares, else the coherent one."""
         units = (giver.unit for giver in _givers(self.project))
-        coherent = Unit(str(dimension), fmpq(1), 0, dimension)
-        return next((unit for unit in units if unit.dimension == dimension), coherent)
+        declared = next((unit for unit in units if unit.dimension == dimension), None)
+        return declared or Unit(str(dimension), fmpq(1), 0, dimension)
 
     def port(self, call: Call) -> Port:
         """Return the output port that a call reads. Raises Fault."""

@@ -6,6 +6,7 @@ from flint import fmpq
 
 from specgate.project import faults
 from specgate.project.blocks import BuiltBlock, build
+from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, infer
 from specgate.project.temperatures import absolute
@@ -14,6 +15,8 @@ from specgate.terms.dimensions import TIME, Dimension
 from specgate.terms.expressions import PLAIN, as_dimension
 from specgate.terms.trees import Number
 from specgate.terms.unit import Unit
+
+_SECOND = Unit("s", fmpq(1), 0, TIME)
 
 
 def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> BuiltBlock | None:
@@ -24,7 +27,7 @@ def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> Buil
         for value in (subsystem.model.period, subsystem.model.delay):
             if value is not None:
                 with found.noted(subsystem=subsystem.name):
-                    wants(value, TIME, values, subsystem.name)
+                    wants(value, _SECOND, values, subsystem.name)
     with found.noted(subsystem=subsystem.name):
         return build(subsystem, values)
     return None
@@ -46,8 +49,9 @@ def _check_port(port: Port, subsystem: str, values: Values, found: Faults) -> No
 def _check_range(
     name: str, pair: tuple[Value, Value], dimension: Dimension, port: Port, subsystem: str, values: Values
 ) -> None:
+    unit = port.unit if dimension == port.unit.dimension else port.unit / _SECOND
     for value in pair:
-        wants(value, dimension, values, subsystem)
+        wants(value, unit, values, subsystem)
     low, high = (_end(value, dimension, port, subsystem, values) for value in pair)
     if low >= high:
         written = f"[{pair[0].as_written}, {pair[1].as_written}]"
@@ -65,11 +69,13 @@ def refuse_decibel(unit: Unit, declared: Port) -> None:
         raise Fault(faults.DIMENSION, "a signal cannot be in dB, which is a ratio of amplitudes", declared.place)
 
 
-def wants(value: Value, dimension: Dimension, values: Values, scope: str | None = None) -> None:
-    """Check the dimension of a value; a plain number other than 0 does not stand for a unit. Raises Fault."""
+def wants(value: Value, unit: Unit, values: Values, scope: str | None = None) -> None:
+    """Check that a value can be counted in a unit; a plain number other than 0 does not stand for one. Raises Fault."""
     inferred = infer(value, values, scope)
     zero = isinstance(value.expression, Number) and value.expression.value == 0
     if inferred is PLAIN and zero:
         return
-    if as_dimension(inferred) != dimension:
-        raise Fault(faults.DIMENSION, f"`{value.as_written}`: {dimension} is wanted, this is {inferred}", value.place)
+    if as_dimension(inferred) != unit.dimension:
+        message = f"`{value.as_written}`: {unit.symbol} is wanted, this is {shown(value, inferred)}"
+        raise Fault(faults.DIMENSION, message, value.place)
+    refuse_unsaid(value, unit, values, scope)

@@ -55,16 +55,16 @@ class Unit:
         return self.dimension == RATE and self.angle == 1
 
     def __mul__(self, other: Unit) -> Unit:
-        symbols = [_factor(unit.symbol) for unit in (self, other) if unit.symbol != "1"]
+        symbols = [_bracketed(unit.symbol, "/") for unit in (self, other) if unit.symbol != "1"]
         return _combined(self, other, 1, "*".join(symbols) or "1")
 
     def __truediv__(self, other: Unit) -> Unit:
-        symbol = self.symbol if other.symbol == "1" else f"{self.symbol}/{_divisor(other.symbol)}"
+        symbol = self.symbol if other.symbol == "1" else f"{self.symbol}/{_bracketed(other.symbol, '*/')}"
         return _combined(self, other, -1, symbol)
 
     def __pow__(self, power: int) -> Unit:
         return Unit(
-            f"{_divisor(self.symbol)}^{power}",
+            f"{_bracketed(self.symbol, '*/^')}^{power}",
             self.factor**power,
             self.pi_power * power,
             self.dimension**power,
@@ -100,9 +100,6 @@ def _combined(left: Unit, right: Unit, power: int, symbol: str) -> Unit:
     )
 
 
-def _factor(symbol: str) -> str:
-    return f"({symbol})" if "/" in symbol else symbol
-
-
-def _divisor(symbol: str) -> str:
-    return f"({symbol})" if set(symbol) & set("*/^") else symbol
+def _bracketed(symbol: str, signs: str) -> str:
+    """Put a product into brackets where it has one of these signs in it."""
+    return f"({symbol})" if set(symbol) & set(signs) else symbol

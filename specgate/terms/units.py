@@ -40,6 +40,7 @@ _TOKEN = re.compile(
     r"(?P<symbol>[A-Za-z%\u00b0\u00b5\u03bc\u03a9\u2126][A-Za-z0-9_\u00b5\u03bc\u03a9\u2126]*)"
     r"|(?P<one>1(?![0-9]))|(?P<power>(?:\^|\*\*)-?[0-9]{1,2}|[\u00b2\u00b3])|(?P<sign>[*/()])"
 )
+_SYMBOL = re.compile(r"[A-Za-z%][A-Za-z0-9_]*", re.ASCII)
 _DEFINITION = re.compile(r"(?P<above>[0-9.eE+-]+)(?:/(?P<below>[0-9.eE+-]+))?(?: +(?P<unit>\S.*))?", re.ASCII)
 
 
@@ -76,6 +77,31 @@ class UnitTable:
             raise UnitError("a unit is wanted" if not text else f"`{text[:40]}…` is too long for a unit")
         unit = _Reader(self, text).read()
         return replace(unit, symbol=text)
+
+    def coherent(self, unit: Unit) -> Unit:
+        """Return the coherent unit of the same dimension and angle, part by part: `m/s/V` for `mm/s/V`."""
+        text = _SYMBOL.sub(lambda found: self._coherent_symbol(found[0]), unit.symbol)
+        try:
+            found = self.parse(text)
+        except UnitError:
+            found = ONE
+        return found if _is_coherent(found, unit) else self._listed_coherent(unit)
+
+    def _coherent_symbol(self, token: str) -> str:
+        stem = token if token in self.units else token.rstrip("0123456789")
+        if stem not in self.units:
+            return token
+        symbol = self._listed_coherent(self.units[stem]).symbol
+        power = token[len(stem) :]
+        return f"({symbol}){power}" if "/" in symbol or (power and "^" in symbol) else f"{symbol}{power}"
+
+    def _listed_coherent(self, unit: Unit) -> Unit:
+        """Return the first unit of the table of this dimension and angle, else one named after the dimension."""
+        if unit.dimension == DIMENSIONLESS and not unit.angle:
+            return ONE
+        plain = (one for one in self.units.values() if one.kind in ("linear", "temperature_difference"))
+        listed = next((one for one in plain if _is_coherent(one, unit)), None)
+        return listed or Unit(str(unit.dimension), fmpq(1), 0, unit.dimension, unit.angle)
 
     def is_unit(self, name: str) -> bool:
         """Whether `name` is a symbol of this table, so that no parameter may be called so."""
@@ -120,6 +146,11 @@ class UnitTable:
         if size <= 0:
             raise UnitError(f"`{text}` does not define a unit: its size must be greater than zero")
         return replace(unit, factor=unit.factor * size)
+
+
+def _is_coherent(found: Unit, unit: Unit) -> bool:
+    """Whether `found` is of the dimension and angle of `unit`, and of size 1."""
+    return (found.dimension, found.angle) == (unit.dimension, unit.angle) and found.factor == 1 and not found.pi_power
 
 
 @cache

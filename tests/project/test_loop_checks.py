@@ -162,7 +162,7 @@ def test_a_signal_is_not_in_decibels(findings: Findings) -> None:
         ("a: {from: ask, to: height, input: step, size: reach - 4 cm}", "drives nothing"),
         ("a: {from: ask, to: height, input: ramp, slope: 5 mm}", "m/s is wanted"),
         ("a: {from: ask, to: height, input: impulse, area: 5 mm}", "m*s is wanted"),
-        ("a: {from: ask, to: height, input: parabola, curvature: 5 mm/s}", "m/s^2 is wanted"),
+        ("a: {from: ask, to: height, input: parabola, curvature: 5 mm/s}", "cm/s^2 is wanted"),
         ("a: {from: ask, to: height, input: pulse, size: 5 mm, duration: 3 mm}", "s is wanted, this is m"),
         ("a: {from: ask, to: height, input: sine, amplitude: 5 mm, frequency: 3 1/s}", "radians or cycles"),
         ("a: {from: ask, to: height, input: white_noise, density: 3 mm2}", "m^2*s is wanted"),

@@ -95,7 +95,7 @@ def test_other_values_flow_into_formulas(project: ProjectOf) -> None:
         ("a: {value: 1 m, source: x}, b: {formula: a + 1 s}", "cannot be added to", "dimension-mismatch"),
         ("a: {value: 0, source: x}, b: {formula: 1/a}", "division by zero", "schema-violation"),
         ("a: {value: 1 m, tolerance: 2 s, source: x}", "the tolerance is in s", "dimension-mismatch"),
-        ("a: {value: 1 m, tolerance: 2, source: x}", "the tolerance is in a plain number", "dimension-mismatch"),
+        ("a: {value: 1 m, tolerance: 2, source: x}", "the tolerance is a plain number", "dimension-mismatch"),
         ("a: {value: 9**64, source: x}, b: {formula: a**64}", "too large", "schema-violation"),
     ],
 )

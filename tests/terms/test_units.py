@@ -169,3 +169,19 @@ class TestOwnUnits:
     def test_a_circle_of_definitions_is_an_error_for_each(self) -> None:
         _, problems = UNITS.with_units({"here": "2 there", "there": "2 here", "good": "5 m"})
         assert sorted(problems) == ["here", "there"]
+
+
+@pytest.mark.parametrize(
+    ("written", "coherent"),
+    [
+        *(("mm/s/V", "m/s/V"), ("kV/mm", "V/m"), ("cm2/s", "m2/s"), ("l/min", "m^3/s"), ("mV/(mm*ms)", "V/(m*s)")),
+        *(("bar", "Pa"), ("kN*mm", "N*m"), ("g", "kg"), ("arcmin/V", "rad/V"), ("kn/V", "(m/s)/V"), ("%", "1")),
+    ],
+)
+def test_a_coherent_unit_is_named_part_by_part(written: str, coherent: str) -> None:
+    table = UnitTable.standard()
+    found = table.coherent(table.parse(written))
+    assert found.symbol == coherent
+    assert (found.dimension, found.angle) == (table.parse(written).dimension, table.parse(written).angle)
+    assert found.factor == 1
+    assert found.pi_power == 0
