@@ -9,6 +9,7 @@ from flint import fmpq
 from specgate.analysis.analyses import Analyses
 from specgate.analysis.arguments import said
 from specgate.analysis.reads import parameters_read
+from specgate.approximations.table import APPROXIMATIONS, chain
 from specgate.compliance.assessment import (
     Assessment,
     Audit,
@@ -163,7 +164,7 @@ def _basis(audit: Audit) -> BasisReview:
     return BasisReview(
         kind=audit.kind,
         standing=audit.standing.value,
-        chain=audit.chain,
+        chain=_chain(audit.chain),
         claimed=None
         if audit.claimed is None or audit.claim is None
         else stated(audit.claimed, unit, audit.claim.value.as_written),
@@ -177,6 +178,14 @@ def _basis(audit: Audit) -> BasisReview:
         instead=_instead(audit, unit),
         reason=audit.reason,
     )
+
+
+def _chain(named: tuple[str, ...]) -> tuple[str, ...]:
+    """Return the approximations that a basis names, each with its premises before it where it is audited."""
+    with_premises = (
+        [row.name for row in chain(name)] if name in APPROXIMATIONS else [name] for name in dict.fromkeys(named)
+    )
+    return tuple(dict.fromkeys(one for names in with_premises for one in names))
 
 
 def _implied(audit: Audit, unit: Unit) -> Mapping[str, float] | None:

@@ -10,7 +10,7 @@ from specgate.analysis.analyses import Analyses
 from specgate.analysis.reads import parameters_read
 from specgate.compliance.readings import Reading
 from specgate.project.blocks import build
-from specgate.project.parameters import Values, parameters
+from specgate.project.parameters import Values, evaluate, infer, parameters
 from specgate.project.types import (
     FactoredModel,
     MatrixModel,
@@ -23,9 +23,10 @@ from specgate.project.types import (
     SampledModel,
     StateSpaceModel,
     Subsystem,
+    Value,
 )
 from specgate.response.answers import Answer
-from specgate.review.printing import as_plain, coefficients, location
+from specgate.review.printing import as_plain, coefficients, location, short
 from specgate.review.types import ParameterReview, SpecificationReview, SubsystemReview
 from specgate.terms.dimensions import DIMENSIONLESS, Dimension
 from specgate.terms.enclosed import printed, printed_exact
@@ -49,7 +50,7 @@ def specification(project: Project, analyses: Analyses) -> SpecificationReview:
     values = analyses.nominal.values
     used = {name for loop in analyses.loops.values() for name in loop.subsystems}
     return SpecificationReview(
-        parameters={name: _parameter(one, name, analyses) for name, (one, _) in parameters(project).items()},
+        parameters={name: _parameter(one, scope, name, analyses) for name, (one, scope) in parameters(project).items()},
         subsystems={
             name: _subsystem(one, values, name in used, name in project.units_by_fit)
             for name, one in project.subsystems.items()
@@ -58,7 +59,7 @@ def specification(project: Project, analyses: Analyses) -> SpecificationReview:
     )
 
 
-def _parameter(parameter: Parameter, name: str, analyses: Analyses) -> ParameterReview:
+def _parameter(parameter: Parameter, scope: str | None, name: str, analyses: Analyses) -> ParameterReview:
     values, again = analyses.nominal.values, analyses.again.values
     expression = parameter.value.expression
     unit = _shown_unit(expression, as_dimension(values.inferred[name]))
@@ -73,7 +74,7 @@ def _parameter(parameter: Parameter, name: str, analyses: Analyses) -> Parameter
         unit=unit.symbol,
         as_written=parameter.value.as_written,
         location=location(parameter.place),
-        tolerance=_tolerance(parameter),
+        tolerance=_tolerance(parameter, scope, values),
         source=parameter.value.source,
     )
 
@@ -81,25 +82,35 @@ def _parameter(parameter: Parameter, name: str, analyses: Analyses) -> Parameter
 def _shown_unit(expression: Expression, dimension: Dimension) -> Unit:
     """Return the coherent unit of a value, by the name it was written with or has in the table; dB and pi stay."""
     written = literal_unit(expression)
-    if written is not None and (written.kind == "decibel" or written.pi_power != 0 or written.factor == 1):
-        return written
-    if dimension == DIMENSIONLESS and (written is None or written.angle == 0):
-        return ONE
-    angle = 0 if written is None else written.angle
-    listed = (unit for unit in UnitTable.standard().units.values() if unit.factor == 1 and unit.pi_power == 0)
-    named = (unit for unit in listed if (unit.dimension, unit.angle) == (dimension, angle))
-    plain = (unit for unit in named if unit.kind in ("linear", "temperature_difference"))
-    return next(plain, Unit(str(dimension), fmpq(1), 0, dimension))
+    if written is not None:
+        stays = written.kind == "decibel" or written.pi_power != 0 or written.factor == 1
+        return written if stays else UnitTable.standard().coherent(written)
+    return ONE if dimension == DIMENSIONLESS else UnitTable.standard().coherent(Unit("", fmpq(1), 0, dimension))
 
 
-def _tolerance(parameter: Parameter) -> Mapping[str, str] | None:
+def _tolerance(parameter: Parameter, scope: str | None, values: Values) -> Mapping[str, str] | None:
     tolerance = parameter.value.tolerance
     if tolerance is None:
         return None
-    said = {"as_written": tolerance.as_written}
-    if tolerance.distribution is not None:
-        said["distribution"] = tolerance.distribution
-    return said
+    sides = {"lower": tolerance.lower, "upper": tolerance.upper}
+    shown = {
+        key: _deviation(Value(side, tolerance.as_written, parameter.place), scope, values)
+        for key, side in sides.items()
+    }
+    distribution = {} if tolerance.distribution is None else {"distribution": tolerance.distribution}
+    return {**shown, "as_written": tolerance.as_written, **distribution}
+
+
+def _deviation(side: Value, scope: str | None, values: Values) -> str:
+    """Write a deviation with its sign, in the unit in which it is written, else in coherent SI."""
+    expression = side.expression
+    unit = literal_unit(expression) or _shown_unit(expression, as_dimension(infer(side, values, scope)))
+    if isinstance(expression, Number) and unit.kind == "decibel":
+        text = short(expression.value)
+    else:
+        text = short(evaluate(side, values, scope) / unit.si_factor)
+    signed = text if text.startswith("-") else f"+{text}"
+    return signed if unit.symbol == "1" else f"{signed} {unit.symbol}"
 
 
 def _subsystem(subsystem: Subsystem, values: Values, used: bool, by_fit: bool) -> SubsystemReview:

@@ -225,6 +225,7 @@ class BasisReview:
     kind: str
     standing: str
     chain: tuple[str, ...] = ()
+    """The approximations that it rests on: premises first, the one that estimates the measure last."""
     claimed: Amount | None = None
     formula: Amount | None = None
     formula_text: str | None = None

@@ -70,7 +70,7 @@ def test_parameters_are_in_coherent_units_except_those_with_pi_or_db(
 
 def test_what_else_the_files_say(reviewed: Reviewed) -> None:
     said = reviewed(PROJECT).specification
-    assert said.parameters["lag"].tolerance == {"as_written": "[-10 %, +25 %]"}
+    assert said.parameters["lag"].tolerance == {"lower": "-10 %", "upper": "+25 %", "as_written": "[-10 %, +25 %]"}
     assert said.parameters["lag"].source == "Q-TN-1, table 2"
     assert said.parameters["field"].value == 3e6
     assert (said.subsystems["block"].numerator, said.subsystems["block"].reads) == (("1/500",), ("lag",))
