@@ -128,7 +128,7 @@ def test_where_plain_numbers_carry_a_unit_is_listed(
         ("{gain: 1, lags: [3 m]}", "V", "V", "a time constant is in s, this is m"),
         ("{gain: 1, pairs: [{natural_frequency: 8 1/s, damping: 0.5}]}", "V", "V", "radians or cycles"),
         ("{gain: 1, pairs: [{natural_frequency: slow, damping: 0.5}]}", "V", "V", "radians or cycles"),
-        ("{gain: 1, pairs: [{natural_frequency: 8 s, damping: 0.5}]}", "V", "V", "a natural frequency is in rad/s, this is s"),
+        ("{gain: 1, pairs: [{natural_frequency: 8 s, damping: 0.5}]}", "V", "V", "is in rad/s, this is s"),
         ("{gain: 1, pairs: [{natural_frequency: 0, damping: 0.5}]}", "V", "V", "greater than zero"),
         ("{gain: 1, pairs: [{natural_frequency: 8 rad/s, damping: 0.5 s}]}", "V", "V", "a damping ratio is in 1"),
         ("{poles: [-3 Hz], zeros: [], leading_coefficient: 1}", "V", "V", "poles and zeros are in 1/s"),
