@@ -11,6 +11,9 @@ from specgate.response.segments import UNIT_ROUNDOFF, Floats, Segment
 HERMITE = 1.0 / 384.0
 """|f - Hermite cubic| <= M4 h^4 / 384 (f and f' matched at both ends of a cell of width h)."""
 
+_OPEN = np.array([[-np.inf], [np.inf]] * 3)
+"""Ends of the hulls of g, g' and g'' where nothing is known."""
+
 LINEAR = 1.0 / 8.0
 """|f - chord| <= M2 h^2 / 8."""
 
@@ -45,7 +48,8 @@ def cells_between(segment: Segment, nodes: Floats) -> Cells:
 
     The cubic through g and g' at both ends lies in the hull of its Bernstein points; g differs from it by M4 h^4/384
     and by what the rounding of the samples moves the points. The same holds for g' with g'' and M5. g'' lies within
-    M4 h^2/8 of its chord. The arithmetic on the points costs less than 8 u of the largest.
+    M4 h^2/8 of its chord. The arithmetic on the points costs less than 8 u of the largest. Where something overflows
+    the hulls are open.
     """
     rows, count = nodes.shape
     values, errors = segment.sample(nodes.reshape(-1))
@@ -59,9 +63,14 @@ def cells_between(segment: Segment, nodes: Floats) -> Cells:
     quartic = width**4 * HERMITE
     low, high = _hull(before, after, 0, width, bounds[:, 2] * quartic + error[:, 0] + width * error[:, 1])
     slope_low, slope_high = _hull(before, after, 1, width, bounds[:, 3] * quartic + error[:, 1] + width * error[:, 2])
-    chord = bounds[:, 2] * width**2 * LINEAR + error[:, 2]
+    bend = np.maximum(np.abs(before[:, 2]), np.abs(after[:, 2]))
+    chord = bounds[:, 2] * width**2 * LINEAR + error[:, 2] + 8.0 * UNIT_ROUNDOFF * bend
     bend_low = np.minimum(before[:, 2], after[:, 2]) - chord
     bend_high = np.maximum(before[:, 2], after[:, 2]) + chord
+    hulls = np.stack([low, high, slope_low, slope_high, bend_low, bend_high])
+    if not np.isfinite(hulls).all():
+        hulls = np.where(np.isfinite(hulls), hulls, _OPEN)
+    low, high, slope_low, slope_high, bend_low, bend_high = hulls
     return Cells(
         segment, left, right, before, before_error, after, after_error,
         low, high, slope_low, slope_high, bend_low, bend_high, bounds[:, 1],

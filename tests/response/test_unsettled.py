@@ -112,3 +112,17 @@ def test_values_exist_all_the_same(respond: Make) -> None:
         assert response.enclose(fmpq(3), 128).overlaps(2 + (-arb(3)).exp())
     assert response.initial_value().exact == 0
     assert response.enclose(fmpq(0), 64).contains(0)
+
+
+def test_a_dip_before_fast_growth(respond: Make) -> None:
+    """y = (e^2t - 1) - 3 (1 - e^-t) falls at first; far cells overflow and must not hide the least value.
+
+    y' = 2 e^2t - 3 e^-t is zero at t = ln(3/2)/3.
+    """
+    # 2/(s (s - 2)) - 3/(s (s + 1)), over s (s - 2) (s + 1)
+    response = respond([-1, 8], [1, -1, -2])
+    with working_precision(300):
+        time = arb(fmpq(3, 2)).log() / 3
+        assert_is(response.least().time, time)
+        assert_is(response.least().value, (2 * time).exp() - 1 - 3 * (1 - (-time).exp()))
+    assert unbounded(response.greatest().value)
