@@ -24,7 +24,7 @@ from specgate.terms.precision import working_precision
 
 APPROACHED = "the value is approached and never taken"
 
-SLACK = 2.0**-44
+SLACK = 2.0**-46
 """Parts of the change within which a supremum is known where its summit is not."""
 
 
@@ -63,7 +63,10 @@ def highest(course: Course, sign: int) -> Extreme:
 
 
 def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extreme:
-    """Return the supremum within SLACK of the change, without its time, where the exact search did not end."""
+    """Return the supremum within 3 SLACK of the change, without its time, where the exact search did not end.
+
+    The end of the interval is a multiple of SLACK, so that it does not depend on the last bits of floats.
+    """
     slack = SLACK * course.deviation.change
 
     def last(best: float, _: Callable[[int], arb]) -> fmpq | None:
@@ -77,14 +80,15 @@ def _nearly(course: Course, sign: int, floor: Floor, undecided: Extreme) -> Extr
             raise OutOfWork("peaks of the response are not told apart")
         return climb.best
 
+    step = exact(slack)
     try:
-        best = exact(course.search(on))
+        best = (exact(course.search(on)) / step).floor() * step
     except OutOfWork:
         return undecided
 
     def value(bits: int) -> arb:
         with working_precision(bits):
-            height = arb(sign * best).union(sign * (arb(best) + arb(2 * exact(slack))))
+            height = arb(sign * best).union(arb(sign * (best + 3 * step)))
         return course.deviation.response(height)
 
     return Extreme(Answer.of_ball(value), undecided.time)
