@@ -173,10 +173,13 @@ def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
 
 
 def _missed(criterion: CriterionReview) -> str:
+    """Return how far the formula of a claim, or the claim itself where it has none here, is from the true value."""
     basis = criterion.basis
-    if basis.error is None or basis.error.relative is None or basis.formula is None:
-        return ""
     true = shown.result(criterion.result, criterion.limit).whole
+    if true == "none":
+        return ""
+    if basis.error is None or basis.error.relative is None or basis.formula is None:
+        return f"claimed {amount(basis.claimed)}, true {true}" if basis.claimed else ""
     side = SIDES.get(basis.error.side, "")
     return f"formula {amount(basis.formula)}, true {true}: {percent(basis.error.relative)} {side}".strip()
 

@@ -2,16 +2,22 @@
 
 from __future__ import annotations
 
+import math
+import re
 from bisect import bisect_left
 from collections.abc import Callable, Iterable, Sequence
+from typing import Literal
 
 from specgate.report.anchors import anchor
 from specgate.report.digits import number
 from specgate.report.figures.step import Cross, Edge, Ring, StepFigure
 from specgate.report.parts import shown
+from specgate.report.parts.conversion import ratio
 from specgate.report.words import amount, edges, limit
 from specgate.review.types import CriterionReview, Curve, MeasureResult, ResponseReview, Result
 
+Side = Literal["below", "above"]
+_NUMBER = re.compile(r"[0-9]+(\.[0-9]*)?|\.[0-9]+")
 INSTANTS = {"settling_time", "peak_time", "delay_time"}
 """Measures that are one instant of the response, counted from the start of the input."""
 LEVELS = {"final_value", "initial_value", "maximum_value", "minimum_value", "peak_deviation", "overshoot", "undershoot"}
@@ -44,7 +50,7 @@ def response_figure(
 
 
 class _Marks:
-    """Collects what is drawn over one curve."""
+    """Collects what is drawn over one curve, in seconds and in the unit of the signal."""
 
     def __init__(self, response: ResponseReview, curve: Curve) -> None:
         self.curve = curve
@@ -63,61 +69,69 @@ class _Marks:
             self._level(requirement, criterion)
 
     def _instant(self, requirement: str, criterion: CriterionReview) -> None:
+        seconds = ratio(_unit(criterion) or "s", "s")
+        if seconds is None:
+            return
         outside = self._band(criterion)
+        label = f"{requirement}: {limit(criterion.limit)}"
         for at, side in _sides(criterion):
-            ground = outside if side == "above" else None
-            label = f"{requirement}: {limit(criterion.limit)}"
-            self.edges.append(Edge("time", at, side, label, ground))  # type: ignore[arg-type]
+            self.edges.append(Edge("time", at * seconds, side, label, outside if side == "above" else None))
         level = self.final or 0.0
         proved = _number(criterion.result)
         if proved is not None:
-            level = self._at(proved)
-            self.crosses.append(Cross(proved, level, "time", *_interval(criterion.result, proved)))
-        if criterion.basis.claimed is not None and criterion.basis.claimed.value is not None:
-            self.rings.append(Ring(criterion.basis.claimed.value, level))
+            low, high = _interval(criterion.result, proved)
+            level = self._at(proved * seconds)
+            self.crosses.append(Cross(proved * seconds, level, "time", low * seconds, high * seconds))
+        claim = criterion.basis.claimed
+        claimed = ratio(claim.unit, "s") if claim is not None else None
+        if claim is not None and claim.value is not None and claimed is not None:
+            self.rings.append(Ring(claim.value * claimed, level))
 
     def _level(self, requirement: str, criterion: CriterionReview) -> None:
-        to_signal = self._to_signal(criterion)
+        to_signal = self._to_signal(criterion.measure, _unit(criterion))
         if to_signal is None:
             return
         ends = criterion.measure == "final_value"
+        label = f"{requirement}: {limit(criterion.limit)}"
         for at, side in _sides(criterion):
             for level, forbidden in _mirrored(criterion.measure, to_signal(at), side, to_signal(0.0)):
-                label = f"{requirement}: {limit(criterion.limit)}"
-                self.edges.append(Edge("value", level, forbidden, label, at_the_end=ends))  # type: ignore[arg-type]
+                self.edges.append(Edge("value", level, forbidden, label, at_the_end=ends))
         time = self._time_of(criterion.measure)
         proved = _number(criterion.result)
         if proved is not None:
             low, high = _interval(criterion.result, proved)
             self.crosses.append(Cross(time, to_signal(proved), "value", to_signal(low), to_signal(high)))
-        if criterion.basis.claimed is not None and criterion.basis.claimed.value is not None:
-            self.rings.append(Ring(time, to_signal(criterion.basis.claimed.value)))
+        claim = criterion.basis.claimed
+        if claim is not None and claim.value is not None:
+            claimed = self._to_signal(criterion.measure, claim.unit)
+            if claimed is not None:
+                self.rings.append(Ring(time, claimed(claim.value)))
 
-    def _to_signal(self, criterion: CriterionReview) -> Callable[[float], float] | None:
-        """Return what turns the measure's numbers into levels of the signal, where its units allow that."""
-        unit = criterion.result.unit or next(
-            (a.unit for a in (criterion.limit.at_most, criterion.limit.at_least) if a), ""
-        )
-        final = self.final
-        if criterion.measure in ("overshoot", "undershoot"):
-            if not final:
+    def _to_signal(self, measure: str, unit: str) -> Callable[[float], float] | None:
+        """Return what turns a measure's numbers in `unit` into levels of the signal, where its units allow that."""
+        if measure in ("overshoot", "undershoot"):
+            # Per cent are those of the change; where the signal itself is in per cent, its own are called points.
+            size = None if not self.final else abs(self.final) / 100 if unit == "%" else ratio(unit, self.unit)
+            if not self.final or size is None:
                 return None
-            size = abs(final) / 100 if unit == "%" else 1.0
-            towards = (1 if final > 0 else -1) * size
-            return (lambda v: final + towards * v) if criterion.measure == "overshoot" else (lambda v: -towards * v)
-        if unit != self.unit:
+            final, towards = self.final, math.copysign(size, self.final)
+            return (lambda v: final + towards * v) if measure == "overshoot" else (lambda v: -towards * v)
+        factor = ratio(unit, self.unit)
+        if factor is None:
             return None
-        sign = -1 if criterion.measure == "peak_deviation" and self._at(self._time_of("peak_deviation")) < 0 else 1
-        return lambda v: sign * v
+        downwards = measure == "peak_deviation" and self._at(self._time_of("peak_deviation")) < 0
+        return lambda v: (-factor if downwards else factor) * v
 
     def _band(self, criterion: CriterionReview) -> tuple[float, float] | None:
-        """Return the band about the final value, where the text of the argument gives it in per cent of the change."""
-        words = criterion.arguments.get("band", "").split()
-        if criterion.measure != "settling_time" or not self.final or len(words) < 2 or words[1] != "%":
+        """Return the band about the final value: per cent of the change, or a distance like the signal's own."""
+        number, _, unit = criterion.arguments.get("band", "").partition(" ")
+        if criterion.measure != "settling_time" or self.final is None or not _NUMBER.fullmatch(number):
             return None
-        if words[2:] not in ([], ["of", "the", "change"]):
+        relative = unit in ("%", "% of the change", "% of change")
+        size = abs(self.final) / 100 if relative else ratio(unit, self.unit)
+        if size is None:
             return None
-        half = abs(self.final) * float(words[0]) / 100
+        half = size * float(number)
         return self.final - half, self.final + half
 
     def _at(self, time: float) -> float:
@@ -147,7 +161,14 @@ class _Marks:
         return times[max(range(len(values)), key=lambda k: key(values[k]))]
 
 
-def _sides(criterion: CriterionReview) -> list[tuple[float, str]]:
+def _unit(criterion: CriterionReview) -> str:
+    """Return the unit of a limit: that of its result too, where there is one."""
+    of = criterion.limit
+    amounts = (of.at_most, of.at_least, of.within, *(of.between or ()))
+    return criterion.result.unit or next((amount.unit for amount in amounts if amount is not None), "")
+
+
+def _sides(criterion: CriterionReview) -> list[tuple[float, Side]]:
     """Return the numbers at which a limit lies, each with its forbidden side."""
     numbers = edges(criterion.limit)
     if len(numbers) == 2:
@@ -155,13 +176,13 @@ def _sides(criterion: CriterionReview) -> list[tuple[float, str]]:
     return [(at, "above" if criterion.limit.at_most is not None else "below") for at in numbers]
 
 
-def _mirrored(measure: str, level: float, side: str, zero: float) -> list[tuple[float, str]]:
+def _mirrored(measure: str, level: float, side: Side, zero: float) -> list[tuple[float, Side]]:
     """Return a limit as lines of the signal: turned over where the measure counts downwards, both for a magnitude."""
+    other: Side = "below" if side == "above" else "above"
     if measure == "peak_deviation":
-        outward = {"above": ("above", "below"), "below": ("below", "above")}[side]
-        return [(abs(level), outward[0]), (-abs(level), outward[1])]
+        return [(abs(level), side), (-abs(level), other)]
     if measure in ("overshoot", "undershoot") and level < zero:
-        return [(level, {"above": "below", "below": "above"}[side])]
+        return [(level, other)]
     return [(level, side)]
 
 
