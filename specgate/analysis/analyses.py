@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import fmpq
@@ -16,11 +15,12 @@ from specgate.project.parameters import Values
 from specgate.project.signals import LoopSignals
 from specgate.response.answers import Absent, Answer
 from specgate.systems.solution import Channel, LoopSolution, OpenLoop
+from specgate.terms.records import record
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Proof
 
 
-@dataclass(frozen=True)
+@record
 class Missing:
     """Why there is nothing to read from.
 
@@ -37,7 +37,7 @@ class Missing:
         return Answer(Proof.EXACT if self.proved else Proof.ESTIMATED, absent=Absent(self.reason, self.proved))
 
 
-@dataclass(frozen=True)
+@record
 class ResponseAnalysis:
     """A declared response. unit: of the signal that is looked at."""
 
@@ -57,7 +57,7 @@ class ResponseAnalysis:
         return self.channel is not None and not self.channel.transfer.proper
 
 
-@dataclass(frozen=True)
+@record
 class BreakAnalysis:
     """A declared break."""
 
@@ -66,7 +66,7 @@ class BreakAnalysis:
     opened: OpenLoop | None = None
 
 
-@dataclass(frozen=True)
+@record
 class LoopAnalysis:
     """A loop, solved once.
 
@@ -83,7 +83,7 @@ class LoopAnalysis:
     breaks: Mapping[str, BreakAnalysis]
 
 
-@dataclass(frozen=True)
+@record
 class Study:
     """Every loop for one set of parameter values and one decimal for pi."""
 
@@ -111,7 +111,7 @@ class Study:
         return measure.read(subject, arguments)
 
 
-@dataclass(frozen=True)
+@record
 class Analyses:
     """A project computed with nominal values.
 

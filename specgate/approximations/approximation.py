@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from typing import Literal
 
 from flint import arb, fmpq
@@ -11,10 +10,11 @@ from flint import arb, fmpq
 from specgate.approximations.features import Features
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
+from specgate.terms.records import record
 from specgate.terms.verdicts import Trilean
 
 
-@dataclass(frozen=True)
+@record
 class Found:
     """What a condition met: a ball (refined enough to print), a whole number or words; and whether it holds."""
 
@@ -22,7 +22,7 @@ class Found:
     holds: Trilean
 
 
-@dataclass(frozen=True)
+@record
 class Condition:
     """One condition of an approximation's range.
 
@@ -61,7 +61,7 @@ def _plain(threshold: fmpq | None) -> str:
     return "" if threshold is None else f"{int(threshold.p) / int(threshold.q):.6g}"
 
 
-@dataclass(frozen=True)
+@record
 class Accuracy:
     """Stated range of error = formula / true - 1 inside the conditions; `text` says it in words."""
 
@@ -70,7 +70,7 @@ class Accuracy:
     text: str
 
 
-@dataclass(frozen=True)
+@record
 class Approximation:
     """One row: formula, range, stated accuracy, source.
 

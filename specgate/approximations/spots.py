@@ -11,6 +11,7 @@ from specgate.approximations.figures import root
 from specgate.response.answers import Answer
 from specgate.systems.roots import certified_roots
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _MATCHED_AT = 256
 
@@ -65,7 +66,7 @@ class Spot:
             return place.real * place.real + place.imag * place.imag
 
 
-@dataclass(frozen=True)
+@record
 class _Rational:
     """A root that solves a linear or quadratic equation with rational coefficients."""
 

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import fmpq
 
 from specgate.analysis.analyses import Missing, Study
@@ -14,10 +12,11 @@ from specgate.measures.measure import Arguments, Measure, Reader
 from specgate.measures.subjects import Subject
 from specgate.project.types import Criterion, Limit
 from specgate.response.answers import Answer
+from specgate.terms.records import record
 from specgate.terms.unit import ONE, Unit
 
 
-@dataclass(frozen=True)
+@record
 class Asked:
     """What a criterion asks, with the values of one study. signal: unit of the signal a response looks at, else 1."""
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
 
 from specgate.analysis.analyses import Analyses
 from specgate.approximations.table import APPROXIMATIONS
@@ -14,11 +13,12 @@ from specgate.compliance.methods import conclude
 from specgate.compliance.thresholds import policy
 from specgate.compliance.wording import criterion_words, subject
 from specgate.project.types import Basis, Criterion, Kept, Project, Requirement
+from specgate.terms.records import record
 from specgate.terms.verdicts import Standing, Verdict
 from specgate.traceability.graph import Graph
 
 
-@dataclass(frozen=True)
+@record
 class Ruling:
     """A verdict, why it is not compliant, and whether it counts at this stage."""
 
@@ -36,7 +36,7 @@ def assess(project: Project, analyses: Analyses, graph: Graph) -> Mapping[str, A
     return {name: done[name] for name in project.requirements}
 
 
-@dataclass(frozen=True)
+@record
 class _Judging:
     """What judging one requirement needs: the project, and all requirements below it already judged."""
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Literal
 
 from flint import fmpq
@@ -14,6 +13,7 @@ from specgate.measures.measure import Arguments, Measure
 from specgate.project.types import Claim, Criterion, Method, Requirement
 from specgate.response.answers import Answer
 from specgate.terms.places import Place
+from specgate.terms.records import record
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Standing, Verdict
 
@@ -21,7 +21,7 @@ Side = Literal["safe", "unsafe", "none"]
 """Of an error or a slip: whether it promises more than there is (unsafe), less (safe), or neither."""
 
 
-@dataclass(frozen=True)
+@record
 class Unanswered:
     """Something the format allows and this version does not answer, and where it is written.
 
@@ -33,7 +33,7 @@ class Unanswered:
     decides: bool = True
 
 
-@dataclass(frozen=True)
+@record
 class AuditedCondition:
     """A condition of an approximation against this response.
 
@@ -49,7 +49,7 @@ class AuditedCondition:
     beyond: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class FormulaError:
     """Formula against proved value; relative = formula / truth - 1 (None where the truth is 0)."""
 
@@ -59,14 +59,14 @@ class FormulaError:
     truth: Answer
 
 
-@dataclass(frozen=True)
+@record
 class Slip:
     """A claim that is further from its own formula than half a unit of its last digit."""
 
     side: Side
 
 
-@dataclass(frozen=True)
+@record
 class Instead:
     """What to use in place of a basis that does not stand; `computed` or a row of the catalogue (values in SI)."""
 
@@ -74,7 +74,7 @@ class Instead:
     value: Answer | None
 
 
-@dataclass(frozen=True)
+@record
 class Audit:
     """The audit of a basis; all values in coherent SI, `unit` is that of the claim.
 
@@ -101,7 +101,7 @@ class Audit:
     instead: Instead | None = None
 
 
-@dataclass(frozen=True)
+@record
 class CriterionAssessment:
     """One limit: what was read, how it compares, what the claim rests on.
 
@@ -141,7 +141,7 @@ def _limit(first: fmpq | None, again: fmpq | None) -> Reading | None:
     return Reading(Answer.of_exact(first), Answer.of_exact(again))
 
 
-@dataclass(frozen=True)
+@record
 class MethodAssessment:
     """A verification method and how it concludes."""
 
@@ -149,7 +149,7 @@ class MethodAssessment:
     outcome: Verdict | Literal["due_later", "no_record"]
 
 
-@dataclass(frozen=True)
+@record
 class Assessment:
     """A requirement, judged. verdict None: it does not apply.
 

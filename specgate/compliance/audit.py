@@ -7,7 +7,7 @@ comes from the computed response; the audit says whether the claim stands.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 from flint import arb, fmpq
 
@@ -28,11 +28,12 @@ from specgate.project.types import Basis, Claim
 from specgate.response.answers import Answer
 from specgate.terms.enclosed import ends, rounded
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Standing, Trilean
 
 
-@dataclass(frozen=True)
+@record
 class Matter:
     """What a basis is audited against.
 

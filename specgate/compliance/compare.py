@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass
 from typing import Literal
 
 from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 from specgate.terms.verdicts import Verdict
 
 Sign = Literal[-1, 0, 1]
@@ -21,7 +21,7 @@ _EXACT_FROM = 256
 """Bits at which a ball that still holds the limit is taken for equality, to be decided exactly."""
 
 
-@dataclass(frozen=True)
+@record
 class Limits:
     """What a measure must satisfy: not below `least`, not above `most` (SI); or be `truth` (of a yes/no question)."""
 
@@ -30,7 +30,7 @@ class Limits:
     truth: bool | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Comparison:
     """A verdict and, where it is not a plain number that decides it, the reason in words."""
 

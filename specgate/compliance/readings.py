@@ -2,19 +2,18 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.terms.enclosed import in_unit
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 from specgate.terms.unit import PI, PRECISE_PI, Unit
 
 PI_DECIDES = "the answer depends on digits of pi beyond the 60th"
 
 
-@dataclass(frozen=True)
+@record
 class Reading:
     """Answers in coherent SI. `again` is the same object as `answer` where no constant with pi or dB comes into it."""
 

@@ -2,18 +2,17 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import fmpq
 
 from specgate.approximations.figures import combined, quotient, smallest
 from specgate.compliance.assessment import CriterionAssessment
 from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer
+from specgate.terms.records import record
 from specgate.terms.unit import ONE, Unit
 
 
-@dataclass(frozen=True)
+@record
 class Reserve:
     """value: None where it is without limit. relative: to the limit, to half the width for two-sided limits.
 

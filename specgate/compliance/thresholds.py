@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 from flint import fmpq
 
@@ -12,9 +11,10 @@ from specgate.approximations.table import APPROXIMATIONS
 from specgate.project.parameters import Values, evaluate
 from specgate.project.types import Project, Value
 from specgate.terms.places import Place
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Threshold:
     """A threshold that a project states in place of the catalogue's.
 
@@ -35,7 +35,7 @@ class Threshold:
         return f"{'loosened' if self.looser else 'tightened'} by the project to {self.as_written}"
 
 
-@dataclass(frozen=True)
+@record
 class Policy:
     """The thresholds that a project states and that differ from the catalogue's."""
 

@@ -10,6 +10,7 @@ from specgate.project.types import InputFile
 from specgate.terms.findings import Finding, Related, in_order
 from specgate.terms.names import nearest
 from specgate.terms.places import Place
+from specgate.terms.records import record
 from specgate.terms.verdicts import Level
 
 MOST = 300
@@ -18,7 +19,7 @@ MOST_COMPARISONS = 20_000
 """Known names that unknown ones are compared with, in all: enough for every misspelling that a person makes."""
 
 
-@dataclass(frozen=True)
+@record
 class Problems:
     """Why a project cannot be built: findings in order of their places, and the files that were read."""
 

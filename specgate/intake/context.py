@@ -9,10 +9,11 @@ from specgate.intake.collect import Collector
 from specgate.intake.nodes import Items, Node, Number, Table, Text
 from specgate.terms.expressions import Expression, ExpressionError, parse
 from specgate.terms.places import Place
+from specgate.terms.records import record
 from specgate.terms.units import Unit, UnitError, UnitTable
 
 
-@dataclass(frozen=True)
+@record
 class Ports:
     """Names of the inputs and outputs of a subsystem."""
 
@@ -20,7 +21,7 @@ class Ports:
     outputs: tuple[str, ...]
 
 
-@dataclass(frozen=True)
+@record
 class LoopNames:
     """Names that a loop declares."""
 

@@ -11,6 +11,7 @@ from specgate.intake.nodes import Items, Node, Origin, Table, Text
 from specgate.intake.reader import Allowance, read
 from specgate.project.types import InputFile
 from specgate.terms.places import Place
+from specgate.terms.records import record
 from specgate.terms.sources import Source, SourceError
 
 MOST_BYTES = 32 * 1024 * 1024
@@ -22,7 +23,7 @@ DEEPEST = 20
 _WILD = frozenset("*?[")
 
 
-@dataclass(frozen=True)
+@record
 class File:
     """One file of the project, read."""
 

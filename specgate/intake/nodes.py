@@ -8,9 +8,10 @@ from decimal import Decimal
 from typing import Any, NamedTuple
 
 from specgate.terms.places import Place
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Origin:
     """The file that a node comes from, and what brought that file (or that text) in."""
 

@@ -9,7 +9,6 @@ call   = block "(" sum | name "=" sum {"," name "=" sum} ")" ["." output]
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
 from typing import Literal, NoReturn
 
 from flint import fmpq
@@ -19,6 +18,7 @@ from specgate.intake.nodes import Text
 from specgate.intake.values import Reader
 from specgate.project.types import Call, Scaled, SignalExpression, SignalName, Sum
 from specgate.terms.expressions import Binary, Expression, Negative, Number
+from specgate.terms.records import record
 
 LONGEST = 4000
 """Characters of a signal expression."""
@@ -43,14 +43,14 @@ class _Refused(Exception):
         self.message, self.offset, self.rule = message, offset, rule
 
 
-@dataclass(frozen=True)
+@record
 class _Token:
     kind: str
     text: str
     at: int
 
 
-@dataclass(frozen=True)
+@record
 class _Constant:
     """A part without a signal in it."""
 

@@ -6,11 +6,12 @@ Every one of them is of level error and makes the project unusable: nothing is c
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from types import MappingProxyType
 
+from specgate.terms.records import record
 
-@dataclass(frozen=True)
+
+@record
 class Slug:
     """A row: the slug, a title, and the text that `specgate explain` prints."""
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from typing import Literal, cast
 
 from flint import fmpq
@@ -14,13 +14,14 @@ from specgate.intake.traps import scalar_hint
 from specgate.project.types import Tolerance, Value
 from specgate.terms import expressions
 from specgate.terms.expressions import Expression, ExpressionError, PercentOf
+from specgate.terms.records import record
 from specgate.terms.trees import ExpressionUnitError
 
 SIGNAL_WORDS = frozenset({"span", "change"})
 """What `2 % of …` may name beside a parameter."""
 
 
-@dataclass(frozen=True)
+@record
 class Reader:
     """Reads values; `scope` is the subsystem whose own parameters may be read by their short names."""
 

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
 from itertools import islice
 from typing import Any
 
 from specgate.intake.collect import MOST
 from specgate.intake.nodes import Items, Node, Nothing, Number, Spot, Table, Text, Truth, shown
 from specgate.intake.traps import scalar_hint, split_by_comma
+from specgate.terms.records import record
 
 Path = tuple[str | int, ...]
 Said = tuple[str, str, Spot]
@@ -29,7 +29,7 @@ Nearest = Callable[[str, Iterable[str]], "str | None"]
 """The known name that a word was most likely meant to be."""
 
 
-@dataclass(frozen=True)
+@record
 class Misshape:
     """One error of the schema validator with the node that it is about.
 

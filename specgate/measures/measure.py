@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from enum import Enum
 from typing import Any, Literal
 
 from flint import fmpq
 
 from specgate.response.answers import Answer
+from specgate.terms.records import record
 
 
 class UnitRule(Enum):
@@ -35,7 +35,7 @@ SubjectKind = Literal["response", "break", "loop"]
 ArgumentKind = Literal["band", "fraction", "time", "frequency", "mask", "range"]
 
 
-@dataclass(frozen=True)
+@record
 class Argument:
     """An argument of a measure as it is named in a criterion."""
 
@@ -45,7 +45,7 @@ class Argument:
     required: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class Band:
     """A settling band: a fraction of the change, or a distance in the signal's unit (SI)."""
 
@@ -53,7 +53,7 @@ class Band:
     relative: bool
 
 
-@dataclass(frozen=True)
+@record
 class Arguments:
     """Evaluated arguments. lower, upper: fractions of the change between which rise time counts.
 
@@ -78,7 +78,7 @@ Comparer = Callable[[Any, Arguments, fmpq], Literal[-1, 0, 1] | None]
 """`at_limit(subject, arguments, limit)`: exact sign of measure minus limit (SI), or None where undecided."""
 
 
-@dataclass(frozen=True)
+@record
 class Measure:
     """One row: what is read off which subject, and how.
 

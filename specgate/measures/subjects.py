@@ -2,17 +2,16 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import fmpq
 
 from specgate.response.answers import Absent, Answer
 from specgate.response.step import StepResponse
 from specgate.systems.solution import LoopSolution
 from specgate.systems.transfer import TransferFunction
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class ResponseSubject:
     """One input of a loop to one of its signals, driven by a step of `size` (SI).
 
@@ -30,7 +29,7 @@ class ResponseSubject:
     void: Absent | None = None
 
 
-@dataclass(frozen=True)
+@record
 class BreakSubject:
     """The loop opened at a break: L is minus the transfer from the injected to the returned signal."""
 
@@ -38,7 +37,7 @@ class BreakSubject:
     stable: Answer
 
 
-@dataclass(frozen=True)
+@record
 class LoopSubject:
     """The whole loop with every mode, cancelled or not."""
 

@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from specgate.measures.measure import Measure
 from specgate.measures.table import MEASURES
+from specgate.terms.records import record
 
 _ON = {"response": "a response", "break": "a break of a loop", "loop": "a loop"}
 
 
-@dataclass(frozen=True)
+@record
 class Explanation:
     """A definition to print: title, text (paragraphs apart by an empty line) and its source."""
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
 from typing import Any
 
 from flint import fmpq_poly
@@ -30,6 +29,7 @@ from specgate.systems.blocks import Block
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.dimensions import TIME
 from specgate.terms.expressions import as_dimension
+from specgate.terms.records import record
 
 _FORMS: Mapping[type, Callable[[ModelReader, Any], Rational]] = {
     PolynomialModel: polynomials,
@@ -41,7 +41,7 @@ _FORMS: Mapping[type, Callable[[ModelReader, Any], Rational]] = {
 }
 
 
-@dataclass(frozen=True)
+@record
 class BuiltBlock:
     """A block in coherent SI.
 

@@ -14,7 +14,6 @@ other names, the set point first.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 from flint import fmpq, fmpq_poly
 
@@ -26,6 +25,7 @@ from specgate.project.reader import ModelReader, S
 from specgate.project.types import PidModel
 from specgate.terms.dimensions import DIMENSIONLESS, TIME
 from specgate.terms.expressions import PLAIN
+from specgate.terms.records import record
 
 _ONE, _ZERO = fmpq_poly([1]), fmpq(0)
 _TIMES = ("integral_time", "derivative_time", "derivative_lag")
@@ -33,7 +33,7 @@ _GAINS = {"proportional": 0, "integral": -1, "derivative": 1, "gain": 0}
 """Power of time in the dimension of a gain, beside that of output over input."""
 
 
-@dataclass(frozen=True)
+@record
 class _Action:
     """What acts on the set point, and with a minus sign on the measurement, over one denominator."""
 

@@ -7,7 +7,6 @@ reading is possible and they differ in size (a plain gain from m to mm), the mod
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 from flint import fmpq
 
@@ -17,12 +16,13 @@ from specgate.project.reader import ModelReader, is_zero
 from specgate.project.types import Polynomial
 from specgate.terms.dimensions import DIMENSIONLESS, TIME, Dimension
 from specgate.terms.expressions import PLAIN, Inferred, as_dimension
+from specgate.terms.records import record
 
 Pair = tuple[str, str]
 """(output, input)."""
 
 
-@dataclass(frozen=True)
+@record
 class _Case:
     """One numerator over the denominator: dimensions, the ratio that is wanted, and the size of the declared units.
 

@@ -3,16 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
 
 from flint import fmpq
 
 from specgate.project.parameters import Values, depends_on_pi, evaluate
 from specgate.project.signals import constant, static_order
 from specgate.project.types import Call, Loop, Scaled, SignalExpression, SignalName
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class UseRef:
     """One output of one use of a subsystem."""
 
@@ -20,7 +20,7 @@ class UseRef:
     output: str
 
 
-@dataclass(frozen=True)
+@record
 class NameRef:
     """A loop input or signal."""
 
@@ -32,7 +32,7 @@ Form = Mapping[Atom, fmpq]
 """A sum of constant times atom, none of the constants zero."""
 
 
-@dataclass(frozen=True)
+@record
 class Use:
     """A subsystem applied somewhere in a loop; `arguments` by the name of the input."""
 

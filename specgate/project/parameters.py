@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass, field
+from dataclasses import field
 from types import MappingProxyType
 
 from flint import fmpq
@@ -24,6 +24,7 @@ from specgate.terms.expressions import (
     as_dimension,
 )
 from specgate.terms.findings import Finding, Related
+from specgate.terms.records import record
 from specgate.terms.unit import PI
 
 Scopes = Mapping[str | None, Mapping[str, str]]
@@ -33,7 +34,7 @@ SIGNAL_WORDS = frozenset({"span", "change"})
 """What `% of …` may say of the signal instead of a parameter."""
 
 
-@dataclass(frozen=True)
+@record
 class Values:
     """All parameters evaluated: coherent SI, by qualified name.
 

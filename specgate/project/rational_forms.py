@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 
 from flint import fmpq, fmpq_poly
 
@@ -25,12 +24,13 @@ from specgate.project.types import (
 from specgate.project.types import Pair as SecondOrder
 from specgate.terms.dimensions import DIMENSIONLESS, RATE, TIME, Dimension
 from specgate.terms.expressions import PLAIN, as_dimension
+from specgate.terms.records import record
 from specgate.terms.unit import frequency_problem
 
 _ONE = fmpq_poly([1])
 
 
-@dataclass(frozen=True)
+@record
 class Rational:
     """numerators[(output, input)] over one denominator, coherent SI, as written and never reduced."""
 

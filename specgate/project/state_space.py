@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 from flint import fmpq, fmpq_mat, fmpq_poly
 
@@ -15,6 +14,7 @@ from specgate.project.reader import ModelReader, is_zero
 from specgate.project.types import Matrix, StateSpaceModel, Value
 from specgate.terms.dimensions import DIMENSIONLESS, TIME, Dimension
 from specgate.terms.expressions import PLAIN, as_dimension
+from specgate.terms.records import record
 
 
 def state_space(reader: ModelReader, model: StateSpaceModel) -> Rational:
@@ -76,7 +76,7 @@ def _entries(model: StateSpaceModel) -> Iterator[tuple[str, int, int, Value]]:
                     yield name, i, j, value
 
 
-@dataclass(frozen=True)
+@record
 class _Relation:
     """An entry of a matrix: the dimension of variable `target` is that of `source` times `factor`."""
 

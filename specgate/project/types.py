@@ -7,15 +7,16 @@ Mappings keep the order of the files. Absent optional parts are None or empty.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import field
 from typing import Literal
 
 from specgate.terms.expressions import Expression
 from specgate.terms.places import Place
+from specgate.terms.records import record
 from specgate.terms.units import Unit, UnitTable
 
 
-@dataclass(frozen=True)
+@record
 class Value:
     """An expression wherever a quantity may stand, with where it comes from.
 
@@ -29,7 +30,7 @@ class Value:
     tolerance: Tolerance | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Tolerance:
     """Deviations from the nominal value, each relative (unit %) or absolute; lower is <= 0 <= upper."""
 
@@ -41,7 +42,7 @@ class Tolerance:
     coverage_factor: Expression | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Parameter:
     """A named value, global (`stroke`) or of a subsystem (`hoist_drive.lag`); `name` is the qualified name."""
 
@@ -52,7 +53,7 @@ class Parameter:
     title: str | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Port:
     """One input or output of a subsystem."""
 
@@ -70,7 +71,7 @@ Polynomial = tuple[Value, ...]
 """Coefficients, highest power first."""
 
 
-@dataclass(frozen=True)
+@record
 class PolynomialModel:
     """numerator / denominator in s; also a differential equation (output = denominator side)."""
 
@@ -79,7 +80,7 @@ class PolynomialModel:
     written_as: Literal["polynomials", "equation"] = "polynomials"
 
 
-@dataclass(frozen=True)
+@record
 class Pair:
     """A second-order factor s^2/wn^2 + 2*zeta*s/wn + 1."""
 
@@ -87,7 +88,7 @@ class Pair:
     damping: Value
 
 
-@dataclass(frozen=True)
+@record
 class FactoredModel:
     """gain * s^differentiators / s^integrators * product of (1+Ts) and pairs."""
 
@@ -100,7 +101,7 @@ class FactoredModel:
     zero_pairs: tuple[Pair, ...] = ()
 
 
-@dataclass(frozen=True)
+@record
 class Root:
     """A real pole or zero (imaginary None) or a conjugate pair, in 1/s."""
 
@@ -108,7 +109,7 @@ class Root:
     imaginary: Value | None = None
 
 
-@dataclass(frozen=True)
+@record
 class PoleZeroModel:
     """leading_coefficient * product of (s - zero) / product of (s - pole)."""
 
@@ -120,7 +121,7 @@ class PoleZeroModel:
 Matrix = tuple[tuple[Value, ...], ...]
 
 
-@dataclass(frozen=True)
+@record
 class StateSpaceModel:
     """x' = A x + B u, y = C x + D u; rows and columns in the order of states, inputs, outputs."""
 
@@ -131,7 +132,7 @@ class StateSpaceModel:
     d: Matrix
 
 
-@dataclass(frozen=True)
+@record
 class PidModel:
     """A controller; `terms` holds the values that were given under the names of the format."""
 
@@ -140,7 +141,7 @@ class PidModel:
     derivative_on: Literal["error", "measurement"] = "error"
 
 
-@dataclass(frozen=True)
+@record
 class MatrixModel:
     """Several inputs or outputs over one denominator: numerators[(output, input)]."""
 
@@ -148,7 +149,7 @@ class MatrixModel:
     denominator: Polynomial
 
 
-@dataclass(frozen=True)
+@record
 class SampledModel:
     """A controller in z (validated and kept; answered by a later version)."""
 
@@ -164,7 +165,7 @@ class SampledModel:
 Model = PolynomialModel | FactoredModel | PoleZeroModel | StateSpaceModel | PidModel | MatrixModel | SampledModel
 
 
-@dataclass(frozen=True)
+@record
 class Subsystem:
     """A block with inputs, outputs and a model.
 
@@ -190,7 +191,7 @@ class Subsystem:
 # --- loops -----------------------------------------------------------------------------------------------
 
 
-@dataclass(frozen=True)
+@record
 class SignalName:
     """A loop input or signal inside a signal expression."""
 
@@ -198,7 +199,7 @@ class SignalName:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Call:
     """A subsystem applied to arguments, by position (one input) or by name; `output` where it has several."""
 
@@ -208,7 +209,7 @@ class Call:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Scaled:
     """A constant times a signal expression."""
 
@@ -217,7 +218,7 @@ class Scaled:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Sum:
     """A sum; signs are in the terms (Scaled by -1)."""
 
@@ -228,7 +229,7 @@ class Sum:
 SignalExpression = SignalName | Call | Scaled | Sum
 
 
-@dataclass(frozen=True)
+@record
 class LoopInput:
     """An outside input of a loop."""
 
@@ -237,7 +238,7 @@ class LoopInput:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Signal:
     """A named signal with its equation."""
 
@@ -247,7 +248,7 @@ class Signal:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Break:
     """Where the loop is opened: at a signal for all its users, or at one use with named loops open."""
 
@@ -258,7 +259,7 @@ class Break:
     with_open: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True)
+@record
 class Excitation:
     """One input that is driven: kind of the input and its quantities (`size`, `slope`, `duration` …)."""
 
@@ -269,7 +270,7 @@ class Excitation:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Response:
     """A response of a loop: what drives it, which signal is looked at, what the error is measured from."""
 
@@ -281,7 +282,7 @@ class Response:
     title: str | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Loop:
     """Subsystems wired together."""
 
@@ -298,7 +299,7 @@ class Loop:
 # --- requirements ----------------------------------------------------------------------------------------
 
 
-@dataclass(frozen=True)
+@record
 class Limit:
     """at_most, at_least, between (low, high), within (distance, of) or equals (whole number, yes/no).
 
@@ -311,7 +312,7 @@ class Limit:
     truth: bool | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Band:
     """A settling band: per cent of the change, of a span or of a parameter, or a distance in the signal's unit."""
 
@@ -319,7 +320,7 @@ class Band:
     of: Literal["change", "absolute"]
 
 
-@dataclass(frozen=True)
+@record
 class Subject:
     """What a criterion is about: `loop.name` of a response or break, or the loop (name None)."""
 
@@ -329,7 +330,7 @@ class Subject:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class Claim:
     """A value claimed from an approximation; half a unit of its last printed digit is its tolerance."""
 
@@ -338,7 +339,7 @@ class Claim:
     """Exponent of ten of the last digit written (0.71 s: -2)."""
 
 
-@dataclass(frozen=True)
+@record
 class Basis:
     """What the claim of compliance rests on."""
 
@@ -349,7 +350,7 @@ class Basis:
     evidence: str | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Criterion:
     """A measure with a limit. `arguments` holds band, from, to, time, frequency … by their names."""
 
@@ -363,7 +364,7 @@ class Criterion:
     kept: Mapping[str, object] = field(default_factory=dict)
 
 
-@dataclass(frozen=True)
+@record
 class Method:
     """A verification method, due at a stage (None: due now)."""
 
@@ -372,7 +373,7 @@ class Method:
     stage: str | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Link:
     """A link to what a requirement is derived from."""
 
@@ -381,7 +382,7 @@ class Link:
     kept: Mapping[str, object] = field(default_factory=dict)
 
 
-@dataclass(frozen=True)
+@record
 class NotApplicable:
     """Why a requirement does not apply, and who said so."""
 
@@ -390,7 +391,7 @@ class NotApplicable:
     approved_on: str | None
 
 
-@dataclass(frozen=True)
+@record
 class Requirement:
     """A requirement of any level."""
 
@@ -414,7 +415,7 @@ class Requirement:
     kept: Mapping[str, object] = field(default_factory=dict)
 
 
-@dataclass(frozen=True)
+@record
 class Kept:
     """A named entry of a section that a later version answers (evidence, waivers, masks …), as written."""
 
@@ -423,14 +424,14 @@ class Kept:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class GatePolicy:
     """What holds the gate."""
 
     hold_on: tuple[Literal["non_compliant", "open", "out_of_range", "inconclusive"], ...]
 
 
-@dataclass(frozen=True)
+@record
 class ProjectInfo:
     """The title block."""
 
@@ -444,7 +445,7 @@ class ProjectInfo:
     place: Place
 
 
-@dataclass(frozen=True)
+@record
 class InputFile:
     """A file that was read: path relative to the project folder, and the digest of its bytes."""
 
@@ -452,7 +453,7 @@ class InputFile:
     sha256: str
 
 
-@dataclass(frozen=True)
+@record
 class Project:
     """The whole specification."""
 

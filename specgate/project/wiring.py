@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
 
 from flint import fmpq
 
@@ -18,12 +17,13 @@ from specgate.project.types import Break, Loop, Project, Response
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.graph import reached, reversed_arcs
 from specgate.terms.findings import Related
+from specgate.terms.records import record
 
 Node = tuple[str, str]
 """("signal", name) or ("block", instance)."""
 
 
-@dataclass(frozen=True)
+@record
 class InstantiatedLoop:
     """A loop in coherent SI.
 

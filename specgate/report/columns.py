@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import unicodedata
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
+
+from specgate.terms.records import record
 
 GAP = "  "
 
@@ -51,7 +52,7 @@ def wrapped(text: str, width: int, first: str = "", hang: str = "") -> Iterator[
     yield lead + line
 
 
-@dataclass(frozen=True)
+@record
 class Cell:
     """A cell of a table; `key` names its colour, empty for none."""
 
@@ -59,7 +60,7 @@ class Cell:
     key: str = ""
 
 
-@dataclass(frozen=True)
+@record
 class Column:
     """A column: heading, whether it is flush right or holds numbers, the least width it may be cut to (None: never).
 

@@ -6,7 +6,6 @@ A view computes nothing that is not in the Review: it chooses, orders, rounds an
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 
 from specgate.report.clean import cleaned
 from specgate.report.parts.audit import Audit, audits
@@ -16,9 +15,10 @@ from specgate.report.parts.matrix import Group, groups
 from specgate.report.parts.trace import Finding, OpenPoint, TraceLine, findings, lines, open_points
 from specgate.report.parts.trust import Trust, cautions, trust
 from specgate.review.types import Review
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class View:
     """A report, section by section."""
 

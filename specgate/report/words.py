@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 
 from specgate.report.digits import decimal, number
 from specgate.review.types import Amount, DefinitionReview, LimitReview
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Status:
     """A state in words, with its own shape; `key` names its colour in the styles. `weight` sorts the worst first."""
 

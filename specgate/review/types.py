@@ -9,15 +9,17 @@ metadata says `omit` are left out.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import field
 from typing import Any
+
+from specgate.terms.records import record
 
 
 def _omitted(key: str | None = None) -> Any:
     return field(default=None, metadata={"omit": True} if key is None else {"omit": True, "json": key})
 
 
-@dataclass(frozen=True)
+@record
 class Location:
     """A place in an input file, counted from 1; `message` only on related places."""
 
@@ -27,7 +29,7 @@ class Location:
     message: str | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class Amount:
     """A number with its unit; `exact` is a fraction, `as_written` the text of the file."""
 
@@ -38,7 +40,7 @@ class Amount:
     infinite: bool | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class Result:
     """A value as printed (12 significant digits) with its proved bounds, or the reason why there is none."""
 
@@ -54,7 +56,7 @@ class Result:
     signed: float | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class MeasureResult(Result):
     """A Result with the measure and the arguments it was read with."""
 
@@ -62,7 +64,7 @@ class MeasureResult(Result):
     arguments: Mapping[str, str] | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class Pole:
     """A certified pole: the true one lies within `radius` of what is printed, 1/s."""
 
@@ -72,7 +74,7 @@ class Pole:
     radius: float
 
 
-@dataclass(frozen=True)
+@record
 class Curve:
     """Points of a response, seconds against the signal's unit (deviation from rest), 6 digits."""
 
@@ -80,7 +82,7 @@ class Curve:
     value: tuple[float, ...]
 
 
-@dataclass(frozen=True)
+@record
 class ResponseReview:
     """A response: what drives it, its transfer function (exact, highest power first) and all its measures."""
 
@@ -98,7 +100,7 @@ class ResponseReview:
     """Why there is no response (improper, not answered yet)."""
 
 
-@dataclass(frozen=True)
+@record
 class BreakReview:
     """A loop opened at a break."""
 
@@ -110,7 +112,7 @@ class BreakReview:
     reason: str | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class HiddenMode:
     """A mode of the loop that a response does not show."""
 
@@ -120,7 +122,7 @@ class HiddenMode:
     poles: tuple[Pole, ...] = ()
 
 
-@dataclass(frozen=True)
+@record
 class LoopReview:
     """A loop, solved."""
 
@@ -141,7 +143,7 @@ class LoopReview:
     """Why the loop could not be solved (an algebraic loop)."""
 
 
-@dataclass(frozen=True)
+@record
 class ParameterReview:
     """A parameter with its nominal value in coherent SI; in dB, and in units that hold pi, as it was written."""
 
@@ -155,7 +157,7 @@ class ParameterReview:
     source: str | None = None
 
 
-@dataclass(frozen=True)
+@record
 class SubsystemReview:
     """A subsystem: its transfer function in coherent SI, and the parameters it reads."""
 
@@ -176,7 +178,7 @@ class SubsystemReview:
     by_fit: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class SpecificationReview:
     """What the files say, evaluated."""
 
@@ -185,7 +187,7 @@ class SpecificationReview:
     documents: Mapping[str, Mapping[str, Any]]
 
 
-@dataclass(frozen=True)
+@record
 class ConditionReview:
     """A condition of an approximation: what it requires, what was found, whether it holds (None: undecided)."""
 
@@ -200,7 +202,7 @@ class ConditionReview:
     """Set where the project changed the threshold."""
 
 
-@dataclass(frozen=True)
+@record
 class ErrorReview:
     """Signed error of a formula against the proved value; side is safe, unsafe or none."""
 
@@ -209,7 +211,7 @@ class ErrorReview:
     absolute: Amount | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class InsteadReview:
     """What to use instead of an approximation that does not stand."""
 
@@ -218,7 +220,7 @@ class InsteadReview:
     unit: str
 
 
-@dataclass(frozen=True)
+@record
 class BasisReview:
     """The audit of a basis. For `computed` and `evidence` only kind and standing are set."""
 
@@ -239,7 +241,7 @@ class BasisReview:
     reason: str | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class LimitReview:
     """A limit: exactly one of the keys is set."""
 
@@ -251,7 +253,7 @@ class LimitReview:
     equals: bool | int | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class ReserveReview:
     """Distance to the limit, positive inside, in the limit's unit."""
 
@@ -261,7 +263,7 @@ class ReserveReview:
     infinite: bool | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class CriterionReview:
     """One limit of a requirement: what was found, the verdict, the audit."""
 
@@ -278,7 +280,7 @@ class CriterionReview:
     reason: str | None = _omitted()
 
 
-@dataclass(frozen=True)
+@record
 class MethodReview:
     """A verification method and how it stands: a verdict, `due_later`, or `no_record`."""
 
@@ -287,7 +289,7 @@ class MethodReview:
     outcome: str
 
 
-@dataclass(frozen=True)
+@record
 class RequirementReview:
     """A requirement with its verdict. Verdict is `not_applicable` where it does not apply."""
 
@@ -315,7 +317,7 @@ class RequirementReview:
     external: Mapping[str, Any] | None = None
 
 
-@dataclass(frozen=True)
+@record
 class FindingReview:
     """A finding as printed."""
 
@@ -330,7 +332,7 @@ class FindingReview:
     related: tuple[Location, ...] = ()
 
 
-@dataclass(frozen=True)
+@record
 class GateReview:
     """Outcome (`pass`, `hold`, `unusable`) and, one sentence each, what holds it."""
 
@@ -338,7 +340,7 @@ class GateReview:
     reasons: tuple[str, ...]
 
 
-@dataclass(frozen=True)
+@record
 class ToolReview:
     """Which program made the result."""
 
@@ -346,7 +348,7 @@ class ToolReview:
     version: str
 
 
-@dataclass(frozen=True)
+@record
 class InputReview:
     """A file that was read and the digest of its bytes."""
 
@@ -354,7 +356,7 @@ class InputReview:
     sha256: str
 
 
-@dataclass(frozen=True)
+@record
 class ProjectReview:
     """Title block."""
 
@@ -367,7 +369,7 @@ class ProjectReview:
     sign_off: tuple[str, ...]
 
 
-@dataclass(frozen=True)
+@record
 class PolicyReview:
     """What holds the gate, how results are evaluated, thresholds that the project changed."""
 
@@ -376,7 +378,7 @@ class PolicyReview:
     changed_thresholds: tuple[Mapping[str, Any], ...] = ()
 
 
-@dataclass(frozen=True)
+@record
 class DefinitionReview:
     """The text that `explain` prints, of every measure, approximation and rule that was used."""
 
@@ -386,7 +388,7 @@ class DefinitionReview:
     source: str | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Review:
     """The whole result of a run on a project that could be built."""
 
@@ -405,7 +407,7 @@ class Review:
     gate: GateReview
 
 
-@dataclass(frozen=True)
+@record
 class Unusable:
     """The result of a run on a project that could not be built."""
 

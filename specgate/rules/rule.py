@@ -3,17 +3,17 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Mapping
-from dataclasses import dataclass
 
 from specgate.analysis.analyses import Analyses
 from specgate.compliance.assessment import Assessment
 from specgate.project.types import Project
 from specgate.terms.findings import Finding
+from specgate.terms.records import record
 from specgate.terms.verdicts import Level, Standing, Verdict
 from specgate.traceability.graph import Graph
 
 
-@dataclass(frozen=True)
+@record
 class Facts:
     """A project and everything that was found about it."""
 
@@ -29,7 +29,7 @@ class Facts:
         return Level.ERROR if what.value in self.project.gate.hold_on else Level.WARNING
 
 
-@dataclass(frozen=True)
+@record
 class Rule:
     """One row: the slug, a title, the levels in words, the check, and the user's text (the module's docstring)."""
 

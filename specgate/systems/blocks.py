@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 from flint import fmpq, fmpq_poly
 
+from specgate.terms.records import record
 
-@dataclass(frozen=True)
+
+@record
 class Block:
     """A subsystem with its model: outputs = numerators / denominator * inputs, as written, never reduced.
 
@@ -22,14 +23,14 @@ class Block:
     denominator: fmpq_poly
 
 
-@dataclass(frozen=True)
+@record
 class SignalRef:
     """A loop input or signal, by name."""
 
     name: str
 
 
-@dataclass(frozen=True)
+@record
 class OutputRef:
     """One output of an instance: `plant(duty=d, load=i).voltage`."""
 
@@ -37,14 +38,14 @@ class OutputRef:
     output: str
 
 
-@dataclass(frozen=True)
+@record
 class LinearForm:
     """A sum of constant times reference; the coefficients are exact."""
 
     terms: tuple[tuple[fmpq, SignalRef | OutputRef], ...]
 
 
-@dataclass(frozen=True)
+@record
 class Instance:
     """A block applied to arguments (one linear form per input of the block)."""
 
@@ -53,7 +54,7 @@ class Instance:
     arguments: Mapping[str, LinearForm]
 
 
-@dataclass(frozen=True)
+@record
 class Wiring:
     """A loop: its inputs, the applied blocks and the equations of its signals."""
 

@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
 
 from flint import fmpz_poly
+
+from specgate.terms.records import record
 
 Row = dict[int, fmpz_poly]
 """One equation, sum of entry times variable = 0: {variable: entry}; entries are not zero."""
 
 
-@dataclass(frozen=True)
+@record
 class Triangle:
     """Equations brought to triangular form.
 

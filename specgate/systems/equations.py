@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import fmpq, fmpq_mat, fmpq_poly, fmpz
@@ -12,6 +11,7 @@ from specgate.systems.blocks import Instance, LinearForm, OutputRef, SignalRef, 
 from specgate.systems.elimination import Row
 from specgate.systems.graph import is_cycle, strong_components
 from specgate.systems.polynomials import ONE
+from specgate.terms.records import record
 
 Reference = SignalRef | OutputRef
 Combination = Mapping[Reference, fmpq]
@@ -26,7 +26,7 @@ def combined(form: LinearForm) -> dict[Reference, fmpq]:
     return {reference: factor for reference, factor in coefficients.items() if factor != 0}
 
 
-@dataclass(frozen=True)
+@record
 class Equations:
     """The equations of a wiring. Raises KeyError for a reference to nothing."""
 

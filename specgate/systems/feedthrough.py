@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
 
 from flint import fmpq, fmpq_mat, fmpz_poly
 
@@ -11,9 +10,10 @@ from specgate.systems.assignment import heaviest_assignment
 from specgate.systems.blocks import SignalRef
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.graph import is_cycle, strong_components
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class AlgebraicLoop:
     """Signals that their equations do not determine, and why (a sentence that names them)."""
 
@@ -21,7 +21,7 @@ class AlgebraicLoop:
     reason: str
 
 
-@dataclass(frozen=True)
+@record
 class DirectCycle:
     """Nodes that feed each other at infinite frequency. gains[i, j]: what node i takes over of node j at once."""
 

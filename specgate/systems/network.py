@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import fmpq_poly, fmpz_poly
@@ -15,9 +14,10 @@ from specgate.systems.graph import reached, reversed_arcs
 from specgate.systems.modes import block_modes
 from specgate.systems.polynomials import exact_quotient, monic, product
 from specgate.systems.transfer import TransferFunction
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Group:
     """Strongly connected components that share blocks, with the modes of these blocks as closed (monic)."""
 
@@ -26,7 +26,7 @@ class Group:
     modes: fmpq_poly
 
 
-@dataclass(frozen=True)
+@record
 class Network:
     """Equations and their elimination."""
 

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import fmpq_poly
 
 from specgate.systems.blocks import Instance, LinearForm, SignalRef, Wiring
@@ -14,11 +12,12 @@ from specgate.systems.polynomials import ONE, exact_quotient, monic
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
 from specgate.systems.wellposed import algebraic_loop
+from specgate.terms.records import record
 
 _INJECTED = "(injected)"
 
 
-@dataclass(frozen=True)
+@record
 class OpenLoop:
     """The loop opened for all users of a signal.
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 from functools import lru_cache
 from typing import cast
 
@@ -12,11 +11,12 @@ from flint import acb, arb, fmpq, fmpq_poly, fmpz_poly
 from specgate.systems.polynomials import distinct_roots_times, primitive
 from specgate.systems.stability import classify
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _ORDERED_AT = 128
 
 
-@dataclass(frozen=True)
+@record
 class Root:
     """A root and how often it occurs. Parts that are exactly zero are exactly zero in `value`."""
 

@@ -5,7 +5,6 @@ Nothing is reduced behind the user's back: what cancels between blocks stays in 
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import fmpq, fmpq_poly
@@ -20,11 +19,12 @@ from specgate.systems.polynomials import exact_quotient, product
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
 from specgate.systems.wellposed import algebraic_loop
+from specgate.terms.records import record
 
 __all__ = ["AlgebraicLoop", "Channel", "Component", "LoopSolution", "OpenLoop", "StrongFeedThrough", "solve"]
 
 
-@dataclass(frozen=True)
+@record
 class Component:
     """Applied blocks that act on each other (or share their modes), with the modes they have together.
 
@@ -44,7 +44,7 @@ class Component:
         return is_hurwitz(self.modes)
 
 
-@dataclass(frozen=True)
+@record
 class Channel:
     """From a loop input to a signal.
 
@@ -74,7 +74,7 @@ class Channel:
         return not is_hurwitz(self.hidden)
 
 
-@dataclass(frozen=True)
+@record
 class StrongFeedThrough:
     """A well-posed loop that passes its signals on at once, with a gain of magnitude one or more.
 
@@ -86,7 +86,7 @@ class StrongFeedThrough:
     gain: fmpq | None
 
 
-@dataclass(frozen=True)
+@record
 class LoopSolution:
     """A wiring and what follows from it.
 

@@ -6,15 +6,15 @@ Everything here is decided in whole numbers, whatever the multiplicities and how
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from itertools import pairwise
 
 from flint import fmpq_poly
 
 from specgate.systems.polynomials import distinct_roots_times, order_at_origin, primitive
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class RootCount:
     """Numbers of roots, each counted with its multiplicity.
 

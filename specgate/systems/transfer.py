@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import fmpq, fmpq_poly
 
+from specgate.terms.records import record
 
-@dataclass(frozen=True)
+
+@record
 class TransferFunction:
     """numerator / denominator *as written*, never reduced behind the user's back; coherent SI."""
 

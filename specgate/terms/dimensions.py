@@ -3,14 +3,15 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from functools import cache
 from itertools import combinations, product
+
+from specgate.terms.records import record
 
 _BASE = ("m", "kg", "s", "A", "K", "mol", "cd")
 
 
-@dataclass(frozen=True)
+@record
 class Dimension:
     """Exponents of metre, kilogram, second, ampere, kelvin, mole and candela, in this order.
 

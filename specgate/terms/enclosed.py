@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import sys
 from collections.abc import Callable
-from dataclasses import dataclass
 from functools import lru_cache
 from typing import Literal
 
@@ -16,6 +15,7 @@ from flint import arb, fmpq, fmpz
 
 from specgate.terms.decimals import power_of_ten
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 from specgate.terms.unit import PI, Unit
 from specgate.terms.verdicts import Proof
 
@@ -52,7 +52,7 @@ Refine = Callable[[int], arb]
 """From a working precision in bits to a ball that contains the value."""
 
 
-@dataclass(frozen=True)
+@record
 class Enclosed:
     """A number as printed: nearest 12-digit decimal, outward 12-digit bounds (None for an exact value).
 

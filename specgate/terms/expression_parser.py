@@ -4,10 +4,11 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from typing import Literal, cast
 
 from specgate.terms.decimals import DecimalError, exact_decimal
+from specgate.terms.records import record
 from specgate.terms.trees import (
     Binary,
     Expression,
@@ -39,7 +40,7 @@ _OF = re.compile(r"\s+of\s+(?P<name>[A-Za-z_][A-Za-z0-9_.]*)", re.ASCII)
 _POWER = re.compile(r"\s*(?P<power>[+-]?[0-9]+|\(\s*[+-]?[0-9]+\s*\))(?![.eE0-9A-Za-z_])", re.ASCII)
 
 
-@dataclass(frozen=True)
+@record
 class _Token:
     kind: Literal["value", "operator", "end"]
     offset: int

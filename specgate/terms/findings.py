@@ -3,15 +3,15 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 
 from specgate.terms.places import Place
+from specgate.terms.records import record
 from specgate.terms.verdicts import Level
 
 _WEIGHT = {Level.ERROR: 0, Level.WARNING: 1, Level.NOTE: 2}
 
 
-@dataclass(frozen=True)
+@record
 class Related:
     """Another place that a finding is about, with a few words on it."""
 
@@ -19,7 +19,7 @@ class Related:
     message: str
 
 
-@dataclass(frozen=True)
+@record
 class Finding:
     """A message at a place: what is wrong, where, and what would put it right.
 

@@ -4,11 +4,12 @@ from __future__ import annotations
 
 import os
 from collections.abc import Iterator
-from dataclasses import dataclass
 from fnmatch import fnmatchcase
 from itertools import takewhile
 from pathlib import Path, PurePosixPath
 from typing import Protocol
+
+from specgate.terms.records import record
 
 LARGEST_FILE = 16 * 1024 * 1024
 """Bytes."""
@@ -32,7 +33,7 @@ class Source(Protocol):
         """Return the files that match, sorted; `*` stays inside a folder, `**` is any depth. Raises SourceError."""
 
 
-@dataclass(frozen=True)
+@record
 class FolderSource:
     """A folder on disk. Nothing outside it is read, by whatever path, pattern or symbolic link."""
 

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, field
+from dataclasses import field
 from typing import Literal
 
 from flint import fmpq
 
+from specgate.terms.records import record
 from specgate.terms.unit import Unit
 
 
@@ -24,7 +25,7 @@ class ExpressionUnitError(ExpressionError):
     """An expression with a unit in it that is not in the table."""
 
 
-@dataclass(frozen=True)
+@record
 class Expression:
     """A node of an expression; `offset` is where it stands in the text that was read."""
 
@@ -47,7 +48,7 @@ class Expression:
             yield from part.walk()
 
 
-@dataclass(frozen=True)
+@record
 class Number(Expression):
     """A number as written, in its unit (None: a plain number)."""
 
@@ -62,7 +63,7 @@ class Number(Expression):
         return self.unit.pi_power != 0 or (self.unit.kind == "decibel" and (self.value / 20).q != 1)
 
 
-@dataclass(frozen=True)
+@record
 class Pi(Expression):
     """The number pi."""
 
@@ -72,14 +73,14 @@ class Pi(Expression):
         return True
 
 
-@dataclass(frozen=True)
+@record
 class Name(Expression):
     """A parameter, by its name (`lag`) or by subsystem and name (`hoist_drive.lag`)."""
 
     name: str
 
 
-@dataclass(frozen=True)
+@record
 class PercentOf(Expression):
     """`percent % of name`: of a parameter, or of the signal's `span` or `change`."""
 
@@ -87,7 +88,7 @@ class PercentOf(Expression):
     name: str
 
 
-@dataclass(frozen=True)
+@record
 class Negative(Expression):
     """Minus the operand."""
 
@@ -99,7 +100,7 @@ class Negative(Expression):
         return (self.operand,)
 
 
-@dataclass(frozen=True)
+@record
 class Binary(Expression):
     """left operator right."""
 
@@ -113,7 +114,7 @@ class Binary(Expression):
         return (self.left, self.right)
 
 
-@dataclass(frozen=True)
+@record
 class Power(Expression):
     """base to a whole power."""
 

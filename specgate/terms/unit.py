@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Literal
 
 from flint import fmpq
 
 from specgate.terms.decimals import exact_decimal
 from specgate.terms.dimensions import DIMENSIONLESS, RATE, Dimension
+from specgate.terms.records import record
 
 PI = exact_decimal("3.14159265358979323846264338327950288419716939937510582097494")
 """pi as one fixed decimal of 60 digits, the same everywhere, so that what cancels on paper cancels here."""
@@ -20,7 +20,7 @@ PRECISE_PI = exact_decimal(
 Kind = Literal["linear", "decibel", "temperature_difference", "percent", "points"]
 
 
-@dataclass(frozen=True)
+@record
 class Unit:
     """symbol as written; factor * pi**pi_power is its size in coherent SI.
 

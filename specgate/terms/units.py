@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from functools import cache
 from types import MappingProxyType
 
@@ -14,6 +14,7 @@ from specgate.terms.decimals import LITERAL, DecimalError, exact_decimal
 from specgate.terms.dimensions import DIMENSIONLESS, Dimension
 from specgate.terms.listed_units import MISTAKEN, OTHER_SPELLINGS, listed
 from specgate.terms.names import nearest
+from specgate.terms.records import record
 from specgate.terms.unit import ONE, PI, PRECISE_PI, Kind, Unit, frequency_problem
 
 __all__ = [
@@ -53,7 +54,7 @@ class UnitError(ValueError):
         self.nearest = nearest
 
 
-@dataclass(frozen=True)
+@record
 class UnitTable:
     """Symbols that may be read: the listed ones and the project's own (`own`)."""
 

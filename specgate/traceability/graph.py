@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
 from typing import Literal
 
 from specgate.project.types import Link, Project
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Dangling:
     """A link of a requirement to something that the specification does not hold."""
 
@@ -18,7 +18,7 @@ class Dangling:
     link: Link
 
 
-@dataclass(frozen=True)
+@record
 class Graph:
     """Links between requirements, known ids only, in the order of the files.
 

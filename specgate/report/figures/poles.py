@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
 from typing import Literal
 
 from specgate.report.digits import number
 from specgate.report.figures import svg
 from specgate.report.figures.scales import Scale
+from specgate.terms.records import record
 
 WIDTH, HEIGHT = 310.0, 200.0
 LEFT, RIGHT, TOP, BOTTOM = 40.0, 12.0, 16.0, 34.0
@@ -17,7 +17,7 @@ CROWD = 12.0
 DAMPINGS = (0.2, 0.4, 0.6, 0.8)
 
 
-@dataclass(frozen=True)
+@record
 class Point:
     """A pole, a hidden pole or a zero, 1/s."""
 
@@ -27,7 +27,7 @@ class Point:
     multiplicity: int = 1
 
 
-@dataclass(frozen=True)
+@record
 class PoleFigure:
     """What is drawn in the s plane."""
 

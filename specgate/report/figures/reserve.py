@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from specgate.report.figures import svg
+from specgate.terms.records import record
 
 WIDTH, HEIGHT = 72.0, 11.0
 FULL = 1.0
 """Relative reserve at the ends of the scale: the whole limit."""
 
 
-@dataclass(frozen=True)
+@record
 class ReserveBar:
     """A reserve relative to its limit (1: the whole limit), positive inside; `title` says it in words."""
 

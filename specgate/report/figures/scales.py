@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
 
 from specgate.report.digits import MINUS
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Scale:
     """A linear scale that takes [low, high] to [start, end] in pixels."""
 

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Literal
 
 from specgate.report.figures import svg
 from specgate.report.figures.scales import Scale, simplified, widened
+from specgate.terms.records import record
 
 WIDTH, HEIGHT = 640.0, 186.0
 LEFT, RIGHT, TOP, BOTTOM = 58.0, 14.0, 24.0, 38.0
@@ -16,7 +16,7 @@ STRIP = 9.0
 """Breadth of the hatching along a limit, pixels."""
 
 
-@dataclass(frozen=True)
+@record
 class Edge:
     """A limit: a line at `at` on an axis, with the side on which nothing may lie.
 
@@ -31,7 +31,7 @@ class Edge:
     at_the_end: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class Cross:
     """A proved value, with the interval that is proved to hold it along one axis."""
 
@@ -42,7 +42,7 @@ class Cross:
     high: float
 
 
-@dataclass(frozen=True)
+@record
 class Ring:
     """A claimed value."""
 
@@ -50,7 +50,7 @@ class Ring:
     value: float
 
 
-@dataclass(frozen=True)
+@record
 class StepFigure:
     """What is drawn of a response. `time` in seconds against `value` in `unit`, as deviations from rest."""
 

@@ -3,20 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from itertools import pairwise
 
 from specgate.report.figures import svg
 from specgate.report.figures.wiring_graph import Graph, NotDrawable, graph
 from specgate.report.figures.wiring_layout import layouts
 from specgate.report.figures.wiring_shapes import Box, Layout, two_lines
+from specgate.terms.records import record
 
 MONO = "DejaVu Sans Mono"
 MARGIN, BETWEEN = 6.0, 18.0
 TALLEST = 560.0
 
 
-@dataclass(frozen=True)
+@record
 class WiringFigure:
     """What a loop's picture is drawn from; `channels` are its responses, from input to signal."""
 

@@ -11,6 +11,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Literal
 
+from specgate.terms.records import record
+
 Kind = Literal["input", "block", "sum", "gain"]
 _TOKEN = re.compile(r"\s*([A-Za-z_]\w*|[0-9.]+(?:[eE][+-]?[0-9]+)?|\*\*|[-+*/().,=]|\S)")
 _NAME = re.compile(r"[A-Za-z_]\w*\Z")
@@ -21,7 +23,7 @@ class NotDrawable(Exception):
     """The wiring cannot be drawn, or not so that it can be read."""
 
 
-@dataclass(frozen=True)
+@record
 class Line:
     """A line into a node: where it comes from, its sign at a sum, the names of the ports at both ends."""
 
@@ -41,7 +43,7 @@ class Node:
     signals: list[tuple[str, str]] = field(default_factory=list)
 
 
-@dataclass(frozen=True)
+@record
 class Graph:
     """All nodes and lines of a loop; `signals` says which node gives each signal."""
 
@@ -50,7 +52,7 @@ class Graph:
     signals: Mapping[str, int]
 
 
-@dataclass(frozen=True)
+@record
 class _Ref:
     """The output of a node, or a signal that is not resolved yet."""
 
@@ -58,7 +60,7 @@ class _Ref:
     output: str = ""
 
 
-@dataclass(frozen=True)
+@record
 class _Term:
     negative: bool
     gain: str

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Iterable
-from dataclasses import dataclass
 
 from specgate.report.figures.wiring_graph import Graph, Line, NotDrawable
 from specgate.report.figures.wiring_paths import Branch, branches, parts, spine
 from specgate.report.figures.wiring_shapes import CHARACTER, Box, Label, Layout, Run, Spot, signs, two_lines
+from specgate.terms.records import record
 
 BLOCK, SUM, GAP, ROW, TAP, OUT = 30.0, 18.0, 22.0, 46.0, 8.0, 26.0
 """Height of a block, breadth of a sum, least gaps between nodes, rows and taps, length of a line that leads out."""
@@ -16,7 +16,7 @@ WIDEST = 980.0
 STRETCHES = (1.0, 1.35, 1.8, 2.4)
 
 
-@dataclass(frozen=True)
+@record
 class Route:
     """A branch in its place: where it leaves, where it arrives, the height of its row, where its nodes stand."""
 

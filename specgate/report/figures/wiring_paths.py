@@ -3,15 +3,15 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
 
 from specgate.report.figures.wiring_graph import Graph, Line
+from specgate.terms.records import record
 
 STEPS = 4000
 """Paths that are tried in search of the longest."""
 
 
-@dataclass(frozen=True)
+@record
 class Branch:
     """Nodes in the order of their flow, off a node that is drawn already (`start`) or from outside, to another one
     (`end`) or to nowhere. Without nodes it is one line."""

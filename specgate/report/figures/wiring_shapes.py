@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from itertools import combinations, pairwise
 
 from specgate.report.figures.wiring_graph import NotDrawable
+from specgate.terms.records import record
 
 CHARACTER = 4.85
 """Breadth of a character of the labels, pixels (DejaVu Sans Mono at 8)."""
@@ -14,7 +15,7 @@ Spot = tuple[float, float]
 """A place in pixels, to the right and down."""
 
 
-@dataclass(frozen=True)
+@record
 class Box:
     """A node in its place: middle, size, direction of flow (1 to the right, -1 to the left)."""
 
@@ -36,7 +37,7 @@ class Box:
         return self.x - self.flow * self.width / 2
 
 
-@dataclass(frozen=True)
+@record
 class Run:
     """A line through corners, with an arrow at its end; `net` is the node and the port whose signal it carries.
 
@@ -48,7 +49,7 @@ class Run:
     tapped: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class Label:
     """A word beside a line."""
 

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from specgate.report import anchors, digits
 from specgate.report.figures.step import StepFigure
 from specgate.report.parts import plots, shown
@@ -21,9 +19,10 @@ from specgate.report.words import (
     with_unit,
 )
 from specgate.review.types import BasisReview, ConditionReview, CriterionReview, Review
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Condition:
     """A condition of an approximation."""
 
@@ -35,7 +34,7 @@ class Condition:
     policy: str
 
 
-@dataclass(frozen=True)
+@record
 class Audit:
     """One basis, audited. One that stands, and agrees with its formula, is `brief`: a line says all of it."""
 

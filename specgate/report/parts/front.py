@@ -6,7 +6,6 @@ import hashlib
 import re
 from collections import Counter
 from collections.abc import Iterable
-from dataclasses import dataclass
 
 from specgate.report import anchors
 from specgate.report.digits import percent
@@ -25,11 +24,12 @@ from specgate.report.words import (
     titled,
 )
 from specgate.review.types import CriterionReview, InputReview, RequirementReview, Review
+from specgate.terms.records import record
 
 HOLDS_AT_MOST = 10
 
 
-@dataclass(frozen=True)
+@record
 class Title:
     """The title block."""
 
@@ -43,7 +43,7 @@ class Title:
     tool: str
 
 
-@dataclass(frozen=True)
+@record
 class Count:
     """How many of a state."""
 
@@ -51,7 +51,7 @@ class Count:
     number: int
 
 
-@dataclass(frozen=True)
+@record
 class Hold:
     """One thing that holds the gate: a requirement (or none) with its states, the number that decides it, else why."""
 
@@ -61,7 +61,7 @@ class Hold:
     anchor: str
 
 
-@dataclass(frozen=True)
+@record
 class Front:
     """Page one."""
 

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 
 from specgate.report import anchors, digits
 from specgate.report.figures.poles import Point, PoleFigure
@@ -23,11 +22,12 @@ from specgate.review.types import (
     ResponseReview,
     Review,
 )
+from specgate.terms.records import record
 
 Criteria = list[tuple[str, CriterionReview]]
 
 
-@dataclass(frozen=True)
+@record
 class Signal:
     """A signal and how it is made."""
 
@@ -37,7 +37,7 @@ class Signal:
     rest: str
 
 
-@dataclass(frozen=True)
+@record
 class PoleRow:
     """A pole, or a pair of them, in numbers; `time_constant` is that of its decay."""
 
@@ -50,7 +50,7 @@ class PoleRow:
     unstable: bool
 
 
-@dataclass(frozen=True)
+@record
 class CriterionRow:
     """A limit drawn in a figure."""
 
@@ -64,7 +64,7 @@ class CriterionRow:
     verdict: Status
 
 
-@dataclass(frozen=True)
+@record
 class ResponseSheet:
     """A response."""
 
@@ -83,7 +83,7 @@ class ResponseSheet:
     measures: MeasureTable
 
 
-@dataclass(frozen=True)
+@record
 class BreakSheet:
     """A loop opened at a break."""
 
@@ -95,7 +95,7 @@ class BreakSheet:
     measures: MeasureTable
 
 
-@dataclass(frozen=True)
+@record
 class Hidden:
     """A hidden mode in a sentence."""
 
@@ -105,7 +105,7 @@ class Hidden:
     stable: bool
 
 
-@dataclass(frozen=True)
+@record
 class LoopSheet:
     """A loop."""
 

@@ -3,19 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 from specgate.report import anchors, digits
 from specgate.report.figures.reserve import ReserveBar
 from specgate.report.parts import shown
 from specgate.report.words import METHODS, STANDINGS, VERDICTS, Status, arguments, limit, listed, spaced, titled
 from specgate.review.types import CriterionReview, RequirementReview, Review
+from specgate.terms.records import record
 
 ROWS_AT_MOST = 400
 """Requirements that a printed matrix holds; beyond, the compliant and sound ones are left to the attached result."""
 
 
-@dataclass(frozen=True)
+@record
 class Line:
     """One limit of a requirement."""
 
@@ -37,7 +38,7 @@ class Line:
     """Anchor of the audit of its basis, else of its response or loop."""
 
 
-@dataclass(frozen=True)
+@record
 class Method:
     """A verification method, when it is due, how it stands."""
 
@@ -46,7 +47,7 @@ class Method:
     outcome: Status
 
 
-@dataclass(frozen=True)
+@record
 class Row:
     """A requirement."""
 
@@ -69,7 +70,7 @@ class Row:
     place: str
 
 
-@dataclass(frozen=True)
+@record
 class Group:
     """The requirements derived from one parent (None: those without one)."""
 

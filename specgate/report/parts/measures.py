@@ -3,17 +3,17 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass
 
 from specgate.report import digits
 from specgate.report.parts import shown
 from specgate.report.words import UNITLESS, arguments, listed, titled
 from specgate.review.types import DefinitionReview, MeasureResult, ResponseReview
+from specgate.terms.records import record
 
 COLUMNS_AT_MOST = 5
 
 
-@dataclass(frozen=True)
+@record
 class MeasureRow:
     """A measure as found."""
 
@@ -23,7 +23,7 @@ class MeasureRow:
     value: str
 
 
-@dataclass(frozen=True)
+@record
 class MeasureTable:
     """Measures with a value as rows; those without one together, by the reason."""
 
@@ -31,7 +31,7 @@ class MeasureTable:
     absent: tuple[tuple[str, str], ...]
 
 
-@dataclass(frozen=True)
+@record
 class Comparison:
     """Responses side by side: a column each, headed by name and unit; a row for each measure; reasons by letter."""
 

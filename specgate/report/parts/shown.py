@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from specgate.report import digits
 from specgate.report.words import UNITLESS, edges, spaced, with_unit, yes_no
 from specgate.review.types import LimitReview, Pole, ReserveReview, Result
+from specgate.terms.records import record
 
 _RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
 
 
-@dataclass(frozen=True)
+@record
 class Shown:
     """A result as printed: the number (or a word), its unit, how firmly it is known, and what has to be said of it."""
 

@@ -3,16 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
 from typing import Any
 
 from specgate.report import anchors
 from specgate.report.parts.matrix import Method, row
 from specgate.report.words import LEVELS, VERDICTS, Status, counted, listed, spaced
 from specgate.review.types import FindingReview, Review
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class TraceLine:
     """A requirement in the tree of derivations; one with several parents is shown under each, unfolded once."""
 
@@ -27,7 +27,7 @@ class TraceLine:
     repeated: bool
 
 
-@dataclass(frozen=True)
+@record
 class Finding:
     """What a rule has to say, with its place."""
 
@@ -40,7 +40,7 @@ class Finding:
     subject: str
 
 
-@dataclass(frozen=True)
+@record
 class OpenPoint:
     """Something that a signature leaves open, and where it is."""
 

@@ -3,16 +3,16 @@
 from __future__ import annotations
 
 from collections import Counter
-from dataclasses import dataclass
 
 from specgate.report.digits import number
 from specgate.report.parts import shown
 from specgate.report.words import counted, listed, spaced, with_unit
 from specgate.review.types import InputReview, ParameterReview, Review, SubsystemReview
 from specgate.terms.cautions import CAUTIONS
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Parameter:
     """A parameter as used."""
 
@@ -23,7 +23,7 @@ class Parameter:
     place: str
 
 
-@dataclass(frozen=True)
+@record
 class Subsystem:
     """A subsystem as used; `channels` are its numerators over the one denominator."""
 
@@ -37,7 +37,7 @@ class Subsystem:
     used: bool
 
 
-@dataclass(frozen=True)
+@record
 class Definition:
     """The text of a measure, an approximation or a rule."""
 
@@ -47,7 +47,7 @@ class Definition:
     source: str
 
 
-@dataclass(frozen=True)
+@record
 class Trust:
     """The section."""
 
