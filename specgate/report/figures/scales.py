@@ -31,9 +31,8 @@ class Scale:
         step = round_step((self.high - self.low) / about)
         first = math.ceil(self.low / step - 1e-9)
         last = math.floor(self.high / step + 1e-9)
-        decimals = max(0, -math.floor(math.log10(step) + 1e-9))
         for k in range(first, last + 1):
-            yield k * step, tick_text(k * step, decimals)
+            yield k * step, tick_text(k * step, step)
 
 
 def simplified(points: Sequence[tuple[float, float]], tolerance: float) -> list[tuple[float, float]]:
@@ -68,10 +67,15 @@ def round_step(at_least: float) -> float:
     return next((m * power for m in (1, 2, 5) if m * power >= at_least * (1 - 1e-9)), 10 * power)
 
 
-def tick_text(value: float, decimals: int) -> str:
-    """Return a tick's label; long ones with a power of ten."""
+def tick_text(value: float, step: float) -> str:
+    """Return a tick's label with the digits that tell it from its neighbours; long ones with a power of ten."""
+    finest = math.floor(math.log10(step) + 1e-9)
+    decimals = max(0, -finest)
     if value and not 1e-4 <= abs(value) < 1e6:
-        return f"{value:.3g}".replace("e-0", "e-").replace("e+0", "e").replace("e+", "e").replace("-", MINUS)
+        digits = max(0, math.floor(math.log10(abs(value)) + 1e-9) - finest)
+        mantissa, power = f"{value:.{digits}e}".split("e")
+        short = mantissa.rstrip("0").rstrip(".") if "." in mantissa else mantissa
+        return f"{short}e{int(power)}".replace("-", MINUS)
     return f"{value:.{decimals}f}".replace("-", MINUS) if round(value, decimals) else "0"
 
 
