@@ -99,7 +99,7 @@ class _Judging:
         return Ruling(Verdict.COMPLIANT)
 
     def _naming(self, requirement: Requirement, section: Mapping[str, Kept]) -> tuple[Kept, ...]:
-        return tuple(kept for kept in section.values() if kept.content.get("requirement") == requirement.id)
+        return tuple(kept for kept in section.values() if requirement.id in kept.requirements)
 
     def _unanswered(
         self, requirement: Requirement, criteria: tuple[CriterionAssessment, ...], recorded: tuple[Kept, ...]
@@ -150,6 +150,8 @@ def _with_methods(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ru
         return analysed
     if not due:
         return _later(analysed, methods)
+    if _violated_unasked(analysed, methods):
+        return analysed
     verdict = worst(one.outcome if isinstance(one.outcome, Verdict) else Verdict.OPEN for one in due)
     if verdict is Verdict.COMPLIANT:
         return Ruling(verdict)
@@ -160,6 +162,11 @@ def _with_methods(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ru
     return Ruling(verdict, "; ".join(reasons), True if others else analysed.due)
 
 
+def _violated_unasked(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> bool:
+    """Whether a limit is violated that no analysis is to show: what the loop does not do, no test will find."""
+    return analysed.verdict is Verdict.NON_COMPLIANT and all(one.method.method != "analysis" for one in methods)
+
+
 def _unrecorded(one: MethodAssessment) -> str:
     name = one.method.method.replace("_", " ")
     if one.outcome == "no_record":
@@ -168,11 +175,8 @@ def _unrecorded(one: MethodAssessment) -> str:
 
 
 def _later(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ruling:
-    """Return what stands while no method is due.
-
-    It does not hold this review, unless analysis is not among the methods and the response violates a limit already.
-    """
-    if analysed.verdict is Verdict.NON_COMPLIANT and all(one.method.method != "analysis" for one in methods):
+    """Return what stands while no method is due: it does not hold this review, unless a limit is violated already."""
+    if _violated_unasked(analysed, methods):
         return analysed
     when = _listed(dict.fromkeys(f"{one.method.method} at {one.method.stage}" for one in methods))
     later = f"nothing is due yet ({when})"

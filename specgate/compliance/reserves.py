@@ -47,12 +47,18 @@ def reserve(assessed: CriterionAssessment) -> Reserve | None:
 
 def _yardstick(least: Reading | None, most: Reading | None, unit: Unit) -> fmpq | None:
     """Return what a distance is relative to: the limit, or half the width between two; None for zero."""
-    ends = [one.in_unit(unit).exact for one in (least, most) if one is not None]
-    known = [end for end in ends if end is not None]
-    if len(known) < len(ends):
-        return None
-    size = abs(known[0]) if len(known) == 1 else (known[1] - known[0]) / 2
-    return size if size != 0 else None
+    if least is not None and most is not None:
+        only: Reading | None = Reading(_half(most.answer, least.answer), _half(most.again, least.again))
+    else:
+        only = least or most
+    size = None if only is None else only.in_unit(unit).exact
+    return None if size is None or size == 0 else abs(size)
+
+
+def _half(high: Answer, low: Answer) -> Answer:
+    assert high.exact is not None
+    assert low.exact is not None
+    return Answer.of_exact((high.exact - low.exact) / 2)
 
 
 def _difference(larger: Answer, smaller: Answer) -> Answer:

@@ -41,6 +41,7 @@ class _Field:
     name: str
     key: str
     omit: bool
+    said_for: str | None
     type: Any
 
 
@@ -52,7 +53,13 @@ def _fields(kind: type) -> tuple[_Field, ...]:
     inherited = {one.name for one in dataclasses.fields(base)} if dataclasses.is_dataclass(base) else set()
     every = sorted(dataclasses.fields(kind), key=lambda one: one.name in inherited)
     return tuple(
-        _Field(one.name, one.metadata.get("json", one.name), one.metadata.get("omit", False), hints[one.name])
+        _Field(
+            one.name,
+            one.metadata.get("json", one.name),
+            one.metadata.get("omit", False),
+            one.metadata.get("said_for"),
+            hints[one.name],
+        )
         for one in every
     )
 
@@ -60,12 +67,17 @@ def _fields(kind: type) -> tuple[_Field, ...]:
 def _plain(value: Any) -> Any:
     if dataclasses.is_dataclass(value) and not isinstance(value, type):
         pairs = ((one, getattr(value, one.name)) for one in _fields(type(value)))
-        return {one.key: _plain(part) for one, part in pairs if not (one.omit and part is None)}
+        return {one.key: _plain(part) for one, part in pairs if part is not None or _said(one, value)}
     if isinstance(value, Mapping):
         return {str(key): _plain(part) for key, part in value.items()}
     if isinstance(value, list | tuple):
         return [_plain(part) for part in value]
     return value
+
+
+def _said(field: _Field, record: Any) -> bool:
+    """Whether a key stands in the text although there is nothing to say under it."""
+    return not field.omit or (field.said_for is not None and field.said_for == getattr(record, "measure", None))
 
 
 # --- from plain values to text -----------------------------------------------------------------------------

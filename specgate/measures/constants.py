@@ -23,10 +23,22 @@ def _constant(of: Callable[[TransferFunction], fmpq | None], power: int) -> Read
     def read(subject: BreakSubject, _: Arguments) -> Answer:
         value = of(subject.open_loop)
         if value is None:
-            return Answer.nothing(f"the open loop has more than {power} integrators net", infinite=True)
+            return _without_limit(subject.open_loop, power)
         return Answer.of_exact(value)
 
     return read
+
+
+_MOST = ("only without any", "with one at most", "with two at most")
+
+
+def _without_limit(open_loop: TransferFunction, power: int) -> Answer:
+    count = error_constants.loop_type(open_loop)
+    integrators = "an integrator" if count == 1 else f"{count} integrators"
+    reason = f"the open loop has {integrators}, and the constant is finite {_MOST[power]}"
+    if error_constants.sign_at_origin(open_loop) < 0:
+        return Answer.nothing(f"{reason}: with this sign of the gain it falls without limit")
+    return Answer.nothing(f"{reason}: it grows without limit", infinite=True)
 
 
 _METHOD = "exact: rational arithmetic on the reduced open loop"

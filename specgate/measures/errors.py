@@ -26,6 +26,7 @@ _INTEGRAL = "the error does not vanish in the end: its integral grows without bo
 ROWS = (
     Measure(
         name="steady_state_error",
+        of_error=True,
         title="Steady-state error",
         subjects=("response",),
         unit=UnitRule.SIGNAL,
@@ -54,6 +55,7 @@ ROWS = (
     ),
     Measure(
         name="integral_absolute_error",
+        of_error=True,
         title="Integral of the absolute error",
         subjects=("response",),
         unit=UnitRule.SIGNAL_SECOND,
@@ -64,6 +66,7 @@ ROWS = (
     ),
     Measure(
         name="integral_squared_error",
+        of_error=True,
         title="Integral of the squared error",
         subjects=("response",),
         unit=UnitRule.SIGNAL_SQUARED_SECOND,

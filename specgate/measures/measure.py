@@ -87,6 +87,7 @@ class Measure:
     read is None for a measure that this version does not answer yet.
     beside: a second value printed next to the first (the signed value of a magnitude).
     always: reported on every step response (or break, or loop), asked for or not.
+    of_error: read from reference minus response, so that there has to be a reference of the same dimension.
     """
 
     name: str
@@ -103,3 +104,4 @@ class Measure:
     arguments: tuple[Argument, ...] = ()
     signed: bool = False
     always: bool = False
+    of_error: bool = False

@@ -67,10 +67,27 @@ class CriterionCheck:
         self.measure: Measure = MEASURES[criterion.measure]
         self.unit: Unit = ONE
         self.span: fmpq | None = None
+        self.driven: list[tuple[str, Unit]] = []
+        self.referred = False
         subject = criterion.subject
         if subject.kind == "response" and subject.name is not None:
-            to = signals.loop.responses[subject.name].to
-            self.unit, self.span = signals.unit(to), signals.span(to)
+            response = signals.loop.responses[subject.name]
+            self.unit, self.span = signals.unit(response.to), signals.span(response.to)
+            self.driven = [(one.source, signals.unit(one.source)) for one in response.excitations]
+            self.referred = response.reference is not None
+
+    def reference(self) -> None:
+        """See that an error has something to be measured from. Raises Fault."""
+        if not self.measure.of_error or self.referred or len(self.driven) != 1:
+            return
+        ((source, unit),) = self.driven
+        if unit.dimension != self.unit.dimension:
+            raise Fault(
+                faults.DIMENSION,
+                f"{self.measure.name} is measured from the input `{source}`, which is in {unit.symbol}, the signal "
+                f"in {self.unit.symbol}: name a `reference` in the response, a signal or 0",
+                self.criterion.subject.place,
+            )
 
     # --- limits -------------------------------------------------------------------------------------------
 
@@ -260,6 +277,8 @@ def _check_criterion(
         check = CriterionCheck(signals, criterion, values)
     except Fault:
         return None  # the signal has no unit: said where the loop is checked
+    with found.noted(requirement=requirement):
+        check.reference()
     with found.noted(requirement=requirement):
         check.limit()
     for name, value in criterion.arguments.items():

@@ -12,9 +12,9 @@ from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, evaluate
 from specgate.project.percent import refuse_ambiguous
 from specgate.project.rational_forms import refuse_written_rate
-from specgate.project.signals import LoopSignals
+from specgate.project.signals import LoopSignals, misfit
 from specgate.project.subsystem_checks import wants
-from specgate.project.types import Excitation, Value
+from specgate.project.types import Excitation, Response, Value
 from specgate.project.wiring import wire
 from specgate.terms.dimensions import RATE, TIME
 from specgate.terms.expressions import literal_unit
@@ -49,11 +49,24 @@ def check_loop(signals: LoopSignals, blocks: Mapping[str, BuiltBlock], found: Fa
         with found.noted(loop=loop.name):
             _check_rest(value, signals.unit(name), values)
     for response in loop.responses.values():
+        with found.noted(loop=loop.name, response=response.name):
+            _check_reference(response, signals)
         for excitation in response.excitations:
             _check_excitation(excitation, signals, found, response.name)
     if len(found.findings) == before and set(project.subsystems) == set(blocks):
         with found.noted(loop=loop.name):
             wire(project, loop, blocks, values)
+
+
+def _check_reference(response: Response, signals: LoopSignals) -> None:
+    """Check that an error can be measured from the reference. Raises Fault."""
+    if response.reference in (None, "0"):
+        return
+    reference, unit = signals.unit(str(response.reference)), signals.unit(response.to)
+    problem = misfit(reference, unit)
+    if problem is not None:
+        message = f"the reference `{response.reference}` is in {reference.symbol}, `{response.to}` in {unit.symbol}"
+        raise Fault(faults.DIMENSION, f"{message}: {problem}", response.place)
 
 
 def _check_excitation(excitation: Excitation, signals: LoopSignals, found: Faults, response: str) -> None:

@@ -423,6 +423,12 @@ class Kept:
     content: Mapping[str, object]
     place: Place
 
+    @property
+    def requirements(self) -> tuple[str, ...]:
+        """The ids of the requirements that it names."""
+        named = self.content.get("requirement")
+        return tuple(map(str, named)) if isinstance(named, list | tuple) else () if named is None else (str(named),)
+
 
 @record
 class GatePolicy:

@@ -90,7 +90,6 @@ def _hidden(found: LoopAnalysis) -> Iterator[HiddenMode]:
 def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) -> ResponseReview:
     declared, subject = found.response, found.subject
     reduced = None if found.channel is None else found.channel.transfer.reduced()
-    missing = isinstance(subject, Missing)
     return ResponseReview(
         from_=" + ".join(one.source for one in declared.excitations),
         to=declared.to,
@@ -98,7 +97,9 @@ def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) 
         unit=found.unit.symbol,
         numerator=() if reduced is None else coefficients(reduced.numerator),
         denominator=() if reduced is None else coefficients(reduced.denominator),
-        measures=() if missing else _measures("response", subject, again.subject, found.unit),
+        measures=_absent(declared, subject.reason)
+        if isinstance(subject, Missing)
+        else _measures("response", subject, again.subject, found.unit),
         poles=() if reduced is None else poles(certified_roots(reduced.denominator, _SHOWN)),
         zeros=() if reduced is None or not reduced.numerator else poles(certified_roots(reduced.numerator, _SHOWN)),
         curve=_curve(found) if curve else None,
@@ -116,6 +117,16 @@ def _input(declared: Response) -> dict[str, str]:
         for one in declared.excitations
     }
     return {"kind": "several", **texts}
+
+
+def _absent(declared: Response, reason: str) -> tuple[MeasureResult, ...]:
+    """Print the measures of a step response that there is none of: the reason in place of every value."""
+    if [one.kind for one in declared.excitations] != ["step"]:
+        return ()
+    rows = (row for row in MEASURES.values() if row.always and "response" in row.subjects)
+    return tuple(
+        MeasureResult(None, reason=reason, measure=row.name, arguments=ALWAYS_SAID.get(row.name)) for row in rows
+    )
 
 
 def _measures(

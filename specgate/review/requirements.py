@@ -63,9 +63,7 @@ def requirement(
         rests_on=_rests_on(assessment, rests),
         derived=graph.children[name],
         evidence=tuple(
-            {"id": kept.id, **as_plain(kept.content)}
-            for kept in project.evidence.values()
-            if kept.content.get("requirement") == name
+            {"id": kept.id, **as_plain(kept.content)} for kept in project.evidence.values() if name in kept.requirements
         ),
         reason=assessment.reason,
         not_applicable=None

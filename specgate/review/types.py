@@ -3,7 +3,7 @@
 Every field is named as in `schemas/results.schema.json`, so that the machine-readable result is this tree written
 out and read back (`exchange.json`). Reports and differences need nothing beside it. Field metadata: `json` where
 the key is a Python keyword or otherwise differs (`from_` is written `from`); fields that are None and whose
-metadata says `omit` are left out.
+metadata says `omit` are left out, except in the record of the measure named by `said_for`.
 """
 
 from __future__ import annotations
@@ -52,7 +52,8 @@ class Result:
     proof: str | None = _omitted()
     reason: str | None = _omitted()
     infinite: bool | None = _omitted()
-    fragile: str | None = _omitted()
+    fragile: str | None = field(default=None, metadata={"omit": True, "said_for": "settling_time"})
+    """What a small change would do to the value. Said of every settling time in a list of measures, if only as null."""
     signed: float | None = _omitted()
 
 

@@ -1,16 +1,19 @@
-"""A link points to nothing: `derived_from` names no requirement, or `allocated_to` neither a loop nor a subsystem.
+"""A link points to nothing: what it names is not in the specification.
 
-Put it right by correcting the name, or by adding what it names. A requirement that comes from a document outside
-the project says so with `external`.
+`derived_from` and the shares of a `budget` name requirements, as evidence and waivers do; `allocated_to` names a loop
+or a subsystem. Put it right by correcting the name, or by adding what it names. A requirement that comes from a
+document outside the project says so with `external`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 
+from specgate.project.types import Kept
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.names import nearest
+from specgate.terms.places import Place
 from specgate.terms.verdicts import Level
 
 NAME = "dangling-link"
@@ -22,16 +25,38 @@ def check(facts: Facts) -> Iterator[Finding]:
     for link in facts.graph.dangling:
         derived = link.kind == "derived_from"
         known = list(requirements) if derived else [*facts.project.loops, *facts.project.subsystems]
-        close = nearest(link.link.id, known)
         wanted = "no requirement" if derived else "neither a loop nor a subsystem"
-        remedy = f"did you mean {close}?" if close else f"add it, or take it out of {link.kind}"
-        yield Finding(
-            rule=NAME,
-            level=Level.ERROR,
-            message=f"{link.requirement}: {link.link.id} in {link.kind} is {wanted} of this project; {remedy}",
-            place=link.link.place,
-            requirement=link.requirement,
-        )
+        remedy = _remedy(link.link.id, known, f"add it, or take it out of {link.kind}")
+        message = f"{link.requirement}: {link.link.id} in {link.kind} is {wanted} of this project; {remedy}"
+        yield _finding(message, link.link.place, link.requirement)
+    for name, requirement in requirements.items():
+        shares = (requirement.budget or {}).get("of")
+        for share in shares if isinstance(shares, list | tuple) else ():
+            if share not in requirements:
+                remedy = _remedy(str(share), requirements, "add it, or take it out of the budget")
+                message = f"{name}: {share} in its budget is no requirement of this project; {remedy}"
+                yield _finding(message, requirement.place, name)
+    yield from _records("evidence", facts.project.evidence.values(), requirements)
+    yield from _records("waiver", facts.project.waivers.values(), requirements)
+
+
+def _records(what: str, records: Iterable[Kept], requirements: Iterable[str]) -> Iterator[Finding]:
+    known = list(requirements)
+    for record in records:
+        for name in record.requirements:
+            if name not in known:
+                remedy = _remedy(name, known, "correct the name, or add the requirement")
+                message = f"the {what} {record.id} names {name}, which is no requirement of this project; {remedy}"
+                yield _finding(message, record.place, None)
+
+
+def _remedy(name: str, known: Iterable[str], otherwise: str) -> str:
+    close = nearest(name, known)
+    return f"did you mean {close}?" if close else otherwise
+
+
+def _finding(message: str, place: Place, requirement: str | None) -> Finding:
+    return Finding(rule=NAME, level=Level.ERROR, message=message, place=place, requirement=requirement)
 
 
 RULE = Rule(NAME, "Link to nothing", "error", check, __doc__)

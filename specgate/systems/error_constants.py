@@ -30,6 +30,14 @@ def acceleration_constant(open_loop: TransferFunction) -> fmpq | None:
     return _constant(open_loop, 2)
 
 
+def sign_at_origin(open_loop: TransferFunction) -> int:
+    """Return the sign of L(s) for small positive s; 0 where L is zero."""
+    numerator, denominator = open_loop.numerator, open_loop.denominator
+    if not numerator:
+        return 0
+    return 1 if numerator[order_at_origin(numerator)] / denominator[order_at_origin(denominator)] > 0 else -1
+
+
 def _constant(open_loop: TransferFunction, power: int) -> fmpq | None:
     integrators = loop_type(open_loop)
     if integrators > power:

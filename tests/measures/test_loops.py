@@ -129,6 +129,15 @@ def test_error_constants(read: Read) -> None:
     assert position.infinite
 
 
+def test_a_constant_that_falls_without_limit_is_no_infinite_one(read: Read) -> None:
+    """-10/(s (s + 5)): s > 0 brings it to minus infinity, which meets no `at_least`."""
+    position = read("position_constant", opened([-10], [1, 5, 0])).absent
+    assert position is not None
+    assert position.proved
+    assert not position.infinite
+    assert read("velocity_constant", opened([-10], [1, 5, 0])).exact == -2
+
+
 def test_a_cancelled_integrator_does_not_count(read: Read) -> None:
     assert read("loop_type", opened([1, 0], [1, 1, 0])).exact == 0
     assert read("position_constant", opened([6, 0], [1, 2, 0])).exact == 3

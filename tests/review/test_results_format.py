@@ -50,7 +50,7 @@ def test_head(tree: dict[str, Any]) -> None:
 def test_specification(tree: dict[str, Any]) -> None:
     parameter = tree["specification"]["parameters"]["hoist_drive.lag"]
     assert holds({"value": 0.085, "exact": "17/200", "unit": "s", "as_written": "85 ms"}, parameter)
-    assert parameter["tolerance"]["as_written"] == "[-10 %, +25 %]"
+    assert parameter["tolerance"] == {"lower": "-10 %", "upper": "+25 %", "as_written": "[-10 %, +25 %]"}
     drive = tree["specification"]["subsystems"]["hoist_drive"]
     assert holds({"owner": "Drives", "reads": ["hoist_drive.gain", "hoist_drive.lag"]}, drive)
 
@@ -78,6 +78,7 @@ def test_loop(tree: dict[str, Any]) -> None:
             "upper": 3.21840084158,
             "unit": "s",
             "proof": "enclosed",
+            "fragile": None,
         },
         {
             "measure": "overshoot",
@@ -144,12 +145,15 @@ def test_criterion(tree: dict[str, Any]) -> None:
 
 def test_basis(tree: dict[str, Any]) -> None:
     basis = tree["requirements"]["GH-SYS-031"]["criteria"][0]["basis"]
+    assert (basis["kind"], basis["standing"]) == ("approximation", "out_of_range")
+    assert basis["chain"] == ["dominant_pair", "second_order_settling"]
     assert holds({"value": 0.71, "unit": "s"}, basis["claimed"])
     assert basis["formula"]["value"] == pytest.approx(0.7079, abs=5e-5)
     assert basis["error"]["relative"] == pytest.approx(-0.78, abs=5e-3)
     assert basis["error"]["side"] == "unsafe"
     assert basis["instead"] == {"name": "computed", "value": 3.21840084158, "unit": "s"}
     separation = next(one for one in basis["conditions"] if one["key"] == "separation")
+    assert separation["name"] == "other poles at least 5 times faster"
     assert (separation["required"], separation["holds"]) == (">= 5", False)
     assert separation["found"] == pytest.approx(0.082, abs=5e-4)
 
