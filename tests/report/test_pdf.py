@@ -82,6 +82,50 @@ def test_headings_skip_no_level_and_figures_are_described(sample_pdf: bytes) -> 
     assert tables.count("/TH") > 50
 
 
+def widths(table: Any) -> list[int]:
+    """How many columns each row of a tagged table has, cells that span rows and columns counted."""
+    waiting, rows = list(table.K), []
+    while waiting:
+        node = waiting.pop(0)
+        if str(node.S) == "/TR":
+            rows.append(node)
+        elif "/K" in node and isinstance(node.K, pikepdf.Array):
+            waiting = [child for child in node.K if isinstance(child, pikepdf.Dictionary)] + waiting
+    found: list[int] = []
+    below: dict[int, int] = {}
+    for number, row in enumerate(rows):
+        width = below.pop(number, 0)
+        cells = [row.K] if isinstance(row.K, pikepdf.Dictionary) else list(row.K)
+        for cell in cells:
+            across, down = _spans(cell)
+            width += across
+            for k in range(number + 1, number + down):
+                below[k] = below.get(k, 0) + across
+        found.append(width)
+    return found
+
+
+def _spans(cell: Any) -> tuple[int, int]:
+    attributes = cell.get("/A", [])
+    spans = {}
+    for one in [attributes] if isinstance(attributes, pikepdf.Dictionary) else list(attributes):
+        spans |= {key: int(one[key]) for key in ("/ColSpan", "/RowSpan") if key in one}
+    return spans.get("/ColSpan", 1), spans.get("/RowSpan", 1)
+
+
+def test_rows_of_a_table_have_one_width_wherever_the_page_ends(sample: ModuleType) -> None:
+    """PDF/UA-1, 7.2: a cell that spans rows must not be torn from them by the end of a page."""
+    review = sample.bare()
+    several, standing = (sample.review().requirements[name] for name in ("BD-SYS-15", "BD-SUB-31"))
+    most = replace(several, criteria=several.criteria * 12)
+    long = {f"R{k}": replace(several, criteria=several.criteria[: 1 + k % 4], derived_from=()) for k in range(40)}
+    long |= {f"S{k}": replace(standing, derived_from=()) for k in range(30)} | {"M": most}
+    document = opened(pdf.render(replace(review, requirements=long, trace=dict.fromkeys(long, ())), {}))
+    tables = [widths(node) for kind, node in structure(document) if kind == "/Table"]
+    assert sum(len(rows) for rows in tables) > 250
+    assert [rows for rows in tables if len(set(rows)) > 1] == []
+
+
 def test_bookmarks_lead_to_the_sections(sample_pdf: bytes) -> None:
     with opened(sample_pdf).open_outline() as outline:
         top = [str(item.title) for item in outline.root]

@@ -106,7 +106,7 @@ def draw(figure: StepFigure) -> str:
 
 def _frame(figure: StepFigure, x: Scale, y: Scale) -> list[str]:
     bottom, right = HEIGHT - BOTTOM, WIDTH - RIGHT
-    across, upwards = list(x.ticks(6)), list(y.ticks(4))
+    across, upwards = list(x.ticks(5)), list(y.ticks(4))
     parts = [svg.strokes([(LEFT, y(value), right, y(value)) for value, _ in upwards], svg.HAIR, 0.5)]
     parts += [svg.text(LEFT - 5, y(value) + 3, label, anchor="end") for value, label in upwards]
     parts += [svg.text(x(value), bottom + 14, label, anchor="middle") for value, label in across]
