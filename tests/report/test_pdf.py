@@ -1,6 +1,6 @@
 """The PDF: archivable, accessible, sealed, the same every time.
 
-veraPDF, which decides on PDF/A-3a and PDF/UA-1 as a whole, is run by hand (DEVELOPERS.md); what broke it while the
+veraPDF, which decides on PDF/A-3a and PDF/UA-1 as a whole, is asked in test_verapdf.py; what broke it while the
 templates were made is checked here without it.
 """
 
