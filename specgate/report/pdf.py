@@ -44,7 +44,7 @@ def render(review: Review, attachments: Mapping[str, bytes], *, paper: str = "A4
     names = sorted(attachments, key=_name_in_pdf)
     identity = hashlib.sha256(html.encode() + b"".join(attachments[name] for name in names)).hexdigest()[:32]
     sources = {item.path for item in review.inputs}
-    with typeface.only_ours(), _no_garbage_collection(), _complaints() as said:
+    with typeface.only_ours(), _no_garbage_collection(), page_references_kept(), _complaints() as said:
         fetcher = _closed(engine)
         document = engine.HTML(string=html, url_fetcher=fetcher)
         files = [_attachment(engine, name, attachments[name], name in sources, review.project.date) for name in names]
@@ -147,6 +147,27 @@ def _no_garbage_collection() -> Iterator[None]:
     finally:
         if before:
             gc.enable()
+
+
+@contextmanager
+def page_references_kept() -> Iterator[None]:
+    """Let the writer keep the list of its pages: it makes it anew for every box, which grows with their square."""
+    import pydyf  # type: ignore[import-untyped]
+
+    made = pydyf.PDF.page_references
+
+    def kept(pdf: Any) -> Any:
+        count = len(pdf.pages["Kids"])
+        known = getattr(pdf, "_kept_references", None)
+        if known is None or known[0] != count:
+            known = pdf._kept_references = (count, made.fget(pdf))
+        return known[1]
+
+    pydyf.PDF.page_references = property(kept)
+    try:
+        yield
+    finally:
+        pydyf.PDF.page_references = made
 
 
 @contextmanager

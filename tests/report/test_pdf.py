@@ -6,6 +6,7 @@ templates were made is checked here without it.
 
 from __future__ import annotations
 
+import contextlib
 import hashlib
 import io
 import itertools
@@ -313,6 +314,12 @@ def test_a_missing_system_library_is_a_matter_of_the_environment(
         EnvironmentProblem, match=r"apt-get install libpango-1\.0-0 libpangoft2-1\.0-0 libharfbuzz-subset0"
     ):
         pdf.render(sample.review(), {})
+
+
+def test_keeping_the_list_of_pages_changes_no_byte(sample: ModuleType, monkeypatch: pytest.MonkeyPatch) -> None:
+    kept = pdf.render(sample.small(), {})
+    monkeypatch.setattr(pdf, "page_references_kept", contextlib.nullcontext)
+    assert pdf.render(sample.small(), {}) == kept
 
 
 def test_letter_paper(sample: ModuleType) -> None:
