@@ -9,6 +9,7 @@ from typing import Any, Literal
 from flint import fmpq
 
 from specgate.response.answers import Answer
+from specgate.response.questions import Mask
 from specgate.terms.records import record
 
 
@@ -58,7 +59,8 @@ class Arguments:
     """Evaluated arguments. lower, upper: fractions of the change between which rise time counts.
 
     absolute: overshoot and undershoot are asked for in the signal's unit instead of as a fraction of the change.
-    time: instant at which `value_at` is read, seconds from the step.
+    time: of `value_at` and `deviation_after`, seconds from the start of the input.
+    frequency, over: angular, rad/s. mask: the limits of `within_mask`.
     measure: name of the measure that is asked for; set wherever approximations are evaluated, because several of
         them estimate more than one.
     """
@@ -68,6 +70,9 @@ class Arguments:
     upper: fmpq = fmpq(9, 10)
     absolute: bool = False
     time: fmpq | None = None
+    frequency: fmpq | None = None
+    over: tuple[fmpq, fmpq] | None = None
+    mask: Mask | None = None
     measure: str = ""
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 from flint import arb, fmpq
@@ -42,6 +42,10 @@ class Answer:
     refine:  function of a working precision in bits that returns a ball proved to contain the value; more
              bits give a ball that is no wider, up to its own limit.
     absent:  no value, and why.
+    at:      what belongs to the answer and is printed beside it, by the names of the results format: `frequency`
+             (rad/s), `time` (s), `value` and `limit` (the signal's unit, SI), `direction` (a word).
+    how:     how the value was obtained, for the record of a proof: poles, tail time, counts, working precision, in
+             plain values.
     """
 
     proof: Proof
@@ -50,6 +54,8 @@ class Answer:
     refine: Callable[[int], arb] | None = None
     absent: Absent | None = None
     fragile: Fragile | None = None
+    at: Mapping[str, Answer | str] | None = None
+    how: Callable[[], Mapping[str, object]] | None = None
 
     @staticmethod
     def of_exact(value: fmpq | int) -> Answer:

@@ -1,0 +1,1 @@
+"""Loops with dead time, never replaced by a rational approximant."""

@@ -1,0 +1,1 @@
+"""Enclosed: margins, crossings and gains over frequency, from exact polynomials."""

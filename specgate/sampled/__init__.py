@@ -1,0 +1,1 @@
+"""Loops with a sampled controller: at the samples and between them."""
