@@ -14,6 +14,7 @@ other names, the set point first.
 from __future__ import annotations
 
 from collections.abc import Mapping
+from functools import partial
 
 from flint import fmpq, fmpq_poly
 
@@ -104,7 +105,7 @@ def _dimensions(reader: ModelReader, model: PidModel, output: str, source: str) 
             reader.wants(value, DIMENSIONLESS, "a set-point weight")
         elif not plain:
             time = TIME ** _GAINS[name]
-            reader.wants(value, ratio * time, f"`{name}`", name=reader.shown_ratio(output, source, time))
+            reader.wants(value, ratio * time, f"`{name}`", name=partial(reader.shown_ratio, output, source, time))
     if not plain:
         return fmpq(1)
     reader.by_fit = reader.by_fit or ratio != DIMENSIONLESS or any(_GAINS[name] for name in gains)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from flint import fmpq, fmpq_poly
 
 from specgate.project import faults
@@ -84,18 +86,24 @@ class ModelReader:
         return common
 
     def wants(
-        self, value: Value, wanted: Dimension, what: str, plain_as: str | None = None, name: str | None = None
+        self,
+        value: Value,
+        wanted: Dimension,
+        what: str,
+        plain_as: str | None = None,
+        name: Callable[[], str] | None = None,
     ) -> None:
         """Check the dimension of a value. Raises Fault.
 
-        plain_as: the unit that a plain number is taken in. name: of the unit that is wanted.
+        plain_as: the unit that a plain number is taken in. name: makes the name of the unit that is wanted, which costs
+        more than all checks together and is needed only where one fails.
         """
         inferred = self.infer(value)
         if inferred is PLAIN and (plain_as is not None or is_zero(value)):
             self.by_fit = self.by_fit or (wanted != DIMENSIONLESS and not is_zero(value))
             return
         if as_dimension(inferred) != wanted:
-            unit = name or plain_as or str(wanted)
+            unit = plain_as or (name() if name else str(wanted))
             message = f"`{value.as_written}`: {what} is in {unit}, this is {shown(value, inferred)}"
             raise Fault(faults.DIMENSION, message, value.place)
 
