@@ -17,8 +17,11 @@ AtLimit = Callable[[fmpq], Sign | None]
 """Exact sign of measure minus limit where a measure has such a predicate; None where it cannot tell."""
 
 _FIRST = 64
-_EXACT_FROM = 256
-"""Bits at which a ball that still holds the limit is taken for equality, to be decided exactly."""
+_EXACT_FROM = 128
+"""Bits at which a ball that still holds the limit is taken for equality, to be decided exactly.
+
+Below 60 digits: a limit of 45 deg is a decimal of 60 digits, which more bits tell from a quarter of pi.
+"""
 
 
 @record
@@ -60,7 +63,7 @@ def sign(answer: Answer, bound: fmpq, at_limit: AtLimit | None = None) -> Sign |
     """Return the sign of answer minus bound; None where even the narrowest ball holds the bound."""
     if answer.exact is not None:
         return _sign_of_exact(answer.exact - bound)
-    bits = _FIRST
+    bits, exactly = _FIRST, at_limit or answer.against
     while bits <= HIGHEST:
         value = answer.enclose(bits)
         with working_precision(bits):
@@ -69,8 +72,8 @@ def sign(answer: Answer, bound: fmpq, at_limit: AtLimit | None = None) -> Sign |
                 return 1
             if difference < 0:
                 return -1
-        if bits == _EXACT_FROM and at_limit is not None:
-            decided = at_limit(bound)
+        if bits == _EXACT_FROM and exactly is not None:
+            decided = exactly(bound)
             if decided is not None:
                 return decided
         bits *= 2

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from typing import Literal
 
 from flint import arb, fmpq
 
@@ -46,6 +47,8 @@ class Answer:
              (rad/s), `time` (s), `value` and `limit` (the signal's unit, SI), `direction` (a word).
     how:     how the value was obtained, for the record of a proof: poles, tail time, counts, working precision, in
              plain values.
+    against: exact sign of the value minus a rational (SI), for algebraic values, of which no ball can tell that they
+             are equal to a limit; it returns None where it cannot tell either.
     """
 
     proof: Proof
@@ -56,6 +59,7 @@ class Answer:
     fragile: Fragile | None = None
     at: Mapping[str, Answer | str] | None = None
     how: Callable[[], Mapping[str, object]] | None = None
+    against: Callable[[fmpq], Literal[-1, 0, 1] | None] | None = None
 
     @staticmethod
     def of_exact(value: fmpq | int) -> Answer:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 
 import pytest
 from flint import arb, fmpq
@@ -56,13 +57,20 @@ def test_touching_a_limit_complies_where_it_is_proved_and_stays_open_where_it_is
     assert undecided.reason == "the value cannot be told from the limit at 4096 bits"
 
 
-def test_the_exact_predicate_is_asked_only_where_a_256_bit_ball_holds_the_limit() -> None:
+def test_the_exact_predicate_is_asked_only_where_a_128_bit_ball_holds_the_limit() -> None:
     asked: list[int] = []
     assert sign(ball_of(fmpq(1), asked), fmpq(2), _refuse) == -1
     assert asked == [64]
     asked.clear()
     assert sign(ball_of(fmpq(2), asked), fmpq(2), lambda _: 1) == 1
-    assert asked == [64, 128, 256]
+    assert asked == [64, 128]
+
+
+def test_an_answer_can_bring_its_own_exact_predicate() -> None:
+    limit = fmpq(2)
+    own = replace(ball_of(limit), against=lambda _: 0)
+    assert compare(own, Limits(most=limit)).verdict is Verdict.COMPLIANT
+    assert sign(own, limit, lambda _: 1) == 1
 
 
 def _refuse(_: fmpq) -> None:

@@ -1,0 +1,206 @@
+"""A rational open loop over frequency: margins, crossings, peaks, all from roots of exact polynomials in omega^2.
+
+Notation of `axis`: A = |N|^2, B = |D|^2, N conj D = R + j omega I. Then
+  |L| = 1            A - B = 0, and x = 0, infinity where it holds there;
+  L real, negative   I = 0 and R < 0 (there N and D do not vanish), and x = 0, infinity;
+  extremes of |L|    A' B - A B' = 0;  of |1/(1 + L)|: B' C - B C' = 0 with C = |D + N|^2.
+Polynomials that vanish identically are cases of their own. |L| = 1 everywhere: the phase moves on an arc that leaves
+out 0, its ends are at x = 0, infinity or where it stands still, R I + 2x (R I' - I R') = 0 (the derivative of
+omega I/R). L real everywhere: its values fill intervals whose ends are at x = 0, infinity or where L stands still, and
+the values nearest to -1 are ends, for -1 itself is none of a stable loop.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import replace
+from functools import cached_property
+
+from flint import fmpq
+
+from specgate.frequency import margins
+from specgate.frequency.axis import AxisFunction, along_the_axis
+from specgate.frequency.choose import Candidate, least
+from specgate.frequency.magnitude import Magnitude, origin, roots, wronskian
+from specgate.frequency.margins import GainCrossing, PhaseCrossing
+from specgate.frequency.phase import phase_at
+from specgate.frequency.questions import Crossing, Direction, Range
+from specgate.frequency.scale import Continuous, Scale, X, ends, within
+from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots
+from specgate.frequency.values import reciprocal
+from specgate.response.answers import Answer
+from specgate.systems.transfer import TransferFunction
+
+UNSTABLE = "the closed loop is not stable as it is: there is nothing that a margin could be left to"
+
+_ORIGIN, _INFINITY = Rational(fmpq(0)), Infinity()
+
+
+class RationalLoop:
+    """L = numerator/denominator, and whether the closed loop is stable with every mode, hidden ones included."""
+
+    def __init__(self, open_loop: TransferFunction, stable: bool, scale: Scale | None = None) -> None:
+        self.axis = AxisFunction(open_loop)
+        self.scale: Scale = scale or Continuous()
+        self.stable = stable and self._far_value != -1
+
+    # --- crossings ----------------------------------------------------------------------------------------
+
+    @property
+    def _far_value(self) -> fmpq | None:
+        """L at infinity, None where it is infinite."""
+        n, d = self.axis.numerator, self.axis.denominator
+        if n.degree() > d.degree():
+            return None
+        return n.leading_coefficient() / d.leading_coefficient() if n.degree() == d.degree() else fmpq(0)
+
+    @cached_property
+    def _gain_spots(self) -> tuple[Spot, ...]:
+        """Where |L| = 1."""
+        excess = self.axis.above - self.axis.below
+        if not excess:
+            return self._stand_still
+        far = self._far_value
+        return (*origin(excess), *positive_roots(excess), *((_INFINITY,) if far is not None and abs(far) == 1 else ()))
+
+    @cached_property
+    def _stand_still(self) -> tuple[Spot, ...]:
+        """Where the phase may be extreme, of |L| = 1 everywhere."""
+        real, imaginary = self.axis.real, self.axis.imaginary
+        turning = real * imaginary + 2 * X * wronskian(imaginary, real)
+        return (_ORIGIN, *roots(turning), _INFINITY)
+
+    @cached_property
+    def _phase_spots(self) -> tuple[Spot, ...]:
+        """Where L is real and negative."""
+        axis = self.axis
+        inner = axis.imaginary or wronskian(axis.real, axis.below)
+        spots: list[Spot] = [_ORIGIN] if axis.denominator[0] != 0 else []
+        spots += roots(inner)
+        spots += [_INFINITY] if axis.numerator.degree() == axis.denominator.degree() else []
+        return tuple(spot for spot in spots if spot.sign(axis.real) < 0)
+
+    def _gain_crossings(self, over: Range | None) -> tuple[GainCrossing, ...]:
+        everywhere = over is not None and self.axis.above == self.axis.below
+        spots = (*within(self.scale, self._gain_spots, over), *(ends(self.scale, over) if everywhere else ()))
+        return tuple(self._gain_crossing(spot) for spot in spots)
+
+    def _gain_crossing(self, spot: Spot) -> GainCrossing:
+        turn = self.axis.turn(spot)
+        return GainCrossing(self.scale.frequency(spot), turn.size, turn.side)
+
+    def _phase_crossings(self, over: Range | None) -> tuple[PhaseCrossing, ...]:
+        axis = self.axis
+        extra = ends(self.scale, over) if over is not None and not axis.imaginary else ()
+        spots = (
+            *within(self.scale, self._phase_spots, over),
+            *(spot for spot in extra if spot.sign(axis.real) < 0 and spot.sign(axis.below) != 0),
+        )
+        return tuple(self._phase_crossing(spot) for spot in spots)
+
+    def _phase_crossing(self, spot: Spot) -> PhaseCrossing:
+        axis = self.axis
+        return PhaseCrossing(
+            self.scale.frequency(spot), spot.ratio(axis.below, -axis.real), spot.sign(axis.below + axis.real)
+        )
+
+    def crossings(self, over: Range | None = None) -> tuple[Crossing, ...]:
+        """Return all crossings, by frequency."""
+        return margins.described(self._gain_crossings(over), self._phase_crossings(over))
+
+    # --- margins ------------------------------------------------------------------------------------------
+
+    def _gain_margin(self, over: Range | None, *directions: Direction) -> Answer:
+        if not self.stable:
+            return Answer.nothing(UNSTABLE)
+        return margins.gain_margin(self._phase_crossings(over), *directions)
+
+    def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
+        if not self.stable:
+            return Answer.nothing(UNSTABLE)
+        return margins.phase_margin(self._gain_crossings(over), *directions)
+
+    def gain_margin_up(self, over: Range | None = None) -> Answer:
+        """Return the least factor k > 1 such that k L is at the limit."""
+        return self._gain_margin(over, "up")
+
+    def gain_margin_down(self, over: Range | None = None) -> Answer:
+        """Return the least factor k > 1 such that L / k is at the limit."""
+        return self._gain_margin(over, "down")
+
+    def gain_margin(self, over: Range | None = None) -> Answer:
+        """Return the smaller of both."""
+        return self._gain_margin(over, "up", "down")
+
+    def phase_margin_lag(self, over: Range | None = None) -> Answer:
+        """Return the least phase lag (rad, in [0, 2 pi)) that brings L to -1."""
+        return self._phase_margin(over, "lag")
+
+    def phase_margin_lead(self, over: Range | None = None) -> Answer:
+        """Return the least phase lead (rad, in [0, 2 pi)) that brings L to -1."""
+        return self._phase_margin(over, "lead")
+
+    def phase_margin(self, over: Range | None = None) -> Answer:
+        """Return the smaller of both."""
+        return self._phase_margin(over, "lag", "lead")
+
+    def delay_margin(self, over: Range | None = None) -> Answer:
+        """Return the least dead time (s) that brings L to -1: least lag over frequency, 0 where |L(inf)| >= 1."""
+        if not self.stable:
+            return Answer.nothing(UNSTABLE)
+        top = self.scale.frequency(_INFINITY)
+        far = self._far_value
+        if over is None and top.absent is not None and (far is None or abs(far) >= 1):
+            return replace(Answer.of_exact(0), at={"frequency": top})
+        return margins.delay_margin(self._gain_crossings(over))
+
+    # --- peaks and frequencies ----------------------------------------------------------------------------
+
+    @cached_property
+    def _sensitivity(self) -> Magnitude:
+        (a, b) = along_the_axis(self.axis.denominator + self.axis.numerator)
+        return Magnitude(self.axis.below, a * a + X * b * b, self.scale)
+
+    @cached_property
+    def _magnitude(self) -> Magnitude:
+        return Magnitude(self.axis.above, self.axis.below, self.scale)
+
+    def sensitivity_peak(self, over: Range | None = None) -> Answer:
+        """Return sup |1 / (1 + L)|; `at` has the frequency, absent with `infinite` where approached there."""
+        return self._sensitivity.supremum(over) if self.stable else Answer.nothing(UNSTABLE)
+
+    def least_distance(self, over: Range | None = None) -> Answer:
+        """Return inf |1 + L|."""
+        peak = self.sensitivity_peak(over)
+        if peak.absent is not None:
+            return peak
+        if peak.exact == 0:
+            return Answer.nothing("L is infinite on the whole of this range", infinite=True)
+        return replace(reciprocal(peak), at=peak.at)
+
+    def crossover_frequency(self, over: Range | None = None) -> Answer:
+        """Return the first frequency with |L| = 1 (rad/s); further ones are in `crossings`."""
+        return _first(self._gain_crossings(over), "the gain of the open loop is one at no frequency")
+
+    def phase_crossover_frequency(self, over: Range | None = None) -> Answer:
+        """Return the first frequency with L on the negative real axis (rad/s)."""
+        return _first(self._phase_crossings(over), "the open loop is real and negative at no frequency")
+
+    def peak_gain(self, over: Range | None = None) -> Answer:
+        """Return sup |L|."""
+        return self._magnitude.supremum(over)
+
+    def gain_at(self, frequency: fmpq) -> Answer:
+        """Return |L(j frequency)|."""
+        return self._magnitude.at(frequency)
+
+    def phase_at(self, frequency: fmpq) -> Answer:
+        """Return arg L(j frequency), followed from zero frequency (rad)."""
+        return phase_at(self.axis, frequency)
+
+
+def _first(crossings: Iterable[GainCrossing | PhaseCrossing], none: str) -> Answer:
+    found = least(Candidate(one.frequency, {}) for one in crossings if one.frequency.absent is None)
+    if found is not None:
+        return replace(found.value, at=None)
+    return Answer.nothing(none)

@@ -1,0 +1,224 @@
+"""Spots on the frequency axis, and exact signs of polynomials there.
+
+On the axis everything is a polynomial in x = omega^2 (times omega). A spot is a value of x in [0, infinity]: a rational
+(zero included), an irrational root of a polynomial with whole coefficients, or infinity. At each of them the sign of
+any other polynomial is decided exactly and a quotient of two is enclosed to any precision.
+
+Roots. FLINT isolates all complex roots of a square-free polynomial in disjoint balls; roots that are real have an
+imaginary part of exactly zero there. A ball X in which f' does not vanish holds exactly one root r, and for any m in X
+interval Newton gives r in m - f(m)/f'(X) (mean value theorem), so that the meet of both holds r again.
+
+Signs. For a root r of a square-free f and any p let g = gcd(f, p) and f = g h. g and h have no root in common and r is
+a root of one of them: refining until g or h is proved not to vanish at r decides whether p(r) = 0. If it is not zero,
+refining p(r) itself ends.
+"""
+
+from __future__ import annotations
+
+from typing import Literal, Protocol, cast
+
+from flint import acb, arb, fmpq, fmpq_poly, fmpz_poly
+
+from specgate.response.answers import Answer
+from specgate.systems.polynomials import order_at_origin, primitive
+from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.verdicts import Proof
+
+Sign = Literal[-1, 0, 1]
+
+_FIRST = 64
+_EXACT_FROM = 256
+"""Bits at which a polynomial that may vanish at a root is looked at by its greatest common divisor with the other."""
+
+_MOST = 16 * HIGHEST
+"""Bits beyond which even the sign of a number that is not zero is given up; no polynomial of sane size gets there."""
+
+
+class Spot(Protocol):
+    """A value of x = omega^2 in [0, infinity]."""
+
+    def sign(self, p: fmpq_poly) -> Sign:
+        """Return the sign of p(x), at infinity that of its limit (exact)."""
+
+    def enclose(self, bits: int) -> arb:
+        """Return a ball of about `bits` relative bits that holds x. Raises ValueError at infinity."""
+
+    def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
+        """Return p(x) / q(x), q(x) not zero; at infinity its limit, which has to be finite."""
+
+
+class Rational:
+    """A rational x >= 0."""
+
+    def __init__(self, x: fmpq) -> None:
+        self.x = x
+
+    def sign(self, p: fmpq_poly) -> Sign:
+        """Return the sign of p(x)."""
+        return sign_of(p(self.x))
+
+    def enclose(self, bits: int) -> arb:
+        """Return a ball that holds x."""
+        with working_precision(bits):
+            return arb(self.x)
+
+    def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
+        """Return p(x) / q(x), exactly."""
+        return Answer.of_exact(p(self.x) / q(self.x))
+
+
+class Infinity:
+    """The far end of the axis."""
+
+    def sign(self, p: fmpq_poly) -> Sign:
+        """Return the sign that p has for all large x."""
+        return sign_of(p.leading_coefficient()) if p else 0
+
+    def enclose(self, bits: int) -> arb:
+        """Raise: there is no ball about infinity."""
+        raise ValueError("infinity has no enclosure")
+
+    def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
+        """Return lim p/q. Raises ValueError where it is infinite."""
+        if p.degree() > q.degree():
+            raise ValueError("this quotient grows without limit")
+        if p.degree() < q.degree():
+            return Answer.of_exact(0)
+        return Answer.of_exact(p.leading_coefficient() / q.leading_coefficient())
+
+
+class Root:
+    """An irrational positive root of a square-free polynomial with whole coefficients."""
+
+    def __init__(self, polynomial: fmpz_poly, isolating: arb) -> None:
+        self._polynomial = polynomial
+        self._slope = polynomial.derivative()
+        self._ball = isolating
+        self._signs: dict[tuple[int, ...], Sign] = {}
+
+    def enclose(self, bits: int) -> arb:
+        """Return a ball of at least `bits` relative bits that holds the root; it only ever gets narrower."""
+        precision = bits + 16
+        while self._ball.rel_accuracy_bits() < bits:
+            if not self._narrowed(precision):
+                precision *= 2
+        return self._ball
+
+    def _narrowed(self, precision: int) -> bool:
+        """Meet the ball with one interval Newton step; return False where that does not halve it at least."""
+        ball = self._ball
+        with working_precision(precision):
+            slope = self._slope(ball)
+            middle = ball.mid()
+            if slope.contains(0):
+                return self._isolated(precision)
+            step = middle - self._polynomial(middle) / slope
+            met = ball.intersection(step)
+        if met.rad() * 2 > ball.rad():
+            return False
+        self._ball = met
+        return True
+
+    def _isolated(self, precision: int) -> bool:
+        """Isolate all roots anew, in a narrower ball: f' may vanish near the root."""
+        for root, _ in _complex_roots(self._polynomial, precision):
+            if root.imag.is_zero() and root.real.overlaps(self._ball) and root.real.rad() < self._ball.rad():
+                self._ball = root.real
+                return True
+        return False
+
+    def sign(self, p: fmpq_poly) -> Sign:
+        """Return the sign of p at the root."""
+        whole = p.numer()
+        key = tuple(int(c) for c in whole.coeffs())
+        if key not in self._signs:
+            self._signs[key] = self._sign(whole)
+        return self._signs[key]
+
+    def _sign(self, p: fmpz_poly) -> Sign:
+        bits = _FIRST
+        while bits <= _MOST:
+            found = self._sign_at(p, bits)
+            if found is not None:
+                return found
+            if bits == _EXACT_FROM and self._is_root_of(p):
+                return 0
+            bits *= 2
+        raise ArithmeticError("the sign of a number that is not zero could not be found")
+
+    def _sign_at(self, p: fmpz_poly, bits: int) -> Sign | None:
+        ball = self.enclose(bits)
+        with working_precision(bits + 16):
+            value = p(ball)
+            return 1 if value > 0 else -1 if value < 0 else 0 if value.is_zero() else None
+
+    def _is_root_of(self, p: fmpz_poly) -> bool:
+        common = self._polynomial.gcd(p)
+        if common.degree() < 1:
+            return False
+        rest = self._polynomial // common
+        bits = _EXACT_FROM
+        while bits <= _MOST:
+            if self._sign_at(rest, bits) is not None:
+                return True
+            if self._sign_at(common, bits) is not None:
+                return False
+            bits *= 2
+        raise ArithmeticError("two roots could not be told apart")
+
+    def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
+        """Return p / q at the root."""
+        if self.sign(p) == 0:
+            return Answer.of_exact(0)
+        above, below, factor = p.numer(), q.numer(), fmpq(q.denom(), p.denom())
+
+        def refine(bits: int) -> arb:
+            precision = bits + 16
+            while True:
+                ball = self.enclose(precision)
+                with working_precision(precision + 16):
+                    value = above(ball) / below(ball) * factor
+                if value.rel_accuracy_bits() >= bits:
+                    return value
+                precision *= 2
+
+        def against(limit: fmpq) -> Sign:
+            return cast("Sign", self.sign(p - q * limit) * self.sign(q))
+
+        return Answer(Proof.ENCLOSED, refine=refine, against=against)
+
+
+def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:
+    """Return the distinct positive roots of a polynomial that is not zero, in rising order; rational ones as such."""
+    whole = primitive(p.right_shift(order_at_origin(p)))
+    signs = [c > 0 for c in whole.coeffs() if c != 0]
+    if all(signs) or not any(signs):
+        return ()  # Descartes: no change of sign among the coefficients, no positive root
+    square_free = whole // whole.gcd(whole.derivative())
+    if square_free.degree() == 1:
+        return (Rational(fmpq(-square_free[0], square_free[1])),)
+    real = [root.real for root, _ in _complex_roots(square_free, _FIRST) if root.imag.is_zero() and root.real > 0]
+    return tuple(_spot(square_free, ball) for ball in sorted(real, key=lambda ball: ball.mid().fmpq()))
+
+
+def _spot(p: fmpz_poly, ball: arb) -> Spot:
+    """Return a root as what it is: lead * root is a whole number if it is rational (p has whole coefficients)."""
+    root = Root(p, ball)
+    lead = p.leading_coefficient()
+    bits = int((ball.abs_upper() * abs(lead)).upper().fmpq().ceil()).bit_length() + 8
+    with working_precision(2 * bits + 64):
+        nearest = (root.enclose(bits) * lead).unique_fmpz()
+    if nearest is not None and p(fmpq(nearest, lead)) == 0:
+        return Rational(fmpq(nearest, lead))
+    return root
+
+
+def _complex_roots(p: fmpz_poly, bits: int) -> list[tuple[acb, int]]:
+    with working_precision(bits):
+        # FLINT returns pairs with a multiplicity, its type stubs say otherwise.
+        return cast("list[tuple[acb, int]]", p.complex_roots())
+
+
+def sign_of(value: fmpq) -> Sign:
+    """Return the sign of a rational."""
+    return 1 if value > 0 else -1 if value < 0 else 0
