@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from math import factorial
@@ -114,7 +114,7 @@ def expand(numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq, bits: int) 
     scaled = numerator * size
     precision = bits + GUARD
     roots = certified_roots(denominator, precision) if denominator.degree() > 0 else ()
-    offset, drift = _at_origin(scaled, denominator)
+    offset, drift = at_origin(scaled, denominator)
     with working_precision(precision):
         top = acb_poly(scaled)
         modes = [
@@ -146,8 +146,8 @@ def _residues(top: acb_poly, roots: Sequence[Root], index: int) -> tuple[acb, ..
     return tuple(fold * taylor[count - 1 - j] / factorial(j) for j in range(count))
 
 
-def _at_origin(top: fmpq_poly, bottom: fmpq_poly) -> tuple[fmpq, tuple[fmpq, ...]]:
-    """Return the constant of y and the coefficients of t, t^2 ... that the poles at the origin give."""
+def at_origin(top: fmpq_poly, bottom: fmpq_poly) -> tuple[fmpq, tuple[fmpq, ...]]:
+    """Return the constant of the step response and the coefficients of t, t^2 ... that poles at the origin give it."""
     order = order_at_origin(bottom)
     rest = bottom.right_shift(order)
     series: list[fmpq] = []
@@ -171,3 +171,31 @@ def _rebased(mode: Mode, shift: arb) -> tuple[acb, ...]:
         return (mode.coefficients[0] * growth,)
     shifted = acb_poly(list(mode.coefficients))(acb_poly([shift, 1])) * growth
     return tuple(shifted[j] for j in range(len(mode.coefficients)))
+
+
+def expand_swinging(
+    numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq, frequency: Callable[[], arb], bits: int
+) -> Expansion:
+    """Expand size * numerator w^2 / (denominator s (s^2 + w^2)): the response to size * (1 - cos w t).
+
+    The fraction is coprime and proper, its denominator monic, with at most one root at the origin. `frequency` gives a
+    ball of w at the precision that is set; w is no root of any polynomial with rational coefficients, so that -w^2 is
+    apart from every pole. At the origin w^2 / (s^2 + w^2) is 1 up to s^2: offset and drift are rational.
+    """
+    scaled = numerator * size
+    precision = bits + GUARD
+    roots = certified_roots(denominator, precision) if denominator.degree() > 0 else ()
+    offset, drift = at_origin(scaled, denominator)
+    with working_precision(precision):
+        w = frequency()
+        swing = (Root(acb(0, w), 1), Root(acb(0, -w), 1))
+        every = (*roots, *swing)
+        top = acb_poly(scaled) * acb_poly([acb(w * w)])
+        modes = [
+            Mode(root.value, _residues(top, every, index))
+            for index, root in enumerate(every)
+            if not (root.value.is_zero() or root.value.imag < 0)
+        ]
+        if drift:
+            modes.append(Mode(acb(0), (acb(0), *(acb(arb(c)) for c in drift))))
+    return Expansion(offset, tuple(modes), precision)

@@ -13,7 +13,9 @@ class Pieces(Protocol):
     """y(t), t >= 0, analytic on each closed piece [kink(i), kink(i + 1)]; coherent SI, deviations from rest.
 
     All that is searched in such a response (extremes, settling, arrivals, masks, integrals) is searched by way of this
-    alone, so that a new kind of loop or input only has to say what its pieces are.
+    alone, so that a new kind of loop or input only has to say what its pieces are. The methods with a body say more
+    than the searches need at least: what is not told there leaves fewer answers exact, or a question open, but none
+    wrong. A class that names this one as its base inherits them.
     """
 
     @property
@@ -27,7 +29,8 @@ class Pieces(Protocol):
         """Return balls of y, y', y'', y''' over a ball of times inside the closed piece, one-sided at its ends.
 
         A ball of times of any width that lies inside the piece is allowed, and a part of the ball gives balls that are
-        no wider; for a narrow one `bits` more bits of precision make them as narrow as the ball of times allows.
+        no wider; for a narrow one `bits` more bits of precision make them as narrow as the ball of times allows. By
+        the rounding of its radius a ball may reach over an end of the piece: there the analytic continuation counts.
         """
 
     def settled_by(self, distance: fmpq) -> fmpq | None:
@@ -35,3 +38,41 @@ class Pieces(Protocol):
 
     def speed(self, index: int) -> float:
         """Return how fast the piece varies (rad/s), a hint of how finely to look: never part of a proof."""
+
+    def jump(self, index: int) -> fmpq | None:
+        """Return by how much y jumps at kink `index` (y(0+) for the first), exactly; None: not told exactly."""
+        return None
+
+    def continuous_from(self) -> fmpq | None:
+        """Return a time from which on y does not jump; None: not told. Asked only where pieces follow without end."""
+        return None
+
+    def start(self, index: int) -> tuple[fmpq, int] | None:
+        """Return a length over which the piece moves strictly one way from its kink on, and which way; None: not told.
+
+        Without it a slope that is exactly zero at a kink leaves a supremum there known to a small width only.
+        """
+        return None
+
+    def lasting(self) -> tuple[int, fmpq] | None:
+        """Return the sign that y - final has for good and a time from which on it has; None: it has none, or not told.
+
+        Where y is exactly its final value from some time on the sign is 0.
+        """
+        return None
+
+    def slow_by(self, rate: fmpq) -> fmpq | None:
+        """Return a time from which on |y'| <= rate is proved; None: none found."""
+        return None
+
+    def area(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
+        """Return a ball of the integral of y over a part of a piece; None: there is no closed form."""
+        return None
+
+    def square(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
+        """Return a ball of the integral of y^2 over a part of a piece; None: there is no closed form."""
+        return None
+
+    def rest(self, time: fmpq) -> tuple[fmpq, fmpq] | None:
+        """Return bounds of the integrals of |y| and of y^2 from `time` on, for a final value of zero; None: none."""
+        return None

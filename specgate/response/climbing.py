@@ -1,0 +1,214 @@
+"""The supremum of a derivative of a piecewise response over a stretch of time, and where it is taken.
+
+Best first: of all patches that are left the one whose hull reaches highest is looked at. A patch is done with if its
+hull is below a value that is known to be reached, if the function moves one way on it or is bent upward (its greatest
+value is at an end then: an end of the piece is a candidate of its own, any other belongs to a neighbour too, on which
+the function cannot fall away to both sides), or if it is bent downward and turns: then it holds one summit, which is
+kept. A patch that is not told apart from the best value by more than a small slack is kept as `blurred`.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from heapq import heappop, heappush
+
+from flint import arb, fmpq
+
+from specgate.response.passing import Instant, Where, Work
+from specgate.response.patches import LEVEL, LOOK, Ground, Patch
+from specgate.response.pieces import Pieces
+from specgate.response.turning import Zero, sign_at
+from specgate.terms.precision import working_precision
+
+_CLOSE = 512
+_FIRST = 64
+
+
+class Ceiling:
+    """Search for the supremum of sign * y^(order), order 0 or 1, above a value that is reached or approached."""
+
+    def __init__(self, ground: Ground, order: int, sign: int, floor: arb, slack: fmpq) -> None:
+        self._ground = ground
+        self._order = order
+        self._sign = sign
+        self._slack = arb(slack)
+        self._work = Work()
+        self._heap: list[tuple[float, int, Patch]] = []
+        self._count = 0
+        self.best = floor
+        self.found: list[Peak] = []
+        self.blurred: list[Patch] = []
+
+    def at(self, time: fmpq) -> None:
+        """Take up the value at an instant (just after it at a kink)."""
+        self._candidate(self._ground.index(time), time)
+
+    def over(self, since: fmpq, until: fmpq) -> None:
+        """Search a stretch of time, its ends and the kinks in it included. Raises OutOfWork.
+
+        Kinks are looked at from both sides where y may jump. A piece on which y rests is what it is at its begin.
+        """
+        for index, begin, end in self._ground.kinks(until):
+            if end is not None and end <= since:
+                continue
+            left, right = max(begin, since), until if end is None else min(end, until)
+            if begin < since or self._order > 0 or self._ground.pieces.jump(index) != 0:
+                self._candidate(index, left)
+            if not self._rests(index, begin, end):
+                self._candidate(index, right)
+            for root in self._ground.roots(index, begin, end, until):
+                near, far = max(root.left, since), min(root.right, until)
+                if near < far and not self._starts_one_way(root):
+                    whole = near == root.left and far == root.right
+                    self._push(root if whole else Patch(root.pieces, index, near, far))
+        self._search()
+
+    def _rests(self, index: int, begin: fmpq, end: fmpq | None) -> bool:
+        """Whether y is seen to be constant on a finite piece."""
+        return end is not None and all(
+            bool(low.is_zero() and high.is_zero())
+            for root in self._ground.roots(index, begin, end, None)
+            for low, high in (root.rough(1),)
+        )
+
+    def _starts_one_way(self, patch: Patch) -> bool:
+        """Whether a patch lies in a proved monotone start of y: its greatest value is at an end then."""
+        start = self._ground.start(patch.index)
+        if start is None or self._order != 0 or patch.right > start[0]:
+            return False
+        if start[1] * self._sign > 0:
+            self._candidate(patch.index, patch.right)
+        return True
+
+    def _candidate(self, index: int, time: fmpq) -> None:
+        """Take up a value at an end of a piece or of the stretch."""
+        peak = Peak(self._ground.pieces, self._order, self._sign, Instant(index, time))
+        height = peak.height(_FIRST)
+        self._raise(height)
+        if not height < self.best:
+            self.found.append(peak)
+
+    def _raise(self, height: arb) -> None:
+        low = height.lower()
+        if low > self.best:
+            self.best = low
+
+    def _push(self, patch: Patch) -> None:
+        low, high = patch.rough(self._order)
+        top = high if self._sign > 0 else -low
+        if top < self.best:
+            return
+        low, high = patch.hull(self._order)
+        top = high if self._sign > 0 else -low
+        if not top < self.best:
+            self._count += 1
+            heappush(self._heap, (-float(top) if top.is_finite() else float("-inf"), self._count, patch))
+
+    def _search(self) -> None:
+        while self._heap:
+            _, _, patch = heappop(self._heap)
+            self._work.spend()
+            low, high = patch.hull(self._order)
+            top = high if self._sign > 0 else -low
+            if top < self.best or self._one_way(patch):
+                continue
+            if self._domed(patch) and self._turns(patch):
+                continue
+            self._raise(self._sign * patch.middle[self._order])
+            with working_precision(LOOK):
+                near = bool(top - self._slack < self.best)
+            if near:
+                self.blurred.append(patch)
+                continue
+            for part in patch.parts:
+                self._push(part)
+
+    def _slopes(self, patch: Patch) -> tuple[arb, arb]:
+        low, high = patch.hull(self._order + 1)
+        return (low, high) if self._sign > 0 else (-high, -low)
+
+    def _one_way(self, patch: Patch) -> bool:
+        low, high = self._slopes(patch)
+        return bool(low > 0 or high < 0 or (low.is_zero() and high.is_zero()))
+
+    def _bends(self, patch: Patch) -> tuple[arb, arb]:
+        low, high = patch.hull(2) if self._order == 0 else patch.rough(3)
+        return (low, high) if self._sign > 0 else (-high, -low)
+
+    def _domed(self, patch: Patch) -> bool:
+        """Whether a patch is bent one way: upward it is done with, downward it may hold one summit."""
+        low, high = self._bends(patch)
+        return bool(low > 0 or high < 0)
+
+    def _turns(self, patch: Patch) -> bool:
+        """Keep the summit of a patch that is bent one way, if it has one; False: whether it has is not told."""
+        if self._bends(patch)[0] > 0:
+            return True
+        before, after = (
+            sign_at(patch.pieces, patch.index, self._order + 1, LEVEL, time, _CLOSE)
+            for time in (patch.left, patch.right)
+        )
+        if before is None or after is None:
+            return False
+        before, after = self._sign * before, self._sign * after
+        if before > 0 and after < 0:
+            ends = (patch.left, patch.right)
+            zero = Zero(patch.pieces, patch.index, self._order + 1, LEVEL, ends, rising=self._sign < 0)
+            peak = Peak(patch.pieces, self._order, self._sign, zero)
+            self._raise(peak.height(_FIRST))
+            self.found.append(peak)
+        return True
+
+
+@dataclass(frozen=True)
+class Peak:
+    """A place where sign * y^(order) may be greatest."""
+
+    pieces: Pieces
+    order: int
+    sign: int
+    where: Where
+
+    def height(self, bits: int) -> arb:
+        """Return sign * y^(order) there."""
+        return self.sign * self.value(bits)
+
+    def value(self, bits: int) -> arb:
+        """Return y^(order) there."""
+        if isinstance(self.where, Zero):
+            return self.where.value(bits)
+        jump = self.pieces.jump(0) if self.where.time == 0 and self.order == 0 else None
+        if jump is not None:
+            with working_precision(bits):
+                return arb(jump)
+        return value_at(self.pieces, self.where.index, self.order, self.where.time, bits)
+
+
+def value_at(pieces: Pieces, index: int, order: int, time: fmpq, bits: int, most: int = 4608) -> arb:
+    """Return a derivative at an instant of a piece, of relative radius 2^-bits where `most` bits reach it."""
+    precision = max(LOOK, bits + 32)
+    while True:
+        with working_precision(precision):
+            instant = arb(time)
+        value = pieces.derivatives(index, instant, precision)[order]
+        if value.rel_accuracy_bits() >= bits or value.is_zero() or 2 * precision > most:
+            return value
+        precision *= 2
+
+
+def tallest(peaks: Iterable[Peak], floor: arb, reached: arb, most: int) -> list[Peak]:
+    """Return the peaks that are not proved lower than another one, than the floor or than a value that is reached."""
+    left, bits = list(peaks), 64
+    while left and bits <= most:
+        heights = [peak.height(bits) for peak in left]
+        best = reached
+        for height in heights:
+            low = height.lower()
+            best = low if low > best else best
+        kept = [(peak, height) for peak, height in zip(left, heights, strict=True) if not height < best]
+        left = [peak for peak, height in kept if not height < floor]
+        if len(left) == 1 and kept[0][1] > floor:
+            break
+        bits *= 2
+    return left
