@@ -5,8 +5,7 @@ On the axis everything is a polynomial in x = omega^2 (times omega). A spot is a
 any other polynomial is decided exactly and a quotient of two is enclosed to any precision.
 
 Roots. FLINT isolates all complex roots of a square-free polynomial in disjoint balls; roots that are real have an
-imaginary part of exactly zero there. A ball X in which f' does not vanish holds exactly one root r, and for any m in X
-interval Newton gives r in m - f(m)/f'(X) (mean value theorem), so that the meet of both holds r again.
+imaginary part of exactly zero there. Each is then enclosed by itself to any precision (`newton`).
 
 Signs. For a root r of a square-free f and any p let g = gcd(f, p) and f = g h. g and h have no root in common and r is
 a root of one of them: refining until g or h is proved not to vanish at r decides whether p(r) = 0. If it is not zero,
@@ -19,6 +18,7 @@ from typing import Literal, Protocol, cast
 
 from flint import acb, arb, fmpq, fmpq_poly, fmpz_poly
 
+from specgate.frequency.newton import Function, Zero
 from specgate.response.answers import Answer
 from specgate.systems.polynomials import order_at_origin, primitive
 from specgate.terms.precision import HIGHEST, working_precision
@@ -92,40 +92,12 @@ class Root:
 
     def __init__(self, polynomial: fmpz_poly, isolating: arb) -> None:
         self._polynomial = polynomial
-        self._slope = polynomial.derivative()
-        self._ball = isolating
         self._signs: dict[tuple[int, ...], Sign] = {}
+        self._zero = Zero(_at(polynomial), _at(polynomial.derivative()), _clear(polynomial, isolating))
 
     def enclose(self, bits: int) -> arb:
         """Return a ball of at least `bits` relative bits that holds the root; it only ever gets narrower."""
-        precision = bits + 16
-        while self._ball.rel_accuracy_bits() < bits:
-            if not self._narrowed(precision):
-                precision *= 2
-        return self._ball
-
-    def _narrowed(self, precision: int) -> bool:
-        """Meet the ball with one interval Newton step; return False where that does not halve it at least."""
-        ball = self._ball
-        with working_precision(precision):
-            slope = self._slope(ball)
-            middle = ball.mid()
-            if slope.contains(0):
-                return self._isolated(precision)
-            step = middle - self._polynomial(middle) / slope
-            met = ball.intersection(step)
-        if met.rad() * 2 > ball.rad():
-            return False
-        self._ball = met
-        return True
-
-    def _isolated(self, precision: int) -> bool:
-        """Isolate all roots anew, in a narrower ball: f' may vanish near the root."""
-        for root, _ in _complex_roots(self._polynomial, precision):
-            if root.imag.is_zero() and root.real.overlaps(self._ball) and root.real.rad() < self._ball.rad():
-                self._ball = root.real
-                return True
-        return False
+        return self._zero.enclose(bits)
 
     def sign(self, p: fmpq_poly) -> Sign:
         """Return the sign of p at the root."""
@@ -211,6 +183,26 @@ def _spot(p: fmpz_poly, ball: arb) -> Spot:
     if nearest is not None and p(fmpq(nearest, lead)) == 0:
         return Rational(fmpq(nearest, lead))
     return root
+
+
+def _clear(p: fmpz_poly, isolating: arb) -> arb:
+    """Return the root in an isolating ball in one so narrow that p' does not vanish in it."""
+    slope, bits = p.derivative(), _FIRST
+    while True:
+        with working_precision(bits):
+            if not slope(isolating).contains(0):
+                return isolating
+        bits *= 2
+        roots = (root for root, _ in _complex_roots(p, bits))
+        isolating = next(root.real for root in roots if root.imag.is_zero() and root.real.overlaps(isolating))
+
+
+def _at(p: fmpz_poly) -> Function:
+    def value(x: arb, bits: int) -> arb:
+        with working_precision(bits):
+            return p(x)
+
+    return value
 
 
 def _complex_roots(p: fmpz_poly, bits: int) -> list[tuple[acb, int]]:
