@@ -8,6 +8,7 @@ from dataclasses import replace
 from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
 from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.wiring import subsystems_of
+from specgate.frequency.rational_loop import RationalLoop
 from specgate.measures.subjects import BreakSubject, LoopSubject
 from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, depends_on_pi, values
@@ -77,4 +78,5 @@ def _break(declared: Break, solution: LoopSolution, unsupported: str | None) -> 
     opened = solution.open_at(declared.at)
     if opened.algebraic_loop is not None:
         return BreakAnalysis(declared, Missing(opened.algebraic_loop.reason), opened)
-    return BreakAnalysis(declared, BreakSubject(opened.transfer, Answer.of_truth(opened.stable)), opened)
+    loop = RationalLoop(opened.transfer, opened.stable)
+    return BreakAnalysis(declared, BreakSubject(opened.transfer, Answer.of_truth(opened.stable), loop), opened)

@@ -28,13 +28,17 @@ def arguments(criterion: Criterion, measure: Measure, values: Values, span: fmpq
     span: high minus low of the signal's span, for `% of span`.
     """
     given = criterion.arguments
-    band, time = given.get("band"), given.get("time")
+    band, time, frequency = given.get("band"), given.get("time"), given.get("frequency")
     return Arguments(
         band=None if band is None else Band(number(band, values, span), relative_to_change(band) is not None),
         lower=_fraction(given.get("from"), ALWAYS.lower, values),
         upper=_fraction(given.get("to"), ALWAYS.upper, values),
         absolute=measure.unit is UnitRule.CHANGE and not any(map(_relative, criterion.limit.values)),
         time=None if time is None else evaluate(time, values),
+        frequency=None if frequency is None else evaluate(frequency, values),
+        over=None
+        if criterion.over is None
+        else (evaluate(criterion.over[0], values), evaluate(criterion.over[1], values)),
         measure=measure.name,
     )
 
@@ -43,7 +47,8 @@ def said(criterion: Criterion) -> Mapping[str, str]:
     """Return the arguments in words, by name; defaults that were not written included."""
     written = {name: _said(name, value) for name, value in criterion.arguments.items()}
     defaults = ALWAYS_SAID["rise_time"] if criterion.measure == "rise_time" else {}
-    return {**defaults, **written}
+    over = {} if criterion.over is None else {"over": " to ".join(end.as_written for end in criterion.over)}
+    return {**defaults, **written, **over}
 
 
 def number(value: Value, values: Values, span: fmpq | None = None) -> fmpq:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from flint import fmpq_poly
 
 from specgate.analysis.analyses import Missing, ResponseAnalysis
+from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.subjects import ResponseSubject
 from specgate.project.parameters import Values, evaluate
 from specgate.project.signals import LoopSignals
@@ -43,6 +44,7 @@ def response_analysis(
         StepResponse(channel.transfer.numerator, channel.transfer.denominator, size),
         error if isinstance(error, Absent) else StepResponse(error.numerator, error.denominator, size),
         _void(channel),
+        RationalGain(channel.transfer),
     )
     return ResponseAnalysis(response, unit, subject, channel)
 

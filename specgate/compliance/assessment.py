@@ -14,7 +14,7 @@ from specgate.project.types import Claim, Criterion, Method, Requirement
 from specgate.response.answers import Answer
 from specgate.terms.places import Place
 from specgate.terms.records import record
-from specgate.terms.unit import Unit
+from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Standing, Verdict
 
 Side = Literal["safe", "unsafe", "none"]
@@ -107,7 +107,7 @@ class CriterionAssessment:
 
     reading: the measure in coherent SI. limits, limits_again: with the fixed decimal for pi, and with more digits.
     unit: in which it is printed (None: a whole number, yes or no). scale: what a number is small against, in that unit.
-    beside: a second value printed next to the first.
+    beside: a second value printed next to the first. signal: the unit of the signal that is looked at.
     """
 
     criterion: Criterion
@@ -123,6 +123,7 @@ class CriterionAssessment:
     reason: str | None = None
     beside: Reading | None = None
     unanswered: tuple[Unanswered, ...] = ()
+    signal: Unit = ONE
 
     @property
     def least(self) -> Reading | None:

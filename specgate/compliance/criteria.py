@@ -20,7 +20,7 @@ from specgate.response.answers import Answer
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Standing, Verdict
 
-_KEPT = {"over": "a restricted range (`over`)", "cases": "a list of cases (`cases`)", "mask": "a mask"}
+_KEPT = {"cases": "a list of cases (`cases`)", "mask": "a mask"}
 _LATER = "not answered by this version"
 
 
@@ -55,6 +55,7 @@ class Criteria:
             reason=comparison.reason,
             beside=_reading(nominal, again, measure.beside, deciding) if measure.beside else None,
             unanswered=unanswered,
+            signal=nominal.signal,
         )
 
     def _unit(self, asked: Asked) -> Unit | None:

@@ -1,10 +1,10 @@
 """The first frequency at which a gain falls by a fixed irrational factor, without rounding the factor.
 
-Let h(x) = above/below over its value at 0, and c = 10^(-3/10) the square of the factor, which is irrational and so met
-at no rational x. For rationals c1 < c < c2 < 1: h is continuous from h(0) = 1 on (poles are only passed above every
-level), so it falls to c2, if ever, no later than to c, and to c no later than to c1: the first zero of h - c lies between
-the first zeros of h - c2 and h - c1. If h never falls to c2, it never falls to c. Where the slope does not vanish between
-the two, they close in on a simple zero, which interval Newton encloses; c is a ball there, as narrow as is asked for.
+Let h(x) = above/below over its value at 0, and c = 10^(-3/10) the square of the factor. For rationals c1 < c < c2 < 1:
+h is continuous from h(0) = 1 on (poles are only passed above every level), so it falls to c2, if ever, no later than to
+c, and to c no later than to c1: the first zero of h - c lies between the first zeros of h - c2 and h - c1. If h never
+falls to c2, it never falls to c. Where the slope does not vanish between the two, they hold one simple zero, which
+interval Newton encloses; c is a ball there, as narrow as is asked for.
 """
 
 from __future__ import annotations
@@ -68,4 +68,3 @@ def _difference(pair: tuple[fmpq_poly, fmpq_poly], x: arb, bits: int) -> arb:
     with working_precision(bits):
         first, second = (p.numer()(x) / p.denom() for p in pair)
         return first - factor * second
-

@@ -9,11 +9,13 @@ from flint import fmpq
 from specgate.frequency.axis import AxisFunction
 from specgate.frequency.fall import first_fall
 from specgate.frequency.magnitude import Magnitude
+from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
 from specgate.frequency.questions import Range
 from specgate.frequency.scale import Continuous
 from specgate.frequency.values import root_of
 from specgate.response.answers import Answer
+from specgate.response.questions import Mask
 from specgate.systems.stability import classify
 from specgate.systems.transfer import TransferFunction
 
@@ -67,3 +69,7 @@ class RationalGain:
     def phase_at(self, frequency: fmpq) -> Answer:
         """Return the phase, followed from zero frequency (rad)."""
         return self._missing or phase_at(self.axis, frequency)
+
+    def within(self, mask: Mask) -> Answer:
+        """Return whether the gain stays inside a mask over frequency; `at` names the first violation."""
+        return self._missing or inside(self.axis.above, self.axis.below, mask)

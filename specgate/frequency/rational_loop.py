@@ -23,12 +23,14 @@ from specgate.frequency.axis import AxisFunction, along_the_axis
 from specgate.frequency.choose import Candidate, least
 from specgate.frequency.magnitude import Magnitude, origin, roots, wronskian
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
+from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
 from specgate.frequency.questions import Crossing, Direction, Range
 from specgate.frequency.scale import Continuous, Scale, X, ends, within
 from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots
 from specgate.frequency.values import reciprocal
 from specgate.response.answers import Answer
+from specgate.response.questions import Mask
 from specgate.systems.transfer import TransferFunction
 
 UNSTABLE = "the closed loop is not stable as it is: there is nothing that a margin could be left to"
@@ -197,6 +199,10 @@ class RationalLoop:
     def phase_at(self, frequency: fmpq) -> Answer:
         """Return arg L(j frequency), followed from zero frequency (rad)."""
         return phase_at(self.axis, frequency)
+
+    def within(self, mask: Mask) -> Answer:
+        """Return whether |L| stays inside a mask over frequency; `at` names the first violation."""
+        return inside(self.axis.above, self.axis.below, mask)
 
 
 def _first(crossings: Iterable[GainCrossing | PhaseCrossing], none: str) -> Answer:

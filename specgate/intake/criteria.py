@@ -24,7 +24,7 @@ _LIMITS: tuple[Literal["at_most", "at_least", "between", "within", "equals"], ..
     "within",
     "equals",
 )
-_KEPT = ("mask", "over", "cases")
+_KEPT = ("mask", "cases")
 _CLAIM = re.compile(r"[-+]?(?P<whole>[0-9]*)(?:\.(?P<part>[0-9]*))?(?:[eE](?P<power>[+-]?[0-9]+))?(?:\s.*)?", re.DOTALL)
 
 
@@ -40,17 +40,23 @@ def criterion(node: Node, place: Spot, context: Context) -> Criterion | None:
     arguments = {name: reader.value(body.get(name)) for name in _ARGUMENTS if body.get(name) is not None}
     given = {name: value for name, value in arguments.items() if value is not None}
     kept = _kept(body, reader)
+    written_over = body.get("over")
+    over = reader.pair(written_over)
     grounds = body.get("basis")
     rests_on = basis(grounds, context) if grounds is not None else None
     if measure is None or measure not in MEASURES or subject is None or limit is None or kept is None:
         return None
     if len(given) < len(arguments) or (grounds is not None and rests_on is None):
         return None
+    if written_over is not None and over is None:
+        return None
     if rests_on is not None and not estimates_one(rests_on, (measure,), context):
         return None
     if not _rising(given, place, context):
         return None
-    return Criterion(subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept)
+    return Criterion(
+        subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept, over
+    )
 
 
 def _rising(arguments: Mapping[str, Value], place: Spot, context: Context) -> bool:
@@ -134,7 +140,7 @@ def _limit_nodes(kind: str, node: Table, value: Node) -> Sequence[Node | None]:
 
 def _kept(node: Table, reader: Reader) -> dict[str, object] | None:
     """Keep what is answered later; names and quantities in it must be right now."""
-    mask, over, evaluate = node.get("mask"), node.get("over"), table(node.get("evaluate"))
+    mask, evaluate = node.get("mask"), table(node.get("evaluate"))
     if isinstance(mask, Text) and mask.value.strip() not in reader.context.masks:
         reader.context.unknown("mask", mask.value.strip(), sorted(reader.context.masks), mask.spot.place)
         return None
@@ -142,8 +148,6 @@ def _kept(node: Table, reader: Reader) -> dict[str, object] | None:
         if isinstance(case, Text) and case.value != "all" and case.value not in reader.context.cases:
             reader.context.unknown("case", case.value, sorted(reader.context.cases), case.spot.place)
             return None
-    if over is not None and reader.pair(over) is None:
-        return None
     kept = {key: as_kept(value) for key in _KEPT if (value := node.get(key)) is not None}
     return {**kept, "evaluate": as_kept(evaluate)} if evaluate is not None else kept
 

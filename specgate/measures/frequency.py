@@ -2,11 +2,29 @@
 
 from __future__ import annotations
 
-from specgate.measures.measure import Argument, Measure, UnitRule
+from collections.abc import Callable
+from typing import Any
+
+from flint import fmpq
+
+from specgate.frequency.questions import Gain, OpenLoop
+from specgate.measures.measure import Argument, Arguments, Measure, Reader, UnitRule
+from specgate.measures.reading import over_frequency
+from specgate.response.answers import Answer
 
 _FREQUENCY = (Argument("frequency", "frequency", "frequency at which it is read", required=True),)
 _RANGE = (Argument("over", "range", "range of frequencies that is looked at; all unless given"),)
 _ROOTS = "certified roots of exact polynomials in the square of the frequency"
+
+
+def _at(ask: Callable[[Any, fmpq], Answer]) -> Reader:
+    def asked(found: OpenLoop | Gain, arguments: Arguments) -> Answer:
+        if arguments.frequency is None:
+            raise ValueError("a frequency is wanted")
+        return ask(found, arguments.frequency)
+
+    return over_frequency(asked)
+
 
 ROWS = (
     Measure(
@@ -14,10 +32,12 @@ ROWS = (
         title="Crossover frequency",
         subjects=("break",),
         unit=UnitRule.RADIAN_PER_SECOND,
-        definition="The frequency at which the magnitude of the open loop passes through one (0 dB).",
-        absent_when="the magnitude never passes through one",
+        definition="The first frequency at which the magnitude of the open loop is one (0 dB); all are in `crossings`.",
+        absent_when="the magnitude is one at no frequency",
         source="IEC 60050-351:2013, section 351-46 (gain crossover angular frequency)",
         method=_ROOTS,
+        read=over_frequency(lambda loop, given: loop.crossover_frequency(given.over)),
+        always=True,
         arguments=_RANGE,
     ),
     Measure(
@@ -25,10 +45,14 @@ ROWS = (
         title="Phase crossover frequency",
         subjects=("break",),
         unit=UnitRule.RADIAN_PER_SECOND,
-        definition="The frequency at which the phase of the open loop passes through -180 deg.",
-        absent_when="the phase never passes through -180 deg",
+        definition=(
+            "The first frequency, zero included, at which the open loop is real and negative (a phase of -180 deg); "
+            "all are in `crossings`."
+        ),
+        absent_when="the open loop is real and negative at no frequency",
         source="IEC 60050-351:2013, section 351-46 (phase crossover angular frequency)",
         method=_ROOTS,
+        read=over_frequency(lambda loop, given: loop.phase_crossover_frequency(given.over)),
         arguments=_RANGE,
     ),
     Measure(
@@ -40,6 +64,7 @@ ROWS = (
         absent_when="a pole lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
         method="exact square, enclosed level",
+        read=_at(lambda found, frequency: found.gain_at(frequency)),
         arguments=_FREQUENCY,
         signed=True,
     ),
@@ -55,6 +80,7 @@ ROWS = (
         absent_when="a pole or zero lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
         method="enclosed: sum over certified poles and zeros",
+        read=_at(lambda found, frequency: found.phase_at(frequency)),
         arguments=_FREQUENCY,
         signed=True,
     ),
@@ -67,6 +93,7 @@ ROWS = (
         absent_when="the magnitude grows without bound (a pole on the imaginary axis)",
         source="specgate's own definition",
         method=_ROOTS,
+        read=over_frequency(lambda loop, given: loop.peak_gain(given.over)),
         arguments=_RANGE,
         signed=True,
     ),
@@ -79,6 +106,7 @@ ROWS = (
         absent_when="the gain at zero frequency is zero or infinite, or never falls so far",
         source="common practice; the constant and the first crossing fixed by specgate",
         method=_ROOTS,
+        read=over_frequency(lambda gain, _: gain.bandwidth()),
     ),
     Measure(
         name="resonance_peak",
@@ -89,6 +117,7 @@ ROWS = (
         absent_when="the gain at zero frequency is zero or infinite, or a pole lies on the imaginary axis",
         source="common practice",
         method=_ROOTS,
+        read=over_frequency(lambda gain, given: gain.resonance_peak(given.over)),
         arguments=_RANGE,
     ),
 )

@@ -2,14 +2,37 @@
 
 from __future__ import annotations
 
-from specgate.measures.measure import Measure, UnitRule
+from collections.abc import Callable
+
+from specgate.frequency.questions import OpenLoop
+from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
+from specgate.measures.reading import over_frequency
+from specgate.response.answers import Answer
 
 _NO_MARGIN = "the nominal loop is unstable; a margin that nothing uses up is infinite and meets every at_least"
+_ALWAYS = ("gain_margin", "phase_margin", "delay_margin", "sensitivity_peak")
 _CROSSINGS = "exact crossing polynomials in the square of the frequency, certified roots"
 
 
-def _margin(name: str, title: str, unit: UnitRule, definition: str, source: str) -> Measure:
-    return Measure(name, title, ("break",), unit, definition, _NO_MARGIN, source, _CROSSINGS)
+_RANGE = (Argument("over", "range", "range of frequencies that is looked at; all unless given"),)
+
+
+def _margin(
+    name: str, title: str, unit: UnitRule, definition: str, source: str, ask: Callable[[OpenLoop, Arguments], Answer]
+) -> Measure:
+    return Measure(
+        name,
+        title,
+        ("break",),
+        unit,
+        definition,
+        _NO_MARGIN,
+        source,
+        _CROSSINGS,
+        read=over_frequency(ask),
+        arguments=_RANGE,
+        always=name in _ALWAYS,
+    )
 
 
 _GAIN = "IEC 60050-351:2013, 351-46-07 (gain margin), over all crossings"
@@ -22,6 +45,7 @@ ROWS = (
         UnitRule.DECIBEL,
         "The smallest change of the loop gain, up or down, that makes the loop unstable; positive, with its direction.",
         _GAIN,
+        lambda loop, given: loop.gain_margin(given.over),
     ),
     _margin(
         "gain_margin_up",
@@ -29,6 +53,7 @@ ROWS = (
         UnitRule.DECIBEL,
         "The smallest rise of the loop gain that makes the loop unstable.",
         _GAIN,
+        lambda loop, given: loop.gain_margin_up(given.over),
     ),
     _margin(
         "gain_margin_down",
@@ -36,6 +61,7 @@ ROWS = (
         UnitRule.DECIBEL,
         "The smallest fall of the loop gain that makes the loop unstable; positive.",
         _GAIN,
+        lambda loop, given: loop.gain_margin_down(given.over),
     ),
     _margin(
         "phase_margin",
@@ -43,6 +69,7 @@ ROWS = (
         UnitRule.DEGREE,
         "The smallest change of phase, lag or lead, that makes the loop unstable; positive, with its direction.",
         _PHASE,
+        lambda loop, given: loop.phase_margin(given.over),
     ),
     _margin(
         "phase_margin_lag",
@@ -50,6 +77,7 @@ ROWS = (
         UnitRule.DEGREE,
         "The smallest added phase lag that makes the loop unstable.",
         _PHASE,
+        lambda loop, given: loop.phase_margin_lag(given.over),
     ),
     _margin(
         "phase_margin_lead",
@@ -57,6 +85,7 @@ ROWS = (
         UnitRule.DEGREE,
         "The smallest added phase lead that makes the loop unstable.",
         _PHASE,
+        lambda loop, given: loop.phase_margin_lead(given.over),
     ),
     _margin(
         "delay_margin",
@@ -65,6 +94,7 @@ ROWS = (
         "The smallest added dead time that makes the loop unstable; zero where the loop gain does not fall below one "
         "at high frequency.",
         "specgate's own definition; the least phase lag over frequency at the gain crossings",
+        lambda loop, given: loop.delay_margin(given.over),
     ),
     _margin(
         "least_distance",
@@ -72,6 +102,7 @@ ROWS = (
         UnitRule.RATIO,
         "The least distance of the open-loop frequency response from the point -1.",
         "reciprocal of the sensitivity peak",
+        lambda loop, given: loop.least_distance(given.over),
     ),
     _margin(
         "sensitivity_peak",
@@ -79,5 +110,6 @@ ROWS = (
         UnitRule.RATIO,
         "The greatest gain over frequency of 1/(1+L), by which the loop amplifies what disturbs it.",
         "Skogestad, Postlethwaite: Multivariable Feedback Control, 2nd ed. 2005, section 2.4",
+        lambda loop, given: loop.sensitivity_peak(given.over),
     ),
 )

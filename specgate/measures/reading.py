@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from typing import Any
 
 from flint import arb, fmpq
 
 from specgate.measures.measure import Arguments, Reader
-from specgate.measures.subjects import ResponseSubject
+from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.response.answers import Absent, Answer
 from specgate.response.step import StepResponse
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
+
+_LATER = "this kind of loop is not answered over frequency by this version"
 
 StepReader = Callable[[StepResponse, Arguments], Answer]
 
@@ -33,6 +36,21 @@ def in_time(read: StepReader) -> Reader:
         if isinstance(subject.response, Absent):
             return missing(subject.response)
         return read(subject.response, arguments)
+
+    return reader
+
+
+def over_frequency(ask: Callable[[Any, Arguments], Answer]) -> Reader:
+    """Make a reader of a break or a response from a question to what each is over frequency.
+
+    A mode that grows unseen inside a channel (`void`) leaves no measure of a response.
+    """
+
+    def reader(subject: BreakSubject | ResponseSubject, arguments: Arguments) -> Answer:
+        if isinstance(subject, ResponseSubject) and subject.void is not None:
+            return missing(subject.void)
+        found = subject.loop if isinstance(subject, BreakSubject) else subject.gain
+        return Answer.undecided(_LATER) if found is None else ask(found, arguments)
 
     return reader
 

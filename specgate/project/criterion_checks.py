@@ -220,9 +220,24 @@ class CriterionCheck:
             wants(value, _SECOND, self.values)
             if evaluate(value, self.values) < 0:
                 raise Fault(faults.VALUE, f"`{value.as_written}`: time counts from the input on", value.place)
-        elif kind in ("frequency", "range"):
-            refuse_written_rate(value, self.values)
-            wants(value, _FREQUENCY, self.values)
+        elif kind == "frequency":
+            self._frequency(value)
+
+    def over(self, ends: tuple[Value, Value]) -> None:
+        """Check a range of frequencies. Raises Fault."""
+        for value in ends:
+            self._frequency(value)
+        if evaluate(ends[0], self.values) > evaluate(ends[1], self.values):
+            written = ", ".join(value.as_written for value in ends)
+            raise Fault(
+                faults.VALUE, f"nothing lies in the range [{written}]: the lower end comes first", ends[0].place
+            )
+
+    def _frequency(self, value: Value) -> None:
+        refuse_written_rate(value, self.values)
+        wants(value, _FREQUENCY, self.values)
+        if evaluate(value, self.values) < 0:
+            raise Fault(faults.VALUE, f"`{value.as_written}`: a frequency is not negative", value.place)
 
     def _band(self, value: Value) -> None:
         refuse_ambiguous(value, self.unit)
@@ -284,6 +299,9 @@ def _check_criterion(
     for name, value in criterion.arguments.items():
         with found.noted(requirement=requirement):
             check.argument(name, value)
+    if criterion.over is not None:
+        with found.noted(requirement=requirement):
+            check.over(criterion.over)
     if criterion.basis is not None and criterion.basis.claimed is not None:
         with found.noted(requirement=requirement):
             check.counted(criterion.basis.claimed.value)

@@ -352,7 +352,10 @@ class Basis:
 
 @record
 class Criterion:
-    """A measure with a limit. `arguments` holds band, from, to, time, frequency … by their names."""
+    """A measure with a limit. `arguments` holds band, from, to, time, frequency … by their names.
+
+    over: the range of frequencies that is looked at; None for all of them.
+    """
 
     subject: Subject
     measure: str
@@ -362,6 +365,7 @@ class Criterion:
     basis: Basis | None = None
     evaluate: str | None = None
     kept: Mapping[str, object] = field(default_factory=dict)
+    over: tuple[Value, Value] | None = None
 
 
 @record

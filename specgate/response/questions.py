@@ -19,12 +19,14 @@ class Mask:
     """Limits that are straight lines between corners, coherent SI.
 
     Touching complies; at a jump the looser limit holds; past its last corner a limit ends, unless `forever`, and before
-    its first one there is none.
+    its first one there is none. logarithmic: over frequency only: the lines are straight in dB over the logarithm of
+    frequency, as limits in dB are drawn (a gain proportional to a power of frequency).
     """
 
     upper: Points = ()
     lower: Points = ()
     forever: bool = False
+    logarithmic: bool = False
 
 
 class TimeResponse(Protocol):

@@ -11,14 +11,16 @@ from specgate.analysis.analyses import BreakAnalysis, LoopAnalysis, Missing, Res
 from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID
 from specgate.compliance.readings import Reading
 from specgate.compliance.units import default_unit, smallness
+from specgate.frequency.questions import OpenLoop
 from specgate.measures.measure import Arguments, Measure, Reader, SubjectKind
 from specgate.measures.subjects import ResponseSubject, Subject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Response
 from specgate.response.answers import Absent
-from specgate.review.printing import coefficients, poles, result
+from specgate.review.printing import RADIAN_PER_SECOND, coefficients, place_of, poles, result
 from specgate.review.types import (
     BreakReview,
+    CrossingReview,
     Curve,
     HiddenMode,
     LoopReview,
@@ -28,9 +30,13 @@ from specgate.review.types import (
 from specgate.systems.roots import certified_roots
 from specgate.terms.enclosed import printed_short
 from specgate.terms.unit import ONE, Unit
+from specgate.terms.units import UnitTable
 
 _SHOWN = 128
 """Bits at which poles are certified for printing."""
+
+CROSSED = {"gain": UnitTable.standard().parse("deg"), "phase": UnitTable.standard().parse("dB")}
+"""What is left at a crossing is a phase where the gain is one, and a gain where the phase is -180 deg."""
 
 _POINTS = 256
 """Points of a curve: two pixels each in the widest plot; the format allows 400."""
@@ -64,13 +70,29 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
 def _break(found: BreakAnalysis, again: BreakAnalysis) -> BreakReview:
     if isinstance(found.subject, Missing):
         return BreakReview(found.declared.at, (), reason=found.subject.reason)
-    opened = found.subject.open_loop
+    opened, loop = found.subject.open_loop, found.subject.loop
+    others = None if isinstance(again.subject, Missing) else again.subject.loop
     return BreakReview(
         at=found.declared.at,
         measures=_measures("break", found.subject, again.subject, ONE),
         numerator=coefficients(opened.numerator),
         denominator=coefficients(opened.denominator),
+        crossings=() if loop is None or others is None else tuple(_crossings(loop, others)),
     )
+
+
+def _crossings(loop: OpenLoop, again: OpenLoop) -> Iterator[CrossingReview]:
+    """Print all crossings of a break; where more digits of pi change how many there are, none is told for certain."""
+    first = loop.crossings()
+    second = first if again is loop else again.crossings()
+    for one, other in zip(first, second, strict=True) if len(first) == len(second) else ():
+        unit = CROSSED[one.kind]
+        yield CrossingReview(
+            one.kind,
+            place_of(Reading(one.frequency, other.frequency), RADIAN_PER_SECOND),
+            place_of(Reading(one.margin, other.margin), unit),
+            one.direction,
+        )
 
 
 def _reason(found: LoopAnalysis) -> str | None:
@@ -144,7 +166,7 @@ def _measure(row: Measure, subject: Subject, again: Subject, signal: Unit) -> Me
     unit = default_unit(row, arguments, signal)
     readings = [_read(row, reader, subject, again, arguments) for reader in (row.read, row.beside)]
     assert readings[0] is not None
-    found = result(readings[0], unit, smallness(row, arguments, subject, unit), readings[1])
+    found = result(readings[0], unit, smallness(row, arguments, subject, unit), readings[1], signal)
     return MeasureResult(**vars(found), measure=row.name, arguments=ALWAYS_SAID.get(row.name))
 
 

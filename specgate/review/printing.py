@@ -3,19 +3,24 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from typing import Any
+from dataclasses import replace
+from typing import Any, cast
 
 from flint import fmpq, fmpq_poly
 
 from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer, Fragile
-from specgate.review.types import Amount, Location, Pole, Result
+from specgate.review.types import Amount, Beside, Location, Pole, Result
 from specgate.systems.roots import Root
 from specgate.terms.decimals import power_of_ten
 from specgate.terms.enclosed import DIGITS, Enclosed, ends, in_unit, magnitude, printed, printed_exact, to_float
 from specgate.terms.places import Place
-from specgate.terms.unit import Unit
+from specgate.terms.unit import ONE, Unit
+from specgate.terms.units import UnitTable
 from specgate.terms.verdicts import Proof
+
+SECOND = UnitTable.standard().parse("s")
+RADIAN_PER_SECOND = UnitTable.standard().parse("rad/s")
 
 
 def location(place: Place, message: str | None = None) -> Location:
@@ -84,8 +89,44 @@ def plain_number(answer: Answer, scale: fmpq | None = None) -> float | None:
         return None
 
 
-def result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Reading | None = None) -> Result:
-    """Print what was read. unit None: a whole number, yes or no. scale: what it is small against, in that unit."""
+def result(
+    reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Reading | None = None, signal: Unit = ONE
+) -> Result:
+    """Print what was read. unit None: a whole number, yes or no. scale: what it is small against, in that unit.
+
+    signal: the unit of the signal that is looked at, for what is printed beside the result.
+    """
+    found = _result(reading, unit, scale, beside)
+    return found if reading.settled.at is None else replace(found, at=_beside(reading, signal))
+
+
+def _beside(reading: Reading, signal: Unit) -> Beside:
+    units = {"frequency": RADIAN_PER_SECOND, "time": SECOND, "value": signal, "limit": signal}
+    first, second = reading.answer.at or {}, reading.again.at or {}
+    found = {
+        name: one if isinstance(one, str) else place_of(_paired(one, second.get(name)), units[name])
+        for name, one in first.items()
+    }
+    return Beside(**cast("dict[str, Any]", found))
+
+
+def _paired(first: Answer, second: Answer | str | None) -> Reading:
+    """Return a reading of something that was found twice; where it was only found once it is no more exact for that."""
+    return Reading(first, second if isinstance(second, Answer) else first)
+
+
+def place_of(reading: Reading, unit: Unit) -> Amount:
+    """Print where something is; one without limit as such."""
+    answer = reading.settled
+    if answer.absent is not None:
+        return Amount(None, unit.symbol, infinite=True if answer.absent.infinite else None)
+    try:
+        return amount(reading, unit)
+    except OverflowError:
+        return Amount(None, unit.symbol)
+
+
+def _result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Reading | None) -> Result:
     answer = reading.settled
     if answer.absent is not None:
         infinite = True if answer.absent.infinite else None

@@ -109,7 +109,7 @@ def _criterion(assessed: CriterionAssessment, project: Project) -> CriterionRevi
         limit=_limit(assessed),
         evaluate=criterion.evaluate or project.evaluate,
         verdict=assessed.verdict.value,
-        result=result(assessed.reading, assessed.unit, assessed.scale, assessed.beside),
+        result=result(assessed.reading, assessed.unit, assessed.scale, assessed.beside, assessed.signal),
         reserve=_reserve(assessed),
         basis=_basis(assessed.audit),
         location=location(criterion.place),

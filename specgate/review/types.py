@@ -41,6 +41,21 @@ class Amount:
 
 
 @record
+class Beside:
+    """What belongs to a value: where it is taken, and which way it is used up.
+
+    frequency: rad/s. time: s. value, limit: of the first violation of a mask, in the signal's unit.
+    direction: `up`, `down` (gain), `lag` or `lead` (phase).
+    """
+
+    frequency: Amount | None = _omitted()
+    time: Amount | None = _omitted()
+    value: Amount | None = _omitted()
+    limit: Amount | None = _omitted()
+    direction: str | None = _omitted()
+
+
+@record
 class Result:
     """A value as printed (12 significant digits) with its proved bounds, or the reason why there is none."""
 
@@ -55,6 +70,7 @@ class Result:
     fragile: str | None = field(default=None, metadata={"omit": True, "said_for": "settling_time"})
     """What a small change would do to the value. Said of every settling time in a list of measures, if only as null."""
     signed: float | None = _omitted()
+    at: Beside | None = _omitted()
 
 
 @record
@@ -102,6 +118,19 @@ class ResponseReview:
 
 
 @record
+class CrossingReview:
+    """Where the open loop passes the unit circle (`gain`) or the negative real axis (`phase`), and what is left there.
+
+    margin: a phase (deg) or a factor of the gain (dB), used up in `direction`.
+    """
+
+    kind: str
+    frequency: Amount
+    margin: Amount
+    direction: str
+
+
+@record
 class BreakReview:
     """A loop opened at a break."""
 
@@ -109,7 +138,7 @@ class BreakReview:
     measures: tuple[MeasureResult, ...]
     numerator: tuple[str, ...] = ()
     denominator: tuple[str, ...] = ()
-    crossings: tuple[Mapping[str, Any], ...] = ()
+    crossings: tuple[CrossingReview, ...] = ()
     reason: str | None = _omitted()
 
 

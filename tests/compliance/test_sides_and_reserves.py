@@ -106,7 +106,7 @@ def test_what_is_left_to_a_limit(judge: Judge, criterion: str, value: int, relat
     [
         "loop: loop, measure: stable, equals: true",
         "break: loop.b, measure: loop_type, equals: 0",
-        "break: loop.b, measure: gain_margin, at_least: 6 dB",
+        "break: loop.b, measure: crossover_frequency, at_least: 1 rad/s",
     ],
 )
 def test_no_reserve_where_there_is_no_distance(judge: Judge, criterion: str) -> None:

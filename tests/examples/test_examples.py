@@ -185,7 +185,10 @@ class TestExampleOfTheFormat:
         for path, wanted in self.wanted["measures"].items():
             found = by_measure(sheets[path])
             for measure, value in wanted.items():
-                assert found[measure].value == pytest.approx(value, rel=1e-11, abs=1e-13), (path, measure)
+                if value == "infinite":
+                    assert found[measure].infinite, (path, measure)
+                else:
+                    assert found[measure].value == pytest.approx(value, rel=1e-11, abs=1e-13), (path, measure)
 
     def test_poles(self) -> None:
         found = [(pole.real, pole.imaginary) for pole in self.result.loops["gate_position"].poles]
@@ -208,4 +211,3 @@ class TestExampleOfTheFormat:
     def test_findings(self) -> None:
         found = findings(self.result)
         assert all(item in found for item in self.wanted["findings"])
-        assert any(f.rule == "not-answered-yet" and f.requirement == "GH-SYS-033" for f in self.result.findings)

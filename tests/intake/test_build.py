@@ -167,8 +167,9 @@ def test_what_a_criterion_keeps(whole: Project) -> None:
         {"cases": ["hot"]},
         {"evaluate": {"probability": "99 %", "confidence": "95 %", "seed": 7}},
         {"mask": "gust_mask"},
-        {"over": ["0.1 rad/s", "10 rad/s"]},
     ]
+    ranges = [[end.as_written for end in criterion.over] for criterion in criteria if criterion.over is not None]
+    assert ranges == [["0.1 rad/s", "10 rad/s"]]
     assert list(criteria[2].arguments) == ["from", "to"]
 
 

@@ -9,18 +9,18 @@ ANSWERED = {
     "response": """
         final_value initial_value maximum_value minimum_value value_at peak_deviation overshoot undershoot
         settling_time rise_time delay_time peak_time steady_state_error poles_at_origin zeros_at_origin
+        bandwidth resonance_peak gain_at phase_at
     """,
-    "break": "loop_type position_constant velocity_constant acceleration_constant",
+    "break": """
+        loop_type position_constant velocity_constant acceleration_constant
+        gain_margin gain_margin_up gain_margin_down phase_margin phase_margin_lag phase_margin_lead delay_margin
+        least_distance sensitivity_peak crossover_frequency phase_crossover_frequency gain_at phase_at peak_gain
+    """,
     "loop": "stable hidden_modes damping_ratio natural_frequency decay_rate",
 }
 LATER = {
     "response": """
         deviation_after within_mask peak_rate integral_absolute_error integral_squared_error standard_deviation
-        bandwidth resonance_peak gain_at phase_at
-    """,
-    "break": """
-        gain_margin gain_margin_up gain_margin_down phase_margin phase_margin_lag phase_margin_lead delay_margin
-        least_distance sensitivity_peak crossover_frequency phase_crossover_frequency gain_at phase_at peak_gain
     """,
 }
 ON_EVERY_STEP = """

@@ -158,11 +158,21 @@ def test_basis(tree: dict[str, Any]) -> None:
     assert separation["found"] == pytest.approx(0.082, abs=5e-4)
 
 
-def test_what_this_version_does_not_answer_is_open_and_said(tree: dict[str, Any]) -> None:
+def test_crossings(tree: dict[str, Any]) -> None:
+    (crossing,) = tree["loops"]["gate_position"]["breaks"]["main"]["crossings"]
+    assert (crossing["kind"], crossing["direction"]) == ("gain", "lag")
+    assert crossing["frequency"] == {"value": pytest.approx(5.36670, abs=5e-5), "unit": "rad/s"}
+    assert crossing["margin"] == {"value": pytest.approx(60.9131, abs=5e-4), "unit": "deg"}
+
+
+def test_margins(tree: dict[str, Any]) -> None:
     found = tree["requirements"]["GH-SYS-033"]
-    assert (found["verdict"], [one["verdict"] for one in found["criteria"]]) == ("open", ["open", "open"])
-    said = [one for one in tree["findings"] if one["rule"] == "not-answered-yet"]
-    assert sum(one.get("requirement") == "GH-SYS-033" for one in said) == 2
+    assert (found["verdict"], [one["verdict"] for one in found["criteria"]]) == ("compliant", ["compliant"] * 2)
+    gain, phase = (one["result"] for one in found["criteria"])
+    assert holds({"value": None, "infinite": True}, gain)
+    assert phase["value"] == pytest.approx(60.9, abs=0.05)
+    assert phase["lower"] < phase["value"] <= phase["upper"]
+    assert phase["at"]["direction"] == "lag"
 
 
 def test_findings_gate_and_definitions(tree: dict[str, Any]) -> None:
@@ -171,7 +181,6 @@ def test_findings_gate_and_definitions(tree: dict[str, Any]) -> None:
         ("approximation-out-of-range", "GH-SYS-031"),
         ("requirement-not-met", "GH-STK-004"),
         ("requirement-not-met", "GH-SYS-031"),
-        ("requirement-open", "GH-SYS-033"),
     ]
     assert tree["gate"]["outcome"] == "hold"
     used = {"settling_time", "second_order_settling", "dominant_pair", *(one["rule"] for one in tree["findings"])}

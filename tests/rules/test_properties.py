@@ -59,7 +59,7 @@ def test_restating_findings_follow_the_policy_and_never_hold_by_themselves(held:
             basis: {{approximation: first_order_settling, claimed: 4.0 s}}
           R3:
             text: It shall.
-            criterion: {{break: loop.b, measure: gain_margin, at_least: 6 dB}}
+            criterion: {{break: loop.b, measure: loop_type, equals: 0, evaluate: worst_case}}
         gate: {{hold_on: [{held}]}}
         """)
     )
