@@ -39,22 +39,29 @@ class Missing:
 
 @record
 class ResponseAnalysis:
-    """A declared response. unit: of the signal that is looked at."""
+    """A declared response. unit: of the signal that is looked at.
+
+    channels: from each input that is driven. origin: what the response is computed from, to be compared; None where
+    nothing is. improper: it would hold an impulse, so that there is none.
+    """
 
     response: project_types.Response
     unit: Unit
     subject: ResponseSubject | Missing
-    channel: Channel | None = None
+    channels: tuple[Channel, ...] = ()
+    origin: object = None
+    improper: bool = False
+
+    @property
+    def channel(self) -> Channel | None:
+        """The channel, where there is a single one."""
+        return self.channels[0] if len(self.channels) == 1 else None
 
     @cached_property
     def features(self) -> Features | None:
-        """What approximations look at; None where there is no response to look at."""
-        return None if isinstance(self.subject, Missing) else Features(self.subject)
-
-    @property
-    def improper(self) -> bool:
-        """Whether the channel has more zeros than poles, so that no step response exists."""
-        return self.channel is not None and not self.channel.transfer.proper
+        """What approximations look at; None where there is no response to look at, or none of the kind they are for."""
+        subject = self.subject
+        return None if isinstance(subject, Missing) or subject.beyond is not None else Features(subject)
 
 
 @record

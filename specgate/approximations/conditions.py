@@ -42,6 +42,16 @@ SETTLES = Condition(
 """That the response has a final value at all, decided exactly."""
 
 
+OF_STEP = Condition(
+    key="step",
+    name="what is approximated",
+    source="derived",
+    required="the response of a rational transfer function, continuous in time, to a single step",
+    find=lambda _, __, ___: words("it is", True),
+)
+"""What every row is derived for; responses of another kind have no features to look at, and never get this far."""
+
+
 def _no_zeros(features: Features, _: Arguments, __: fmpq | None) -> Found:
     return count(len(features.zeros), not features.zeros)
 

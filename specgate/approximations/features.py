@@ -21,6 +21,7 @@ _PICKED_AT = 256
 class Features:
     """Poles, zeros and what follows from them, of the reduced channel of a response; each is computed once.
 
+    Only of a response with a rational channel that is driven by a single step: `ResponseSubject.beyond` is None.
     Figures are answers: exact where they are rational, refinable balls else (coherent SI).
     """
 
@@ -30,7 +31,10 @@ class Features:
     @cached_property
     def channel(self) -> TransferFunction:
         """The channel from input to signal with common factors cancelled; denominator monic."""
-        return self.subject.channel.reduced()
+        channel = self.subject.channel
+        if isinstance(channel, Absent):
+            raise ValueError("approximations look at responses that have a rational channel")
+        return channel.reduced()
 
     @property
     def hidden_instability(self) -> Absent | None:

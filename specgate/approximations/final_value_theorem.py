@@ -22,7 +22,10 @@ from specgate.response.step import StepResponse
 
 def _asked(features: Features, arguments: Arguments) -> StepResponse | Absent:
     """Return the response whose steady value is asked for: the signal, or the error."""
-    return features.subject.error if arguments.measure == "steady_state_error" else features.subject.response
+    asked = features.subject.error if arguments.measure == "steady_state_error" else features.subject.response
+    if isinstance(asked, StepResponse | Absent):
+        return asked
+    return Absent("it is no step response of a rational transfer function", proved=False)
 
 
 def _limit(features: Features, arguments: Arguments) -> Answer:

@@ -12,6 +12,7 @@ from dataclasses import replace
 from flint import arb, fmpq
 
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
+from specgate.approximations.conditions import OF_STEP
 from specgate.approximations.features import Features
 from specgate.approximations.figures import negative, smallest
 from specgate.approximations.table import APPROXIMATIONS, chain, conditions
@@ -73,6 +74,26 @@ def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
     audited = replace(started, conditions=tuple(_audited(row, matter, policy)))
     audited = _evaluated(audited, row, matter)
     return _offered(_stood(audited, matter), matter, policy)
+
+
+def audit_beyond(basis: Basis, beyond: str, reading: Reading, values: Values, unit: Unit) -> Audit:
+    """Audit an approximation of a response of a kind that none is derived for. Raises Fault."""
+    claim = basis.claimed
+    condition = AuditedCondition(basis.chain[-1], OF_STEP, None, Found(beyond, Trilean.NO))
+    answer = reading.settled
+    known = answer.absent is None and answer.truth is None
+    return Audit(
+        "approximation",
+        Standing.OUT_OF_RANGE,
+        basis.place,
+        condition_words(condition),
+        unit if claim is None else claim_unit(claim, unit),
+        basis.chain,
+        claim,
+        None if claim is None else evaluate(claim.value, values),
+        conditions=(condition,),
+        instead=Instead("computed", answer if known else None),
+    )
 
 
 # --- 1: does it apply ---------------------------------------------------------------------------------------

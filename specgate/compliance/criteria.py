@@ -8,12 +8,13 @@ from specgate.analysis.analyses import Analyses, Missing
 from specgate.approximations.table import LATER
 from specgate.compliance.asking import Asked, ask
 from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
-from specgate.compliance.audit import Matter, audit
+from specgate.compliance.audit import Matter, audit, audit_beyond
 from specgate.compliance.compare import Comparison, compare
 from specgate.compliance.readings import PI_DECIDES, Reading
 from specgate.compliance.thresholds import Policy
 from specgate.compliance.units import default_unit, limit_unit, smallness
 from specgate.measures.measure import Measure, Reader
+from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Basis, Criterion, Project
 from specgate.response.answers import Answer
@@ -88,6 +89,9 @@ class Criteria:
         if basis.kind == "evidence":
             reason = f"the evidence {basis.evidence} is not judged by this version"
             return Audit("evidence", Standing.INCONCLUSIVE, basis.place, reason)
+        subject = nominal.subject
+        if isinstance(subject, ResponseSubject) and subject.beyond is not None:
+            return audit_beyond(basis, subject.beyond, reading, nominal.study.values, unit)
         features, precise = nominal.features, again.features
         if features is None or precise is None:
             reason = nominal.subject.reason if isinstance(nominal.subject, Missing) else "it is no response"

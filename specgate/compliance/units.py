@@ -12,7 +12,7 @@ from specgate.measures.subjects import ResponseSubject
 from specgate.project.parameters import Values
 from specgate.project.types import Limit
 from specgate.response.answers import Absent
-from specgate.response.step import StepResponse
+from specgate.response.questions import TimeResponse
 from specgate.terms.enclosed import ends, rounded
 from specgate.terms.expressions import Name, literal_unit
 from specgate.terms.unit import Unit
@@ -80,7 +80,7 @@ def smallness(measure: Measure, arguments: Arguments, subject: object, unit: Uni
     return None if size is None else size / unit.si_factor
 
 
-def _size(response: StepResponse) -> fmpq | None:
+def _size(response: TimeResponse) -> fmpq | None:
     final = response.final_value()
     if final.exact is not None and final.exact != 0:
         return abs(final.exact)

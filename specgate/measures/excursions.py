@@ -7,7 +7,7 @@ from flint import fmpq
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.reading import affine, change, in_time, no_change, positive_part
 from specgate.response.answers import Answer
-from specgate.response.step import StepResponse
+from specgate.response.questions import TimeResponse
 
 _NO_DIRECTION = ("there is no direction of change to overshoot in", "ask for peak_deviation, or limit both extremes")
 
@@ -17,7 +17,7 @@ def _excursion(value: Answer, direction: int, floor: fmpq, unit: fmpq) -> Answer
     return positive_part(affine(value, direction / unit, -floor / unit))
 
 
-def _overshoot(response: StepResponse, arguments: Arguments) -> Answer:
+def _overshoot(response: TimeResponse, arguments: Arguments) -> Answer:
     final = change(response)
     if isinstance(final, Answer):
         return final
@@ -28,7 +28,7 @@ def _overshoot(response: StepResponse, arguments: Arguments) -> Answer:
     return _excursion(extreme.value, direction, size, fmpq(1) if arguments.absolute else size)
 
 
-def _undershoot(response: StepResponse, arguments: Arguments) -> Answer:
+def _undershoot(response: TimeResponse, arguments: Arguments) -> Answer:
     final = change(response)
     if isinstance(final, Answer):
         return final

@@ -3,16 +3,21 @@
 from __future__ import annotations
 
 from specgate.measures.measure import Arguments, Measure, UnitRule
+from specgate.measures.reading import missing
 from specgate.measures.subjects import ResponseSubject
-from specgate.response.answers import Answer
+from specgate.response.answers import Absent, Answer
 from specgate.systems.polynomials import order_at_origin
 
 
 def _poles(subject: ResponseSubject, _: Arguments) -> Answer:
+    if isinstance(subject.channel, Absent):
+        return missing(subject.channel)
     return Answer.of_exact(order_at_origin(subject.channel.reduced().denominator))
 
 
 def _zeros(subject: ResponseSubject, _: Arguments) -> Answer:
+    if isinstance(subject.channel, Absent):
+        return missing(subject.channel)
     numerator = subject.channel.reduced().numerator
     if not numerator:
         return Answer.nothing("the signal does not react to this input at all")

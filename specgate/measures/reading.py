@@ -10,13 +10,13 @@ from flint import arb, fmpq
 from specgate.measures.measure import Arguments, Reader
 from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.response.answers import Absent, Answer
-from specgate.response.step import StepResponse
+from specgate.response.questions import TimeResponse
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 
 _LATER = "this kind of loop is not answered over frequency by this version"
 
-StepReader = Callable[[StepResponse, Arguments], Answer]
+TimeReader = Callable[[TimeResponse, Arguments], Answer]
 
 
 def missing(absent: Absent) -> Answer:
@@ -24,7 +24,7 @@ def missing(absent: Absent) -> Answer:
     return Answer(Proof.EXACT if absent.proved else Proof.ESTIMATED, absent=absent)
 
 
-def in_time(read: StepReader) -> Reader:
+def in_time(read: TimeReader) -> Reader:
     """Make a reader of a response subject from one of its response in time.
 
     A mode that grows unseen inside the channel (`void`) leaves no measure over time.
@@ -55,7 +55,7 @@ def over_frequency(ask: Callable[[Any, Arguments], Answer]) -> Reader:
     return reader
 
 
-def change(response: StepResponse) -> fmpq | Answer:
+def change(response: TimeResponse) -> fmpq | Answer:
     """Return the change from the value before the step to the final value, or the answer why there is none."""
     final = response.final_value()
     return final if final.exact is None else final.exact

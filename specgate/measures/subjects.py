@@ -6,7 +6,8 @@ from flint import fmpq
 
 from specgate.frequency.questions import Gain, OpenLoop
 from specgate.response.answers import Absent, Answer
-from specgate.response.step import StepResponse
+from specgate.response.inputs import Input
+from specgate.response.questions import TimeResponse
 from specgate.systems.solution import LoopSolution
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
@@ -14,22 +15,33 @@ from specgate.terms.records import record
 
 @record
 class ResponseSubject:
-    """One input of a loop to one of its signals, driven by a step of `size` (SI).
+    """The inputs of a loop that are driven, as one signal answers them.
 
-    channel:  transfer function from input to signal as the wiring gives it (not reduced).
+    channel:  transfer function from input to signal as the wiring gives it (not reduced), or why there is no single
+              one.
+    size:     of a step (SI); 1 where the input is not a single step.
     response: the response in time of the reduced channel, deviations from rest, size included.
     error:    response of reference minus signal, or why there is none (no common dimension).
     gain:     the channel over frequency; None where this version does not answer that.
     void:     why no measure over time may be read although the reduced channel would give one (an unstable
               mode hidden on the path from input to signal); None where there is no such reason.
+    inputs:   what is driven, and how.
+    beyond:   why formulas for step responses of rational transfer functions say nothing of this one; None: they may.
     """
 
-    channel: TransferFunction
+    channel: TransferFunction | Absent
     size: fmpq
-    response: StepResponse | Absent
-    error: StepResponse | Absent
+    response: TimeResponse | Absent
+    error: TimeResponse | Absent
     void: Absent | None = None
     gain: Gain | None = None
+    inputs: tuple[Input, ...] = ()
+    beyond: str | None = None
+
+    @property
+    def kind(self) -> str:
+        """The kind of the input, `several` for several at once."""
+        return "step" if not self.inputs else self.inputs[0].kind if len(self.inputs) == 1 else "several"
 
 
 @record

@@ -7,10 +7,10 @@ from flint import fmpq
 from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
 from specgate.measures.reading import change, difference, in_time, no_change
 from specgate.response.answers import Answer
-from specgate.response.step import StepResponse
+from specgate.response.questions import TimeResponse
 
 
-def _settling_time(response: StepResponse, arguments: Arguments) -> Answer:
+def _settling_time(response: TimeResponse, arguments: Arguments) -> Answer:
     band = arguments.band
     if band is None:
         raise ValueError("settling_time needs the argument `band`")
@@ -24,7 +24,7 @@ def _settling_time(response: StepResponse, arguments: Arguments) -> Answer:
     return response.settling(band.size * abs(final))
 
 
-def _arrival(response: StepResponse, fraction: fmpq) -> Answer:
+def _arrival(response: TimeResponse, fraction: fmpq) -> Answer:
     """Return the first time at which the fraction of the change is reached."""
     final = change(response)
     if isinstance(final, Answer):
@@ -34,17 +34,17 @@ def _arrival(response: StepResponse, fraction: fmpq) -> Answer:
     return response.first_arrival(final * fraction)
 
 
-def _rise_time(response: StepResponse, arguments: Arguments) -> Answer:
+def _rise_time(response: TimeResponse, arguments: Arguments) -> Answer:
     if not 0 < arguments.lower < arguments.upper < 1:
         raise ValueError("rise time needs 0 % < from < to < 100 %")
     return difference(_arrival(response, arguments.upper), _arrival(response, arguments.lower))
 
 
-def _delay_time(response: StepResponse, _: Arguments) -> Answer:
+def _delay_time(response: TimeResponse, _: Arguments) -> Answer:
     return _arrival(response, fmpq(1, 2))
 
 
-def _peak_time(response: StepResponse, _: Arguments) -> Answer:
+def _peak_time(response: TimeResponse, _: Arguments) -> Answer:
     final = change(response)
     if isinstance(final, Answer):
         return final

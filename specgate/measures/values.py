@@ -5,12 +5,12 @@ from __future__ import annotations
 from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
 from specgate.measures.reading import in_time
 from specgate.response.answers import Answer
-from specgate.response.step import StepResponse
+from specgate.response.questions import TimeResponse
 
 _UNSETTLED = "the response does not settle"
 
 
-def _value_at(response: StepResponse, arguments: Arguments) -> Answer:
+def _value_at(response: TimeResponse, arguments: Arguments) -> Answer:
     time = arguments.time
     if time is None:
         raise ValueError("value_at needs the argument `time`")

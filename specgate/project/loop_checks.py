@@ -8,6 +8,7 @@ from flint import fmpq
 
 from specgate.project import faults
 from specgate.project.blocks import BuiltBlock
+from specgate.project.excitations import check_excitation, check_together
 from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, evaluate
 from specgate.project.percent import refuse_ambiguous
@@ -51,6 +52,7 @@ def check_loop(signals: LoopSignals, blocks: Mapping[str, BuiltBlock], found: Fa
     for response in loop.responses.values():
         with found.noted(loop=loop.name, response=response.name):
             _check_reference(response, signals)
+            check_together(response)
         for excitation in response.excitations:
             _check_excitation(excitation, signals, found, response.name)
     if len(found.findings) == before and set(project.subsystems) == set(blocks):
@@ -81,6 +83,8 @@ def _check_excitation(excitation: Excitation, signals: LoopSignals, found: Fault
             _refuse_decibel(value)
             if name in _NOT_ZERO and evaluate(value, signals.values) == 0:
                 raise Fault(faults.VALUE, f"`{value.as_written}`: an input of zero drives nothing", value.place)
+    with found.noted(loop=signals.loop.name, response=response):
+        check_excitation(excitation, signals.values)
 
 
 def _check_rest(value: Value, unit: Unit, values: Values) -> None:

@@ -165,15 +165,12 @@ class Drawn:
 
     def response(self, response: Response) -> str | None:
         """Say why a response is not answered, or return None."""
-        if len(response.excitations) != 1:
-            return "several inputs at once are not answered by this version"
-        if response.excitations[0].kind != "step":
-            return f"the input `{response.excitations[0].kind}` is not answered by this version"
-        source = response.excitations[0].source
         seen = [response.to]
         if response.reference is not None and ("signal", response.reference) in self.arcs:
             seen.append(response.reference)
-        return next((reason for to in seen if (reason := self._between(source, to)) is not None), None)
+        sources = dict.fromkeys(one.source for one in response.excitations)
+        reasons = (self._between(source, to) for source in sources for to in seen)
+        return next((reason for reason in reasons if reason is not None), None)
 
     def opened(self, opened: Break) -> str | None:
         """Say why a break is not answered, or return None."""

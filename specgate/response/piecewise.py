@@ -24,7 +24,9 @@ _UNSETTLED = "the greatest value of a response that does not settle is not searc
 _KINKS = 4000
 """Kinks at which a jump is looked for where it is not told that there are no more."""
 
-_JUMPS = "whether the response jumps at a kink is not told"
+JUMPS = "the response jumps: its rate is without limit"
+
+_UNTOLD = "whether the response jumps at a kink is not told"
 
 
 class PiecewiseResponse:
@@ -153,13 +155,12 @@ class PiecewiseResponse:
         smooth = self.pieces.continuous_from()
         for index, begin, _ in self._ground.kinks(smooth):
             if index >= _KINKS:
-                return Extreme.undecided(_JUMPS)
+                return Extreme.undecided(_UNTOLD)
             jumps = self._jumps(index, begin)
             if jumps is None:
-                return Extreme.undecided(_JUMPS)
+                return Extreme.undecided(_UNTOLD)
             if jumps:
-                reason = "the response jumps: its rate is without limit"
-                return Extreme(Answer.nothing(reason, infinite=True), Answer.of_exact(begin))
+                return Extreme(Answer.nothing(JUMPS, infinite=True), Answer.of_exact(begin))
         return None
 
     def _jumps(self, index: int, begin: fmpq) -> bool | None:

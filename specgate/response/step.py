@@ -7,13 +7,19 @@ from functools import cached_property
 from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Answer
+from specgate.response.areas import LASTING
 from specgate.response.course import Course
 from specgate.response.curve import points as curve_points
 from specgate.response.curve import settled_window, unsettled_window
 from specgate.response.extremes import Extreme, greater, mirrored
+from specgate.response.piecewise import JUMPS, PiecewiseResponse
+from specgate.response.questions import Mask
 from specgate.response.settling import first_arrival, settling
+from specgate.response.superposed import Superposed
 from specgate.response.supremum import highest
 from specgate.response.unsettled import unsettled_extreme
+from specgate.response.waves import StepWave
+from specgate.systems.energy import energy
 from specgate.systems.roots import Root, certified_roots
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
@@ -137,6 +143,42 @@ class StepResponse:
         if not self._moves or (isinstance(time, fmpq) and time == 0):
             return Answer.of_exact(self._jump).enclose(bits)
         return self._course.deviation.value_at(time, bits)
+
+    @cached_property
+    def _in_pieces(self) -> PiecewiseResponse:
+        """The same response as a single piece, for what the search for one piece is not asked."""
+        return PiecewiseResponse(Superposed([StepWave(self.numerator, self.denominator, self.size, fmpq(0))]))
+
+    def deviation_after(self, time: fmpq) -> Extreme:
+        """Return sup over t >= time of |y(t) - final|, and where it is."""
+        return self._in_pieces.deviation_after(time)
+
+    def peak_rate(self) -> Extreme:
+        """Return sup |dy/dt| over t > 0, infinite where y jumps, and when it is first taken."""
+        return self._rate
+
+    @cached_property
+    def _rate(self) -> Extreme:
+        if self._jump != 0:
+            return Extreme(Answer.nothing(JUMPS, infinite=True), Answer.of_exact(0))
+        return StepResponse(self.numerator * fmpq_poly([0, 1]), self.denominator, self.size).peak_deviation()
+
+    def within(self, mask: Mask) -> Answer:
+        """Return whether y stays inside; `at` has `time`, `value` and `limit` of the first violation (an infimum)."""
+        return self._in_pieces.within(mask)
+
+    def absolute_integral(self) -> Answer:
+        """Return the integral of |y| over t > 0, or the reason why there is none."""
+        return self._in_pieces.absolute_integral()
+
+    def squared_integral(self) -> Answer:
+        """Return the integral of y^2 over t > 0, exactly, or the reason why there is none."""
+        final = self.final_value()
+        if final.exact is None:
+            return final
+        if final.exact != 0:
+            return Answer.nothing(LASTING)
+        return Answer.of_exact(self.size * self.size * energy(self.numerator.right_shift(1), self.denominator))
 
     def curve(self, points: int = 400) -> tuple[tuple[fmpq, arb], ...]:
         """Return at most `points` pairs (time in s, ball of y) for drawing, in order of time, from t = 0 (y(0+)) on.

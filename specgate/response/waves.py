@@ -151,7 +151,8 @@ def _without_origin(modes: Iterable[Mode]) -> tuple[Mode, ...]:
 
 def negative(expansion: Expansion) -> Expansion:
     """Return the expansion with the opposite sign."""
-    modes = tuple(Mode(mode.pole, tuple(-c for c in mode.coefficients)) for mode in expansion.modes)
+    with working_precision(expansion.bits):
+        modes = tuple(Mode(mode.pole, tuple(-c for c in mode.coefficients)) for mode in expansion.modes)
     return Expansion(-expansion.offset, modes, expansion.bits)
 
 

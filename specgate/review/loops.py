@@ -103,10 +103,10 @@ def _reason(found: LoopAnalysis) -> str | None:
 
 def _hidden(found: LoopAnalysis) -> Iterator[HiddenMode]:
     for name, response in found.responses.items():
-        channel = response.channel
-        if channel is not None and channel.hidden.degree() > 0:
-            roots = poles(certified_roots(channel.hidden, _SHOWN))
-            yield HiddenMode(name, coefficients(channel.hidden), not channel.hides_instability, roots)
+        for channel in response.channels:
+            if channel.hidden.degree() > 0:
+                roots = poles(certified_roots(channel.hidden, _SHOWN))
+                yield HiddenMode(name, coefficients(channel.hidden), not channel.hides_instability, roots)
 
 
 def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) -> ResponseReview:

@@ -24,8 +24,8 @@ def check(facts: Facts) -> Iterator[Finding]:
     """Report decaying modes that a response hides, and unstable ones beside its path."""
     for loop in facts.analyses.loops.values():
         for response in loop.responses.values():
-            if response.channel is not None:
-                yield from _of_response(loop, response, response.channel)
+            for channel in response.channels:
+                yield from _of_response(loop, response, channel)
 
 
 def _of_response(loop: LoopAnalysis, response: ResponseAnalysis, channel: Channel) -> Iterator[Finding]:

@@ -23,8 +23,7 @@ def check(facts: Facts) -> Iterator[Finding]:
     """Report every response that hides a mode which does not decay."""
     for loop in facts.analyses.loops.values():
         for name, response in loop.responses.items():
-            channel = response.channel
-            if channel is not None and channel.hides_instability:
+            for channel in (one for one in response.channels if one.hides_instability):
                 signals = dict.fromkeys(s for one in channel.components if not one.stable for s in one.signals)
                 yield Finding(
                     rule=NAME,

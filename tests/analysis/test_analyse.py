@@ -86,9 +86,9 @@ def test_what_is_wired_and_what_is_missing(read: Read) -> None:
     assert loop.subsystems == ("regulator", "drive")
     assert isinstance(loop.breaks["main"].subject, BreakSubject)
     ramped = loop.responses["ramped"].subject
-    assert isinstance(ramped, Missing)
-    assert ramped.later
-    assert not ramped.proved
+    assert isinstance(ramped, ResponseSubject)
+    assert ramped.kind == "ramp"
+    assert ramped.beyond == "the input is ramp"
     assert loop.responses["follow"].unit.symbol == "m"
 
 

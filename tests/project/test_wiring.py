@@ -203,10 +203,9 @@ def test_a_sampled_block_is_not_approximated(project: ProjectOf) -> None:
     assert "`trim` is a sampled model" in made.responses["follow"]
 
 
-def test_other_inputs_and_breaks_are_not_answered(project: ProjectOf) -> None:
-    changed = text().replace("input: step, size: 5 mm}\n      shown", "input: ramp, slope: 5 mm/s}\n      shown")
-    made = loop(project(changed.replace("main: place", "main: {at: place, into: volt}")))
-    assert made.responses == {"follow": "the input `ramp` is not answered by this version"}
+def test_breaks_of_one_use_are_not_answered(project: ProjectOf) -> None:
+    made = loop(project(text().replace("main: place", "main: {at: place, into: volt}")))
+    assert made.responses == {}
     assert list(made.breaks) == ["main"]
     assert made.unsupported is None
 
