@@ -21,6 +21,13 @@ def quotient(above: Answer, below: Answer) -> Answer:
     return combined(lambda x, y: x / y, above, below)
 
 
+def product(first: Answer, second: Answer) -> Answer:
+    """Return first * second, exact where both are."""
+    if first.exact is not None and second.exact is not None:
+        return Answer.of_exact(first.exact * second.exact)
+    return combined(lambda x, y: x * y, first, second)
+
+
 def root(square: Answer) -> Answer:
     """Return the square root, exact where it is rational."""
     if square.exact is not None:

@@ -6,7 +6,14 @@ from collections.abc import Iterable, Iterator, Mapping
 
 from specgate.analysis.analyses import Analyses
 from specgate.approximations.table import APPROXIMATIONS
-from specgate.compliance.assessment import Assessment, CriterionAssessment, MethodAssessment, Unanswered
+from specgate.compliance.assessment import (
+    Assessment,
+    CriterionAssessment,
+    MethodAssessment,
+    Unanswered,
+    worst_standing,
+)
+from specgate.compliance.assumptions import Assumptions
 from specgate.compliance.compare import worst
 from specgate.compliance.criteria import Criteria
 from specgate.compliance.methods import conclude
@@ -27,9 +34,15 @@ class Ruling:
     due: bool = True
 
 
-def assess(project: Project, analyses: Analyses, graph: Graph) -> Mapping[str, Assessment]:
-    """Judge every requirement; the result is in the order of the files."""
-    criteria = Criteria(project, analyses, policy(project, analyses.nominal.values))
+def assess(
+    project: Project, analyses: Analyses, graph: Graph, assumptions: Assumptions | None = None
+) -> Mapping[str, Assessment]:
+    """Judge every requirement; the result is in the order of the files.
+
+    assumptions: what responses rest on, where the caller looks at it too.
+    """
+    assumed = assumptions or Assumptions(project, analyses)
+    criteria = Criteria(project, analyses, policy(project, analyses.nominal.values), assumed)
     done: dict[str, Assessment] = {}
     for name in graph.order:
         done[name] = _Judging(project, criteria, graph, done).requirement(project.requirements[name])
@@ -187,8 +200,8 @@ def _later(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ruling:
 
 
 def _standing(criteria: Iterable[CriterionAssessment]) -> Standing | None:
-    order = (Standing.SOUND, Standing.INCONCLUSIVE, Standing.OUT_OF_RANGE)
-    return max((one.audit.standing for one in criteria), key=order.index, default=None)
+    standings = [one.standing for one in criteria]
+    return worst_standing(standings) if standings else None
 
 
 def _listed(names: Iterable[str]) -> str:

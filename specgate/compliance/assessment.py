@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from typing import Literal
 
 from flint import fmpq
 
 from specgate.approximations.approximation import Condition, Found
+from specgate.compliance.assumptions import Assumption
 from specgate.compliance.compare import Limits
 from specgate.compliance.readings import Reading
 from specgate.measures.measure import Arguments, Measure
@@ -107,7 +109,8 @@ class CriterionAssessment:
 
     reading: the measure in coherent SI. limits, limits_again: with the fixed decimal for pi, and with more digits.
     unit: in which it is printed (None: a whole number, yes or no). scale: what a number is small against, in that unit.
-    beside: a second value printed next to the first. signal: the unit of the signal that is looked at.
+    beside: a second value printed next to the first. signal: the unit of the signal that is looked at. assumptions:
+    ranges of signals that the reading rests on.
     """
 
     criterion: Criterion
@@ -124,6 +127,12 @@ class CriterionAssessment:
     beside: Reading | None = None
     unanswered: tuple[Unanswered, ...] = ()
     signal: Unit = ONE
+    assumptions: tuple[Assumption, ...] = ()
+
+    @property
+    def standing(self) -> Standing:
+        """The worst of what the audit of the basis and the assumptions of the model leave."""
+        return worst_standing((self.audit.standing, *(one.standing for one in self.assumptions)))
 
     @property
     def least(self) -> Reading | None:
@@ -134,6 +143,11 @@ class CriterionAssessment:
     def most(self) -> Reading | None:
         """The upper limit."""
         return _limit(self.limits.most, self.limits_again.most)
+
+
+def worst_standing(standings: Iterable[Standing]) -> Standing:
+    """Return the worst of some standings. Raises ValueError for none at all."""
+    return max(standings, key=(Standing.SOUND, Standing.INCONCLUSIVE, Standing.OUT_OF_RANGE).index)
 
 
 def _limit(first: fmpq | None, again: fmpq | None) -> Reading | None:

@@ -8,6 +8,7 @@ from specgate.analysis.analyses import Analyses, Missing
 from specgate.approximations.table import LATER
 from specgate.compliance.asking import Asked, ask
 from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
+from specgate.compliance.assumptions import Assumptions
 from specgate.compliance.audit import Matter, audit, audit_beyond
 from specgate.compliance.compare import Comparison, compare
 from specgate.compliance.readings import PI_DECIDES, Reading
@@ -28,8 +29,8 @@ _LATER = "not answered by this version"
 class Criteria:
     """Judges the criteria of one project; each question is decided again with more digits of pi where those matter."""
 
-    def __init__(self, project: Project, analyses: Analyses, policy: Policy) -> None:
-        self.project, self.analyses, self.policy = project, analyses, policy
+    def __init__(self, project: Project, analyses: Analyses, policy: Policy, assumptions: Assumptions) -> None:
+        self.project, self.analyses, self.policy, self.assumptions = project, analyses, policy, assumptions
 
     def assess(self, criterion: Criterion, basis: Basis | None) -> CriterionAssessment:
         """Judge one criterion; `basis` None means computed."""
@@ -57,6 +58,7 @@ class Criteria:
             beside=_reading(nominal, again, measure.beside, deciding) if measure.beside else None,
             unanswered=unanswered,
             signal=nominal.signal,
+            assumptions=self.assumptions.of(criterion.subject),
         )
 
     def _unit(self, asked: Asked) -> Unit | None:

@@ -14,7 +14,7 @@ from specgate.project.types import Limit
 from specgate.response.answers import Absent
 from specgate.response.questions import TimeResponse
 from specgate.terms.enclosed import ends, rounded
-from specgate.terms.expressions import Name, literal_unit
+from specgate.terms.expressions import Expression, Name, literal_unit
 from specgate.terms.unit import Unit
 from specgate.terms.units import UnitTable
 
@@ -31,9 +31,11 @@ _FIXED = {
 
 def limit_unit(limit: Limit, values: Values) -> Unit | None:
     """Return the unit that a limit is written in, that of the parameter where it is one; None where it has none."""
-    if not limit.values:
-        return None
-    expression = limit.values[0].expression
+    return written_unit(limit.values[0].expression, values) if limit.values else None
+
+
+def written_unit(expression: Expression, values: Values) -> Unit | None:
+    """Return the unit that a value is written in, that of the parameter where it is one; None where it has none."""
     if isinstance(expression, Name):
         qualified = values.scopes[None].get(expression.name)
         return None if qualified is None else literal_unit(values.written[qualified][0])

@@ -7,7 +7,7 @@ always show; fewer where the proved interval decides fewer. Exact values that ar
 from __future__ import annotations
 
 from collections.abc import Sequence
-from decimal import ROUND_HALF_EVEN, ROUND_UP, Decimal
+from decimal import ROUND_FLOOR, ROUND_HALF_EVEN, ROUND_UP, Decimal
 from fractions import Fraction
 
 SIGNIFICANT = 4
@@ -75,6 +75,15 @@ def number(value: float, significant: int = SIGNIFICANT) -> str:
         return written(exact, last_place(exact, exact=True))
     place = exact.adjusted() - (significant - 1)
     return written(exact, min(place, 0) if exact.adjusted() < SHORT else place)
+
+
+def rounded_down(value: float, significant: int = SIGNIFICANT) -> str:
+    """Return a positive value with so many digits, never more than it is."""
+    exact = decimal(value)
+    if not exact:
+        return "0"
+    place = min(exact.adjusted() - (significant - 1), 0)
+    return number(float(exact.quantize(Decimal(1).scaleb(place), rounding=ROUND_FLOOR)), significant)
 
 
 def fraction(text: str) -> tuple[str, bool]:

@@ -15,7 +15,7 @@ from jinja2.runtime import Context
 from markupsafe import Markup, escape
 
 from specgate.report.figures import poles, reserve, step, wiring
-from specgate.report.parts import matrix
+from specgate.report.parts import matrix, ranges
 from specgate.report.view import View
 
 SECTIONS = (
@@ -200,6 +200,7 @@ def _render(
             findings_left_out=max(0, len(view.findings) - findings),
             trace_lines=view.trace[:lines],
             trace_left_out=max(0, len(view.trace) - lines),
+            ranges_at_most=len(view.ranges) if screen else ranges.ROWS_AT_MOST,
             **(more | marked),
         )
     )

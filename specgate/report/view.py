@@ -12,6 +12,7 @@ from specgate.report.parts.audit import Audit, audits
 from specgate.report.parts.front import Front, front
 from specgate.report.parts.loops import LoopSheet, sheets
 from specgate.report.parts.matrix import Group, groups
+from specgate.report.parts.ranges import Range, ranges
 from specgate.report.parts.trace import Finding, OpenPoint, TraceLine, findings, lines, open_points
 from specgate.report.parts.trust import Trust, cautions, trust
 from specgate.review.types import Review
@@ -25,6 +26,7 @@ class View:
     front: Front
     groups: tuple[Group, ...]
     audits: tuple[Audit, ...]
+    ranges: tuple[Range, ...]
     loops: tuple[LoopSheet, ...]
     trace: tuple[TraceLine, ...]
     open_points: tuple[OpenPoint, ...]
@@ -40,6 +42,7 @@ def view(review: Review, shown: Callable[[str], bool] = lambda character: True) 
         front=front(review),
         groups=groups(review),
         audits=audits(review),
+        ranges=ranges(review),
         loops=sheets(review),
         trace=lines(review),
         open_points=open_points(review),

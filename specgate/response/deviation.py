@@ -78,6 +78,12 @@ class Deviation(Modal):
         with working_precision(bits + max(0, gap)):
             return (arb(self.offset) + deviation) * power_of_two(self.value_exponent)
 
+    def ceiling(self) -> arb:
+        """Return a bound of |y| where every mode decays: the offset and the greatest size of each mode together."""
+        expansion = self.at(LOWEST)
+        with working_precision(expansion.bits):
+            return ((abs(arb(self.offset)) + _amplitude(expansion)) * power_of_two(self.value_exponent)).upper()
+
     def to_time(self, time: arb, bits: int) -> arb:
         """Return a normalised time in seconds."""
         with working_precision(bits):

@@ -115,6 +115,12 @@ class StepResponse:
         """Return sup |y| over t > 0, the jump and values that are only approached included."""
         return self._peak
 
+    def ceiling(self) -> arb | None:
+        """Return a number that |y| never exceeds, found without a search; None where the response does not settle."""
+        if not self._moves:
+            return Answer.of_exact(abs(self._jump)).enclose(POLE_BITS).upper()
+        return self._course.deviation.ceiling() if self.settles else None
+
     def settling(self, distance: fmpq) -> Answer:
         """Return the least T with |y(t) - final| <= distance for all t >= T (s). Raises ValueError unless > 0."""
         if distance <= 0:

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 from specgate import __version__
 from specgate.analysis.analyse import analyse
 from specgate.compliance.assess import assess
+from specgate.compliance.assumptions import Assumptions
 from specgate.compliance.thresholds import policy
 from specgate.project.types import InputFile, Project
 from specgate.review.definitions import definitions
@@ -41,16 +42,20 @@ FORMAT = 1
 def review(project: Project, *, curves: bool = True) -> Review:
     """Compute and judge a project. Raises Fault for a project that its checks refuse.
 
-    curves: whether to compute the points of responses, which only drawings need.
+    curves: whether to compute what only drawings and records need: points of responses, and peaks of signals that a
+    bound alone proves to be inside their range.
     """
     analyses, graph = analyse(project), trace(project)
-    assessments = assess(project, analyses, graph)
+    assumptions = Assumptions(project, analyses)
+    assessments = assess(project, analyses, graph, assumptions)
     warned = (one for one in project.warnings if isinstance(one, Finding))
-    said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments))))
+    said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments, assumptions))))
     again = analyses.again.loops
     loops = {name: loop(one, again[name], curves=curves) for name, one in analyses.loops.items()}
     rests = resting(project, analyses)
-    requirements = {name: requirement(name, one, project, rests, graph) for name, one in assessments.items()}
+    requirements = {
+        name: requirement(name, one, project, rests, graph, peaks=curves) for name, one in assessments.items()
+    }
     shown = tuple(_finding(one) for one in said)
     info = project.info
     return Review(

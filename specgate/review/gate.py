@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 
 from specgate.compliance.assessment import Assessment
+from specgate.compliance.range_words import standing_words
 from specgate.project.types import GatePolicy
 from specgate.review.types import GateReview
 from specgate.terms.findings import Finding
@@ -32,7 +33,16 @@ def _verdicts(policy: GatePolicy, assessments: Mapping[str, Assessment]) -> Iter
             why = f": {assessment.reason}" if assessment.reason else ""
             yield f"{name} is {_WORDS[assessment.verdict.value]}{why}"
         if assessment.standing is not None and assessment.standing.value in policy.hold_on:
-            yield f"{name} {_WORDS[assessment.standing.value]}"
+            yield from (f"{name} {words}" for words in _why(assessment, assessment.standing))
+
+
+def _why(assessment: Assessment, standing: Standing) -> Iterator[str]:
+    """Say what a standing comes from: the bases of the requirement, or the ranges of signals."""
+    if any(one.audit.standing is standing for one in assessment.criteria):
+        yield _WORDS[standing.value]
+    beyond = [one.assumptions for one in assessment.criteria if one.audit.standing is not one.standing is standing]
+    if beyond:
+        yield f"rests on a linear model that does not hold: {standing_words(beyond[0])}"
 
 
 def _errors(findings: tuple[Finding, ...]) -> Iterator[str]:

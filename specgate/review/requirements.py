@@ -20,9 +20,11 @@ from specgate.compliance.assessment import (
 )
 from specgate.compliance.readings import Reading
 from specgate.compliance.reserves import reserve
+from specgate.compliance.resting import by_response
 from specgate.compliance.wording import found_value, subject_name
 from specgate.project.types import Project
 from specgate.response.answers import Answer
+from specgate.review.assumptions import assumption
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
 from specgate.review.types import (
     BasisReview,
@@ -42,9 +44,15 @@ from specgate.traceability.graph import Graph
 
 
 def requirement(
-    name: str, assessment: Assessment, project: Project, rests: Mapping[str, tuple[str, ...]], graph: Graph
+    name: str,
+    assessment: Assessment,
+    project: Project,
+    rests: Mapping[str, tuple[str, ...]],
+    graph: Graph,
+    *,
+    peaks: bool,
 ) -> RequirementReview:
-    """Print one requirement. rests: what each loop rests on (`resting`)."""
+    """Print one requirement. rests: what each loop rests on (`resting`). peaks: of signals inside their range too."""
     declared = assessment.requirement
     exempt = declared.not_applicable
     return RequirementReview(
@@ -60,6 +68,9 @@ def requirement(
         decided_by=declared.decided_by,
         methods=tuple(_method(one) for one in assessment.methods),
         criteria=tuple(_criterion(one, project) for one in assessment.criteria),
+        assumptions=tuple(
+            assumption(one, peak=peaks) for criterion in by_response(assessment) for one in criterion.assumptions
+        ),
         rests_on=_rests_on(assessment, rests),
         derived=graph.children[name],
         evidence=tuple(
@@ -112,6 +123,7 @@ def _criterion(assessed: CriterionAssessment, project: Project) -> CriterionRevi
         result=result(assessed.reading, assessed.unit, assessed.scale, assessed.beside, assessed.signal),
         reserve=_reserve(assessed),
         basis=_basis(assessed.audit),
+        standing=assessed.standing.value,
         location=location(criterion.place),
         reason=assessed.reason,
     )

@@ -306,6 +306,8 @@ class CriterionReview:
     result: Result
     reserve: ReserveReview | None
     basis: BasisReview
+    standing: str
+    """The worst of the standing of the basis and of the ranges that the response rests on."""
     location: Location
     reason: str | None = _omitted()
 
@@ -317,6 +319,33 @@ class MethodReview:
     method: str
     stage: str | None
     outcome: str
+
+
+@record
+class AssumptionReview:
+    """A range that the verdict rests on: where, how far the response goes from rest, how far it may."""
+
+    kind: str
+    """`linear_range` or `rate_range`."""
+    response: str
+    signal: str | None
+    """The signal of the loop that the port carries; None for one without a name."""
+    subsystem: str
+    side: str
+    port: str
+    rest: Amount
+    low: Amount
+    high: Amount
+    peak: Result | None
+    """Greatest distance from rest, or greatest rate; None where a bound alone was taken (only the text output)."""
+    allowed: Amount
+    """From rest to the nearer end; negative where rest is outside."""
+    holds: bool | None
+    largest_size: Amount | None
+    """The largest size of the input that keeps the range, rounded down; None where it has no one size."""
+    largest_factor: float | None
+    reason: str | None = _omitted()
+    """Why there is no peak, or why the question is open."""
 
 
 @record
@@ -335,7 +364,7 @@ class RequirementReview:
     decided_by: str
     methods: tuple[MethodReview, ...]
     criteria: tuple[CriterionReview, ...]
-    assumptions: tuple[Mapping[str, Any], ...] = ()
+    assumptions: tuple[AssumptionReview, ...] = ()
     rests_on: tuple[str, ...] = ()
     derived: tuple[str, ...] = ()
     """Ids of the requirements derived from it."""

@@ -6,6 +6,7 @@ from collections.abc import Callable, Iterator, Mapping
 
 from specgate.analysis.analyses import Analyses
 from specgate.compliance.assessment import Assessment
+from specgate.compliance.assumptions import Assumptions
 from specgate.project.types import Project
 from specgate.terms.findings import Finding
 from specgate.terms.records import record
@@ -21,6 +22,7 @@ class Facts:
     analyses: Analyses
     graph: Graph
     assessments: Mapping[str, Assessment]
+    assumptions: Assumptions
 
     def restating(self, what: Verdict | Standing, assessment: Assessment) -> Level:
         """Return the level of a finding that only restates a verdict or a standing: a note where nothing is due yet."""

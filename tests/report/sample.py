@@ -301,6 +301,7 @@ def criterion(
         result=plain(result),
         reserve=reserve,
         basis=basis,
+        standing=basis.standing,
         location=place(line, 16),
         **more,
     )

@@ -9,7 +9,7 @@ from collections.abc import Iterable
 
 from specgate.report import anchors
 from specgate.report.digits import percent
-from specgate.report.parts import shown
+from specgate.report.parts import ranges, shown
 from specgate.report.words import (
     LEVELS,
     OUTCOMES,
@@ -158,7 +158,7 @@ def _hold(review: Review, key: str, said: list[str]) -> Hold:
 
 
 def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
-    """Return the numbers that decide a requirement: result against limit, and the error of a formula that fails."""
+    """Return the numbers that decide a requirement: result and limit, the error of a formula, signals out of range."""
     parts = []
     judged = min(requirement.criteria, key=lambda c: VERDICTS[c.verdict].weight, default=None)
     if judged is not None and judged.verdict != "compliant":
@@ -169,6 +169,7 @@ def deciding_numbers(review: Review, requirement: RequirementReview) -> str:
     audited = min(requirement.criteria, key=lambda c: STANDINGS[c.basis.standing].weight, default=None)
     if audited is not None and audited.basis.standing != "sound":
         parts.append(_missed(audited))
+        parts.append(ranges.beyond(requirement))
     return "; ".join(filter(None, parts))
 
 

@@ -179,7 +179,7 @@ def _line(review: Review, name: str, number: int, criterion: CriterionReview) ->
         relative=share,
         bar=None if relative is None else ReserveBar(relative, f"reserve {share} of the limit"),
         verdict=VERDICTS[criterion.verdict],
-        standing=STANDINGS.get(criterion.basis.standing),
+        standing=STANDINGS.get(criterion.standing),
         basis=" and ".join(spaced(item) for item in criterion.basis.chain) or spaced(criterion.basis.kind),
         reason=criterion.reason or "",
         evidence=evidence(review, name, number, criterion),

@@ -6,9 +6,10 @@ from collections.abc import Iterator, Mapping
 from typing import Any
 
 from specgate.report import anchors
+from specgate.report.parts import ranges
 from specgate.report.parts.matrix import Method, row
 from specgate.report.words import LEVELS, VERDICTS, Status, counted, listed, spaced
-from specgate.review.types import FindingReview, Review
+from specgate.review.types import FindingReview, RequirementReview, Review
 from specgate.terms.records import record
 
 
@@ -131,10 +132,14 @@ def open_points(review: Review) -> tuple[OpenPoint, ...]:
         if requirement.verdict == "open":
             points.append(OpenPoint("open", name, at, requirement.reason or "nothing decides it yet"))
         if requirement.standing == "inconclusive":
-            points.append(
-                OpenPoint("inconclusive", name, at, "the stated accuracy of its formula does not decide the limit")
-            )
+            points.append(OpenPoint("inconclusive", name, at, _inconclusive(requirement)))
     return (*points, *_due_later(review), *_unused(review))
+
+
+def _inconclusive(requirement: RequirementReview) -> str:
+    if any(criterion.basis.standing == "inconclusive" for criterion in requirement.criteria):
+        return "the stated accuracy of its formula does not decide the limit"
+    return ranges.undecided(requirement)
 
 
 def _approved(exemption: Mapping[str, Any]) -> str:

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections import Counter
+from collections.abc import Sequence
 
 from specgate.report.digits import number
 from specgate.report.parts import shown
 from specgate.report.words import counted, listed, spaced, with_unit
-from specgate.review.types import InputReview, ParameterReview, Review, SubsystemReview
+from specgate.review.types import AssumptionReview, InputReview, ParameterReview, Review, SubsystemReview
 from specgate.terms.cautions import CAUTIONS
 from specgate.terms.records import record
 
@@ -151,10 +152,7 @@ def cautions(review: Review) -> tuple[str, ...]:
     own = []
     if review.policy.evaluate == "nominal":
         own.append("Parameters were taken at their nominal values; tolerances were not varied.")
-    if any(r.assumptions for r in review.requirements.values()):
-        pass
-    elif review.loops:
-        own.append("Linear ranges of signals were not checked by this version.")
+    own += _ranges([a for r in review.requirements.values() for a in r.assumptions])
     unanswered = _unanswered(review)
     if unanswered:
         own.append(f"Not answered by this version, and open wherever a verdict needs it: {listed(unanswered)}.")
@@ -164,6 +162,21 @@ def cautions(review: Review) -> tuple[str, ...]:
             f"{counted(later, 'verification')} due at a later stage {'has' if later == 1 else 'have'} not been judged."
         )
     return (*own, *CAUTIONS)
+
+
+def _ranges(assumptions: Sequence[AssumptionReview]) -> list[str]:
+    """Say what the ranges of the linear models leave open."""
+    if not assumptions:
+        return [
+            "No range is stated for any signal that a verdict rests on: no size of an input is shown to be too large."
+        ]
+    beyond = {(a.response, a.subsystem, a.side, a.port, a.kind) for a in assumptions if a.holds is not True}
+    if not beyond:
+        return []
+    are = "range is" if len(beyond) == 1 else "ranges are"
+    return [
+        f"{len(beyond)} {are} not kept, or not shown to be kept: verdicts there are verdicts on a linear model alone."
+    ]
 
 
 def _unanswered(review: Review) -> list[str]:
