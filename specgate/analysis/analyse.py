@@ -8,13 +8,13 @@ from dataclasses import replace
 from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
 from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.wiring import subsystems_of
-from specgate.frequency.rational_loop import RationalLoop
+from specgate.frequency.rational_loop import UNSTABLE, RationalLoop
 from specgate.measures.subjects import BreakSubject, LoopSubject
 from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, depends_on_pi, values
 from specgate.project.types import Break, Loop, Project
 from specgate.response.answers import Answer
-from specgate.systems.solution import LoopSolution, solve
+from specgate.systems.solution import Cut, LoopSolution, solve
 from specgate.terms.unit import PRECISE_PI
 
 
@@ -62,21 +62,25 @@ def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) 
             name: response_analysis(built.signals, response, solution, built.responses.get(name), known)
             for name, response in loop.responses.items()
         },
-        breaks=_breaks(loop, solution, built.breaks),
+        breaks=_breaks(loop, solution, built),
     )
 
 
-def _breaks(loop: Loop, solution: LoopSolution, unsupported: Mapping[str, str]) -> Mapping[str, BreakAnalysis]:
-    return {name: _break(one, solution, unsupported.get(name)) for name, one in loop.breaks.items()}
+def _breaks(loop: Loop, solution: LoopSolution, built: InstantiatedLoop) -> Mapping[str, BreakAnalysis]:
+    return {name: _break(one, built.cuts[name], solution, built.breaks.get(name)) for name, one in loop.breaks.items()}
 
 
-def _break(declared: Break, solution: LoopSolution, unsupported: str | None) -> BreakAnalysis:
+def _break(declared: Break, cut: Cut, solution: LoopSolution, unsupported: str | None) -> BreakAnalysis:
     if unsupported is not None:
         return BreakAnalysis(declared, Missing(unsupported, later=True))
     if solution.algebraic_loop is not None:
         return BreakAnalysis(declared, Missing(solution.algebraic_loop.reason))
-    opened = solution.open_at(declared.at)
+    opened = solution.open_at(declared.at, cut)
     if opened.algebraic_loop is not None:
         return BreakAnalysis(declared, Missing(opened.algebraic_loop.reason), opened)
-    loop = RationalLoop(opened.transfer, opened.stable)
+    loop = RationalLoop(opened.transfer, opened.stable, unstable=_unstable(cut))
     return BreakAnalysis(declared, BreakSubject(opened.transfer, Answer.of_truth(opened.stable), loop), opened)
+
+
+def _unstable(cut: Cut) -> str:
+    return f"with {' and '.join(cut.held)} held open, {UNSTABLE}" if cut.held else UNSTABLE

@@ -39,10 +39,16 @@ _ORIGIN, _INFINITY = Rational(fmpq(0)), Infinity()
 
 
 class RationalLoop:
-    """L = numerator/denominator, and whether the closed loop is stable with every mode, hidden ones included."""
+    """L = numerator/denominator, and whether the closed loop is stable with every mode, hidden ones included.
 
-    def __init__(self, open_loop: TransferFunction, stable: bool, scale: Scale | None = None) -> None:
+    unstable: why there is no margin where it is not.
+    """
+
+    def __init__(
+        self, open_loop: TransferFunction, stable: bool, scale: Scale | None = None, unstable: str = UNSTABLE
+    ) -> None:
         self.axis = AxisFunction(open_loop)
+        self._unstable = Answer.nothing(unstable)
         self.scale: Scale = scale or Continuous()
         self.stable = stable and self._far_value != -1
 
@@ -114,12 +120,12 @@ class RationalLoop:
 
     def _gain_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
-            return Answer.nothing(UNSTABLE)
+            return self._unstable
         return margins.gain_margin(self._phase_crossings(over), *directions)
 
     def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
-            return Answer.nothing(UNSTABLE)
+            return self._unstable
         return margins.phase_margin(self._gain_crossings(over), *directions)
 
     def gain_margin_up(self, over: Range | None = None) -> Answer:
@@ -149,7 +155,7 @@ class RationalLoop:
     def delay_margin(self, over: Range | None = None) -> Answer:
         """Return the least dead time (s) that brings L to -1: least lag over frequency, 0 where |L(inf)| >= 1."""
         if not self.stable:
-            return Answer.nothing(UNSTABLE)
+            return self._unstable
         top = self.scale.frequency(_INFINITY)
         far = self._far_value
         if over is None and top.absent is not None and (far is None or abs(far) >= 1):
@@ -169,7 +175,7 @@ class RationalLoop:
 
     def sensitivity_peak(self, over: Range | None = None) -> Answer:
         """Return sup |1 / (1 + L)|; `at` has the frequency, absent with `infinite` where approached there."""
-        return self._sensitivity.supremum(over) if self.stable else Answer.nothing(UNSTABLE)
+        return self._sensitivity.supremum(over) if self.stable else self._unstable
 
     def least_distance(self, over: Range | None = None) -> Answer:
         """Return inf |1 + L|."""

@@ -8,6 +8,7 @@ from flint import fmpq
 
 from specgate.project import faults
 from specgate.project.blocks import BuiltBlock, memoryless
+from specgate.project.breaks import Applied
 from specgate.project.faults import Fault
 from specgate.project.instances import Form, NameRef, Use, UseRef, Uses
 from specgate.project.parameters import Values
@@ -16,6 +17,7 @@ from specgate.project.temperatures import absolute
 from specgate.project.types import Break, Loop, Project, Response
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.graph import reached, reversed_arcs
+from specgate.systems.opening import Cut
 from specgate.terms.findings import Related
 from specgate.terms.records import record
 
@@ -32,6 +34,7 @@ class InstantiatedLoop:
     signals: the unit and the span of each signal. rest: value of every input and signal before the step, temperatures
     from the zero of the signal's unit. unsupported: why nothing about the loop as a whole is answered. responses,
     breaks: the same for each of them that is concerned, by name. subsystems: the subsystem of each instance.
+    cuts: what each break cuts.
     depends_on_pi: the wiring rests on a rounded decimal, so that a yes or no has to be decided again with a longer one.
     """
 
@@ -43,6 +46,7 @@ class InstantiatedLoop:
     breaks: Mapping[str, str]
     subsystems: Mapping[str, str]
     depends_on_pi: bool
+    cuts: Mapping[str, Cut]
 
 
 def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values: Values) -> InstantiatedLoop:
@@ -60,6 +64,7 @@ def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values:
         {name: reason for name, opened in loop.breaks.items() if (reason := drawn.opened(opened))},
         {name: drawn.classes[number][0].call.subsystem for number, name in drawn.names.items()},
         drawn.uses.rounded or any(blocks[name].rounded for name in drawn.numbers),
+        {name: drawn.cut(opened) for name, opened in loop.breaks.items()},
     )
 
 
@@ -172,15 +177,20 @@ class Drawn:
         reasons = (self._between(source, to) for source in sources for to in seen)
         return next((reason for reason in reasons if reason is not None), None)
 
+    def cut(self, opened: Break) -> Cut:
+        """Return which uses a break cuts. Raises Fault."""
+        uses = {name: self._spelled(number) for number, name in self.names.items()}
+        instance = {use: self._instance(UseRef(use, "")) for use in range(len(self.uses.uses))}
+        return Applied(self.uses.forms, uses, instance).cut(opened)
+
     def opened(self, opened: Break) -> str | None:
         """Say why a break is not answered, or return None."""
-        if opened.into is not None or opened.with_open:
-            return "a break of one use, or with other loops open, is not answered by this version"
-        return self._between(opened.at, opened.at)
+        return self._between(opened.at, opened.at, opened.with_open)
 
-    def _between(self, source: str, target: str) -> str | None:
-        """Return the reason of the first missing instance on a path from one signal to another."""
-        ahead = reached([("signal", source)], self.arcs)
-        behind = reached([("signal", target)], reversed_arcs(self.arcs))
+    def _between(self, source: str, target: str, held: tuple[str, ...] = ()) -> str | None:
+        """Return the reason of the first missing instance on a path from one signal to another, past no held one."""
+        arcs = {node: [] if node in [("signal", name) for name in held] else fed for node, fed in self.arcs.items()}
+        ahead = reached([("signal", source)], arcs)
+        behind = reached([("signal", target)], reversed_arcs(arcs))
         on_path = ahead & behind
         return next((reason for name, reason in self.missing.items() if ("block", name) in on_path), None)

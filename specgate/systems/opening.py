@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from flint import fmpq_poly
 
 from specgate.systems.blocks import Instance, LinearForm, SignalRef, Wiring
@@ -18,12 +20,30 @@ _INJECTED = "(injected)"
 
 
 @record
+class Cut:
+    """Which uses of a signal are cut, and which signals are held open (every use of them sees zero) meanwhile.
+
+    forms: signals in whose equations the signal is cut. instances: applied blocks in whose arguments it is. None of
+    either: all its uses.
+    """
+
+    forms: tuple[str, ...] = ()
+    instances: tuple[str, ...] = ()
+    held: tuple[str, ...] = ()
+
+    def everywhere(self) -> bool:
+        """Whether all uses are cut."""
+        return not self.forms and not self.instances
+
+
+@record
 class OpenLoop:
-    """The loop opened for all users of a signal.
+    """The loop opened at a signal, for all its users or for some.
 
     numerator, denominator: of L = det P / det P_open - 1, minus the transfer function from the injected to the returned
     signal, not reduced: the denominator has every mode of the opened component. stable: whether every mode of the
-    closed component decays. algebraic_loop: set where the opened loop is not well posed; then there is no L.
+    closed component decays, with the held signals open. algebraic_loop: set where the opened loop is not well posed, or
+    what is left with the held signals open; then there is no L.
     """
 
     signal: str
@@ -40,19 +60,29 @@ class OpenLoop:
         return TransferFunction(self.numerator, self.denominator)
 
 
-def opened(network: Network, signal: str) -> OpenLoop:
+def opened(network: Network, signal: str, cut: Cut | None = None) -> OpenLoop:
     """Return the loop of a well-posed network opened at a signal. Raises KeyError for an unknown name."""
-    node, cut = SignalRef(signal), Network(Equations(_cut(network.equations.wiring, signal)))
-    closed = _modes_around(network, node)
-    found = algebraic_loop(cut)
+    cut = cut or Cut()
+    whole = network if not cut.held else Network(Equations(_held(network.equations.wiring, cut.held)))
+    if cut.held:
+        found = algebraic_loop(whole)
+        if found is not None:
+            return _ill_posed(signal, f"with {', '.join(cut.held)} open", found, stable=False)
+    node, opening = SignalRef(signal), Network(Equations(_cut(whole.equations.wiring, signal, cut)))
+    closed = _modes_around(whole, node)
+    found = algebraic_loop(opening)
     if found is not None:
-        reason = f"opened at {signal}, the loop leaves an algebraic loop behind. {found.reason}"
-        return OpenLoop(signal, fmpq_poly(), fmpq_poly(), is_hurwitz(closed), AlgebraicLoop(found.signals, reason))
-    returned = cut.fraction(node, SignalRef(_INJECTED))
+        return _ill_posed(signal, f"opened at {signal}", found, stable=is_hurwitz(closed))
+    returned = opening.fraction(node, SignalRef(_INJECTED))
     numerator, denominator = -returned.numerator, returned.denominator
     # 1 + L = det P / det P_open, and det P is known with all its modes.
     kept = exact_quotient(closed, monic(numerator + denominator))
     return OpenLoop(signal, numerator * kept, denominator * kept, is_hurwitz(closed))
+
+
+def _ill_posed(signal: str, when: str, found: AlgebraicLoop, *, stable: bool) -> OpenLoop:
+    reason = f"{when}, the loop leaves an algebraic loop behind. {found.reason}"
+    return OpenLoop(signal, fmpq_poly(), fmpq_poly(), stable, AlgebraicLoop(found.signals, reason))
 
 
 def _modes_around(network: Network, node: Reference) -> fmpq_poly:
@@ -64,20 +94,50 @@ def _modes_around(network: Network, node: Reference) -> fmpq_poly:
     return ONE
 
 
-def _cut(wiring: Wiring, signal: str) -> Wiring:
-    """Return the wiring with an outside variable in place of every use of a signal."""
+def _cut(wiring: Wiring, signal: str, cut: Cut) -> Wiring:
+    """Return the wiring with an outside variable in place of the uses of a signal that are cut."""
     if signal not in wiring.signals:
         raise KeyError(signal)
+    everywhere = cut.everywhere()
+    return _replaced(
+        wiring,
+        SignalRef(signal),
+        _INJECTED,
+        lambda name: everywhere or name in cut.forms,
+        lambda name: everywhere or name in cut.instances,
+    )
 
+
+def _held(wiring: Wiring, signals: tuple[str, ...]) -> Wiring:
+    """Return the wiring with an outside variable, which nothing drives, in place of every use of some signals."""
+    for signal in signals:
+        if signal not in wiring.signals:
+            raise KeyError(signal)
+        wiring = _replaced(wiring, SignalRef(signal), f"({signal} held open)", _always, _always)
+    return wiring
+
+
+def _always(_: str) -> bool:
+    return True
+
+
+def _replaced(
+    wiring: Wiring,
+    used: SignalRef,
+    outside: str,
+    in_form: Callable[[str], bool],
+    in_instance: Callable[[str], bool],
+) -> Wiring:
     def replaced(form: LinearForm) -> LinearForm:
-        used, outside = SignalRef(signal), SignalRef(_INJECTED)
-        return LinearForm(tuple((factor, outside if node == used else node) for factor, node in form.terms))
+        return LinearForm(tuple((factor, SignalRef(outside) if node == used else node) for factor, node in form.terms))
 
     return Wiring(
-        (*wiring.inputs, _INJECTED),
+        (*wiring.inputs, outside),
         tuple(
             Instance(i.name, i.block, {name: replaced(argument) for name, argument in i.arguments.items()})
+            if in_instance(i.name)
+            else i
             for i in wiring.instances
         ),
-        {name: replaced(form) for name, form in wiring.signals.items()},
+        {name: replaced(form) if in_form(name) else form for name, form in wiring.signals.items()},
     )

@@ -14,14 +14,14 @@ from specgate.systems.equations import Equations, Reference
 from specgate.systems.feedthrough import AlgebraicLoop, direct_cycles, is_proper, signals_of
 from specgate.systems.hidden import hidden_modes
 from specgate.systems.network import Group, Network
-from specgate.systems.opening import OpenLoop, opened
+from specgate.systems.opening import Cut, OpenLoop, opened
 from specgate.systems.polynomials import exact_quotient, product
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
 from specgate.systems.wellposed import algebraic_loop
 from specgate.terms.records import record
 
-__all__ = ["AlgebraicLoop", "Channel", "Component", "LoopSolution", "OpenLoop", "StrongFeedThrough", "solve"]
+__all__ = ["AlgebraicLoop", "Channel", "Component", "Cut", "LoopSolution", "OpenLoop", "StrongFeedThrough", "solve"]
 
 
 @record
@@ -150,9 +150,12 @@ class LoopSolution:
             tuple(not_reached),
         )
 
-    def open_at(self, signal: str) -> OpenLoop:
-        """Return the loop opened at a signal. Raises KeyError for an unknown name."""
-        return opened(self.network, signal)
+    def open_at(self, signal: str, cut: Cut | None = None) -> OpenLoop:
+        """Return the loop opened at a signal, for all its users unless `cut` says which.
+
+        Raises KeyError for an unknown name.
+        """
+        return opened(self.network, signal, cut)
 
     @cached_property
     def strong_feed_through(self) -> tuple[StrongFeedThrough, ...]:

@@ -203,13 +203,6 @@ def test_a_sampled_block_is_not_approximated(project: ProjectOf) -> None:
     assert "`trim` is a sampled model" in made.responses["follow"]
 
 
-def test_breaks_of_one_use_are_not_answered(project: ProjectOf) -> None:
-    made = loop(project(text().replace("main: place", "main: {at: place, into: volt}")))
-    assert made.responses == {}
-    assert list(made.breaks) == ["main"]
-    assert made.unsupported is None
-
-
 # --- rest and pi -------------------------------------------------------------------------------------------
 
 
