@@ -13,7 +13,7 @@ from specgate.compliance.audit import Matter, audit, audit_beyond
 from specgate.compliance.compare import Comparison, compare
 from specgate.compliance.readings import PI_DECIDES, Reading
 from specgate.compliance.thresholds import Policy
-from specgate.compliance.units import default_unit, limit_unit, smallness
+from specgate.compliance.units import default_unit, is_plain, limit_unit, smallness
 from specgate.measures.measure import Measure, Reader
 from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
@@ -64,7 +64,10 @@ class Criteria:
     def _unit(self, asked: Asked) -> Unit | None:
         """Return the unit of the limit, else that of the measure; None for whole numbers and yes/no."""
         otherwise = default_unit(asked.measure, asked.arguments, asked.signal)
-        return otherwise and (limit_unit(asked.criterion.limit, asked.study.values) or otherwise)
+        limit, values = asked.criterion.limit, asked.study.values
+        if otherwise is not None and otherwise.kind == "decibel" and is_plain(limit, values):
+            return ONE
+        return otherwise and (limit_unit(limit, values) or otherwise)
 
     def _unanswered(
         self, criterion: Criterion, measure: Measure, basis: Basis | None, asked: Asked

@@ -14,7 +14,7 @@ from specgate.project.types import Limit
 from specgate.response.answers import Absent
 from specgate.response.questions import TimeResponse
 from specgate.terms.enclosed import ends, rounded
-from specgate.terms.expressions import Expression, Name, literal_unit
+from specgate.terms.expressions import Expression, Name, Number, literal_unit
 from specgate.terms.unit import Unit
 from specgate.terms.units import UnitTable
 
@@ -36,10 +36,22 @@ def limit_unit(limit: Limit, values: Values) -> Unit | None:
 
 def written_unit(expression: Expression, values: Values) -> Unit | None:
     """Return the unit that a value is written in, that of the parameter where it is one; None where it has none."""
-    if isinstance(expression, Name):
-        qualified = values.scopes[None].get(expression.name)
-        return None if qualified is None else literal_unit(values.written[qualified][0])
-    return literal_unit(expression)
+    written = _written(expression, values)
+    return None if written is None else literal_unit(written)
+
+
+def is_plain(limit: Limit, values: Values) -> bool:
+    """Whether a limit is written as a number without a unit: of a gain it is a ratio then, not decibels."""
+    written = _written(limit.values[0].expression, values) if limit.values else None
+    return isinstance(written, Number) and written.unit is None
+
+
+def _written(expression: Expression, values: Values) -> Expression | None:
+    """Return an expression as it is written, where it is a parameter that of the parameter."""
+    if not isinstance(expression, Name):
+        return expression
+    qualified = values.scopes[None].get(expression.name)
+    return None if qualified is None else values.written[qualified][0]
 
 
 def default_unit(measure: Measure, arguments: Arguments, signal: Unit) -> Unit | None:
