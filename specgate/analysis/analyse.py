@@ -9,12 +9,13 @@ from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Mi
 from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.wiring import subsystems_of
 from specgate.frequency.rational_loop import UNSTABLE, RationalLoop
+from specgate.measures.reading import decided
 from specgate.measures.subjects import BreakSubject, LoopSubject
 from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, depends_on_pi, values
 from specgate.project.types import Break, Loop, Project
-from specgate.response.answers import Answer
-from specgate.systems.solution import Cut, LoopSolution, solve
+from specgate.systems.delayed import DelayedOpenLoop, DelayedSolution, solved
+from specgate.systems.solution import Cut, LoopSolution
 from specgate.terms.unit import PRECISE_PI
 
 
@@ -51,7 +52,7 @@ def _rests_on_pi(loop: Loop, built: InstantiatedLoop, known: Values) -> bool:
 
 
 def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) -> LoopAnalysis:
-    solution = solve(built.wiring)
+    solution = solved(built.wiring)
     return LoopAnalysis(
         loop=loop,
         subsystems=subsystems_of(project, loop),
@@ -66,11 +67,15 @@ def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) 
     )
 
 
-def _breaks(loop: Loop, solution: LoopSolution, built: InstantiatedLoop) -> Mapping[str, BreakAnalysis]:
+def _breaks(
+    loop: Loop, solution: LoopSolution | DelayedSolution, built: InstantiatedLoop
+) -> Mapping[str, BreakAnalysis]:
     return {name: _break(one, built.cuts[name], solution, built.breaks.get(name)) for name, one in loop.breaks.items()}
 
 
-def _break(declared: Break, cut: Cut, solution: LoopSolution, unsupported: str | None) -> BreakAnalysis:
+def _break(
+    declared: Break, cut: Cut, solution: LoopSolution | DelayedSolution, unsupported: str | None
+) -> BreakAnalysis:
     if unsupported is not None:
         return BreakAnalysis(declared, Missing(unsupported, later=True))
     if solution.algebraic_loop is not None:
@@ -78,8 +83,12 @@ def _break(declared: Break, cut: Cut, solution: LoopSolution, unsupported: str |
     opened = solution.open_at(declared.at, cut)
     if opened.algebraic_loop is not None:
         return BreakAnalysis(declared, Missing(opened.algebraic_loop.reason), opened)
-    loop = RationalLoop(opened.transfer, opened.stable, unstable=_unstable(cut))
-    return BreakAnalysis(declared, BreakSubject(opened.transfer, Answer.of_truth(opened.stable), loop), opened)
+    if isinstance(opened, DelayedOpenLoop):
+        subject = BreakSubject(opened.transfer, decided(opened.stable), None)
+    else:
+        loop = RationalLoop(opened.transfer, opened.stable, unstable=_unstable(cut))
+        subject = BreakSubject(opened.transfer, decided(opened.stable), loop)
+    return BreakAnalysis(declared, subject, opened)
 
 
 def _unstable(cut: Cut) -> str:

@@ -14,6 +14,7 @@ from specgate.project import types as project_types
 from specgate.project.parameters import Values
 from specgate.project.signals import LoopSignals
 from specgate.response.answers import Absent, Answer
+from specgate.systems.delayed import DelayedChannel, DelayedOpenLoop, DelayedSolution
 from specgate.systems.solution import Channel, LoopSolution, OpenLoop
 from specgate.terms.records import record
 from specgate.terms.unit import Unit
@@ -48,12 +49,12 @@ class ResponseAnalysis:
     response: project_types.Response
     unit: Unit
     subject: ResponseSubject | Missing
-    channels: tuple[Channel, ...] = ()
+    channels: tuple[Channel | DelayedChannel, ...] = ()
     origin: object = None
     improper: bool = False
 
     @property
-    def channel(self) -> Channel | None:
+    def channel(self) -> Channel | DelayedChannel | None:
         """The channel, where there is a single one."""
         return self.channels[0] if len(self.channels) == 1 else None
 
@@ -70,7 +71,7 @@ class BreakAnalysis:
 
     declared: project_types.Break
     subject: BreakSubject | Missing
-    opened: OpenLoop | None = None
+    opened: OpenLoop | DelayedOpenLoop | None = None
 
 
 @record
@@ -84,7 +85,7 @@ class LoopAnalysis:
     loop: project_types.Loop
     subsystems: tuple[str, ...]
     signals: LoopSignals
-    solution: LoopSolution
+    solution: LoopSolution | DelayedSolution
     subject: LoopSubject | Missing
     responses: Mapping[str, ResponseAnalysis]
     breaks: Mapping[str, BreakAnalysis]

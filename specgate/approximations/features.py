@@ -32,7 +32,7 @@ class Features:
     def channel(self) -> TransferFunction:
         """The channel from input to signal with common factors cancelled; denominator monic."""
         channel = self.subject.channel
-        if isinstance(channel, Absent):
+        if not isinstance(channel, TransferFunction):
             raise ValueError("approximations look at responses that have a rational channel")
         return channel.reduced()
 

@@ -11,7 +11,10 @@ from specgate.compliance.assessment import AuditedCondition, CriterionAssessment
 from specgate.compliance.readings import Reading
 from specgate.project.types import Limit
 from specgate.response.answers import Answer
+from specgate.systems.delayed import DelayedChannel
+from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root, certified_roots
+from specgate.systems.solution import Channel
 from specgate.terms.enclosed import DIGITS, printed, printed_exact, printed_short
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Verdict
@@ -161,8 +164,17 @@ def formula_words(assessed: CriterionAssessment) -> str:
     return figure(Reading.once(audit.formula).in_unit(audit.unit), audit.unit)
 
 
-def modes(polynomial: fmpq_poly) -> str:
+def hides(channel: Channel | DelayedChannel) -> bool:
+    """Whether a channel hides any mode."""
+    hidden = channel.hidden
+    return hidden.degree() > 0 if isinstance(hidden, fmpq_poly) else not hidden.is_rational or hidden.degree > 0
+
+
+def modes(of: fmpq_poly | Quasi) -> str:
     """Name the modes of a polynomial by their poles: `a mode at 0.5 1/s`, `modes at -1 ± 2j 1/s`."""
+    polynomial = of if isinstance(of, fmpq_poly) else of.polynomial
+    if polynomial is None:
+        return "the modes of a loop with dead time"
     shown = [_pole(root) for root in certified_roots(polynomial, _MODE_BITS) if not root.value.imag < 0]
     return f"{'modes' if polynomial.degree() > 1 else 'a mode'} at {', '.join(shown)} 1/s"
 

@@ -10,14 +10,13 @@ from specgate.measures.measure import Arguments, Measure, Reader, UnitRule
 from specgate.measures.subjects import BreakSubject
 from specgate.response.answers import Answer
 from specgate.systems import error_constants
-from specgate.systems.transfer import TransferFunction
 
 
 def _type(subject: BreakSubject, _: Arguments) -> Answer:
     return Answer.of_exact(error_constants.loop_type(subject.open_loop))
 
 
-def _constant(of: Callable[[TransferFunction], fmpq | None], power: int) -> Reader:
+def _constant(of: Callable[[error_constants.Opened], fmpq | None], power: int) -> Reader:
     """Return the reader of lim s^power L(s) at s = 0; without limit where the loop has more integrators."""
 
     def read(subject: BreakSubject, _: Arguments) -> Answer:
@@ -32,7 +31,7 @@ def _constant(of: Callable[[TransferFunction], fmpq | None], power: int) -> Read
 _MOST = ("only without any", "with one at most", "with two at most")
 
 
-def _without_limit(open_loop: TransferFunction, power: int) -> Answer:
+def _without_limit(open_loop: error_constants.Opened, power: int) -> Answer:
     count = error_constants.loop_type(open_loop)
     integrators = "an integrator" if count == 1 else f"{count} integrators"
     reason = f"the open loop has {integrators}, and the constant is finite {_MOST[power]}"

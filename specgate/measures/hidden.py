@@ -5,12 +5,18 @@ from __future__ import annotations
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
+from specgate.systems.delayed import DelayedSolution
 
 
 def _hidden_modes(subject: LoopSubject, _: Arguments) -> Answer:
     solution = subject.solution
     if solution.algebraic_loop is not None:
         return Answer.undecided(solution.algebraic_loop.reason)
+    if isinstance(solution, DelayedSolution):
+        concealed = [component.hidden for component in solution.components]
+        if not all(hidden.is_rational for hidden in concealed):
+            return Answer.nothing("a loop with a dead time is hidden as a whole, with endlessly many modes")
+        return Answer.of_exact(sum(hidden.degree for hidden in concealed))
     return Answer.of_exact(sum(component.hidden.degree() for component in solution.components))
 
 

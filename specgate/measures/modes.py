@@ -7,6 +7,7 @@ from collections.abc import Callable
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.measures.measure import Argument, Arguments, Comparer, Measure, UnitRule
+from specgate.measures.reading import decided
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
 from specgate.systems.regions import (
@@ -33,12 +34,13 @@ def _well_posed(read: Callable[[LoopSubject], Answer]) -> Callable[[LoopSubject,
 
 
 def _stable(subject: LoopSubject) -> Answer:
-    return Answer.of_truth(subject.solution.stable)
+    return decided(subject.solution.stable)
 
 
 def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
     def comparer(subject: LoopSubject, _: Arguments, limit: fmpq) -> Sign | None:
-        return compare(subject.solution.determinant, limit)
+        modes = subject.solution.determinant
+        return compare(modes, limit) if isinstance(modes, fmpq_poly) else None
 
     return comparer
 
@@ -46,6 +48,8 @@ def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
 def _over_poles(subject: LoopSubject, of: Callable[[acb], arb], which: Callable[[acb], bool], reason: str) -> Answer:
     """Return the smallest value of `of` over the poles that `which` picks, or `reason` where there is none."""
     polynomial = subject.solution.determinant
+    if not isinstance(polynomial, fmpq_poly):
+        return Answer.undecided("the loop has a dead time, and endlessly many poles")
 
     def refine(bits: int) -> arb:
         poles = [root.value for root in certified_roots(polynomial, bits + 16)]

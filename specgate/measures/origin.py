@@ -6,22 +6,20 @@ from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.reading import missing
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.answers import Absent, Answer
-from specgate.systems.polynomials import order_at_origin
 
 
 def _poles(subject: ResponseSubject, _: Arguments) -> Answer:
     if isinstance(subject.channel, Absent):
         return missing(subject.channel)
-    return Answer.of_exact(order_at_origin(subject.channel.reduced().denominator))
+    return Answer.of_exact(subject.channel.poles_at_origin)
 
 
 def _zeros(subject: ResponseSubject, _: Arguments) -> Answer:
     if isinstance(subject.channel, Absent):
         return missing(subject.channel)
-    numerator = subject.channel.reduced().numerator
-    if not numerator:
+    if not subject.channel.numerator:
         return Answer.nothing("the signal does not react to this input at all")
-    return Answer.of_exact(order_at_origin(numerator))
+    return Answer.of_exact(subject.channel.zeros_at_origin)
 
 
 _METHOD = "exact: powers of s in the channel once common factors are cancelled in rational arithmetic"

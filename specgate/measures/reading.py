@@ -24,6 +24,15 @@ def missing(absent: Absent) -> Answer:
     return Answer(Proof.EXACT if absent.proved else Proof.ESTIMATED, absent=absent)
 
 
+def decided(truth: bool | None) -> Answer:
+    """Return the answer to whether every mode decays, which dead times may leave undecided."""
+    if truth is None:
+        return Answer.undecided(
+            "the loop is too near the limit of stability, or its dead times act too directly, to tell"
+        )
+    return Answer.of_truth(truth)
+
+
 def in_time(read: TimeReader) -> Reader:
     """Make a reader of a response subject from one of its response in time.
 

@@ -8,6 +8,8 @@ from specgate.frequency.questions import Gain, OpenLoop
 from specgate.response.answers import Absent, Answer
 from specgate.response.inputs import Input
 from specgate.response.questions import TimeResponse
+from specgate.systems.delayed import DelayedSolution
+from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.solution import LoopSolution
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
@@ -29,7 +31,7 @@ class ResponseSubject:
     beyond:   why formulas for step responses of rational transfer functions say nothing of this one; None: they may.
     """
 
-    channel: TransferFunction | Absent
+    channel: TransferFunction | DelayedTransfer | Absent
     size: fmpq
     response: TimeResponse | Absent
     error: TimeResponse | Absent
@@ -51,7 +53,7 @@ class BreakSubject:
     loop: L over frequency; None where this version does not answer that.
     """
 
-    open_loop: TransferFunction
+    open_loop: TransferFunction | DelayedTransfer
     stable: Answer
     loop: OpenLoop | None = None
 
@@ -60,7 +62,7 @@ class BreakSubject:
 class LoopSubject:
     """The whole loop with every mode, cancelled or not."""
 
-    solution: LoopSolution
+    solution: LoopSolution | DelayedSolution
 
 
 Subject = ResponseSubject | BreakSubject | LoopSubject

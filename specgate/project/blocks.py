@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from typing import Any
 
-from flint import fmpq_poly
+from flint import fmpq, fmpq_poly
 
 from specgate.project import faults
 from specgate.project.controller import controller
 from specgate.project.faults import Fault
-from specgate.project.parameters import Values, evaluate, infer
+from specgate.project.parameters import Values, depends_on_pi, evaluate, infer
 from specgate.project.rational_forms import Rational, factored, matrix, poles_and_zeros, polynomials
 from specgate.project.reader import ModelReader
 from specgate.project.state_space import state_space
@@ -56,7 +56,7 @@ class BuiltBlock:
 
 
 def build(subsystem: Subsystem, values: Values) -> BuiltBlock:
-    """Return the block of a subsystem. Its dead time is never approximated but reported. Raises Fault."""
+    """Return the block of a subsystem. Its dead time is never approximated. Raises Fault."""
     if isinstance(subsystem.model, SampledModel):
         reason = f"`{subsystem.name}` is a sampled model, which this version does not answer"
         return BuiltBlock(None, reason, rounded=False, by_fit=False)
@@ -68,8 +68,12 @@ def build(subsystem: Subsystem, values: Values) -> BuiltBlock:
         tuple(subsystem.outputs),
         rational.numerators,
         rational.denominator,
+        _dead_time(subsystem, values),
     )
-    return BuiltBlock(block, _dead_time(subsystem, values), reader.rounded, reader.by_fit)
+    rounded = reader.rounded or (
+        subsystem.dead_time is not None and depends_on_pi(subsystem.dead_time.expression, values)
+    )
+    return BuiltBlock(block, None, rounded, reader.by_fit)
 
 
 def transfer(project: Project, subsystem: str, values: Values) -> Mapping[tuple[str, str], TransferFunction]:
@@ -91,15 +95,16 @@ def transfer(project: Project, subsystem: str, values: Values) -> Mapping[tuple[
 def memoryless(built: BuiltBlock) -> bool:
     """Whether a block is a plain gain without dead time, so that two of it hold no more than one."""
     block = built.block
-    if block is None or built.unsupported is not None or block.denominator.degree() > 0:
+    if block is None or block.dead_time != 0 or block.denominator.degree() > 0:
         return False
     return all(numerator.degree() <= 0 for numerator in block.numerators.values())
 
 
-def _dead_time(subsystem: Subsystem, values: Values) -> str | None:
+def _dead_time(subsystem: Subsystem, values: Values) -> fmpq:
+    """Return the dead time of a subsystem in s. Raises Fault."""
     value = subsystem.dead_time
     if value is None:
-        return None
+        return fmpq(0)
     inferred = infer(value, values, subsystem.name)
     if as_dimension(inferred) != TIME:
         message = f"`{value.as_written}`: a dead time is in s, this is {inferred}"
@@ -107,6 +112,4 @@ def _dead_time(subsystem: Subsystem, values: Values) -> str | None:
     delay = evaluate(value, values, subsystem.name)
     if delay < 0:
         raise Fault(faults.VALUE, f"`{value.as_written}`: a dead time is not negative", value.place)
-    if delay == 0:
-        return None
-    return f"`{subsystem.name}` has a dead time of {value.as_written}, which this version does not answer"
+    return delay

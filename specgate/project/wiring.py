@@ -29,7 +29,7 @@ Node = tuple[str, str]
 class InstantiatedLoop:
     """A loop in coherent SI.
 
-    wiring: a block that this version does not answer (dead time, sampled) is left out of it, and its outputs are
+    wiring: a block that this version does not answer (sampled) is left out of it, and its outputs are
     inputs named `block.output`; what no path through such a block reaches is answered as if it stood there.
     signals: the unit and the span of each signal. rest: value of every input and signal before the step, temperatures
     from the zero of the signal's unit. unsupported: why nothing about the loop as a whole is answered. responses,

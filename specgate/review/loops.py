@@ -5,29 +5,36 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import replace
 
-from flint import arb
+from flint import arb, fmpq_poly
 
 from specgate.analysis.analyses import BreakAnalysis, LoopAnalysis, Missing, ResponseAnalysis
 from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID
 from specgate.compliance.readings import Reading
 from specgate.compliance.units import default_unit, smallness
+from specgate.compliance.wording import hides
 from specgate.frequency.questions import OpenLoop
 from specgate.measures.measure import Arguments, Measure, Reader, SubjectKind
 from specgate.measures.subjects import ResponseSubject, Subject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Response
 from specgate.response.answers import Absent
-from specgate.review.printing import RADIAN_PER_SECOND, coefficients, place_of, poles, result
+from specgate.review.printing import RADIAN_PER_SECOND, coefficients, place_of, poles, result, terms
 from specgate.review.types import (
     BreakReview,
     CrossingReview,
     Curve,
+    DelayedTerm,
     HiddenMode,
     LoopReview,
     MeasureResult,
     ResponseReview,
 )
+from specgate.systems.delayed import DelayedChannel
+from specgate.systems.delayed_network import DelayedTransfer
+from specgate.systems.quasi import Quasi
 from specgate.systems.roots import certified_roots
+from specgate.systems.solution import Channel
+from specgate.systems.transfer import TransferFunction
 from specgate.terms.enclosed import printed_short
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.units import UnitTable
@@ -50,6 +57,7 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
     declared = found.loop
     reason = _reason(found)
     modes = None if reason else found.solution.determinant
+    rational = modes if isinstance(modes, fmpq_poly) else None
     return LoopReview(
         title=declared.title,
         wiring={key: signal.as_written for key, signal in declared.signals.items()},
@@ -57,12 +65,13 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
         signal_units={key: found.signals.unit(key).symbol for key in declared.signals},
         rest={key: value.as_written for key, value in declared.rest.items()},
         subsystems=found.subsystems,
-        characteristic_polynomial=() if modes is None else coefficients(modes),
-        poles=() if modes is None else poles(certified_roots(modes, _SHOWN)),
+        characteristic_polynomial=() if rational is None else coefficients(rational),
+        poles=() if rational is None else poles(certified_roots(rational, _SHOWN)),
         hidden_modes=tuple(_hidden(found)),
         measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
         responses={key: _response(one, again.responses[key], curve=curves) for key, one in found.responses.items()},
         breaks={key: _break(one, again.breaks[key]) for key, one in found.breaks.items()},
+        characteristic_terms=terms(modes) if isinstance(modes, Quasi) else None,
         reason=reason,
     )
 
@@ -70,14 +79,17 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
 def _break(found: BreakAnalysis, again: BreakAnalysis) -> BreakReview:
     if isinstance(found.subject, Missing):
         return BreakReview(found.declared.at, (), reason=found.subject.reason)
-    opened, loop = found.subject.open_loop, found.subject.loop
+    loop = found.subject.loop
     others = None if isinstance(again.subject, Missing) else again.subject.loop
+    above, below = _parts(found.subject.open_loop)
     return BreakReview(
         at=found.declared.at,
         measures=_measures("break", found.subject, again.subject, ONE),
-        numerator=coefficients(opened.numerator),
-        denominator=coefficients(opened.denominator),
+        numerator=above[0],
+        denominator=below[0],
         crossings=() if loop is None or others is None else tuple(_crossings(loop, others)),
+        numerator_terms=above[1],
+        denominator_terms=below[1],
     )
 
 
@@ -95,6 +107,19 @@ def _crossings(loop: OpenLoop, again: OpenLoop) -> Iterator[CrossingReview]:
         )
 
 
+_Part = tuple[tuple[str, ...], tuple[DelayedTerm, ...] | None]
+"""A polynomial, or none and the terms of a quasi-polynomial."""
+
+
+def _parts(transfer: TransferFunction | DelayedTransfer | None) -> tuple[_Part, _Part]:
+    """Print numerator and denominator."""
+    if transfer is None:
+        return ((), None), ((), None)
+    if isinstance(transfer, TransferFunction):
+        return (coefficients(transfer.numerator), None), (coefficients(transfer.denominator), None)
+    return ((), terms(transfer.numerator)), ((), terms(transfer.denominator))
+
+
 def _reason(found: LoopAnalysis) -> str | None:
     if isinstance(found.subject, Missing):
         return found.subject.reason
@@ -103,30 +128,43 @@ def _reason(found: LoopAnalysis) -> str | None:
 
 def _hidden(found: LoopAnalysis) -> Iterator[HiddenMode]:
     for name, response in found.responses.items():
-        for channel in response.channels:
-            if channel.hidden.degree() > 0:
-                roots = poles(certified_roots(channel.hidden, _SHOWN))
-                yield HiddenMode(name, coefficients(channel.hidden), not channel.hides_instability, roots)
+        for channel in filter(hides, response.channels):
+            hidden = channel.hidden if isinstance(channel.hidden, fmpq_poly) else channel.hidden.polynomial
+            stable = channel.hides_instability is False
+            if hidden is not None:
+                yield HiddenMode(name, coefficients(hidden), stable, poles(certified_roots(hidden, _SHOWN)))
+            elif isinstance(channel.hidden, Quasi):
+                yield HiddenMode(name, (), stable, terms=terms(channel.hidden))
 
 
 def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) -> ResponseReview:
     declared, subject = found.response, found.subject
-    reduced = None if found.channel is None else found.channel.transfer.reduced()
+    reduced = None if found.channel is None else _reduced(found.channel)
+    above, below = _parts(reduced)
+    rational = reduced if isinstance(reduced, TransferFunction) else None
     return ResponseReview(
         from_=" + ".join(one.source for one in declared.excitations),
         to=declared.to,
         input=_input(declared),
         unit=found.unit.symbol,
-        numerator=() if reduced is None else coefficients(reduced.numerator),
-        denominator=() if reduced is None else coefficients(reduced.denominator),
+        numerator=above[0],
+        denominator=below[0],
         measures=_absent(declared, subject.reason)
         if isinstance(subject, Missing)
         else _measures("response", subject, again.subject, found.unit),
-        poles=() if reduced is None else poles(certified_roots(reduced.denominator, _SHOWN)),
-        zeros=() if reduced is None or not reduced.numerator else poles(certified_roots(reduced.numerator, _SHOWN)),
+        poles=() if rational is None else poles(certified_roots(rational.denominator, _SHOWN)),
+        zeros=() if rational is None or not rational.numerator else poles(certified_roots(rational.numerator, _SHOWN)),
         curve=_curve(found) if curve else None,
+        numerator_terms=above[1],
+        denominator_terms=below[1],
         reason=subject.reason if isinstance(subject, Missing) else None,
     )
+
+
+def _reduced(channel: Channel | DelayedChannel) -> TransferFunction | DelayedTransfer:
+    if isinstance(channel, DelayedChannel):
+        return channel.transfer.rational or channel.transfer
+    return channel.transfer.reduced()
 
 
 def _input(declared: Response) -> dict[str, str]:

@@ -10,7 +10,8 @@ from flint import fmpq, fmpq_poly
 
 from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer, Fragile
-from specgate.review.types import Amount, Beside, Location, Pole, Result
+from specgate.review.types import Amount, Beside, DelayedTerm, Location, Pole, Result
+from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root
 from specgate.terms.decimals import power_of_ten
 from specgate.terms.enclosed import DIGITS, Enclosed, ends, in_unit, magnitude, printed, printed_exact, to_float
@@ -41,6 +42,11 @@ def short(value: fmpq) -> str:
 def coefficients(polynomial: fmpq_poly) -> tuple[str, ...]:
     """Print a polynomial: exact coefficients, highest power first."""
     return tuple(fraction(value) for value in reversed(polynomial.coeffs())) or ("0",)
+
+
+def terms(quasi: Quasi) -> tuple[DelayedTerm, ...]:
+    """Print a quasi-polynomial: exact terms by rising delay."""
+    return tuple(DelayedTerm(fraction(delay), coefficients(polynomial)) for delay, polynomial in quasi.terms)
 
 
 def poles(roots: Iterable[Root]) -> tuple[Pole, ...]:

@@ -92,6 +92,14 @@ class Pole:
 
 
 @record
+class DelayedTerm:
+    """A polynomial (exact, highest power first) times e^(-delay s); the delay in s, exact."""
+
+    delay: str
+    coefficients: tuple[str, ...]
+
+
+@record
 class Curve:
     """Points of a response, seconds against the signal's unit (deviation from rest), 6 digits."""
 
@@ -113,6 +121,9 @@ class ResponseReview:
     poles: tuple[Pole, ...] = ()
     zeros: tuple[Pole, ...] = ()
     curve: Curve | None = None
+    numerator_terms: tuple[DelayedTerm, ...] | None = _omitted()
+    """With dead time, in place of the numerator: a sum of terms."""
+    denominator_terms: tuple[DelayedTerm, ...] | None = _omitted()
     reason: str | None = _omitted()
     """Why there is no response (improper, not answered yet)."""
 
@@ -139,6 +150,8 @@ class BreakReview:
     numerator: tuple[str, ...] = ()
     denominator: tuple[str, ...] = ()
     crossings: tuple[CrossingReview, ...] = ()
+    numerator_terms: tuple[DelayedTerm, ...] | None = _omitted()
+    denominator_terms: tuple[DelayedTerm, ...] | None = _omitted()
     reason: str | None = _omitted()
 
 
@@ -150,6 +163,8 @@ class HiddenMode:
     polynomial: tuple[str, ...]
     stable: bool
     poles: tuple[Pole, ...] = ()
+    terms: tuple[DelayedTerm, ...] | None = _omitted()
+    """With dead time, in place of the polynomial."""
 
 
 @record
@@ -169,6 +184,8 @@ class LoopReview:
     measures: tuple[MeasureResult, ...]
     responses: Mapping[str, ResponseReview]
     breaks: Mapping[str, BreakReview]
+    characteristic_terms: tuple[DelayedTerm, ...] | None = _omitted()
+    """With dead time, in place of the characteristic polynomial: a sum of terms."""
     reason: str | None = _omitted()
     """Why the loop could not be solved (an algebraic loop)."""
 

@@ -11,8 +11,9 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from specgate.analysis.analyses import LoopAnalysis, ResponseAnalysis
-from specgate.compliance.wording import modes
+from specgate.compliance.wording import hides, modes
 from specgate.rules.rule import Facts, Rule
+from specgate.systems.delayed import DelayedChannel, DelayedComponent
 from specgate.systems.solution import Channel, Component
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Level
@@ -28,9 +29,11 @@ def check(facts: Facts) -> Iterator[Finding]:
                 yield from _of_response(loop, response, channel)
 
 
-def _of_response(loop: LoopAnalysis, response: ResponseAnalysis, channel: Channel) -> Iterator[Finding]:
+def _of_response(
+    loop: LoopAnalysis, response: ResponseAnalysis, channel: Channel | DelayedChannel
+) -> Iterator[Finding]:
     name = f"{loop.loop.name}.{response.response.name}"
-    if channel.hidden.degree() > 0 and not channel.hides_instability:
+    if hides(channel) and channel.hides_instability is False:
         message = (
             f"{name} does not show {modes(channel.hidden)}, which a zero cancels on the way from {channel.source} to "
             f"{channel.target}; it decays, and comes back where a tolerance moves it off the zero"
@@ -50,7 +53,7 @@ def _of_response(loop: LoopAnalysis, response: ResponseAnalysis, channel: Channe
         yield _finding(loop, response, Level.WARNING, message)
 
 
-def _where(component: Component) -> str:
+def _where(component: Component | DelayedComponent) -> str:
     return ", ".join(component.signals or component.instances)
 
 

@@ -24,7 +24,7 @@ def check(facts: Facts) -> Iterator[Finding]:
     for loop in facts.analyses.loops.values():
         for name, response in loop.responses.items():
             for channel in (one for one in response.channels if one.hides_instability):
-                signals = dict.fromkeys(s for one in channel.components if not one.stable for s in one.signals)
+                signals = dict.fromkeys(s for one in channel.components if one.stable is False for s in one.signals)
                 yield Finding(
                     rule=NAME,
                     level=Level.ERROR,

@@ -14,6 +14,7 @@ class Block:
     """A subsystem with its model: outputs = numerators / denominator * inputs, as written, never reduced.
 
     numerators: {(output, input): polynomial}; a missing pair is zero. One denominator is one set of modes.
+    dead_time: by which every output is late (s, not negative).
     """
 
     name: str
@@ -21,6 +22,7 @@ class Block:
     outputs: tuple[str, ...]
     numerators: Mapping[tuple[str, str], fmpq_poly]
     denominator: fmpq_poly
+    dead_time: fmpq = fmpq(0)
 
 
 @record

@@ -64,7 +64,7 @@ class Network:
     def groups(self) -> tuple[Group, ...]:
         """The components with blocks, those upstream first; all must have been solved."""
         determinants = [fmpq_poly(determinant) for determinant in self.triangle.determinants]
-        merged = _merged(self.blocks, [output.instance for output in self.equations.outputs])
+        merged = merged_blocks(self)
         return tuple(self._group(members, determinants) for members in merged)
 
     def _group(self, members: Sequence[int], determinants: Sequence[fmpq_poly]) -> Group:
@@ -88,6 +88,11 @@ class Network:
     @cached_property
     def _reversed(self) -> Mapping[Reference, Sequence[Reference]]:
         return reversed_arcs(self.equations.arcs)
+
+
+def merged_blocks(network: Network) -> list[list[int]]:
+    """Return the numbers of the components in sets that share no block with each other, in the order of their first."""
+    return _merged(network.blocks, [output.instance for output in network.equations.outputs])
 
 
 def _merged(blocks: Sequence[Sequence[int]], owner: Sequence[str]) -> list[list[int]]:

@@ -16,7 +16,8 @@ from specgate.systems.transfer import TransferFunction
 from specgate.systems.wellposed import algebraic_loop
 from specgate.terms.records import record
 
-_INJECTED = "(injected)"
+INJECTED = "(injected)"
+"""Name of the outside variable that stands for a signal where its loop is opened."""
 
 
 @record
@@ -63,17 +64,17 @@ class OpenLoop:
 def opened(network: Network, signal: str, cut: Cut | None = None) -> OpenLoop:
     """Return the loop of a well-posed network opened at a signal. Raises KeyError for an unknown name."""
     cut = cut or Cut()
-    whole = network if not cut.held else Network(Equations(_held(network.equations.wiring, cut.held)))
+    whole = network if not cut.held else Network(Equations(held_open(network.equations.wiring, cut.held)))
     if cut.held:
         found = algebraic_loop(whole)
         if found is not None:
             return _ill_posed(signal, f"with {', '.join(cut.held)} open", found, stable=False)
-    node, opening = SignalRef(signal), Network(Equations(_cut(whole.equations.wiring, signal, cut)))
+    node, opening = SignalRef(signal), Network(Equations(cut_at(whole.equations.wiring, signal, cut)))
     closed = _modes_around(whole, node)
     found = algebraic_loop(opening)
     if found is not None:
         return _ill_posed(signal, f"opened at {signal}", found, stable=is_hurwitz(closed))
-    returned = opening.fraction(node, SignalRef(_INJECTED))
+    returned = opening.fraction(node, SignalRef(INJECTED))
     numerator, denominator = -returned.numerator, returned.denominator
     # 1 + L = det P / det P_open, and det P is known with all its modes.
     kept = exact_quotient(closed, monic(numerator + denominator))
@@ -94,7 +95,7 @@ def _modes_around(network: Network, node: Reference) -> fmpq_poly:
     return ONE
 
 
-def _cut(wiring: Wiring, signal: str, cut: Cut) -> Wiring:
+def cut_at(wiring: Wiring, signal: str, cut: Cut) -> Wiring:
     """Return the wiring with an outside variable in place of the uses of a signal that are cut."""
     if signal not in wiring.signals:
         raise KeyError(signal)
@@ -102,13 +103,13 @@ def _cut(wiring: Wiring, signal: str, cut: Cut) -> Wiring:
     return _replaced(
         wiring,
         SignalRef(signal),
-        _INJECTED,
+        INJECTED,
         lambda name: everywhere or name in cut.forms,
         lambda name: everywhere or name in cut.instances,
     )
 
 
-def _held(wiring: Wiring, signals: tuple[str, ...]) -> Wiring:
+def held_open(wiring: Wiring, signals: tuple[str, ...]) -> Wiring:
     """Return the wiring with an outside variable, which nothing drives, in place of every use of some signals."""
     for signal in signals:
         if signal not in wiring.signals:

@@ -5,15 +5,16 @@ Nothing is reduced behind the user's back: what cancels between blocks stays in 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from functools import cached_property
 
 from flint import fmpq, fmpq_poly
 
-from specgate.systems.blocks import SignalRef, Wiring
+from specgate.systems.blocks import OutputRef, SignalRef, Wiring
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.feedthrough import AlgebraicLoop, direct_cycles, is_proper, signals_of
 from specgate.systems.hidden import hidden_modes
-from specgate.systems.network import Group, Network
+from specgate.systems.network import Network
 from specgate.systems.opening import Cut, OpenLoop, opened
 from specgate.systems.polynomials import exact_quotient, product
 from specgate.systems.stability import is_hurwitz
@@ -97,6 +98,11 @@ class LoopSolution:
     algebraic_loop: AlgebraicLoop | None
     _network: Network
 
+    @staticmethod
+    def of(network: Network) -> LoopSolution:
+        """Return what follows from the equations of a wiring."""
+        return LoopSolution(network.equations.wiring, algebraic_loop(network), network)
+
     @property
     def network(self) -> Network:
         """The solved equations."""
@@ -119,7 +125,7 @@ class LoopSolution:
         """The components with blocks, those upstream first."""
         hidden = hidden_modes(self.network)
         return tuple(
-            Component(_carriers(self.network, group), group.instances, group.modes, concealed)
+            Component(carriers(self.network, group.outputs), group.instances, group.modes, concealed)
             for group, concealed in zip(self.network.groups, hidden, strict=True)
         )
 
@@ -188,19 +194,18 @@ class LoopSolution:
 
 def solve(wiring: Wiring) -> LoopSolution:
     """Solve a wiring. Raises KeyError for a reference to nothing; an algebraic loop is part of the answer."""
-    network = Network(Equations(wiring))
-    return LoopSolution(wiring, algebraic_loop(network), network)
+    return LoopSolution.of(Network(Equations(wiring)))
 
 
-def _carriers(network: Network, group: Group) -> tuple[str, ...]:
-    """Return the signals in the cycles of a group; if it has none, those whose sums read its blocks (nested or not)."""
+def carriers(network: Network, outputs: Sequence[OutputRef]) -> tuple[str, ...]:
+    """Return the signals in the cycles of outputs; if there are none, those whose sums read them (nested or not)."""
     equations = network.equations
-    cycles = [c for c in equations.components if not set(c).isdisjoint(group.outputs)]
+    cycles = [c for c in equations.components if not set(c).isdisjoint(outputs)]
     inside = signals_of(node for component in cycles for node in component)
     if inside:
         return inside
     carried: dict[str, None] = {}
-    waiting: list[Reference] = list(group.outputs)
+    waiting: list[Reference] = list(outputs)
     while waiting:
         for fed in equations.arcs[waiting.pop()]:
             if isinstance(fed, SignalRef):

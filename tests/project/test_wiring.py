@@ -10,6 +10,8 @@ from flint import fmpq, fmpq_poly
 from specgate.project.instantiate import PRECISE_PI, InstantiatedLoop, instantiate, values
 from specgate.project.types import Project
 from specgate.systems.blocks import LinearForm, OutputRef, SignalRef
+from specgate.systems.delay_cut import has_dead_time
+from specgate.systems.delayed import solve_delayed
 from specgate.systems.solution import solve
 from specgate.terms.findings import Finding
 
@@ -170,24 +172,23 @@ def test_constants_in_sums_are_coherent_si(project: ProjectOf) -> None:
 
 def test_a_dead_time_beside_the_loop_leaves_the_loop_alone(project: ProjectOf) -> None:
     made = loop(project(text(readout=", dead_time: 20 ms")))
-    assert instances(made) == ["winder", "dancer", "trim"]
-    assert made.wiring.inputs == ("ask", "slack", "readout.output")
-    assert list(made.responses) == ["shown"]
-    assert "`readout` has a dead time of 20 ms" in made.responses["shown"]
-    assert "dead time" in (made.unsupported or "")
-    assert made.breaks == {}
+    assert instances(made) == ["winder", "dancer", "trim", "readout"]
+    assert (made.responses, made.breaks, made.unsupported) == ({}, {}, None)
+    late = solve_delayed(made.wiring)
+    assert late.undelayed("ask", ("place",))
+    assert not late.undelayed("ask", ("shown",))
     exact = solve(loop(project(text())).wiring).channel("ask", "place").transfer.reduced()
-    assert solve(made.wiring).channel("ask", "place").transfer.reduced() == exact
+    assert late.rest.channel("ask", "place").transfer.reduced() == exact
 
 
-def test_a_dead_time_in_the_loop_concerns_everything(project: ProjectOf) -> None:
+def test_a_dead_time_in_the_loop_is_kept_exactly(project: ProjectOf) -> None:
     made = loop(project(text(winder=", dead_time: 20 ms")))
-    assert list(made.responses) == ["follow", "shown", "upset"]
-    assert list(made.breaks) == ["main"]
+    assert [instance.block.dead_time for instance in made.wiring.instances] == [fmpq(1, 50), 0, 0, 0]
+    assert not solve_delayed(made.wiring).undelayed("ask", ("place",))
 
 
 def test_a_dead_time_of_zero_is_none(project: ProjectOf) -> None:
-    assert loop(project(text(winder=", dead_time: 0 s"))).unsupported is None
+    assert not has_dead_time(loop(project(text(winder=", dead_time: 0 s"))).wiring)
 
 
 @pytest.mark.parametrize(("delay", "message"), [("-1 ms", "not negative"), ("3 mm", "a dead time is in s")])

@@ -1,0 +1,113 @@
+"""A delayed response far from its start: the residues at its rightmost poles, and a proved bound of the rest."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import lru_cache
+
+from flint import acb, acb_poly, arb, fmpq
+
+from specgate.delays.laurent import as_time_polynomial, of_quasi, principal, without_root
+from specgate.delays.remainder import Remainder, remainder
+from specgate.delays.roots import Rightmost, certified_right
+from specgate.delays.steps import Mode
+from specgate.delays.transform import Transform
+from specgate.systems.quasi_count import Line, dominated_beyond, line
+from specgate.systems.roots import certified_roots
+from specgate.terms.precision import series_terms, working_precision
+
+_RADIANS = 90
+"""Height of the line times the longest delay that is worth its cells."""
+
+_SPREADS = (12, 8, 6, 5, 4, fmpq(7, 2), 3, fmpq(5, 2), 2, fmpq(3, 2), 1)
+"""Distances of the line from the axis that are tried, in parts of the longest delay."""
+
+
+@dataclass(frozen=True)
+class Poles:
+    """All poles of Y right of a line, but s = 0: of polynomials in s alone, and of each factor with dead time."""
+
+    line: Line
+    rational: tuple[tuple[acb, int], ...]
+    delayed: tuple[tuple[Rightmost, int], ...]
+
+
+def poles_right_of(transform: Transform, left: fmpq) -> Poles | None:
+    """Return all poles of a transform right of Re s = left, proved complete by one count; None where they were not."""
+    counted = line(transform.denominator, left)
+    if counted is None:
+        return None
+    bound = arb(left)
+    rational = [
+        (root.value, times)
+        for factor, times in transform.rational_factors
+        for root in certified_roots(factor, 64)
+        if root.value.real > bound
+    ]
+    wanted = counted.count - transform.zero_times - sum(times for _, times in rational)
+    for fineness in (1.0, 2.5, 6.0):
+        delayed = [
+            (certified_right(factor, left, counted.height, fineness), times)
+            for factor, times in transform.quasi_factors
+        ]
+        if sum(found.count * times for found, times in delayed) == wanted:
+            upper = tuple((value, times) for value, times in rational if not value.imag < 0)
+            return Poles(counted, upper, tuple(delayed))
+    return None
+
+
+def suitable_lines(transform: Transform) -> list[fmpq]:
+    """Return lines (real parts) to try, those that leave least first: far from the axis, and yet with few poles."""
+    longest = transform.denominator.delayed[-1][0]
+    found = []
+    for spread in _SPREADS:
+        left = -fmpq(spread) / longest * fmpq(199, 200)
+        height = dominated_beyond(transform.denominator, left)
+        if height is not None and height * longest <= _RADIANS:
+            found.append(left)
+    return found
+
+
+class Modal:
+    """The residues of Y at its poles right of a line, and what they leave; the part at s = 0 is kept apart, exact."""
+
+    def __init__(self, transform: Transform, poles: Poles, rest: Remainder) -> None:
+        self.transform, self.poles, self.rest = transform, poles, rest
+        self._at = lru_cache(maxsize=8)(self._modes)
+
+    def modes(self, bits: int) -> tuple[Mode, ...]:
+        """Return the modes, x counted from t = 0, at a working precision."""
+        return self._at(bits)
+
+    def _modes(self, bits: int) -> tuple[Mode, ...]:
+        transform = self.transform
+        found: list[tuple[acb, int]] = []
+        for factor, times in transform.rational_factors:
+            roots = [root.value for root in certified_roots(factor, bits)]
+            kept = [r for r in roots if any(r.overlaps(pole) for pole, _ in self.poles.rational)]
+            found += [(root, times) for root in kept if not root.imag < 0]
+        for rightmost, times in self.poles.delayed:
+            found += [(root, times) for root in rightmost.at(bits)]
+        with working_precision(bits):
+            return tuple(self._mode(pole, times) for pole, times in found)
+
+    def _mode(self, pole: acb, times: int) -> Mode:
+        with series_terms(2 * times):
+            above = of_quasi(self.transform.numerator, pole)
+            below = without_root(of_quasi(self.transform.denominator, pole), times)
+        with series_terms(times):
+            parts = principal(above / below, times)
+        return Mode.of(pole, acb_poly(as_time_polynomial(parts)))
+
+
+def modal(transform: Transform, since: fmpq) -> Modal | None:
+    """Return the modal sum of a retarded, stable transform with its remainder from a time on; None: not found."""
+    for left in suitable_lines(transform)[:4]:
+        for nudge in (fmpq(1), fmpq(93, 100)):
+            poles = poles_right_of(transform, left * nudge)
+            if poles is None:
+                continue
+            rest = remainder(transform.numerator, transform.denominator, poles.line, since)
+            if rest is not None:
+                return Modal(transform, poles, rest)
+    return None

@@ -1,0 +1,222 @@
+"""What the roots left of a line leave of a delayed response: at most C e^(-g t), by a bound of an integral.
+
+Let Y = N/D, D = d0 + E with E the delayed terms, of lower degree than d0 (retarded type), R = E/d0, and let the line
+Re s = -g hold no root of D or d0. Y splits exactly into
+
+    Y = sum over j < K of (N/d0) (-R)^j  +  Y_K,   Y_K = (N/D) (-R)^K.
+
+Y_K falls like |s|^(deg N - n - r K), r = n - deg E, so that with K large enough for the derivative of order k the
+inverse transform of s^k Y_K may be moved from the right to the line: nothing is passed but roots of D (residues of Y,
+which the modal sum has) and of d0, and along the line the integral converges absolutely and is at most e^(-g t) times
+
+    (1/2 pi) integral of |s^k Y_K(-g + j w)| dw.
+
+The other terms are rational times e^(-T s). For t > T each is the sum of its residues at all roots of d0. At roots
+right of the line they cancel those of Y_K there, since Y has no pole at a root of d0 that is none of D. What is left
+are residues at roots of d0 left of the line, sums of a u^(l-1)/(l-1)! e^(p u) with u = t - T, each at most its value
+at the least u asked for, or at the summit of u^(l-1) e^(-(|Re p| - g) u), times e^(-g u).
+
+The integral is bounded cell by cell, with |D| from below by the cells that counted its roots; beyond their height W by
+|D| >= |d0| (1 - |R|), and from some height on by powers of w alone.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from flint import acb, acb_poly, arb, fmpq, fmpq_poly
+
+from specgate.delays.laurent import of_polynomial, principal, without_root
+from specgate.systems.quasi import Quasi
+from specgate.systems.quasi_count import Evaluated, Line
+from specgate.systems.roots import certified_roots
+from specgate.terms.precision import series_terms, working_precision
+
+ORDERS = (0, 1, 2, 3)
+_BITS = 64
+_MOST = 4000
+
+
+@dataclass(frozen=True)
+class Remainder:
+    """|y^(k)(t) - modal sum| <= sizes[k] e^(-rate t) for t >= since."""
+
+    rate: fmpq
+    sizes: tuple[arb, arb, arb, arb]
+    since: fmpq
+
+    def at(self, order: int, time: arb) -> arb:
+        """Return the bound of a derivative at a time, which it is not below."""
+        return (self.sizes[order] * (-time * self.rate).exp()).abs_upper()
+
+
+def remainder(numerator: Quasi, denominator: Quasi, line: Line, since: fmpq) -> Remainder | None:
+    """Return what is left of N/D beside its residues right of a line, from a time on; None where it was not bounded.
+
+    N is of lower degree than the undelayed term of D, the delayed ones too. since: the least t asked for.
+    """
+    with working_precision(_BITS):
+        bound = _Bound(numerator, denominator, line)
+        if bound.last_delay >= since:
+            return None
+        sizes = bound.integrals()
+        if sizes is None:
+            return None
+        total = [size + bound.residues(order, since) for order, size in zip(ORDERS, sizes, strict=True)]
+    if not all(size.is_finite() for size in total):
+        return None
+    return Remainder(-line.real, (total[0], total[1], total[2], total[3]), since)
+
+
+class _Bound:
+    def __init__(self, numerator: Quasi, denominator: Quasi, line: Line) -> None:
+        self.line = line
+        self.base = denominator.undelayed
+        self.delayed = Quasi(denominator.delayed)
+        self.numerator = numerator
+        self._functions = Evaluated(numerator), Evaluated(self.delayed)
+        self._base = acb_poly(self.base)
+        fall = self.base.degree() - self.delayed.degree
+        excess = numerator.degree - self.base.degree()
+        self.powers = [max(0, -(-(order + excess + 2) // fall)) for order in ORDERS]
+        self.exponents = [order + excess - fall * power for order, power in zip(ORDERS, self.powers, strict=True)]
+
+    @property
+    def last_delay(self) -> fmpq:
+        """The latest time at which a term that is split off begins."""
+        longest = self.delayed.terms[-1][0]
+        return self.numerator.terms[-1][0] + longest * max(0, max(self.powers) - 1)
+
+    def integrals(self) -> list[arb] | None:
+        """Return (1/pi) times the integral over w >= 0 of each |s^k Y_K|; None where a bound was not found."""
+        far = self._far()
+        totals = [arb(0)] * len(ORDERS)
+        cells: list[tuple[fmpq, fmpq, arb | None]] = [(c.start, c.end, c.least) for c in self.line.cells]
+        cells += [(start, end, None) for start, end in _doubled(self.line.height, far)]
+        count = 0
+        while cells:
+            start, end, least = cells.pop()
+            sizes = self._over(start, end, least)
+            count += 1
+            if count > _MOST:
+                return None
+            if sizes is None:
+                middle = (start + end) / 2
+                cells += [(start, middle, least), (middle, end, least)]
+                continue
+            totals = [(total + size * (end - start)).upper() for total, size in zip(totals, sizes, strict=True)]
+        beyond = self._beyond(far)
+        return [((total + rest) / arb.pi()).abs_upper() for total, rest in zip(totals, beyond, strict=True)]
+
+    def _over(self, start: fmpq, end: fmpq, least: arb | None) -> list[arb] | None:
+        """Return upper bounds of |s^k Y_K| over a cell of heights; None where it has to be cut."""
+        s = acb(self.line.real, arb((start + end) / 2, (end - start) / 2))
+        above, delayed = (function.value(s).abs_upper() for function in self._functions)
+        base = self._base(s).abs_lower()
+        if not base > 0:
+            return None
+        ratio = (delayed / base).upper()
+        below = least if least is not None else (base * (1 - ratio)).lower()
+        if not below > 0:
+            return None
+        size = s.abs_upper()
+        found = [
+            (above * size**order * ratio**power / below).abs_upper()
+            for order, power in zip(ORDERS, self.powers, strict=True)
+        ]
+        return found if all(one.is_finite() for one in found) else None
+
+    def _far(self) -> fmpq:
+        """Return a height from which on |d0| is at least half its leading term and |E| at most a quarter of that."""
+        height = max(self.line.height, -self.line.real, fmpq(1, 2**60)) * 2
+        while True:
+            lead, rest, delayed = self._leading(height)
+            if lead > 2 * rest and lead > 4 * delayed:
+                return height
+            height = height * 2
+
+    def _leading(self, height: fmpq) -> tuple[arb, arb, arb]:
+        """Return |lead of d0|, what the rest of d0, and what E is at most in the same unit, h^n at the height h."""
+        degree = self.base.degree()
+        shifted = _shifted(self.base, self.line.real)
+        rest = _size(shifted[:-1], height, degree)
+        return abs(arb(shifted[-1])), rest, self._terms(self.delayed, height, degree)
+
+    def _terms(self, quasi: Quasi, height: fmpq, degree: int) -> arb:
+        """Return an upper bound of |terms(s)| / h^degree for heights h of at least `height`."""
+        total = arb(0)
+        for delay, polynomial in quasi.terms:
+            size = _size(_shifted(polynomial, self.line.real), height, degree)
+            total += size * (-arb(self.line.real) * delay).exp()
+        return total.abs_upper()
+
+    def _beyond(self, far: fmpq) -> list[arb]:
+        """Return the integral from a height on: there |s^k Y_K| <= A (h/far)^exponent, exponent <= -2."""
+        lead, rest, delayed = self._leading(far)
+        base = lead - rest
+        above = self._terms(self.numerator, far, self.base.degree())
+        ratio = delayed / base
+        size = acb(self.line.real, far).abs_upper()
+        found = []
+        for order, power, exponent in zip(ORDERS, self.powers, self.exponents, strict=True):
+            height = above * size**order * ratio**power / (base - delayed)
+            found.append((height * far / (-exponent - 1)).abs_upper())
+        return found
+
+    def residues(self, order: int, since: fmpq) -> arb:
+        """Return the size of what the split-off terms leave at roots of d0 left of the line."""
+        total = arb(0)
+        roots = [root for root in certified_roots(self.base, _BITS) if not root.value.real > arb(self.line.real)]
+        part = self.numerator
+        for power in range(self.powers[order]):
+            for root in roots:
+                total += self._residue(part, root.value, root.multiplicity, order, power, since)
+            part = part * self.delayed
+        return total.abs_upper()
+
+    def _residue(self, part: Quasi, root: acb, multiplicity: int, order: int, power: int, since: fmpq) -> arb:
+        times = multiplicity * (power + 1)
+        spare = -root.real + self.line.real
+        total = arb(0)
+        with series_terms(times + multiplicity):
+            divisor = without_root(of_polynomial(self.base, root), multiplicity) ** (power + 1)
+            for delay, polynomial in part.terms:
+                driven = of_polynomial(polynomial * fmpq_poly([0, 1]) ** order, root)
+                parts = principal(driven / divisor, times)
+                age = arb(since - delay)
+                shift = (-arb(self.line.real) * delay).exp()
+                for size in _decayed(parts, spare, age):
+                    total += size * shift
+        return total.abs_upper()
+
+
+def _decayed(parts: tuple[acb, ...], spare: arb, age: arb) -> Iterator[arb]:
+    """Yield bounds of |a_l| u^(l-1)/(l-1)! e^(-spare u) for u >= age."""
+    factorial = arb(1)
+    for power, part in enumerate(parts):
+        factorial = factorial * max(power, 1)
+        summit = arb(power) / spare
+        at = age if age > summit else summit.union(age) if age.overlaps(summit) else summit
+        yield (abs(part) / factorial * at**power * (-spare * at).exp()).abs_upper()
+
+
+def _shifted(polynomial: fmpq_poly, real: fmpq) -> list[fmpq]:
+    """Return the coefficients of p(real + x) in x."""
+    return list(polynomial(fmpq_poly([real, 1])).coeffs())
+
+
+def _size(coefficients: list[fmpq], height: fmpq, degree: int) -> arb:
+    """Return sum of |c_i| h^(i - degree): for i <= degree it falls as h rises."""
+    total = arb(0)
+    for power, coefficient in enumerate(coefficients):
+        total += abs(arb(coefficient)) * arb(height) ** (power - degree)
+    return total
+
+
+def _doubled(start: fmpq, end: fmpq) -> Iterator[tuple[fmpq, fmpq]]:
+    """Yield parts of [start, end] that widen by a quarter of their height, the first an eighth of the end at most."""
+    while start < end:
+        following = min(end, start + max(start / 4, end / 64))
+        yield start, following
+        start = following

@@ -1,0 +1,171 @@
+"""The method of steps in the frequency domain: a delayed response as a sum of rational ones that begin one by one.
+
+With D = d0 + sum of dk e^(-tk s), Y = N/D = sum over T of c_T(s) e^(-T s), where T runs through the sums of delays and
+
+    d0 c_T = n_T - sum over k of dk c_(T - tk).
+
+Every c_T is rational with poles at the roots of d0 alone, and its inverse transform acts from t = T on: up to any time
+finitely many of them count, and y(t) is the sum of their residues exactly. About a root p of d0 of multiplicity m the
+recursion is one of Laurent series, each step adding m to the order of the pole. Between two kinks the terms with one p
+are put together: a polynomial in t times e^(p t).
+
+How many digits cancel between roots near each other is seen in the balls; more bits give them back.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+
+from flint import acb, acb_poly, acb_series, arb, fmpq
+
+from specgate.delays.laurent import as_time_polynomial, of_polynomial, principal, without_root
+from specgate.systems.quasi import Quasi
+from specgate.systems.roots import Root, certified_roots
+from specgate.terms.precision import series_terms, working_precision
+
+Values = tuple[arb, arb, arb, arb]
+"""y and its first three derivatives."""
+
+
+@dataclass(frozen=True)
+class Mode:
+    """Re(polynomial(x) e^(pole x)), twice that for a pole off the real axis; x: time from where the mode is told.
+
+    polynomials: that of the mode and of its first three derivatives.
+    """
+
+    pole: acb
+    polynomials: tuple[acb_poly, acb_poly, acb_poly, acb_poly]
+
+    @staticmethod
+    def of(pole: acb, polynomial: acb_poly) -> Mode:
+        """Return a mode and its derivatives."""
+        found = [polynomial]
+        for _ in range(3):
+            found.append(found[-1].derivative() + found[-1] * pole)
+        return Mode(pole, (found[0], found[1], found[2], found[3]))
+
+    @property
+    def weight(self) -> int:
+        """2 for a conjugate pair, 1 for a real pole."""
+        return 1 if self.pole.imag.is_zero() else 2
+
+    def add(self, into: list[arb], x: arb) -> None:
+        """Add the mode and its derivatives at x."""
+        factor = (self.pole * x).exp() * self.weight
+        for order, polynomial in enumerate(self.polynomials):
+            into[order] += (polynomial(acb(x)) * factor).real
+
+    def envelope(self, order: int, x: arb) -> arb:
+        """Return what a derivative of a decaying mode does not exceed in magnitude at x and after."""
+        total = arb(0)
+        for power, coefficient in enumerate(self.polynomials[order].coeffs()):
+            at = x.max(arb(power) / -self.pole.real)
+            total += abs(coefficient) * at**power * (self.pole.real * at).exp()
+        return (total * self.weight).abs_upper()
+
+
+def summed(modes: Sequence[Mode], x: arb) -> Values:
+    """Return the sum of modes and its derivatives over a ball of times."""
+    total = [arb(0)] * 4
+    for mode in modes:
+        mode.add(total, x)
+    return total[0], total[1], total[2], total[3]
+
+
+def kinks_of(numerator: Quasi, denominator: Quasi, until: fmpq, most: int) -> tuple[fmpq, ...] | None:
+    """Return the times up to `until` at which a new term begins, in order; None for more than `most`."""
+    steps = [delay for delay, _ in denominator.delayed]
+    found = {delay for delay, _ in numerator.terms if delay <= until}
+    fresh = set(found)
+    while fresh:
+        fresh = {time + step for time in fresh for step in steps if time + step <= until} - found
+        found |= fresh
+        if len(found) > most:
+            return None
+    return tuple(sorted(found))
+
+
+class Steps:
+    """The terms of N/D that begin at some times, at one working precision; all delays of N and D are >= 0.
+
+    kinks: every time at which a term begins, from the first on, without a gap.
+    """
+
+    def __init__(self, numerator: Quasi, denominator: Quasi, kinks: Sequence[fmpq], bits: int) -> None:
+        self.kinks = tuple(kinks)
+        self.bits = bits
+        self._numerator, self._denominator = numerator, denominator
+        with working_precision(bits):
+            self._terms = [self._about(root.value, root.multiplicity) for root in self._roots()]
+        self._pieces: list[tuple[Mode, ...]] = []
+
+    def _roots(self) -> list[Root]:
+        roots = certified_roots(self._denominator.undelayed, self.bits)
+        return [root for root in roots if not root.value.imag < 0]
+
+    def _about(self, root: acb, multiplicity: int) -> tuple[acb, list[acb_poly]]:
+        """Return a root of d0 with the polynomial in t - T of each term that begins at T."""
+        levels = _levels(self.kinks, self._numerator, self._denominator)
+        with series_terms(multiplicity * max(levels, default=1) + multiplicity):
+            local = _Local(self._numerator, self._denominator, root, multiplicity)
+            known: dict[fmpq, tuple[int, acb_series]] = {}
+            polynomials = []
+            for time in self.kinks:
+                level, series = known[time] = local.term(time, known)
+                parts = principal(series, level * multiplicity)
+                polynomials.append(acb_poly(as_time_polynomial(parts)))
+        return root, polynomials
+
+    def modes(self, index: int) -> tuple[Mode, ...]:
+        """Return y between kink `index` and the next as modes, x counted from the kink."""
+        with working_precision(self.bits):
+            while len(self._pieces) <= index:
+                self._pieces.append(self._next())
+        return self._pieces[index]
+
+    def _next(self) -> tuple[Mode, ...]:
+        number = len(self._pieces)
+        if number == 0:
+            return tuple(Mode.of(root, terms[0]) for root, terms in self._terms)
+        gap = arb(self.kinks[number] - self.kinks[number - 1])
+        return tuple(
+            Mode.of(root, mode.polynomials[0](acb_poly([gap, 1])) * (root * gap).exp() + terms[number])
+            for mode, (root, terms) in zip(self._pieces[-1], self._terms, strict=True)
+        )
+
+
+class _Local:
+    """The recursion of the terms as Laurent series about one root of d0; a term is x^(-m level) times a series."""
+
+    def __init__(self, numerator: Quasi, denominator: Quasi, root: acb, multiplicity: int) -> None:
+        self._m = multiplicity
+        self._inverse = 1 / without_root(of_polynomial(denominator.undelayed, root), multiplicity)
+        self._delayed = [(delay, of_polynomial(p, root)) for delay, p in denominator.delayed]
+        self._driven = {delay: of_polynomial(p, root) for delay, p in numerator.terms}
+
+    def term(self, time: fmpq, known: dict[fmpq, tuple[int, acb_series]]) -> tuple[int, acb_series]:
+        """Return c_T from the terms that begin before."""
+        parts = [(0, self._driven[time])] if time in self._driven else []
+        for delay, polynomial in self._delayed:
+            if time - delay in known:
+                level, series = known[time - delay]
+                parts.append((level, -polynomial * series))
+        highest = max(level for level, _ in parts)
+        total = acb_series([0])
+        for level, series in parts:
+            total = total + series * acb_series([*([0] * (self._m * (highest - level))), 1])
+        return highest + 1, total * self._inverse
+
+
+def _levels(kinks: Sequence[fmpq], numerator: Quasi, denominator: Quasi) -> Iterator[int]:
+    """Yield for each kink how often a term that begins there has been divided by d0."""
+    driven = {delay for delay, _ in numerator.terms}
+    known: dict[fmpq, int] = {}
+    for time in kinks:
+        before = [known[time - delay] for delay, _ in denominator.delayed if time - delay in known]
+        if time in driven:
+            before.append(0)
+        known[time] = max(before) + 1
+        yield known[time]
