@@ -7,6 +7,7 @@ from collections.abc import Mapping
 from flint import fmpq
 
 from specgate.measures.measure import Arguments, Band, Measure, UnitRule
+from specgate.project.masks import laid_over, mask_of
 from specgate.project.parameters import Values, evaluate
 from specgate.project.percent import relative_to_change
 from specgate.project.types import Criterion, Value
@@ -28,6 +29,8 @@ def arguments(criterion: Criterion, measure: Measure, values: Values, span: fmpq
     span: high minus low of the signal's span, for `% of span`.
     """
     given = criterion.arguments
+    mask, relative = (None, False) if criterion.mask is None else mask_of(criterion.mask, values, span)
+    laid = "time" if criterion.mask is None else laid_over(criterion.mask, values)
     band, time, frequency = given.get("band"), given.get("time"), given.get("frequency")
     return Arguments(
         band=None if band is None else Band(number(band, values, span), relative_to_change(band) is not None),
@@ -39,6 +42,9 @@ def arguments(criterion: Criterion, measure: Measure, values: Values, span: fmpq
         over=None
         if criterion.over is None
         else (evaluate(criterion.over[0], values), evaluate(criterion.over[1], values)),
+        mask=mask,
+        relative=relative,
+        laid_over=laid,
         measure=measure.name,
     )
 
@@ -48,7 +54,8 @@ def said(criterion: Criterion) -> Mapping[str, str]:
     written = {name: _said(name, value) for name, value in criterion.arguments.items()}
     defaults = ALWAYS_SAID["rise_time"] if criterion.measure == "rise_time" else {}
     over = {} if criterion.over is None else {"over": " to ".join(end.as_written for end in criterion.over)}
-    return {**defaults, **written, **over}
+    mask = {} if criterion.mask is None else {"mask": criterion.mask.name}
+    return {**defaults, **written, **over, **mask}
 
 
 def number(value: Value, values: Values, span: fmpq | None = None) -> fmpq:

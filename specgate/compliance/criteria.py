@@ -22,7 +22,7 @@ from specgate.response.answers import Answer
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Standing, Verdict
 
-_KEPT = {"cases": "a list of cases (`cases`)", "mask": "a mask"}
+_KEPT = {"cases": "a list of cases (`cases`)"}
 _LATER = "not answered by this version"
 
 

@@ -17,9 +17,11 @@ from specgate.systems.roots import Root, certified_roots
 from specgate.systems.solution import Channel
 from specgate.terms.enclosed import DIGITS, printed, printed_exact, printed_short
 from specgate.terms.unit import Unit
+from specgate.terms.units import UnitTable
 from specgate.terms.verdicts import Verdict
 
 _FEW = 4
+_SECOND, _RATE, _DECIBEL = (UnitTable.standard().parse(symbol) for symbol in ("s", "rad/s", "dB"))
 _MODE_BITS = 128
 
 
@@ -109,7 +111,24 @@ def criterion_words(assessed: CriterionAssessment) -> str:
     if assessed.verdict is Verdict.OPEN or assessed.reading.settled.absent is not None:
         return f"{subject(assessed)}: {reason}"
     wanted = limit_words(assessed.criterion.limit)
-    return f"{subject(assessed)} is {result(assessed)}, and {wanted} is required"
+    return f"{subject(assessed)} is {result(assessed)}{_violation(assessed)}, and {wanted} is required"
+
+
+def _violation(assessed: CriterionAssessment) -> str:
+    """Say where a mask is first left; nothing of other measures."""
+    answer = assessed.reading.settled
+    at = answer.at or {}
+    value, limit = at.get("value"), at.get("limit")
+    where = at.get("time", at.get("frequency"))
+    if answer.truth is not False or not (isinstance(value, Answer) and isinstance(limit, Answer)):
+        return ""
+    over_time = "time" in at
+    unit = assessed.signal if over_time else _DECIBEL
+    numbers = " against ".join(apart([Reading.once(one).in_unit(unit) for one in (value, limit)], unit))
+    if not isinstance(where, Answer) or where.absent is not None:
+        return f" ({numbers})"
+    place = figure(Reading.once(where).in_unit(_SECOND if over_time else _RATE), _SECOND if over_time else _RATE)
+    return f" (first at {place}: {numbers})"
 
 
 def condition_words(audited: AuditedCondition) -> str:

@@ -30,6 +30,7 @@ def build(root: Table, inputs: tuple[InputFile, ...], collector: Collector) -> P
     if units is None:
         return None
     context = _context(root, title, units, collector)
+    context.laid = records.masks(root.get("masks"), context)
     shared = parameters(root.get("parameters"), None, context)
     subsystems = _each(root, "subsystem", lambda entry: subsystem(entry, context), collector)
     built = frozenset(subsystems)
@@ -48,6 +49,7 @@ def build(root: Table, inputs: tuple[InputFile, ...], collector: Collector) -> P
         documents=records.documents(root.get("documents"), context),
         evidence=records.evidence(root.get("evidence"), context),
         waivers=records.waivers(root.get("waivers"), context),
+        masks=context.laid,
         evaluate=evaluation(root.get("evaluate")) or "nominal",
         kept=_kept(root, context),
         units_read=tuple(sorted(context.units_read)),
@@ -64,6 +66,7 @@ def is_whole(project: Project, root: Table) -> bool:
         "evidence": project.evidence,
         "waivers": project.waivers,
         "documents": project.documents,
+        "masks": project.masks,
     }
     return all(len(things) == len(section(root, name)) for name, things in found.items())
 
@@ -126,7 +129,6 @@ def _about(requirements: dict[str, Requirement], loops: dict[str, Loop]) -> dict
 def _kept(root: Table, context: Context) -> dict[str, tuple[Kept, ...]]:
     """Keep the sections that a later version answers."""
     sections = {
-        "masks": tuple(records.masks(root.get("masks"), context).values()),
         "cases": tuple(records.cases(root.get("cases"), context).values()),
         "decision_rule": records.single("decision_rule", root.get("decision_rule"), context),
         "model_agreement": records.single("model_agreement", root.get("model_agreement"), context),

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 
 from specgate.intake.collect import Collector
 from specgate.intake.nodes import Items, Node, Number, Table, Text
+from specgate.project.types import MaskDefinition
 from specgate.terms.expressions import Expression, ExpressionError, parse
 from specgate.terms.places import Place
 from specgate.terms.records import record
@@ -36,6 +37,7 @@ class Context:
     """Names by section, whether or not what stands behind them could be built; `broken` are those that could not.
 
     own: parameter names of each subsystem. A name that is broken has been reported: whoever meets it says nothing.
+    laid: the masks that could be read.
     """
 
     collector: Collector
@@ -45,6 +47,7 @@ class Context:
     ports: Mapping[str, Ports] = field(default_factory=dict)
     loops: Mapping[str, LoopNames] = field(default_factory=dict)
     masks: frozenset[str] = frozenset()
+    laid: Mapping[str, MaskDefinition] = field(default_factory=dict)
     cases: frozenset[str] = frozenset()
     evidence: frozenset[str] = frozenset()
     stages: tuple[str, ...] = ()

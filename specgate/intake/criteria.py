@@ -14,7 +14,7 @@ from specgate.intake.nodes import Node, Number, Spot, Table, Text, Truth, as_kep
 from specgate.intake.values import Reader, complete
 from specgate.measures.table import MEASURES
 from specgate.project.percent import relative_to_change
-from specgate.project.types import Basis, Claim, Criterion, Limit, Subject, Value
+from specgate.project.types import Basis, Claim, Criterion, Limit, MaskDefinition, Subject, Value
 
 _ARGUMENTS = ("band", "from", "to", "time", "frequency")
 _LIMITS: tuple[Literal["at_most", "at_least", "between", "within", "equals"], ...] = (
@@ -24,7 +24,7 @@ _LIMITS: tuple[Literal["at_most", "at_least", "between", "within", "equals"], ..
     "within",
     "equals",
 )
-_KEPT = ("mask", "cases")
+_KEPT = ("cases",)
 _CLAIM = re.compile(r"[-+]?(?P<whole>[0-9]*)(?:\.(?P<part>[0-9]*))?(?:[eE](?P<power>[+-]?[0-9]+))?(?:\s.*)?", re.DOTALL)
 
 
@@ -50,12 +50,16 @@ def criterion(node: Node, place: Spot, context: Context) -> Criterion | None:
         return None
     if written_over is not None and over is None:
         return None
+    laid = body.get("mask")
+    mask = _mask(laid, context)
+    if laid is not None and mask is None:
+        return None
     if rests_on is not None and not estimates_one(rests_on, (measure,), context):
         return None
     if not _rising(given, place, context):
         return None
     return Criterion(
-        subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept, over
+        subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept, over, mask
     )
 
 
@@ -135,15 +139,20 @@ def _limit_nodes(kind: str, node: Table, value: Node) -> Sequence[Node | None]:
     return (value, node.get("of")) if kind == "within" else (value,)
 
 
+def _mask(node: Node | None, context: Context) -> MaskDefinition | None:
+    """Return the mask that is named; None where none is, where there is none, or where it was reported."""
+    name = text(node)
+    if name is not None and name.strip() not in context.masks and node is not None:
+        context.unknown("mask", name.strip(), sorted(context.masks), node.spot.place)
+    return None if name is None else context.laid.get(name.strip())
+
+
 # --- what is kept ----------------------------------------------------------------------------------------------
 
 
 def _kept(node: Table, reader: Reader) -> dict[str, object] | None:
     """Keep what is answered later; names and quantities in it must be right now."""
-    mask, evaluate = node.get("mask"), table(node.get("evaluate"))
-    if isinstance(mask, Text) and mask.value.strip() not in reader.context.masks:
-        reader.context.unknown("mask", mask.value.strip(), sorted(reader.context.masks), mask.spot.place)
-        return None
+    evaluate = table(node.get("evaluate"))
     for case in items(node.get("cases")):
         if isinstance(case, Text) and case.value != "all" and case.value not in reader.context.cases:
             reader.context.unknown("case", case.value, sorted(reader.context.cases), case.spot.place)

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from typing import Literal, cast
 
-from specgate.intake.context import Context, entries, items, table
-from specgate.intake.nodes import Items, Node, Table, as_kept
+from specgate.intake.context import Context, entries, items, table, text
+from specgate.intake.nodes import Items, Node, Table, Text, as_kept
 from specgate.intake.values import Reader
-from specgate.project.types import Kept
+from specgate.project.types import Corner, Kept, MaskDefinition
 
 _LIMITS = ("at_most", "at_least", "between", "within", "of")
 
@@ -31,14 +32,28 @@ def documents(node: Node | None, context: Context) -> dict[str, Kept]:
     return _section(node, context, ())
 
 
-def masks(node: Node | None, context: Context) -> dict[str, Kept]:
-    """Keep the masks over time or frequency."""
-    for _, mask in entries(node):
-        for side in ("upper", "lower"):
-            points = mask.get(side) if isinstance(mask, Table) else None
-            for point in items(points):
-                Reader(context).several(point)
-    return _section(node, context, ())
+def masks(node: Node | None, context: Context) -> dict[str, MaskDefinition]:
+    """Read the masks over time or frequency, those in which something was reported left out."""
+    found = ((key.value, _mask(key, table(value), context)) for key, value in entries(node))
+    return {name: mask for name, mask in found if mask is not None}
+
+
+def _mask(key: Text, body: Table | None, context: Context) -> MaskDefinition | None:
+    if body is None:
+        return None
+    over = text(body.get("over"))
+    upper, lower = (_corners(body.get(side), context) for side in ("upper", "lower"))
+    if upper is None or lower is None or not (upper or lower) or over not in (None, "time", "frequency"):
+        return None
+    laid = cast('Literal["time", "frequency"] | None', over)
+    forever = text(body.get("to")) == "forever"
+    return MaskDefinition(key.value, laid, upper, lower, forever, key.spot.place)
+
+
+def _corners(node: Node | None, context: Context) -> tuple[Corner, ...] | None:
+    """Read `[[at, limit], ...]`; None where one cannot be read."""
+    pairs = [Reader(context).pair(point) for point in items(node)]
+    return None if None in pairs else tuple(Corner(*pair) for pair in pairs if pair is not None)
 
 
 def cases(node: Node | None, context: Context) -> dict[str, Kept]:

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
-from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
-from specgate.measures.reading import missing
+from collections.abc import Callable
+
+from specgate.measures.inputs import ENDING, VANISHING
+from specgate.measures.measure import Argument, Arguments, Measure, Reader, UnitRule
+from specgate.measures.reading import in_time, missing, with_time
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.answers import Absent, Answer
+from specgate.response.questions import TimeResponse
 
 
 def _signed_error(subject: ResponseSubject, _: Arguments) -> Answer:
@@ -19,6 +23,23 @@ def _signed_error(subject: ResponseSubject, _: Arguments) -> Answer:
 def _error(subject: ResponseSubject, arguments: Arguments) -> Answer:
     signed = _signed_error(subject, arguments)
     return signed if signed.exact is None else Answer.of_exact(abs(signed.exact))
+
+
+def _integral(ask: Callable[[TimeResponse], Answer]) -> Reader:
+    """Make a reader of the error from a question to its course."""
+
+    def reader(subject: ResponseSubject, _: Arguments) -> Answer:
+        if subject.void is not None:
+            return missing(subject.void)
+        return missing(subject.error) if isinstance(subject.error, Absent) else ask(subject.error)
+
+    return reader
+
+
+def _deviation_after(response: TimeResponse, arguments: Arguments) -> Answer:
+    if arguments.time is None:
+        raise ValueError("deviation_after needs the argument `time`")
+    return with_time(response.deviation_after(arguments.time))
 
 
 _INTEGRAL = "the error does not vanish in the end: its integral grows without bound"
@@ -41,6 +62,7 @@ ROWS = (
         read=_error,
         beside=_signed_error,
         always=True,
+        inputs=VANISHING,
     ),
     Measure(
         name="deviation_after",
@@ -50,8 +72,10 @@ ROWS = (
         definition="The greatest distance of the response from its final value from the stated time on, for good.",
         absent_when="the response does not settle",
         source="specgate's own definition",
-        method="enclosed",
+        method="enclosed: the greater of both extremes from that time on",
+        read=in_time(_deviation_after),
         arguments=(Argument("time", "time", "time after the step from which on the distance counts", required=True),),
+        inputs=ENDING,
     ),
     Measure(
         name="integral_absolute_error",
@@ -63,6 +87,8 @@ ROWS = (
         absent_when=_INTEGRAL,
         source="common control criterion (IAE)",
         method="enclosed: lobes between proved zeros of the error",
+        read=_integral(lambda error: error.absolute_integral()),
+        inputs=VANISHING,
     ),
     Measure(
         name="integral_squared_error",
@@ -73,6 +99,8 @@ ROWS = (
         definition="Integral over all time of the square of reference minus response.",
         absent_when=_INTEGRAL,
         source="common control criterion (ISE)",
-        method="exact: a rational number",
+        method="exact by Parseval's theorem, enclosed where the input has kinks",
+        read=_integral(lambda error: error.squared_integral()),
+        inputs=VANISHING,
     ),
 )

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from flint import fmpq
 
+from specgate.measures.inputs import ENDING
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.reading import affine, change, in_time, no_change, positive_part
 from specgate.response.answers import Answer
@@ -55,6 +56,7 @@ ROWS = (
         method="enclosed: from the proved extreme; exactly zero only where it is proved never to be passed",
         read=in_time(_overshoot),
         always=True,
+        inputs=ENDING,
     ),
     Measure(
         name="undershoot",
@@ -70,5 +72,6 @@ ROWS = (
         method="enclosed: from the proved extreme; exactly zero only where the value before the step is never crossed",
         read=in_time(_undershoot),
         always=True,
+        inputs=ENDING,
     ),
 )

@@ -8,6 +8,7 @@ from typing import Any
 from flint import fmpq
 
 from specgate.frequency.questions import Gain, OpenLoop
+from specgate.measures.inputs import SINGLE
 from specgate.measures.measure import Argument, Arguments, Measure, Reader, UnitRule
 from specgate.measures.reading import over_frequency
 from specgate.response.answers import Answer
@@ -67,6 +68,7 @@ ROWS = (
         read=_at(lambda found, frequency: found.gain_at(frequency)),
         arguments=_FREQUENCY,
         signed=True,
+        inputs=SINGLE,
     ),
     Measure(
         name="phase_at",
@@ -83,6 +85,7 @@ ROWS = (
         read=_at(lambda found, frequency: found.phase_at(frequency)),
         arguments=_FREQUENCY,
         signed=True,
+        inputs=SINGLE,
     ),
     Measure(
         name="peak_gain",
@@ -107,6 +110,7 @@ ROWS = (
         source="common practice; the constant and the first crossing fixed by specgate",
         method=_ROOTS,
         read=over_frequency(lambda gain, _: gain.bandwidth()),
+        inputs=SINGLE,
     ),
     Measure(
         name="resonance_peak",
@@ -119,5 +123,6 @@ ROWS = (
         method=_ROOTS,
         read=over_frequency(lambda gain, given: gain.resonance_peak(given.over)),
         arguments=_RANGE,
+        inputs=SINGLE,
     ),
 )

@@ -8,6 +8,7 @@ from typing import Any, Literal
 
 from flint import fmpq
 
+from specgate.measures.inputs import INPUTS
 from specgate.response.answers import Answer
 from specgate.response.questions import Mask
 from specgate.terms.records import record
@@ -60,7 +61,8 @@ class Arguments:
 
     absolute: overshoot and undershoot are asked for in the signal's unit instead of as a fraction of the change.
     time: of `value_at` and `deviation_after`, seconds from the start of the input.
-    frequency, over: angular, rad/s. mask: the limits of `within_mask`.
+    frequency, over: angular, rad/s. mask: the limits of `within_mask`; relative: they are parts of the change,
+        laid_over: what they are laid over.
     measure: name of the measure that is asked for; set wherever approximations are evaluated, because several of
         them estimate more than one.
     """
@@ -73,6 +75,8 @@ class Arguments:
     frequency: fmpq | None = None
     over: tuple[fmpq, fmpq] | None = None
     mask: Mask | None = None
+    relative: bool = False
+    laid_over: Literal["time", "frequency"] = "time"
     measure: str = ""
 
 
@@ -93,6 +97,7 @@ class Measure:
     beside: a second value printed next to the first (the signed value of a magnitude).
     always: reported on every step response (or break, or loop), asked for or not.
     of_error: read from reference minus response, so that there has to be a reference of the same dimension.
+    inputs: of a response: the kinds of input for which it exists, as far as the input alone tells.
     """
 
     name: str
@@ -110,3 +115,4 @@ class Measure:
     signed: bool = False
     always: bool = False
     of_error: bool = False
+    inputs: tuple[str, ...] = INPUTS

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from specgate.measures.inputs import SINGLE
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.reading import missing
 from specgate.measures.subjects import ResponseSubject
@@ -39,6 +40,7 @@ ROWS = (
         method=_METHOD,
         read=_poles,
         always=True,
+        inputs=SINGLE,
     ),
     Measure(
         name="zeros_at_origin",
@@ -54,5 +56,6 @@ ROWS = (
         method=_METHOD,
         read=_zeros,
         always=True,
+        inputs=SINGLE,
     ),
 )

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 from typing import Any
 
 from flint import arb, fmpq
@@ -10,6 +11,7 @@ from flint import arb, fmpq
 from specgate.measures.measure import Arguments, Reader
 from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.response.answers import Absent, Answer
+from specgate.response.extremes import Extreme
 from specgate.response.questions import TimeResponse
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
@@ -62,6 +64,13 @@ def over_frequency(ask: Callable[[Any, Arguments], Answer]) -> Reader:
         return Answer.undecided(_LATER) if found is None else ask(found, arguments)
 
     return reader
+
+
+def with_time(extreme: Extreme) -> Answer:
+    """Return the value of an extreme with its time beside it."""
+    value = extreme.value
+    told = value.absent is None or value.absent.infinite
+    return replace(value, at={"time": extreme.time}) if told and extreme.time.absent is None else value
 
 
 def change(response: TimeResponse) -> fmpq | Answer:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from specgate.measures.inputs import INPUTS
 from specgate.measures.measure import Measure
 from specgate.measures.table import MEASURES
 from specgate.terms.records import record
@@ -26,6 +27,14 @@ def _argument_lines(measure: Measure) -> str:
     return "\n".join(["Arguments:", *lines]) if lines else ""
 
 
+def _input_line(measure: Measure) -> str:
+    if "response" not in measure.subjects or measure.inputs == INPUTS:
+        return ""
+    return f"Exists for the inputs: {', '.join(kind for kind in measure.inputs if kind != 'several')}" + (
+        ", and for several at once." if "several" in measure.inputs else "."
+    )
+
+
 def describe(name: str) -> Explanation:
     """Return the text on a measure. Raises KeyError for a name that is not in the table."""
     measure = MEASURES[name]
@@ -33,6 +42,7 @@ def describe(name: str) -> Explanation:
     parts = (
         measure.definition,
         f"Read from {' or '.join(_ON[kind] for kind in measure.subjects)}, in: {measure.unit.value}.",
+        _input_line(measure),
         _argument_lines(measure),
         f"No value: {measure.absent_when}.",
         f"How it is obtained: {measure.method}.",

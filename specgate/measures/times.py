@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from flint import fmpq
 
+from specgate.measures.inputs import ENDING
 from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
 from specgate.measures.reading import change, difference, in_time, no_change
 from specgate.response.answers import Answer
@@ -73,6 +74,7 @@ ROWS = (
         read=in_time(_settling_time),
         arguments=(Argument("band", "band", "half-width of the band about the final value", required=True),),
         always=True,
+        inputs=ENDING,
     ),
     Measure(
         name="rise_time",
@@ -95,6 +97,7 @@ ROWS = (
             Argument("to", "fraction", "percentage of the change at which counting ends; 90 % unless given"),
         ),
         always=True,
+        inputs=ENDING,
     ),
     Measure(
         name="delay_time",
@@ -107,6 +110,7 @@ ROWS = (
         method="enclosed: the first crossing, searched forwards from the step",
         read=in_time(_delay_time),
         always=True,
+        inputs=ENDING,
     ),
     Measure(
         name="peak_time",
@@ -122,5 +126,6 @@ ROWS = (
         method="enclosed: the proved bracket of the extreme",
         read=in_time(_peak_time),
         always=True,
+        inputs=ENDING,
     ),
 )

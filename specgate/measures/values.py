@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from specgate.measures.inputs import COURSE
 from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
 from specgate.measures.reading import in_time
 from specgate.response.answers import Answer
@@ -34,6 +35,7 @@ ROWS = (
         read=in_time(lambda response, _: response.final_value()),
         signed=True,
         always=True,
+        inputs=COURSE,
     ),
     Measure(
         name="initial_value",
@@ -50,6 +52,7 @@ ROWS = (
         read=in_time(lambda response, _: response.initial_value()),
         signed=True,
         always=True,
+        inputs=COURSE,
     ),
     Measure(
         name="maximum_value",
@@ -66,6 +69,7 @@ ROWS = (
         read=in_time(lambda response, _: response.greatest().value),
         signed=True,
         always=True,
+        inputs=COURSE,
     ),
     Measure(
         name="minimum_value",
@@ -82,6 +86,7 @@ ROWS = (
         read=in_time(lambda response, _: response.least().value),
         signed=True,
         always=True,
+        inputs=COURSE,
     ),
     Measure(
         name="value_at",
@@ -95,6 +100,7 @@ ROWS = (
         read=in_time(_value_at),
         arguments=(Argument("time", "time", "time after the step", required=True),),
         signed=True,
+        inputs=COURSE,
     ),
     Measure(
         name="peak_deviation",
@@ -110,5 +116,6 @@ ROWS = (
         method="enclosed: the larger of the two extremes in magnitude",
         read=in_time(lambda response, _: response.peak_deviation().value),
         always=True,
+        inputs=COURSE,
     ),
 )

@@ -11,12 +11,13 @@ from specgate.measures.table import MEASURES
 from specgate.project import faults
 from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault, Faults
+from specgate.project.masks import check_mask
 from specgate.project.parameters import Values, evaluate, infer, written_numbers
 from specgate.project.percent import refuse_ambiguous, relative_to_change
 from specgate.project.rational_forms import refuse_written_rate
 from specgate.project.signals import LoopSignals
 from specgate.project.subsystem_checks import wants
-from specgate.project.types import Criterion, Limit, Requirement, Value
+from specgate.project.types import Criterion, Limit, MaskDefinition, Requirement, Value
 from specgate.terms.dimensions import DIMENSIONLESS, RATE, TIME, Dimension
 from specgate.terms.expressions import PercentOf, as_dimension, literal_unit
 from specgate.terms.unit import ONE, Unit
@@ -69,12 +70,25 @@ class CriterionCheck:
         self.span: fmpq | None = None
         self.driven: list[tuple[str, Unit]] = []
         self.referred = False
+        self.kind: str | None = None
         subject = criterion.subject
         if subject.kind == "response" and subject.name is not None:
             response = signals.loop.responses[subject.name]
             self.unit, self.span = signals.unit(response.to), signals.span(response.to)
+            self.kind = response.excitations[0].kind if len(response.excitations) == 1 else "several"
             self.driven = [(one.source, signals.unit(one.source)) for one in response.excitations]
             self.referred = response.reference is not None
+
+    def exists(self) -> None:
+        """See that the measure exists for the input of the response. Raises Fault."""
+        if self.kind is not None and self.kind not in self.measure.inputs:
+            given = "several inputs at once" if self.kind == "several" else f"the input {self.kind}"
+            inputs = [kind for kind in self.measure.inputs if kind != "several"]
+            raise Fault(
+                faults.VALUE,
+                f"`{self.measure.name}` does not exist for {given}; it does for {', '.join(inputs)}",
+                self.criterion.subject.place,
+            )
 
     def reference(self) -> None:
         """See that an error has something to be measured from. Raises Fault."""
@@ -233,6 +247,11 @@ class CriterionCheck:
                 faults.VALUE, f"nothing lies in the range [{written}]: the lower end comes first", ends[0].place
             )
 
+    def mask(self, mask: MaskDefinition) -> None:
+        """Check a mask against what it is laid over. Raises Fault."""
+        of_response = self.criterion.subject.kind == "response"
+        check_mask(mask, self.unit if of_response else None, self.values, spanned=self.span is not None)
+
     def _frequency(self, value: Value) -> None:
         refuse_written_rate(value, self.values)
         wants(value, _FREQUENCY, self.values)
@@ -293,6 +312,7 @@ def _check_criterion(
     except Fault:
         return None  # the signal has no unit: said where the loop is checked
     with found.noted(requirement=requirement):
+        check.exists()
         check.reference()
     with found.noted(requirement=requirement):
         check.limit()
@@ -302,6 +322,9 @@ def _check_criterion(
     if criterion.over is not None:
         with found.noted(requirement=requirement):
             check.over(criterion.over)
+    if criterion.mask is not None:
+        with found.noted(requirement=requirement):
+            check.mask(criterion.mask)
     if criterion.basis is not None and criterion.basis.claimed is not None:
         with found.noted(requirement=requirement):
             check.counted(criterion.basis.claimed.value)

@@ -351,10 +351,33 @@ class Basis:
 
 
 @record
+class Corner:
+    """A corner of a mask: a time or frequency, and the limit there."""
+
+    at: Value
+    limit: Value
+
+
+@record
+class MaskDefinition:
+    """Limits over time or frequency between corners, in order; over None: as the unit of the corners tells.
+
+    forever: the last limits go on past their last corners.
+    """
+
+    name: str
+    over: Literal["time", "frequency"] | None
+    upper: tuple[Corner, ...]
+    lower: tuple[Corner, ...]
+    forever: bool
+    place: Place
+
+
+@record
 class Criterion:
     """A measure with a limit. `arguments` holds band, from, to, time, frequency … by their names.
 
-    over: the range of frequencies that is looked at; None for all of them.
+    over: the range of frequencies that is looked at; None for all of them. mask: of `within_mask`.
     """
 
     subject: Subject
@@ -366,6 +389,7 @@ class Criterion:
     evaluate: str | None = None
     kept: Mapping[str, object] = field(default_factory=dict)
     over: tuple[Value, Value] | None = None
+    mask: MaskDefinition | None = None
 
 
 @record
@@ -421,7 +445,7 @@ class Requirement:
 
 @record
 class Kept:
-    """A named entry of a section that a later version answers (evidence, waivers, masks …), as written."""
+    """A named entry of a section that a later version answers (evidence, waivers, cases …), as written."""
 
     id: str
     content: Mapping[str, object]
@@ -486,7 +510,8 @@ class Project:
     documents: Mapping[str, Kept] = field(default_factory=dict)
     evidence: Mapping[str, Kept] = field(default_factory=dict)
     waivers: Mapping[str, Kept] = field(default_factory=dict)
+    masks: Mapping[str, MaskDefinition] = field(default_factory=dict)
     kept: Mapping[str, tuple[Kept, ...]] = field(default_factory=dict)
-    """Sections answered later (masks, cases …), by name."""
+    """Sections answered later (cases, decision_rule …), by name."""
     warnings: tuple[object, ...] = ()
     """Findings of the intake below level error (specgate.terms.findings.Finding)."""

@@ -8,7 +8,6 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from functools import cached_property
 
 from flint import arb, fmpq
 
@@ -18,13 +17,15 @@ from specgate.response.modes import GUARD, dyadic
 from specgate.response.passing import Work
 from specgate.response.patches import LEVEL, LOOK, Ground, Patch
 from specgate.response.turning import Zero, sign_at
-from specgate.terms.precision import working_precision
+from specgate.terms.precision import HIGHEST, working_precision
 
 LASTING = "what is integrated does not vanish in the end: its integral grows without bound"
 _OPEN = "its integral has no closed form here"
 _FAINT = 40
-_FIRST, _MOST = 70, 280
-"""Bits: how small what is left out is beside the whole, at first and at most."""
+_DEEPEST = 100
+_RUNGS = ((64, 56), (160, 160), (HIGHEST, 280))
+"""Up to how many bits are asked for, and how many bits what is left out is below the whole then."""
+_FLAT = 140
 
 
 @dataclass(frozen=True)
@@ -38,6 +39,9 @@ class Run:
     bound: arb
 
 
+Judged = tuple[Patch, int, Zero | None]
+
+
 class Areas:
     """The integrals of one response that tends to zero."""
 
@@ -45,7 +49,11 @@ class Areas:
         self._ground = ground
         self._pieces = ground.pieces
         self._size = size
-        self._runs: dict[int, tuple[fmpq, list[Run]]] = {}
+        self._known: dict[Patch, tuple[int, Zero | None] | None] = {}
+        self._runs: dict[fmpq, list[Run]] = {}
+        self._ends: dict[fmpq, fmpq] = {}
+        self._sizes: dict[int, fmpq] = {}
+        self._work = Work()
 
     def absolute(self) -> Answer:
         """Return the integral of |y|."""
@@ -57,39 +65,42 @@ class Areas:
 
     def _answer(self, power: int) -> Answer:
         try:
-            self._total(power, _FIRST)
+            kept = {_RUNGS[0][1]: self._total(power, _RUNGS[0][1])}
         except OutOfWork as limit:
             return Answer.undecided(limit.reason)
-        kept: dict[int, arb] = {}
 
         def refine(bits: int) -> arb:
-            if bits not in kept:
-                kept[bits] = self._total(power, min(max(bits + 8, _FIRST), _MOST))
-            return kept[bits]
+            rung = next((rung for most, rung in _RUNGS if bits <= most), _RUNGS[-1][1])
+            if rung not in kept:
+                try:
+                    kept[rung] = self._total(power, rung)
+                except OutOfWork:
+                    kept[rung] = kept[_RUNGS[0][1]]
+            return kept[rung]
 
         return Answer.of_ball(refine)
 
     def _total(self, power: int, bits: int) -> arb:
         until = self._horizon(power, bits)
-        rest = self._pieces.rest(until)
+        parts = list(self._squares(until, bits) if power else self._magnitudes(until, bits))
+        rest = self._pieces.rest(until if power else self._end_of_runs(until))
         assert rest is not None
         with working_precision(bits + GUARD):
             total = arb(rest[power] / 2, arb(rest[power] / 2).upper())
-            for part in self._squares(until, bits) if power else self._magnitudes(until, bits):
+            for part in parts:
                 total += part
         return total
 
     def _horizon(self, power: int, bits: int) -> fmpq:
         """Return a time after which what is left is at most 2^-bits of what there is."""
-        whole: fmpq | None = None
-        for stage in range(4, 8 * bits, 4):
+        for stage in range(4, 8 * bits, 6):
             until = self._pieces.settled_by(self._size * dyadic(-stage))
             rest = None if until is None else self._pieces.rest(until)
             if until is None or rest is None:
                 raise OutOfWork(_OPEN)
-            if whole is None:
-                whole = self._least(power, until)
-            if rest[power] <= whole * dyadic(-bits):
+            if power not in self._sizes:
+                self._sizes[power] = self._least(power, until)
+            if rest[power] <= self._sizes[power] * dyadic(-bits):
                 return until
         raise OutOfWork(_OPEN)
 
@@ -137,7 +148,17 @@ class Areas:
         with working_precision(LOOK):
             return (end.left + end.right) / 2, height.abs_upper() * (end.right - end.left)
 
+    def _end_of_runs(self, until: fmpq) -> fmpq:
+        """Return the end of the last patch that begins before `until`: runs are made of whole patches."""
+        self._found(until)
+        return max(self._ends[until], until)
+
     def _found(self, until: fmpq) -> list[Run]:
+        if until not in self._runs:
+            self._runs[until] = list(self._all(until))
+        return self._runs[until]
+
+    def _all(self, until: fmpq) -> list[Run]:
         return [run for index, begin, end in self._ground.kinks(until) for run in self._piece(index, begin, end, until)]
 
     def _piece(self, index: int, begin: fmpq, end: fmpq | None, until: fmpq) -> Iterator[Run]:
@@ -161,43 +182,47 @@ class Areas:
             sign, last = found, patch.right
         if sign != 0:
             yield Run(index, sign, since, last, arb(0))
+        self._ends[until] = last
 
-    def _judged(
-        self, index: int, begin: fmpq, end: fmpq | None, until: fmpq
-    ) -> Iterator[tuple[Patch, int, Zero | None]]:
+    def _judged(self, index: int, begin: fmpq, end: fmpq | None, until: fmpq) -> Iterator[Judged]:
         """Yield patches with the sign of y on them, or at their right end where y has a zero on them (0: not told)."""
-        work = self._work
-        tiny = self._size * dyadic(-_MOST // 2)
         for root in self._ground.roots(index, begin, end, until):
-            right = min(root.right, until)
-            if root.left >= right:
-                continue
-            waiting = [root if right == root.right else Patch(root.pieces, index, root.left, right)]
+            waiting = [root]
             while waiting:
                 patch = waiting.pop()
-                work.spend()
-                low, high = patch.hull(0)
-                with working_precision(LOOK):
-                    flat = bool((high - low) * (patch.right - patch.left) * self._pieces.speed(index) < tiny)
-                if low >= 0 or high <= 0:
-                    yield patch, (1 if low >= 0 else -1), None
+                if patch.left >= until:
                     continue
-                slopes = patch.hull(1)
-                if slopes[0] > 0 or slopes[1] < 0:
-                    ends = [sign_at(patch.pieces, index, 0, LEVEL, time, 512) for time in (patch.left, patch.right)]
-                    if None not in ends:
-                        yield self._monotone(patch, ends[0] or 0, ends[1] or 0)
-                        continue
-                if flat or patch.depth > 100:
-                    yield patch, 0, None
-                    continue
-                waiting += reversed(patch.parts)
+                if patch not in self._known:
+                    self._work.spend()
+                    self._known[patch] = self._judge(patch)
+                found = self._known[patch]
+                if found is None:
+                    waiting += reversed(patch.parts)
+                else:
+                    yield patch, *found
 
-    def _monotone(self, patch: Patch, before: int, after: int) -> tuple[Patch, int, Zero | None]:
-        if before * after >= 0:
-            return patch, before or after, None
-        return patch, after, Zero(patch.pieces, patch.index, 0, LEVEL, (patch.left, patch.right), rising=after > 0)
+    def _judge(self, patch: Patch) -> tuple[int, Zero | None] | None:
+        """Return the sign of y on a patch, or at its right end and its zero; None where it has to be cut."""
+        low, high = patch.rough(0)
+        if low >= 0 or high <= 0:
+            return (1 if low >= 0 else -1), None
+        low, high = patch.hull(0)
+        if low >= 0 or high <= 0:
+            return (1 if low >= 0 else -1), None
+        slopes = patch.hull(1)
+        if slopes[0] > 0 or slopes[1] < 0:
+            before, after = (
+                sign_at(patch.pieces, patch.index, 0, LEVEL, time, 512) for time in (patch.left, patch.right)
+            )
+            if before is not None and after is not None:
+                return _monotone(patch, before, after)
+        with working_precision(LOOK):
+            width = arb(patch.right - patch.left) * self._pieces.speed(patch.index)
+            flat = bool((high - low) * width < self._size * dyadic(-_FLAT))
+        return (0, None) if flat or patch.depth > _DEEPEST else None
 
-    @cached_property
-    def _work(self) -> Work:
-        return Work()
+
+def _monotone(patch: Patch, before: int, after: int) -> tuple[int, Zero | None]:
+    if before * after >= 0:
+        return before or after, None
+    return after, Zero(patch.pieces, patch.index, 0, LEVEL, (patch.left, patch.right), rising=after > 0)

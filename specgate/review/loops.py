@@ -13,6 +13,7 @@ from specgate.compliance.readings import Reading
 from specgate.compliance.units import default_unit, smallness
 from specgate.compliance.wording import hides
 from specgate.frequency.questions import OpenLoop
+from specgate.measures.inputs import REPORTED
 from specgate.measures.measure import Arguments, Measure, Reader, SubjectKind
 from specgate.measures.subjects import ResponseSubject, Subject
 from specgate.measures.table import MEASURES
@@ -195,8 +196,10 @@ def _measures(
     """Print every measure that is always reported on a subject of this kind."""
     if isinstance(subject, Missing) or isinstance(again, Missing):
         return ()
-    rows = (row for row in MEASURES.values() if row.always and row.read is not None and kind in row.subjects)
-    return tuple(_measure(row, subject, again, signal) for row in rows)
+    rows = (row for row in MEASURES.values() if row.read is not None and kind in row.subjects)
+    chosen = REPORTED.get(subject.kind) if isinstance(subject, ResponseSubject) else None
+    reported = (row for row in rows if (row.always if chosen is None else row.name in chosen))
+    return tuple(_measure(row, subject, again, signal) for row in reported)
 
 
 def _measure(row: Measure, subject: Subject, again: Subject, signal: Unit) -> MeasureResult:
