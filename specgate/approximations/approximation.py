@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
 from typing import Literal
 
 from flint import arb, fmpq
 
 from specgate.approximations.features import Features
 from specgate.measures.measure import Arguments
-from specgate.response.answers import Answer
+from specgate.response.answers import Absent, Answer
 from specgate.terms.records import record
 from specgate.terms.verdicts import Trilean
 
@@ -70,6 +71,26 @@ class Accuracy:
     text: str
 
 
+Reduction = Callable[[Features, Arguments], Features | Absent]
+"""The response with something dropped, for what follows in a chain to be read from; or why there is none."""
+
+
+@record
+class Variant:
+    """One of several published formulas for the same thing.
+
+    for_: what it is for, in words of its own (its place in the list that `specgate explain` prints).
+    """
+
+    name: str
+    for_: str
+    formula: str
+    source: str
+    conditions: tuple[Condition, ...]
+    evaluate: Callable[[Features, Arguments], Answer]
+    accuracy: Callable[[Features, Arguments], Accuracy | None]
+
+
 @record
 class Approximation:
     """One row: formula, range, stated accuracy, source.
@@ -80,6 +101,9 @@ class Approximation:
     accuracy: None where nothing is stated for these arguments.
     premises: names of approximations whose conditions belong to this one (see `table.conditions`).
     text: the user's text (the module's docstring).
+    variants: where there are several formulas, all of them, the one that is offered first; `variant` names
+    the one whose formula the row carries (see `taken_as`).
+    reduce: set where the approximation drops a part of the response, so that others can follow it in a chain.
     """
 
     name: str
@@ -95,3 +119,21 @@ class Approximation:
     alternatives: tuple[str, ...] = ()
     always_safe: Literal["over", "under"] | None = None
     """Set where the formula is a proved bound on one side of the truth inside its conditions."""
+    variants: tuple[Variant, ...] = ()
+    variant: str | None = None
+    reduce: Reduction | None = None
+
+    def taken_as(self, variant: str) -> Approximation:
+        """Return the row with the formula of one of its variants. Raises KeyError for a name that none has."""
+        chosen = next((one for one in self.variants if one.name == variant), None)
+        if chosen is None:
+            raise KeyError(variant)
+        return replace(
+            self,
+            formula=chosen.formula,
+            source=chosen.source,
+            conditions=chosen.conditions,
+            evaluate=chosen.evaluate,
+            accuracy=chosen.accuracy,
+            variant=chosen.name,
+        )

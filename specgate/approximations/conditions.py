@@ -60,6 +60,69 @@ NO_ZEROS = Condition(key="zeros", name="no zeros", source="derived", required="0
 """That the numerator is a constant."""
 
 
+def _one_pole(features: Features, _: Arguments, __: fmpq | None) -> Found:
+    return count(len(features.poles), len(features.poles) == 1)
+
+
+ONE_POLE = Condition(key="poles", name="one pole", source="derived", required="1 pole", find=_one_pole)
+"""That the denominator is of first order."""
+
+
+def _alone(features: Features, _: Arguments, __: fmpq | None) -> Found:
+    if features.pair is None:
+        return words("no complex pair", False)
+    more = [(len(features.others), "pole"), (len(features.zeros), "zero")]
+    shown = " and ".join(f"{number} {what}{'s' if number > 1 else ''}" for number, what in more if number)
+    return words(f"{shown} besides" if shown else "nothing else", features.alone)
+
+
+ALONE = Condition(
+    key="alone",
+    name="a complex pair and nothing else",
+    source="derived",
+    required="no other pole, no zero",
+    find=_alone,
+)
+"""That the channel is a pair of complex poles over a constant."""
+
+
+def damping_between(low: fmpq, high: fmpq, source: str) -> Condition:
+    """Return the condition that the damping ratio of the pair lies in a range, its ends included."""
+
+    def find(features: Features, _: Arguments, __: fmpq | None) -> Found:
+        damping = features.damping
+        return words("no complex pair", False) if damping is None else between(damping, low, high)
+
+    return Condition(
+        key="damping",
+        name="damping ratio of the pair",
+        source=source,
+        required=f"{decimal(low)} to {decimal(high)}",
+        find=find,
+    )
+
+
+def counted_between(lower: fmpq, upper: fmpq) -> Condition:
+    """Return the condition that a rise time is counted between two percentages of the change."""
+
+    def find(_: Features, arguments: Arguments, __: fmpq | None) -> Found:
+        counted = f"from {percent(arguments.lower)} to {percent(arguments.upper)}"
+        return words(counted, (arguments.lower, arguments.upper) == (lower, upper))
+
+    return Condition(
+        key="counting",
+        name="rise time counted",
+        source="derived",
+        required=f"from {percent(lower)} to {percent(upper)} of the change",
+        find=find,
+    )
+
+
+def decimal(number: fmpq) -> str:
+    """Return a number as a short decimal."""
+    return f"{int(number.p) / int(number.q):g}"
+
+
 def percent(part: fmpq) -> str:
     """Return a fraction as per cent in words."""
     return f"{100 * int(part.p) / int(part.q):g} %"

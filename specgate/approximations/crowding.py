@@ -13,7 +13,7 @@ from specgate.approximations.figures import quotient, total
 from specgate.response.answers import Answer
 from specgate.terms.precision import working_precision
 
-Ranges = Sequence[tuple[int, int]]
+Ranges = Sequence[tuple[int | fmpq, int | fmpq]]
 """Signed ranges in thousandths: pair alone; crowding up to 1/5; up to 2/5."""
 
 SINGLE, SEVERAL = fmpq(1, 5), fmpq(2, 5)
@@ -95,8 +95,13 @@ def _surely_at_most(value: Answer, limit: fmpq) -> bool:
         return bool(ball <= arb(limit))
 
 
-def _accuracy(thousandths: tuple[int, int], where: str) -> Accuracy:
-    low, high = thousandths
+def _accuracy(thousandths: tuple[int | fmpq, int | fmpq], where: str) -> Accuracy:
+    low, high = (fmpq(end) / 1000 for end in thousandths)
     if low == high == 0:
         return Accuracy(fmpq(0), fmpq(0), f"exact ({where})")
-    return Accuracy(fmpq(low, 1000), fmpq(high, 1000), f"{low / 10:+g} to {high / 10:+g} % ({where})")
+    return Accuracy(low, high, f"{signed_percent(low)} to {signed_percent(high)} % ({where})")
+
+
+def signed_percent(part: fmpq) -> str:
+    """Return a fraction in per cent with its sign, nothing without one."""
+    return f"{100 * int(part.p) / int(part.q):+.6g}" if part else "0"

@@ -21,33 +21,30 @@ from specgate.approximations.dropped import zeros_amplitude
 from specgate.approximations.features import Features
 from specgate.approximations.figures import quotient, smallest
 from specgate.measures.measure import Arguments
-from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
-from specgate.response.answers import Answer
-from specgate.response.step import StepResponse
-from specgate.systems.transfer import TransferFunction
+from specgate.response.answers import Absent, Answer
+from specgate.terms.verdicts import Proof
 
 _SETTLING = ("settling_time",)
 _SHAPE = ("overshoot", "peak_time", "rise_time")
 
 
 def _without_zeros(features: Features, arguments: Arguments) -> Answer:
-    channel = features.channel
-    constant = fmpq_poly([channel.numerator[0]])
-    if not constant:
-        return Answer.nothing("a zero lies at the origin: without it there is another response")
-    subject = features.subject
-    kept = ResponseSubject(
-        channel=TransferFunction(constant, channel.denominator),
-        size=subject.size,
-        response=StepResponse(constant, channel.denominator, subject.size),
-        error=subject.error,
-        void=subject.void,
-    )
+    kept = _reduced(features, arguments)
+    if isinstance(kept, Absent):
+        return Answer(Proof.EXACT, absent=kept)
     read = MEASURES[_measure(arguments)].read
     assert read is not None
-    answer: Answer = read(kept, arguments)
+    answer: Answer = read(kept.subject, arguments)
     return answer
+
+
+def _reduced(features: Features, _: Arguments) -> Features | Absent:
+    """Return the response without its zeros."""
+    constant = fmpq_poly([features.channel.numerator[0]])
+    if not constant:
+        return Absent("a zero lies at the origin: without it there is another response")
+    return features.of(constant, features.channel.denominator)
 
 
 def _measure(arguments: Arguments) -> str:
@@ -153,4 +150,5 @@ ROW = Approximation(
     accuracy=_accuracy,
     text=__doc__,
     premises=("dominant_pair",),
+    reduce=_reduced,
 )

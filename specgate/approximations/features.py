@@ -2,17 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
+from dataclasses import replace
 from functools import cached_property
+from typing import TypeVar, cast
 
-from flint import fmpq
+from flint import fmpq, fmpq_poly
 
 from specgate.approximations.figures import quotient, root
 from specgate.approximations.spots import Spot, spots
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.answers import Absent, Answer
+from specgate.response.step import StepResponse
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
+
+Found = TypeVar("Found")
 
 _PICKED_AT = 256
 """Bits at which the pair and the slowest pole are picked; figures that still overlap there count as equal."""
@@ -27,6 +32,24 @@ class Features:
 
     def __init__(self, subject: ResponseSubject) -> None:
         self.subject = subject
+        self._kept: dict[Callable[[Features], object], object] = {}
+
+    def once(self, find: Callable[[Features], Found]) -> Found:
+        """Return what a function finds in this response; it is called once and its result kept."""
+        if find not in self._kept:
+            self._kept[find] = find(self)
+        return cast("Found", self._kept[find])
+
+    def of(self, numerator: fmpq_poly, denominator: fmpq_poly) -> Features:
+        """Return the features of another channel in place of this one: what is left when something is dropped."""
+        subject = self.subject
+        return Features(
+            replace(
+                subject,
+                channel=TransferFunction(numerator, denominator),
+                response=StepResponse(numerator, denominator, subject.size),
+            )
+        )
 
     @cached_property
     def channel(self) -> TransferFunction:

@@ -10,7 +10,7 @@ from __future__ import annotations
 from flint import arb, fmpq
 
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
-from specgate.approximations.conditions import NO_ZEROS, SETTLES, count, percent, relative_band, words
+from specgate.approximations.conditions import NO_ZEROS, ONE_POLE, SETTLES, percent, relative_band, words
 from specgate.approximations.features import Features
 from specgate.approximations.figures import combined
 from specgate.measures.measure import Arguments
@@ -39,10 +39,6 @@ def _settling(features: Features, arguments: Arguments) -> Answer:
     return combined(lambda decay: (-arb(band).log() if constant is None else constant) / decay, pole.decay)
 
 
-def _one_pole(features: Features, _: Arguments, __: fmpq | None) -> Found:
-    return count(len(features.poles), len(features.poles) == 1)
-
-
 def _relative(_: Features, arguments: Arguments, __: fmpq | None) -> Found:
     band = relative_band(arguments)
     if band is None:
@@ -63,7 +59,7 @@ ROW = Approximation(
     source="common practice",
     conditions=(
         SETTLES,
-        Condition(key="poles", name="one pole", source="derived", required="1 pole", find=_one_pole),
+        ONE_POLE,
         NO_ZEROS,
         Condition(
             key="band", name="settling band", source="derived", required="in per cent of the change", find=_relative

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from flint import fmpq
+
 from specgate.approximations import pair
 from specgate.approximations.conditions import relative_band
 from specgate.approximations.features import Features
@@ -23,6 +25,8 @@ def of_the_pair(features: Features, measure: str, arguments: Arguments) -> Answe
         return pair.peak_time(found)
     if measure == "rise_time":
         return pair.rise_time(found, arguments.lower, arguments.upper)
+    if measure == "delay_time":
+        return pair.arrival(found, fmpq(1, 2))
     band = relative_band(arguments)
     if measure != "settling_time" or band is None or not 0 < band < 1:
         return Answer.nothing("the pair alone gives no value for this")

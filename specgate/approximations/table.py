@@ -2,17 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 
 from specgate.approximations import (
     distant_zero,
     dominant_pair,
     final_value_theorem,
+    first_order_rise,
     first_order_settling,
+    near_cancellation,
     real_poles_settling,
+    right_half_plane_undershoot,
+    second_order_delay,
     second_order_overshoot,
     second_order_peak_time,
+    second_order_rise,
+    second_order_rise_full,
     second_order_settling,
+    settling_envelope,
     slowest_pole_settling,
 )
 from specgate.approximations.approximation import Approximation, Condition
@@ -20,26 +27,26 @@ from specgate.approximations.approximation import Approximation, Condition
 _ROWS = (
     final_value_theorem,
     first_order_settling,
+    first_order_rise,
     second_order_settling,
+    settling_envelope,
     slowest_pole_settling,
     real_poles_settling,
     second_order_overshoot,
     second_order_peak_time,
+    second_order_rise,
+    second_order_rise_full,
+    second_order_delay,
     dominant_pair,
     distant_zero,
+    near_cancellation,
+    right_half_plane_undershoot,
 )
 
 APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for module in _ROWS}
 """Every approximation that this version audits, by its name in the format."""
 
 LATER: Mapping[str, str] = {
-    "first_order_rise": "rise time of a single lag",
-    "settling_envelope": "upper bound of the settling time from the envelope of a pair",
-    "second_order_rise": "rise time of a pair, in five published variants",
-    "second_order_rise_full": "time of a pair to its first arrival at the final value",
-    "second_order_delay": "delay time of a pair",
-    "near_cancellation": "a pole is dropped with a zero beside it",
-    "right_half_plane_undershoot": "least undershoot that a zero to the right of the axis forces",
     "damping_from_phase_margin": "damping ratio as phase margin over 100 deg",
     "overshoot_from_phase_margin": "overshoot by way of the damping ratio from the phase margin",
     "bandwidth_from_pair": "bandwidth of a pair",
@@ -63,26 +70,44 @@ LATER: Mapping[str, str] = {
 """Names of the catalogue that are read and kept, and not audited yet: name and what it is."""
 
 
-def conditions(name: str, measure: str) -> tuple[tuple[Approximation, Condition], ...]:
+def entry(name: str, variant: str | None = None) -> Approximation:
+    """Return an approximation, with the formula of one of its variants. Raises KeyError for an unknown name."""
+    row = APPROXIMATIONS[name]
+    return row if variant is None else row.taken_as(variant)
+
+
+def conditions(name: str, measure: str, variant: str | None = None) -> tuple[tuple[Approximation, Condition], ...]:
     """Return every condition on an estimate of `measure`, with the row it belongs to: those of premises first.
 
     Each row counts once, however often it is a premise. Raises KeyError for a name that is not in the table.
     """
     return tuple(
         (row, condition)
-        for row in chain(name)
+        for row in chain(name, variant)
         for condition in row.conditions
         if not condition.concerns or measure in condition.concerns
     )
 
 
-def chain(name: str) -> tuple[Approximation, ...]:
+def chain(name: str, variant: str | None = None) -> tuple[Approximation, ...]:
     """Return an approximation with all its premises before it. Raises KeyError for an unknown name."""
-    return tuple({row.name: row for row in _with_premises(name)}.values())
+    return tuple({row.name: row for row in _with_premises(entry(name, variant))}.values())
 
 
-def _with_premises(name: str) -> Iterator[Approximation]:
-    row = APPROXIMATIONS[name]
+def stray(names: Sequence[str]) -> str | None:
+    """Return the first name of a chain that nothing after it builds on and that drops nothing for what follows.
+
+    Names that are not in the table are taken as they are.
+    """
+    for place, name in enumerate(names[:-1]):
+        row, later = APPROXIMATIONS.get(name), names[place + 1 :]
+        built_on = any(other not in APPROXIMATIONS or row in chain(other) for other in later)
+        if row is not None and row.reduce is None and not built_on:
+            return name
+    return None
+
+
+def _with_premises(row: Approximation) -> Iterator[Approximation]:
     for premise in row.premises:
-        yield from _with_premises(premise)
+        yield from _with_premises(APPROXIMATIONS[premise])
     yield row

@@ -16,11 +16,19 @@ def describe(name: str) -> Explanation:
     parts = (
         row.text.strip(),
         f"Formula: {row.formula}.",
+        _variants(row),
         f"Estimates: {', '.join(row.estimates)}.",
         _range(name),
         _alternatives(row),
     )
-    return Explanation(row.title, "\n\n".join(part for part in parts if part), row.source)
+    sources = dict.fromkeys(one.source for one in row.variants) or [row.source]
+    return Explanation(row.title, "\n\n".join(part for part in parts if part), "; ".join(sources))
+
+
+def _variants(row: Approximation) -> str:
+    """List the variants, the one that is offered first, each with what its range adds to that of the row."""
+    lines = [f"  {one.name}: {one.formula}, for {one.for_}; {one.source}" for one in row.variants]
+    return "\n".join(["Variants (`variant:` in the basis; the first unless one is named):", *lines]) if lines else ""
 
 
 def _range(name: str) -> str:

@@ -9,6 +9,7 @@ from flint import fmpq
 
 from specgate.approximations.approximation import Condition, Found
 from specgate.compliance.assumptions import Assumption
+from specgate.compliance.chains import Link
 from specgate.compliance.compare import Limits
 from specgate.compliance.readings import Reading
 from specgate.measures.measure import Arguments, Measure
@@ -74,14 +75,17 @@ class Instead:
 
     name: str
     value: Answer | None
+    variant: str | None = None
 
 
 @record
 class Audit:
     """The audit of a basis; all values in coherent SI, `unit` is that of the claim.
 
+    variant: which formula of the last of the chain, where it has several.
     agrees: whether the claim agrees with its formula (None: no claim, no formula, or undecided).
-    implied: interval that the stated accuracy leaves for the truth.
+    implied: interval that the stated accuracy leaves for the truth. read: the last approximation, and what it is read
+    from.
     """
 
     kind: Literal["computed", "approximation", "evidence"]
@@ -90,6 +94,7 @@ class Audit:
     reason: str | None = None
     unit: Unit | None = None
     chain: tuple[str, ...] = ()
+    variant: str | None = None
     claim: Claim | None = None
     claimed: fmpq | None = None
     formula: Answer | None = None
@@ -101,6 +106,7 @@ class Audit:
     accuracy: str | None = None
     conditions: tuple[AuditedCondition, ...] = ()
     instead: Instead | None = None
+    read: Link | None = None
 
 
 @record

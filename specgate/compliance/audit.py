@@ -15,8 +15,9 @@ from specgate.approximations.approximation import Accuracy, Approximation, Condi
 from specgate.approximations.conditions import OF_STEP
 from specgate.approximations.features import Features
 from specgate.approximations.figures import negative, smallest
-from specgate.approximations.table import APPROXIMATIONS, chain, conditions
+from specgate.approximations.table import APPROXIMATIONS, conditions
 from specgate.compliance.assessment import Audit, AuditedCondition, Instead, Side, Slip
+from specgate.compliance.chains import Link, Linked, linked
 from specgate.compliance.claims import claim_range, claim_unit
 from specgate.compliance.compare import Limits, sign
 from specgate.compliance.readings import PI_DECIDES, Reading
@@ -32,6 +33,8 @@ from specgate.terms.precision import working_precision
 from specgate.terms.records import record
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Standing, Trilean
+
+_NO_BOUND = "the stated accuracy sets no bound on this side"
 
 
 @record
@@ -62,18 +65,27 @@ def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
     unit = matter.unit if basis.claimed is None else claim_unit(basis.claimed, matter.unit)
     claimed = None if basis.claimed is None else evaluate(basis.claimed.value, matter.values)
     started = Audit(
-        "approximation", Standing.INCONCLUSIVE, basis.place, None, unit, basis.chain, basis.claimed, claimed
+        "approximation",
+        Standing.INCONCLUSIVE,
+        basis.place,
+        unit=unit,
+        chain=basis.chain,
+        variant=basis.variant,
+        claim=basis.claimed,
+        claimed=claimed,
     )
     unknown = next((name for name in basis.chain if name not in APPROXIMATIONS), None)
     if unknown is not None:
         return replace(started, reason=f"{unknown} is in the catalogue and not audited by this version")
-    row = APPROXIMATIONS[basis.chain[-1]]
-    stray = next((name for name in basis.chain[:-1] if APPROXIMATIONS[name] not in chain(row.name)), None)
-    if stray is not None:
-        return replace(started, reason=f"{row.name} does not build on {stray}: chains of that kind are not audited yet")
-    audited = replace(started, conditions=tuple(_audited(row, matter, policy)))
-    audited = _evaluated(audited, row, matter)
-    return _offered(_stood(audited, matter), matter, policy)
+    chained = linked(basis, matter.features, matter.again, matter.arguments)
+    audited = replace(
+        started,
+        variant=chained.row.variant,
+        read=chained.links[-1] if chained.nothing is None else None,
+        conditions=tuple(one for link in chained.links for one in _audited(link, matter.arguments, policy)),
+    )
+    audited = _evaluated(audited, chained, matter)
+    return _offered(_stood(audited, chained.row, matter), matter, policy)
 
 
 def audit_beyond(basis: Basis, beyond: str, reading: Reading, values: Values, unit: Unit) -> Audit:
@@ -89,6 +101,7 @@ def audit_beyond(basis: Basis, beyond: str, reading: Reading, values: Values, un
         condition_words(condition),
         unit if claim is None else claim_unit(claim, unit),
         basis.chain,
+        basis.variant,
         claim,
         None if claim is None else evaluate(claim.value, values),
         conditions=(condition,),
@@ -99,33 +112,40 @@ def audit_beyond(basis: Basis, beyond: str, reading: Reading, values: Values, un
 # --- 1: does it apply ---------------------------------------------------------------------------------------
 
 
-def _audited(row: Approximation, matter: Matter, policy: Policy) -> Iterator[AuditedCondition]:
-    """Yield every condition of a row, those of its premises first, with what was found."""
-    for owner, condition in conditions(row.name, matter.arguments.measure):
+def _audited(link: Link, arguments: Arguments, policy: Policy) -> Iterator[AuditedCondition]:
+    """Yield every condition of a link, those of its premises first, with what was found."""
+    for owner, condition in conditions(link.row.name, arguments.measure, link.row.variant):
         own = policy.own(owner.name, condition)
         threshold = condition.threshold if own is None else own.stated
-        found = _found(condition, matter, threshold)
-        beyond = own is not None and own.looser and _found(condition, matter, own.catalogue).holds is not Trilean.YES
+        found = _found(condition, link, arguments, threshold)
+        beyond = (
+            own is not None
+            and own.looser
+            and _found(condition, link, arguments, own.catalogue).holds is not Trilean.YES
+        )
         yield AuditedCondition(owner.name, condition, threshold, found, None if own is None else own.words, beyond)
 
 
-def _found(condition: Condition, matter: Matter, threshold: fmpq | None) -> Found:
-    found = condition.find(matter.features, matter.arguments, threshold)
-    if matter.again is matter.features:
+def _found(condition: Condition, link: Link, arguments: Arguments, threshold: fmpq | None) -> Found:
+    found = condition.find(link.features, arguments, threshold)
+    if link.again is link.features:
         return found
-    again = condition.find(matter.again, matter.arguments, threshold)
+    again = condition.find(link.again, arguments, threshold)
     return found if again.holds is found.holds else Found(PI_DECIDES, Trilean.UNKNOWN)
 
 
 # --- 2, 3 and 4: the claim, the error, what is left open ------------------------------------------------------
 
 
-def _evaluated(audited: Audit, row: Approximation, matter: Matter) -> Audit:
-    formula = row.evaluate(matter.features, matter.arguments)
+def _evaluated(audited: Audit, chained: Linked, matter: Matter) -> Audit:
+    formula = chained.formula(matter.arguments)
     beyond = any(one.beyond for one in audited.conditions)
-    accuracy = None if beyond else row.accuracy(matter.features, matter.arguments)
+    accuracy = None if beyond or formula.absent is not None else chained.accuracy(matter.arguments)
     audited = replace(
-        audited, formula=formula, formula_text=row.formula, accuracy=None if accuracy is None else accuracy.text
+        audited,
+        formula=formula,
+        formula_text=chained.row.formula,
+        accuracy=None if accuracy is None else accuracy.text,
     )
     if formula.absent is None and matter.truth is not None:
         audited = replace(audited, error=formula_error(formula, matter.truth, matter.limits))
@@ -159,8 +179,11 @@ def _implied(audited: Audit, formula: Answer, accuracy: Accuracy | None) -> tupl
     if accuracy is None or formula.absent is not None:
         return None
     bases = [formula] if audited.claimed is None else [Answer.of_exact(audited.claimed), formula]
-    ends = [_divided(base, 1 + error) for base in bases for error in (accuracy.lower, accuracy.upper)]
-    return smallest(ends), negative(smallest([negative(end) for end in ends]))
+    bounded = accuracy.lower > -1
+    errors = (accuracy.lower, accuracy.upper) if bounded else (accuracy.upper,)
+    ends = [_divided(base, 1 + error) for base in bases for error in errors]
+    greatest = negative(smallest([negative(end) for end in ends]))
+    return smallest(ends), greatest if bounded else Answer.nothing(_NO_BOUND, infinite=True)
 
 
 def _divided(value: Answer, by: fmpq) -> Answer:
@@ -175,13 +198,13 @@ def _divided(value: Answer, by: fmpq) -> Answer:
     return Answer.of_ball(refine)
 
 
-def _stood(audited: Audit, matter: Matter) -> Audit:
+def _stood(audited: Audit, row: Approximation, matter: Matter) -> Audit:
     """Return the audit with its standing and the reason for it."""
-    standing, reason = _standing(audited, matter)
+    standing, reason = _standing(audited, row, matter)
     return replace(audited, standing=standing, reason=reason)
 
 
-def _standing(audited: Audit, matter: Matter) -> tuple[Standing, str | None]:
+def _standing(audited: Audit, row: Approximation, matter: Matter) -> tuple[Standing, str | None]:
     broken = [one for one in audited.conditions if one.found.holds is Trilean.NO]
     if broken:
         return Standing.OUT_OF_RANGE, "; ".join(condition_words(one) for one in broken)
@@ -189,6 +212,8 @@ def _standing(audited: Audit, matter: Matter) -> tuple[Standing, str | None]:
     if formula is None or formula.absent is not None:
         why = formula.absent.reason if formula is not None and formula.absent is not None else "no value"
         return Standing.OUT_OF_RANGE, f"the formula has no value here: {why}"
+    if row.always_safe == "under" and matter.limits.most is not None:
+        return Standing.OUT_OF_RANGE, "it is a lower bound, and no lower bound shows that a limit from above is met"
     undecided = [one for one in audited.conditions if one.found.holds is Trilean.UNKNOWN]
     if undecided:
         named = "; ".join(one.condition.named(one.threshold) for one in undecided)
@@ -210,7 +235,8 @@ def _leaves_open(interval: tuple[Answer, Answer], limits: Limits) -> bool:
     """Whether some of an interval meets a limit and some does not; touching a limit meets it."""
     low, high = interval
     least, most = limits.least, limits.most
-    below = least is not None and sign(low, least) == -1 and sign(high, least) != -1
+    endless = high.absent is not None
+    below = least is not None and sign(low, least) == -1 and (endless or sign(high, least) != -1)
     above = most is not None and sign(high, most) == 1 and sign(low, most) != 1
     return below or above
 
@@ -224,24 +250,31 @@ def _offered(audited: Audit, matter: Matter, policy: Policy) -> Audit:
     truth = matter.truth
     if truth is None:
         return replace(audited, instead=Instead("computed", None))
-    candidates = [Instead(row.name, value) for row, value in _applicable(audited.chain, matter, policy)]
+    candidates = [Instead(row.name, value, row.variant) for row, value in _applicable(audited, matter, policy)]
     safe = [one for one in candidates if one.value is not None and side(one.value, truth, matter.limits) != "unsafe"]
     nearest = min(safe, key=lambda one: _distance(one.value, truth), default=Instead("computed", truth))
     return replace(audited, instead=nearest)
 
 
-def _applicable(chain: tuple[str, ...], matter: Matter, policy: Policy) -> Iterator[tuple[Approximation, Answer]]:
+def _applicable(audited: Audit, matter: Matter, policy: Policy) -> Iterator[tuple[Approximation, Answer]]:
     """Yield the rows of the catalogue that estimate the measure, apply here and have a value; alternatives first."""
-    named = APPROXIMATIONS[chain[-1]].alternatives
-    rows = dict.fromkeys([*(name for name in named if name in APPROXIMATIONS), *APPROXIMATIONS])
-    for name in rows:
-        row = APPROXIMATIONS[name]
-        if name in chain or matter.arguments.measure not in row.estimates:
+    for row in _others(audited):
+        if matter.arguments.measure not in row.estimates:
             continue
-        if all(one.found.holds is Trilean.YES for one in _audited(row, matter, policy)):
+        link = Link(row, matter.features, matter.again)
+        if all(one.found.holds is Trilean.YES for one in _audited(link, matter.arguments, policy)):
             value = row.evaluate(matter.features, matter.arguments)
             if value.absent is None:
                 yield row, value
+
+
+def _others(audited: Audit) -> Iterator[Approximation]:
+    """Yield what could stand in place of a basis: other variants of its formula, its alternatives, all other rows."""
+    last = APPROXIMATIONS[audited.chain[-1]]
+    yield from (last.taken_as(one.name) for one in last.variants if one.name != audited.variant)
+    for name in dict.fromkeys([*last.alternatives, *APPROXIMATIONS]):
+        if name not in audited.chain:
+            yield APPROXIMATIONS[name]
 
 
 def _distance(value: Answer | None, truth: Answer) -> fmpq:

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from flint import fmpq, fmpq_poly
 
 from specgate.approximations.approximation import Found
-from specgate.compliance.assessment import AuditedCondition, CriterionAssessment
+from specgate.compliance.assessment import Audit, AuditedCondition, CriterionAssessment
 from specgate.compliance.readings import Reading
 from specgate.project.types import Limit
 from specgate.response.answers import Answer
@@ -160,13 +160,24 @@ def promise_words(assessed: CriterionAssessment) -> str:
     return f"{promised}, computed {result(assessed)}"
 
 
+def basis_words(audit: Audit) -> str:
+    """Name the approximations of a basis: `near_cancellation + second_order_rise (linear)`."""
+    return named(" + ".join(audit.chain), audit.variant)
+
+
+def named(name: str, variant: str | None) -> str:
+    """Put the variant behind the name of an approximation that has several."""
+    return name if variant is None else f"{name} ({variant})"
+
+
 def instead_words(assessed: CriterionAssessment) -> str:
     """Say what to use in place of a basis that does not stand."""
     instead, unit = assessed.audit.instead, assessed.audit.unit
     if instead is None or instead.value is None or unit is None or instead.name == "computed":
         return "rest the claim on `basis: computed`"
     shown = figure(Reading.once(instead.value).in_unit(unit), unit)
-    return f"rest the claim on {instead.name}, which applies and gives {shown}, or on `basis: computed`"
+    name = named(instead.name, instead.variant)
+    return f"rest the claim on {name}, which applies and gives {shown}, or on `basis: computed`"
 
 
 def claim_words(assessed: CriterionAssessment) -> str:

@@ -8,7 +8,7 @@ from typing import Literal
 
 from flint import fmpq
 
-from specgate.approximations.table import APPROXIMATIONS
+from specgate.approximations.table import APPROXIMATIONS, stray
 from specgate.intake.context import Context, items, table, text, texts
 from specgate.intake.nodes import Node, Number, Spot, Table, Text, Truth, as_kept
 from specgate.intake.values import Reader, complete
@@ -188,7 +188,25 @@ def basis(node: Node, context: Context) -> Basis | None:
     claim = _claim(claimed, context) if claimed is not None else None
     if not chain or (claimed is not None and claim is None):
         return None
-    return Basis("approximation", place, chain, claim)
+    chosen = body.get("variant")
+    variant = text(chosen)
+    if chosen is not None and not (isinstance(chosen, Text) and _has_variant(chain[-1], chosen, context)):
+        return None
+    return Basis("approximation", place, chain, claim, variant=None if variant is None else variant.strip())
+
+
+def _has_variant(name: str, chosen: Text, context: Context) -> bool:
+    """Whether an approximation has a formula of this name; approximations answered later are taken as they are."""
+    row = APPROXIMATIONS.get(name)
+    known = [one.name for one in row.variants] if row is not None else [chosen.value.strip()]
+    if chosen.value.strip() in known:
+        return True
+    if known:
+        context.unknown("variant", chosen.value.strip(), known, chosen.spot.place, name)
+    else:
+        message = f"`{name}` is one formula and has no variants: leave `variant` out"
+        context.collector.error("schema-violation", message, chosen.spot.place)
+    return False
 
 
 def _claim(node: Node, context: Context) -> Claim | None:
@@ -207,6 +225,14 @@ def estimates_one(rests_on: Basis, measures: Sequence[str], context: Context) ->
     """See that a basis estimates exactly one of the measures; approximations answered later are taken as they are."""
     if rests_on.kind != "approximation" or rests_on.chain[-1] not in APPROXIMATIONS:
         return True
+    loose = stray(rests_on.chain)
+    if loose is not None:
+        message = (
+            f"`{loose}` leads to nothing in this chain: `{rests_on.chain[-1]}` does not build on it, and it drops no "
+            "part of the response"
+        )
+        context.collector.error("schema-violation", message, rests_on.place)
+        return False
     name = rests_on.chain[-1]
     estimated = APPROXIMATIONS[name].estimates
     fitting = [measure for measure in measures if measure in estimated]

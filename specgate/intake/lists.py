@@ -23,6 +23,7 @@ def rewritten(text: str) -> str:
     schema["$defs"]["measure"] = _measure()
     schema["$defs"]["measure_arguments"] = _measure_arguments()
     schema["$defs"]["approximation"] = _approximation()
+    schema["$defs"]["variant"] = _variant()
     schema["$defs"]["unit"]["examples"] = sorted(UnitTable.standard().units)
     return json.dumps(schema, indent=2, ensure_ascii=False) + "\n"
 
@@ -44,6 +45,17 @@ def _approximation() -> dict[str, Any]:
         "enum": [*APPROXIMATIONS, *LATER],
         "x-rule": "name-unknown",
         "x-wanted": "an approximation",
+    }
+
+
+def _variant() -> dict[str, Any]:
+    """Only examples: which approximation has which is said with its name, by `intake.criteria`."""
+    names = dict.fromkeys(variant.name for row in APPROXIMATIONS.values() for variant in row.variants)
+    return {
+        "description": "One of several published formulas of an approximation.",
+        "type": "string",
+        "examples": list(names),
+        "x-wanted": "the name of a variant",
     }
 
 

@@ -32,12 +32,14 @@ def _arrival(response: TimeResponse, fraction: fmpq) -> Answer:
         return final
     if final == 0:
         return no_change("no part of the change is ever reached", "limit peak_deviation or settling_time instead")
+    if fraction == 0:
+        return Answer.of_exact(0)
     return response.first_arrival(final * fraction)
 
 
 def _rise_time(response: TimeResponse, arguments: Arguments) -> Answer:
-    if not 0 < arguments.lower < arguments.upper < 1:
-        raise ValueError("rise time needs 0 % < from < to < 100 %")
+    if not 0 <= arguments.lower < arguments.upper <= 1:
+        raise ValueError("rise time needs 0 % <= from < to <= 100 %")
     return difference(_arrival(response, arguments.upper), _arrival(response, arguments.lower))
 
 
@@ -83,7 +85,9 @@ ROWS = (
         unit=UnitRule.SECOND,
         definition=(
             "Time from the first arrival at the lower percentage of the change to the first arrival at the upper one; "
-            "10 % and 90 % unless said otherwise. A jump at the step reaches every percentage that it covers at once."
+            "10 % and 90 % unless said otherwise. 0 % is the start of the input; 100 % is reached only by a response "
+            "that gets to its final value and does not merely approach it. A jump at the step reaches every "
+            "percentage that it covers at once."
         ),
         absent_when=_STEP,
         source=(

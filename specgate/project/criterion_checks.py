@@ -277,8 +277,8 @@ class CriterionCheck:
 
     def _fraction(self, name: str, value: Value) -> None:
         fraction = relative_to_change(value)
-        if fraction is None or not 0 < fraction < 1:
-            message = f"`{value.as_written}`: `{name}` is in % of the change, between 0 and 100 %"
+        if fraction is None or not 0 <= fraction <= 1:
+            message = f"`{value.as_written}`: `{name}` is in % of the change, from 0 to 100 %"
             raise Fault(faults.DIMENSION, message, value.place)
 
 

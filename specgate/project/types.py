@@ -341,13 +341,18 @@ class Claim:
 
 @record
 class Basis:
-    """What the claim of compliance rests on."""
+    """What the claim of compliance rests on.
+
+    chain: the approximations in the order in which they are used, the one that estimates the measure last. variant:
+    which of its formulas, where the last has several.
+    """
 
     kind: Literal["computed", "approximation", "evidence"]
     place: Place
     chain: tuple[str, ...] = ()
     claimed: Claim | None = None
     evidence: str | None = None
+    variant: str | None = None
 
 
 @record

@@ -42,8 +42,8 @@ FORMAT = 1
 def review(project: Project, *, curves: bool = True) -> Review:
     """Compute and judge a project. Raises Fault for a project that its checks refuse.
 
-    curves: whether to compute what only drawings and records need: points of responses, and peaks of signals that a
-    bound alone proves to be inside their range.
+    curves: whether to compute what only drawings and records need: points of responses and of errors, and peaks of
+    signals that a bound alone proves to be inside their range.
     """
     analyses, graph = analyse(project), trace(project)
     assumptions = Assumptions(project, analyses)
@@ -54,7 +54,7 @@ def review(project: Project, *, curves: bool = True) -> Review:
     loops = {name: loop(one, again[name], curves=curves) for name, one in analyses.loops.items()}
     rests = resting(project, analyses)
     requirements = {
-        name: requirement(name, one, project, rests, graph, peaks=curves) for name, one in assessments.items()
+        name: requirement(name, one, project, rests, graph, drawn=curves) for name, one in assessments.items()
     }
     shown = tuple(_finding(one) for one in said)
     info = project.info

@@ -25,6 +25,7 @@ from specgate.compliance.wording import found_value, subject_name
 from specgate.project.types import Project
 from specgate.response.answers import Answer
 from specgate.review.assumptions import assumption
+from specgate.review.pictures import error_curve, separation
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
 from specgate.review.types import (
     BasisReview,
@@ -50,9 +51,12 @@ def requirement(
     rests: Mapping[str, tuple[str, ...]],
     graph: Graph,
     *,
-    peaks: bool,
+    drawn: bool,
 ) -> RequirementReview:
-    """Print one requirement. rests: what each loop rests on (`resting`). peaks: of signals inside their range too."""
+    """Print one requirement. rests: what each loop rests on (`resting`).
+
+    drawn: with what only drawings and records need: peaks of signals inside their range too, pictures of formulas.
+    """
     declared = assessment.requirement
     exempt = declared.not_applicable
     return RequirementReview(
@@ -67,9 +71,9 @@ def requirement(
         standing=None if assessment.standing is None else assessment.standing.value,
         decided_by=declared.decided_by,
         methods=tuple(_method(one) for one in assessment.methods),
-        criteria=tuple(_criterion(one, project) for one in assessment.criteria),
+        criteria=tuple(_criterion(one, project, drawn=drawn) for one in assessment.criteria),
         assumptions=tuple(
-            assumption(one, peak=peaks) for criterion in by_response(assessment) for one in criterion.assumptions
+            assumption(one, peak=drawn) for criterion in by_response(assessment) for one in criterion.assumptions
         ),
         rests_on=_rests_on(assessment, rests),
         derived=graph.children[name],
@@ -111,7 +115,7 @@ def _rests_on(assessment: Assessment, rests: Mapping[str, tuple[str, ...]]) -> t
 # --- a criterion --------------------------------------------------------------------------------------------
 
 
-def _criterion(assessed: CriterionAssessment, project: Project) -> CriterionReview:
+def _criterion(assessed: CriterionAssessment, project: Project, *, drawn: bool) -> CriterionReview:
     criterion = assessed.criterion
     return CriterionReview(
         measure=assessed.measure.name,
@@ -122,7 +126,7 @@ def _criterion(assessed: CriterionAssessment, project: Project) -> CriterionRevi
         verdict=assessed.verdict.value,
         result=result(assessed.reading, assessed.unit, assessed.scale, assessed.beside, assessed.signal),
         reserve=_reserve(assessed),
-        basis=_basis(assessed.audit),
+        basis=_basis(assessed, drawn=drawn),
         standing=assessed.standing.value,
         location=location(criterion.place),
         reason=assessed.reason,
@@ -169,7 +173,8 @@ def _reserve(assessed: CriterionAssessment) -> ReserveReview | None:
 # --- an audit -----------------------------------------------------------------------------------------------
 
 
-def _basis(audit: Audit) -> BasisReview:
+def _basis(assessed: CriterionAssessment, *, drawn: bool) -> BasisReview:
+    audit = assessed.audit
     unit = audit.unit or ONE
     return BasisReview(
         kind=audit.kind,
@@ -187,6 +192,9 @@ def _basis(audit: Audit) -> BasisReview:
         conditions=tuple(_condition(one) for one in audit.conditions),
         instead=_instead(audit, unit),
         reason=audit.reason,
+        variant=audit.variant,
+        error_curve=error_curve(audit, assessed.arguments) if drawn else None,
+        separation=separation(audit, assessed.arguments) if drawn else None,
     )
 
 
@@ -237,4 +245,4 @@ def _instead(audit: Audit, unit: Unit) -> InsteadReview | None:
     if instead is None:
         return None
     value = None if instead.value is None else amount_of(instead.value, unit)
-    return InsteadReview(instead.name, None if value is None else value.value, unit.symbol)
+    return InsteadReview(instead.name, None if value is None else value.value, unit.symbol, instead.variant)

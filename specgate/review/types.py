@@ -265,6 +265,47 @@ class InsteadReview:
     name: str
     value: float | None
     unit: str
+    variant: str | None = _omitted()
+    """Which of its formulas, where it has several."""
+
+
+@record
+class PointReview:
+    """Where a response stands in a picture: its damping ratio and the error of the formula on it."""
+
+    damping: float
+    error: float | None
+
+
+@record
+class ErrorCurveReview:
+    """The error of a formula (formula / true - 1) for the pair alone, over the damping ratio of the pair.
+
+    lower, upper: damping ratios between which the formula's own conditions hold.
+    """
+
+    damping: tuple[float, ...]
+    error: tuple[float, ...]
+    lower: float | None
+    upper: float | None
+    here: PointReview
+
+
+@record
+class SeparationReview:
+    """Poles and zeros about the dominant pair at real ± imaginary j (1/s), and how far from it they have to be.
+
+    real_part: other poles have to lie left of it. distance: zeros (other poles too, if `poles_too`) have to lie at
+    least so far from the origin.
+    """
+
+    real: float
+    imaginary: float
+    poles: tuple[Pole, ...]
+    zeros: tuple[Pole, ...]
+    real_part: float | None
+    distance: float | None
+    poles_too: bool
 
 
 @record
@@ -286,6 +327,10 @@ class BasisReview:
     conditions: tuple[ConditionReview, ...] = ()
     instead: InsteadReview | None = None
     reason: str | None = _omitted()
+    variant: str | None = _omitted()
+    """Which formula of the last of the chain, where it has several."""
+    error_curve: ErrorCurveReview | None = _omitted()
+    separation: SeparationReview | None = _omitted()
 
 
 @record

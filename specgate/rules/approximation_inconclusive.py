@@ -11,7 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from specgate.compliance.wording import instead_words, promise_words, subject
+from specgate.compliance.wording import basis_words, instead_words, promise_words, subject
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Standing
@@ -29,7 +29,7 @@ def check(facts: Facts) -> Iterator[Finding]:
                     rule=NAME,
                     level=facts.restating(Standing.INCONCLUSIVE, assessment),
                     message=(
-                        f"{name}: {' + '.join(audit.chain)} does not decide {subject(criterion)}: {audit.reason}; "
+                        f"{name}: {basis_words(audit)} does not decide {subject(criterion)}: {audit.reason}; "
                         f"{promise_words(criterion)}; {instead_words(criterion)}"
                     ),
                     place=audit.place,

@@ -10,7 +10,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from specgate.compliance.assessment import Audit
-from specgate.compliance.wording import condition_words, instead_words, promise_words, subject
+from specgate.compliance.wording import basis_words, condition_words, instead_words, promise_words, subject
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Standing, Trilean
@@ -28,7 +28,7 @@ def check(facts: Facts) -> Iterator[Finding]:
                     rule=NAME,
                     level=facts.restating(Standing.OUT_OF_RANGE, assessment),
                     message=(
-                        f"{name}: {' + '.join(audit.chain)} is out of its range for {subject(criterion)}: "
+                        f"{name}: {basis_words(audit)} is out of its range for {subject(criterion)}: "
                         f"{_violated(audit)}; {promise_words(criterion)}; {instead_words(criterion)}"
                     ),
                     place=audit.place,

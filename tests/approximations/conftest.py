@@ -2,18 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from fractions import Fraction
 from typing import Any
 
 import pytest
 from flint import fmpq, fmpq_poly
 
+from specgate.approximations.approximation import Approximation
 from specgate.approximations.features import Features
+from specgate.approximations.table import conditions
+from specgate.measures.measure import Arguments
 from specgate.measures.subjects import ResponseSubject
+from specgate.measures.table import MEASURES
 from specgate.response.answers import Absent
 from specgate.response.step import StepResponse
 from specgate.systems.transfer import TransferFunction
+from specgate.terms.precision import working_precision
+from specgate.terms.verdicts import Trilean
 
 Root = float | str | tuple[float | str, float | str]
 """A real root, or (real part, imaginary part) of a conjugate pair."""
@@ -81,9 +87,65 @@ class Builder:
         return of_polynomials(above, fmpq_poly([exact(c) for c in reversed(denominator)]), size, **more)
 
 
+class Shown:
+    """Shows a stated accuracy: errors of a row against proved values, extremes found by search."""
+
+    def holds(self, row: Approximation, features: Features, arguments: Arguments) -> bool:
+        """Tell whether every condition of a row is met."""
+        every = conditions(row.name, arguments.measure, row.variant)
+        return all(one.find(features, arguments, one.threshold).holds is Trilean.YES for _, one in every)
+
+    def error(self, row: Approximation, features: Features, arguments: Arguments) -> float:
+        """Return formula / proved value - 1 of a response in range; it lies inside what is stated for it."""
+        assert self.holds(row, features, arguments)
+        read = MEASURES[arguments.measure].read
+        assert read is not None
+        value, truth = row.evaluate(features, arguments).enclose(96), read(features.subject, arguments).enclose(96)
+        with working_precision(96):
+            error = value / truth - 1
+        stated = row.accuracy(features, arguments)
+        assert stated is not None
+        assert not error < stated.lower - _TINY, (error, stated.text)
+        assert not error > stated.upper + _TINY, (error, stated.text)
+        return float(error.mid())
+
+    def extremes(self, error: Callable[[fmpq], float], low: fmpq, high: fmpq) -> tuple[float, float]:
+        """Return the least and greatest of a function on a range: a grid, then golden sections about its best point."""
+        grid = [low + (high - low) * k / 40 for k in range(41)]
+        values = [error(point) for point in grid]
+        least = self._refined(error, grid, values)
+        return least, -self._refined(lambda point: -error(point), grid, [-value for value in values])
+
+    def _refined(self, error: Callable[[fmpq], float], grid: Sequence[fmpq], values: Sequence[float]) -> float:
+        best = min(range(len(grid)), key=values.__getitem__)
+        low, high = grid[max(best - 1, 0)], grid[min(best + 1, len(grid) - 1)]
+        for _ in range(16):
+            left, right = low + (high - low) * fmpq(382, 1000), low + (high - low) * fmpq(618, 1000)
+            if error(left) < error(right):
+                high = right
+            else:
+                low = left
+        return min(values[best], error((low + high) / 2))
+
+    def tight(self, found: tuple[float, float], low: fmpq, high: fmpq) -> None:
+        """Assert that a range is used up to a tenth of its width at either end."""
+        slack = float(high - low) / 10 + 1e-15
+        assert found[0] <= float(low) + slack, (found, low, high)
+        assert found[1] >= float(high) - slack, (found, low, high)
+
+
+_TINY = fmpq(1, 10**20)
+"""Width of the balls that errors are computed with."""
+
+
 @pytest.fixture(scope="session")
 def build() -> Builder:
     return Builder()
+
+
+@pytest.fixture(scope="session")
+def shown() -> Shown:
+    return Shown()
 
 
 @pytest.fixture

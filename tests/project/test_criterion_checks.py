@@ -109,7 +109,7 @@ def test_good_criteria_pass(findings: Findings, on: str, criterion: str) -> None
         ("valve", "measure: settling_time, band: 2 % of span, at_most: 1 s", "no `span"),
         ("place", "measure: settling_time, band: 2 % of rated, at_most: 1 s", "a band is in % of the change or in m"),
         ("place", "measure: rise_time, from: 10 mm, at_most: 1 s", "`from` is in % of the change"),
-        ("place", "measure: rise_time, to: 100 %, at_most: 1 s", "between 0 and 100 %"),
+        ("place", "measure: rise_time, to: 101 %, at_most: 1 s", "from 0 to 100 %"),
         ("place", "measure: overshoot, at_most: 10 s", "overshoot is in m or % of the change, this is s"),
         ("place", "measure: overshoot, at_most: 0.1", "overshoot is in m or % of the change"),
         ("valve", "measure: overshoot, at_most: 10 %", "`10 points` for percentage points"),

@@ -1,0 +1,100 @@
+"""The links of a chain of approximations, each with the response that it is read from, and their accuracy together.
+
+An approximation that drops a part of the response leaves the rest to what follows it. One that a later link builds on
+(a premise) is no link of its own: its conditions and its share of the accuracy belong to that later one.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from flint import fmpq
+
+from specgate.approximations.approximation import Accuracy, Approximation
+from specgate.approximations.crowding import signed_percent
+from specgate.approximations.features import Features
+from specgate.approximations.table import chain, entry
+from specgate.measures.measure import Arguments
+from specgate.project.types import Basis
+from specgate.response.answers import Absent, Answer
+from specgate.terms.records import record
+from specgate.terms.verdicts import Proof
+
+_STATED_TO = 100000
+
+
+@record
+class Link:
+    """An approximation and the response that it is read from.
+
+    features, again: with the fixed decimal for pi and with more digits (the same object where pi has no part in it).
+    """
+
+    row: Approximation
+    features: Features
+    again: Features
+
+
+@record
+class Linked:
+    """A chain against a response. nothing: why its last link has nothing to be read from; the links stop before it."""
+
+    row: Approximation
+    links: tuple[Link, ...]
+    nothing: Absent | None = None
+
+    def formula(self, arguments: Arguments) -> Answer:
+        """Return the value of the last formula, on what the links before it have left."""
+        if self.nothing is not None:
+            return Answer(Proof.EXACT if self.nothing.proved else Proof.ESTIMATED, absent=self.nothing)
+        return self.row.evaluate(self.links[-1].features, arguments)
+
+    def accuracy(self, arguments: Arguments) -> Accuracy | None:
+        """Return the stated accuracy of all links together; None where one of them states none."""
+        if self.nothing is not None:
+            return None
+        return together([link.row.accuracy(link.features, arguments) for link in self.links])
+
+
+def linked(basis: Basis, features: Features, again: Features, arguments: Arguments) -> Linked:
+    """Return the links of a basis. Raises KeyError for a name or a variant that is not in the table."""
+    last = entry(basis.chain[-1], basis.variant)
+    rows = [*(entry(name) for name in basis.chain[:-1]), last]
+    links: list[Link] = []
+    for place, row in enumerate(rows[:-1]):
+        if row.reduce is None or any(row in chain(other.name) for other in rows[place + 1 :]):
+            continue
+        links.append(Link(row, features, again))
+        left, left_again = _left(row, features, again, arguments)
+        if isinstance(left, Absent) or isinstance(left_again, Absent):
+            reason = left if isinstance(left, Absent) else left_again
+            assert isinstance(reason, Absent)
+            return Linked(last, tuple(links), reason)
+        features, again = left, left_again
+    return Linked(last, (*links, Link(last, features, again)))
+
+
+def _left(
+    row: Approximation, features: Features, again: Features, arguments: Arguments
+) -> tuple[Features | Absent, Features | Absent]:
+    assert row.reduce is not None
+    left = row.reduce(features, arguments)
+    return left, left if again is features else row.reduce(again, arguments)
+
+
+def together(parts: Sequence[Accuracy | None]) -> Accuracy | None:
+    """Return the accuracy of estimates read from one another: their errors multiply. None where one states none."""
+    stated = [part for part in parts if part is not None]
+    if len(stated) < len(parts) or not stated:
+        return None
+    if len(stated) == 1:
+        return stated[0]
+    low, high = fmpq(1), fmpq(1)
+    for part in stated:
+        low, high = low * (1 + part.lower), high * (1 + part.upper)
+    lower, upper = (
+        fmpq((_STATED_TO * (low - 1)).floor(), _STATED_TO),
+        fmpq((_STATED_TO * (high - 1)).ceil(), _STATED_TO),
+    )
+    each = "; then ".join(part.text for part in stated)
+    return Accuracy(lower, upper, f"{each}; together {signed_percent(lower)} to {signed_percent(upper)} %")
