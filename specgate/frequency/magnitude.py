@@ -28,8 +28,8 @@ class Magnitude:
     @cached_property
     def stationary(self) -> tuple[Spot, ...]:
         """Where the magnitude is finite and stands still (x > 0); none where it is constant."""
-        still = wronskian(self.above, self.below)
-        return tuple(spot for spot in roots(still) if spot.sign(self.below) != 0)
+        found = roots(wronskian(self.above, self.below))
+        return tuple(spot for spot in found if spot.sign(self.below) != 0) if self.poles else found
 
     @cached_property
     def poles(self) -> tuple[Spot, ...]:

@@ -88,8 +88,18 @@ class RationalLoop:
         spots += [_INFINITY] if axis.numerator.degree() == axis.denominator.degree() else []
         return tuple(spot for spot in spots if spot.sign(axis.real) < 0)
 
+    @cached_property
+    def _all_gain_crossings(self) -> tuple[GainCrossing, ...]:
+        return tuple(self._gain_crossing(spot) for spot in self._gain_spots)
+
+    @cached_property
+    def _all_phase_crossings(self) -> tuple[PhaseCrossing, ...]:
+        return tuple(self._phase_crossing(spot) for spot in self._phase_spots)
+
     def _gain_crossings(self, over: Range | None) -> tuple[GainCrossing, ...]:
-        everywhere = over is not None and self.axis.above == self.axis.below
+        if over is None:
+            return self._all_gain_crossings
+        everywhere = self.axis.above == self.axis.below
         spots = (*within(self.scale, self._gain_spots, over), *(ends(self.scale, over) if everywhere else ()))
         return tuple(self._gain_crossing(spot) for spot in spots)
 
@@ -98,8 +108,10 @@ class RationalLoop:
         return GainCrossing(self.scale.frequency(spot), turn.size, turn.side)
 
     def _phase_crossings(self, over: Range | None) -> tuple[PhaseCrossing, ...]:
+        if over is None:
+            return self._all_phase_crossings
         axis = self.axis
-        extra = ends(self.scale, over) if over is not None and not axis.imaginary else ()
+        extra = () if axis.imaginary else ends(self.scale, over)
         spots = (
             *within(self.scale, self._phase_spots, over),
             *(spot for spot in extra if spot.sign(axis.real) < 0 and spot.sign(axis.below) != 0),

@@ -92,7 +92,6 @@ class Root:
 
     def __init__(self, polynomial: fmpz_poly, isolating: arb) -> None:
         self._polynomial = polynomial
-        self._signs: dict[tuple[int, ...], Sign] = {}
         self._zero = Zero(_at(polynomial), _at(polynomial.derivative()), _clear(polynomial, isolating))
 
     def enclose(self, bits: int) -> arb:
@@ -101,19 +100,12 @@ class Root:
 
     def sign(self, p: fmpq_poly) -> Sign:
         """Return the sign of p at the root."""
-        whole = p.numer()
-        key = tuple(int(c) for c in whole.coeffs())
-        if key not in self._signs:
-            self._signs[key] = self._sign(whole)
-        return self._signs[key]
-
-    def _sign(self, p: fmpz_poly) -> Sign:
-        bits = _FIRST
+        whole, bits = p.numer(), _FIRST
         while bits <= _MOST:
-            found = self._sign_at(p, bits)
+            found = self._sign_at(whole, bits)
             if found is not None:
                 return found
-            if bits == _EXACT_FROM and self._is_root_of(p):
+            if bits == _EXACT_FROM and self._is_root_of(whole):
                 return 0
             bits *= 2
         raise ArithmeticError("the sign of a number that is not zero could not be found")
@@ -140,9 +132,9 @@ class Root:
 
     def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
         """Return p / q at the root."""
-        if self.sign(p) == 0:
-            return Answer.of_exact(0)
         above, below, factor = p.numer(), q.numer(), fmpq(q.denom(), p.denom())
+        if self._sign_at(above, _FIRST) is None and self.sign(p) == 0:
+            return Answer.of_exact(0)
 
         def refine(bits: int) -> arb:
             precision = bits + 16
