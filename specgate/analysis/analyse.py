@@ -8,6 +8,7 @@ from dataclasses import replace
 from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
 from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.wiring import subsystems_of
+from specgate.delays.open_loop import DelayedLoop
 from specgate.frequency.rational_loop import UNSTABLE, RationalLoop
 from specgate.measures.reading import decided
 from specgate.measures.subjects import BreakSubject, LoopSubject
@@ -84,7 +85,8 @@ def _break(
     if opened.algebraic_loop is not None:
         return BreakAnalysis(declared, Missing(opened.algebraic_loop.reason), opened)
     if isinstance(opened, DelayedOpenLoop):
-        subject = BreakSubject(opened.transfer, decided(opened.stable), None)
+        late = DelayedLoop(opened.reduced, opened.stable, _unstable(cut))
+        subject = BreakSubject(opened.transfer, decided(opened.stable), late)
     else:
         loop = RationalLoop(opened.transfer, opened.stable, unstable=_unstable(cut))
         subject = BreakSubject(opened.transfer, decided(opened.stable), loop)

@@ -8,7 +8,9 @@ from flint import fmpq
 
 from specgate.analysis.analyses import Missing, ResponseAnalysis
 from specgate.analysis.driven import ERROR_JUMPS, NOISE, SEVERAL, beyond, improper, plain, reference_of, void
+from specgate.delays.gain import DelayedGain
 from specgate.delays.inputs import respond_late
+from specgate.frequency.questions import Gain
 from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.subjects import ResponseSubject
 from specgate.project.excitations import evaluated
@@ -47,7 +49,7 @@ def delayed_response(
         over_time,
         errors if isinstance(errors, Absent) else _error(errors, inputs),
         next((hidden for channel in distinct if (hidden := _void(channel)) is not None), None),
-        None if rational is None else RationalGain(rational),
+        _gain(single),
         inputs,
         _beyond(inputs, single, rational is not None),
     )
@@ -58,6 +60,13 @@ def _in_time(channels: Sequence[DelayedTransfer], inputs: Sequence[Input]) -> Ti
     if any(given.kind == "white_noise" for given in inputs):
         return NOISE
     return respond_late(list(zip(channels, inputs, strict=True)))
+
+
+def _gain(single: DelayedTransfer | None) -> Gain | None:
+    """Return the channel over frequency."""
+    if single is None:
+        return None
+    return DelayedGain(single) if single.rational is None else RationalGain(single.rational)
 
 
 def _beyond(inputs: Sequence[Input], single: DelayedTransfer | None, rational: bool) -> str | None:

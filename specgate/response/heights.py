@@ -193,12 +193,13 @@ def _merged(peaks: Sequence[Peak]) -> list[Extreme]:
 def _both_sides(group: Sequence[Peak]) -> Extreme:
     first, last = group[0], group[-1]
     if first is not last and first.pieces.jump(last.where.index) != 0:
-        extreme = joined([_as_extreme(peak) for peak in group])
-        return Extreme(extreme.value, _as_extreme(first).time)
-    return _as_extreme(first)
+        extreme = joined([as_extreme(peak) for peak in group])
+        return Extreme(extreme.value, as_extreme(first).time)
+    return as_extreme(first)
 
 
-def _as_extreme(peak: Peak) -> Extreme:
+def as_extreme(peak: Peak) -> Extreme:
+    """Return a peak as a value and the time at which it is taken."""
     where = peak.where
     if isinstance(where, Instant):
         known = peak.pieces.jump(0) if where.time == 0 and peak.order == 0 else None

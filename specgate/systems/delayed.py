@@ -67,11 +67,13 @@ class DelayedChannel:
 class DelayedOpenLoop:
     """The loop opened for all users of a signal; see `opening.OpenLoop`.
 
-    transfer: L, not reduced: the denominator has every mode of the opened component.
+    transfer: L, not reduced: the denominator has every mode of the opened component. reduced: the same without common
+    factors.
     """
 
     signal: str
     transfer: DelayedTransfer
+    reduced: DelayedTransfer
     closed: Quasi
     algebraic_loop: AlgebraicLoop | None = None
 
@@ -227,7 +229,8 @@ class DelayedSolution:
         # 1 + L = det P / det P_open, and det P is known with all its modes.
         kept = closed / (below - returned)
         transfer = opened.network.transfer((-returned * kept, below * kept))
-        return DelayedOpenLoop(signal, transfer, self._scaled(closed))
+        reduced = opened.network.transfer((-returned, below))
+        return DelayedOpenLoop(signal, transfer, reduced, self._scaled(closed))
 
     def _held(self, signal: str, cut: Cut) -> DelayedOpenLoop:
         """Return the loop opened at a signal with others held open."""
@@ -267,7 +270,7 @@ def solve_delayed(wiring: Wiring) -> DelayedSolution:
 def _ill_posed(signal: str, where: str, closed: Quasi, found: AlgebraicLoop) -> DelayedOpenLoop:
     reason = f"{where}, the loop leaves an algebraic loop behind. {found.reason}"
     nothing = DelayedTransfer(Quasi(()), Quasi(()))
-    return DelayedOpenLoop(signal, nothing, closed, AlgebraicLoop(found.signals, reason))
+    return DelayedOpenLoop(signal, nothing, nothing, closed, AlgebraicLoop(found.signals, reason))
 
 
 def _degrees(element: fmpq_mpoly) -> bool:

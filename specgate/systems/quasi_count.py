@@ -90,7 +90,7 @@ def line(quasi: Quasi, real: fmpq, bits: int = 64) -> Line | None:
         function = Evaluated(quasi)
         cells: list[Cell] = []
         growth = arb(0)
-        for cell, change in _walk(function, real, height, bits):
+        for cell, change in walk(function, real, fmpq(0), height, bits):
             cells.append(cell)
             growth += change
         if (cells[-1].end if cells else 0) != height:
@@ -106,16 +106,24 @@ def line(quasi: Quasi, real: fmpq, bits: int = 64) -> Line | None:
 def dominated_beyond(quasi: Quasi, real: fmpq) -> fmpq | None:
     """Return a height (rad/s) from which on the undelayed term exceeds the others together on Re s = real.
 
-    With weights wk the square of sum |dk| is at most (sum wk) (sum |dk|^2 / wk) (Cauchy): the difference is an exact
-    polynomial in the square of the height. None where the undelayed term does not exceed the others at infinity.
+    None where it does not exceed them at infinity.
     """
-    base = _squared(quasi.undelayed, real)
-    degree = quasi.undelayed.degree()
-    rest = [(_grown(real, delay), polynomial) for delay, polynomial in quasi.delayed]
+    return exceeding_beyond(quasi.undelayed, quasi.delayed, real)
+
+
+def exceeding_beyond(first: fmpq_poly, terms: Sequence[tuple[fmpq, fmpq_poly]], real: fmpq) -> fmpq | None:
+    """Return a height from which on a polynomial exceeds the sum of the magnitudes of delayed terms on Re s = real.
+
+    With weights wk the square of sum |dk| is at most (sum wk) (sum |dk|^2 / wk) (Cauchy): the difference is an exact
+    polynomial in the square of the height. None where the polynomial does not exceed the terms at infinity.
+    """
+    base = _squared(first, real)
+    degree = first.degree()
+    rest = [(_grown(real, delay), polynomial) for delay, polynomial in terms]
     if any(polynomial.degree() > degree for _, polynomial in rest):
         return None
     leads = [factor * abs(polynomial[degree]) for factor, polynomial in rest]
-    spare = (abs(quasi.undelayed[degree]) - sum(leads, fmpq(0))) / (len(rest) + 1)
+    spare = (abs(first[degree]) - sum(leads, fmpq(0))) / (len(rest) + 1)
     if spare <= 0:
         return None
     weights = [lead + spare for lead in leads]
@@ -173,10 +181,13 @@ def _growth(polynomial: fmpq_poly, real: fmpq, height: fmpq) -> tuple[arb, int]:
     return total, right
 
 
-def _walk(function: Evaluated, real: fmpq, height: fmpq, bits: int) -> Iterator[tuple[Cell, arb]]:
-    """Yield cells of [0, height] from below, with the growth of the argument over each; ends early if it gets stuck."""
-    start, width, count = fmpq(0), height, 0
-    at_start = function.value(acb(real, 0))
+def walk(function: Evaluated, real: fmpq, low: fmpq, height: fmpq, bits: int) -> Iterator[tuple[Cell, arb]]:
+    """Yield cells of [low, height] from below, with the growth of the argument over each; ends early if it gets stuck.
+
+    bits: the precision that is set.
+    """
+    start, width, count = low, height - low, 0
+    at_start = function.value(acb(real, low))
     narrowest = height / 2 ** (bits - 8)
     while start < height:
         end = min(start + width, height)
