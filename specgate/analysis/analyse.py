@@ -9,6 +9,7 @@ from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Mi
 from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.wiring import subsystems_of
 from specgate.delays.open_loop import DelayedLoop
+from specgate.frequency.questions import OpenLoop
 from specgate.frequency.rational_loop import UNSTABLE, RationalLoop
 from specgate.measures.reading import decided
 from specgate.measures.subjects import BreakSubject, LoopSubject
@@ -85,12 +86,19 @@ def _break(
     if opened.algebraic_loop is not None:
         return BreakAnalysis(declared, Missing(opened.algebraic_loop.reason), opened)
     if isinstance(opened, DelayedOpenLoop):
-        late = DelayedLoop(opened.reduced, opened.stable, _unstable(cut))
-        subject = BreakSubject(opened.transfer, decided(opened.stable), late)
+        subject = BreakSubject(opened.transfer, decided(opened.stable), _late(opened, _unstable(cut)))
     else:
         loop = RationalLoop(opened.transfer, opened.stable, unstable=_unstable(cut))
         subject = BreakSubject(opened.transfer, decided(opened.stable), loop)
     return BreakAnalysis(declared, subject, opened)
+
+
+def _late(opened: DelayedOpenLoop, unstable: str) -> OpenLoop:
+    """Return an open loop over frequency: with the dead time in it, or without where none is left in L."""
+    rational = opened.reduced.rational
+    if rational is not None and opened.stable is not None:
+        return RationalLoop(rational, opened.stable, unstable=unstable)
+    return DelayedLoop(opened.reduced, opened.stable, unstable)
 
 
 def _unstable(cut: Cut) -> str:
