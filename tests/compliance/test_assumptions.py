@@ -193,3 +193,83 @@ def test_every_use_of_a_subsystem_has_its_own_range(assumed: Assumed) -> None:
 def test_a_signal_that_stands_still_is_no_assumption(assumed: Assumed) -> None:
     text = REST.replace("from: call", "from: extra").replace("500 mV", "1 l/min")
     assert [one.ranged.probe for one in assumed(text, "supply", "more")] == ["the input of pipe"]
+
+
+RATES = """
+    specgate: 1
+    project: {{id: T-3, title: Test, revision: A}}
+    subsystems:
+      stage:
+        input: {{unit: V, rate_range: [-5 V/s, 4 V/s]}}
+        output: {{unit: mm/s, rate_range: [-1 m/min/s, 0.9 m/min/s], linear_range: [-3 mm/s, 3 mm/s]}}
+        model: {{gain: 12 mm/s/V, lags: [0.3 s, 0.05 s]}}
+      slide:
+        input: {{unit: mm/s}}
+        output: {{unit: mm, linear_range: [-9 m, 9 m]}}
+        model: {{gain: 1, integrators: 1}}
+    loops:
+      table:
+        inputs: {{call: {{unit: V}}, push: {{unit: mm/s}}}}
+        signals: {{speed: stage(call) + push, place: slide(speed)}}
+        responses: {{move: {{to: speed, {drive}}}}}
+"""
+
+
+def by_range(assumptions: list[Assumption]) -> dict[tuple[str, str], Assumption]:
+    return {(one.ranged.probe, one.ranged.kind): one for one in assumptions}
+
+
+def test_a_rate_against_the_closed_form_of_two_lags(assumed: Assumed) -> None:
+    found = by_range(assumed(RATES.format(drive="from: call, input: step, size: 0.2 V"), "table", "move"))
+    rate = found["the output of stage", "rate_range"]
+    # y' = K (exp(-t/T1) - exp(-t/T2)) / (T1 - T2) is greatest at T1 T2 ln(T1/T2) / (T1 - T2)
+    with mpmath.workdps(30):
+        one, two = mpmath.mpf("0.3"), mpmath.mpf("0.05")
+        time = one * two * mpmath.log(one / two) / (one - two)
+        greatest = mpmath.mpf("0.0024") * (mpmath.exp(-time / one) - mpmath.exp(-time / two)) / (one - two)
+    assert reached(rate) == pytest.approx(float(greatest), rel=1e-13)
+    assert rate.ranged.allowed == fmpq(9, 600)
+    assert rate.decision.holds is Trilean.YES
+
+
+def test_a_jump_has_no_rate_that_a_range_could_hold(assumed: Assumed) -> None:
+    found = by_range(assumed(RATES.format(drive="from: call, input: step, size: 1 uV"), "table", "move"))
+    call = found["the input of stage", "rate_range"]
+    assert (call.decision.holds, call.standing, call.factor) == (Trilean.NO, Standing.OUT_OF_RANGE, None)
+
+
+def test_a_ramp_keeps_a_rate_to_its_end_and_leaves_every_linear_range(assumed: Assumed) -> None:
+    found = by_range(assumed(RATES.format(drive="from: call, input: ramp, slope: 4 V/s"), "table", "move"))
+    assert found["the input of stage", "rate_range"].decision.holds is Trilean.YES
+    place = found["the output of slide", "linear_range"]
+    assert (place.decision.holds, place.factor) == (Trilean.NO, None)
+    faster = by_range(assumed(RATES.format(drive="from: call, input: ramp, slope: -4.000004 V/s"), "table", "move"))
+    call = faster["the input of stage", "rate_range"]
+    assert call.decision.holds is Trilean.NO
+    assert call.largest_size is not None
+    assert (call.largest_size[0].exact, call.largest_size[1].symbol) == (4, "V/s")
+
+
+def test_several_inputs_are_scaled_together(assumed: Assumed) -> None:
+    drive = "inputs: [{from: call, input: pulse, size: 0.1 V, duration: 2 s}, {from: push, input: step, size: 9 m/s}]"
+    speed = by_range(assumed(RATES.format(drive=drive), "table", "move"))["the output of stage", "linear_range"]
+    assert speed.largest_size is None
+    assert speed.factor is not None
+    # 1.2 mm/s is all but reached when the pulse ends: 3 mm/s is 2.5 times as much, and some
+    assert float(speed.factor.answer.enclose(64)) == pytest.approx(2.5, rel=2e-3)
+    assert float(speed.factor.answer.enclose(64)) > 2.5
+
+
+def test_a_sine_is_taken_at_its_greatest(assumed: Assumed) -> None:
+    drive = "from: call, input: sine, amplitude: 0.1 V, frequency: 2 rad/s"
+    speed = by_range(assumed(RATES.format(drive=drive), "table", "move"))["the output of stage", "linear_range"]
+    gain = abs(12e-3 / ((1 + 0.6j) * (1 + 0.1j)))
+    assert reached(speed) >= 0.1 * gain
+    assert reached(speed) == pytest.approx(0.1 * gain, rel=0.1)
+
+
+def test_white_noise_has_no_greatest_value(assumed: Assumed) -> None:
+    drive = "from: push, input: white_noise, density: 1 mm^2/s^2/Hz"
+    found = assumed(RATES.format(drive=drive), "table", "move")
+    assert [one.decision.holds for one in found] == [Trilean.UNKNOWN]
+    assert found[0].standing is Standing.INCONCLUSIVE
