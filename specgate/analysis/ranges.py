@@ -24,7 +24,8 @@ from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, evaluate
 from specgate.project.temperatures import absolute
 from specgate.project.types import Call, Loop, Port, Project, Response, Signal, SignalExpression, Value
-from specgate.systems.solution import LoopSolution, solve
+from specgate.systems.delayed import DelayedSolution, solved
+from specgate.systems.solution import LoopSolution
 from specgate.terms.dimensions import TIME
 from specgate.terms.records import record
 from specgate.terms.unit import Unit
@@ -120,8 +121,8 @@ class Ranges:
         return instantiate(replace(project, loops={loop.name: wired}, subsystems=used), self._known)[loop.name]
 
     @cached_property
-    def _solution(self) -> LoopSolution:
-        return solve(self._built.wiring)
+    def _solution(self) -> LoopSolution | DelayedSolution:
+        return solved(self._built.wiring)
 
     @cached_property
     def _rest(self) -> Rest:

@@ -30,3 +30,8 @@ def sheet(loop: str) -> str:
 def plot(loop: str, response: str) -> str:
     """Return the place of a response on the sheet of its loop."""
     return anchor("response", f"{loop}.{response}")
+
+
+def opened(loop: str, name: str) -> str:
+    """Return the place of a break on the sheet of its loop."""
+    return anchor("break", f"{loop}.{name}")

@@ -6,6 +6,7 @@ import base64
 import hashlib
 import json
 import re
+from collections.abc import Sequence
 from functools import cache
 from importlib.resources import files
 from typing import Any
@@ -14,7 +15,8 @@ from jinja2 import Environment, FunctionLoader, StrictUndefined, pass_context
 from jinja2.runtime import Context
 from markupsafe import Markup, escape
 
-from specgate.report.figures import poles, reserve, step, wiring
+from specgate.report.figures import frequency, poles, reserve, step, wiring
+from specgate.report.figures.scales import LogScale, Scale
 from specgate.report.parts import matrix, ranges
 from specgate.report.view import View
 
@@ -47,7 +49,7 @@ def _text(name: str) -> str:
     return resource(name).decode()
 
 
-Figure = step.StepFigure | poles.PoleFigure | reserve.ReserveBar | wiring.WiringFigure
+Figure = step.StepFigure | frequency.FrequencyFigure | poles.PoleFigure | reserve.ReserveBar | wiring.WiringFigure
 
 
 def draw(figure: Figure) -> Markup:
@@ -55,6 +57,8 @@ def draw(figure: Figure) -> Markup:
     match figure:
         case step.StepFigure():
             return Markup(step.draw(figure))
+        case frequency.FrequencyFigure():
+            return Markup(frequency.draw(figure))
         case poles.PoleFigure():
             return Markup(poles.draw(figure))
         case reserve.ReserveBar():
@@ -63,24 +67,34 @@ def draw(figure: Figure) -> Markup:
             return Markup(wiring.draw(figure))
 
 
-def readings(figure: step.StepFigure) -> str:
-    """Return what a plot answers to the pointer with, as JSON."""
+def readings(figure: step.StepFigure | frequency.FrequencyFigure) -> str:
+    """Return what a plot answers to the pointer with, as JSON: what is read across, and each curve with its panel."""
+    found = _over_time(figure) if isinstance(figure, step.StepFigure) else _over_frequency(figure)
+    return json.dumps(found, separators=(",", ":"))
+
+
+def _over_time(figure: step.StepFigure) -> dict[str, Any]:
     x, y = step.axes(figure)
-    return json.dumps(
-        {
-            "signal": figure.signal,
-            "unit": "" if figure.unit == "1" else figure.unit,
-            "time": figure.time,
-            "value": figure.value,
-            "low": [x.low, y.low],
-            "high": [x.high, y.high],
-            "left": x.start,
-            "right": x.end,
-            "top": y.end,
-            "bottom": y.start,
-        },
-        separators=(",", ":"),
-    )
+    unit = "" if figure.unit == "1" else figure.unit
+    return {
+        "across": _axis("t", "s", figure.time, x),
+        "curves": [_axis(figure.signal, unit, figure.value, y)],
+        "what": f"{figure.signal} along the time",
+    }
+
+
+def _over_frequency(figure: frequency.FrequencyFigure) -> dict[str, Any]:
+    x, gain, phase = frequency.axes(figure)
+    return {
+        "across": {**_axis("ω", "rad/s", figure.frequency, x), "log": True},
+        "curves": [_axis("gain", "dB", figure.gain, gain), _axis("phase", "deg", figure.phase, phase)],
+        "what": "gain and phase along the frequency",
+    }
+
+
+def _axis(name: str, unit: str, values: Sequence[float], scale: Scale | LogScale) -> dict[str, Any]:
+    ends = {"low": scale.low, "high": scale.high, "start": scale.start, "end": scale.end}
+    return {"name": name, "unit": unit, "values": values, **ends}
 
 
 def short(text: str, length: int) -> str:

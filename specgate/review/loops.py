@@ -19,6 +19,7 @@ from specgate.measures.subjects import ResponseSubject, Subject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Response
 from specgate.response.answers import Absent
+from specgate.review.frequency_curve import frequency_curve
 from specgate.review.printing import RADIAN_PER_SECOND, coefficients, place_of, poles, result, terms
 from specgate.review.types import (
     BreakReview,
@@ -71,13 +72,13 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
         hidden_modes=tuple(_hidden(found)),
         measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
         responses={key: _response(one, again.responses[key], curve=curves) for key, one in found.responses.items()},
-        breaks={key: _break(one, again.breaks[key]) for key, one in found.breaks.items()},
+        breaks={key: _break(one, again.breaks[key], curve=curves) for key, one in found.breaks.items()},
         characteristic_terms=terms(modes) if isinstance(modes, Quasi) else None,
         reason=reason,
     )
 
 
-def _break(found: BreakAnalysis, again: BreakAnalysis) -> BreakReview:
+def _break(found: BreakAnalysis, again: BreakAnalysis, *, curve: bool) -> BreakReview:
     if isinstance(found.subject, Missing):
         return BreakReview(found.declared.at, (), reason=found.subject.reason)
     loop = found.subject.loop
@@ -91,6 +92,7 @@ def _break(found: BreakAnalysis, again: BreakAnalysis) -> BreakReview:
         crossings=() if loop is None or others is None else tuple(_crossings(loop, others)),
         numerator_terms=above[1],
         denominator_terms=below[1],
+        frequency_response=frequency_curve(found.subject) if curve else None,
     )
 
 

@@ -142,6 +142,15 @@ class CrossingReview:
 
 
 @record
+class FrequencyCurve:
+    """Points of an opened loop for drawing: rad/s, dB, and deg followed from zero frequency; 6 digits."""
+
+    frequency: tuple[float, ...]
+    gain_db: tuple[float, ...]
+    phase_deg: tuple[float, ...]
+
+
+@record
 class BreakReview:
     """A loop opened at a break."""
 
@@ -152,6 +161,7 @@ class BreakReview:
     crossings: tuple[CrossingReview, ...] = ()
     numerator_terms: tuple[DelayedTerm, ...] | None = _omitted()
     denominator_terms: tuple[DelayedTerm, ...] | None = _omitted()
+    frequency_response: FrequencyCurve | None = None
     reason: str | None = _omitted()
 
 

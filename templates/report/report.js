@@ -38,45 +38,55 @@
     for (const [key, value] of Object.entries(attributes)) element.setAttribute(key, value);
     return element;
   };
+  const placed = (axis, value) => {
+    const scale = axis.log ? Math.log : (number) => number;
+    const share = (scale(value) - scale(axis.low)) / (scale(axis.high) - scale(axis.low));
+    return axis.start + share * (axis.end - axis.start);
+  };
   for (const box of document.querySelectorAll("[data-plot]")) {
     const plot = JSON.parse(box.dataset.plot);
+    const { across, curves } = plot;
     const svg = box.querySelector("svg");
     const mark = made("g", { visibility: "hidden" });
-    const upright = made("line", { y1: plot.top, y2: plot.bottom, class: "s-quiet", stroke: "#59616c", "stroke-width": 0.8 });
-    const dot = made("circle", { r: 3.5, class: "f-curve", fill: "#23457a" });
-    mark.append(upright, dot);
+    const ends = curves.flatMap((curve) => [curve.start, curve.end]);
+    const upright = made("line", {
+      y1: Math.min(...ends), y2: Math.max(...ends), class: "s-quiet", stroke: "#59616c", "stroke-width": 0.8,
+    });
+    const dots = curves.map(() => made("circle", { r: 3.5, class: "f-curve", fill: "#23457a" }));
+    mark.append(upright, ...dots);
     svg.append(mark);
     const slider = document.createElement("input");
     slider.type = "range";
     slider.min = 0;
-    slider.max = plot.time.length - 1;
+    slider.max = across.values.length - 1;
     slider.value = 0;
-    slider.setAttribute("aria-label", `Read ${plot.signal} along the time`);
+    slider.setAttribute("aria-label", `Read ${plot.what}`);
     const output = document.createElement("output");
     const reading = document.createElement("p");
     reading.className = "reading";
     reading.append(slider, output);
     box.after(reading);
-    const x = (t) => plot.left + (t - plot.low[0]) / (plot.high[0] - plot.low[0]) * (plot.right - plot.left);
-    const y = (v) => plot.bottom - (v - plot.low[1]) / (plot.high[1] - plot.low[1]) * (plot.bottom - plot.top);
+    const places = across.values.map((value) => placed(across, value));
     const show = (k) => {
-      const time = plot.time[k], value = plot.value[k];
-      upright.setAttribute("x1", x(time));
-      upright.setAttribute("x2", x(time));
-      dot.setAttribute("cx", x(time));
-      dot.setAttribute("cy", y(value));
+      upright.setAttribute("x1", places[k]);
+      upright.setAttribute("x2", places[k]);
+      curves.forEach((curve, number) => {
+        const inside = curve.values[k] >= curve.low && curve.values[k] <= curve.high;
+        dots[number].setAttribute("visibility", inside ? "inherit" : "hidden");
+        dots[number].setAttribute("cx", places[k]);
+        dots[number].setAttribute("cy", placed(curve, curve.values[k]));
+      });
       mark.setAttribute("visibility", "visible");
-      const text = `t = ${time} s, ${plot.signal} = ${value} ${plot.unit}`;
+      const text = [across, ...curves].map((axis) => `${axis.name} = ${axis.values[k]} ${axis.unit}`.trim()).join(", ");
       output.textContent = text;
       slider.setAttribute("aria-valuetext", text);
     };
     slider.addEventListener("input", () => show(+slider.value));
     svg.addEventListener("pointermove", (event) => {
       const here = svg.getBoundingClientRect();
-      const across = (event.clientX - here.left) / here.width * svg.viewBox.baseVal.width;
-      const time = plot.low[0] + (across - plot.left) / (plot.right - plot.left) * (plot.high[0] - plot.low[0]);
+      const at = (event.clientX - here.left) / here.width * svg.viewBox.baseVal.width;
       let nearest = 0;
-      plot.time.forEach((t, k) => { if (Math.abs(t - time) < Math.abs(plot.time[nearest] - time)) nearest = k; });
+      places.forEach((place, k) => { if (Math.abs(place - at) < Math.abs(places[nearest] - at)) nearest = k; });
       slider.value = nearest;
       show(nearest);
     });

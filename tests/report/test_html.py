@@ -98,8 +98,11 @@ def test_plots_carry_what_the_pointer_reads(outline: Outline) -> None:
 
     plots = [json.loads(a["data-plot"]) for _, a in outline.elements if "data-plot" in a]
     assert len(plots) >= 5
-    assert all(len(plot["time"]) == len(plot["value"]) > 100 for plot in plots)
-    assert plots[0]["unit"] == "Pa"
+    for plot in plots:
+        points = len(plot["across"]["values"])
+        assert points > 100
+        assert all(len(curve["values"]) == points for curve in plot["curves"])
+    assert plots[0]["curves"][0]["unit"] == "Pa"
 
 
 def test_texts_stay_texts(sample: ModuleType) -> None:

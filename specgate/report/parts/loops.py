@@ -9,11 +9,11 @@ from specgate.report import anchors, digits
 from specgate.report.figures.poles import Point, PoleFigure
 from specgate.report.figures.step import StepFigure
 from specgate.report.figures.wiring import WiringFigure
-from specgate.report.parts import plots, shown
+from specgate.report.parts import breaks, plots, shown
+from specgate.report.parts.breaks import BreakSheet
 from specgate.report.parts.measures import Comparison, MeasureTable, comparisons, table
 from specgate.report.words import VERDICTS, Status, counted, limit, titled
 from specgate.review.types import (
-    BreakReview,
     CriterionReview,
     DefinitionReview,
     HiddenMode,
@@ -80,18 +80,6 @@ class ResponseSheet:
     reason: str
     figure: StepFigure | None
     criteria: tuple[CriterionRow, ...]
-    measures: MeasureTable
-
-
-@record
-class BreakSheet:
-    """A loop opened at a break."""
-
-    name: str
-    at: str
-    numerator: str
-    denominator: str
-    reason: str
     measures: MeasureTable
 
 
@@ -180,7 +168,10 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
             for key, response in loop.responses.items()
         ),
         comparisons=comparisons(loop.responses, review.definitions),
-        breaks=tuple(_break(key, opened, review.definitions) for key, opened in loop.breaks.items()),
+        breaks=tuple(
+            breaks.sheet(name, key, opened, subjects.get(f"{name}.{key}", []), review.definitions)
+            for key, opened in loop.breaks.items()
+        ),
     )
 
 
@@ -226,17 +217,6 @@ def _criterion(requirement: str, c: CriterionReview, definitions: Mapping[str, D
         drawn=plots.drawn(c),
         claimed="" if claimed is None or claimed.value is None else f"{digits.number(claimed.value)} {claimed.unit}",
         verdict=VERDICTS[c.verdict],
-    )
-
-
-def _break(name: str, opened: BreakReview, definitions: Mapping[str, DefinitionReview]) -> BreakSheet:
-    return BreakSheet(
-        name=name,
-        at=opened.at,
-        numerator=shown.polynomial(opened.numerator) if opened.numerator else "",
-        denominator=shown.polynomial(opened.denominator) if opened.denominator else "",
-        reason=opened.reason or "",
-        measures=table(opened.measures, definitions),
     )
 
 
