@@ -33,6 +33,8 @@ class UnitRule(Enum):
     YES_NO = "yes/no"
 
 
+_SIDED = (UnitRule.SIGNAL, UnitRule.RATIO, UnitRule.PER_SECOND, UnitRule.PER_SECOND_SQUARED)
+
 SubjectKind = Literal["response", "break", "loop"]
 ArgumentKind = Literal["band", "fraction", "time", "frequency", "mask", "range"]
 
@@ -116,3 +118,8 @@ class Measure:
     always: bool = False
     of_error: bool = False
     inputs: tuple[str, ...] = INPUTS
+
+    @property
+    def sided(self) -> bool:
+        """Whether a one-sided limit has a right and a wrong sign; decibels and phases have none."""
+        return self.signed and self.unit in _SIDED

@@ -50,9 +50,6 @@ _OF_SIGNAL = frozenset(
 )
 _RATIOS = frozenset({UnitRule.RATIO, UnitRule.DECIBEL})
 
-_SIGNED = frozenset({UnitRule.SIGNAL, UnitRule.RATIO, UnitRule.PER_SECOND, UnitRule.PER_SECOND_SQUARED})
-"""Rules under which a limit has a right and a wrong sign; decibels and phases have none."""
-
 _SECOND = Unit("s", fmpq(1), 0, TIME)
 _FREQUENCY = Unit("rad/s", fmpq(1), 0, RATE)
 
@@ -203,7 +200,7 @@ class CriterionCheck:
     def _sign(self, limit: Limit) -> None:
         """Refuse a limit that a value of the wrong sign would meet. Raises Fault."""
         kind = limit.kind
-        if not self.measure.signed or self.measure.unit not in _SIGNED or kind not in ("at_most", "at_least"):
+        if not self.measure.sided or kind not in ("at_most", "at_least"):
             return
         number, written = self._number(limit.values[0]), limit.values[0].as_written
         wrong = number > 0 if kind == "at_most" else number < 0

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import pytest
+
 from specgate.measures.table import MEASURES
 from specgate.measures.text import describe
 
@@ -71,3 +73,16 @@ def test_terms_of_the_standard_are_named() -> None:
     numbers = {"settling_time": "351-45-37", "overshoot": "351-45-38", "damping_ratio": "351-45-19"}
     for name, number in {**numbers, "phase_margin": "351-46-05", "gain_margin": "351-46-07"}.items():
         assert number in describe(name).source
+
+
+@pytest.mark.parametrize("name", list(MEASURES))
+def test_every_text_says_what_may_limit_it_and_what_happens_at_the_limit(name: str) -> None:
+    row, said = MEASURES[name], describe(name).text
+    assert said.count("\n\nLimits: ") == 1
+    assert ("equals" in said.partition("Limits: ")[2].partition(".")[0]) is (
+        row.unit.value in ("whole number", "yes/no")
+    )
+    assert ("At its limit: " in said) is (row.unit.value not in ("whole number", "yes/no"))
+    assert ("exact predicate" in said) is (row.at_limit is not None)
+    assert ("wrong sign" in said) is row.sided
+    assert ("asked for or not" in said) is row.always
