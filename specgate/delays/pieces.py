@@ -77,7 +77,7 @@ class DelayedPieces(Pieces):
         rest = self._modal.rest
         with working_precision(64):
             wanted = ((rest.sizes[0] / self._scale).log() + bits * arb(2).log()) / rest.rate
-            count = (wanted.upper() * 4 / self._longest).fmpq().ceil()
+            count = (wanted * 4 / self._longest).upper().fmpq().ceil()
         return max(rest.since, self._longest * fmpq(int(count)) / 4)
 
     @cached_property

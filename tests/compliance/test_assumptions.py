@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from collections.abc import Callable, Sequence
 from pathlib import Path
 from textwrap import dedent
@@ -273,3 +274,41 @@ def test_white_noise_has_no_greatest_value(assumed: Assumed) -> None:
     found = assumed(RATES.format(drive=drive), "table", "move")
     assert [one.decision.holds for one in found] == [Trilean.UNKNOWN]
     assert found[0].standing is Standing.INCONCLUSIVE
+
+
+BELT = """
+    specgate: 1
+    project: {id: T-4, title: Test, revision: A}
+    subsystems:
+      belt:
+        input: {unit: V, linear_range: [-5 V, 5 V]}
+        output: {unit: kg/s, linear_range: [-3 kg/s, 3 kg/s], rate_range: [-1 kg/s/s, 1 kg/s/s]}
+        model: {gain: 1 kg/s/V, lags: [2 s], dead_time: 1.5 s}
+      trim:
+        input: {unit: kg/s}
+        output: {unit: V}
+        model: {pid: {form: parallel, proportional: 0.4 V*s/kg, integral: 0.3 V/kg}}
+    loops:
+      feed:
+        inputs: {order: {unit: kg/s}}
+        signals: {call: trim(order - flow), flow: belt(call)}
+        responses: {follow: {from: order, to: flow, input: step, size: 2 kg/s}}
+"""
+
+
+def test_signals_of_a_loop_with_dead_time_against_a_simulation(assumed: Assumed) -> None:
+    found = by_range(assumed(BELT, "feed", "follow"))
+    step, late = 0.002, 750
+    flow, held, calls, flows = 0.0, 0.0, [], [0.0]
+    for k in range(20000):  # trapezoidal rule on both states, the dead time a whole number of steps
+        calls.append(0.4 * (2 - flow) + 0.3 * held)
+        before, after = (calls[j] if j >= 0 else 0.0 for j in (k - late, k + 1 - late))
+        following = (flow * (1 - step / 4) + step / 4 * (before + after)) / (1 + step / 4)
+        held += step * (2 - (flow + following) / 2)
+        flow = following
+        flows.append(flow)
+    rates = [abs(b - a) / step for a, b in itertools.pairwise(flows)]
+    assert reached(found["the input of belt", "linear_range"]) == pytest.approx(max(calls), rel=1e-5)
+    assert reached(found["the output of belt", "linear_range"]) == pytest.approx(max(flows), rel=1e-5)
+    assert reached(found["the output of belt", "rate_range"]) == pytest.approx(max(rates), rel=1e-3)
+    assert all(one.decision.holds is Trilean.YES for one in found.values())
