@@ -302,7 +302,8 @@ def test_signals_of_a_loop_with_dead_time_against_a_simulation(assumed: Assumed)
     flow, held, calls, flows = 0.0, 0.0, [], [0.0]
     for k in range(20000):  # trapezoidal rule on both states, the dead time a whole number of steps
         calls.append(0.4 * (2 - flow) + 0.3 * held)
-        before, after = (calls[j] if j >= 0 else 0.0 for j in (k - late, k + 1 - late))
+        before = calls[k - late] if k >= late else 0.0
+        after = calls[k + 1 - late] if k >= late else 0.0  # just before the jump it is still zero
         following = (flow * (1 - step / 4) + step / 4 * (before + after)) / (1 + step / 4)
         held += step * (2 - (flow + following) / 2)
         flow = following
