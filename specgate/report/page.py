@@ -15,7 +15,7 @@ from jinja2 import Environment, FunctionLoader, StrictUndefined, pass_context
 from jinja2.runtime import Context
 from markupsafe import Markup, escape
 
-from specgate.report.figures import frequency, poles, reserve, step, wiring
+from specgate.report.figures import error, frequency, poles, reserve, step, wiring
 from specgate.report.figures.scales import LogScale, Scale
 from specgate.report.parts import matrix, ranges
 from specgate.report.view import View
@@ -49,7 +49,14 @@ def _text(name: str) -> str:
     return resource(name).decode()
 
 
-Figure = step.StepFigure | frequency.FrequencyFigure | poles.PoleFigure | reserve.ReserveBar | wiring.WiringFigure
+Figure = (
+    step.StepFigure
+    | error.ErrorFigure
+    | frequency.FrequencyFigure
+    | poles.PoleFigure
+    | reserve.ReserveBar
+    | wiring.WiringFigure
+)
 
 
 def draw(figure: Figure) -> Markup:
@@ -57,6 +64,8 @@ def draw(figure: Figure) -> Markup:
     match figure:
         case step.StepFigure():
             return Markup(step.draw(figure))
+        case error.ErrorFigure():
+            return Markup(error.draw(figure))
         case frequency.FrequencyFigure():
             return Markup(frequency.draw(figure))
         case poles.PoleFigure():

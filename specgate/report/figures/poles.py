@@ -28,28 +28,53 @@ class Point:
 
 
 @record
+class Separation:
+    """How far from a dominant pair everything else has to be, 1/s.
+
+    real_part: poles have to lie left of it. distance: what has to lie outside of the circle about the origin is said
+    by `outside` (nothing: there is nothing to ask it of). real, imaginary: the upper pole of the pair.
+    """
+
+    real_part: float | None
+    distance: float | None
+    outside: str
+    real: float
+    imaginary: float
+
+    @property
+    def reach(self) -> float:
+        """The distance from the origin that has to be seen."""
+        return max(-(self.real_part or 0.0), self.distance or 0.0)
+
+
+@record
 class PoleFigure:
-    """What is drawn in the s plane."""
+    """What is drawn in the s plane; with `separation`, how far poles and zeros have to be from the dominant pair."""
 
     name: str
     title: str
     points: tuple[Point, ...]
+    separation: Separation | None = None
 
 
-def _near(points: tuple[Point, ...]) -> tuple[tuple[Point, ...], tuple[Point, ...]]:
+def _near(figure: PoleFigure) -> tuple[tuple[Point, ...], tuple[Point, ...]]:
+    points = figure.points
     sizes = sorted(abs(complex(p.real, p.imaginary)) for p in points)
     within = CROWD * max(sizes[len(sizes) // 2], 1e-9)
+    if figure.separation is not None:
+        within = 2 * max(figure.separation.reach, sizes[0])
     near = tuple(p for p in points if abs(complex(p.real, p.imaginary)) <= within)
     return near, tuple(p for p in points if p not in near)
 
 
 def draw(figure: PoleFigure) -> str:
     """Return the figure as SVG; both axes have one scale where that leaves both legible."""
-    near, far = _near(figure.points)
-    wide = max(max((abs(p.real) for p in near), default=0.0), 1e-9)
+    near, far = _near(figure)
+    reach = 0.0 if figure.separation is None else figure.separation.reach
+    wide = max(max((abs(p.real) for p in near), default=0.0), reach, 1e-9)
     tall = max(max((abs(p.imaginary) for p in near), default=0.0), 0.35 * wide)
     wide = max(wide, 0.35 * tall)
-    right = max(0.22 * wide, 1.25 * max(p.real for p in near))
+    right = max(0.22 * wide, 1.25 * max((p.real for p in near), default=0.0))
     x = Scale(-1.15 * wide, right, LEFT, WIDTH - RIGHT)
     y = Scale(-1.25 * tall, 1.25 * tall, HEIGHT - BOTTOM, TOP)
     hatch = f"hatch-{figure.name}"
@@ -61,6 +86,7 @@ def draw(figure: PoleFigure) -> str:
         svg.rectangle(x(0), TOP, WIDTH - RIGHT - x(0), HEIGHT - BOTTOM - TOP, f"url(#{hatch})", fill_opacity=0.45),
         *_rays(x, y),
         *_frame(x, y),
+        *(_asked(figure.separation, x, y) if figure.separation is not None else []),
         *(_mark(point, x, y) for point in near),
         *_outside(far),
         class_="plot",
@@ -91,6 +117,25 @@ def _rays(x: Scale, y: Scale) -> list[str]:
         rays += [(x(0), y(0), x(-real), y(side * real * slope)) for side in (1, -1)]
         labels.append(svg.text(x(-real) + 3, y(real * slope) + 9, f"{damping}", 7, fill=svg.QUIET))
     return [svg.strokes(rays, svg.HAIR, 0.6), *labels]
+
+
+def _asked(separation: Separation, x: Scale, y: Scale) -> list[str]:
+    """Draw the line left of which other poles have to lie, and the circle outside of which."""
+    parts = [svg.text(x(separation.real) + 7, y(separation.imaginary) + 3, "pair", 7, fill=svg.QUIET)]
+    if separation.real_part is not None and x.holds(separation.real_part):
+        at = x(separation.real_part)
+        parts.append(svg.line(at, TOP, at, HEIGHT - BOTTOM, svg.FORBIDDEN, 1.0, stroke_dasharray="5 3"))
+        parts.append(svg.text(at + 3, TOP + 8, "◁ other poles", 7, fill=svg.FORBIDDEN))
+    if separation.distance is not None and separation.outside:
+        radius = separation.distance
+        around = [math.pi / 2 + math.pi * k / 60 for k in range(61)]
+        arc = [(radius * math.cos(a), radius * math.sin(a)) for a in around]
+        inside = [(x(real), y(imaginary)) for real, imaginary in arc if x.holds(real) and y.holds(imaginary)]
+        if len(inside) > 1:
+            parts.append(svg.path(inside, svg.FORBIDDEN, 1.0, stroke_dasharray="2 3"))
+            label = y(0) - 4
+            parts.append(svg.text(x(-radius) + 3, label, f"outside: {separation.outside}", 7, fill=svg.FORBIDDEN))
+    return parts
 
 
 def _mark(point: Point, x: Scale, y: Scale) -> str:

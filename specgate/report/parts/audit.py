@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 from specgate.report import anchors, digits
+from specgate.report.figures.error import ErrorFigure
+from specgate.report.figures.poles import PoleFigure
 from specgate.report.figures.step import StepFigure
-from specgate.report.parts import plots, shown
+from specgate.report.parts import plots, shown, validity
 from specgate.report.words import (
     CONDITIONS,
     SIDES,
@@ -61,6 +63,8 @@ class Audit:
     instead: str
     reason: str
     picture: StepFigure | None
+    error_over_damping: ErrorFigure | None
+    map: PoleFigure | None
 
 
 def audits(review: Review) -> tuple[Audit, ...]:
@@ -75,10 +79,10 @@ def audits(review: Review) -> tuple[Audit, ...]:
 
 
 def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -> Audit:
-    basis = criterion.basis
+    basis, anchor = criterion.basis, anchors.audit(name, number)
     return Audit(
         brief=basis.standing == "sound" and basis.claim_agrees is not False,
-        anchor=anchors.audit(name, number),
+        anchor=anchor,
         requirement=name,
         requirement_anchor=anchors.row(name),
         text=review.requirements[name].text,
@@ -88,7 +92,7 @@ def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -
         limit=limit_in_words(criterion.limit),
         standing=STANDINGS[basis.standing],
         verdict=VERDICTS[criterion.verdict],
-        approximation=" and ".join(spaced(item) for item in basis.chain),
+        approximation=_with_variant(" and ".join(spaced(item) for item in basis.chain), basis.variant),
         claimed=amount(basis.claimed) if basis.claimed else "no value claimed",
         formula=_formula(basis),
         proved=shown.result(criterion.result, criterion.limit),
@@ -100,7 +104,13 @@ def _audit(review: Review, name: str, number: int, criterion: CriterionReview) -
         instead=_instead(review, basis),
         reason="" if any(item.holds is False for item in basis.conditions) else basis.reason or "",
         picture=_picture(review, name, number, criterion),
+        error_over_damping=validity.error_figure(basis, anchor),
+        map=validity.map_figure(basis, anchor),
     )
+
+
+def _with_variant(name: str, variant: str | None) -> str:
+    return name if variant is None else f"{name} ({spaced(variant)})"
 
 
 def _formula(basis: BasisReview) -> str:
@@ -165,7 +175,8 @@ def _instead(review: Review, basis: BasisReview) -> str:
     if basis.instead is None:
         return ""
     computed = basis.instead.name == "computed"
-    name = "the computed value" if computed else titled(basis.instead.name, review.definitions)
+    title = "the computed value" if computed else titled(basis.instead.name, review.definitions)
+    name = _with_variant(title, basis.instead.variant)
     if basis.instead.value is None:
         return f"{name}, of which there is none here" if computed else name
     return f"{name}: {with_unit(digits.number(basis.instead.value), basis.instead.unit)}"
