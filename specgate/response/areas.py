@@ -16,6 +16,7 @@ from specgate.response.budget import OutOfWork
 from specgate.response.modes import GUARD, dyadic
 from specgate.response.passing import Work
 from specgate.response.patches import LEVEL, LOOK, Ground, Patch
+from specgate.response.segments import exact
 from specgate.response.turning import Zero, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
 
@@ -51,7 +52,6 @@ class Areas:
         self._size = size
         self._known: dict[Patch, tuple[int, Zero | None] | None] = {}
         self._runs: dict[fmpq, list[Run]] = {}
-        self._ends: dict[fmpq, fmpq] = {}
         self._sizes: dict[int, fmpq] = {}
         self._work = Work()
 
@@ -81,15 +81,23 @@ class Areas:
         return Answer.of_ball(refine)
 
     def _total(self, power: int, bits: int) -> arb:
-        until = self._horizon(power, bits)
-        parts = list(self._squares(until, bits) if power else self._magnitudes(until, bits))
-        rest = self._pieces.rest(until if power else self._end_of_runs(until))
-        assert rest is not None
+        until, total = self._remainder(power, bits)
         with working_precision(bits + GUARD):
-            total = arb(rest[power] / 2, arb(rest[power] / 2).upper())
-            for part in parts:
+            for part in self._squares(until, bits) if power else self._magnitudes(until, bits):
                 total += part
         return total
+
+    def _remainder(self, power: int, bits: int) -> tuple[fmpq, arb]:
+        """Return a time and a ball of the integral from there on."""
+        closed = self._pieces.closing(bits) if power == 0 else None
+        if closed is not None:
+            return closed
+        until = self._horizon(power, bits)
+        rest = self._pieces.rest(until)
+        assert rest is not None
+        with working_precision(bits + GUARD):
+            half = arb(rest[power] / 2)
+            return until, arb(half.mid(), half.upper())
 
     def _horizon(self, power: int, bits: int) -> fmpq:
         """Return a time after which what is left is at most 2^-bits of what there is."""
@@ -148,13 +156,9 @@ class Areas:
         with working_precision(LOOK):
             return (end.left + end.right) / 2, height.abs_upper() * (end.right - end.left)
 
-    def _end_of_runs(self, until: fmpq) -> fmpq:
-        """Return the end of the last patch that begins before `until`: runs are made of whole patches."""
-        self._found(until)
-        return max(self._ends[until], until)
-
     def _found(self, until: fmpq) -> list[Run]:
         if until not in self._runs:
+            self._work = Work()
             self._runs[until] = list(self._all(until))
         return self._runs[until]
 
@@ -167,7 +171,7 @@ class Areas:
         sign, last = 0, begin
         for patch, found, zero in self._judged(index, begin, end, until):
             if found == 0 and zero is None:
-                if last > (since if isinstance(since, fmpq) else since.right):
+                if sign != 0:
                     yield Run(index, sign, since, last, arb(0))
                 low, high = patch.hull(0)
                 yield Run(index, 0, patch.left, patch.right, abs(low).max(abs(high)))
@@ -182,7 +186,6 @@ class Areas:
             sign, last = found, patch.right
         if sign != 0:
             yield Run(index, sign, since, last, arb(0))
-        self._ends[until] = last
 
     def _judged(self, index: int, begin: fmpq, end: fmpq | None, until: fmpq) -> Iterator[Judged]:
         """Yield patches with the sign of y on them, or at their right end where y has a zero on them (0: not told)."""
@@ -196,10 +199,19 @@ class Areas:
                     self._work.spend()
                     self._known[patch] = self._judge(patch)
                 found = self._known[patch]
-                if found is None:
+                if found is None or (patch.right > until and found[1] is not None):
                     waiting += reversed(patch.parts)
+                elif patch.right > until:
+                    yield Patch(patch.pieces, index, patch.left, until), *found
                 else:
                     yield patch, *found
+
+    def _length(self, index: int) -> fmpq:
+        """Return a length of time that is typical of a piece."""
+        begin, end, speed = self._pieces.kink(index), self._pieces.kink(index + 1), self._pieces.speed(index)
+        times = [] if begin is None or end is None else [end - begin]
+        times += [exact(1.0 / speed)] if speed > 0.0 else []
+        return min(times, default=fmpq(1))
 
     def _judge(self, patch: Patch) -> tuple[int, Zero | None] | None:
         """Return the sign of y on a patch, or at its right end and its zero; None where it has to be cut."""
@@ -217,8 +229,8 @@ class Areas:
             if before is not None and after is not None:
                 return _monotone(patch, before, after)
         with working_precision(LOOK):
-            width = arb(patch.right - patch.left) * self._pieces.speed(patch.index)
-            flat = bool((high - low) * width < self._size * dyadic(-_FLAT))
+            share = arb(patch.right - patch.left) / self._length(patch.index)
+            flat = bool((high - low) * share < self._size * dyadic(-_FLAT))
         return (0, None) if flat or patch.depth > _DEEPEST else None
 
 

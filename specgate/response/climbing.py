@@ -18,7 +18,7 @@ from flint import arb, fmpq
 from specgate.response.passing import Instant, Where, Work
 from specgate.response.patches import LEVEL, LOOK, Ground, Patch
 from specgate.response.pieces import Pieces
-from specgate.response.turning import Zero, sign_at
+from specgate.response.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import working_precision
 
 _CLOSE = 512
@@ -55,22 +55,20 @@ class Ceiling:
             left, right = max(begin, since), until if end is None else min(end, until)
             if begin < since or self._order > 0 or self._ground.pieces.jump(index) != 0:
                 self._candidate(index, left)
-            if not self._rests(index, begin, end):
+            degree = self._degree(index)
+            if degree > 0:
                 self._candidate(index, right)
             for root in self._ground.roots(index, begin, end, until):
                 near, far = max(root.left, since), min(root.right, until)
-                if near < far and not self._starts_one_way(root):
+                if degree > 1 and near < far and not self._starts_one_way(root):
                     whole = near == root.left and far == root.right
                     self._push(root if whole else Patch(root.pieces, index, near, far))
         self._search()
 
-    def _rests(self, index: int, begin: fmpq, end: fmpq | None) -> bool:
-        """Whether y is seen to be constant on a finite piece."""
-        return end is not None and all(
-            bool(low.is_zero() and high.is_zero())
-            for root in self._ground.roots(index, begin, end, None)
-            for low, high in (root.rough(1),)
-        )
+    def _degree(self, index: int) -> int:
+        """Return the degree of the derivative that is searched on a piece, 2 for all but constant and straight ones."""
+        polynomial = self._ground.pieces.polynomial(index)
+        return 2 if polynomial is None else min(2, max(0, polynomial.degree() - self._order))
 
     def _starts_one_way(self, patch: Patch) -> bool:
         """Whether a patch lies in a proved monotone start of y: its greatest value is at an end then."""
@@ -151,6 +149,9 @@ class Ceiling:
         )
         if before is None or after is None:
             return False
+        for told, time in ((before, patch.left), (after, patch.right)):
+            if told == 0:
+                self._candidate(patch.index, time)
         before, after = self._sign * before, self._sign * after
         if before > 0 and after < 0:
             ends = (patch.left, patch.right)
@@ -170,6 +171,14 @@ class Peak:
     sign: int
     where: Where
 
+    @property
+    def exact(self) -> fmpq | None:
+        """The value, where it is known exactly."""
+        if isinstance(self.where, Zero):
+            return None
+        known = exact_at(self.pieces, self.where.index, self.order, self.where.time)
+        return self.pieces.jump(0) if known is None and self.where.time == 0 and self.order == 0 else known
+
     def height(self, bits: int) -> arb:
         """Return sign * y^(order) there."""
         return self.sign * self.value(bits)
@@ -178,15 +187,18 @@ class Peak:
         """Return y^(order) there."""
         if isinstance(self.where, Zero):
             return self.where.value(bits)
-        jump = self.pieces.jump(0) if self.where.time == 0 and self.order == 0 else None
-        if jump is not None:
+        known = self.exact
+        if known is not None:
             with working_precision(bits):
-                return arb(jump)
+                return arb(known)
         return value_at(self.pieces, self.where.index, self.order, self.where.time, bits)
 
 
 def value_at(pieces: Pieces, index: int, order: int, time: fmpq, bits: int, most: int = 4608) -> arb:
     """Return a derivative at an instant of a piece, of relative radius 2^-bits where `most` bits reach it."""
+    known = exact_at(pieces, index, order, time)
+    if known is not None:
+        return _ball(known, bits)
     precision = max(LOOK, bits + 32)
     while True:
         with working_precision(precision):
@@ -195,6 +207,11 @@ def value_at(pieces: Pieces, index: int, order: int, time: fmpq, bits: int, most
         if value.rel_accuracy_bits() >= bits or value.is_zero() or 2 * precision > most:
             return value
         precision *= 2
+
+
+def _ball(value: fmpq, bits: int) -> arb:
+    with working_precision(bits + 32):
+        return arb(value)
 
 
 def tallest(peaks: Iterable[Peak], floor: arb, reached: arb, most: int) -> list[Peak]:

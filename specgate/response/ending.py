@@ -7,7 +7,7 @@ from functools import cached_property
 
 from flint import arb, fmpq, fmpq_poly
 
-from specgate.response.asymptote import lasting_sign
+from specgate.response.asymptote import lasting_sign, leading_mode
 from specgate.response.deviation import LOWEST, Modal
 from specgate.response.modes import Expansion, Mode, dyadic
 from specgate.response.segments import exact, float_of
@@ -23,8 +23,8 @@ class Ending(Modal):
     """
 
     def __init__(self, since: fmpq, expand: Callable[[int], Expansion]) -> None:
-        self._since = since
-        self._expand = expand
+        self.since = since
+        self.expand = expand
         first = expand(LOWEST)
         speeds = [abs(mode.pole) for mode in first.modes]
         self._time = max((_exponent(speed) for speed in speeds), default=0)
@@ -45,7 +45,7 @@ class Ending(Modal):
     def at(self, bits: int) -> Expansion:
         """Return the modes in these units."""
         if bits not in self._kept:
-            self._kept[bits] = self._expand(bits).rescaled(self._time, self._value)
+            self._kept[bits] = self.expand(bits).rescaled(self._time, self._value)
         return self._kept[bits]
 
     @cached_property
@@ -56,20 +56,22 @@ class Ending(Modal):
     def below(self, level: fmpq) -> fmpq | None:
         """Return a time (s) from which on the sum is at most a level, not far from the least; None: none found."""
         if not self.at(LOWEST).modes:
-            return self._since
+            return self.since
         scaled = level * dyadic(-self._value)
         height = float_of(scaled) * (1.0 - 1e-15)
         found = tail(self, height, lambda bits: _ball(scaled, bits))
-        return None if found is None else self._since + found * dyadic(-self._time)
+        return None if found is None else self.since + found * dyadic(-self._time)
 
     def lasting(self, denominator: fmpq_poly) -> tuple[int, fmpq] | None:
         """Return the sign that the sum has for good and since when (s); None: it has none, or not told."""
         modes = self.at(LOWEST).modes
         if not modes:
-            return 0, self._since
+            return 0, self.since
+        if _doubled(self.at(LOWEST)):
+            return None
         stretched = fmpq_poly([c * dyadic(self._time * power) for power, c in enumerate(denominator.coeffs())])
         found = lasting_sign(self.at(LOWEST), stretched)
-        return None if found is None else (found.sign, self._since + exact(found.since) * dyadic(-self._time))
+        return None if found is None else (found.sign, self.since + exact(found.since) * dyadic(-self._time))
 
     def rest(self, time: fmpq) -> tuple[fmpq, fmpq]:
         """Return bounds of the integrals of the magnitude and of the square of the sum from a time (s) on.
@@ -77,15 +79,22 @@ class Ending(Modal):
         With T counted from `since`, the integral of t^j e^(-at) over [T, inf) is
         e^(-aT) sum_i j!/(j-i)! T^(j-i)/a^(i+1), and the sum is at most that of the suprema of |c| t^j e^(-at) there.
         """
-        expansion = self._expand(LOWEST)
+        expansion = self.expand(LOWEST)
         with working_precision(LOWEST):
-            local = arb(time - self._since)
+            local = arb(time - self.since)
             area, height = arb(0), arb(0)
             for mode in expansion.modes:
                 for power, c in enumerate(mode.coefficients):
                     area += abs(c) * _beyond(-mode.pole.real, power, local)
                     height += abs(c) * _greatest(-mode.pole.real, power, local)
             return area.upper().fmpq(), (area * height).upper().fmpq()
+
+
+def _doubled(expansion: Expansion) -> bool:
+    """Whether real modes as slow as the slowest may be one: those of different waves may share a pole."""
+    lead = leading_mode(expansion)
+    real = [mode for mode in expansion.modes if not mode.oscillates and mode.pole.real.overlaps(lead.pole.real)]
+    return len(real) > 1
 
 
 def derived(expansion: Expansion) -> Expansion:

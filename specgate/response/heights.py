@@ -85,8 +85,8 @@ class Heights:
         blurred = [patch for patch in ceiling.blurred if not _top(patch, 0, sign) < ceiling.best]
         candidates = [*_merged(peaks), *(self._blur(blurred, ceiling, sign, 0) if blurred else [])]
         above = [extreme for extreme in candidates if not _is_at(extreme, self._final)]
-        if above and ceiling.best > floor:
-            return joined(above)
+        if above and ceiling.best > floor and stays_below:
+            return first_of(above)
         if stays_below and len(above) == 0:
             return next(iter(candidates), Extreme(Answer.of_exact(self._final), Answer.nothing(APPROACHED)))
         return self._nearly(sign, slack)
@@ -106,7 +106,8 @@ class Heights:
                 return True
             self._up_to(ceiling, done, until)
             done = max(done, until or done)
-        return False
+        with working_precision(LOOK):
+            return bool(ceiling.best - sign * self._final > arb(slack))
 
     def _up_to(self, ceiling: Ceiling, done: fmpq, until: fmpq | None) -> None:
         if until is None:
@@ -140,36 +141,62 @@ class Heights:
 
     def rate(self) -> Extreme:
         """Return sup |y'| over t > 0, for a response that does not jump."""
-        size = self._largest(1)
-        slack = size * dyadic(SLACK)
-        rising = Ceiling(self._ground, 1, 1, arb(0), slack)
-        falling = Ceiling(self._ground, 1, -1, arb(0), slack)
-        done = fmpq(0)
+        slack = self._largest(1) * dyadic(SLACK)
+        rising, falling = Ceiling(self._ground, 1, 1, arb(0), slack), Ceiling(self._ground, 1, -1, arb(0), slack)
         try:
-            for stage in _STAGES:
-                best = rising.best.max(falling.best)
-                rising.best = falling.best = best
-                until = self._pieces.slow_by(best.fmpq() if best.fmpq() >= slack else size * dyadic(stage))
-                if until is None:
-                    return Extreme.undecided("from when on the response is slow is not told")
-                if until > done:
-                    rising.over(done, until)
-                    falling.best = falling.best.max(rising.best)
-                    falling.over(done, until)
-                    done = until
-                if best >= arb(slack):
-                    break
+            told = self._search_rates(rising, falling, slack)
         except OutOfWork as limit:
             return Extreme.undecided(limit.reason)
         best = rising.best.max(falling.best)
-        peaks = tallest([*rising.found, *falling.found], arb(0), best, EQUAL_BITS)
-        found = [replace(extreme, value=_magnitude(extreme.value)) for extreme in _merged(peaks)]
+        found = _merged(tallest([*rising.found, *falling.found], arb(0), best, EQUAL_BITS))
         for ceiling, sign in ((rising, 1), (falling, -1)):
             blurred = [patch for patch in ceiling.blurred if not _top(patch, 1, sign) < best]
-            if blurred:
-                ceiling.best = best
-                found += [replace(one, value=_magnitude(one.value)) for one in self._blur(blurred, ceiling, sign, 1)]
-        return joined(found) if found else Extreme(Answer.of_exact(0), Answer.of_exact(0))
+            ceiling.best = best
+            found += self._blur(blurred, ceiling, sign, 1) if blurred else []
+        if told and found:
+            return first_of([replace(extreme, value=_magnitude(extreme.value)) for extreme in found])
+        still = best.is_zero() and told
+        return Extreme(Answer.of_exact(0), Answer.of_exact(0)) if still else _below(2 * slack)
+
+    def _search_rates(self, rising: Ceiling, falling: Ceiling, slack: fmpq) -> bool:
+        """Search both directions as far as needed; return whether nothing beyond is steeper."""
+        done = fmpq(0)
+        for stage in (*_STAGES, None):
+            best = rising.best.max(falling.best).fmpq()
+            if best < slack and stage is None:
+                return False
+            level = best if best >= slack or stage is None else 2 * slack * dyadic(stage - SLACK)
+            until = self._pieces.slow_by(level)
+            if until is None:
+                raise OutOfWork("from when on the response is slow is not told")
+            if until > done:
+                rising.over(done, until)
+                falling.best = falling.best.max(rising.best)
+                falling.over(done, until)
+                rising.best = rising.best.max(falling.best)
+                done = until
+            if best >= slack:
+                return True
+        return False
+
+
+def _below(most: fmpq) -> Extreme:
+    """Return a magnitude that is at most `most`, whose place is not told."""
+
+    def value(bits: int) -> arb:
+        with working_precision(bits):
+            return arb(0).union(arb(most))
+
+    return Extreme(Answer.of_ball(value), Answer.undecided("where so small a value is taken is not told"))
+
+
+def first_of(extremes: Sequence[Extreme]) -> Extreme:
+    """Return one extreme for several that are not told apart: the first where they are known to be equal."""
+    values = {str(extreme.value.exact) for extreme in extremes}
+    known = [extreme for extreme in extremes if extreme.value.exact is not None and extreme.time.exact is not None]
+    if len(values) == 1 and len(known) == len(extremes):
+        return min(known, key=lambda extreme: extreme.time.exact or fmpq(0))
+    return joined(extremes)
 
 
 def _top(patch: Patch, order: int, sign: int) -> arb:
@@ -191,6 +218,8 @@ def _merged(peaks: Sequence[Peak]) -> list[Extreme]:
 
 
 def _both_sides(group: Sequence[Peak]) -> Extreme:
+    sides = {peak.where.index: peak for peak in group}
+    group = list(sides.values())
     first, last = group[0], group[-1]
     if first is not last and first.pieces.jump(last.where.index) != 0:
         extreme = joined([as_extreme(peak) for peak in group])
@@ -202,7 +231,7 @@ def as_extreme(peak: Peak) -> Extreme:
     """Return a peak as a value and the time at which it is taken."""
     where = peak.where
     if isinstance(where, Instant):
-        known = peak.pieces.jump(0) if where.time == 0 and peak.order == 0 else None
+        known = peak.exact
         value = Answer.of_ball(peak.value) if known is None else Answer.of_exact(known)
         return Extreme(value, Answer.of_exact(where.time))
     return Extreme(Answer.of_ball(peak.value), Answer.of_ball(where.enclose))

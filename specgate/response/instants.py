@@ -58,9 +58,11 @@ def first_arrival(ground: Ground, final: fmpq, level: fmpq, size: fmpq) -> Answe
 
     def search(factor: fmpq) -> Passage:
         height = level * factor
-        walk = Walk(ground, Line(height), side, backward=False)
+        walk = Walk(ground, Line(height), side, backward=False, closed=True)
         until, told = _last_chance(ground, final, height, side, size)
         found = walk.between(fmpq(0), until)
+        if found is None and until is not None and not walk.touching and _rests(ground, final, height):
+            found = Instant(ground.index(until), until)
         if found is None and not told:
             raise OutOfWork("whether the response reaches the level or only comes ever closer to it is not told")
         return found, walk.touching
@@ -72,6 +74,12 @@ def first_arrival(ground: Ground, final: fmpq, level: fmpq, size: fmpq) -> Answe
 
     never = Answer.nothing("the response never reaches the level")
     return _answered(search, away, never, backward=False, returns=(final - level) * side < 0)
+
+
+def _rests(ground: Ground, final: fmpq, level: fmpq) -> bool:
+    """Whether y is exactly at a level from its last chance to reach it on."""
+    lasting = ground.pieces.lasting()
+    return level == final and lasting is not None and lasting[0] == 0
 
 
 def _last_chance(ground: Ground, final: fmpq, level: fmpq, side: int, size: fmpq) -> tuple[fmpq | None, bool]:
@@ -100,9 +108,12 @@ def _answered(
 ) -> Answer:
     try:
         crossing, touching = search(fmpq(1))
-        fragile = None if touching else _fragility(search, away, crossing, backward, returns)
     except OutOfWork as limit:
         return Answer.undecided(limit.reason)
+    try:
+        fragile = None if touching else _fragility(search, away, crossing, backward, returns)
+    except OutOfWork:
+        fragile = None
     if touching and crossing is None and not backward:
         return Answer.undecided("whether the response reaches the level or stays just off it is not told")
     if touching:

@@ -1,10 +1,11 @@
 """The first instant, forward or backward in time, at which a piecewise response is beyond a line.
 
-Beyond means side * (y - line) > 0; touching is not beyond. A walk goes from patch to patch in one direction; where it
-enters a patch y is known not to be beyond. A patch is passed if its hull is not beyond, if y - line moves one way and
-its far end is not beyond (the near end is not), or if it bulges outward and its one summit is not beyond. Else it is
-cut, and at last it either shows a crossing, on a stretch where y - line moves one way, or touches the line so closely
-that the highest precision does not tell: such an instant is kept, and passed.
+Beyond means side * (y - line) > 0; touching is not beyond, except in a closed walk where it is known to be exact. A
+walk goes from patch to patch in one direction; where it enters a patch y is known not to be beyond. A patch is passed
+if its hull is not beyond, if y - line moves one way and its far end is not beyond (the near end is not), or if it
+bulges outward and its one summit is not beyond. Else it is cut, and at last it either shows a crossing, on a stretch
+where y - line moves one way, or touches the line so closely that the highest precision does not tell: such an instant
+is kept, and passed.
 """
 
 from __future__ import annotations
@@ -16,7 +17,7 @@ from flint import arb, fmpq
 
 from specgate.response.budget import Exhausted, OutOfWork
 from specgate.response.patches import LOOK, Ground, Line, Patch
-from specgate.response.turning import Zero, sign_at
+from specgate.response.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
 
 PATCHES = 60_000
@@ -63,6 +64,7 @@ class Walk:
     line: Line
     side: int
     backward: bool
+    closed: bool = False
     work: Work = field(default_factory=Work)
     touching: list[Where] = field(default_factory=list)
 
@@ -104,14 +106,14 @@ class Walk:
     def _enter(self, index: int, time: fmpq) -> Where | None:
         """Return the instant at which a piece is entered if y is beyond there, one-sided."""
         beyond = self._side_at(index, time)
-        if beyond == 1:
+        if beyond == 1 or (beyond == 0 and self.closed):
             return Instant(index, time)
         if beyond is None:
             self.touching.append(Instant(index, time))
         return None
 
     def _side_at(self, index: int, time: fmpq) -> int | None:
-        """Return the sign of side * (y - line) at an instant; just after the start it is known exactly."""
+        """Return the sign of side * (y - line) at an instant; just after the start it may be known exactly."""
         if time == 0:
             jump = self.ground.pieces.jump(0)
             if jump is not None:
@@ -134,8 +136,7 @@ class Walk:
         while waiting:
             patch = waiting.pop()
             self.work.spend()
-            start = self._start_slope(patch)
-            found = self._judge(patch) if start == 0 else self._one_way(patch, start)
+            found = self._settled(patch)
             if isinstance(found, Zero | Instant):
                 return found
             if found is None:
@@ -143,6 +144,27 @@ class Walk:
                     raise OutOfWork("a flat stretch of the response is too close to the limit to be decided")
                 waiting += patch.parts if self.backward else reversed(patch.parts)
         return None
+
+    def _settled(self, patch: Patch) -> Where | bool | None:
+        """Judge a patch, by what is known of it exactly if there is such."""
+        polynomial = patch.pieces.polynomial(patch.index)
+        if polynomial is not None and polynomial.degree() <= 1:
+            return self._straight(patch)
+        start = self._start_slope(patch)
+        return self._judge(patch) if start == 0 else self._one_way(patch, start)
+
+    def _straight(self, patch: Patch) -> Where | bool:
+        """Judge a patch on which y - line is straight, exactly."""
+        near, far = (patch.right, patch.left) if self.backward else (patch.left, patch.right)
+        here, there = (exact_at(patch.pieces, patch.index, 0, time) for time in (near, far))
+        assert here is not None
+        assert there is not None
+        before, after = (self.side * (value - self.line.at(time)) for value, time in ((here, near), (there, far)))
+        if after < 0 or (after == 0 and not self.closed):
+            return True
+        if after == 0:
+            return Instant(patch.index, far)
+        return Instant(patch.index, near + (far - near) * before / (before - after))
 
     def _start_slope(self, patch: Patch) -> int:
         """Return the sign of the slope of side * (y - line) on a proved monotone start, 0 elsewhere."""
@@ -157,16 +179,20 @@ class Walk:
         with working_precision(LOOK):
             low, high = patch.rough(0)
             ends = arb(self.line.at(patch.left)).union(arb(self.line.at(patch.right)))
-            if (high - ends if side > 0 else ends - low) <= 0:
+            if self._is_inside(high - ends if side > 0 else ends - low):
                 return True
             low, high = patch.above(self.line, 0)
-            if (high if side > 0 else -low) <= 0:
+            if self._is_inside(high if side > 0 else -low):
                 return True
         slope = _outward(patch.above(self.line, 1), side)
         if slope != 0:
             return self._one_way(patch, slope)
         bend = _outward(patch.above(self.line, 2), side)
         return self._bulge(patch) if bend < 0 else None
+
+    def _is_inside(self, highest: arb) -> bool:
+        """Whether a bound of side * (y - line) shows that y is not beyond."""
+        return bool(highest < 0 if self.closed else highest <= 0)
 
     def _one_way(self, patch: Patch, slope: int) -> Where | bool:
         """Judge a patch on which side * (y - line) rises (slope 1) or falls (-1) in time."""
@@ -185,7 +211,7 @@ class Walk:
             return Zero(patch.pieces, patch.index, 0, self.line, ends, rising=rising)
         if beyond is None:
             self.touching.append(Instant(patch.index, far))
-        return True
+        return Instant(patch.index, far) if beyond == 0 and self.closed else True
 
     def _bulge(self, patch: Patch) -> Where | bool | None:
         """Judge a patch on which side * (y - line) is bent inward: it has at most one summit."""

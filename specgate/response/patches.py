@@ -18,6 +18,7 @@ from math import frexp
 
 from flint import arb, fmpq
 
+from specgate.response.budget import OutOfWork
 from specgate.response.modes import dyadic
 from specgate.response.pieces import Pieces
 from specgate.terms.precision import working_precision
@@ -29,7 +30,7 @@ _SHARE = fmpq(33, 64)
 _UNEVEN = fmpq(509, 512)
 """Keeps the ends of doublings off round numbers, where turning points may lie."""
 
-_LONGEST = 400
+_LONGEST = 1200
 
 
 @dataclass(frozen=True)
@@ -177,7 +178,9 @@ class Ground:
             yield self._root(index, number, left, end)
             return
         step = self._step(index, left - begin)
-        while (until is None or left < until) and number < _LONGEST:
+        while until is None or left < until:
+            if number >= _LONGEST:
+                raise OutOfWork("the scales of time of the response are too far apart to be searched")
             yield self._root(index, number, left, left + step)
             left, step = left + step, step if number == 0 else 2 * step
             number += 1

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Protocol
 
-from flint import arb, fmpq
+from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Absent
 
@@ -43,6 +43,13 @@ class Pieces(Protocol):
         """Return by how much y jumps at kink `index` (y(0+) for the first), exactly; None: not told exactly."""
         return None
 
+    def polynomial(self, index: int) -> fmpq_poly | None:
+        """Return a piece as a rational polynomial in the time from its kink on; None: it is none, or that is not told.
+
+        What is asked of such a piece at an instant is then exact.
+        """
+        return None
+
     def continuous_from(self) -> fmpq | None:
         """Return a time from which on y does not jump; None: not told. Asked only where pieces follow without end."""
         return None
@@ -75,4 +82,11 @@ class Pieces(Protocol):
 
     def rest(self, time: fmpq) -> tuple[fmpq, fmpq] | None:
         """Return bounds of the integrals of |y| and of y^2 from `time` on, for a final value of zero; None: none."""
+        return None
+
+    def closing(self, bits: int) -> tuple[fmpq, arb] | None:
+        """Return a time and a ball of the integral of |y| from there on, about 2^-bits of the whole; None: none.
+
+        It spares the search of many half periods; y is not zero at that time.
+        """
         return None

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from functools import cached_property
+from functools import cached_property, reduce
 
 from flint import arb, fmpq
 
@@ -125,11 +125,16 @@ class PiecewiseResponse:
 
     def _over(self, time: arb, first: int, last: int, bits: int) -> arb:
         """Return a ball of y over a ball of times that may reach over several pieces."""
-        values = [self.pieces.derivatives(index, time, max(LOOK, bits))[0] for index in range(first, last + 1)]
-        value = values[0]
-        for other in values[1:]:
-            value = value.union(other)
-        return value
+        if first == last:
+            return self.pieces.derivatives(first, time, max(LOOK, bits))[0]
+        low, high = max(fmpq(0), time.lower().fmpq()), time.upper().fmpq()
+        values = []
+        for index in range(first, last + 1):
+            begin, end = self.pieces.kink(index), self.pieces.kink(index + 1)
+            left = low if begin is None else max(low, begin)
+            part = arb(left).union(arb(high if end is None else min(high, end)))
+            values.append(self.pieces.derivatives(index, part, max(LOOK, bits))[0])
+        return reduce(lambda one, other: one.union(other), values)
 
     def deviation_after(self, time: fmpq) -> Extreme:
         """Return sup over t >= time of |y(t) - final|, and where it is."""

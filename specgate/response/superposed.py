@@ -8,6 +8,7 @@ from functools import cached_property
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Absent
+from specgate.response.closing import closing
 from specgate.response.ending import Ending, derived
 from specgate.response.modal_integrals import integral, square_integral
 from specgate.response.modes import Expansion, Mode
@@ -97,6 +98,10 @@ class Superposed(Pieces):
             value, first, second, third = whole.deviation(time - arb(self._kinks[index]))
             return value + arb(whole.offset), first, second, third
 
+    def polynomial(self, index: int) -> fmpq_poly | None:
+        """Return a piece without modes as the polynomial that it is."""
+        return None if self._sum(index, _RUNGS[0]).modes else self._drift(index)
+
     @cached_property
     def _ending(self) -> Ending:
         return Ending(self._kinks[-1], lambda bits: self._sum(len(self._kinks) - 1, bits))
@@ -120,6 +125,10 @@ class Superposed(Pieces):
     def rest(self, time: fmpq) -> tuple[fmpq, fmpq] | None:
         """Return bounds of the integrals of |y| and of y^2 from `time` on, for a final value of zero."""
         return self._ending.rest(time) if self.final == 0 else None
+
+    def closing(self, bits: int) -> tuple[fmpq, arb] | None:
+        """Return a time from which on one oscillation is left, and a ball of the integral of |y| from there on."""
+        return closing(self._ending, bits) if self.final == 0 else None
 
     def speed(self, index: int) -> float:
         """Return how fast the piece varies (rad/s)."""

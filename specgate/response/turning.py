@@ -103,11 +103,26 @@ def _dyadic(ball: arb) -> fmpq:
     return middle
 
 
+def exact_at(pieces: Pieces, index: int, order: int, time: fmpq) -> fmpq | None:
+    """Return a derivative at an instant of a piece exactly, where the piece is told to be a polynomial."""
+    polynomial, begin = pieces.polynomial(index), pieces.kink(index)
+    if polynomial is None or begin is None:
+        return None
+    for _ in range(order):
+        polynomial = polynomial.derivative()
+    value: fmpq = polynomial(time - begin)
+    return value
+
+
 def sign_at(pieces: Pieces, index: int, order: int, line: Line, time: fmpq, most: int = HIGHEST) -> int | None:
     """Return the proved sign of the derivative of an order of y - line at an instant; None: not told with `most` bits.
 
-    At a kink the piece says which side is meant. Exactly zero is told where the ball is.
+    At a kink the piece says which side is meant. Exactly zero is told where the ball is, and of polynomials.
     """
+    known = exact_at(pieces, index, order, time)
+    if known is not None:
+        away = known - (line.at(time) if order == 0 else line.slope if order == 1 else 0)
+        return (away > 0) - (away < 0)
     bits = LOOK
     while bits <= most:
         with working_precision(bits):
