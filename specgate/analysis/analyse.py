@@ -7,6 +7,7 @@ from dataclasses import replace
 
 from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
 from specgate.analysis.responses import response_analysis, same
+from specgate.analysis.sampled import sampled_breaks, sampled_responses
 from specgate.analysis.wiring import subsystems_of
 from specgate.delays.open_loop import DelayedLoop
 from specgate.frequency.questions import OpenLoop
@@ -16,6 +17,8 @@ from specgate.measures.subjects import BreakSubject, LoopSubject
 from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, depends_on_pi, values
 from specgate.project.types import Break, Loop, Project
+from specgate.sampled.blocks import SampledWiring
+from specgate.sampled.solution import solve_sampled
 from specgate.systems.delayed import DelayedOpenLoop, DelayedSolution, solved
 from specgate.systems.solution import Cut, LoopSolution
 from specgate.terms.unit import PRECISE_PI
@@ -54,6 +57,8 @@ def _rests_on_pi(loop: Loop, built: InstantiatedLoop, known: Values) -> bool:
 
 
 def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) -> LoopAnalysis:
+    if built.sampled is not None:
+        return _sampled(project, loop, built, known, built.sampled)
     solution = solved(built.wiring)
     return LoopAnalysis(
         loop=loop,
@@ -66,6 +71,21 @@ def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) 
             for name, response in loop.responses.items()
         },
         breaks=_breaks(loop, solution, built),
+    )
+
+
+def _sampled(
+    project: Project, loop: Loop, built: InstantiatedLoop, known: Values, wiring: SampledWiring
+) -> LoopAnalysis:
+    solution = solve_sampled(wiring)
+    return LoopAnalysis(
+        loop=loop,
+        subsystems=subsystems_of(project, loop),
+        signals=built.signals,
+        solution=solution,
+        subject=LoopSubject(solution) if built.unsupported is None else Missing(built.unsupported, later=True),
+        responses=sampled_responses(loop, built.signals, solution, built.responses, known),
+        breaks=sampled_breaks(loop, solution, built.breaks),
     )
 
 

@@ -14,6 +14,8 @@ from specgate.project import types as project_types
 from specgate.project.parameters import Values
 from specgate.project.signals import LoopSignals
 from specgate.response.answers import Absent, Answer
+from specgate.sampled.opened import SampledOpening
+from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedChannel, DelayedOpenLoop, DelayedSolution
 from specgate.systems.solution import Channel, LoopSolution, OpenLoop
 from specgate.terms.records import record
@@ -71,7 +73,7 @@ class BreakAnalysis:
 
     declared: project_types.Break
     subject: BreakSubject | Missing
-    opened: OpenLoop | DelayedOpenLoop | None = None
+    opened: OpenLoop | DelayedOpenLoop | SampledOpening | None = None
 
 
 @record
@@ -85,7 +87,7 @@ class LoopAnalysis:
     loop: project_types.Loop
     subsystems: tuple[str, ...]
     signals: LoopSignals
-    solution: LoopSolution | DelayedSolution
+    solution: LoopSolution | DelayedSolution | SampledSolution
     subject: LoopSubject | Missing
     responses: Mapping[str, ResponseAnalysis]
     breaks: Mapping[str, BreakAnalysis]

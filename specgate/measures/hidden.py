@@ -5,6 +5,8 @@ from __future__ import annotations
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
+from specgate.sampled.hidden import hidden_modes
+from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedSolution
 
 
@@ -12,6 +14,8 @@ def _hidden_modes(subject: LoopSubject, _: Arguments) -> Answer:
     solution = subject.solution
     if solution.algebraic_loop is not None:
         return Answer.undecided(solution.algebraic_loop.reason)
+    if isinstance(solution, SampledSolution):
+        return hidden_modes(solution)
     if isinstance(solution, DelayedSolution):
         concealed = [component.hidden for component in solution.components]
         if not all(hidden.is_rational for hidden in concealed):

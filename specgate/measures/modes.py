@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 
 from flint import acb, arb, fmpq, fmpq_poly
 
@@ -10,13 +10,15 @@ from specgate.measures.measure import Argument, Arguments, Comparer, Measure, Un
 from specgate.measures.reading import decided
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
+from specgate.sampled.modes import is_at_one, is_dead, least_over_modes, oscillates
+from specgate.sampled.solution import SampledSolution
 from specgate.systems.regions import (
     Sign,
     compare_damping_ratio,
     compare_decay_rate,
     compare_natural_frequency,
 )
-from specgate.systems.roots import certified_roots
+from specgate.systems.roots import Root, certified_roots
 from specgate.terms.precision import working_precision
 
 _NO_POLES = "the loop has no dynamics: there is no pole"
@@ -39,7 +41,8 @@ def _stable(subject: LoopSubject) -> Answer:
 
 def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
     def comparer(subject: LoopSubject, _: Arguments, limit: fmpq) -> Sign | None:
-        modes = subject.solution.determinant
+        solution = subject.solution
+        modes = None if isinstance(solution, SampledSolution) else solution.determinant
         return compare(modes, limit) if isinstance(modes, fmpq_poly) else None
 
     return comparer
@@ -47,7 +50,10 @@ def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
 
 def _over_poles(subject: LoopSubject, of: Callable[[acb], arb], which: Callable[[acb], bool], reason: str) -> Answer:
     """Return the smallest value of `of` over the poles that `which` picks, or `reason` where there is none."""
-    polynomial = subject.solution.determinant
+    solution = subject.solution
+    if isinstance(solution, SampledSolution):
+        return least_over_modes(solution, of, _OF_SAMPLED[which], reason)
+    polynomial = solution.determinant
     if not isinstance(polynomial, fmpq_poly):
         return Answer.undecided("the loop has a dead time, and endlessly many poles")
 
@@ -74,6 +80,14 @@ def _oscillatory(pole: acb) -> bool:
 
 def _any(_: acb) -> bool:
     return True
+
+
+_OF_SAMPLED: Mapping[Callable[[acb], bool], Callable[[Root], bool]] = {
+    _away_from_origin: lambda root: not is_dead(root) and not is_at_one(root),
+    _oscillatory: oscillates,
+    _any: lambda root: not is_dead(root),
+}
+"""The same choices over modes in z."""
 
 
 def _damping(pole: acb) -> arb:

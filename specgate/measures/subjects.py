@@ -8,6 +8,7 @@ from specgate.frequency.questions import Gain, OpenLoop
 from specgate.response.answers import Absent, Answer
 from specgate.response.inputs import Input
 from specgate.response.questions import TimeResponse
+from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedSolution
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.solution import LoopSolution
@@ -20,7 +21,7 @@ class ResponseSubject:
     """The inputs of a loop that are driven, as one signal answers them.
 
     channel:  transfer function from input to signal as the wiring gives it (not reduced), or why there is no single
-              one.
+              one; of a sampled loop that which slow signals see (`SlowTransfer`).
     size:     of a step (SI); 1 where the input is not a single step.
     response: the response in time of the reduced channel, deviations from rest, size included.
     error:    response of reference minus signal, or why there is none (no common dimension).
@@ -50,6 +51,7 @@ class ResponseSubject:
 class BreakSubject:
     """The loop opened at a break: L is minus the transfer from the injected to the returned signal.
 
+    open_loop: L; of a sampled loop that which slow signals see (`SlowTransfer`).
     loop: L over frequency; None where this version does not answer that.
     """
 
@@ -62,7 +64,7 @@ class BreakSubject:
 class LoopSubject:
     """The whole loop with every mode, cancelled or not."""
 
-    solution: LoopSolution | DelayedSolution
+    solution: LoopSolution | DelayedSolution | SampledSolution
 
 
 Subject = ResponseSubject | BreakSubject | LoopSubject

@@ -13,6 +13,7 @@ from specgate.project.faults import Fault
 from specgate.project.parameters import Values, depends_on_pi, evaluate, infer
 from specgate.project.rational_forms import Rational, factored, matrix, poles_and_zeros, polynomials
 from specgate.project.reader import ModelReader
+from specgate.project.sampled_blocks import PeriodicBlock, sampled_block
 from specgate.project.state_space import state_space
 from specgate.project.types import (
     FactoredModel,
@@ -45,22 +46,23 @@ _FORMS: Mapping[type, Callable[[ModelReader, Any], Rational]] = {
 class BuiltBlock:
     """A block in coherent SI.
 
-    block: None for a model in z. unsupported: why what passes through it is not answered. rounded: it rests on the
-    decimal for pi. by_fit: plain numbers carry a unit that was not written.
+    block: None for a model in z, which is `sampled`. unsupported: why what passes through it is not answered. rounded:
+    it rests on the decimal for pi. by_fit: plain numbers carry a unit that was not written.
     """
 
     block: Block | None
     unsupported: str | None
     rounded: bool
     by_fit: bool
+    sampled: PeriodicBlock | None = None
 
 
 def build(subsystem: Subsystem, values: Values) -> BuiltBlock:
     """Return the block of a subsystem. Its dead time is never approximated. Raises Fault."""
-    if isinstance(subsystem.model, SampledModel):
-        reason = f"`{subsystem.name}` is a sampled model, which this version does not answer"
-        return BuiltBlock(None, reason, rounded=False, by_fit=False)
     reader = ModelReader(subsystem, values)
+    if isinstance(subsystem.model, SampledModel):
+        sampled = sampled_block(reader, subsystem.model)
+        return BuiltBlock(None, None, reader.rounded, reader.by_fit, sampled)
     rational = _FORMS[type(subsystem.model)](reader, subsystem.model)
     block = Block(
         subsystem.name,

@@ -15,9 +15,11 @@ from specgate.project.parameters import Values
 from specgate.project.signals import LoopSignals
 from specgate.project.temperatures import absolute
 from specgate.project.types import Break, Loop, Project, Response
+from specgate.sampled.blocks import SampledBlock, SampledInstance, SampledWiring, held
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.graph import reached, reversed_arcs
 from specgate.systems.opening import Cut
+from specgate.terms.enclosed import printed_exact
 from specgate.terms.findings import Related
 from specgate.terms.records import record
 
@@ -29,8 +31,9 @@ Node = tuple[str, str]
 class InstantiatedLoop:
     """A loop in coherent SI.
 
-    wiring: a block that this version does not answer (sampled) is left out of it, and its outputs are
-    inputs named `block.output`; what no path through such a block reaches is answered as if it stood there.
+    wiring: a block that this version does not answer (dead time beside a sampled block) is left out of it, and its
+    outputs are inputs named `block.output`; what no path through such a block reaches is answered as if it stood there.
+    sampled: the same with the sampled blocks, which are left out of `wiring` too; None where there are none.
     signals: the unit and the span of each signal. rest: value of every input and signal before the step, temperatures
     from the zero of the signal's unit. unsupported: why nothing about the loop as a whole is answered. responses,
     breaks: the same for each of them that is concerned, by name. subsystems: the subsystem of each instance.
@@ -47,6 +50,7 @@ class InstantiatedLoop:
     subsystems: Mapping[str, str]
     depends_on_pi: bool
     cuts: Mapping[str, Cut]
+    sampled: SampledWiring | None = None
 
 
 def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values: Values) -> InstantiatedLoop:
@@ -55,8 +59,9 @@ def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values:
     signals = LoopSignals(project, loop, values)
     rest = {name: fmpq(0) for name in (*loop.inputs, *loop.signals)}
     rest.update({name: absolute(value, signals.unit(name), values) for name, value in loop.rest.items()})
+    wiring = drawn.wiring()
     return InstantiatedLoop(
-        drawn.wiring(),
+        wiring,
         signals,
         rest,
         next(iter(drawn.missing.values()), None),
@@ -65,6 +70,7 @@ def wire(project: Project, loop: Loop, blocks: Mapping[str, BuiltBlock], values:
         {name: drawn.classes[number][0].call.subsystem for number, name in drawn.names.items()},
         drawn.uses.rounded or any(blocks[name].rounded for name in drawn.numbers),
         {name: drawn.cut(opened) for name, opened in loop.breaks.items()},
+        drawn.sampled(wiring),
     )
 
 
@@ -77,12 +83,18 @@ class Drawn:
         self.classes = self.uses.classes()
         self.numbers = self._by_subsystem()
         self.names = dict(self._named())
-        self.missing = {
-            name: reason
-            for number, name in self.names.items()
-            if (reason := blocks[self.classes[number][0].call.subsystem].unsupported)
-        }
+        built = {name: blocks[self.classes[number][0].call.subsystem] for number, name in self.names.items()}
+        self.periodic = {name: one.sampled for name, one in built.items() if one.sampled is not None}
+        self.missing = {name: reason for name, one in built.items() if (reason := self._unanswered(one))}
         self.arcs = self._arcs()
+
+    def _unanswered(self, built: BuiltBlock) -> str | None:
+        if built.block is not None and built.block.dead_time != 0 and self.periodic:
+            return (
+                f"`{built.block.name}` has a dead time and stands in a loop with a sampled block, which this version "
+                "does not answer; one that belongs to what a sampled block sends can be stated there"
+            )
+        return built.unsupported
 
     def _by_subsystem(self) -> dict[str, list[int]]:
         """Return the classes of each subsystem that is used, in the order of the project. Raises Fault."""
@@ -113,24 +125,54 @@ class Drawn:
     def wiring(self) -> Wiring:
         """Return the wiring, with the outputs of missing instances as inputs."""
         outside = [
-            f"{self.names[number]}.{output}"
+            held(self.names[number], output)
             for number, uses in self.classes.items()
-            if self.names[number] in self.missing
+            if self._outside(self.names[number])
             for output in self.project.subsystems[uses[0].call.subsystem].outputs
         ]
         instances = [
             Instance(self.names[number], block, self._arguments(number, block))
             for numbers in self.numbers.values()
             for number in numbers
-            if self.names[number] not in self.missing and (block := self._block(number)) is not None
+            if not self._outside(self.names[number]) and (block := self._block(number)) is not None
         ]
         signals = {name: self._linear(form) for name, form in self.uses.forms.items()}
         return Wiring((*self.loop.inputs, *outside), tuple(instances), signals)
 
+    def sampled(self, wiring: Wiring) -> SampledWiring | None:
+        """Return the wiring with the sampled blocks, None without any. Raises Fault for more than one period."""
+        instances = []
+        for number, name in self.names.items():
+            if name in self.periodic:
+                block = self.periodic[name].block
+                instances.append(SampledInstance(name, block, self._arguments(number, block)))
+        if not instances:
+            return None
+        self._refuse_two_periods()
+        return SampledWiring(self.periodic[instances[0].name].period, wiring, tuple(instances))
+
+    def _refuse_two_periods(self) -> None:
+        first, *others = ((number, name) for number, name in self.names.items() if name in self.periodic)
+        for number, name in others:
+            if self.periodic[name].period != self.periodic[first[1]].period:
+                one, other = (self.classes[n][0].call for n in (first[0], number))
+                raise Fault(
+                    faults.VALUE,
+                    f"`{other.subsystem}` samples every {_seconds(self.periodic[name].period)}, `{one.subsystem}` in "
+                    f"the same loop every {_seconds(self.periodic[first[1]].period)}: a loop has one period, and two "
+                    "rates in one loop are not answered",
+                    other.place,
+                    Related(one.place, f"`{one.subsystem}` is used here"),
+                )
+
+    def _outside(self, name: str) -> bool:
+        """Whether an instance stands outside the wiring in s."""
+        return name in self.missing or name in self.periodic
+
     def _block(self, number: int) -> Block | None:
         return self.blocks[self.classes[number][0].call.subsystem].block
 
-    def _arguments(self, number: int, block: Block) -> dict[str, LinearForm]:
+    def _arguments(self, number: int, block: Block | SampledBlock) -> dict[str, LinearForm]:
         use = self._spelled(number)
         return {name: self._linear(use.arguments.get(name, {})) for name in block.inputs}
 
@@ -145,7 +187,7 @@ class Drawn:
         if isinstance(atom, NameRef):
             return SignalRef(atom.name)
         name = self._instance(atom)
-        return SignalRef(f"{name}.{atom.output}") if name in self.missing else OutputRef(name, atom.output)
+        return SignalRef(held(name, atom.output)) if self._outside(name) else OutputRef(name, atom.output)
 
     def _instance(self, atom: UseRef) -> str:
         return self.names[self.uses.representative[atom.use]]
@@ -194,3 +236,7 @@ class Drawn:
         behind = reached([("signal", target)], reversed_arcs(arcs))
         on_path = ahead & behind
         return next((reason for name, reason in self.missing.items() if ("block", name) in on_path), None)
+
+
+def _seconds(period: fmpq) -> str:
+    return f"{printed_exact(period).value:g} s"

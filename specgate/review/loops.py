@@ -19,6 +19,7 @@ from specgate.measures.subjects import ResponseSubject, Subject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Response
 from specgate.response.answers import Absent
+from specgate.review import sampled
 from specgate.review.frequency_curve import frequency_curve
 from specgate.review.printing import RADIAN_PER_SECOND, coefficients, place_of, poles, result, terms
 from specgate.review.types import (
@@ -31,6 +32,8 @@ from specgate.review.types import (
     MeasureResult,
     ResponseReview,
 )
+from specgate.sampled.opened import SampledOpening
+from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedChannel
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.quasi import Quasi
@@ -58,8 +61,9 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
     """
     declared = found.loop
     reason = _reason(found)
-    modes = None if reason else found.solution.determinant
-    rational = modes if isinstance(modes, fmpq_poly) else None
+    in_z = found.solution if isinstance(found.solution, SampledSolution) and not reason else None
+    modes = None if reason or isinstance(found.solution, SampledSolution) else found.solution.determinant
+    rational = modes if isinstance(modes, fmpq_poly) else in_z.exact if in_z else None
     return LoopReview(
         title=declared.title,
         wiring={key: signal.as_written for key, signal in declared.signals.items()},
@@ -68,11 +72,12 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
         rest={key: value.as_written for key, value in declared.rest.items()},
         subsystems=found.subsystems,
         characteristic_polynomial=() if rational is None else coefficients(rational),
-        poles=() if rational is None else poles(certified_roots(rational, _SHOWN)),
+        poles=poles(sampled.roots(in_z) if in_z else () if rational is None else certified_roots(rational, _SHOWN)),
         hidden_modes=tuple(_hidden(found)),
         measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
         responses={key: _response(one, again.responses[key], curve=curves) for key, one in found.responses.items()},
         breaks={key: _break(one, again.breaks[key], curve=curves) for key, one in found.breaks.items()},
+        in_z=None if in_z is None else sampled.loop_in_z(in_z),
         characteristic_terms=terms(modes) if isinstance(modes, Quasi) else None,
         reason=reason,
     )
@@ -83,12 +88,14 @@ def _break(found: BreakAnalysis, again: BreakAnalysis, *, curve: bool) -> BreakR
         return BreakReview(found.declared.at, (), reason=found.subject.reason)
     loop = found.subject.loop
     others = None if isinstance(again.subject, Missing) else again.subject.loop
-    above, below = _parts(found.subject.open_loop)
+    opened = found.opened if isinstance(found.opened, SampledOpening) else None
+    above, below = _parts(sampled.exact_opening(opened) if opened else found.subject.open_loop)
     return BreakReview(
         at=found.declared.at,
         measures=_measures("break", found.subject, again.subject, ONE),
         numerator=above[0],
         denominator=below[0],
+        in_z=None if opened is None else sampled.opening_in_z(opened),
         crossings=() if loop is None or others is None else tuple(_crossings(loop, others)),
         numerator_terms=above[1],
         denominator_terms=below[1],

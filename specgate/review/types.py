@@ -129,6 +129,28 @@ class ResponseReview:
 
 
 @record
+class Enclosure:
+    """An enclosed number: rounded to 12 significant digits, and proved bounds (None where it is a whole number)."""
+
+    value: float
+    lower: float | None
+    upper: float | None
+
+
+@record
+class InZ:
+    """What is said of a sampled loop in z: its period in s (exact), and polynomials that are not rational.
+
+    Coefficients highest power of z first. Those that are rational stand where those in s of other loops do.
+    """
+
+    period: str
+    characteristic_polynomial: tuple[Enclosure, ...] | None = _omitted()
+    numerator: tuple[Enclosure, ...] | None = _omitted()
+    denominator: tuple[Enclosure, ...] | None = _omitted()
+
+
+@record
 class CrossingReview:
     """Where the open loop passes the unit circle (`gain`) or the negative real axis (`phase`), and what is left there.
 
@@ -159,6 +181,8 @@ class BreakReview:
     numerator: tuple[str, ...] = ()
     denominator: tuple[str, ...] = ()
     crossings: tuple[CrossingReview, ...] = ()
+    in_z: InZ | None = _omitted()
+    """Of a sampled loop: numerator and denominator are in z."""
     numerator_terms: tuple[DelayedTerm, ...] | None = _omitted()
     denominator_terms: tuple[DelayedTerm, ...] | None = _omitted()
     frequency_response: FrequencyCurve | None = None
@@ -194,6 +218,8 @@ class LoopReview:
     measures: tuple[MeasureResult, ...]
     responses: Mapping[str, ResponseReview]
     breaks: Mapping[str, BreakReview]
+    in_z: InZ | None = _omitted()
+    """Of a sampled loop: characteristic polynomial and poles are in z."""
     characteristic_terms: tuple[DelayedTerm, ...] | None = _omitted()
     """With dead time, in place of the characteristic polynomial: a sum of terms."""
     reason: str | None = _omitted()

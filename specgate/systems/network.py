@@ -7,12 +7,12 @@ from functools import cached_property
 
 from flint import fmpq_poly, fmpz_poly
 
-from specgate.systems.blocks import OutputRef, SignalRef
+from specgate.systems.blocks import LinearForm, OutputRef, SignalRef
 from specgate.systems.elimination import Triangle, triangulate
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.graph import reached, reversed_arcs
 from specgate.systems.modes import block_modes
-from specgate.systems.polynomials import exact_quotient, monic, product
+from specgate.systems.polynomials import ONE, exact_quotient, monic, product
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
 
@@ -54,6 +54,17 @@ class Network:
             elif self.equations.variables[known] in numerators:
                 total += fmpq_poly(numerators[self.equations.variables[known]]) * factor
         return TransferFunction(total, denominator).reduced()
+
+    def total(self, form: LinearForm, source: SignalRef) -> TransferFunction:
+        """Return the transfer function from a loop input to a form of signals, outputs and inputs, reduced."""
+        found = TransferFunction(fmpq_poly(), ONE)
+        for factor, node in form.terms:
+            one = self.fraction(node, source)
+            found = TransferFunction(
+                found.numerator * one.denominator + one.numerator * found.denominator * factor,
+                found.denominator * one.denominator,
+            ).reduced()
+        return found
 
     @cached_property
     def _numerators(self) -> Mapping[SignalRef, Mapping[int, fmpz_poly]]:

@@ -197,11 +197,17 @@ def test_a_dead_time_is_a_time(findings: Findings, delay: str, message: str) -> 
     assert [message in finding.message for finding in found] == [True]
 
 
-def test_a_sampled_block_is_not_approximated(project: ProjectOf) -> None:
+def test_a_sampled_block_stands_beside_the_wiring_in_s(project: ProjectOf) -> None:
     sampled = text().replace("{gain: 0.03 V/mm}", "{sampled: {period: 1 ms, numerator: [3, -2], denominator: [1, 0]}}")
     made = loop(project(sampled))
-    assert list(made.responses) == ["follow", "shown", "upset"]
-    assert "`trim` is a sampled model" in made.responses["follow"]
+    assert made.responses == {}
+    assert made.unsupported is None
+    assert made.sampled is not None
+    assert made.sampled.period == fmpq(1, 1000)
+    assert made.sampled.inputs == ("ask", "slack")
+    assert [one.name for one in made.sampled.instances] == ["trim"]
+    assert made.wiring.inputs == ("ask", "slack", "trim.output")
+    assert instances(made) == ["winder", "dancer", "readout"]
 
 
 # --- rest and pi -------------------------------------------------------------------------------------------

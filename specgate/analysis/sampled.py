@@ -1,0 +1,125 @@
+"""A loop with a sampled block: its responses and breaks as the subjects that measures are read from."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+
+from flint import fmpq
+
+from specgate.analysis.analyses import BreakAnalysis, Missing, ResponseAnalysis
+from specgate.analysis.driven import ERROR_JUMPS, NOISE, SEVERAL, improper, plain, reference_of, void
+from specgate.measures.reading import decided
+from specgate.measures.subjects import BreakSubject, ResponseSubject
+from specgate.project.excitations import evaluated
+from specgate.project.parameters import Values
+from specgate.project.signals import LoopSignals
+from specgate.project.types import Break, Loop, Response
+from specgate.response.answers import Absent
+from specgate.response.counted import Counted
+from specgate.response.inputs import Input, respond
+from specgate.response.piecewise import PiecewiseResponse
+from specgate.response.questions import TimeResponse
+from specgate.sampled.channel import SampledChannel, channel, pieces
+from specgate.sampled.drive import drive
+from specgate.sampled.opened import opened
+from specgate.sampled.over_frequency import over_frequency
+from specgate.sampled.solution import SampledSolution, SlowTransfer
+from specgate.systems.blocks import LinearForm, SignalRef
+
+BEYOND = "a sampled block is in the loop"
+_ONE_USE = "a break of one use, or with other loops open, is not answered in a sampled loop by this version"
+_ONE = fmpq(1)
+
+
+def sampled_responses(
+    loop: Loop, signals: LoopSignals, solution: SampledSolution, unsupported: Mapping[str, str], known: Values
+) -> Mapping[str, ResponseAnalysis]:
+    """Return the responses of a sampled loop, by name."""
+    return {
+        name: _response(signals, one, solution, unsupported.get(name), known) for name, one in loop.responses.items()
+    }
+
+
+def sampled_breaks(
+    loop: Loop, solution: SampledSolution, unsupported: Mapping[str, str]
+) -> Mapping[str, BreakAnalysis]:
+    """Return the breaks of a sampled loop, by name."""
+    return {name: _break(one, solution, unsupported.get(name)) for name, one in loop.breaks.items()}
+
+
+def _response(
+    signals: LoopSignals, response: Response, solution: SampledSolution, unsupported: str | None, known: Values
+) -> ResponseAnalysis:
+    unit = signals.unit(response.to)
+    if unsupported is not None:
+        return ResponseAnalysis(response, unit, Missing(unsupported, later=True))
+    if solution.algebraic_loop is not None:
+        return ResponseAnalysis(response, unit, Missing(solution.algebraic_loop.reason))
+    inputs = tuple(evaluated(one, known) for one in response.excitations)
+    sources = tuple(dict.fromkeys(one.source for one in response.excitations))
+    form = LinearForm(((_ONE, SignalRef(response.to)),))
+    single = {source: channel(solution, [source], form) for source in sources}
+    slow = {source: one.slow(source) for source, one in single.items()}
+    steep = next((source for source, one in slow.items() if not one.proper), None)
+    if steep is not None:
+        reason = improper(steep, response.to, slow[steep].numerator.degree(), slow[steep].denominator.degree())
+        return ResponseAnalysis(response, unit, Missing(reason), improper=True)
+    driven = tuple(zip((one.source for one in response.excitations), inputs, strict=True))
+    only = slow[sources[0]]
+    subject = ResponseSubject(
+        SlowTransfer(only.numerator, only.denominator) if len(sources) == 1 else SEVERAL,
+        inputs[0].quantities["size"] if plain(inputs) else fmpq(1),
+        _in_time(channel(solution, sources, form), driven),
+        _error(signals, response, solution, driven),
+        next((void(source, response.to) for source, one in single.items() if one.hides_instability), None),
+        None,
+        inputs,
+        BEYOND,
+    )
+    return ResponseAnalysis(response, unit, subject)
+
+
+def _in_time(one: SampledChannel, driven: Sequence[tuple[str, Input]]) -> TimeResponse | Absent:
+    """Return the response; without a sampled block on the way it is that of the blocks in s."""
+    if any(given.kind == "white_noise" for _, given in driven):
+        return NOISE
+    if not one.sampled:
+        return respond([(one.continuous(source), given) for source, given in driven])
+    found = drive(driven)
+    if isinstance(found, Absent):
+        return found
+    response = PiecewiseResponse(pieces(one, found))
+    since = max(given.since for _, given in driven)
+    return response if since == 0 else Counted(response, since)
+
+
+def _error(
+    signals: LoopSignals, response: Response, solution: SampledSolution, driven: Sequence[tuple[str, Input]]
+) -> TimeResponse | Absent:
+    sources = list(dict.fromkeys(source for source, _ in driven))
+    name = reference_of(response.reference, sources, response.to, signals)
+    if isinstance(name, Absent):
+        return name
+    reference = () if name == "0" else ((_ONE, SignalRef(name)),)
+    form = LinearForm((*reference, (-_ONE, SignalRef(response.to))))
+    one = channel(solution, sources, form)
+    if not all(one.slow(source).proper for source in sources):
+        return ERROR_JUMPS
+    return _in_time(one, driven)
+
+
+def _break(declared: Break, solution: SampledSolution, unsupported: str | None) -> BreakAnalysis:
+    if unsupported is not None:
+        return BreakAnalysis(declared, Missing(unsupported, later=True))
+    if solution.algebraic_loop is not None:
+        return BreakAnalysis(declared, Missing(solution.algebraic_loop.reason))
+    if declared.into is not None or declared.with_open:
+        return BreakAnalysis(declared, Missing(_ONE_USE, later=True))
+    found = opened(solution, declared.at)
+    if found.algebraic_loop is not None:
+        return BreakAnalysis(declared, Missing(found.algebraic_loop.reason), found)
+    if found.slow is None or found.reason is not None:
+        return BreakAnalysis(declared, Missing(found.reason or "", later=True))
+    slow = SlowTransfer(found.slow.numerator, found.slow.denominator)
+    loop = over_frequency(found)
+    return BreakAnalysis(declared, BreakSubject(slow, decided(found.stable), loop), found)

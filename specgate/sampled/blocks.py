@@ -1,0 +1,113 @@
+"""What a sampled loop is wired from: blocks in z with one period beside the blocks in s."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from functools import cached_property
+
+from flint import fmpq, fmpq_poly
+
+from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
+from specgate.terms.records import record
+
+
+@record
+class SampledBlock:
+    """A block that samples its inputs at t = kT and holds its outputs from kT + delay on.
+
+    outputs = numerators / denominator * samples of the inputs, in z, as written and proper; a missing pair is zero.
+    delay: computation and dead time together (s), not negative; it may be longer than a period.
+    """
+
+    name: str
+    inputs: tuple[str, ...]
+    outputs: tuple[str, ...]
+    numerators: Mapping[tuple[str, str], fmpq_poly]
+    denominator: fmpq_poly
+    delay: fmpq
+
+
+@record
+class SampledInstance:
+    """A sampled block applied to arguments (one linear form per input of the block)."""
+
+    name: str
+    block: SampledBlock
+    arguments: Mapping[str, LinearForm]
+
+    def held(self, output: str) -> str:
+        """Return the name of the signal that an output holds, an input of the continuous wiring."""
+        return held(self.name, output)
+
+
+def held(instance: str, output: str) -> str:
+    """Return the name under which the continuous wiring reads a held output."""
+    return f"{instance}.{output}"
+
+
+@record
+class SampledWiring:
+    """A loop whose sampled blocks share one period (s).
+
+    continuous: the blocks in s and the equations of all signals; the outputs of the sampled blocks are among its
+    inputs, named by `held`. In the arguments of the sampled blocks they go by these names too.
+    """
+
+    period: fmpq
+    continuous: Wiring
+    instances: tuple[SampledInstance, ...]
+
+    @cached_property
+    def inputs(self) -> tuple[str, ...]:
+        """The inputs of the loop itself."""
+        return tuple(name for name in self.continuous.inputs if name not in self._held)
+
+    @cached_property
+    def _held(self) -> Mapping[str, OutputRef]:
+        return {one.held(output): OutputRef(one.name, output) for one in self.instances for output in one.block.outputs}
+
+    @cached_property
+    def slow(self) -> Wiring:
+        """The loop with every sampled block replaced by what it is to slow signals, in s.
+
+        z stands for 1 + sT: near z = 1 the pulse transfer function of a held block G(s) is G(s) to leading order, so
+        that orders and leading coefficients at s = 0 are those of the sampled loop at z = 1. It has the graph, the
+        feed-through at the samples and the cancellations at z = 1 of the sampled loop, and nothing else of it.
+        """
+        step = fmpq_poly([1, self.period])
+        instances = [
+            *(
+                Instance(one.name, one.block, {name: self._joined(form) for name, form in one.arguments.items()})
+                for one in self.continuous.instances
+            ),
+            *(
+                Instance(
+                    one.name,
+                    Block(
+                        one.block.name,
+                        one.block.inputs,
+                        one.block.outputs,
+                        {pair: numerator(step) for pair, numerator in one.block.numerators.items()},
+                        one.block.denominator(step) * step ** whole_periods(one.block.delay, self.period),
+                    ),
+                    {name: self._joined(form) for name, form in one.arguments.items()},
+                )
+                for one in self.instances
+            ),
+        ]
+        signals = {name: self._joined(form) for name, form in self.continuous.signals.items()}
+        return Wiring(self.inputs, tuple(instances), signals)
+
+    def _joined(self, form: LinearForm) -> LinearForm:
+        """Return a form that reads sampled blocks themselves instead of what they hold."""
+        return LinearForm(
+            tuple(
+                (factor, self._held.get(node.name, node) if isinstance(node, SignalRef) else node)
+                for factor, node in form.terms
+            )
+        )
+
+
+def whole_periods(delay: fmpq, period: fmpq) -> int:
+    """Return after how many samples an output is first seen by a sampler: its delay in periods, rounded up."""
+    return int((delay / period).ceil())

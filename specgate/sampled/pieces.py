@@ -1,0 +1,212 @@
+"""The response of a sampled loop, at and between its samples, as smooth pieces from jump to jump."""
+
+from __future__ import annotations
+
+from functools import cached_property
+
+from flint import acb_mat, arb, arb_mat, fmpq, fmpq_mat
+
+from specgate.response.answers import Absent
+from specgate.response.modes import Expansion
+from specgate.response.pieces import Pieces
+from specgate.sampled.cycle import Cycle
+from specgate.sampled.decay import Decay, quadratic
+from specgate.sampled.drive import Drive, Setting
+from specgate.sampled.shapes import Shapes
+from specgate.sampled.state_space import Row
+from specgate.sampled.states import States
+from specgate.terms.precision import working_precision
+
+_GUARD = 96
+_KEPT = 4096
+_BOUND_BITS = 256
+
+
+class SampledPieces(Pieces):
+    """y = c z + d (what is held), z with the states of the drive last, from rest.
+
+    final: the limit of y, or why there is none. rest: the state at the samples that the loop comes to, where it does.
+    """
+
+    def __init__(self, cycle: Cycle, line: tuple[Row, Row], drive: Drive, final: fmpq | Absent, rest: Row) -> None:
+        self._cycle = cycle
+        self._line = line
+        self._drive = drive
+        self._final = final
+        self._rest = rest
+        self._shapes = Shapes(cycle.motion.a, cycle.motion.b, *line)
+        self._first = int((drive.starts[-1][0] / cycle.period).ceil())
+        self._ways: dict[int, list[arb_mat]] = {}
+        self._starts: dict[int, tuple[list[arb_mat], States]] = {}
+        self._expansions: dict[tuple[int, int], Expansion] = {}
+
+    # --- where the pieces are -----------------------------------------------------------------------------
+
+    @property
+    def final(self) -> fmpq | Absent:
+        """The limit of y, exact, or the reason why there is none."""
+        return self._final
+
+    @cached_property
+    def _early(self) -> list[tuple[fmpq, int, int]]:
+        """The pieces before the drive is set for the last time: start, period, stretch."""
+        found = []
+        sets = [time for time, _ in self._drive.starts]
+        for period in range(self._first):
+            begin = period * self._cycle.period
+            for number, stretch in enumerate(self._cycle.stretches):
+                start = begin + stretch.start
+                inside = [time for time in sets if start < time < start + stretch.length]
+                found += [(time, period, number) for time in [start, *inside]]
+        return found
+
+    def kink(self, index: int) -> fmpq:
+        """Return where piece `index` begins (s)."""
+        if index < len(self._early):
+            return self._early[index][0]
+        period, number = divmod(index - len(self._early), len(self._cycle.stretches))
+        return (self._first + period) * self._cycle.period + self._cycle.stretches[number].start
+
+    def speed(self, index: int) -> float:
+        """Return how fast the pieces vary (rad/s)."""
+        return self._shapes.speed
+
+    # --- what they are ------------------------------------------------------------------------------------
+
+    def derivatives(self, index: int, time: arb, bits: int) -> tuple[arb, arb, arb, arb]:
+        """Return balls of y, y', y'', y''' over a ball of times in the piece."""
+        expansion = self._expansion(index, bits)
+        start = self.kink(index)
+        with working_precision(expansion.bits):
+            return expansion.deviation(time - arb(start))
+
+    def _expansion(self, index: int, bits: int) -> Expansion:
+        key = (index, bits)
+        if key not in self._expansions:
+            if len(self._expansions) >= _KEPT:
+                self._expansions.clear()
+            self._expansions[key] = self._shapes.expansion(self._state(index, bits + _GUARD), bits + _GUARD)
+        return self._expansions[key]
+
+    def _state(self, index: int, bits: int) -> arb_mat:
+        """Return (z, what is held) at the start of a piece."""
+        early, states = self._from_start(bits)
+        if index < len(early):
+            return early[index]
+        period, number = divmod(index - len(early), len(self._cycle.stretches))
+        with working_precision(bits):
+            return self._way(bits)[number] * states.at(period)
+
+    def _way(self, bits: int) -> list[arb_mat]:
+        """Return for each stretch (z at its start, what is held on it) as rows over the state at the sample."""
+        if bits not in self._ways:
+            self._ways[bits] = self._cycle.ways(bits)
+        return self._ways[bits]
+
+    def _from_start(self, bits: int) -> tuple[list[arb_mat], States]:
+        """Return the states at the starts of the early pieces, and those at the samples from then on."""
+        if bits not in self._starts:
+            early, first = self._set_in_motion(bits)
+            self._starts[bits] = early, States(self._cycle.enclosed(bits), first, bits)
+        return self._starts[bits]
+
+    def _set_in_motion(self, bits: int) -> tuple[list[arb_mat], arb_mat]:
+        cycle, sets = self._cycle, dict(self._drive.starts)
+        found: list[arb_mat] = []
+        with working_precision(bits):
+            state = arb_mat(cycle.order, 1)
+            ends = [*(start for start, _, _ in self._early), self._first * cycle.period][1:]
+            moving = arb_mat(cycle.moving, 1)
+            for (start, _, number), end in zip(self._early, ends, strict=True):
+                self._set(moving, sets.get(start))
+                if cycle.stretches[number].start == 0 and start % cycle.period == 0:
+                    self._set(state, sets.get(start))
+                found.append(_stacked(moving, arb_mat(cycle.stretches[number].held) * state))
+                motion = arb_mat(cycle.motion_over(end - start, bits).tolist()[: cycle.moving])
+                moving = motion * found[-1]
+                if end % cycle.period == 0:
+                    state = _stacked(moving, arb_mat(cycle.settled_samples) * state)
+            self._set(state, sets.get(self._first * cycle.period))
+        return found, state
+
+    def _set(self, state: arb_mat, setting: Setting | None) -> None:
+        """Set the states of the drive, the last of those that move."""
+        first = self._cycle.moving - self._drive.order
+        for place, value in enumerate(setting or ()):
+            if value is not None:
+                state[first + place, 0] = arb(value)
+
+    # --- what is known of them for good ---------------------------------------------------------------------
+
+    def jump(self, index: int) -> fmpq | None:
+        """Return by how much y jumps at a kink, where that is told exactly."""
+        if index == 0:
+            state = self._exact_start()
+            held = self._cycle.stretches[0].held
+            at = [sum((held[i, j] * one for j, one in enumerate(state)), fmpq(0)) for i in range(int(held.nrows()))]
+            moving, direct = self._line
+            return sum((c * z for c, z in zip(moving, state, strict=False)), fmpq(0)) + sum(
+                (d * u for d, u in zip(direct, at, strict=True)), fmpq(0)
+            )
+        sets = any(time == self.kink(index) for time, _ in self._drive.starts)
+        return None if sets or any(entry != 0 for entry in self._line[1]) else fmpq(0)
+
+    def _exact_start(self) -> Row:
+        state = [fmpq(0)] * self._cycle.order
+        first = self._cycle.moving - self._drive.order
+        for place, value in enumerate(self._drive.starts[0][1]):
+            state[first + place] = fmpq(0) if value is None else value
+        return state
+
+    def settled_by(self, distance: fmpq) -> fmpq | None:
+        """Return a time from which on |y - final| <= distance is proved; None: none found."""
+        if isinstance(self._final, Absent) or self._decay is None:
+            return None
+        sample = self._decay.first_within(distance)
+        return None if sample is None else (self._first + sample) * self._cycle.period
+
+    def lasting(self) -> tuple[int, fmpq] | None:
+        """Return (0, time) where y is exactly at rest from a time on: all modes at z = 0, and rational."""
+        if self._dead_after is None:
+            return None
+        return 0, (self._first + self._dead_after) * self._cycle.period
+
+    @cached_property
+    def _dead_after(self) -> int | None:
+        exact = self._cycle.exact
+        if exact is None or isinstance(self._final, Absent) or self._first > 0:
+            return None
+        state = fmpq_mat(self._cycle.order, 1, self._exact_start())
+        rest = fmpq_mat(self._cycle.order, 1, self._rest)
+        for count in range(self._cycle.order + 1):
+            if state == rest:
+                return count
+            state = exact * state
+        return None
+
+    @cached_property
+    def _decay(self) -> Decay | None:
+        """The deviation from rest at the samples, the states of the drive left out."""
+        cycle, bits = self._cycle, _BOUND_BITS
+        drive = range(cycle.moving - self._drive.order, cycle.moving)
+        kept = [j for j in range(cycle.order) if j not in drive]
+        if not kept:
+            return None
+        _, states = self._from_start(bits)
+        with working_precision(bits):
+            whole = cycle.enclosed(bits).tolist()
+            matrix = arb_mat([[whole[i][j] for j in kept] for i in kept])
+            start = states.at(0)
+            first = arb_mat(len(kept), 1, [start[j, 0] - arb(self._rest[j]) for j in kept])
+            form = arb_mat(len(kept), len(kept))
+            for stretch, way in zip(cycle.stretches, self._way(bits), strict=True):
+                through = arb_mat([[row[j] for j in kept] for row in way.tolist()])
+                rows = [(pole, acb_mat(weights), stretch.length) for pole, weights in self._shapes.rows(bits)]
+                form = form + quadratic(rows, through)
+        return Decay(States(matrix, first, bits), form)
+
+
+def _stacked(above: arb_mat, below: arb_mat) -> arb_mat:
+    columns = max(int(above.ncols()), int(below.ncols()))
+    rows = [*above.tolist(), *below.tolist()]
+    return arb_mat(len(rows), columns, [entry for row in rows for entry in row])
