@@ -63,7 +63,7 @@ def sign(answer: Answer, bound: fmpq, at_limit: AtLimit | None = None) -> Sign |
     """Return the sign of answer minus bound; None where even the narrowest ball holds the bound."""
     if answer.exact is not None:
         return _sign_of_exact(answer.exact - bound)
-    bits, exactly = _FIRST, at_limit or answer.against
+    bits = _FIRST
     while bits <= HIGHEST:
         value = answer.enclose(bits)
         with working_precision(bits):
@@ -72,12 +72,17 @@ def sign(answer: Answer, bound: fmpq, at_limit: AtLimit | None = None) -> Sign |
                 return 1
             if difference < 0:
                 return -1
-        if bits == _EXACT_FROM and exactly is not None:
-            decided = exactly(bound)
+        if bits == _EXACT_FROM:
+            decided = _exactly(bound, at_limit, answer.against)
             if decided is not None:
                 return decided
         bits *= 2
     return None
+
+
+def _exactly(bound: fmpq, *predicates: AtLimit | None) -> Sign | None:
+    found = (predicate(bound) for predicate in predicates if predicate is not None)
+    return next((sign for sign in found if sign is not None), None)
 
 
 def worst(verdicts: Iterable[Verdict]) -> Verdict:

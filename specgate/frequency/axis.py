@@ -11,6 +11,7 @@ from functools import cached_property
 
 from flint import arb, fmpq, fmpq_poly
 
+from specgate.frequency.angles import equals_where
 from specgate.frequency.spots import Infinity, Rational, Sign, Spot, positive_roots
 from specgate.response.answers import Answer
 from specgate.systems.transfer import TransferFunction
@@ -69,7 +70,7 @@ class AxisFunction:
         """Return the angle of -L where L is neither zero nor infinite; at infinity L is real."""
         real, imaginary = self._direction(spot)
         if imaginary == 0:
-            return Turn(Answer.of_exact(0) if real < 0 else Answer(Proof.ENCLOSED, refine=_pi), 0)
+            return Turn(Answer.of_exact(0) if real < 0 else Answer(Proof.ENCLOSED, refine=_pi, against=_is_pi), 0)
 
         def refine(bits: int) -> arb:
             # |imaginary| omega over real, with the sign of real kept in the second argument of atan2
@@ -85,7 +86,13 @@ class AxisFunction:
                     return angle
                 precision *= 2
 
-        return Turn(Answer(Proof.ENCLOSED, refine=refine), 1 if imaginary < 0 else -1)
+        against = equals_where(lambda times: self._turns_round(spot, times))
+        return Turn(Answer(Proof.ENCLOSED, refine=refine, against=against), 1 if imaginary < 0 else -1)
+
+    def _turns_round(self, spot: Spot, times: int) -> bool:
+        """Whether so many times twice the angle of L are whole turns: cos 2t = 2 real^2/(|N|^2 |D|^2) - 1."""
+        whole = self.above * self.below
+        return spot.turns_round(2 * self.real * self.real - whole, whole, times)
 
     def _direction(self, spot: Spot) -> tuple[Sign, Sign]:
         """Return the signs of real and imaginary part of L."""
@@ -106,3 +113,6 @@ def along_the_axis(p: fmpq_poly) -> tuple[fmpq_poly, fmpq_poly]:
 def _pi(bits: int) -> arb:
     with working_precision(bits):
         return arb.pi()
+
+
+_is_pi = equals_where(lambda times: times == 1)

@@ -58,6 +58,13 @@ def order(first: Answer, second: Answer) -> Sign | None:
     return None
 
 
+def order_of(first: Answer, second: Answer) -> int:
+    """Return the order of two frequencies, infinite ones last; 0 where they are not told apart."""
+    if first.absent is not None or second.absent is not None:
+        return (first.absent is not None) - (second.absent is not None)
+    return order(first, second) or 0
+
+
 def _exactly(first: Answer, second: Answer) -> Sign | None:
     if second.exact is not None and first.against is not None:
         return first.against(second.exact)

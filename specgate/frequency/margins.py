@@ -12,7 +12,8 @@ from functools import cmp_to_key
 
 from flint import arb
 
-from specgate.frequency.choose import Candidate, least, order
+from specgate.frequency.angles import the_way_round
+from specgate.frequency.choose import Candidate, least, order_of
 from specgate.frequency.questions import Crossing, Direction
 from specgate.frequency.spots import Sign
 from specgate.frequency.values import quotient, reciprocal
@@ -54,10 +55,7 @@ def described(gain: Sequence[GainCrossing], phase: Sequence[PhaseCrossing]) -> t
 
 
 def _by_frequency(first: Crossing, second: Crossing) -> int:
-    one, other = first.frequency, second.frequency
-    if one.absent is not None or other.absent is not None:
-        return (one.absent is not None) - (other.absent is not None)
-    return order(one, other) or 0
+    return order_of(first.frequency, second.frequency)
 
 
 def gain_margin(crossings: Sequence[PhaseCrossing], *directions: Direction) -> Answer:
@@ -118,4 +116,4 @@ def _turned(crossing: GainCrossing, direction: Direction) -> Answer:
         with working_precision(bits + 8):
             return 2 * arb.pi() - ball
 
-    return Answer(Proof.ENCLOSED, refine=refine)
+    return Answer(Proof.ENCLOSED, refine=refine, against=the_way_round(turn.against))

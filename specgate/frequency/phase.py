@@ -12,6 +12,7 @@ from collections.abc import Iterator
 
 from flint import arb, fmpq, fmpq_poly
 
+from specgate.frequency.angles import equals_where
 from specgate.frequency.axis import AxisFunction, along_the_axis
 from specgate.response.answers import Answer
 from specgate.systems.polynomials import order_at_origin
@@ -44,7 +45,20 @@ def phase_at(axis: AxisFunction, frequency: fmpq) -> Answer:
                 return angle
             precision *= 2
 
-    return Answer(Proof.ENCLOSED, refine=refine)
+    return Answer(
+        Proof.ENCLOSED, refine=refine, against=equals_where(lambda times: _turns_round(axis, frequency, times))
+    )
+
+
+def _turns_round(axis: AxisFunction, frequency: fmpq, times: int) -> bool:
+    """Whether so many half turns of the angle are whole ones: of rational parts only multiples of 45 deg are."""
+    square = frequency * frequency
+    real, imaginary = axis.real(square), frequency * axis.imaginary(square)
+    if imaginary == 0:
+        return True
+    if real == 0:
+        return times % 2 == 0
+    return bool(abs(real) == abs(imaginary) and times % 4 == 0)
 
 
 def _vanishes(p: fmpq_poly, frequency: fmpq) -> bool:

@@ -21,6 +21,7 @@ from flint import fmpq
 from specgate.frequency import margins
 from specgate.frequency.axis import AxisFunction, along_the_axis
 from specgate.frequency.choose import Candidate, least
+from specgate.frequency.fragile import Watch, tangencies
 from specgate.frequency.magnitude import Magnitude, origin, roots, wronskian
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.masks import inside
@@ -34,6 +35,9 @@ from specgate.response.questions import Mask
 from specgate.systems.transfer import TransferFunction
 
 UNSTABLE = "the closed loop is not stable as it is: there is nothing that a margin could be left to"
+
+_BY_GAIN = "less than 1 % in the gain"
+_BY_PHASE = "less than 0.6 deg in the phase"
 
 _ORIGIN, _INFINITY = Rational(fmpq(0)), Infinity()
 
@@ -128,17 +132,41 @@ class RationalLoop:
         """Return all crossings, by frequency."""
         return margins.described(self._gain_crossings(over), self._phase_crossings(over))
 
+    @cached_property
+    def _near_gain(self) -> Watch[GainCrossing]:
+        """Where a change of the gain by 1 % would create or remove points with |L| = 1."""
+        above, below = self.axis.above, self.axis.below
+        excess = above - below
+
+        def near(spot: Spot) -> bool:
+            return spot.sign(50 * excess - below) <= 0 <= spot.sign(50 * excess + below)
+
+        return Watch(_BY_GAIN, self._all_gain_crossings, tangencies(excess, near), self._gain_crossing)
+
+    @cached_property
+    def _near_phase(self) -> Watch[PhaseCrossing]:
+        """Where a change of the phase by 1/100 rad would create or remove points with L real and negative."""
+        real, imaginary = self.axis.real, self.axis.imaginary
+
+        def near(spot: Spot) -> bool:
+            return spot.sign(real) < 0 and spot.sign(10**4 * X * imaginary**2 - real**2) <= 0
+
+        return Watch(_BY_PHASE, self._all_phase_crossings, tangencies(imaginary, near), self._phase_crossing)
+
     # --- margins ------------------------------------------------------------------------------------------
 
     def _gain_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
             return self._unstable
-        return margins.gain_margin(self._phase_crossings(over), *directions)
+        crossings = self._phase_crossings(over)
+        found = margins.gain_margin(crossings, *directions)
+        return found if over else self._near_phase.warned(found, lambda some: margins.gain_margin(some, *directions))
 
     def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
             return self._unstable
-        return margins.phase_margin(self._gain_crossings(over), *directions)
+        found = margins.phase_margin(self._gain_crossings(over), *directions)
+        return found if over else self._near_gain.warned(found, lambda some: margins.phase_margin(some, *directions))
 
     def gain_margin_up(self, over: Range | None = None) -> Answer:
         """Return the least factor k > 1 such that k L is at the limit."""
@@ -172,7 +200,8 @@ class RationalLoop:
         far = self._far_value
         if over is None and top.absent is not None and (far is None or abs(far) >= 1):
             return replace(Answer.of_exact(0), at={"frequency": top})
-        return margins.delay_margin(self._gain_crossings(over))
+        found = margins.delay_margin(self._gain_crossings(over))
+        return found if over else self._near_gain.warned(found, margins.delay_margin)
 
     # --- peaks and frequencies ----------------------------------------------------------------------------
 

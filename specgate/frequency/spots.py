@@ -18,6 +18,7 @@ from typing import Literal, Protocol, cast
 
 from flint import acb, arb, fmpq, fmpq_poly, fmpz_poly
 
+from specgate.frequency.chebyshev import chebyshev_modulo
 from specgate.frequency.newton import Function, Zero
 from specgate.response.answers import Answer
 from specgate.systems.polynomials import order_at_origin, primitive
@@ -29,6 +30,9 @@ Sign = Literal[-1, 0, 1]
 _FIRST = 64
 _EXACT_FROM = 256
 """Bits at which a polynomial that may vanish at a root is looked at by its greatest common divisor with the other."""
+
+_NIVEN = (-2, -1, 0, 1, 2)
+"""Twice the rational cosines of rational parts of a turn (Niven 1956, theorem 6.16)."""
 
 _MOST = 16 * HIGHEST
 """Bits beyond which even the sign of a number that is not zero is given up; no polynomial of sane size gets there."""
@@ -45,6 +49,9 @@ class Spot(Protocol):
 
     def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
         """Return p(x) / q(x), q(x) not zero; at infinity its limit, which has to be finite."""
+
+    def turns_round(self, p: fmpq_poly, q: fmpq_poly, times: int) -> bool:
+        """Return whether the cosine p(x) / q(x) is that of an angle of which so many times are whole turns."""
 
 
 class Rational:
@@ -66,6 +73,11 @@ class Rational:
         """Return p(x) / q(x), exactly."""
         return Answer.of_exact(p(self.x) / q(self.x))
 
+    def turns_round(self, p: fmpq_poly, q: fmpq_poly, times: int) -> bool:
+        """Return whether T_times(p/q) = 1: a rational cosine goes with a rational part of a turn only at 0, 1/2, 1."""
+        cosine = p(self.x) / q(self.x)
+        return bool(fmpq_poly(fmpz_poly.chebyshev_t(times))(cosine) == 1) if 2 * cosine in _NIVEN else False
+
 
 class Infinity:
     """The far end of the axis."""
@@ -85,6 +97,10 @@ class Infinity:
         if p.degree() < q.degree():
             return Answer.of_exact(0)
         return Answer.of_exact(p.leading_coefficient() / q.leading_coefficient())
+
+    def turns_round(self, p: fmpq_poly, q: fmpq_poly, times: int) -> bool:
+        """Return whether the limit of p/q is such a cosine: L is real at infinity."""
+        return p.degree() == q.degree() and p.leading_coefficient() == q.leading_coefficient()
 
 
 class Root:
@@ -150,6 +166,13 @@ class Root:
             return cast("Sign", self.sign(p - q * limit) * self.sign(q))
 
         return Answer(Proof.ENCLOSED, refine=refine, against=against)
+
+    def turns_round(self, p: fmpq_poly, q: fmpq_poly, times: int) -> bool:
+        """Return whether T_times(p/q) = 1 at the root, in the rationals modulo what is left of f without roots of q."""
+        modulus = fmpq_poly(self._polynomial)
+        modulus //= modulus.gcd(q)
+        _, inverse, _ = (q % modulus).xgcd(modulus)
+        return self.sign(chebyshev_modulo(times, p * inverse % modulus, modulus) - 1) == 0
 
 
 def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:

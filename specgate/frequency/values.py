@@ -74,3 +74,16 @@ def quotient(above: Answer, below: Answer) -> Answer:
             return numerator / denominator
 
     return Answer(Proof.ENCLOSED, refine=refine)
+
+
+def scaled(value: Answer, factor: fmpq) -> Answer:
+    """Return factor * value, factor > 0."""
+    if value.exact is not None:
+        return Answer.of_exact(value.exact * factor)
+
+    def refine(bits: int) -> arb:
+        ball = value.enclose(bits + 8)
+        with working_precision(bits + 8):
+            return ball * factor
+
+    return Answer(Proof.ENCLOSED, refine=refine)

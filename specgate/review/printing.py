@@ -137,12 +137,18 @@ def _result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Rea
     if answer.absent is not None:
         infinite = True if answer.absent.infinite else None
         return Result(
-            None, proof=answer.proof.value if infinite else None, reason=answer.absent.reason, infinite=infinite
+            None,
+            proof=answer.proof.value if infinite else None,
+            reason=answer.absent.reason,
+            infinite=infinite,
+            fragile=None if unit is None else _fragile(answer.fragile, unit),
         )
     if answer.truth is not None:
         return Result(answer.truth, proof=answer.proof.value)
     if unit is None:
         return _counted(answer)
+    if unit.kind == "decibel" and answer.exact == 0:
+        return Result(None, proof=answer.proof.value, reason="the gain is zero, which no number of decibels is")
     try:
         form = _form(reading.in_unit(unit), scale)
     except OverflowError as problem:
