@@ -8,6 +8,7 @@ from flint import arb, fmpq, fmpq_poly
 
 from specgate.frequency.spots import Infinity, Rational, Sign, Spot
 from specgate.response.answers import Answer
+from specgate.systems.polynomials import ONE
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Proof
 
@@ -119,3 +120,8 @@ class Tangent:
                 precision *= 2
 
         return Answer(Proof.ENCLOSED, refine=refine)
+
+    def turns_round(self, p: fmpq_poly, q: fmpq_poly, times: int) -> bool:
+        """Return whether p/q is the cosine of a whole part of a turn: it is transcendental, unless it is constant."""
+        constant = p.leading_coefficient() / q.leading_coefficient() if p else fmpq(0)
+        return p == q * constant and Rational(fmpq(0)).turns_round(fmpq_poly([constant]), ONE, times)
