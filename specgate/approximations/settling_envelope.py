@@ -20,11 +20,13 @@ from specgate.response.answers import Answer
 
 _WIDEST = fmpq(1, 20)
 _ACCURACY: dict[fmpq, Ranges] = {
-    fmpq(1, 100): ((0, 496), (-147, 595), (-165, 720)),
-    fmpq(1, 50): ((0, 560), (-168, 687), (-190, 850)),
-    _WIDEST: ((0, 683), (-209, 875), (-235, 1100)),
+    fmpq(1, 100): ((0, 496), (-147, 600), (-147, 730)),
+    fmpq(1, 50): ((0, 560), (-169, 690), (-169, 860)),
+    _WIDEST: ((0, 683), (-209, 885), (-209, 1150)),
 }
-"""Thousandths, for bands up to so much: pair alone; crowded by at most 0.2; by at most 0.4."""
+"""Thousandths, for bands up to so much: pair alone; crowded by at most 0.2; by at most 0.4.
+
+The lower ends follow from the premise: an amplitude of at most 2.2 times that of the pair alone, ln(2.2) later."""
 
 
 def _settling(features: Features, arguments: Arguments) -> Answer:

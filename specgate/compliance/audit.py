@@ -82,7 +82,7 @@ def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
         started,
         variant=chained.row.variant,
         read=chained.links[-1] if chained.nothing is None else None,
-        conditions=tuple(one for link in chained.links for one in _audited(link, matter.arguments, policy)),
+        conditions=tuple(_union(chained, matter.arguments, policy)),
     )
     audited = _evaluated(audited, chained, matter)
     return _offered(_stood(audited, chained.row, matter), matter, policy)
@@ -110,6 +110,18 @@ def audit_beyond(basis: Basis, beyond: str, reading: Reading, values: Values, un
 
 
 # --- 1: does it apply ---------------------------------------------------------------------------------------
+
+
+def _union(chained: Linked, arguments: Arguments, policy: Policy) -> Iterator[AuditedCondition]:
+    """Yield the conditions of all links; one that holds for two of them is said once."""
+    held: set[tuple[str, str]] = set()
+    for link in chained.links:
+        for one in _audited(link, arguments, policy):
+            name = one.approximation, one.condition.key
+            if name not in held or one.found.holds is not Trilean.YES:
+                yield one
+            if one.found.holds is Trilean.YES:
+                held.add(name)
 
 
 def _audited(link: Link, arguments: Arguments, policy: Policy) -> Iterator[AuditedCondition]:
@@ -226,6 +238,8 @@ def _standing(audited: Audit, row: Approximation, matter: Matter) -> tuple[Stand
         return Standing.INCONCLUSIVE, "no accuracy is stated for this formula with these arguments"
     if _leaves_open(audited.implied, matter.limits):
         low, high = apart([Reading.once(end).in_unit(matter.unit) for end in audited.implied], matter.unit)
+        if audited.implied[1].absent is not None:
+            return Standing.INCONCLUSIVE, f"it leaves {low} or more for the truth, and the limit lies above that"
         reason = f"its accuracy leaves {low} to {high} for the truth, and the limit lies between them"
         return Standing.INCONCLUSIVE, reason
     return Standing.SOUND, None
