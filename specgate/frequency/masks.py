@@ -3,8 +3,8 @@
 In omega everything is a polynomial with rational coefficients: with a(omega) = |N|^2 and b(omega) = |D|^2, an upper
 edge e(omega) >= 0 holds where e^2 b - a >= 0, a lower one where a - e^2 b >= 0. A straight edge is a polynomial
 itself; one that is straight in dB over log omega is a power of omega, e^2 = r^2 (omega/w)^q, a polynomial (or one over
-one) where q is a whole number: a multiple of 10 dB per decade. Between neighbouring roots the sign is that at any point
-between.
+one) where q is a whole number: a multiple of 10 dB per decade; other powers are decided in balls (`slopes`). Between
+neighbouring roots the sign is that at any point between.
 """
 
 from __future__ import annotations
@@ -18,6 +18,7 @@ from flint import fmpq, fmpq_poly
 
 from specgate.frequency.choose import Candidate, least
 from specgate.frequency.scale import X
+from specgate.frequency.slopes import NotTold, Room, Slope, first_violation
 from specgate.frequency.spots import Rational, Root, Sign, Spot, positive_roots, sign_of
 from specgate.frequency.values import root_of
 from specgate.response.answers import Answer
@@ -25,13 +26,14 @@ from specgate.response.questions import Mask, Points
 from specgate.systems.polynomials import ONE
 from specgate.terms.precision import working_precision
 from specgate.terms.records import record
+from specgate.terms.verdicts import Proof
 
 Side = Literal["upper", "lower"]
 
 _STEEPEST = 40
 """Greatest power of frequency that an edge may follow (400 dB per decade)."""
 
-_SLOPE = "an edge of the mask that is no multiple of 10 dB per decade is not decided by this version"
+_NEAR = "the gain is so near to the mask that it is not told on which side it is"
 
 
 @record
@@ -47,49 +49,70 @@ class Edge:
 
 def inside(above: fmpq_poly, below: fmpq_poly, mask: Mask) -> Answer:
     """Return whether sqrt(above/below), polynomials in x = omega^2, stays inside; `at` has the first violation."""
-    over_frequency = (above(X * X), below(X * X))
+    sides: tuple[tuple[Side, Points], ...] = (("upper", mask.upper), ("lower", mask.lower))
     found = []
-    for side, points in (("upper", mask.upper), ("lower", mask.lower)):
-        for edge in _edges("upper" if side == "upper" else "lower", points, mask):
-            if edge is None:
-                return Answer.undecided(_SLOPE)
-            spot = _first_violation(edge, *over_frequency)
-            if spot is not None:
-                found.append(Candidate(spot.ratio(X, ONE), _described(edge, spot, *over_frequency)))
+    try:
+        for side, points in sides:
+            for edge in _edges(side, points, logarithmic=mask.logarithmic, forever=mask.forever):
+                violation = _first_violation(edge, above, below)
+                if violation is not None:
+                    found.append(violation)
+    except NotTold:
+        return Answer.undecided(_NEAR)
     first = least(found)
     if first is None:
         return Answer.of_truth(True)
     return replace(Answer.of_truth(False), at={"frequency": first.value, **first.at})
 
 
-def _described(edge: Edge, spot: Spot, above: fmpq_poly, below: fmpq_poly) -> dict[str, Answer | str]:
-    limit = {"limit": root_of(spot.ratio(edge.above, edge.below))}
-    return {**limit} if spot.sign(below) == 0 else {"value": root_of(spot.ratio(above, below)), **limit}
-
-
-def _edges(side: Side, points: Points, mask: Mask) -> Iterator[Edge | None]:
-    """Give the pieces of one side; None for one that is not algebraic."""
+def _edges(side: Side, points: Points, *, logarithmic: bool, forever: bool) -> Iterator[Edge | tuple[Side, Slope]]:
+    """Give the pieces of one side."""
     for (start, first), (end, second) in pairwise(points):
         if start < end:
-            yield _edge(side, (start, first), (end, second), logarithmic=mask.logarithmic)
-    if points and (mask.forever or len(points) == 1):
+            yield _edge(side, (start, first), (end, second), logarithmic=logarithmic)
+    if points and (forever or len(points) == 1):
         start, level = points[-1]
-        yield Edge(side, start, None if mask.forever else start, fmpq_poly([level * level]), ONE)
+        yield Edge(side, start, None if forever else start, fmpq_poly([level * level]), ONE)
 
 
-def _edge(side: Side, first: tuple[fmpq, fmpq], second: tuple[fmpq, fmpq], *, logarithmic: bool) -> Edge | None:
+def _edge(
+    side: Side, first: tuple[fmpq, fmpq], second: tuple[fmpq, fmpq], *, logarithmic: bool
+) -> Edge | tuple[Side, Slope]:
     (start, low), (end, high) = first, second
     if low == high or not logarithmic:
         slope = (high - low) / (end - start)
         line = fmpq_poly([low - slope * start, slope])
         return Edge(side, start, end, line * line, ONE)
-    if start == 0 or low == 0 or high == 0:
-        return None
+    if start == 0:
+        raise NotTold  # no line over the logarithm of frequency begins at zero
     power = _power((high / low) ** 2, end / start)
     if power is None:
+        return side, Slope(start, end, low, high)
+    return Edge(side, start, end, X ** max(0, power) * (low * low / start**power), X ** max(0, -power))
+
+
+def _first_violation(edge: Edge | tuple[Side, Slope], above: fmpq_poly, below: fmpq_poly) -> Candidate | None:
+    """Return where the gain first lies outside (an infimum), or None where it nowhere does. Raises NotTold."""
+    if isinstance(edge, Edge):
+        over_frequency = (above(X * X), below(X * X))
+        spot = _algebraic_violation(edge, *over_frequency)
+        return None if spot is None else Candidate(spot.ratio(X, ONE), _described(edge, spot, *over_frequency))
+    side, slope = edge
+    frequency = first_violation(Room(slope, above, below, 1 if side == "upper" else -1))
+    if frequency is None:
         return None
-    scale = low * low / start**power
-    return Edge(side, start, end, X ** max(0, power) * scale, X ** max(0, -power))
+    if frequency.exact is not None:
+        x = frequency.exact * frequency.exact
+        value = {} if below(x) == 0 else {"value": root_of(Answer.of_exact(above(x) / below(x)))}
+        return Candidate(frequency, {**value, "limit": Answer.of_exact(slope.low)})
+    # where the gain crosses the edge, both are one
+    crossed = root_of(Answer(Proof.ENCLOSED, refine=lambda bits: slope.square(frequency.enclose(bits + 16), bits + 16)))
+    return Candidate(frequency, {"value": crossed, "limit": crossed})
+
+
+def _described(edge: Edge, spot: Spot, above: fmpq_poly, below: fmpq_poly) -> dict[str, Answer | str]:
+    limit = {"limit": root_of(spot.ratio(edge.above, edge.below))}
+    return {**limit} if spot.sign(below) == 0 else {"value": root_of(spot.ratio(above, below)), **limit}
 
 
 def _power(rise: fmpq, step: fmpq) -> int | None:
@@ -103,7 +126,7 @@ def _power(rise: fmpq, step: fmpq) -> int | None:
     return None
 
 
-def _first_violation(edge: Edge, above: fmpq_poly, below: fmpq_poly) -> Spot | None:
+def _algebraic_violation(edge: Edge, above: fmpq_poly, below: fmpq_poly) -> Spot | None:
     """Return where the gain first lies outside (an infimum), or None where it nowhere does."""
     room = edge.above * below - above * edge.below
     room = room if edge.side == "upper" else -room
