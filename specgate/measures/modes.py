@@ -6,7 +6,7 @@ from collections.abc import Callable, Mapping
 
 from flint import acb, arb, fmpq, fmpq_poly
 
-from specgate.measures.measure import Argument, Arguments, Comparer, Measure, UnitRule
+from specgate.measures.measure import Argument, Arguments, Comparer, Measure, Reader, UnitRule
 from specgate.measures.reading import decided
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
@@ -18,29 +18,32 @@ from specgate.systems.regions import (
     compare_decay_rate,
     compare_natural_frequency,
 )
+from specgate.systems.ring import in_ring
 from specgate.systems.roots import Root, certified_roots
-from specgate.terms.precision import working_precision
+from specgate.terms.precision import HIGHEST, working_precision
 
 _NO_POLES = "the loop has no dynamics: there is no pole"
 
 
-def _well_posed(read: Callable[[LoopSubject], Answer]) -> Callable[[LoopSubject, Arguments], Answer]:
+def _well_posed(read: Reader) -> Reader:
     """Leave every question open on a loop whose signals are not determined."""
 
-    def reader(subject: LoopSubject, _: Arguments) -> Answer:
+    def reader(subject: LoopSubject, arguments: Arguments) -> Answer:
         if subject.solution.algebraic_loop is not None:
             return Answer.undecided(subject.solution.algebraic_loop.reason)
-        return read(subject)
+        return read(subject, arguments)
 
     return reader
 
 
-def _stable(subject: LoopSubject) -> Answer:
+def _stable(subject: LoopSubject, _: Arguments) -> Answer:
     return decided(subject.solution.stable)
 
 
 def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
-    def comparer(subject: LoopSubject, _: Arguments, limit: fmpq) -> Sign | None:
+    def comparer(subject: LoopSubject, arguments: Arguments, limit: fmpq) -> Sign | None:
+        if arguments.over is not None:
+            return None  # the predicates are about all poles
         solution = subject.solution
         modes = None if isinstance(solution, SampledSolution) else solution.determinant
         return compare(modes, limit) if isinstance(modes, fmpq_poly) else None
@@ -48,26 +51,52 @@ def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
     return comparer
 
 
-def _over_poles(subject: LoopSubject, of: Callable[[acb], arb], which: Callable[[acb], bool], reason: str) -> Answer:
-    """Return the smallest value of `of` over the poles that `which` picks, or `reason` where there is none."""
+def _over_poles(
+    subject: LoopSubject,
+    arguments: Arguments,
+    of: Callable[[acb], arb],
+    which: Callable[[acb], bool],
+    reason: str,
+) -> Answer:
+    """Return the smallest value of `of` over the poles that `which` picks, or `reason` where there is none.
+
+    A range of frequencies picks the poles p with low <= |p| <= high.
+    """
     solution = subject.solution
     if isinstance(solution, SampledSolution):
+        if arguments.over is not None:
+            return Answer.undecided("a range (`over`) of the modes of a sampled loop is not answered by this version")
         return least_over_modes(solution, of, _OF_SAMPLED[which], reason)
     polynomial = solution.determinant
     if not isinstance(polynomial, fmpq_poly):
         return Answer.undecided("the loop has a dead time, and endlessly many poles")
 
+    picked = _picked(polynomial, arguments.over, which)
+    if picked is None:
+        return Answer.undecided(f"it is not told at {HIGHEST} bits which poles lie in the range")
+    if not any(picked):
+        return Answer.nothing(reason if arguments.over is None else f"in this range of frequencies, {reason}")
+
     def refine(bits: int) -> arb:
         poles = [root.value for root in certified_roots(polynomial, bits + 16)]
         with working_precision(bits + 16):
-            first, *rest = (of(pole) for pole in poles if which(pole))
+            first, *rest = (of(pole) for pole, counts in zip(poles, picked, strict=True) if counts)
             for value in rest:
                 first = first.min(value)
             return first
 
-    if not any(which(root.value) for root in certified_roots(polynomial, 64)):
-        return Answer.nothing(reason)
     return Answer.of_ball(refine)
+
+
+def _picked(
+    polynomial: fmpq_poly, over: tuple[fmpq, fmpq] | None, which: Callable[[acb], bool]
+) -> tuple[bool, ...] | None:
+    """Return of each pole whether it counts; None if not decided."""
+    fitting = tuple(which(root.value) for root in certified_roots(polynomial, 64))
+    if over is None:
+        return fitting
+    inside = in_ring(polynomial, *over)
+    return None if inside is None else tuple(one and other for one, other in zip(fitting, inside, strict=True))
 
 
 def _away_from_origin(pole: acb) -> bool:
@@ -94,19 +123,23 @@ def _damping(pole: acb) -> arb:
     return -pole.real / abs(pole)
 
 
-def _damping_ratio(subject: LoopSubject) -> Answer:
-    return _over_poles(subject, _damping, _away_from_origin, "the loop has no pole away from the origin")
+def _damping_ratio(subject: LoopSubject, given: Arguments) -> Answer:
+    return _over_poles(subject, given, _damping, _away_from_origin, "the loop has no pole away from the origin")
 
 
-def _natural_frequency(subject: LoopSubject) -> Answer:
-    return _over_poles(subject, abs, _oscillatory, "the loop has no oscillating mode (no complex pair of poles)")
+def _natural_frequency(subject: LoopSubject, given: Arguments) -> Answer:
+    return _over_poles(subject, given, abs, _oscillatory, "the loop has no oscillating mode (no complex pair of poles)")
 
 
-def _decay_rate(subject: LoopSubject) -> Answer:
-    return _over_poles(subject, lambda pole: -pole.real, _any, _NO_POLES)
+def _decay_rate(subject: LoopSubject, given: Arguments) -> Answer:
+    return _over_poles(subject, given, lambda pole: -pole.real, _any, _NO_POLES)
 
 
-_RANGE = (Argument("over", "range", "range of natural frequencies of the poles that count; all unless given"),)
+_RANGE = (
+    Argument(
+        "over", "range", "range of frequencies: only poles p with |p| in it count, its ends included; all unless given"
+    ),
+)
 _ROOTS = "enclosed: certified roots of det P(s); equality with a limit decided in rational arithmetic"
 
 ROWS = (

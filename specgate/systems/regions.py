@@ -36,7 +36,7 @@ def compare_damping_ratio(p: fmpq_poly, limit: fmpq) -> Sign | None:
     powers of the direction are Chebyshev polynomials of -z (de Moivre), so that real and imaginary part of p(r) are
     polynomials in t with rational coefficients, the latter up to its root factor.
     """
-    distinct = _distinct(p.right_shift(order_at_origin(p)))
+    distinct = each_once(p.right_shift(order_at_origin(p)))
     _require(distinct.degree() > 0)
     if abs(limit) > 1:
         return -1 if limit > 1 else 1
@@ -50,11 +50,11 @@ def compare_natural_frequency(p: fmpq_poly, limit: fmpq) -> Sign | None:
     Raises ValueError if every root is real. The circle |r| = limit becomes the imaginary axis of x in
     r = limit (1 + x)/(1 - x); its real points become zero and infinity and do not count.
     """
-    distinct = _distinct(p)
+    distinct = each_once(p)
     _require(any(not root.value.imag.is_zero() for root in certified_roots(distinct, 64)))
     if limit <= 0:
         return 1
-    count = classify(_circle_to_axis(distinct, limit))
+    count = classify(circle_to_axis(distinct, limit))
     on_circle = (count.axis - count.origin) // 2
     return _least_sign(distinct, lambda r: abs(r) - limit, lambda r: r.imag > 0, on_circle)
 
@@ -64,7 +64,7 @@ def _require(has_roots: bool) -> None:
         raise ValueError("there is no root to compare")
 
 
-def _distinct(p: fmpq_poly) -> fmpq_poly:
+def each_once(p: fmpq_poly) -> fmpq_poly:
     """Return the polynomial with each root of `p` once."""
     return p // p.gcd(p.derivative()) if p.degree() > 0 else p
 
@@ -84,7 +84,7 @@ def _on_ray(p: fmpq_poly, damping: fmpq) -> fmpq_poly:
     return real.gcd(imaginary)
 
 
-def _circle_to_axis(p: fmpq_poly, radius: fmpq) -> fmpq_poly:
+def circle_to_axis(p: fmpq_poly, radius: fmpq) -> fmpq_poly:
     """Return (1 - x)^n p(radius (1 + x)/(1 - x))."""
     above, below = fmpq_poly([radius, radius]), fmpq_poly([1, -1])
     result, power = fmpq_poly(), ONE

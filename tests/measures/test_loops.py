@@ -62,6 +62,26 @@ def test_least_damped_slowest(read: Read) -> None:
     assert at_limit("natural_frequency", modes, fmpq(2)) == 1
 
 
+def test_a_range_of_frequencies(read: Read) -> None:
+    """Poles -0.1, -1 +- 2j (at sqrt 5), -3 +- 4j (at 5) and -5: both ends of a range count."""
+    factors = highest_first([1, fmpq(1, 10)]) * highest_first([1, 2, 5]) * highest_first([1, 6, 25])
+    modes = open_loop(list(reversed((factors * highest_first([1, 5])).coeffs())))
+    fast = (fmpq(3), fmpq(5))
+    assert close(read("damping_ratio", modes, over=fast), lambda: arb(fmpq(3, 5)))
+    assert close(read("natural_frequency", modes, over=fast), lambda: arb(5))
+    assert close(read("decay_rate", modes, over=fast), lambda: arb(3))
+    assert close(read("decay_rate", modes, over=(fmpq(0), fmpq(1))), lambda: arb(fmpq(1, 10)))
+    assert close(read("decay_rate", modes, over=(fmpq(5), fmpq(5))), lambda: arb(3))
+    assert close(read("natural_frequency", modes, over=(fmpq(1), fmpq(9))), lambda: arb(5).sqrt())
+    nothing = read("natural_frequency", modes, over=(fmpq(0), fmpq(1))).absent
+    assert nothing is not None
+    assert nothing.proved
+    assert read("decay_rate", modes, over=(fmpq(5) + fmpq(1, 10**30), fmpq(9))).absent is not None
+    compare = MEASURES["decay_rate"].at_limit
+    assert compare is not None
+    assert compare(modes, Arguments(over=fast), fmpq(1, 10)) is None
+
+
 @pytest.mark.parametrize(("limit", "sign"), [(fmpq(1, 2), 0), (fmpq(499, 1000), 1), (fmpq(501, 1000), -1)])
 def test_a_damping_ratio_of_exactly_one_half(limit: fmpq, sign: int) -> None:
     assert at_limit("damping_ratio", open_loop([1, 1, 1]), limit) == sign
