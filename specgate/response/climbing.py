@@ -49,24 +49,39 @@ class Ceiling:
 
         Kinks are looked at from both sides where y may jump. A piece on which y rests is what it is at its begin.
         """
-        for index, begin, end in self._ground.kinks(until):
-            if end is not None and end <= since:
-                continue
-            left, right = max(begin, since), until if end is None else min(end, until)
-            if begin < since or self._order > 0 or self._ground.pieces.jump(index) != 0:
-                self._candidate(index, left)
-            degree = self._degree(index)
-            if degree > 0:
-                self._candidate(index, right)
-            for root in self._ground.roots(index, begin, end, until):
-                near, far = max(root.left, since), min(root.right, until)
-                if degree > 1 and near < far and not self._starts_one_way(root):
-                    whole = near == root.left and far == root.right
-                    self._push(root if whole else Patch(root.pieces, index, near, far))
+        index, last = self._ground.span(since, until)
+        likely = self._ground.pieces.likely(index + 1, last, self._order, self._sign)
+        if likely is not None:
+            self._raise(Peak(self._ground.pieces, self._order, self._sign, self._begin(likely)).height(_FIRST))
+        while index <= last:
+            calm = self._ground.pieces.calm(index, self._order, self._sign, self.best.fmpq())
+            if calm == 0:
+                self._take(index, since, until)
+            index += max(calm, 1)
         self._search()
+
+    def _begin(self, index: int) -> Instant:
+        return Instant(index, self._ground.ends(index)[0])
+
+    def _take(self, index: int, since: fmpq, until: fmpq) -> None:
+        """Take up the ends of a piece and what lies between them."""
+        begin, end = self._ground.ends(index)
+        left, right = max(begin, since), until if end is None else min(end, until)
+        if begin < since or self._order > 0 or self._ground.pieces.jump(index) != 0:
+            self._candidate(index, left)
+        degree = self._degree(index)
+        if degree > 0:
+            self._candidate(index, right)
+        for root in self._ground.roots(index, begin, end, until):
+            near, far = max(root.left, since), min(root.right, until)
+            if degree > 1 and near < far and not self._starts_one_way(root):
+                whole = near == root.left and far == root.right
+                self._push(root if whole else Patch(root.pieces, index, near, far))
 
     def _degree(self, index: int) -> int:
         """Return the degree of the derivative that is searched on a piece, 2 for all but constant and straight ones."""
+        if self._ground.pieces.flat(index):
+            return 0
         polynomial = self._ground.pieces.polynomial(index)
         return 2 if polynomial is None else min(2, max(0, polynomial.degree() - self._order))
 

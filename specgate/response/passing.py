@@ -74,14 +74,26 @@ class Walk:
         Backward walks need `until`, and y is known not to be beyond there; forward ones look just after `since` too.
         None: there is none, apart from what touches.
         """
-        pieces = list(self.ground.kinks(until)) if self.backward else self.ground.kinks(until)
-        for index, begin, end in reversed(pieces) if isinstance(pieces, list) else pieces:
-            if end is not None and end <= since:
-                continue
-            found = self._piece(index, begin, end, since, until)
-            if found is not None:
-                return found
+        first = self.ground.index(since)
+        last = None if until is None else self.ground.span(since, until)[1]
+        index, step = (last or 0, -1) if self.backward else (first, 1)
+        while first <= index and (last is None or index <= last):
+            calm = self._calm(index)
+            if calm == 0:
+                begin, end = self.ground.ends(index)
+                found = self._piece(index, begin, end, since, until)
+                if found is not None:
+                    return found
+                if end is None and not self.backward:
+                    return None
+            index += step * max(calm, 1)
         return None
+
+    def _calm(self, index: int) -> int:
+        """Return how many pieces in a row, from this one on, are known to stay on this side of the line."""
+        if self.line.slope != 0:
+            return 0
+        return self.ground.pieces.calm(index, 0, self.side, self.side * self.line.value, backward=self.backward)
 
     def _piece(self, index: int, begin: fmpq, end: fmpq | None, since: fmpq, until: fmpq | None) -> Where | None:
         """Walk through one piece; the jump into it may be beyond by itself.

@@ -148,8 +148,23 @@ class Ground:
             yield index, begin, end
             index, begin = index + 1, end
 
+    def span(self, since: fmpq, until: fmpq) -> tuple[int, int]:
+        """Return the first and the last piece that reach over since < t < until."""
+        last = self.index(until)
+        return self.index(since), last - 1 if last > 0 and self.pieces.kink(last) == until else last
+
+    def ends(self, index: int) -> tuple[fmpq, fmpq | None]:
+        """Return where a piece begins, and where it ends (None: never). Raises IndexError for none."""
+        begin = self.pieces.kink(index)
+        if begin is None:
+            raise IndexError(index)
+        return begin, self.pieces.kink(index + 1)
+
     def index(self, time: fmpq) -> int:
         """Return the piece that holds a time, at a kink the one that begins there."""
+        holding = self.pieces.holding(time)
+        if holding is not None:
+            return holding
         while not self._ended and self._begins[-1] <= time:
             begin = self.pieces.kink(len(self._begins))
             self._ended = begin is None

@@ -50,6 +50,28 @@ class Pieces(Protocol):
         """
         return None
 
+    def flat(self, index: int) -> bool:
+        """Whether a piece is known to be constant, whatever its value."""
+        return False
+
+    def calm(self, index: int, order: int, sign: int, level: fmpq, *, backward: bool = False) -> int:
+        """Return how many pieces in a row, from `index` on or back, have sign * y^(order) < level; 0: not told.
+
+        It spares the search of each of many short pieces.
+        """
+        return 0
+
+    def likely(self, first: int, last: int, order: int, sign: int) -> int | None:
+        """Return one of several pieces on which sign * y^(order) is about greatest at its begin; None: not told.
+
+        To look there first is no more than a saving.
+        """
+        return None
+
+    def holding(self, time: fmpq) -> int | None:
+        """Return the piece that holds a time, at a kink the one that begins there; None: it is to be searched for."""
+        return None
+
     def continuous_from(self) -> fmpq | None:
         """Return a time from which on y does not jump; None: not told. Asked only where pieces follow without end."""
         return None

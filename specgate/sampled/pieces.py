@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from bisect import bisect_right
+from collections.abc import Callable
 from functools import cached_property
 
 from flint import acb_mat, arb, arb_mat, fmpq, fmpq_mat
@@ -12,13 +14,18 @@ from specgate.response.pieces import Pieces
 from specgate.sampled.cycle import Cycle
 from specgate.sampled.decay import Decay, quadratic
 from specgate.sampled.drive import Drive, Setting
+from specgate.sampled.hulls import BLOCK, Hulls
+from specgate.sampled.lasting import side
 from specgate.sampled.shapes import Shapes
+from specgate.sampled.starting import start
 from specgate.sampled.state_space import Row
 from specgate.sampled.states import States
 from specgate.terms.precision import working_precision
 
 _GUARD = 96
 _KEPT = 4096
+_LOOKED = 512
+"""Blocks of samples that are looked through for a likely summit."""
 _BOUND_BITS = 256
 
 
@@ -66,6 +73,15 @@ class SampledPieces(Pieces):
             return self._early[index][0]
         period, number = divmod(index - len(self._early), len(self._cycle.stretches))
         return (self._first + period) * self._cycle.period + self._cycle.stretches[number].start
+
+    def holding(self, time: fmpq) -> int:
+        """Return the piece that holds a time."""
+        period = int((time / self._cycle.period).floor())
+        if period < self._first:
+            return bisect_right([start for start, _, _ in self._early], time) - 1
+        inside = time - period * self._cycle.period
+        number = sum(stretch.start <= inside for stretch in self._cycle.stretches) - 1
+        return len(self._early) + (period - self._first) * len(self._cycle.stretches) + number
 
     def speed(self, index: int) -> float:
         """Return how fast the pieces vary (rad/s)."""
@@ -136,6 +152,47 @@ class SampledPieces(Pieces):
             if value is not None:
                 state[first + place, 0] = arb(value)
 
+    def flat(self, index: int) -> bool:
+        """Whether the signal only holds what sampled blocks send."""
+        return self._shapes.constant
+
+    def calm(self, index: int, order: int, sign: int, level: fmpq, *, backward: bool = False) -> int:
+        """Return how many pieces in a row stay below a level."""
+        count = len(self._cycle.stretches)
+        place = index - len(self._early)
+        if place < 0 or order > 1:
+            return 0
+        number, offset = divmod(place, BLOCK * count)
+        low, high = self._hulls[order].block(number)
+        calm = (high if sign > 0 else -low) < _below(level)
+        rest = calm[: offset + 1][::-1] if backward else calm[offset:]
+        return len(rest) if rest.all() else int(rest.argmin())
+
+    def likely(self, first: int, last: int, order: int, sign: int) -> int | None:
+        """Return the piece whose hull is highest from below."""
+        early, count = len(self._early), len(self._cycle.stretches) * BLOCK
+        first, last = max(first, early), min(last, early + _LOOKED * count - 1)
+        if order > 1 or first > last:
+            return None
+        best: tuple[float, int] | None = None
+        for number in range((first - early) // count, (last - early) // count + 1):
+            low, high = self._hulls[order].block(number)
+            start = max(first - early - number * count, 0)
+            part = (low if sign > 0 else -high)[start : last - early - number * count + 1]
+            place = int(part.argmax())
+            if best is None or part[place] > best[0]:
+                best = float(part[place]), early + number * count + start + place
+        return None if best is None else best[1]
+
+    @cached_property
+    def _hulls(self) -> tuple[Hulls, Hulls]:
+        cycle, bits = self._cycle, _BOUND_BITS
+        _, states = self._from_start(bits)
+        lengths = [stretch.length for stretch in cycle.stretches]
+        step = cycle.enclosed(bits)
+        first, second = (Hulls(self._shapes, order, self._way(bits), lengths, step, states.at) for order in (0, 1))
+        return first, second
+
     # --- what is known of them for good ---------------------------------------------------------------------
 
     def jump(self, index: int) -> fmpq | None:
@@ -166,10 +223,22 @@ class SampledPieces(Pieces):
         return None if sample is None else (self._first + sample) * self._cycle.period
 
     def lasting(self) -> tuple[int, fmpq] | None:
-        """Return (0, time) where y is exactly at rest from a time on: all modes at z = 0, and rational."""
-        if self._dead_after is None:
+        """Return the sign that y keeps about its rest, and since when; 0 where it is exactly at rest from then on."""
+        return self._lasting
+
+    @cached_property
+    def _lasting(self) -> tuple[int, fmpq] | None:
+        if self._dead_after is not None:
+            return 0, (self._first + self._dead_after) * self._cycle.period
+        if isinstance(self._final, Absent) or self._deviation is None:
             return None
-        return 0, (self._first + self._dead_after) * self._cycle.period
+        matrix, first, form, kept = self._deviation
+        ways = [
+            (_of_deviation(self._shapes, way, kept), stretch.length)
+            for stretch, way in zip(self._cycle.stretches, self._way(_BOUND_BITS), strict=True)
+        ]
+        found = side(matrix, first, form, ways, _BOUND_BITS)
+        return None if found is None else (found[0], (self._first + found[1]) * self._cycle.period)
 
     @cached_property
     def _dead_after(self) -> int | None:
@@ -186,7 +255,17 @@ class SampledPieces(Pieces):
 
     @cached_property
     def _decay(self) -> Decay | None:
-        """The deviation from rest at the samples, the states of the drive left out."""
+        if self._deviation is None:
+            return None
+        matrix, first, form, _ = self._deviation
+        return Decay(States(matrix, first, _BOUND_BITS), form)
+
+    @cached_property
+    def _deviation(self) -> tuple[arb_mat, arb_mat, arb_mat, list[int]] | None:
+        """How the deviation from rest moves on at the samples, what it is at first, and the form that bounds y.
+
+        The states of the drive are left out: those that are kept, by their places, come last.
+        """
         cycle, bits = self._cycle, _BOUND_BITS
         drive = range(cycle.moving - self._drive.order, cycle.moving)
         kept = [j for j in range(cycle.order) if j not in drive]
@@ -196,17 +275,46 @@ class SampledPieces(Pieces):
         with working_precision(bits):
             whole = cycle.enclosed(bits).tolist()
             matrix = arb_mat([[whole[i][j] for j in kept] for i in kept])
-            start = states.at(0)
-            first = arb_mat(len(kept), 1, [start[j, 0] - arb(self._rest[j]) for j in kept])
+            state = states.at(0)
+            first = arb_mat(len(kept), 1, [state[j, 0] - arb(self._rest[j]) for j in kept])
             form = arb_mat(len(kept), len(kept))
             for stretch, way in zip(cycle.stretches, self._way(bits), strict=True):
-                through = arb_mat([[row[j] for j in kept] for row in way.tolist()])
+                through = _columns(way, kept)
                 rows = [(pole, acb_mat(weights), stretch.length) for pole, weights in self._shapes.rows(bits)]
                 form = form + quadratic(rows, through)
-        return Decay(States(matrix, first, bits), form)
+        return matrix, first, form, kept
+
+    def start(self, index: int) -> tuple[fmpq, int] | None:
+        """Return how y leaves its rest: how long it moves one way from a kink on, and which way."""
+        if not self._at_rest(index):
+            return None
+        return start(self._shapes, self._state(index, _BOUND_BITS), self.kink(index + 1) - self.kink(index))
+
+    def _at_rest(self, index: int) -> bool:
+        """Whether nothing but the drive and what is held has moved before a piece."""
+        if index > self._cycle.order * len(self._cycle.stretches) + len(self._early):
+            return False
+        state = self._state(index, _BOUND_BITS)
+        return all(state[j, 0].is_zero() for j in range(self._cycle.moving - self._drive.order))
+
+
+def _of_deviation(shapes: Shapes, way: arb_mat, kept: list[int]) -> Callable[[arb_mat], Expansion]:
+    with working_precision(_BOUND_BITS):
+        through = _columns(way, kept)
+    return lambda state: shapes.expansion(through * state, _BOUND_BITS)
+
+
+def _columns(matrix: arb_mat, places: list[int]) -> arb_mat:
+    return arb_mat([[row[j] for j in places] for row in matrix.tolist()])
 
 
 def _stacked(above: arb_mat, below: arb_mat) -> arb_mat:
     columns = max(int(above.ncols()), int(below.ncols()))
     rows = [*above.tolist(), *below.tolist()]
     return arb_mat(len(rows), columns, [entry for row in rows for entry in row])
+
+
+def _below(level: fmpq) -> float:
+    """Return a float that is not above a level."""
+    nearest = int(level.p) / int(level.q)
+    return nearest - abs(nearest) * 2.0**-50

@@ -14,7 +14,7 @@ from math import factorial
 from flint import acb, acb_mat, acb_poly, acb_series, arb_mat, fmpq, fmpq_mat, fmpq_poly
 
 from specgate.response.modes import GUARD, Expansion, Mode
-from specgate.sampled.state_space import Row
+from specgate.sampled.state_space import Row, of_rows
 from specgate.systems.polynomials import least_common_multiple
 from specgate.systems.roots import Root, certified_roots
 from specgate.systems.transfer import TransferFunction
@@ -36,6 +36,7 @@ class Shapes:
             *(TransferFunction(numerator, characteristic).reduced() for numerator in own),
             *(TransferFunction(numerator, characteristic * _S).reduced() for numerator in forced),
         ]
+        self._motion = a, b, c
         self.constant = all(not numerator for numerator in own)
         self.denominator = least_common_multiple(one.denominator for one in fractions)
         self.numerators = [one.numerator * (self.denominator // one.denominator) for one in fractions]
@@ -45,6 +46,19 @@ class Shapes:
     def speed(self) -> float:
         """The largest |p| (rad/s), roughly."""
         return max((float(abs(root.value).mid()) for root in self._roots(64)), default=0.0)
+
+    @property
+    def slopes(self) -> int:
+        """The order of the highest derivative that may be the first that is not zero: as many as there are states."""
+        return len(self._motion[2]) + 1
+
+    def slope_row(self, order: int) -> fmpq_mat:
+        """Return y^(order) at the start, order > 0, as a row over z and u: c A^order and c A^(order-1) B."""
+        a, b, c = self._motion
+        row = fmpq_mat(1, len(c), c)
+        for _ in range(order - 1):
+            row = row * a
+        return of_rows([[*(row * a).tolist()[0], *(row * b).tolist()[0]]] if c else [[fmpq(0)] * int(b.ncols())])
 
     def _roots(self, bits: int) -> Sequence[Root]:
         return certified_roots(self.denominator, bits) if self.denominator.degree() > 0 else ()
