@@ -209,8 +209,12 @@ def _chain(named: tuple[str, ...]) -> tuple[str, ...]:
 def _implied(audit: Audit, unit: Unit) -> Mapping[str, float] | None:
     if audit.implied is None:
         return None
-    low, high = (plain_number(Reading.once(end).in_unit(unit)) for end in audit.implied)
-    return None if low is None or high is None else {"lower": low, "upper": high}
+    low, high = (
+        None if end.absent is not None else plain_number(Reading.once(end).in_unit(unit)) for end in audit.implied
+    )
+    if low is None:
+        return None
+    return {"lower": low} if high is None else {"lower": low, "upper": high}
 
 
 def _error(error: FormulaError, unit: Unit) -> ErrorReview:

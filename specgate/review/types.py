@@ -358,7 +358,7 @@ class BasisReview:
     error: ErrorReview | None = None
     claim_agrees: bool | None = None
     implied: Mapping[str, float] | None = None
-    """Interval that the stated accuracy leaves for the true value: lower, upper (unit of the claim)."""
+    """What the stated accuracy leaves for the true value: lower, and upper if there is an end (unit of the claim)."""
     accuracy: str | None = None
     conditions: tuple[ConditionReview, ...] = ()
     instead: InsteadReview | None = None

@@ -145,6 +145,8 @@ def _agreement(basis: BasisReview) -> str:
 def _implied(basis: BasisReview) -> str:
     if not basis.implied or basis.claimed is None:
         return ""
+    if "upper" not in basis.implied:
+        return with_unit(f"{digits.number(basis.implied['lower'])} or more", basis.claimed.unit)
     low, high = (digits.number(basis.implied[key]) for key in ("lower", "upper"))
     return with_unit(f"{low} … {high}", basis.claimed.unit)
 
