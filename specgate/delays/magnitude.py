@@ -17,13 +17,13 @@ from specgate.frequency.questions import Range
 from specgate.frequency.values import root_of
 from specgate.response.answers import Absent, Answer
 from specgate.response.budget import OutOfWork
-from specgate.response.climbing import Ceiling, tallest
 from specgate.response.extremes import EQUAL_BITS, Extreme, joined
-from specgate.response.heights import SLACK, as_extreme
 from specgate.response.modes import dyadic
-from specgate.response.patches import Ground
 from specgate.response.pieces import Pieces
 from specgate.response.piecewise import PiecewiseResponse
+from specgate.response.piecewise.climbing import Ceiling, tallest
+from specgate.response.piecewise.heights import SLACK, as_extreme
+from specgate.response.piecewise.patches import Ground
 from specgate.systems.quasi import Quasi
 from specgate.systems.roots import certified_roots
 from specgate.terms.precision import series_terms, working_precision

@@ -21,7 +21,7 @@ from specgate.response.piecewise import PiecewiseResponse
 from specgate.response.questions import TimeResponse
 from specgate.response.step import StepResponse
 from specgate.response.superposed import Superposed
-from specgate.response.waves import AfterBump, BumpWave, StepWave, Wave
+from specgate.response.superposed.waves import AfterBump, BumpWave, StepWave, Wave
 from specgate.systems.transfer import TransferFunction
 
 Kind = Literal[

@@ -7,18 +7,18 @@ from functools import cached_property
 from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Answer
-from specgate.response.areas import LASTING
 from specgate.response.course import Course
 from specgate.response.curve import points as curve_points
 from specgate.response.curve import settled_window, unsettled_window
 from specgate.response.extremes import Extreme, greater, mirrored
-from specgate.response.piecewise import JUMPS, PiecewiseResponse
+from specgate.response.piecewise.areas import LASTING
+from specgate.response.piecewise.response import JUMPS, PiecewiseResponse
 from specgate.response.questions import Mask
 from specgate.response.settling import first_arrival, settling
 from specgate.response.superposed import Superposed
+from specgate.response.superposed.waves import StepWave
 from specgate.response.supremum import highest
 from specgate.response.unsettled import unsettled_extreme
-from specgate.response.waves import StepWave
 from specgate.systems.energy import energy
 from specgate.systems.roots import Root, certified_roots
 from specgate.systems.stability import is_hurwitz

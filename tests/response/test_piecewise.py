@@ -15,7 +15,7 @@ from specgate.response.piecewise import PiecewiseResponse
 from specgate.response.questions import Mask
 from specgate.response.step import StepResponse
 from specgate.response.superposed import Superposed
-from specgate.response.waves import AfterBump, BumpWave, StepWave
+from specgate.response.superposed.waves import AfterBump, BumpWave, StepWave
 from specgate.systems.polynomials import highest_first
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import working_precision

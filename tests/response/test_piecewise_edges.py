@@ -10,7 +10,7 @@ from specgate.response.piecewise import PiecewiseResponse
 from specgate.response.questions import Mask
 from specgate.response.step import StepResponse
 from specgate.response.superposed import Superposed
-from specgate.response.waves import StepWave
+from specgate.response.superposed.waves import StepWave
 from specgate.systems.polynomials import highest_first
 from specgate.systems.transfer import TransferFunction
 

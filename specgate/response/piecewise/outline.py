@@ -6,8 +6,8 @@ from collections.abc import Sequence
 
 from flint import arb, fmpq
 
-from specgate.response.climbing import value_at
-from specgate.response.patches import Ground
+from specgate.response.piecewise.climbing import value_at
+from specgate.response.piecewise.patches import Ground
 
 _BITS = 64
 _LEFT = fmpq(1, 100)

@@ -7,15 +7,15 @@ from functools import cached_property, reduce
 from flint import arb, fmpq
 
 from specgate.response.answers import Absent, Answer
-from specgate.response.areas import LASTING, Areas
-from specgate.response.climbing import value_at
 from specgate.response.extremes import Extreme, greater, mirrored
-from specgate.response.heights import Heights
-from specgate.response.instants import first_arrival, settling
-from specgate.response.masking import within
-from specgate.response.outline import outline
-from specgate.response.patches import LOOK, Ground
 from specgate.response.pieces import Pieces
+from specgate.response.piecewise.areas import LASTING, Areas
+from specgate.response.piecewise.climbing import value_at
+from specgate.response.piecewise.heights import Heights
+from specgate.response.piecewise.instants import first_arrival, settling
+from specgate.response.piecewise.masking import within
+from specgate.response.piecewise.outline import outline
+from specgate.response.piecewise.patches import LOOK, Ground
 from specgate.response.questions import Mask
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Proof

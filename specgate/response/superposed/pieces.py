@@ -8,13 +8,13 @@ from functools import cached_property
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Absent
-from specgate.response.closing import closing
-from specgate.response.ending import Ending, derived
-from specgate.response.modal_integrals import integral, square_integral
 from specgate.response.modes import Expansion, Mode
 from specgate.response.pieces import Pieces
 from specgate.response.segments import at_most
-from specgate.response.waves import Wave, combined
+from specgate.response.superposed.closing import closing
+from specgate.response.superposed.ending import Ending, derived
+from specgate.response.superposed.integrals import integral, square_integral
+from specgate.response.superposed.waves import Wave, combined
 from specgate.systems.polynomials import least_common_multiple, order_at_origin
 from specgate.systems.stability import is_hurwitz
 from specgate.terms.precision import HIGHEST, working_precision

@@ -13,13 +13,13 @@ from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.response.budget import OutOfWork
-from specgate.response.climbing import value_at
-from specgate.response.heights import SLACK
 from specgate.response.modes import dyadic
-from specgate.response.passing import Walk, Where
-from specgate.response.patches import Ground, Line
+from specgate.response.piecewise.climbing import value_at
+from specgate.response.piecewise.heights import SLACK
+from specgate.response.piecewise.passing import Walk, Where
+from specgate.response.piecewise.patches import Ground, Line
+from specgate.response.piecewise.turning import Zero
 from specgate.response.questions import Mask, Points
-from specgate.response.turning import Zero
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 

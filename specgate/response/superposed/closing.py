@@ -12,8 +12,8 @@ from flint import acb, arb, fmpq
 
 from specgate.response.asymptote import leading_mode
 from specgate.response.deviation import LOWEST
-from specgate.response.ending import Ending
 from specgate.response.modes import GUARD, dyadic
+from specgate.response.superposed.ending import Ending
 from specgate.terms.precision import working_precision
 
 _DAMPED = 0.3

@@ -15,10 +15,10 @@ from heapq import heappop, heappush
 
 from flint import arb, fmpq
 
-from specgate.response.passing import Instant, Where, Work
-from specgate.response.patches import LEVEL, LOOK, Ground, Patch
 from specgate.response.pieces import Pieces
-from specgate.response.turning import Zero, exact_at, sign_at
+from specgate.response.piecewise.passing import Instant, Where, Work
+from specgate.response.piecewise.patches import LEVEL, LOOK, Ground, Patch
+from specgate.response.piecewise.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import working_precision
 
 _CLOSE = 512

@@ -9,12 +9,12 @@ from flint import arb, fmpq
 
 from specgate.response.answers import Answer, Fragile
 from specgate.response.budget import OutOfWork
-from specgate.response.climbing import value_at
 from specgate.response.fragility import NEAR
-from specgate.response.heights import SLACK
 from specgate.response.modes import GUARD, dyadic
-from specgate.response.passing import Instant, Walk, Where
-from specgate.response.patches import LOOK, Ground, Line
+from specgate.response.piecewise.climbing import value_at
+from specgate.response.piecewise.heights import SLACK
+from specgate.response.piecewise.passing import Instant, Walk, Where
+from specgate.response.piecewise.patches import LOOK, Ground, Line
 from specgate.terms.precision import working_precision
 
 _FAR = fmpq(1, 100)

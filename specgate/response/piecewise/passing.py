@@ -16,8 +16,8 @@ from dataclasses import dataclass, field
 from flint import arb, fmpq
 
 from specgate.response.budget import Exhausted, OutOfWork
-from specgate.response.patches import LOOK, Ground, Line, Patch
-from specgate.response.turning import Zero, exact_at, sign_at
+from specgate.response.piecewise.patches import LOOK, Ground, Line, Patch
+from specgate.response.piecewise.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
 
 PATCHES = 60_000

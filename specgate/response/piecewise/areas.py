@@ -14,10 +14,10 @@ from flint import arb, fmpq
 from specgate.response.answers import Answer
 from specgate.response.budget import OutOfWork
 from specgate.response.modes import GUARD, dyadic
-from specgate.response.passing import Work
-from specgate.response.patches import LEVEL, LOOK, Ground, Patch
+from specgate.response.piecewise.passing import Work
+from specgate.response.piecewise.patches import LEVEL, LOOK, Ground, Patch
+from specgate.response.piecewise.turning import Zero, sign_at
 from specgate.response.segments import exact
-from specgate.response.turning import Zero, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
 
 LASTING = "what is integrated does not vanish in the end: its integral grows without bound"

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from flint import arb, fmpq
 
-from specgate.response.patches import LOOK, Line
 from specgate.response.pieces import Pieces
+from specgate.response.piecewise.patches import LOOK, Line
 from specgate.terms.precision import HIGHEST, working_precision
 
 _GUARD = 32

@@ -16,11 +16,11 @@ from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.response.budget import OutOfWork
-from specgate.response.climbing import Ceiling, Peak, tallest, value_at
 from specgate.response.extremes import EQUAL_BITS, Extreme, greater, joined, mirrored
 from specgate.response.modes import dyadic
-from specgate.response.passing import Instant
-from specgate.response.patches import LOOK, Ground, Patch
+from specgate.response.piecewise.climbing import Ceiling, Peak, tallest, value_at
+from specgate.response.piecewise.passing import Instant
+from specgate.response.piecewise.patches import LOOK, Ground, Patch
 from specgate.response.supremum import APPROACHED
 from specgate.terms.precision import working_precision
 
