@@ -13,6 +13,9 @@ def configure(parser: argparse.ArgumentParser) -> None:
     """Add the arguments of `check`."""
     parser.add_argument("project", metavar="PROJECT", help="a folder with a specgate.yaml, or one YAML file")
     parser.add_argument("--format", choices=("text", "json"), default="text", help="what to print (default: text)")
+    parser.add_argument(
+        "--proof", action="store_true", help="with --format json: say of every bounded result how it was obtained"
+    )
     parser.add_argument("-o", "--output", metavar="FILE", default="-", help="write to FILE instead of the terminal")
     parser.add_argument(
         "--color",
@@ -30,7 +33,10 @@ def run(options: argparse.Namespace) -> int:
     from specgate.cli.files import write
     from specgate.cli.judge import judge
 
-    judged = judge(options.project, curves=options.format == "json")
+    if options.proof and options.format != "json":
+        print("specgate: --proof goes with --format json: the text has no room for records", file=sys.stderr)
+        return status.UNUSABLE
+    judged = judge(options.project, drawn=options.format == "json", proof=options.proof)
     if options.format == "json":
         from specgate.exchange import json
 

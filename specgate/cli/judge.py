@@ -23,15 +23,16 @@ class Judged:
     status: int
 
 
-def judge(project: str, *, curves: bool = True) -> Judged:
+def judge(project: str, *, drawn: bool = True, proof: bool = False) -> Judged:
     """Read, compute and judge the project at the path `project` (a folder or one YAML file).
 
-    curves: whether the points that drawings need are computed too.
+    drawn, proof: whether what drawings show, and how bounded results were obtained, is computed too.
     """
     from specgate.intake.load import Problems, load
     from specgate.review.build import review, unusable
+    from specgate.review.wanted import Wanted
 
     with progress("reading and computing"):
         loaded = load(Path(project))
-        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, curves=curves)
+        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, Wanted(drawn, proof))
     return Judged(result, _STATUS[result.gate.outcome])

@@ -13,6 +13,7 @@ from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.response.answers import Absent, Answer
 from specgate.response.extremes import Extreme
 from specgate.response.questions import TimeResponse
+from specgate.response.record import together
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 
@@ -108,7 +109,8 @@ def positive_part(value: Answer) -> Answer:
         return Answer.of_exact(max(value.exact, fmpq(0)))
     sign = sign_of(value.enclose)
     if sign is None:
-        return Answer.of_ball(lambda bits: value.enclose(bits).nonnegative_part(), value.fragile)
+        either = Answer.of_ball(lambda bits: value.enclose(bits).nonnegative_part(), value.fragile)
+        return replace(either, how=value.how)
     return value if sign > 0 else Answer.of_exact(0)
 
 
@@ -124,7 +126,7 @@ def affine(value: Answer, factor: fmpq, offset: fmpq) -> Answer:
         with working_precision(bits):
             return ball * factor + offset
 
-    return Answer.of_ball(refine, value.fragile)
+    return replace(Answer.of_ball(refine, value.fragile), how=value.how)
 
 
 def difference(later: Answer, earlier: Answer) -> Answer:
@@ -140,4 +142,5 @@ def difference(later: Answer, earlier: Answer) -> Answer:
         with working_precision(bits):
             return end - start
 
-    return Answer.of_ball(refine, later.fragile or earlier.fragile)
+    found = Answer.of_ball(refine, later.fragile or earlier.fragile)
+    return replace(found, how=lambda: together("the later less the earlier", later=later, earlier=earlier))

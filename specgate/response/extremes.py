@@ -40,7 +40,8 @@ def mirrored(extreme: Extreme) -> Extreme:
     if value.exact is not None:
         return Extreme(replace(value, exact=-value.exact), extreme.time)
     if value.refine is not None:
-        return Extreme(Answer.of_ball(lambda bits: -value.enclose(bits), value.fragile), extreme.time)
+        turned = Answer.of_ball(lambda bits: -value.enclose(bits), value.fragile)
+        return Extreme(replace(turned, how=value.how), extreme.time)
     return extreme
 
 
@@ -75,7 +76,7 @@ def joined(extremes: Sequence[Extreme]) -> Extreme:
     values = [extreme.value for extreme in extremes]
     times = [extreme.time for extreme in extremes if extreme.time.absent is None]
     return Extreme(
-        Answer.of_ball(lambda bits: _union(values, bits), fragile),
+        replace(Answer.of_ball(lambda bits: _union(values, bits), fragile), how=values[0].how),
         Answer.of_ball(lambda bits: _union(times, bits), fragile) if times else extremes[0].time,
     )
 

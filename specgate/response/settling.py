@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
+from dataclasses import replace
 from functools import reduce
 
 from flint import arb, fmpq
@@ -14,6 +15,7 @@ from specgate.response.course import Course
 from specgate.response.fragility import Target, fragility
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
+from specgate.response.record import modal_record
 from specgate.response.segments import exact, float_of
 from specgate.response.signs import sign_at
 from specgate.response.tail import tail
@@ -70,7 +72,23 @@ def _answer(course: Course, target: Target, search: Search, without: Answer) -> 
             if fragile is None
             else Answer(Proof.EXACT, without.truth, without.exact, None, without.absent, fragile)
         )
-    return Answer.of_ball(lambda bits: _span(course, zeros, passage.crossing is None, bits), fragile)
+    found = Answer.of_ball(lambda bits: _span(course, zeros, passage.crossing is None, bits), fragile)
+    return replace(found, how=lambda: _how(course, target, len(zeros)))
+
+
+def _how(course: Course, target: Target, brackets: int) -> Mapping[str, object]:
+    """Say how a crossing was found."""
+    band = target.band(fmpq(1))
+    since = _tail(course, target.size) if target.backward else _last_chance(course, band)
+    last = (
+        "the last crossing of the band: beyond it the sum of all modes is a bound, and the search goes back from there"
+    )
+    first = "the first crossing of the level, from the start on"
+    return modal_record(course, last if target.backward else first, brackets=brackets, since=since)
+
+
+def _tail(course: Course, edge: fmpq) -> fmpq | None:
+    return tail(course.deviation, float_of(edge), lambda bits: Answer.of_exact(edge).enclose(bits))
 
 
 def _span(course: Course, zeros: tuple[Zero, ...], from_start: bool, bits: int) -> arb:
@@ -82,8 +100,7 @@ def _span(course: Course, zeros: tuple[Zero, ...], from_start: bool, bits: int) 
 
 def _settled(course: Course, target: Target, band: Band, grid: Grid, budget: Budget) -> Passage:
     assert band.high is not None
-    edge = band.high
-    since = tail(course.deviation, float_of(edge), lambda bits: Answer.of_exact(edge).enclose(bits))
+    since = _tail(course, band.high)
     if since is None:
         raise OutOfWork("the band is too narrow beside the response to be followed")
     walk = Walk(course.deviation, band, budget, backward=True, end=since, margin=target.margin)
@@ -107,7 +124,7 @@ def _last_chance(course: Course, band: Band) -> fmpq | None:
     edge, side = (band.high, 1) if band.high is not None else (band.low, -1)
     assert edge is not None
     if edge * side > 0:
-        return tail(course.deviation, float_of(abs(edge)), lambda bits: Answer.of_exact(abs(edge)).enclose(bits))
+        return _tail(course, abs(edge))
     return course.below_from(side) if edge == 0 else None
 
 

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, replace
 from itertools import compress
 from math import inf
 
@@ -14,10 +14,12 @@ from specgate.response.answers import Answer
 from specgate.response.budget import Budget, Exhausted, OutOfWork
 from specgate.response.certify import Zero
 from specgate.response.course import Course
+from specgate.response.deviation import LOWEST
 from specgate.response.extremes import EQUAL_BITS, Extreme, joined
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
 from specgate.response.peak import Climb, Last
+from specgate.response.record import modal_record
 from specgate.response.segments import exact, float_of
 from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
@@ -106,7 +108,7 @@ def _highest_above(course: Course, sign: int, floor: Floor, last: Last) -> Extre
     summits, clear = course.search(lambda grid, budget: _summits(course, sign, floor, last, grid, budget))
     if not summits:
         return floor.extreme
-    equal = [_at(course, summit) for summit in summits]
+    equal = [_at(course, summit, lambda: _how(course, sign, summits, last)) for summit in summits]
     return joined(equal if clear else [*equal, floor.extreme])
 
 
@@ -147,10 +149,19 @@ def _tallest(summits: Sequence[Zero], sign: int, floor: Floor) -> tuple[list[Zer
     return left, clear
 
 
-def _at(course: Course, summit: Zero) -> Extreme:
+def _how(course: Course, sign: int, summits: Sequence[Zero], last: Last) -> Mapping[str, object]:
+    """Say how a greatest value was found; it is looked for until a bound is below it."""
+    firm = sign * summits[0].value(LOWEST)
+    best = float_of(firm.lower().fmpq())
+    method = "the highest turning point: where a bound of the cells is below it nothing was searched"
+    return modal_record(course, method, brackets=len(summits), since=last(best, lambda bits: firm))
+
+
+def _at(course: Course, summit: Zero, how: Callable[[], Mapping[str, object]]) -> Extreme:
     deviation = course.deviation
 
     def time(bits: int) -> arb:
         return deviation.to_time(summit.enclose(bits), bits + GUARD)
 
-    return Extreme(Answer.of_ball(lambda bits: deviation.response(summit.value(bits))), Answer.of_ball(time))
+    value = Answer.of_ball(lambda bits: deviation.response(summit.value(bits)))
+    return Extreme(replace(value, how=how), replace(Answer.of_ball(time), how=how))

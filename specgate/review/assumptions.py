@@ -10,14 +10,17 @@ from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer
 from specgate.review.printing import amount, result
 from specgate.review.types import Amount, AssumptionReview
+from specgate.review.wanted import Wanted
 from specgate.terms.enclosed import DIGITS
 from specgate.terms.verdicts import Trilean
 
+_METHOD = "the greatest distance from rest, or the greatest rate"
 
-def assumption(assumed: Assumption, *, peak: bool) -> AssumptionReview:
-    """Print one range. peak: also where a bound alone shows that it is kept."""
+
+def assumption(assumed: Assumption, asked: Wanted) -> AssumptionReview:
+    """Print one range; its peak, where a bound alone shows that it is kept, only if that is asked for."""
     ranged, decision, unit = assumed.ranged, assumed.decision, assumed.ranged.unit
-    wanted = peak or decision.holds is not Trilean.YES
+    wanted = asked.drawn or decision.holds is not Trilean.YES
     return AssumptionReview(
         kind=ranged.kind,
         response=assumed.on,
@@ -28,7 +31,7 @@ def assumption(assumed: Assumption, *, peak: bool) -> AssumptionReview:
         rest=amount(_exact(ranged.rest), unit),
         low=amount(_exact(ranged.low), unit, ranged.ends[0].as_written),
         high=amount(_exact(ranged.high), unit, ranged.ends[1].as_written),
-        peak=result(assumed.peak, unit, None) if wanted else None,
+        peak=result(assumed.peak, unit, None, method=_METHOD if asked.proof else None) if wanted else None,
         allowed=amount(assumed.allowed, unit),
         holds=None if decision.holds is Trilean.UNKNOWN else decision.holds is Trilean.YES,
         largest_size=_size(assumed) if wanted else None,

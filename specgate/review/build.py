@@ -27,6 +27,7 @@ from specgate.review.types import (
     ToolReview,
     Unusable,
 )
+from specgate.review.wanted import Wanted
 from specgate.rules.rule import Facts
 from specgate.rules.table import findings
 from specgate.terms.findings import Finding, in_order
@@ -39,23 +40,21 @@ FORMAT = 1
 """Version of the results format."""
 
 
-def review(project: Project, *, curves: bool = True) -> Review:
+def review(project: Project, wanted: Wanted | None = None) -> Review:
     """Compute and judge a project. Raises Fault for a project that its checks refuse.
 
-    curves: whether to compute what only drawings and records need: points of responses and of errors, and peaks of
-    signals that a bound alone proves to be inside their range.
+    wanted: what to compute beside the verdicts; what drawings show unless told otherwise.
     """
+    asked = wanted or Wanted()
     analyses, graph = analyse(project), trace(project)
     assumptions = Assumptions(project, analyses)
     assessments = assess(project, analyses, graph, assumptions)
     warned = (one for one in project.warnings if isinstance(one, Finding))
     said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments, assumptions))))
     again = analyses.again.loops
-    loops = {name: loop(one, again[name], curves=curves) for name, one in analyses.loops.items()}
+    loops = {name: loop(one, again[name], asked) for name, one in analyses.loops.items()}
     rests = resting(project, analyses)
-    requirements = {
-        name: requirement(name, one, project, rests, graph, drawn=curves) for name, one in assessments.items()
-    }
+    requirements = {name: requirement(name, one, project, rests, graph, asked) for name, one in assessments.items()}
     shown = tuple(_finding(one) for one in said)
     info = project.info
     return Review(

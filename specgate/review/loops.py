@@ -32,6 +32,7 @@ from specgate.review.types import (
     MeasureResult,
     ResponseReview,
 )
+from specgate.review.wanted import Wanted
 from specgate.sampled.opened import SampledOpening
 from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedChannel
@@ -54,7 +55,7 @@ _POINTS = 256
 """Points of a curve: two pixels each in the widest plot; the format allows 400."""
 
 
-def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopReview:
+def loop(found: LoopAnalysis, again: LoopAnalysis, wanted: Wanted) -> LoopReview:
     """Print one loop with everything that is reported on it, asked for or not.
 
     again: the same loop with more digits of pi.
@@ -74,16 +75,16 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, *, curves: bool) -> LoopRevie
         characteristic_polynomial=() if rational is None else coefficients(rational),
         poles=poles(sampled.roots(in_z) if in_z else () if rational is None else certified_roots(rational, _SHOWN)),
         hidden_modes=tuple(_hidden(found)),
-        measures=() if reason else _measures("loop", found.subject, again.subject, ONE),
-        responses={key: _response(one, again.responses[key], curve=curves) for key, one in found.responses.items()},
-        breaks={key: _break(one, again.breaks[key], curve=curves) for key, one in found.breaks.items()},
+        measures=() if reason else _measures("loop", found.subject, again.subject, ONE, wanted),
+        responses={key: _response(one, again.responses[key], wanted) for key, one in found.responses.items()},
+        breaks={key: _break(one, again.breaks[key], wanted) for key, one in found.breaks.items()},
         in_z=None if in_z is None else sampled.loop_in_z(in_z),
         characteristic_terms=terms(modes) if isinstance(modes, Quasi) else None,
         reason=reason,
     )
 
 
-def _break(found: BreakAnalysis, again: BreakAnalysis, *, curve: bool) -> BreakReview:
+def _break(found: BreakAnalysis, again: BreakAnalysis, wanted: Wanted) -> BreakReview:
     if isinstance(found.subject, Missing):
         return BreakReview(found.declared.at, (), reason=found.subject.reason)
     loop = found.subject.loop
@@ -92,14 +93,14 @@ def _break(found: BreakAnalysis, again: BreakAnalysis, *, curve: bool) -> BreakR
     above, below = _parts(sampled.exact_opening(opened) if opened else found.subject.open_loop)
     return BreakReview(
         at=found.declared.at,
-        measures=_measures("break", found.subject, again.subject, ONE),
+        measures=_measures("break", found.subject, again.subject, ONE, wanted),
         numerator=above[0],
         denominator=below[0],
         in_z=None if opened is None else sampled.opening_in_z(opened),
         crossings=() if loop is None or others is None else tuple(_crossings(loop, others)),
         numerator_terms=above[1],
         denominator_terms=below[1],
-        frequency_response=frequency_curve(found.subject) if curve else None,
+        frequency_response=frequency_curve(found.subject) if wanted.drawn else None,
     )
 
 
@@ -147,7 +148,7 @@ def _hidden(found: LoopAnalysis) -> Iterator[HiddenMode]:
                 yield HiddenMode(name, (), stable, terms=terms(channel.hidden))
 
 
-def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) -> ResponseReview:
+def _response(found: ResponseAnalysis, again: ResponseAnalysis, wanted: Wanted) -> ResponseReview:
     declared, subject = found.response, found.subject
     reduced = None if found.channel is None else _reduced(found.channel)
     above, below = _parts(reduced)
@@ -161,10 +162,10 @@ def _response(found: ResponseAnalysis, again: ResponseAnalysis, *, curve: bool) 
         denominator=below[0],
         measures=_absent(declared, subject.reason)
         if isinstance(subject, Missing)
-        else _measures("response", subject, again.subject, found.unit),
+        else _measures("response", subject, again.subject, found.unit, wanted),
         poles=() if rational is None else poles(certified_roots(rational.denominator, _SHOWN)),
         zeros=() if rational is None or not rational.numerator else poles(certified_roots(rational.numerator, _SHOWN)),
-        curve=_curve(found) if curve else None,
+        curve=_curve(found) if wanted.drawn else None,
         numerator_terms=above[1],
         denominator_terms=below[1],
         reason=subject.reason if isinstance(subject, Missing) else None,
@@ -200,7 +201,7 @@ def _absent(declared: Response, reason: str) -> tuple[MeasureResult, ...]:
 
 
 def _measures(
-    kind: SubjectKind, subject: Subject | Missing, again: Subject | Missing, signal: Unit
+    kind: SubjectKind, subject: Subject | Missing, again: Subject | Missing, signal: Unit, wanted: Wanted
 ) -> tuple[MeasureResult, ...]:
     """Print every measure that is always reported on a subject of this kind."""
     if isinstance(subject, Missing) or isinstance(again, Missing):
@@ -208,15 +209,16 @@ def _measures(
     rows = (row for row in MEASURES.values() if row.read is not None and kind in row.subjects)
     chosen = REPORTED.get(subject.kind) if isinstance(subject, ResponseSubject) else None
     reported = (row for row in rows if (row.always if chosen is None else row.name in chosen))
-    return tuple(_measure(row, subject, again, signal) for row in reported)
+    return tuple(_measure(row, subject, again, signal, wanted) for row in reported)
 
 
-def _measure(row: Measure, subject: Subject, again: Subject, signal: Unit) -> MeasureResult:
+def _measure(row: Measure, subject: Subject, again: Subject, signal: Unit, wanted: Wanted) -> MeasureResult:
     arguments = replace(ALWAYS, measure=row.name)
     unit = default_unit(row, arguments, signal)
     readings = [_read(row, reader, subject, again, arguments) for reader in (row.read, row.beside)]
     assert readings[0] is not None
-    found = result(readings[0], unit, smallness(row, arguments, subject, unit), readings[1], signal)
+    scale = smallness(row, arguments, subject, unit)
+    found = result(readings[0], unit, scale, readings[1], signal, method=row.method if wanted.proof else None)
     return MeasureResult(**vars(found), measure=row.name, arguments=ALWAYS_SAID.get(row.name))
 
 

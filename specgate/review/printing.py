@@ -14,7 +14,17 @@ from specgate.review.types import Amount, Beside, DelayedTerm, Location, Pole, R
 from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root
 from specgate.terms.decimals import power_of_ten
-from specgate.terms.enclosed import DIGITS, Enclosed, ends, in_unit, magnitude, printed, printed_exact, to_float
+from specgate.terms.enclosed import (
+    DIGITS,
+    Enclosed,
+    ends,
+    in_unit,
+    magnitude,
+    precision_of,
+    printed,
+    printed_exact,
+    to_float,
+)
 from specgate.terms.places import Place
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.units import UnitTable
@@ -96,14 +106,33 @@ def plain_number(answer: Answer, scale: fmpq | None = None) -> float | None:
 
 
 def result(
-    reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Reading | None = None, signal: Unit = ONE
+    reading: Reading,
+    unit: Unit | None,
+    scale: fmpq | None,
+    beside: Reading | None = None,
+    signal: Unit = ONE,
+    *,
+    method: str | None = None,
 ) -> Result:
     """Print what was read. unit None: a whole number, yes or no. scale: what it is small against, in that unit.
 
-    signal: the unit of the signal that is looked at, for what is printed beside the result.
+    signal: the unit of the signal that is looked at, for what is printed beside the result. method: of the measure,
+    where a bounded result is to say how it was obtained.
     """
     found = _result(reading, unit, scale, beside)
+    if method is not None and found.proof == Proof.ENCLOSED.value and unit is not None:
+        found = replace(found, proof_record=_record(reading, unit, scale, method))
     return found if reading.settled.at is None else replace(found, at=_beside(reading, signal))
+
+
+def _record(reading: Reading, unit: Unit, scale: fmpq | None, method: str) -> Mapping[str, object]:
+    """Say how a bounded result was obtained."""
+    how = reading.settled.how
+    return {
+        "bits": precision_of(reading.in_unit(unit).enclose, scale),
+        "method": method,
+        **({} if how is None else how()),
+    }
 
 
 def _beside(reading: Reading, signal: Unit) -> Beside:

@@ -38,6 +38,7 @@ from specgate.review.types import (
     RequirementReview,
     ReserveReview,
 )
+from specgate.review.wanted import Wanted
 from specgate.terms.enclosed import ends, rounded
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Trilean, Verdict
@@ -50,13 +51,9 @@ def requirement(
     project: Project,
     rests: Mapping[str, tuple[str, ...]],
     graph: Graph,
-    *,
-    drawn: bool,
+    wanted: Wanted,
 ) -> RequirementReview:
-    """Print one requirement. rests: what each loop rests on (`resting`).
-
-    drawn: with what only drawings and records need: peaks of signals inside their range too, pictures of formulas.
-    """
+    """Print one requirement. rests: what each loop rests on (`resting`)."""
     declared = assessment.requirement
     exempt = declared.not_applicable
     return RequirementReview(
@@ -71,9 +68,9 @@ def requirement(
         standing=None if assessment.standing is None else assessment.standing.value,
         decided_by=declared.decided_by,
         methods=tuple(_method(one) for one in assessment.methods),
-        criteria=tuple(_criterion(one, project, drawn=drawn) for one in assessment.criteria),
+        criteria=tuple(_criterion(one, project, wanted) for one in assessment.criteria),
         assumptions=tuple(
-            assumption(one, peak=drawn) for criterion in by_response(assessment) for one in criterion.assumptions
+            assumption(one, wanted) for criterion in by_response(assessment) for one in criterion.assumptions
         ),
         rests_on=_rests_on(assessment, rests),
         derived=graph.children[name],
@@ -115,7 +112,7 @@ def _rests_on(assessment: Assessment, rests: Mapping[str, tuple[str, ...]]) -> t
 # --- a criterion --------------------------------------------------------------------------------------------
 
 
-def _criterion(assessed: CriterionAssessment, project: Project, *, drawn: bool) -> CriterionReview:
+def _criterion(assessed: CriterionAssessment, project: Project, wanted: Wanted) -> CriterionReview:
     criterion = assessed.criterion
     return CriterionReview(
         measure=assessed.measure.name,
@@ -124,9 +121,16 @@ def _criterion(assessed: CriterionAssessment, project: Project, *, drawn: bool) 
         limit=_limit(assessed),
         evaluate=criterion.evaluate or project.evaluate,
         verdict=assessed.verdict.value,
-        result=result(assessed.reading, assessed.unit, assessed.scale, assessed.beside, assessed.signal),
+        result=result(
+            assessed.reading,
+            assessed.unit,
+            assessed.scale,
+            assessed.beside,
+            assessed.signal,
+            method=assessed.measure.method if wanted.proof else None,
+        ),
         reserve=_reserve(assessed),
-        basis=_basis(assessed, drawn=drawn),
+        basis=_basis(assessed, drawn=wanted.drawn),
         standing=assessed.standing.value,
         location=location(criterion.place),
         reason=assessed.reason,

@@ -71,6 +71,8 @@ class Result:
     """What a small change would do to the value. Said of every settling time in a list of measures, if only as null."""
     signed: float | None = _omitted()
     at: Beside | None = _omitted()
+    proof_record: Mapping[str, Any] | None = _omitted()
+    """How a bounded result was obtained; only where the record was asked for. Coherent SI."""
 
 
 @record

@@ -111,19 +111,28 @@ def printed(refine: Refine, scale: fmpq | None = None) -> Enclosed:
     width counts. Where the ball cannot be refined further, the bounds are those of the widest digits known.
     Raises OverflowError for a number beyond the range of floats.
     """
+    return _printed(refine, scale)[0]
+
+
+def precision_of(refine: Refine, scale: fmpq | None = None) -> int:
+    """Return the bits at which a number is printed. Raises OverflowError for one beyond the range of floats."""
+    return _printed(refine, scale)[1]
+
+
+def _printed(refine: Refine, scale: fmpq | None) -> tuple[Enclosed, int]:
     nothing = None if scale is None else abs(scale) * _NOTHING
     low = high = fmpq(0)
-    unique = None
+    unique, bits = None, _PRECISIONS[0]
     for bits in _PRECISIONS:
         low, high = ends(refine(bits))
         if nothing is not None and -nothing <= low and high <= nothing:
-            return _nearly_zero(low, high, nothing)
+            return _nearly_zero(low, high, nothing), bits
         unique = _unique(low, high)
         if unique is not None:
             break
     if min(abs(low), abs(high)) > _GREATEST:
         raise OverflowError("this number is too large to be printed")
-    return unique or _settled(low, high)
+    return unique or _settled(low, high), bits
 
 
 def printed_short(ball: arb, scale: float | None = None) -> float:

@@ -182,3 +182,12 @@ def test_every_name_can_be_explained(name: str, capsys: pytest.CaptureFixture[st
 def test_explain_offers_the_nearest_name(capsys: pytest.CaptureFixture[str]) -> None:
     assert main.main(["explain", "setling_time"]) == status.UNUSABLE
     assert "did you mean settling_time?" in capsys.readouterr().err
+
+
+def test_proof_is_for_the_machine_readable_result() -> None:
+    refused = run("check", HELD, "--proof")
+    assert refused.returncode == status.UNUSABLE
+    assert "--format json" in refused.stderr
+    found = json.loads(run("check", HELD, "--proof", "--format", "json").stdout)
+    settling = found["requirements"]["GH-SYS-031"]["criteria"][0]["result"]
+    assert settling["proof_record"]["searched_until"] >= settling["value"]

@@ -19,6 +19,7 @@ import pytest
 from specgate.intake.load import Problems, load
 from specgate.review.build import review
 from specgate.review.types import Review
+from specgate.review.wanted import Wanted
 
 getcontext().prec = 60
 DATA = Path(__file__).resolve().parents[1] / "data" / "margin_cases.json"
@@ -85,7 +86,7 @@ def _reviewed(case_id: str, folder: Path) -> Review:
     path.write_text(_project(CASES[case_id]))
     project = load(path)
     assert not isinstance(project, Problems), [f.message for f in project.findings]
-    return review(project, curves=False)
+    return review(project, Wanted(drawn=False))
 
 
 @pytest.fixture(scope="module")

@@ -10,6 +10,7 @@ import pytest
 from specgate.intake.load import Problems, load
 from specgate.review.build import review
 from specgate.review.types import Review
+from specgate.review.wanted import Wanted
 
 CASES = Path(__file__).resolve().parents[1] / "rule_cases"
 RESTATING = ("requirement-not-met", "requirement-open", "approximation-out-of-range", "approximation-inconclusive")
@@ -18,7 +19,7 @@ RESTATING = ("requirement-not-met", "requirement-open", "approximation-out-of-ra
 def reviewed(path: Path) -> Review:
     project = load(path)
     assert not isinstance(project, Problems)
-    return review(project, curves=False)
+    return review(project, Wanted(drawn=False))
 
 
 @pytest.mark.parametrize("path", sorted(CASES.glob("*/*.yaml")), ids=lambda path: f"{path.parent.name}/{path.stem}")
