@@ -31,11 +31,11 @@ def analyse(project: Project) -> Analyses:
     """
     nominal_values, precise_values = values(project), values(project, PRECISE_PI)
     built = instantiate(project, nominal_values)
-    nominal = {name: _loop(project, project.loops[name], one, nominal_values) for name, one in built.items()}
+    nominal = {name: loop_analysis(project, project.loops[name], one, nominal_values) for name, one in built.items()}
     rounded = [name for name, one in built.items() if _rests_on_pi(project.loops[name], one, nominal_values)]
     precise = instantiate(project, precise_values) if rounded else {}
     again = {
-        name: _sharing(nominal[name], _loop(project, project.loops[name], precise[name], precise_values))
+        name: _sharing(nominal[name], loop_analysis(project, project.loops[name], precise[name], precise_values))
         for name in rounded
     }
     return Analyses(Study(nominal_values, nominal), Study(precise_values, {**nominal, **again}))
@@ -56,7 +56,8 @@ def _rests_on_pi(loop: Loop, built: InstantiatedLoop, known: Values) -> bool:
     )
 
 
-def _loop(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) -> LoopAnalysis:
+def loop_analysis(project: Project, loop: Loop, built: InstantiatedLoop, known: Values) -> LoopAnalysis:
+    """Solve a loop and return it with its responses and breaks as subjects."""
     if built.sampled is not None:
         return _sampled(project, loop, built, known, built.sampled)
     solution = solved(built.wiring)

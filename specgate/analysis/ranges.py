@@ -15,8 +15,8 @@ from typing import Literal
 
 from flint import fmpq
 
-from specgate.analysis.analyses import ResponseAnalysis
-from specgate.analysis.responses import response_analysis
+from specgate.analysis.analyse import loop_analysis
+from specgate.analysis.analyses import LoopAnalysis, ResponseAnalysis
 from specgate.analysis.rest import Rest
 from specgate.analysis.wiring import subsystems_of
 from specgate.project.instances import Use, Uses
@@ -24,8 +24,6 @@ from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, evaluate
 from specgate.project.temperatures import absolute
 from specgate.project.types import Call, Loop, Port, Project, Response, Signal, SignalExpression, Value
-from specgate.systems.delayed import DelayedSolution, solved
-from specgate.systems.solution import LoopSolution
 from specgate.terms.dimensions import TIME
 from specgate.terms.records import record
 from specgate.terms.unit import Unit
@@ -69,7 +67,6 @@ class Ranges:
 
     def __init__(self, project: Project, loop: Loop, known: Values) -> None:
         self._project, self._loop, self._known = project, loop, known
-        self._found: dict[str, ResponseAnalysis] = {}
 
     @cached_property
     def all(self) -> tuple[Ranged, ...]:
@@ -78,13 +75,7 @@ class Ranges:
 
     def response(self, response: Response, ranged: Ranged) -> ResponseAnalysis:
         """Return the response at a port to what drives a declared one; responses that are driven alike share it."""
-        key = _key(response, ranged.probe)
-        if key not in self._found:
-            built, probed = self._built, _at(response, ranged.probe)
-            self._found[key] = response_analysis(
-                built.signals, probed, self._solution, built.responses.get(key), self._known
-            )
-        return self._found[key]
+        return self._solved.responses[_key(response, ranged.probe)]
 
     # --- the second wiring ------------------------------------------------------------------------------------
 
@@ -112,17 +103,22 @@ class Ranges:
                 yield _Probe(instance, call.subsystem, "output", port, replace(call, output=name))
 
     @cached_property
-    def _built(self) -> InstantiatedLoop:
-        loop, project = self._loop, self._project
+    def _wired(self) -> Loop:
+        """The loop with the signals of the ports, and no responses but at them."""
+        loop = self._loop
         probes = {one.name: Signal(one.name, one.expression, one.name, loop.place) for one in self._probes}
         responses = {_key(one, name): _at(one, name) for one in loop.responses.values() for name in probes}
-        wired = replace(loop, signals={**loop.signals, **probes}, responses=responses, breaks={})
-        used = {name: project.subsystems[name] for name in subsystems_of(project, loop)}
-        return instantiate(replace(project, loops={loop.name: wired}, subsystems=used), self._known)[loop.name]
+        return replace(loop, signals={**loop.signals, **probes}, responses=responses, breaks={})
 
     @cached_property
-    def _solution(self) -> LoopSolution | DelayedSolution:
-        return solved(self._built.wiring)
+    def _built(self) -> InstantiatedLoop:
+        loop, project = self._wired, self._project
+        used = {name: project.subsystems[name] for name in subsystems_of(project, loop)}
+        return instantiate(replace(project, loops={loop.name: loop}, subsystems=used), self._known)[loop.name]
+
+    @cached_property
+    def _solved(self) -> LoopAnalysis:
+        return loop_analysis(self._project, self._wired, self._built, self._known)
 
     @cached_property
     def _rest(self) -> Rest:

@@ -11,6 +11,7 @@ from specgate.systems.blocks import LinearForm, OutputRef, SignalRef
 from specgate.terms.dimensions import TEMPERATURE
 from specgate.terms.unit import Unit
 
+Reference = SignalRef | OutputRef
 _ZERO = fmpq(0)
 
 
@@ -31,10 +32,8 @@ class Rest:
         form = self._wiring.signals[name]
         if len(form.terms) != 1 or form.terms[0][0] != 1:
             return None
-        reference = form.terms[0][1]
-        if isinstance(reference, SignalRef):
-            return reference.name
-        return next((other for other in self._declared if self._wiring.signals.get(other) == form), None)
+        named = self._named(form.terms[0][1])
+        return named or next((other for other in self._declared if self._wiring.signals.get(other) == form), None)
 
     def at(self, name: str, unit: Unit) -> fmpq:
         """Return the rest value of a signal that the loop does not name, from the zero of `unit`, coherent SI.
@@ -49,21 +48,26 @@ class Rest:
         zero = sum((factor * self._zero(reference, unit) for factor, reference in form.terms), _ZERO)
         return value + zero - unit.zero
 
-    def _zero(self, reference: SignalRef | OutputRef, otherwise: Unit) -> fmpq:
-        if isinstance(reference, SignalRef):
-            return self._built.signals.unit(reference.name).zero
-        return otherwise.zero
+    def _named(self, reference: Reference) -> str | None:
+        """Return the name of a declared signal; what stands for the output of a block outside the wiring has none."""
+        known = isinstance(reference, SignalRef) and reference.name in self._declared
+        return reference.name if isinstance(reference, SignalRef) and known else None
+
+    def _zero(self, reference: Reference, otherwise: Unit) -> fmpq:
+        named = self._named(reference)
+        return otherwise.zero if named is None else self._built.signals.unit(named).zero
 
     def _sum(self, form: LinearForm) -> fmpq:
         return sum((factor * self._value(reference) for factor, reference in form.terms), _ZERO)
 
-    def _value(self, reference: SignalRef | OutputRef) -> fmpq:
-        if isinstance(reference, SignalRef):
-            return self._built.rest.get(reference.name, _ZERO)
+    def _value(self, reference: Reference) -> fmpq:
+        named = self._named(reference)
+        if named is not None:
+            return self._built.rest[named]
         said = self._said(reference)
         return self._stationary(reference) if said is None else said
 
-    def _said(self, output: OutputRef) -> fmpq | None:
+    def _said(self, output: Reference) -> fmpq | None:
         """Return what the equation of a signal leaves for an output that it is made of."""
         for name in self._declared:
             form = self._wiring.signals.get(name)
@@ -71,13 +75,13 @@ class Rest:
             if form is None or share is None:
                 continue
             others = [(factor, one) for factor, one in form.terms if one != output]
-            if all(isinstance(one, SignalRef) for _, one in others):
+            if all(self._named(one) for _, one in others):
                 return (self._built.rest[name] - self._sum(LinearForm(tuple(others)))) / share
         return None
 
-    def _stationary(self, output: OutputRef) -> fmpq:
-        instance = self._instances.get(output.instance)
-        if instance is None or instance.block.denominator[0] == 0:
+    def _stationary(self, output: Reference) -> fmpq:
+        instance = self._instances.get(output.instance) if isinstance(output, OutputRef) else None
+        if not isinstance(output, OutputRef) or instance is None or instance.block.denominator[0] == 0:
             return _ZERO
         block = instance.block
         gains = ((block.numerators.get((output.output, name)), name) for name in block.inputs)

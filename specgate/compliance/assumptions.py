@@ -49,7 +49,7 @@ class Excursion:
     def moved(self) -> bool:
         """Whether the response moves the signal at all, as far as that is known."""
         channels = self.analysis.channels
-        return not channels or any(channel.transfer.numerator for channel in channels)
+        return any(channel.transfer.numerator for channel in channels) if channels else self.peak.exact != 0
 
     @cached_property
     def peak(self) -> Answer:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import itertools
+import math
 from collections.abc import Callable, Sequence
 from pathlib import Path
 from textwrap import dedent
@@ -313,3 +314,55 @@ def test_signals_of_a_loop_with_dead_time_against_a_simulation(assumed: Assumed)
     assert reached(found["the output of belt", "linear_range"]) == pytest.approx(max(flows), rel=1e-5)
     assert reached(found["the output of belt", "rate_range"]) == pytest.approx(max(rates), rel=1e-3)
     assert all(one.decision.holds is Trilean.YES for one in found.values())
+
+
+SAMPLED = """
+    specgate: 1
+    project: {id: T-5, title: Test, revision: A}
+    subsystems:
+      keeper:
+        input: {unit: degC, linear_range: [-8 degC, 8 degC]}
+        output: {unit: kW, linear_range: [0 kW, 9 kW], rate_range: [-1 kW/s, 1 kW/s]}
+        model: {sampled: {period: 2 s, numerator: [0.9 kW/K, -0.85 kW/K], denominator: [1, -1]}}
+      bath:
+        input: {unit: kW, linear_range: [0 kW, 9 kW]}
+        output: {unit: degC, linear_range: [5 degC, 60 degC]}
+        model: {gain: 4 K/kW, lags: [40 s]}
+    loops:
+      warmth:
+        inputs: {order: {unit: degC}, draft: {unit: kW}}
+        signals: {call: keeper(order - temperature), temperature: bath(call - draft)}
+        rest: {order: 37 degC, temperature: 310.15 K, call: 4 kW}
+        responses: {warm: {from: order, to: temperature, input: step, size: 2 K}}
+"""
+
+
+def test_signals_of_a_sampled_loop_against_its_recursion(assumed: Assumed) -> None:
+    found = by_range(assumed(SAMPLED, "warmth", "warm"))
+    kept = math.exp(-2 / 40)
+    error, call, temperature, calls, temperatures = 0.0, 0.0, 0.0, [], []
+    for _ in range(400):
+        before, error = error, 2.0 - temperature
+        call += 0.9 * error - 0.85 * before
+        temperature = kept * temperature + (1 - kept) * 4 * call
+        calls.append(call)
+        temperatures.append(temperature)
+    # a single lag under a held input moves one way between samples, so that its extremes are at samples
+    assert reached(found["the output of keeper", "linear_range"]) == pytest.approx(1000 * max(calls), rel=1e-10)
+    assert reached(found["the input of bath", "linear_range"]) == pytest.approx(1000 * max(calls), rel=1e-10)
+    assert reached(found["the output of bath", "linear_range"]) == pytest.approx(max(temperatures), rel=1e-10)
+    assert found["the output of keeper", "rate_range"].decision.holds is Trilean.NO
+    assert found["the output of bath", "linear_range"].ranged.rest == 37
+    assert found["the output of keeper", "linear_range"].ranged.signal == "call"
+    assert found["the input of keeper", "linear_range"].ranged.rest == 0
+
+
+def test_a_sampled_block_that_stands_still_is_no_assumption(assumed: Assumed) -> None:
+    text = (
+        SAMPLED.replace("bath(call - draft)", "bath(draft)")
+        .replace("from: order", "from: draft")
+        .replace("2 K", "2 kW")
+    )
+    assert "the output of keeper" in {one.ranged.probe for one in assumed(text, "warmth", "warm")}
+    alone = text.replace("order - temperature", "order")
+    assert {one.ranged.probe for one in assumed(alone, "warmth", "warm")} == {"the input of bath", "the output of bath"}
