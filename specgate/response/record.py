@@ -59,4 +59,4 @@ def _rounded_up(time: arb) -> float:
 
 def together(method: str, **parts: Answer) -> Mapping[str, object]:
     """Say that a number is made of others, each with its own record."""
-    return {"method": method, **{name: dict(part.how()) for name, part in parts.items() if part.how is not None}}
+    return {"method": method, "parts": {name: part.how() for name, part in parts.items() if part.how is not None}}

@@ -10,7 +10,7 @@ from flint import fmpq, fmpq_poly
 
 from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer, Fragile
-from specgate.review.types import Amount, Beside, DelayedTerm, Location, Pole, Result
+from specgate.review.types import Amount, Beside, DelayedTerm, Location, Pole, ProofPart, ProofRecord, Result
 from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root
 from specgate.terms.decimals import power_of_ten
@@ -125,14 +125,16 @@ def result(
     return found if reading.settled.at is None else replace(found, at=_beside(reading, signal))
 
 
-def _record(reading: Reading, unit: Unit, scale: fmpq | None, method: str) -> Mapping[str, object]:
+def _record(reading: Reading, unit: Unit, scale: fmpq | None, method: str) -> ProofRecord:
     """Say how a bounded result was obtained."""
-    how = reading.settled.how
-    return {
-        "bits": precision_of(reading.in_unit(unit).enclose, scale),
-        "method": method,
-        **({} if how is None else how()),
-    }
+    answer = reading.settled
+    how: dict[str, Any] = {"method": method, **({} if answer.how is None else answer.how())}
+    parts = how.pop("parts", None)
+    return ProofRecord(
+        **how,
+        bits=precision_of(reading.in_unit(unit).enclose, scale),
+        parts=None if parts is None else {name: ProofPart(**part) for name, part in parts.items()},
+    )
 
 
 def _beside(reading: Reading, signal: Unit) -> Beside:

@@ -56,6 +56,31 @@ class Beside:
 
 
 @record
+class ProofPart:
+    """How a number was proved, coherent SI; nothing in it depends on the processor."""
+
+    method: str
+    poles: int | None = _omitted()
+    pole_radius: float | None = _omitted()
+    """No pole lies further from the middle of its enclosure, 1/s; a power of ten, 0 where all are exact."""
+    bits_of_modes: int | None = _omitted()
+    """Precision of the modes that the search started from."""
+    brackets: int | None = _omitted()
+    """Intervals that hold what is searched, with one proved change of sign each."""
+    searched_until: float | None = _omitted()
+    """Time (s) from which on a bound excludes what is searched, rounded up."""
+
+
+@record
+class ProofRecord(ProofPart):
+    """How a bounded result was obtained, and the records of the numbers that it is made of."""
+
+    bits: int = 0
+    """Working precision at which all printed digits are settled."""
+    parts: Mapping[str, ProofPart] | None = _omitted()
+
+
+@record
 class Result:
     """A value as printed (12 significant digits) with its proved bounds, or the reason why there is none."""
 
@@ -71,8 +96,8 @@ class Result:
     """What a small change would do to the value. Said of every settling time in a list of measures, if only as null."""
     signed: float | None = _omitted()
     at: Beside | None = _omitted()
-    proof_record: Mapping[str, Any] | None = _omitted()
-    """How a bounded result was obtained; only where the record was asked for. Coherent SI."""
+    proof_record: ProofRecord | None = _omitted()
+    """How a bounded result was obtained; only where the record was asked for."""
 
 
 @record

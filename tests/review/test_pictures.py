@@ -7,14 +7,15 @@ from pathlib import Path
 from specgate.intake.load import Problems, load
 from specgate.review.build import review
 from specgate.review.types import BasisReview
+from specgate.review.wanted import Wanted
 
 EXAMPLE = Path(__file__).resolve().parents[1] / "examples" / "spec_format"
 
 
-def basis(*, curves: bool = True) -> BasisReview:
+def basis(*, drawn: bool = True) -> BasisReview:
     project = load(EXAMPLE)
     assert not isinstance(project, Problems)
-    return review(project, curves=curves).requirements["GH-SYS-031"].criteria[0].basis
+    return review(project, Wanted(drawn)).requirements["GH-SYS-031"].criteria[0].basis
 
 
 def test_the_error_over_damping_and_this_loop_on_it() -> None:
@@ -44,6 +45,6 @@ def test_the_separation_is_five_decay_rates() -> None:
 
 
 def test_what_is_only_drawn_is_left_out_where_nothing_is_drawn() -> None:
-    found = basis(curves=False)
+    found = basis(drawn=False)
     assert found.error_curve is None
     assert found.separation is None

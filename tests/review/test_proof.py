@@ -89,20 +89,23 @@ def test_what_the_record_of_a_settling_time_says_is_so(proved: Review) -> None:
     (criterion,) = proved.requirements["R-1"].criteria
     record = criterion.result.proof_record
     assert record is not None
-    assert (record["poles"], record["brackets"]) == (2, 1)
-    assert record["bits"] in (64, 128, 192, 256)
-    assert 0 < record["pole_radius"] < 1e-30
-    assert math.log10(record["pole_radius"]) == pytest.approx(round(math.log10(record["pole_radius"])))
+    assert (record.poles, record.brackets) == (2, 1)
+    assert record.bits in (64, 128, 192, 256)
+    assert record.pole_radius is not None
+    assert record.searched_until is not None
+    assert 0 < record.pole_radius < 1e-30
+    assert math.log10(record.pole_radius) == pytest.approx(round(math.log10(record.pole_radius)))
     # the envelope 1/sqrt(1 - zeta^2) exp(-0.6 t), zeta = 0.2, is 2 % from here on
     envelope = math.log(50 / math.sqrt(1 - 0.04)) / 0.6
-    assert envelope <= record["searched_until"] * (1 + 1e-12) <= 1.02 * envelope
-    assert record["searched_until"] >= criterion.result.value  # type: ignore[operator]
+    assert envelope <= record.searched_until * (1 + 1e-12) <= 1.02 * envelope
+    assert record.searched_until >= criterion.result.value  # type: ignore[operator]
 
 
 def test_a_difference_has_the_records_of_both(proved: Review) -> None:
     (rise,) = [one for one in proved.loops["level"].responses["lift"].measures if one.measure == "rise_time"]
     assert rise.proof_record is not None
-    assert rise.proof_record["later"]["brackets"] == rise.proof_record["earlier"]["brackets"] == 1
+    assert rise.proof_record.parts is not None
+    assert [(name, part.brackets) for name, part in rise.proof_record.parts.items()] == [("later", 1), ("earlier", 1)]
 
 
 def test_an_exact_peak_has_none(proved: Review) -> None:
