@@ -1,15 +1,14 @@
-"""A sum of decaying modes with a bounded rest: its values, when it stays small, and which sign it keeps."""
+"""What is left of a delayed response in the end: when it stays small, which sign it keeps, what its integral is."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from dataclasses import dataclass
 
 from flint import arb, fmpq
 
-from specgate.delays.modal import Modal
-from specgate.delays.remainder import ORDERS, Remainder
-from specgate.delays.steps import Mode, Values
+from specgate.delays.remainder import Remainder
+from specgate.delays.steps import Mode
 from specgate.terms.precision import working_precision
 
 _BITS = 64
@@ -19,54 +18,31 @@ _HALVINGS = 40
 
 @dataclass(frozen=True)
 class Fading:
-    """modes: x counted from `origin`. rest: bound of what they leave. left_out: that of dead modes, by derivative."""
+    """Decaying modes, x counted from `origin`, and a bound of what they leave, from a time `since` on."""
 
     modes: tuple[Mode, ...]
     rest: Remainder | None
     origin: fmpq
-    bits: int = 2 * _BITS + 64
-    left_out: tuple[arb, ...] = ()
-
-    def at(self, time: arb, at_origin: Sequence[fmpq]) -> Values:
-        """Return the sum with its derivatives, plus the residue at s = 0: sum of at_origin[l] t^l / l!."""
-        with working_precision(self.bits):
-            if not self.modes and self.rest is None:
-                nothing = arb("nan")
-                return nothing, nothing, nothing, nothing
-            total = [arb(0)] * 4
-            for mode in self.modes:
-                mode.add(total, time - self.origin)
-            for order in ORDERS:
-                total[order] += _polynomial(at_origin, order, time) + arb(0, self._left(order, time))
-        return total[0], total[1], total[2], total[3]
-
-    def _left(self, order: int, time: arb) -> arb:
-        size = arb(0) if self.rest is None else self.rest.at(order, arb(time.lower()))
-        return (size + self.left_out[order]).abs_upper() if self.left_out else size
-
-    @property
-    def speed(self) -> float:
-        """The speed of the fastest mode (rad/s)."""
-        return max((float(abs(mode.pole).mid()) for mode in self.modes), default=0.0)
+    since: fmpq
 
     def size(self, order: int, time: fmpq) -> arb:
-        """Return what the sum, without the part at s = 0, does not exceed from a time on."""
+        """Return what a derivative does not exceed from a time on."""
         at = arb(time)
         total = sum((mode.envelope(order, at - self.origin) for mode in self.modes), arb(0))
         return total if self.rest is None else (total + self.rest.at(order, at)).abs_upper()
 
-    def below(self, order: int, size: fmpq, since: fmpq) -> fmpq | None:
-        """Return a time not before `since` from which on the sum is at most `size`; None: not found."""
+    def below(self, order: int, size: fmpq) -> fmpq | None:
+        """Return a time from which on a derivative is at most `size`; None: not found."""
         limit = arb(size)
-        return _first(lambda time: bool(self.size(order, time) <= limit), since)
+        return _first(lambda time: bool(self.size(order, time) <= limit), self.since)
 
-    def lasting(self, since: fmpq) -> tuple[int, fmpq] | None:
+    def lasting(self) -> tuple[int, fmpq] | None:
         """Return the sign that the sum keeps, and from when on; None where its slowest mode is no real pole.
 
         Beyond the time found the slowest mode exceeds the envelopes of the others, all of which decay faster.
         """
         if not self.modes:
-            return None
+            return (0, self.since) if self.rest is None else None
         with working_precision(_BITS):
             slowest = max(self.modes, key=lambda mode: mode.pole.real.mid().fmpq())
             others = tuple(mode for mode in self.modes if mode is not slowest)
@@ -74,13 +50,13 @@ class Fading:
             lead = slowest.polynomials[0]
             if not slowest.pole.imag.is_zero() or not ahead or lead.degree() > 0 or lead[0].real.contains(0):
                 return None
-            rest = Fading(others, self.rest, self.origin)
+            rest = Fading(others, self.rest, self.origin, self.since)
 
             def decided(time: fmpq) -> bool:
                 at = arb(time) - self.origin
                 return bool(rest.size(0, time) < abs(lead[0].real) * (slowest.pole.real * at).exp())
 
-            found = _first(decided, max(since, rest.falling_from(slowest.pole.real)))
+            found = _first(decided, max(self.since, rest.falling_from(slowest.pole.real)))
         if found is None:
             return None
         return (1 if lead[0].real > 0 else -1), found
@@ -94,34 +70,24 @@ class Fading:
                 latest = max(latest, (arb(power) / (rate - mode.pole.real)).upper().fmpq() + self.origin)
         return latest
 
-    def integrals(self, time: fmpq) -> tuple[fmpq, fmpq]:
-        """Return bounds of the integrals of the magnitude and of the square from a time on."""
+    def integrals(self, time: fmpq) -> tuple[fmpq, fmpq] | None:
+        """Return bounds of the integrals of the magnitude and of the square from a time on; None where it still grows.
+
+        From x on t^j e^(-a t) is at most its value there times e^(-(a - j/x) (t - x)), for the logarithm of t^j is
+        concave.
+        """
         with working_precision(_BITS):
             at, total = arb(time), arb(0)
             for mode in self.modes:
-                rate = -mode.pole.real - arb(mode.polynomials[0].degree()) / (at - self.origin)
-                total += mode.envelope(0, at - self.origin) / rate if rate > 0 else arb("inf")
+                power = mode.polynomials[0].degree()
+                rate = -mode.pole.real - (arb(power) / (at - self.origin) if power > 0 else 0)
+                if not rate > 0:
+                    return None
+                total += mode.envelope(0, at - self.origin) / rate
             if self.rest is not None:
                 total += self.rest.at(0, at) / self.rest.rate
             square = total * self.size(0, time)
-            if not square.is_finite():
-                raise ValueError("the modes still grow at this time")
             return total.upper().fmpq(), square.upper().fmpq()
-
-
-def fading_of(modal: Modal, since: fmpq, tiny: arb) -> Fading:
-    """Return the modes that are still alive at a time; each that is left out is below `tiny` from then on."""
-    bits = 2 * _BITS + 64
-    with working_precision(_BITS):
-        alive: list[Mode] = []
-        left = [arb(0)] * len(ORDERS)
-        for mode in modal.modes(bits):
-            sizes = [mode.envelope(order, arb(since)) for order in ORDERS]
-            if sizes[0] < tiny:
-                left = [(total + size).abs_upper() for total, size in zip(left, sizes, strict=True)]
-            else:
-                alive.append(mode)
-    return Fading(tuple(alive), modal.rest, fmpq(0), bits, tuple(left))
 
 
 def _first(holds: Callable[[fmpq], bool], since: fmpq) -> fmpq | None:
@@ -143,12 +109,3 @@ def _first(holds: Callable[[fmpq], bool], since: fmpq) -> fmpq | None:
             if (high - low) * 1000 < high:
                 break
         return high
-
-
-def _polynomial(coefficients: Sequence[fmpq], order: int, time: arb) -> arb:
-    """Return a derivative of sum of c[l] t^l / l!."""
-    total, factor = arb(0), arb(1)
-    for power, coefficient in enumerate(coefficients[order:]):
-        factor = factor * time / power if power else factor
-        total += factor * coefficient
-    return total

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from flint import fmpq_poly
+from flint import fmpq, fmpq_poly
 
-from specgate.delays.pieces import DelayedPieces
+from specgate.delays.course import Course
+from specgate.delays.pieces import DelayedPieces, Part
 from specgate.delays.transform import Transform
 from specgate.response.answers import Absent
 from specgate.response.counted import Counted
@@ -19,6 +20,7 @@ from specgate.systems.quasi import Quasi
 
 _S = fmpq_poly([0, 1])
 
+Share = tuple[DelayedTransfer, Term]
 Driven = tuple[DelayedTransfer, Input]
 """A channel to the signal that is looked at, and what drives it."""
 
@@ -32,29 +34,49 @@ def respond_late(driven: Sequence[Driven]) -> TimeResponse | Absent:
     undelayed = [(channel, given) for channel, given in rational if channel is not None]
     if len(undelayed) == len(driven):
         return respond(undelayed)
-    transform = _transform(driven)
-    if isinstance(transform, Absent):
-        return transform
-    if not transform.proper:
+    parts = _parts(driven)
+    if isinstance(parts, Absent):
+        return parts
+    if not all(part.course.transform.proper for part in parts):
         return Absent("an impulse passes straight through to the signal, or a step through a differentiator")
-    response = PiecewiseResponse(DelayedPieces(transform))
+    response = PiecewiseResponse(DelayedPieces(parts))
     since = max(given.since for _, given in driven)
     return response if since == 0 else Counted(response, since)
 
 
-def _transform(driven: Sequence[Driven]) -> Transform | Absent:
-    sums: list[tuple[DelayedTransfer, Term]] = []
+def _parts(driven: Sequence[Driven]) -> list[Part] | Absent:
+    """Return a part for each time at which a term begins; those that differ by a factor alone share their course."""
+    by_time: dict[fmpq, list[Share]] = {}
     for channel, given in driven:
         for term in terms(given):
             if isinstance(term, Bump):
                 reason = "the response to one minus a cosine through a dead time is not answered by this version"
                 return Absent(reason, proved=False)
-            sums.append((channel, term))
-    below = least_common_multiple(_S * term.denominator for _, term in sums)
+            by_time.setdefault(term.begin, []).append((channel, term))
+    parts: list[Part] = []
+    for begin, shares in sorted(by_time.items()):
+        transform = _transform(shares)
+        if transform.numerator:
+            parts.append(_part(begin, transform, parts))
+    return parts
+
+
+def _part(begin: fmpq, transform: Transform, known: Sequence[Part]) -> Part:
+    lead = transform.numerator.terms[0][1].leading_coefficient()
+    scaled = Transform(transform.numerator.scaled(1 / lead), transform.loop, transform.factors, transform.below)
+    for part in known:
+        if part.course.transform == scaled:
+            return Part(begin, lead, part.course)
+    return Part(begin, lead, Course(scaled))
+
+
+def _transform(shares: Sequence[Share]) -> Transform:
+    """Return the transform of terms that begin together, counted from there."""
+    below = least_common_multiple(_S * term.denominator for _, term in shares)
     total = Quasi(())
-    for channel, term in sums:
+    for channel, term in shares:
         share = term.numerator * exact_quotient(below, _S * term.denominator) * term.size
-        total = total + channel.numerator * Quasi.of({term.begin: share})
+        total = total + channel.numerator * Quasi.rational(share)
     common = total.content.gcd(below) if total else below
-    loop = driven[0][0]
+    loop = shares[0][0]
     return Transform(total.over(common), loop.denominator, loop.factors, exact_quotient(below, common))

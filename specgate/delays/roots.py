@@ -13,7 +13,8 @@ from flint import acb, arb, fmpq
 
 from specgate.delays.seeds import seeds
 from specgate.systems.quasi import Quasi
-from specgate.systems.quasi_count import Evaluated, line
+from specgate.systems.quasi_count import Evaluated, dominated_beyond, line
+from specgate.systems.quasi_stability import is_stable
 from specgate.terms.precision import working_precision
 
 _FIRST = 64
@@ -60,16 +61,24 @@ def rightmost(quasi: Quasi, left: fmpq) -> Rightmost | None:
 def certified_right(quasi: Quasi, left: fmpq, height: fmpq, fineness: float = 1.0) -> Rightmost:
     """Return roots right of Re s = left that a search up to a height finds, 0 not among them: perhaps not all."""
     edge, top = (int(value.p) / int(value.q) for value in (left, height))
+    right = 0.0 if is_stable(quasi) else _reach(quasi)
     with working_precision(_FIRST):
         function = Evaluated(quasi)
         found: list[acb] = []
-        for seed in seeds(quasi, edge, top, fineness):
+        for seed in seeds(quasi, edge, top, fineness, right):
             root = certified(function, acb(seed.real, seed.imag))
             if root is None or not root.real > arb(left) or root.contains(0):
                 continue
             if not any(root.overlaps(known) for known in found):
                 found.append(root)
     return Rightmost(quasi, tuple(found))
+
+
+def _reach(quasi: Quasi) -> float:
+    """Return how far right a search for growing modes goes: about as far as they oscillate, a few delays at most."""
+    height = dominated_beyond(quasi, fmpq(0))
+    rate = 1.0 / (int(quasi.delayed[-1][0].p) / int(quasi.delayed[-1][0].q))
+    return 6.0 * rate if height is None else min(6.0 * rate, 1.2 * int(height.p) / int(height.q) + 0.1 * rate)
 
 
 def certified(function: Evaluated, guess: acb) -> acb | None:

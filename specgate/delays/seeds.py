@@ -20,11 +20,11 @@ Complexes = NDArray[np.complex128]
 _MOST_POINTS = 400_000
 
 
-def seeds(quasi: Quasi, left: float, height: float, fineness: float = 1.0) -> list[complex]:
+def seeds(quasi: Quasi, left: float, height: float, fineness: float = 1.0, right: float = 0.0) -> list[complex]:
     """Return guesses of the roots with left <= Re s and 0 <= Im s, on the grid up to a height, in no order."""
     function = _Floats(quasi)
     with np.errstate(all="ignore"):
-        guesses = np.concatenate([_grid(function, left, height, fineness), _rational(quasi)])
+        guesses = np.concatenate([_grid(function, (left, right), height, fineness), _rational(quasi)])
         found = function.bettered(guesses)
     inside = np.isfinite(found) & (found.real > left) & (found.imag > -1e-9 * (1.0 + np.abs(found)))
     return _distinct(found[inside])
@@ -53,10 +53,11 @@ class _Floats:
         return chosen
 
 
-def _grid(function: _Floats, left: float, height: float, fineness: float) -> Complexes:
+def _grid(function: _Floats, across: tuple[float, float], height: float, fineness: float) -> Complexes:
+    left, right = across
     longest = max(function.delays)
     step = min(pi / (8.0 * fineness * longest), -left / (6.0 * fineness))
-    columns, rows = int(-left / step) + 3, int(height / step) + 3
+    columns, rows = int((right - left) / step) + 3, int(height / step) + 3
     if columns * rows > _MOST_POINTS:
         return np.zeros(0, dtype=np.complex128)
     real = left - step + step * np.arange(columns)

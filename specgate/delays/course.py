@@ -1,0 +1,204 @@
+"""The course of one transform: the method of steps first, then its rightmost poles.
+
+Up to a time T the response is a sum of rational ones (`steps`), with a kink at each sum of delays at which one begins.
+From T on it is the sum of its residues at the poles right of a line, within a proved bound that is far below anything
+that is asked (`modal`); there the pieces are doublings of time, on each of which modes that have died join the bound.
+"""
+
+from __future__ import annotations
+
+from functools import cached_property
+
+from flint import acb, arb, fmpq
+
+from specgate.delays.fading import Fading
+from specgate.delays.modal import Modal, modal
+from specgate.delays.remainder import ORDERS
+from specgate.delays.steps import Mode, Steps, kinks_of, summed
+from specgate.delays.stretch import Group, Stretch
+from specgate.delays.transform import Transform
+from specgate.terms.precision import HIGHEST, working_precision
+
+_BITS = 112
+"""Bits, relative to the size of the response, to which the remainder and what is lost in sums are pushed down.
+
+More bits than these make no ball narrower: what has to be told apart more closely than 33 digits stays open.
+"""
+
+_MOST_KINKS = 600
+_ALONE = 24
+"""Longest delays over which a response is followed that has no modal sum."""
+
+_LATEST = 40
+"""Doublings of time after which modes are not sorted out any more."""
+
+_ZERO, _ONE = fmpq(0), fmpq(1)
+
+
+class Course:
+    """y(t) of a transform whose undelayed denominator is of the highest degree; t from its own start on."""
+
+    def __init__(self, transform: Transform) -> None:
+        self.transform = transform
+        self._stretches: dict[int, Stretch] = {}
+
+    @cached_property
+    def longest(self) -> fmpq:
+        """The longest delay."""
+        delays = [delay for part in (self.transform.numerator, self.transform.denominator) for delay, _ in part.terms]
+        return max(delays, default=_ZERO)
+
+    @cached_property
+    def looped(self) -> bool:
+        """Whether a dead time stands in a loop on the way, so that kinks follow without end."""
+        return not self.transform.denominator.is_rational
+
+    @cached_property
+    def retarded(self) -> bool:
+        """Whether every delayed term of the denominator is of lower degree than the undelayed one."""
+        denominator = self.transform.denominator
+        return all(p.degree() < denominator.undelayed.degree() for _, p in denominator.delayed)
+
+    @cached_property
+    def modal(self) -> Modal | None:
+        """The modal sum; None where there is none, or it was not found."""
+        return modal(self.transform, 6 * self.longest) if self.looped and self.retarded else None
+
+    @cached_property
+    def _scale(self) -> arb:
+        """A number of the size of the response."""
+        size = abs(arb(self.transform.at_origin[0])) if self.transform.at_origin else arb(0)
+        with working_precision(64):
+            for mode in self.modal.modes(64) if self.modal is not None else ():
+                at = (mode.polynomials[0](acb(self.longest)) * (mode.pole * self.longest).exp()).abs_upper()
+                size = size.max(at)
+            return size.mid() if size > 0 else arb(1)
+
+    @cached_property
+    def _wanted(self) -> fmpq:
+        """T at which the remainder is 2^-_BITS of the size of the response, or as far as the response is followed."""
+        if self.modal is None:
+            return _ALONE * self.longest if self.looped else self.longest
+        rest = self.modal.rest
+        with working_precision(64):
+            times = ((rest.sizes[0] / self._scale).log() + _BITS * arb(2).log()) / rest.rate * 4 / self.longest
+        return max(rest.since, self.longest * fmpq(int(times.upper().fmpq().ceil())) / 4)
+
+    @cached_property
+    def _early(self) -> tuple[tuple[fmpq, ...], fmpq]:
+        """The kinks that are told one by one, and where they end."""
+        until = self._wanted
+        while True:
+            found = kinks_of(self.transform.numerator, self.transform.denominator, until, _MOST_KINKS)
+            if found is not None:
+                return found, until
+            until = until / 2
+
+    @property
+    def _kinks(self) -> tuple[fmpq, ...]:
+        return self._early[0]
+
+    @property
+    def ends(self) -> fmpq:
+        """Where the pieces of the method of steps end."""
+        return self._early[1]
+
+    @cached_property
+    def followed(self) -> bool:
+        """Whether the modal sum takes over where the method of steps ends."""
+        return self.modal is not None and self.ends == self._wanted
+
+    @cached_property
+    def begins(self) -> tuple[fmpq, ...]:
+        """Where the pieces begin; the last one never ends."""
+        dead = () if self._kinks and self._kinks[0] == 0 else (_ZERO,)
+        early = (*dead, *self._kinks)
+        if not self.looped:
+            return early
+        early = tuple(time for time in early if time < self.ends)
+        return (*early, *(self.ends * 2**k for k in range(len(self._late))))
+
+    @cached_property
+    def _late(self) -> tuple[Stretch, ...]:
+        """The modes alive on each doubling of time after the early pieces; nothing is known where there are none."""
+        if not self.followed or self.modal is None:
+            return (Stretch((), _BITS, known=False),)
+        tiny = self._scale * arb(2) ** -_BITS
+        found: list[Stretch] = []
+        for doubling in range(_LATEST):
+            group = self._alive(self.modal, self.ends * 2**doubling, tiny)
+            found.append(Stretch((group,), 2 * _BITS))
+            if len(group.modes) <= 1:
+                break
+        return tuple(found)
+
+    def _alive(self, modal: Modal, since: fmpq, tiny: arb) -> Group:
+        """Return the modes that are still alive at a time; each that is left out stays below `tiny`."""
+        with working_precision(64):
+            alive: list[Mode] = []
+            left = [arb(0)] * len(ORDERS)
+            for mode in modal.modes(2 * _BITS):
+                dead = bool(mode.pole.real < 0 and mode.envelope(0, arb(since)) < tiny)
+                if dead:
+                    left = [(size + mode.envelope(k, arb(since))).abs_upper() for k, size in enumerate(left)]
+                else:
+                    alive.append(mode)
+        return Group(_ZERO, _ONE, _ZERO, tuple(alive), self.transform.at_origin, modal.rest, tuple(left))
+
+    @cached_property
+    def _steps(self) -> Steps:
+        """The early terms, at a precision at which little enough is lost at their end."""
+        bits = 2 * _BITS
+        while True:
+            steps = Steps(self.transform.numerator, self.transform.denominator, self._kinks, bits)
+            with working_precision(bits):
+                end = summed(steps.modes(len(self._kinks) - 1), arb(0))[0] if self._kinks else arb(0)
+                if end.rad() < self._scale * arb(2) ** -_BITS or bits > HIGHEST:
+                    return steps
+            bits *= 2
+
+    def stretch(self, index: int) -> Stretch:
+        """Return piece `index`."""
+        if index not in self._stretches:
+            self._stretches[index] = self._stretch(index)
+        return self._stretches[index]
+
+    def _stretch(self, index: int) -> Stretch:
+        late = index - (len(self.begins) - len(self._late)) if self.looped else -1
+        if late >= 0:
+            return self._late[late]
+        number = index - (0 if self._kinks and self._kinks[0] == 0 else 1)
+        if number < 0:
+            return Stretch((), _BITS)
+        group = Group(_ZERO, _ONE, self._kinks[number], self._steps.modes(number))
+        return Stretch((group,), self._steps.bits)
+
+    @cached_property
+    def jumps(self) -> dict[fmpq, fmpq]:
+        """The limit of s c_T(s) for large s at each early kink: by how much y jumps there (see `steps`)."""
+        numerator, denominator = self.transform.numerator, self.transform.denominator
+        degree, lead = denominator.undelayed.degree(), denominator.undelayed.leading_coefficient()
+        driven = {delay: p[degree - 1] for delay, p in numerator.terms}
+        found: dict[fmpq, fmpq] = {}
+        for time in self._kinks:
+            total = driven.get(time, _ZERO)
+            for delay, p in denominator.delayed:
+                if p.degree() == degree and time - delay in found:
+                    total -= p[degree] * found[time - delay]
+            found[time] = total / lead
+        return found
+
+    @cached_property
+    def fading(self) -> Fading | None:
+        """What is left beside the polynomial in the end; None where that is not known, or does not fade."""
+        if self.transform.stable is not True:
+            return None
+        if self.looped:
+            if not self.followed or self.modal is None:
+                return None
+            return Fading(self.modal.modes(2 * _BITS), self.modal.rest, _ZERO, self.ends)
+        if not self._kinks:
+            return Fading((), None, _ZERO, _ZERO)
+        last = self._kinks[-1]
+        modes = self._steps.modes(len(self._kinks) - 1)
+        return Fading(tuple(mode for mode in modes if not mode.pole.is_zero()), None, last, last)
