@@ -80,6 +80,7 @@ class DelayedPieces(Pieces):
                 tuple(group.moved(part.begin, part.factor) for part, stretch in found for group in stretch.groups),
                 max((stretch.bits for _, stretch in found), default=64),
                 all(stretch.known for _, stretch in found),
+                (begin, self._begins[index + 1]) if index + 1 < len(self._begins) else None,
             )
         return self._stretches[index]
 

@@ -4,15 +4,20 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import cached_property
 
 from flint import acb_poly, arb, fmpq, fmpq_poly
 
+from specgate.delays.panel import Panel, panel
 from specgate.delays.remainder import ORDERS, Remainder
 from specgate.delays.steps import Mode, Values
 from specgate.response import modes as response_modes
-from specgate.response.modal_integrals import integral, square_integral
+from specgate.response.superposed.integrals import integral, square_integral
 from specgate.response.modes import Expansion
 from specgate.terms.precision import working_precision
+
+_NARROW = arb(2) ** -30
+"""Part of a piece below which a ball of times is narrow."""
 
 
 @dataclass(frozen=True)
@@ -70,17 +75,33 @@ class Group:
 
 @dataclass(frozen=True)
 class Stretch:
-    """The sum of some groups; without any it is zero. known: whether anything is told of it at all."""
+    """The sum of some groups; without any it is zero.
+
+    known: whether anything is told of it at all. span: its ends, where it is a piece of the method of steps.
+    """
 
     groups: tuple[Group, ...]
     bits: int
     known: bool = True
+    span: tuple[fmpq, fmpq] | None = None
+
+    @cached_property
+    def _panel(self) -> Panel | None:
+        """The same as one polynomial, for wide balls of times."""
+        if self.span is None or any(group.drift or group.rest is not None for group in self.groups):
+            return None
+        terms = ((group.origin, group.factor, mode) for group in self.groups for mode in group.modes)
+        return panel(terms, *self.span, self.bits)
 
     def at(self, time: arb) -> Values:
         """Return balls of y, y', y'', y''' over a ball of times."""
         if not self.known:
             nothing = arb("nan")
             return nothing, nothing, nothing, nothing
+        if self.span is not None and not time.rad() < _NARROW * arb(self.span[1] - self.span[0]):
+            wide = self._panel
+            if wide is not None:
+                return wide.at(time)
         with working_precision(self.bits):
             total = [arb(0)] * len(ORDERS)
             for group in self.groups:

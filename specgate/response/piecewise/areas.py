@@ -231,6 +231,8 @@ class Areas:
         with working_precision(LOOK):
             share = arb(patch.right - patch.left) / self._length(patch.index)
             flat = bool((high - low) * share < self._size * dyadic(-_FLAT))
+            # Where a value is known no better than this, a shorter patch tells no more.
+            flat = flat or bool(8 * patch.middle[0].rad() > high - low)
         return (0, None) if flat or patch.depth > _DEEPEST else None
 
 
