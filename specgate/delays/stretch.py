@@ -12,8 +12,8 @@ from specgate.delays.panel import Panel, panel
 from specgate.delays.remainder import ORDERS, Remainder
 from specgate.delays.steps import Mode, Values
 from specgate.response import modes as response_modes
-from specgate.response.superposed.integrals import integral, square_integral
 from specgate.response.modes import Expansion
+from specgate.response.superposed.integrals import integral, square_integral
 from specgate.terms.precision import working_precision
 
 _NARROW = arb(2) ** -30
