@@ -67,7 +67,7 @@ def _response(
     driven = tuple(zip((one.source for one in response.excitations), inputs, strict=True))
     only = slow[sources[0]]
     subject = ResponseSubject(
-        SlowTransfer(only.numerator, only.denominator) if len(sources) == 1 else SEVERAL,
+        SlowTransfer(only) if len(sources) == 1 else SEVERAL,
         inputs[0].quantities["size"] if plain(inputs) else fmpq(1),
         _in_time(channel(solution, sources, form), driven),
         _error(signals, response, solution, driven),
@@ -120,6 +120,5 @@ def _break(declared: Break, solution: SampledSolution, unsupported: str | None) 
         return BreakAnalysis(declared, Missing(found.algebraic_loop.reason), found)
     if found.slow is None or found.reason is not None:
         return BreakAnalysis(declared, Missing(found.reason or "", later=True))
-    slow = SlowTransfer(found.slow.numerator, found.slow.denominator)
     loop = over_frequency(found)
-    return BreakAnalysis(declared, BreakSubject(slow, decided(found.stable), loop), found)
+    return BreakAnalysis(declared, BreakSubject(SlowTransfer(found.slow), decided(found.stable), loop), found)

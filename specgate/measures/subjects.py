@@ -8,7 +8,7 @@ from specgate.frequency.questions import Gain, OpenLoop
 from specgate.response.answers import Absent, Answer
 from specgate.response.inputs import Input
 from specgate.response.questions import TimeResponse
-from specgate.sampled.solution import SampledSolution
+from specgate.sampled.solution import SampledSolution, SlowTransfer
 from specgate.systems.delayed import DelayedSolution
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.solution import LoopSolution
@@ -32,7 +32,7 @@ class ResponseSubject:
     beyond:   why formulas for step responses of rational transfer functions say nothing of this one; None: they may.
     """
 
-    channel: TransferFunction | DelayedTransfer | Absent
+    channel: TransferFunction | DelayedTransfer | SlowTransfer | Absent
     size: fmpq
     response: TimeResponse | Absent
     error: TimeResponse | Absent
@@ -55,7 +55,7 @@ class BreakSubject:
     loop: L over frequency; None where this version does not answer that.
     """
 
-    open_loop: TransferFunction | DelayedTransfer
+    open_loop: TransferFunction | DelayedTransfer | SlowTransfer
     stable: Answer
     loop: OpenLoop | None = None
 

@@ -11,6 +11,7 @@ from specgate.frequency.questions import OpenLoop
 from specgate.measures.subjects import BreakSubject
 from specgate.response.answers import Answer
 from specgate.review.types import FrequencyCurve
+from specgate.sampled.solution import SlowTransfer
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.roots import certified_roots
 from specgate.systems.transfer import TransferFunction
@@ -42,7 +43,7 @@ def frequency_curve(subject: BreakSubject) -> FrequencyCurve | None:
     if loop is None:
         return None
     crossings = [one.frequency.enclose(_BITS).mid().fmpq() for one in loop.crossings() if _placed(one.frequency)]
-    features = [(printed_short(arb(one)), 1.0) for one in crossings] + list(_features(subject.open_loop))
+    features = [(printed_short(arb(one)), 1.0) for one in crossings] + list(_features(_drawn(subject.open_loop)))
     if not features:
         return None
     points = [_point(loop, frequency) for frequency in _frequencies(crossings, features)]
@@ -51,6 +52,11 @@ def frequency_curve(subject: BreakSubject) -> FrequencyCurve | None:
         return None
     frequency, gain, phase = zip(*shown, strict=True)
     return FrequencyCurve(frequency, gain, phase)
+
+
+def _drawn(opened: TransferFunction | DelayedTransfer | SlowTransfer) -> TransferFunction | DelayedTransfer:
+    """Return what tells where to look; of a sampled loop the slow signals do."""
+    return opened.slow if isinstance(opened, SlowTransfer) else opened
 
 
 def _placed(frequency: Answer) -> bool:

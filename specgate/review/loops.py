@@ -34,7 +34,7 @@ from specgate.review.types import (
 )
 from specgate.review.wanted import Wanted
 from specgate.sampled.opened import SampledOpening
-from specgate.sampled.solution import SampledSolution
+from specgate.sampled.solution import SampledSolution, SlowTransfer
 from specgate.systems.delayed import DelayedChannel
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.quasi import Quasi
@@ -90,7 +90,8 @@ def _break(found: BreakAnalysis, again: BreakAnalysis, wanted: Wanted) -> BreakR
     loop = found.subject.loop
     others = None if isinstance(again.subject, Missing) else again.subject.loop
     opened = found.opened if isinstance(found.opened, SampledOpening) else None
-    above, below = _parts(sampled.exact_opening(opened) if opened else found.subject.open_loop)
+    transfer = found.subject.open_loop
+    above, below = _parts(sampled.exact_opening(opened) if isinstance(transfer, SlowTransfer) else transfer)
     return BreakReview(
         at=found.declared.at,
         measures=_measures("break", found.subject, again.subject, ONE, wanted),

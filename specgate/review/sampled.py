@@ -34,9 +34,9 @@ def opening_in_z(opening: SampledOpening) -> InZ:
     return InZ(fraction(opening.period), numerator=_enclosed(above), denominator=_enclosed(below))
 
 
-def exact_opening(opening: SampledOpening) -> TransferFunction | None:
+def exact_opening(opening: SampledOpening | None) -> TransferFunction | None:
     """Return L(z) where it is rational."""
-    transfer = opening.transfer
+    transfer = None if opening is None else opening.transfer
     if transfer is None or transfer.rest is not None:
         return None
     return TransferFunction(transfer.numerator, transfer.denominator)

@@ -135,7 +135,7 @@ def _rest(
     if not found.stable:
         return Absent(UNSETTLED), []
     if drive.rest is None:
-        return Absent("the input does not tend to a constant, and neither does the response"), []
+        return Absent("where the input does not tend to a constant, a sampled loop is not searched", proved=False), []
     held, samplers = int(alone.motion.b.ncols()), int(alone.motion.c.nrows())
     given = fmpq_mat(len(drive.rest), 1, list(drive.rest))
     fed = _columns(least.b, held, len(drive.rest)) * given

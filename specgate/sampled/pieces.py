@@ -6,7 +6,7 @@ from bisect import bisect_right
 from collections.abc import Callable
 from functools import cached_property
 
-from flint import acb_mat, arb, arb_mat, fmpq, fmpq_mat
+from flint import acb_mat, arb, arb_mat, fmpq, fmpq_mat, fmpq_poly
 
 from specgate.response.answers import Absent
 from specgate.response.modes import Expansion
@@ -135,12 +135,12 @@ class SampledPieces(Pieces):
             moving = arb_mat(cycle.moving, 1)
             for (start, _, number), end in zip(self._early, ends, strict=True):
                 self._set(moving, sets.get(start))
-                if cycle.stretches[number].start == 0 and start % cycle.period == 0:
+                if (start / cycle.period).q == 1:
                     self._set(state, sets.get(start))
                 found.append(_stacked(moving, arb_mat(cycle.stretches[number].held) * state))
                 motion = arb_mat(cycle.motion_over(end - start, bits).tolist()[: cycle.moving])
                 moving = motion * found[-1]
-                if end % cycle.period == 0:
+                if (end / cycle.period).q == 1:
                     state = _stacked(moving, arb_mat(cycle.settled_samples) * state)
             self._set(state, sets.get(self._first * cycle.period))
         return found, state
@@ -205,8 +205,18 @@ class SampledPieces(Pieces):
             return sum((c * z for c, z in zip(moving, state, strict=False)), fmpq(0)) + sum(
                 (d * u for d, u in zip(direct, at, strict=True)), fmpq(0)
             )
-        sets = any(time == self.kink(index) for time, _ in self._drive.starts)
-        return None if sets or any(entry != 0 for entry in self._line[1]) else fmpq(0)
+        begin = self.kink(index)
+        inside = begin - (begin / self._cycle.period).floor() * self._cycle.period
+        arriving = [factor for factor, (_, part) in zip(self._line[1], self._cycle.lags, strict=True) if part == inside]
+        sets = any(time == begin for time, _ in self._drive.starts)
+        return None if sets or any(factor != 0 for factor in arriving) else fmpq(0)
+
+    def polynomial(self, index: int) -> fmpq_poly | None:
+        """Return zero for a piece before anything has moved."""
+        if not self._at_rest(index):
+            return None
+        modes = self._expansion(index, _BOUND_BITS).modes
+        return fmpq_poly([0]) if all(c.is_zero() for mode in modes for c in mode.coefficients) else None
 
     def _exact_start(self) -> Row:
         state = [fmpq(0)] * self._cycle.order

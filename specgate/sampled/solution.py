@@ -18,11 +18,38 @@ from specgate.terms.records import record
 
 
 @record
-class SlowTransfer(TransferFunction):
+class SlowTransfer:
     """What a transfer function of a sampled loop is to slow signals: it holds at s = 0 alone, to leading order.
 
-    Its poles and zeros at the origin are those at z = 1, its leading coefficient there that in (z - 1)/T.
+    Poles and zeros at the origin are those at z = 1, the leading coefficient there is that in (z - 1)/T.
     """
+
+    slow: TransferFunction
+
+    @property
+    def numerator(self) -> fmpq_poly:
+        """Zero where the transfer function is zero."""
+        return self.slow.numerator
+
+    @property
+    def poles_at_origin(self) -> int:
+        """Poles at z = 1."""
+        return self.slow.poles_at_origin
+
+    @property
+    def zeros_at_origin(self) -> int:
+        """Zeros at z = 1."""
+        return self.slow.zeros_at_origin
+
+    @property
+    def order_at_origin(self) -> int:
+        """Zeros minus poles at z = 1."""
+        return self.slow.order_at_origin
+
+    @property
+    def value_at_origin(self) -> fmpq:
+        """The leading coefficient there, in (z - 1)/T."""
+        return self.slow.value_at_origin
 
 
 @record

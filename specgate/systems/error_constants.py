@@ -2,12 +2,25 @@
 
 from __future__ import annotations
 
+from typing import Protocol
+
 from flint import fmpq
 
-from specgate.systems.delayed_network import DelayedTransfer
-from specgate.systems.transfer import TransferFunction
 
-Opened = TransferFunction | DelayedTransfer
+class Opened(Protocol):
+    """What is asked of an open loop at zero frequency, whatever kind it is."""
+
+    @property
+    def numerator(self) -> object:
+        """False as a truth value where L is zero."""
+
+    @property
+    def order_at_origin(self) -> int:
+        """Zeros minus poles at the origin."""
+
+    @property
+    def value_at_origin(self) -> fmpq:
+        """The leading coefficient at the origin."""
 
 
 def loop_type(open_loop: Opened) -> int:
