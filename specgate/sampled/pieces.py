@@ -209,7 +209,9 @@ class SampledPieces(Pieces):
         inside = begin - (begin / self._cycle.period).floor() * self._cycle.period
         arriving = [factor for factor, (_, part) in zip(self._line[1], self._cycle.lags, strict=True) if part == inside]
         sets = any(time == begin for time, _ in self._drive.starts)
-        return None if sets or any(factor != 0 for factor in arriving) else fmpq(0)
+        read = self._line[0][self._cycle.moving - self._drive.order :]
+        moved = (sets and any(factor != 0 for factor in read)) or any(factor != 0 for factor in arriving)
+        return None if moved else fmpq(0)
 
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return zero for a piece before anything has moved."""
