@@ -11,6 +11,7 @@ from flint import fmpq, fmpq_poly
 
 from specgate.approximations.figures import quotient, root
 from specgate.approximations.spots import Spot, spots
+from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.answers import Absent, Answer
 from specgate.response.step import StepResponse
@@ -42,14 +43,9 @@ class Features:
 
     def of(self, numerator: fmpq_poly, denominator: fmpq_poly) -> Features:
         """Return the features of another channel in place of this one: what is left when something is dropped."""
-        subject = self.subject
-        return Features(
-            replace(
-                subject,
-                channel=TransferFunction(numerator, denominator),
-                response=StepResponse(numerator, denominator, subject.size),
-            )
-        )
+        subject, channel = self.subject, TransferFunction(numerator, denominator)
+        response = StepResponse(numerator, denominator, subject.size)
+        return Features(replace(subject, channel=channel, response=response, gain=RationalGain(channel)))
 
     @cached_property
     def channel(self) -> TransferFunction:

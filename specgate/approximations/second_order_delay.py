@@ -1,8 +1,8 @@
 """Time in which a complex pair reaches half of its change: (1.1 + 0.125 zeta + 0.469 zeta^2)/wn, or (1 + 0.7 zeta)/wn.
 
-Fits to the pair alone. They are no formulas for a pair that merely dominates: every further pole delays the response by
-about its time constant, one at five natural frequencies by a seventh of the delay itself, and a zero to the left
-shortens it by as much.
+Fits to the pair alone, -1.12 to +5.04 % and -4.51 to +4.57 % off over all damping ratios below 1. They are no formulas
+for a pair that merely dominates: every further pole delays the response by about its time constant, one at five natural
+frequencies by a seventh of the delay itself, and a zero to the left shortens it by as much.
 """
 
 from __future__ import annotations
@@ -44,7 +44,7 @@ VARIANTS = (
     ),
     Variant(
         name="linear",
-        for_="any damping ratio below 1, in the head",
+        for_="any damping ratio below 1, for mental arithmetic",
         formula="(1 + 0.7 zeta)/wn",
         source=_KUO,
         conditions=(ALONE,),

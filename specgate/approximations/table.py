@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping, Sequence
 
 from specgate.approximations import (
+    bandwidth_from_pair,
     distant_zero,
     dominant_pair,
     final_value_theorem,
@@ -12,6 +13,7 @@ from specgate.approximations import (
     first_order_settling,
     near_cancellation,
     real_poles_settling,
+    resonance_from_damping,
     right_half_plane_undershoot,
     second_order_delay,
     second_order_overshoot,
@@ -41,6 +43,8 @@ _ROWS = (
     distant_zero,
     near_cancellation,
     right_half_plane_undershoot,
+    bandwidth_from_pair,
+    resonance_from_damping,
 )
 
 APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for module in _ROWS}
@@ -49,9 +53,7 @@ APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for m
 LATER: Mapping[str, str] = {
     "damping_from_phase_margin": "damping ratio as phase margin over 100 deg",
     "overshoot_from_phase_margin": "overshoot by way of the damping ratio from the phase margin",
-    "bandwidth_from_pair": "bandwidth of a pair",
     "rise_from_bandwidth": "rise time as 2.2 over bandwidth",
-    "resonance_from_damping": "resonance peak of a pair",
     "margins_from_sensitivity": "least margins that a sensitivity peak leaves",
     "delay_margin_from_phase_margin": "delay margin as phase margin over crossover frequency",
     "static_error_constants": "steady-state errors from the error constants",

@@ -32,12 +32,17 @@ def _variants(row: Approximation) -> str:
 
 
 def _range(name: str) -> str:
+    """List the conditions on what the row estimates, those of its premises first."""
     lines = []
+    estimates = APPROXIMATIONS[name].estimates
     for row in chain(name):
         for condition in row.conditions:
+            if condition.concerns and not set(condition.concerns) & set(estimates):
+                continue
             words = f"  {condition.named(condition.threshold)}: {condition.asked(condition.threshold)}"
             whose = "" if row.name == name else f" (premise {row.name})"
-            needed = f" [for {', '.join(condition.concerns)}]" if condition.concerns else ""
+            part = [measure for measure in estimates if measure in condition.concerns]
+            needed = f" [for {', '.join(part)}]" if part and len(part) < len(estimates) else ""
             lines.append(f"{words}{whose}{needed}; {condition.source}")
     return "\n".join(["Range:", *lines])
 

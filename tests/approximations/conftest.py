@@ -12,6 +12,7 @@ from flint import fmpq, fmpq_poly
 from specgate.approximations.approximation import Approximation
 from specgate.approximations.features import Features
 from specgate.approximations.table import conditions
+from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.measure import Arguments
 from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
@@ -62,6 +63,7 @@ def of_polynomials(numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq | in
             response=response,
             error=StepResponse(denominator - numerator, denominator, height),
             void=more.get("void"),
+            gain=RationalGain(TransferFunction(numerator, denominator)),
         )
     )
 

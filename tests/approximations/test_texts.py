@@ -8,6 +8,7 @@ import pytest
 from flint import fmpq
 
 from specgate.approximations.table import APPROXIMATIONS
+from specgate.approximations.text import describe
 from specgate.measures.measure import Arguments, Band
 from specgate.measures.table import MEASURES
 
@@ -77,3 +78,22 @@ def test_where_the_settling_time_jumps(build: Any, percent: int, late: str, earl
 def test_peak_time_with_a_pole_at_five_natural_frequencies(build: Any) -> None:
     errors = [error("second_order_peak_time", build.pair(fmpq(k, 20), [-5]), PEAK_TIME) for k in range(1, 19)]
     assert -6.1 < min(errors) < -5.9
+
+
+@pytest.mark.parametrize("name", ["second_order_rise", "second_order_delay"])
+def test_the_text_says_the_accuracy_of_every_variant(build: Any, name: str) -> None:
+    row = APPROXIMATIONS[name]
+    words = " ".join(row.text.split())
+    for one in row.variants:
+        for poles in ([], [-5], [-5, -6]) if name == "second_order_rise" else ([],):
+            stated = one.accuracy(build.pair("0.5", poles), RISE_TIME)
+            assert stated is not None
+            low, high = (f"{100 * int(end.p) / int(end.q):+g}" for end in (stated.lower, stated.upper))
+            assert f"{low} to {high} %" in words, (one.name, poles)
+
+
+def test_only_conditions_on_what_is_estimated_are_listed() -> None:
+    text = describe("bandwidth_from_pair").text
+    assert "settling_time" not in text
+    assert "a complex pair and nothing else" in text
+    assert "[for settling_time" not in describe("second_order_settling").text
