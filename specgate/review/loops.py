@@ -155,7 +155,7 @@ def _response(found: ResponseAnalysis, again: ResponseAnalysis, wanted: Wanted) 
     above, below = _parts(reduced)
     rational = reduced if isinstance(reduced, TransferFunction) else None
     return ResponseReview(
-        from_=" + ".join(one.source for one in declared.excitations),
+        from_=" + ".join(dict.fromkeys(one.source for one in declared.excitations)),
         to=declared.to,
         input=_input(declared),
         unit=found.unit.symbol,
@@ -184,10 +184,10 @@ def _input(declared: Response) -> dict[str, str]:
     if len(declared.excitations) == 1:
         one = declared.excitations[0]
         return {"kind": one.kind, **{key: value.as_written for key, value in one.quantities.items()}, **one.options}
-    texts = {
-        one.source: " ".join((one.kind, *(f"{key} {value.as_written}" for key, value in one.quantities.items())))
-        for one in declared.excitations
-    }
+    texts: dict[str, str] = {}
+    for one in declared.excitations:
+        said = " ".join((one.kind, *(f"{key} {value.as_written}" for key, value in one.quantities.items())))
+        texts[one.source] = f"{texts[one.source]} + {said}" if one.source in texts else said
     return {"kind": "several", **texts}
 
 

@@ -79,7 +79,8 @@ def axes(figure: StepFigure) -> tuple[Scale, Scale]:
     levels += [v for e in figure.edges if e.outside for v in e.outside]
     near = [v for v in levels if low - reach <= v <= high + reach]
     low, high = widened(min([low, *near]), max([high, *near]), 0.07)
-    return Scale(0.0, last, LEFT, WIDTH - RIGHT), Scale(low, high, HEIGHT - BOTTOM, TOP)
+    first = min(0.0, figure.time[0])
+    return Scale(first, last, LEFT, WIDTH - RIGHT), Scale(low, high, HEIGHT - BOTTOM, TOP)
 
 
 def draw(figure: StepFigure) -> str:

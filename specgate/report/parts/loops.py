@@ -188,7 +188,7 @@ def _response(
         anchor=anchors.plot(loop, name),
         source=response.from_,
         target=response.to,
-        drive=" ".join(str(v) for k, v in sorted(response.input.items(), key=lambda item: item[0] != "kind")),
+        drive=_drive(response.input),
         unit=response.unit,
         numerator=shown.polynomial(response.numerator),
         denominator=_denominator(response, characteristic),
@@ -200,8 +200,22 @@ def _response(
     )
 
 
+def _drive(given: Mapping[str, str]) -> str:
+    """Say what drives a response: of a step its size alone, of all else every quantity by its name."""
+    kind = given["kind"].replace("_", " ")
+    others = {name: text for name, text in given.items() if name != "kind"}
+    if kind == "several":
+        return "; ".join(f"{text.replace('_', ' ')} on {source}" for source, text in others.items())
+    if len(others) == 1:
+        return f"{kind} {next(iter(others.values()))}"
+    counted = ["times from the end of the ramp"] if others.pop("count_from", "start") == "end_of_ramp" else []
+    return f"{kind}, {', '.join([*(f'{name} {text}' for name, text in others.items()), *counted])}"
+
+
 def _denominator(response: ResponseReview, characteristic: tuple[str, ...]) -> str:
     """Return the denominator of a response, or that it is the loop's characteristic polynomial."""
+    if not response.denominator:
+        return ""
     same = response.denominator == characteristic
     return "the characteristic polynomial" if same else shown.polynomial(response.denominator)
 
