@@ -15,6 +15,7 @@ from specgate.approximations.features import Features
 from specgate.approximations.figures import SHOWN, combined
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
+from specgate.terms.verdicts import Trilean
 
 _NO_PAIR = "there is no complex pair of poles"
 _SHORT_TO = fmpq(1, 2)
@@ -43,7 +44,7 @@ def _peaks(features: Features, _: Arguments, __: fmpq | None) -> Found:
         return words(_NO_PAIR, False)
     shown = damping.enclose(SHOWN)
     if pair.real is not None and pair.square is not None:
-        return Found(shown, words("", 2 * pair.real * pair.real < pair.square).holds)
+        return Found(shown, Trilean.of(2 * pair.real * pair.real < pair.square))
     return Found(shown, at_most(combined(lambda zeta: 2 * zeta * zeta, damping), fmpq(1)).holds)
 
 

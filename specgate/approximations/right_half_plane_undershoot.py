@@ -22,6 +22,7 @@ from specgate.measures.measure import Arguments
 from specgate.measures.reading import change
 from specgate.response.answers import Answer
 from specgate.response.step import StepResponse
+from specgate.terms.verdicts import Trilean
 
 _BAND = fmpq(1, 50)
 _MIDDLETON = "R. H. Middleton, Trade-offs in linear control system design, Automatica 27(2), 1991, 281-292"
@@ -56,7 +57,7 @@ def _least(exponent: arb) -> arb:
 
 def _real_zero(features: Features, _: Arguments, __: fmpq | None) -> Found:
     zero = features.once(_zero)
-    return words("none", False) if zero is None else Found(zero.enclose(SHOWN), words("", True).holds)
+    return words("none", False) if zero is None else Found(zero.enclose(SHOWN), Trilean.YES)
 
 
 ROW = Approximation(

@@ -126,5 +126,6 @@ ROW = Approximation(
     accuracy=VARIANTS[0].accuracy,
     text=__doc__,
     premises=("dominant_pair",),
+    alternatives=("dominant_pair",),
     variants=VARIANTS,
 ).taken_as("cubic")

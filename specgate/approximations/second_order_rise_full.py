@@ -41,4 +41,5 @@ ROW = Approximation(
     accuracy=lambda _, __: Accuracy(fmpq(0), fmpq(0), "exact"),
     text=__doc__,
     premises=("dominant_pair",),
+    alternatives=("second_order_rise",),
 )

@@ -81,4 +81,5 @@ ROW = Approximation(
     accuracy=_accuracy,
     text=__doc__,
     premises=("dominant_pair",),
+    alternatives=("settling_envelope", "dominant_pair"),
 )
