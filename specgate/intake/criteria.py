@@ -10,7 +10,7 @@ from flint import fmpq
 
 from specgate.approximations.table import APPROXIMATIONS, stray
 from specgate.intake.context import Context, items, table, text, texts
-from specgate.intake.nodes import Node, Number, Spot, Table, Text, Truth, as_kept
+from specgate.intake.nodes import Items, Node, Number, Spot, Table, Text, Truth, as_kept
 from specgate.intake.values import Reader, complete
 from specgate.measures.table import MEASURES
 from specgate.project.percent import relative_to_change
@@ -135,7 +135,7 @@ def _limit(node: Table, place: Spot, reader: Reader) -> Limit | None:
 
 def _limit_nodes(kind: str, node: Table, value: Node) -> Sequence[Node | None]:
     if kind == "between":
-        return items(value)
+        return items(value) if isinstance(value, Items) else ()
     return (value, node.get("of")) if kind == "within" else (value,)
 
 

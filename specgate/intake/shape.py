@@ -7,7 +7,8 @@ message; `{found}` and `{missing}` are filled in), `x-key` (the key at which it 
 from __future__ import annotations
 
 import json
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import replace
 from decimal import Decimal
 from functools import cache
 from importlib.resources import files
@@ -106,26 +107,53 @@ def _locate(root: Node, path: Path) -> tuple[Node | None, Text | None, Node | No
 def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
     """Leave out what only follows from another error: a rule for a kind that is unknown, a key that is misspelt."""
     # on what is no table, `required` holds, so that all alternatives do: that it is no table is said by `type`
-    errors = [error for error in errors if error.keyword != "oneOf" or isinstance(error.found, dict)]
+    errors = [error for error in errors if not _of_no_table(error)]
+    cut = {(*error.path, key) for error in errors for key in error.cut_off}
+    errors = [error for error in errors if error.path not in cut]
     certain = [error for error in errors if not error.conditional]
     unsettled = {e.path[:-1] for e in certain if e.keyword == "enum" and e.path}
     unsettled |= {e.path for e in certain if e.keyword == "oneOf"}
     wrong = {error.path for error in certain}
+    misspelt: dict[Path, set[str | None]] = {}
     meant: dict[Path, set[str | None]] = {}
     for error in errors:
-        names = meant.setdefault(error.path, set())
+        names, close = meant.setdefault(error.path, set()), misspelt.setdefault(error.path, set())
         if error.keyword == "additionalProperties":
-            names.update(error.unexpected)
-            names.update(error.nearest(key, error.schema["properties"]) for key in error.unexpected)
+            close.update(error.nearest(key, error.schema["properties"]) for key in error.unexpected)
+            names.update(error.unexpected, close)
         if error.keyword == "dependentRequired":
             names.update(error.missing)
-    for error in errors:
+    for error in _with_choices(errors):
         if error.conditional and not unsettled.isdisjoint((error.path, error.path[:-1])):
             continue
         if error.conditional and _repeats(error, meant[error.path], wrong):
             continue
-        if error.keyword == "dependentRequired" or meant[error.path].isdisjoint(error.missing):
+        told = misspelt if error.keyword == "dependentRequired" else meant
+        if told[error.path].isdisjoint(error.missing):
             yield error
+
+
+def _of_no_table(error: Misshape) -> bool:
+    return error.keyword in ("oneOf", "not") and not error.of_name and not isinstance(error.found, dict)
+
+
+def _with_choices(errors: list[Misshape]) -> Iterator[Misshape]:
+    """Give the errors, a choice of which none was made together with the one unknown key that stands in its place."""
+    choices = {error.path: error for error in errors if error.keyword == "oneOf" and error.missing}
+    strangers = {
+        error.path: error
+        for error in errors
+        if error.keyword == "additionalProperties"
+        and error.path in choices
+        and len(error.unexpected) == 1
+        and not error.cut_off
+        and error.nearest(error.unexpected[0], error.schema["properties"]) is None
+    }
+    for error in errors:
+        if error.path not in strangers or error not in (choices[error.path], strangers[error.path]):
+            yield error
+        elif error is strangers[error.path]:
+            yield replace(error, choice=choices[error.path].missing)
 
 
 def _repeats(error: Misshape, meant: set[str | None], wrong: set[Path]) -> bool:
@@ -140,7 +168,7 @@ def _report(error: Misshape, collector: Collector) -> None:
     if len(error.path) > 1 and error.path[0] in _ABOUT:
         kind, name = _ABOUT[str(error.path[0])], str(error.path[1])
         about[kind] = name
-        if error.keyword != "additionalProperties":
+        if error.keyword != "additionalProperties" or error.cut_off:
             collector.misshapen.add((kind, name))
     for rule, message, spot in worded(error):
         collector.error(rule, message, spot.place, **about)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import re
 
-from specgate.intake.nodes import Nothing, Table, Text
+from specgate.intake.nodes import Entry, Nothing, Number, Table, Text
 
 _TRUTHS = {"yes": "true", "on": "true", "y": "true", "no": "false", "off": "false", "n": "false"}
 _UNDERSCORES = re.compile(r"[+-]?[0-9]+(_[0-9]+)+(\.[0-9_]+)?")
@@ -12,6 +12,7 @@ _CLOCK = re.compile(r"[0-9]+(:[0-9]{2}){1,2}")
 _COMMA = re.compile(r"[+-]?[0-9]+,[0-9]+")
 
 _QUANTITY = re.compile(r"[-+]?[0-9.]")
+_WHOLE = re.compile(r"[+-]?\d+")
 _NO_NUMBER = re.compile(r"[+-]?\.(inf|Inf|INF|nan|NaN|NAN)")
 
 _INDICATORS = {
@@ -40,20 +41,27 @@ def scalar_hint(text: str) -> str | None:
     return None
 
 
-def split_by_comma(table: Table, key: Text) -> str | None:
-    """Say that a comma inside braces has split a text, if `key` looks like the part that was cut off."""
-    value = table.entries[key.value].value
-    if not table.braces or not isinstance(value, Nothing):
+def cut_before(table: Table, key: Text) -> Entry | None:
+    """Return the entry whose value a comma inside braces has cut, if `key` looks like the part that was cut off."""
+    if not table.braces or not isinstance(table.entries[key.value].value, Nothing):
         return None
     names = list(table.entries)
     position = names.index(key.value)
-    if position == 0:
+    return table.entries[names[position - 1]] if position else None
+
+
+def split_by_comma(table: Table, key: Text) -> str | None:
+    """Say that a comma inside braces has split a text or a number, if `key` looks like the part that was cut off."""
+    before = cut_before(table, key)
+    if before is None:
         return None
-    before = table.entries[names[position - 1]]
-    start = before.value.value if isinstance(before.value, Text) else "…"
+    name, value = before.key.value, before.value
+    start = value.value if isinstance(value, Text) else value.text if isinstance(value, Number) else "…"
+    if _WHOLE.fullmatch(start) and key.value[:1].isdigit():
+        return f"a comma inside braces splits, and the decimal sign is a point: write `{name}: {start}.{key.value}`"
     if _QUANTITY.match(start) and _QUANTITY.match(key.value):
-        return f"a comma inside braces splits: write a list, `{before.key.value}: [{start}, {key.value}]`"
-    return f'a comma inside braces splits: put the text in quotes, `{before.key.value}: "{start}, {key.value}"`'
+        return f"a comma inside braces splits: write a list, `{name}: [{start}, {key.value}]`"
+    return f'a comma inside braces splits: put the text in quotes, `{name}: "{start}, {key.value}"`'
 
 
 def syntax_hint(lines: list[str], line: int, column: int, opened: tuple[int, int] | None, problem: str) -> str:

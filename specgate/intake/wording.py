@@ -8,7 +8,7 @@ from typing import Any
 
 from specgate.intake.collect import MOST
 from specgate.intake.nodes import Items, Node, Nothing, Number, Spot, Table, Text, Truth, shown
-from specgate.intake.traps import scalar_hint, split_by_comma
+from specgate.intake.traps import cut_before, scalar_hint, split_by_comma
 from specgate.terms.records import record
 
 Path = tuple[str | int, ...]
@@ -36,6 +36,7 @@ class Misshape:
     keyword: what of the schema is violated; wanted: the value of that keyword; schema: what surrounds it.
     found: the plain value (the name itself where `of_name`, for a name of a key that is not allowed).
     node: what stands there, None where it could not be read; key: the key before it; around: what holds both.
+    choice: of these keys one was wanted where an unknown one stands.
     conditional: whether this holds only because of something else (`then`, `else`, `dependentSchemas`).
     """
 
@@ -50,11 +51,21 @@ class Misshape:
     conditional: bool
     of_name: bool
     nearest: Nearest
+    choice: tuple[str, ...] = ()
 
     @property
     def unexpected(self) -> list[str]:
         """The keys that an `additionalProperties` error is about, in the order of the file, up to far too many."""
         return list(islice((key for key in self.found if key not in self.schema["properties"]), MOST + 1))
+
+    @property
+    def cut_off(self) -> list[str]:
+        """The keys whose values a comma inside braces has cut, for an `additionalProperties` error."""
+        if self.keyword != "additionalProperties" or not isinstance(self.node, Table):
+            return []
+        table = self.node
+        before = (cut_before(table, table.entries[key].key) for key in self.unexpected)
+        return [entry.key.value for entry in before if entry is not None]
 
     @property
     def missing(self) -> tuple[str, ...]:
@@ -116,6 +127,8 @@ def _unexpected(name: str, error: Misshape, table: Table) -> str:
     where = f"`{_cut(name)}` is not a key of {error.schema.get('title', 'this table')}"
     if close is not None:
         return f"{where}: did you mean `{close}`?"
+    if error.choice:
+        return f"{where}: exactly one of {_listed([f'`{one}`' for one in error.choice], 'or')} is wanted"
     return f"{where}, which has {_listed(list(known), 'and')}"
 
 
@@ -148,6 +161,8 @@ def _type_hint(error: Misshape, node: Node) -> str | None:
             return "fill it in, or leave the key out"
         case Table(braces=True) if "string" in types:
             return "a text that begins with { needs quotes"
+        case Table(braces=False) if types == ["array"]:
+            return "begin each entry of the list with `- `"
         case Items() if types == ["string"]:
             return "one text only, without brackets"
     return None

@@ -36,7 +36,7 @@ _NUMBER = re.compile(r"(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?", re
 _NAME = re.compile(r"[A-Za-z_][A-Za-z0-9_]*(?:\.[A-Za-z_][A-Za-z0-9_]*)?", re.ASCII)
 _OPERATOR = re.compile(r"\*\*|[-+*/()]")
 _UNIT_STARTS = re.compile(r"1/|[^\W\d_]|[%\u00b0]")
-_OF = re.compile(r"\s+of\s+(?P<name>[A-Za-z_][A-Za-z0-9_.]*)", re.ASCII)
+_OF = re.compile(r"\s+of\s+(?:the\s+)?(?P<name>[A-Za-z_][A-Za-z0-9_.]*)", re.ASCII)
 _POWER = re.compile(r"\s*(?P<power>[+-]?[0-9]+|\(\s*[+-]?[0-9]+\s*\))(?![.eE0-9A-Za-z_])", re.ASCII)
 
 

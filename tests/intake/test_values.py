@@ -7,6 +7,7 @@ from collections.abc import Callable
 import pytest
 from flint import fmpq
 
+from specgate.project.percent import relative_to_change
 from specgate.project.types import FactoredModel, Project
 from specgate.terms.expressions import Name, Number, PercentOf, evaluate
 
@@ -88,6 +89,18 @@ def test_what_reads_a_broken_parameter_is_not_reported_again(said: Said, bench: 
 def test_formulas_that_read_a_broken_parameter_are_not_reported_either(said: Said, bench: str) -> None:
     edit = ("subsystems:", "  a: {formula: b}\n  b: {formula: c}\n  c: {formula: 2 * d}\nsubsystems:")
     assert said(bench, edit) == ["7:20 name-unknown: there is no parameter `d`: there is a, b, c, travel, vent.lag"]
+
+
+@pytest.mark.parametrize("written", ["2 %", "2 % of change", "2 % of the change"])
+def test_a_band_may_be_written_as_it_is_printed(project: Read, bench: str, written: str) -> None:
+    (criterion,) = project(bench, ("band: 2 %", f"band: {written}")).requirements["VB-1-01"].criteria
+    assert relative_to_change(criterion.arguments["band"]) == fmpq(1, 50)
+
+
+def test_arrivals_may_be_written_as_they_are_printed(project: Read, bench: str) -> None:
+    rise = "measure: rise_time, from: 10 % of the change, to: 90 % of the change"
+    (criterion,) = project(bench, ("measure: settling_time, band: 2 %", rise)).requirements["VB-1-01"].criteria
+    assert [relative_to_change(criterion.arguments[name]) for name in ("from", "to")] == [fmpq(1, 10), fmpq(9, 10)]
 
 
 def test_per_cent_of_something(project: Read, bench: str) -> None:

@@ -831,7 +831,15 @@ def review(requirements: Mapping[str, r.RequirementReview] | None = None, **chan
         "policy": r.PolicyReview(
             ("non_compliant", "out_of_range", "open"),
             "nominal",
-            ({"approximation": "dominant_pair", "condition": "tail", "from": "0.05", "to": "0.02"},),
+            (
+                {
+                    "approximation": "dominant_pair",
+                    "condition": "tail",
+                    "catalogue": "0.05",
+                    "project": "0.02",
+                    "change": "tighter",
+                },
+            ),
         ),
         "units": ("Pa", "m3/s", "%", "rpm", "N*m", "K", "s", "dB"),
         "specification": _specification(),

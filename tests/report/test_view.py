@@ -188,3 +188,18 @@ def test_texts_are_cut_at_words() -> None:
     assert short("short", 10) == "short"
     assert short("one two three four", 12) == "one two…"
     assert short("x" * 30, 10) == "x" * 9 + "…"
+
+
+def test_page_one_names_the_thresholds_that_were_loosened_and_no_others(sample: ModuleType) -> None:
+    whole = sample.review()
+    assert front.front(whole).loosened == ()
+    looser = {
+        "approximation": "dominant_pair",
+        "condition": "separation",
+        "catalogue": "5",
+        "project": "3",
+        "change": "looser",
+    }
+    policy = replace(whole.policy, changed_thresholds=(*whole.policy.changed_thresholds, looser))
+    (words,) = front.front(replace(whole, policy=policy)).loosened
+    assert words.endswith("separation: 3 in place of 5")

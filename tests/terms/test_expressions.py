@@ -137,6 +137,7 @@ def test_precedence_without_brackets(rest: list[tuple[str, int]], first: int) ->
         ("-40 dB", fmpq(1, 100)),
         ("(1 m)/4", fmpq(1, 4)),
         ("10 % of lag", fmpq(85, 10000)),
+        ("10 % of the lag", fmpq(85, 10000)),
         ("2 * 10 % of lag", fmpq(17, 1000)),
     ],
 )

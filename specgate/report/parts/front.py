@@ -21,6 +21,7 @@ from specgate.report.words import (
     counted,
     demanded,
     listed,
+    spaced,
     titled,
 )
 from specgate.review.types import CriterionReview, InputReview, RequirementReview, Review
@@ -74,6 +75,8 @@ class Front:
     requirements: int
     holds: tuple[Hold, ...]
     more_holds: int
+    loosened: tuple[str, ...]
+    """Thresholds of the catalogue that the project has loosened: what follows from them has no stated accuracy."""
     roles: tuple[str, ...]
     digest: str
     inputs: tuple[InputReview, ...]
@@ -94,6 +97,12 @@ def front(review: Review) -> Front:
         requirements=len(review.requirements),
         holds=holds[:HOLDS_AT_MOST],
         more_holds=max(0, len(holds) - HOLDS_AT_MOST),
+        loosened=tuple(
+            f"{titled(str(one['approximation']), review.definitions)}, {spaced(str(one['condition']))}: "
+            f"{one['project']} in place of {one['catalogue']}"
+            for one in review.policy.changed_thresholds
+            if one["change"] == "looser"
+        ),
         roles=review.project.sign_off,
         digest=digest(review.inputs),
         inputs=review.inputs,
