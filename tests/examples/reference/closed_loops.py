@@ -1,4 +1,4 @@
-"""Step figures of wired loops without specgate: state equations, matrix exponentials, bracketing.
+"""Step figures and margins of wired loops without specgate: state equations, matrix exponentials, bracketing.
 
 Blocks are state-space realisations, wired by solving one linear system for all signals. The response at a time is
 `scipy.linalg.expm` of the state matrix with the constant input appended; extremes and crossings are bracketed on an
@@ -7,13 +7,14 @@ even grid of steps and closed by `scipy.optimize.brentq` on that same exponentia
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+import math
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 from scipy.linalg import block_diag, expm
-from scipy.optimize import brentq
+from scipy.optimize import brentq, minimize_scalar
 from scipy.signal import tf2ss
 
 Matrix = np.ndarray
@@ -52,6 +53,7 @@ class Loop:
         signals: Mapping[str, Sources],
     ) -> None:
         self.inputs, self.signals = inputs, list(signals)
+        self._parts = (inputs, blocks, feeds, signals)
         names = list(blocks)
         a, b, c, d = (_stack([blocks[name][k] for name in names]) for k in range(4))
         fed = [(name, k) for name in names for k in range(blocks[name][1].shape[1])]
@@ -90,6 +92,59 @@ class Loop:
         """Drive one input with a step and look at one signal, up to a time by which nothing moves any more."""
         j, i = self.inputs.index(source), self.signals.index(target)
         return Step(self.a, self.b[:, j] * size, self.c[i], self.d[i, j] * size, horizon, final)
+
+    def opened(self, source: str, held: tuple[str, ...] = ()) -> Opened:
+        """Cut every use of a signal or of a block's output, with other signals held at zero."""
+        inputs, blocks, feeds, signals = self._parts
+
+        def cut(sources: Sources) -> Sources:
+            renamed = {"cut" if one == source else one: factor for one, factor in sources.items()}
+            return {one: factor for one, factor in renamed.items() if one not in held}
+
+        fed = {n: [cut(one) for one in feed] if isinstance(feed, list) else cut(feed) for n, feed in feeds.items()}
+        drawn = {name: cut(sources) for name, sources in signals.items()} | {"returned": {source: 1}}
+        loop = Loop([*inputs, "cut"], blocks, fed, drawn)
+        column, row = len(inputs), len(drawn) - 1
+        return Opened(loop.a, loop.b[:, column], loop.c[row], float(loop.d[row, column]))
+
+
+@dataclass(frozen=True)
+class Opened:
+    """The loop opened at a signal: L is minus what returns of what is injected."""
+
+    a: Matrix
+    b: Matrix
+    c: Matrix
+    d: float
+
+    def at(self, frequency: float) -> complex:
+        """Return L at an angular frequency."""
+        return -complex(self.c @ np.linalg.solve(1j * frequency * np.eye(len(self.a)) - self.a, self.b) + self.d)
+
+    def margins(self) -> dict[str, float]:
+        """Return the margins: changes of sign on a grid of frequencies, closed by brentq on L itself."""
+        grid = np.geomspace(1e-5, 1e3, 8001)
+        values = np.array([self.at(w) for w in grid])
+
+        def roots(of: Callable[[complex], float]) -> list[float]:
+            signs = np.sign([of(value) for value in values])
+            changes = np.flatnonzero(signs[1:] != signs[:-1])
+            return [float(brentq(lambda w: of(self.at(w)), grid[k], grid[k + 1], **_TIGHT)) for k in changes]
+
+        gains = roots(lambda value: math.log(abs(value)))
+        phases = [w for w in roots(lambda value: value.imag) if self.at(w).real < 0]
+        lags = [(math.degrees(np.angle(-self.at(w))), w) for w in gains]
+        worst = int(np.argmin(np.abs(1 + values)))
+        nearest = minimize_scalar(
+            lambda w: abs(1 + self.at(w)), bounds=(grid[worst - 1], grid[worst + 1]), options={"xatol": 1e-12}
+        )
+        return {
+            "gain_margin": min(abs(20 * math.log10(abs(self.at(w)))) for w in phases) if phases else math.inf,
+            "phase_margin": min(abs(lag) for lag, _ in lags),
+            "delay_margin": min(math.radians(lag % 360) / w for lag, w in lags),
+            "sensitivity_peak": max(1.0, 1 / float(nearest.fun)),
+            "crossover_frequency": gains[0],
+        }
 
 
 def _stack(parts: list[Matrix]) -> Matrix:

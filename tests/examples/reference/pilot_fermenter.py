@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 import numpy as np
-from closed_loops import Block, Loop, Step, gain, lag, transfer
+from closed_loops import Block, Loop, Opened, Step, gain, lag, transfer
 
 RPM, LITRE_A_MINUTE, MILLIBAR, POINT, KILO = math.pi / 30, 1e-3 / 60, 100.0, 0.01, 1e3
 SPEED, TORQUE, TRANSFER_RATE = 400 * RPM, 20.4, 220 / 3600
@@ -85,9 +85,10 @@ def temperature(revision: str) -> Loop:
         "vessel": [{"valve": 1}, {"metabolism": 1}],
         "valve": {"duty_demand": 1},
         "thermometer": {"broth": 1},
-        "inner": {**demand, "jacket": -1},
+        "inner": {"jacket_demand": 1, "jacket": -1},
     }
     signals = {
+        "jacket_demand": demand,
         "duty_demand": {"inner": 1},
         "jacket": {("vessel", 0): 1},
         "broth": {("vessel", 1): 1},
@@ -153,4 +154,15 @@ def settlings(revision: str) -> dict[str, float]:
         "PFV-SYS-12": found["dissolved_oxygen.raise"][0].settling(0.5 * POINT),
         "PFV-SYS-14": found["dissolved_oxygen.feed_pulse"][0].settling(1 * POINT),
         "PFV-SUB-54": found["bench.probe"][0].settling(2.5 * POINT),
+    }
+
+
+def breaks(revision: str) -> dict[str, Opened]:
+    """Return the loops that are opened."""
+    return {
+        "agitation.drive": agitation(revision).opened("torque_demand"),
+        "dissolved_oxygen.probe": dissolved_oxygen(revision).opened("probe"),
+        "temperature.jacket_set": temperature(revision).opened("jacket_demand"),
+        "temperature.jacket_loop": temperature(revision).opened("jacket", held=("jacket_demand",)),
+        "head_pressure.valve": head_pressure(revision).opened("outflow_demand"),
     }

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 
 import numpy as np
-from closed_loops import Loop, Step, gain, lag, transfer
+from closed_loops import Loop, Opened, Step, gain, lag, transfer
 
 DEG, LITRE_A_MINUTE, CUBIC_METRE_AN_HOUR, KILO = math.pi / 180, 1e-3 / 60, 1 / 3600, 1e3
 G0 = 9.80665
@@ -160,3 +160,12 @@ def settlings(revision: str) -> dict[str, float]:
     if revision == "b":
         times["SAS-SYS-114"] = found["height_hold.ascend"][0].settling(0.5)
     return times
+
+
+def breaks(revision: str) -> dict[str, Opened]:
+    """Return the loops that are opened."""
+    return {
+        "pitch_trim.trim": pitch_trim(revision).opened("flow_demand"),
+        "height_hold.thrust": height_hold(revision).opened("command"),
+        "envelope_pressure.airflow": envelope_pressure(revision).opened("flow_demand"),
+    }

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from pathlib import Path
 
 import pilot_fermenter
@@ -9,8 +10,9 @@ import survey_airship
 
 HEAD = """# Written by tests/examples/reference/write_figures.py; specgate has no part in it.
 # Method: state equations wired by hand in SI, response by scipy.linalg.expm, extremes and crossings by
-# scipy.optimize.brentq, poles by numpy.linalg.eigvals; good to about nine digits.
-# Units: of the signal as declared, s, % of the change, 1/s. `null`: only approached.
+# scipy.optimize.brentq, poles by numpy.linalg.eigvals; good to about nine digits. Margins: the loop cut in its state
+# equations, crossings by brentq on L(jw), the least distance to -1 by scipy.optimize.minimize_scalar.
+# Units: of the signal as declared, s, % of the change, 1/s; dB, deg, rad/s. `null`: only approached.
 """
 IN_SIGNAL_UNIT = {"final_value", "initial_value", "maximum_value", "minimum_value", "peak_deviation"}
 
@@ -29,6 +31,10 @@ def main() -> None:
                 for measure, value in step.figures().items():
                     scale = unit if measure in IN_SIGNAL_UNIT else 1.0
                     lines.append(f"    {measure}: {'null' if value is None else _text(value / scale)}")
+            lines.append("breaks:")
+            for name, opened in module.breaks(revision).items():
+                lines.append(f"  {name}:")
+                lines += [f"    {measure}: {_text(value)}" for measure, value in opened.margins().items()]
             lines.append("settling_times:")
             lines += [f"  {name}: {_text(value)}" for name, value in module.settlings(revision).items()]
             target = Path(__file__).parent.parent / module.__name__ / f"rev_{revision}.figures.yaml"
@@ -37,7 +43,7 @@ def main() -> None:
 
 
 def _text(value: float) -> str:
-    return f"{value:.12g}"
+    return "infinite" if value == math.inf else f"{value:.12g}"
 
 
 if __name__ == "__main__":
