@@ -98,6 +98,18 @@ def test_figures_of_every_response(name: str, revision: str) -> None:
 
 
 @EACH
+def test_margins_of_every_break(name: str, revision: str) -> None:
+    for path, wanted in figures(name, revision)["breaks"].items():
+        loop, opened = path.split(".")
+        found = by_measure(example(name, revision).loops[loop].breaks[opened].measures)
+        for measure, value in wanted.items():
+            if value == "infinite":
+                assert found[measure].infinite, (path, measure)
+            else:
+                assert found[measure].value == pytest.approx(value, rel=RELATIVE), (path, measure)
+
+
+@EACH
 def test_poles_of_every_loop(name: str, revision: str) -> None:
     result = example(name, revision)
     for loop, poles in figures(name, revision)["poles"].items():
