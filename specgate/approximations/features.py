@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 from functools import cached_property
+from types import MappingProxyType
 from typing import TypeVar, cast
 
 from flint import fmpq, fmpq_poly
@@ -29,10 +30,14 @@ class Features:
 
     Only of a response with a rational channel that is driven by a single step: `ResponseSubject.beyond` is None.
     Figures are answers: exact where they are rational, refinable balls else (coherent SI).
+    open_loops: L at each break that the loop of the response declares, where it is rational (see `beside`).
     """
+
+    open_loops: Mapping[str, TransferFunction] = MappingProxyType({})
 
     def __init__(self, subject: ResponseSubject) -> None:
         self.subject = subject
+        self._in_loop: Features | None = None
         self._kept: dict[Callable[[Features], object], object] = {}
 
     def once(self, find: Callable[[Features], Found]) -> Found:
@@ -40,6 +45,13 @@ class Features:
         if find not in self._kept:
             self._kept[find] = find(self)
         return cast("Found", self._kept[find])
+
+    def beside(self, open_loops: Callable[[], Mapping[str, TransferFunction]]) -> Features:
+        """Return the features with the opened loop around them: the same each time, since a response has one loop."""
+        if self._in_loop is None:
+            self._in_loop = Features(self.subject)
+            self._in_loop.open_loops = open_loops()
+        return self._in_loop
 
     def of(self, numerator: fmpq_poly, denominator: fmpq_poly) -> Features:
         """Return the features of another channel in place of this one: what is left when something is dropped."""

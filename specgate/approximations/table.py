@@ -23,11 +23,13 @@ from specgate.approximations import (
     second_order_settling,
     settling_envelope,
     slowest_pole_settling,
+    static_error_constants,
 )
 from specgate.approximations.approximation import Approximation, Condition
 
 _ROWS = (
     final_value_theorem,
+    static_error_constants,
     first_order_settling,
     first_order_rise,
     second_order_settling,
@@ -56,7 +58,6 @@ LATER: Mapping[str, str] = {
     "rise_from_bandwidth": "rise time as 2.2 over bandwidth",
     "margins_from_sensitivity": "least margins that a sensitivity peak leaves",
     "delay_margin_from_phase_margin": "delay margin as phase margin over crossover frequency",
-    "static_error_constants": "steady-state errors from the error constants",
     "pade_dead_time": "dead time as a rational function",
     "half_rule": "a high-order model as one of low order with dead time",
     "hold_as_delay": "a hold as a dead time of half the period",

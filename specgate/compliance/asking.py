@@ -2,16 +2,19 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+
 from flint import fmpq
 
-from specgate.analysis.analyses import Missing, Study
+from specgate.analysis.analyses import LoopAnalysis, Missing, Study
 from specgate.analysis.arguments import arguments, number
 from specgate.approximations.features import Features
 from specgate.compliance.compare import Limits, Sign
 from specgate.measures.measure import Arguments, Measure, Reader
-from specgate.measures.subjects import Subject
+from specgate.measures.subjects import BreakSubject, Subject
 from specgate.project.types import Criterion, Limit
 from specgate.response.answers import Answer
+from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
 from specgate.terms.unit import ONE, Unit
 
@@ -48,7 +51,19 @@ class Asked:
         about = self.criterion.subject
         if about.kind != "response" or about.name is None:
             return None
-        return self.study.loops[about.loop].responses[about.name].features
+        loop = self.study.loops[about.loop]
+        found = loop.responses[about.name].features
+        return None if found is None else found.beside(lambda: _open_loops(loop))
+
+
+def _open_loops(loop: LoopAnalysis) -> Mapping[str, TransferFunction]:
+    """Return L at each declared break, where it is rational."""
+    subjects = {name: opened.subject for name, opened in loop.breaks.items()}
+    return {
+        name: subject.open_loop
+        for name, subject in subjects.items()
+        if isinstance(subject, BreakSubject) and isinstance(subject.open_loop, TransferFunction)
+    }
 
 
 def ask(study: Study, criterion: Criterion, measure: Measure) -> Asked:

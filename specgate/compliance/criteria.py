@@ -97,7 +97,8 @@ class Criteria:
         subject = nominal.subject
         if isinstance(subject, ResponseSubject) and subject.beyond is not None:
             return audit_beyond(basis, subject.beyond, reading, nominal.study.values, unit)
-        features, precise = nominal.features, again.features
+        features = nominal.features
+        precise = features if again is nominal else again.features
         if features is None or precise is None:
             reason = nominal.subject.reason if isinstance(nominal.subject, Missing) else "it is no response"
             return Audit("approximation", Standing.INCONCLUSIVE, basis.place, reason, chain=basis.chain)
