@@ -9,8 +9,9 @@ from __future__ import annotations
 
 from functools import cached_property
 
-from flint import acb, arb, fmpq
+from flint import acb, arb, fmpq, fmpq_poly
 
+from specgate.delays.exactly import monotone_start, polynomials
 from specgate.delays.fading import Fading
 from specgate.delays.modal import Modal, modal
 from specgate.delays.remainder import ORDERS
@@ -164,10 +165,9 @@ class Course:
         return self._stretches[index]
 
     def _stretch(self, index: int) -> Stretch:
-        late = index - (len(self.begins) - len(self._late)) if self.looped else -1
-        if late >= 0:
-            return self._late[late]
-        number = index - (0 if self._kinks and self._kinks[0] == 0 else 1)
+        number = self._number(index)
+        if number is None:
+            return self._late[index - len(self.begins) + len(self._late)]
         if number < 0:
             return Stretch((), _BITS)
         group = Group(_ZERO, _ONE, self._kinks[number], self._steps.modes(number))
@@ -187,6 +187,37 @@ class Course:
                     total -= p[degree] * found[time - delay]
             found[time] = total / lead
         return found
+
+    @cached_property
+    def _polynomials(self) -> tuple[fmpq_poly, ...]:
+        return polynomials(self.transform, self._kinks)
+
+    def polynomial(self, index: int) -> fmpq_poly | None:
+        """Return a piece as a rational polynomial in the time from its begin on; None: it is none, or not told."""
+        number = self._number(index)
+        if number is None:
+            return None
+        if number < 0:
+            return fmpq_poly([0])
+        return self._polynomials[number] if number < len(self._polynomials) else None
+
+    def start(self, index: int) -> tuple[fmpq, int] | None:
+        """Return a length over which the first piece that moves moves strictly one way, and which way; None: not told.
+
+        It begins like x^(q - 1), q the degree of d0 above the numerator of the first term.
+        """
+        if self._number(index) != 0 or len(self._kinks) < 2:
+            return None
+        order = self.transform.denominator.undelayed.degree() - self.transform.numerator.terms[0][1].degree() - 1
+        if order < 1:
+            return None
+        return monotone_start(self._steps.modes(0), order, self._kinks[1] - self._kinks[0], self._steps.bits)
+
+    def _number(self, index: int) -> int | None:
+        """Return the number of the kink at which a piece begins, -1 before the first; None after the early pieces."""
+        if self.looped and index >= len(self.begins) - len(self._late):
+            return None
+        return index - (0 if self._kinks and self._kinks[0] == 0 else 1)
 
     @cached_property
     def fading(self) -> Fading | None:

@@ -105,6 +105,35 @@ class DelayedPieces(Pieces):
         begin = self._begins[index]
         return sum((p.course.jumps.get(begin - p.begin, fmpq(0)) * p.factor for p in self.parts), fmpq(0))
 
+    def polynomial(self, index: int) -> fmpq_poly | None:
+        """Return a piece as a rational polynomial in the time from its kink on; None: it is none, or not told."""
+        begin, total = self._begins[index], fmpq_poly([0])
+        for part in self.parts:
+            since = begin - part.begin
+            if since >= 0:
+                number = bisect_right(part.course.begins, since) - 1
+                found = part.course.polynomial(number)
+                if found is None:
+                    return None
+                total += found(fmpq_poly([since - part.course.begins[number], 1])) * part.factor
+        return total
+
+    def start(self, index: int) -> tuple[fmpq, int] | None:
+        """Return a length over which the piece moves strictly one way from its kink on, and which way; None."""
+        moving = [part for part in self.parts if part.begin <= self._begins[index]]
+        if len(moving) != 1:
+            return None
+        (part,) = moving
+        since = self._begins[index] - part.begin
+        if since not in part.course.begins:
+            return None
+        found = part.course.start(part.course.begins.index(since))
+        if found is None:
+            return None
+        end = self.kink(index + 1)
+        length = found[0] if end is None else min(found[0], end - self._begins[index])
+        return length, found[1] if part.factor > 0 else -found[1]
+
     def continuous_from(self) -> fmpq | None:
         """Return a time from which on y does not jump; None: it may for ever."""
         if not all(part.course.retarded for part in self.parts):
