@@ -31,6 +31,22 @@ class Poles:
     rational: tuple[tuple[acb, int], ...]
     delayed: tuple[tuple[Rightmost, int], ...]
 
+    def with_multiplicities(self, transform: Transform, bits: int) -> list[tuple[acb, int]]:
+        """Return the poles but s = 0, of conjugates the upper one, in balls of about `bits` relative bits."""
+        found: list[tuple[acb, int]] = []
+        for factor, times in transform.rational_factors:
+            roots = [root.value for root in certified_roots(factor, bits)]
+            kept = [root for root in roots if any(root.overlaps(pole) for pole, _ in self.rational)]
+            found += [(root, times) for root in kept if not root.imag < 0]
+        for rightmost, times in self.delayed:
+            found += [(root, times) for root in rightmost.at(bits)]
+        return found
+
+    def at(self, transform: Transform, bits: int) -> list[acb]:
+        """Return all poles, s = 0 first if it is one; in the same order at every precision."""
+        poles = [pole for pole, _ in self.with_multiplicities(transform, bits)]
+        return [acb(0), *poles] if transform.zero_times else poles
+
 
 def poles_right_of(transform: Transform, left: fmpq) -> Poles | None:
     """Return all poles of a transform right of Re s = left, proved complete by one count; None where they were not."""
@@ -80,14 +96,7 @@ class Modal:
         return self._at(bits)
 
     def _modes(self, bits: int) -> tuple[Mode, ...]:
-        transform = self.transform
-        found: list[tuple[acb, int]] = []
-        for factor, times in transform.rational_factors:
-            roots = [root.value for root in certified_roots(factor, bits)]
-            kept = [r for r in roots if any(r.overlaps(pole) for pole, _ in self.poles.rational)]
-            found += [(root, times) for root in kept if not root.imag < 0]
-        for rightmost, times in self.poles.delayed:
-            found += [(root, times) for root in rightmost.at(bits)]
+        found = self.poles.with_multiplicities(self.transform, bits)
         with working_precision(bits):
             return tuple(self._mode(pole, times) for pole, times in found)
 

@@ -6,12 +6,14 @@ from collections.abc import Callable, Mapping
 
 from flint import acb, arb, fmpq, fmpq_poly
 
+from specgate.delays.modes import Figure, least_over_late_modes
 from specgate.measures.measure import Argument, Arguments, Comparer, Measure, Reader, UnitRule
 from specgate.measures.reading import decided
 from specgate.measures.subjects import LoopSubject
 from specgate.response.answers import Answer
 from specgate.sampled.modes import is_at_one, is_dead, least_over_modes, oscillates
 from specgate.sampled.solution import SampledSolution
+from specgate.systems.delayed import DelayedSolution
 from specgate.systems.regions import (
     Sign,
     compare_damping_ratio,
@@ -67,10 +69,9 @@ def _over_poles(
         if arguments.over is not None:
             return Answer.undecided("a range (`over`) of the modes of a sampled loop is not answered by this version")
         return least_over_modes(solution, of, _OF_SAMPLED[which], reason)
+    if isinstance(solution, DelayedSolution):
+        return least_over_late_modes(solution, _FIGURE[which], arguments.over)
     polynomial = solution.determinant
-    if not isinstance(polynomial, fmpq_poly):
-        return Answer.undecided("the loop has a dead time, and endlessly many poles")
-
     picked = _picked(polynomial, arguments.over, which)
     if picked is None:
         return Answer.undecided(f"it is not told at {HIGHEST} bits which poles lie in the range")
@@ -117,6 +118,14 @@ _OF_SAMPLED: Mapping[Callable[[acb], bool], Callable[[Root], bool]] = {
     _any: lambda root: not is_dead(root),
 }
 """The same choices over modes in z."""
+
+
+_FIGURE: Mapping[Callable[[acb], bool], Figure] = {
+    _away_from_origin: "damping_ratio",
+    _oscillatory: "natural_frequency",
+    _any: "decay_rate",
+}
+"""The same figures of a loop with dead time."""
 
 
 def _damping(pole: acb) -> arb:

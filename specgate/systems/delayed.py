@@ -109,6 +109,12 @@ class DelayedSolution:
         return self._scaled(self._all_modes)
 
     @cached_property
+    def factors(self) -> tuple[tuple[Quasi, int], ...]:
+        """The factors of the determinant, as in `DelayedTransfer`."""
+        network = self.network
+        return network.transfer((network.ring.one, self._all_modes)).factors
+
+    @cached_property
     def _all_modes(self) -> fmpq_mpoly:
         return self._product(self.network.groups)
 
