@@ -22,6 +22,7 @@ from specgate.systems.regions import (
 )
 from specgate.systems.ring import in_ring
 from specgate.systems.roots import Root, certified_roots
+from specgate.systems.solution import LoopSolution
 from specgate.terms.precision import HIGHEST, working_precision
 
 _NO_POLES = "the loop has no dynamics: there is no pole"
@@ -47,8 +48,8 @@ def _at_limit(compare: Callable[[fmpq_poly, fmpq], Sign | None]) -> Comparer:
         if arguments.over is not None:
             return None  # the predicates are about all poles
         solution = subject.solution
-        modes = None if isinstance(solution, SampledSolution) else solution.determinant
-        return compare(modes, limit) if isinstance(modes, fmpq_poly) else None
+        modes = None if isinstance(solution, SampledSolution) else _polynomial(solution)
+        return None if modes is None else compare(modes, limit)
 
     return comparer
 
@@ -69,9 +70,10 @@ def _over_poles(
         if arguments.over is not None:
             return Answer.undecided("a range (`over`) of the modes of a sampled loop is not answered by this version")
         return least_over_modes(solution, of, _OF_SAMPLED[which], reason)
-    if isinstance(solution, DelayedSolution):
+    polynomial = _polynomial(solution)
+    if polynomial is None:
+        assert isinstance(solution, DelayedSolution)
         return least_over_late_modes(solution, _FIGURE[which], arguments.over)
-    polynomial = solution.determinant
     picked = _picked(polynomial, arguments.over, which)
     if picked is None:
         return Answer.undecided(f"it is not told at {HIGHEST} bits which poles lie in the range")
@@ -87,6 +89,11 @@ def _over_poles(
             return first
 
     return Answer.of_ball(refine)
+
+
+def _polynomial(solution: LoopSolution | DelayedSolution) -> fmpq_poly | None:
+    """Return the characteristic polynomial; None where a dead time in a loop makes it none."""
+    return solution.determinant.polynomial if isinstance(solution, DelayedSolution) else solution.determinant
 
 
 def _picked(

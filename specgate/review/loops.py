@@ -64,6 +64,7 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, wanted: Wanted) -> LoopReview
     reason = _reason(found)
     in_z = found.solution if isinstance(found.solution, SampledSolution) and not reason else None
     modes = None if reason or isinstance(found.solution, SampledSolution) else found.solution.determinant
+    modes = modes.polynomial or modes if isinstance(modes, Quasi) else modes
     rational = modes if isinstance(modes, fmpq_poly) else in_z.exact if in_z else None
     return LoopReview(
         title=declared.title,
