@@ -48,7 +48,12 @@ class Edge:
 
 
 def inside(above: fmpq_poly, below: fmpq_poly, mask: Mask) -> Answer:
-    """Return whether sqrt(above/below), polynomials in x = omega^2, stays inside; `at` has the first violation."""
+    """Return whether sqrt(above/below), polynomials in x = omega^2, stays inside; `at` has the first violation.
+
+    Raises ValueError for a negative limit, which no gain has.
+    """
+    if any(limit < 0 for _, limit in (*mask.upper, *mask.lower)):
+        raise ValueError("a limit of a gain is not negative")
     sides: tuple[tuple[Side, Points], ...] = (("upper", mask.upper), ("lower", mask.lower))
     found = []
     try:

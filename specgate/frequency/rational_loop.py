@@ -28,7 +28,7 @@ from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
 from specgate.frequency.questions import Crossing, Direction, Range
 from specgate.frequency.scale import Continuous, Scale, X, ends, within
-from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots
+from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots, sign_of
 from specgate.frequency.values import reciprocal
 from specgate.response.answers import Answer
 from specgate.response.questions import Mask
@@ -124,9 +124,9 @@ class RationalLoop:
 
     def _phase_crossing(self, spot: Spot) -> PhaseCrossing:
         axis = self.axis
-        return PhaseCrossing(
-            self.scale.frequency(spot), spot.ratio(axis.below, -axis.real), spot.sign(axis.below + axis.real)
-        )
+        factor = spot.ratio(axis.below, -axis.real)
+        rise = spot.sign(axis.below + axis.real) if factor.exact is None else sign_of(factor.exact - 1)
+        return PhaseCrossing(self.scale.frequency(spot), factor, rise)
 
     def crossings(self, over: Range | None = None) -> tuple[Crossing, ...]:
         """Return all crossings, by frequency."""

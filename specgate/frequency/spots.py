@@ -208,8 +208,10 @@ def _clear(p: fmpz_poly, isolating: arb) -> arb:
             if not slope(isolating).contains(0):
                 return isolating
         bits *= 2
-        roots = (root for root, _ in _complex_roots(p, bits))
-        isolating = next(root.real for root in roots if root.imag.is_zero() and root.real.overlaps(isolating))
+        real = [root.real for root, _ in _complex_roots(p, bits) if root.imag.is_zero()]
+        # a ball of a neighbour may reach over the edge of the old one: more bits tell them apart
+        found = [ball for ball in real if ball.overlaps(isolating)]
+        isolating = found[0] if len(found) == 1 else isolating
 
 
 def _at(p: fmpz_poly) -> Function:

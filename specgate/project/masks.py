@@ -45,6 +45,8 @@ def check_mask(mask: MaskDefinition, signal: Unit | None, values: Values, *, spa
         raise Fault(faults.VALUE, f"the mask `{mask.name}` is laid over time, a break over frequency", mask.place)
     for corners in (mask.upper, mask.lower):
         _check_order(mask, corners, over, values)
+        if over == "frequency":
+            _check_logarithmic(corners, values)
         for corner in corners:
             if over == "frequency":
                 _check_gain(corner.limit, values)
@@ -106,6 +108,17 @@ def _check_alike(mask: MaskDefinition, over: Over, values: Values) -> None:
         what = "in dB or as plain ratios" if over == "frequency" else "in % of the change or in the signal's unit"
         message = f"`{odd.as_written}`: give all limits of the mask `{mask.name}` {what}, not some and some"
         raise Fault(faults.DIMENSION, message, odd.place)
+
+
+def _check_logarithmic(corners: tuple[Corner, ...], values: Values) -> None:
+    """See that no line in dB begins at zero frequency, unless it is level. Raises Fault."""
+    for first, second in pairwise(corners):
+        level = evaluate(first.limit, values) == evaluate(second.limit, values)
+        if evaluate(first.at, values) == 0 < evaluate(second.at, values) and _in_decibel(first.limit) and not level:
+            message = (
+                f"`{first.at.as_written}`: lines in dB are straight over the logarithm of frequency, which has no zero"
+            )
+            raise Fault(faults.VALUE, message, first.at.place)
 
 
 def mask_of(mask: MaskDefinition, values: Values, span: fmpq | None) -> tuple[Mask, bool]:

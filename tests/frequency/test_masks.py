@@ -121,3 +121,8 @@ def test_a_growing_channel_is_inside_of_nothing() -> None:
     found = gain([1], [1, -1]).within(Mask(points([(0, 9)])))
     assert found.absent is not None
     assert found.absent.proved
+
+
+def test_a_negative_limit_is_refused() -> None:
+    with pytest.raises(ValueError, match="not negative"):
+        gain(*LAG).within(Mask(lower=points([(0, -1), (1, 1)])))
