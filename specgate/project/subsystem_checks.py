@@ -10,7 +10,7 @@ from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, infer
 from specgate.project.temperatures import absolute
-from specgate.project.types import Port, SampledModel, Subsystem, Value
+from specgate.project.types import Port, Subsystem, Value
 from specgate.terms.dimensions import TIME, Dimension
 from specgate.terms.expressions import PLAIN, as_dimension
 from specgate.terms.trees import Number
@@ -23,11 +23,6 @@ def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> Buil
     """Note everything wrong with a subsystem; return its block if the model can be built."""
     for port in (*subsystem.inputs.values(), *subsystem.outputs.values()):
         _check_port(port, subsystem.name, values, found)
-    if isinstance(subsystem.model, SampledModel):
-        for value in (subsystem.model.period, subsystem.model.delay):
-            if value is not None:
-                with found.noted(subsystem=subsystem.name):
-                    wants(value, _SECOND, values, subsystem.name)
     with found.noted(subsystem=subsystem.name):
         return build(subsystem, values)
     return None
