@@ -12,7 +12,7 @@ from flint import fmpq, fmpq_poly
 from specgate.frequency.choose import Candidate, greatest
 from specgate.frequency.questions import Range
 from specgate.frequency.scale import Scale, X, ends, within
-from specgate.frequency.spots import Rational, Spot, positive_roots
+from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots
 from specgate.frequency.values import root_of
 from specgate.response.answers import Answer
 
@@ -39,7 +39,7 @@ class Magnitude:
     def supremum(self, over: Range | None = None) -> Answer:
         """Return the least upper bound over a range, with the frequency where it is reached or approached."""
         low, high = ends(self.scale, over)
-        grows = over is None and self.above.degree() > self.below.degree()
+        grows = isinstance(high, Infinity) and self.above.degree() > self.below.degree()
         if grows or within(self.scale, self.poles, over):
             return Answer.nothing(UNBOUNDED, infinite=True)
         spots = (low, *within(self.scale, self.stationary, over), high)

@@ -29,6 +29,8 @@ from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 
+NO_LAG = "a dead time of a part of a period is no lag of L(z): its margin is not answered in a sampled loop"
+
 _Place = Crossed | Tangent
 
 
@@ -192,8 +194,8 @@ class EnclosedLoop:
         return self._phase_margin(over, "lag", "lead")
 
     def delay_margin(self, over: Range | None = None) -> Answer:
-        """Return the least of lag over frequency (s) at the gain crossings."""
-        return self._of_stable(lambda: margins.delay_margin(self._gain_crossings(over)))
+        """Leave it open: lag over frequency is not the dead time that a sampled loop stands."""
+        return Answer.undecided(NO_LAG)
 
     # --- peaks --------------------------------------------------------------------------------------------
 

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 from flint import fmpq
 
-from specgate.frequency.questions import OpenLoop
+from specgate.frequency.questions import OpenLoop, Range
 from specgate.frequency.rational_loop import RationalLoop
 from specgate.response.answers import Answer
 from specgate.sampled.enclosed_axis import Axis
-from specgate.sampled.enclosed_loop import EnclosedLoop
+from specgate.sampled.enclosed_loop import NO_LAG, EnclosedLoop
 from specgate.sampled.opened import SampledOpening
 from specgate.sampled.phase import phase_at
 from specgate.sampled.scale import BEYOND, SampledScale
@@ -28,6 +28,10 @@ class RationalSampledLoop(RationalLoop):
     def gain_at(self, frequency: fmpq) -> Answer:
         """Return |L| at a frequency."""
         return Answer.nothing(BEYOND) if self._rate.beyond(frequency) else super().gain_at(frequency)
+
+    def delay_margin(self, over: Range | None = None) -> Answer:
+        """Leave it open: lag over frequency is not the dead time that a sampled loop stands."""
+        return Answer.undecided(NO_LAG)
 
     def phase_at(self, frequency: fmpq) -> Answer:
         """Return arg L at a frequency, followed from zero frequency (rad)."""

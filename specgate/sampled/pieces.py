@@ -14,7 +14,7 @@ from specgate.response.pieces import Pieces
 from specgate.sampled.cycle import Cycle
 from specgate.sampled.decay import Decay, quadratic
 from specgate.sampled.drive import Drive, Setting
-from specgate.sampled.hulls import BLOCK, Hulls
+from specgate.sampled.hulls import BLOCK, Hulls, derived
 from specgate.sampled.lasting import side
 from specgate.sampled.shapes import Shapes
 from specgate.sampled.starting import start
@@ -213,6 +213,13 @@ class SampledPieces(Pieces):
         moved = (sets and any(factor != 0 for factor in read)) or any(factor != 0 for factor in arriving)
         return None if moved else fmpq(0)
 
+    def continuous_from(self) -> fmpq | None:
+        """Return a time from which on y does not jump, where it reads nothing that is held."""
+        if any(factor != 0 for factor in self._line[1]):
+            return None
+        read = self._line[0][self._cycle.moving - self._drive.order :]
+        return self._drive.starts[-1][0] if any(factor != 0 for factor in read) else fmpq(0)
+
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return zero for a piece before anything has moved."""
         if not self._at_rest(index):
@@ -265,12 +272,36 @@ class SampledPieces(Pieces):
             state = exact * state
         return None
 
+    def slow_by(self, rate: fmpq) -> fmpq | None:
+        """Return a time from which on |y'| <= rate is proved; None: none found."""
+        if isinstance(self._final, Absent) or self._slowing is None:
+            return None
+        sample = self._slowing.first_within(rate)
+        return None if sample is None else (self._first + sample) * self._cycle.period
+
     @cached_property
     def _decay(self) -> Decay | None:
         if self._deviation is None:
             return None
         matrix, first, form, _ = self._deviation
         return Decay(States(matrix, first, _BOUND_BITS), form)
+
+    @cached_property
+    def _slowing(self) -> Decay | None:
+        if self._deviation is None:
+            return None
+        matrix, first, _, kept = self._deviation
+        return Decay(States(matrix, first, _BOUND_BITS), self._form(1, kept))
+
+    def _form(self, order: int, kept: list[int]) -> arb_mat:
+        """Return Q that bounds y^(order) - rest over a period by the deviation at its sample."""
+        with working_precision(_BOUND_BITS):
+            form = arb_mat(len(kept), len(kept))
+            terms = derived(self._shapes.rows(_BOUND_BITS), order)
+            for stretch, way in zip(self._cycle.stretches, self._way(_BOUND_BITS), strict=True):
+                rows = [(pole, acb_mat(weights), stretch.length) for pole, weights in terms]
+                form = form + quadratic(rows, _columns(way, kept))
+        return form
 
     @cached_property
     def _deviation(self) -> tuple[arb_mat, arb_mat, arb_mat, list[int]] | None:
@@ -289,12 +320,7 @@ class SampledPieces(Pieces):
             matrix = arb_mat([[whole[i][j] for j in kept] for i in kept])
             state = states.at(0)
             first = arb_mat(len(kept), 1, [state[j, 0] - arb(self._rest[j]) for j in kept])
-            form = arb_mat(len(kept), len(kept))
-            for stretch, way in zip(cycle.stretches, self._way(bits), strict=True):
-                through = _columns(way, kept)
-                rows = [(pole, acb_mat(weights), stretch.length) for pole, weights in self._shapes.rows(bits)]
-                form = form + quadratic(rows, through)
-        return matrix, first, form, kept
+        return matrix, first, self._form(0, kept), kept
 
     def start(self, index: int) -> tuple[fmpq, int] | None:
         """Return how y leaves its rest: how long it moves one way from a kink on, and which way."""

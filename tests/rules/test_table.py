@@ -15,7 +15,7 @@ CONTRACT = {
     *("hidden-mode", "algebraic-loop", "improper-model", "unused-subsystem", "value-without-source"),
     *("requirement-orphan", "dangling-link", "derivation-cycle"),
 }
-ADDED = {"threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"}
+ADDED = {"hidden-from-samples", "threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"}
 NO_ROWS = {"__init__", "rule", "table"}
 
 
