@@ -31,7 +31,7 @@ class Dimension:
 
     def __str__(self) -> str:
         """Return a short name of the coherent SI unit, as people write it (`N*m`, `m/s/V`); `1` for a plain number."""
-        return _names().get(self) or self.in_base_units
+        return _name(self) or self.in_base_units
 
     @property
     def in_base_units(self) -> str:
@@ -56,26 +56,42 @@ def _power(unit: str, exponent: int) -> str:
 
 
 @cache
-def _names() -> Mapping[Dimension, str]:
-    """Return the cheapest product of at most three units for every dimension that has one."""
-    best: dict[tuple[int, ...], tuple[int, tuple[tuple[str, int], ...]]] = {}
-    for count in (0, 1, 2, 3):
-        for units in combinations(_COSTS, count):
-            for powers in product(*(_POWERS if unit in "ms" else (1, -1) for unit in units)):
-                factors = tuple(zip(units, powers, strict=True))
-                exponents = [sum(column) for column in zip((0,) * len(_BASE), *map(_exponents, factors), strict=False)]
-                cost = sum(_COSTS[unit] * (1 + abs(power)) for unit, power in factors)
-                known = best.get(tuple(exponents))
-                if known is None or cost < known[0]:
-                    best[tuple(exponents)] = cost, factors
-    order = (*_DERIVED, *_BASE)
-    return {_dimension(exponents): _product(factors, order) for exponents, (_, factors) in best.items()}
+def _name(dimension: Dimension) -> str | None:
+    """Return the cheapest product of at most three units that a dimension has, None if it has none."""
+    found = _cheapest().get(_packed(dimension.exponents))
+    return None if found is None else _product(found[1], (*_DERIVED, *_BASE))
 
 
 @cache
-def _exponents(factor: tuple[str, int]) -> tuple[int, ...]:
-    unit, power = factor
-    return tuple(exponent * power for exponent in _UNITS[unit].exponents)
+def _cheapest() -> Mapping[int, tuple[int, tuple[tuple[str, int], ...]]]:
+    """Return cost and factors of the cheapest product for every dimension that has one, by its packed exponents."""
+    factors = {
+        unit: [
+            (cost * (1 + abs(power)), (unit, power), _packed(_UNITS[unit].exponents) * power)
+            for power in (_POWERS if unit in "ms" else (1, -1))
+        ]
+        for unit, cost in _COSTS.items()
+    }
+    best: dict[int, tuple[int, tuple[tuple[str, int], ...]]] = {0: (0, ())}
+    for count in (1, 2, 3):
+        for units in combinations(factors.values(), count):
+            for chosen in product(*units):
+                cost, key = 0, 0
+                for one, _, exponents in chosen:
+                    cost += one
+                    key += exponents
+                known = best.get(key)
+                if known is None or cost < known[0]:
+                    best[key] = cost, tuple(factor for _, factor, _ in chosen)
+    return best
+
+
+def _packed(exponents: Iterable[int]) -> int:
+    """Return exponents as one number, so that a product of units is a sum of numbers: a table is made in each run."""
+    key = 0
+    for exponent in exponents:
+        key = key * 4096 + exponent
+    return key
 
 
 DIMENSIONLESS = Dimension()
