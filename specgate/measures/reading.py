@@ -10,7 +10,7 @@ from flint import arb, fmpq
 
 from specgate.measures.measure import Arguments, Reader
 from specgate.measures.subjects import BreakSubject, ResponseSubject
-from specgate.response.answers import Absent, Answer
+from specgate.response.answers import Absent, Answer, Fragile
 from specgate.response.extremes import Extreme
 from specgate.response.questions import TimeResponse
 from specgate.response.record import together
@@ -101,6 +101,14 @@ def sign_of(refine: Callable[[int], arb]) -> int | None:
     return None
 
 
+def _carried(fragile: Fragile | None, through: Callable[[arb, int], arb]) -> Fragile | None:
+    """Return what is fragile of a number that is made of a fragile one; `through` makes it of the other candidate."""
+    if fragile is None or fragile.other is None:
+        return fragile
+    other = fragile.other
+    return Fragile(fragile.reason, lambda bits: through(other(bits), bits))
+
+
 def positive_part(value: Answer) -> Answer:
     """Return max(0, value): exactly zero only where the value is proved not to be positive."""
     if value.absent is not None:
@@ -109,8 +117,8 @@ def positive_part(value: Answer) -> Answer:
         return Answer.of_exact(max(value.exact, fmpq(0)))
     sign = sign_of(value.enclose)
     if sign is None:
-        either = Answer.of_ball(lambda bits: value.enclose(bits).nonnegative_part(), value.fragile)
-        return replace(either, how=value.how)
+        fragile = _carried(value.fragile, lambda other, _: other.nonnegative_part())
+        return replace(Answer.of_ball(lambda bits: value.enclose(bits).nonnegative_part(), fragile), how=value.how)
     return value if sign > 0 else Answer.of_exact(0)
 
 
@@ -121,12 +129,12 @@ def affine(value: Answer, factor: fmpq, offset: fmpq) -> Answer:
     if value.exact is not None:
         return Answer.of_exact(value.exact * factor + offset)
 
-    def refine(bits: int) -> arb:
-        ball = value.enclose(bits)
+    def mapped(ball: arb, bits: int) -> arb:
         with working_precision(bits):
             return ball * factor + offset
 
-    return replace(Answer.of_ball(refine, value.fragile), how=value.how)
+    found = Answer.of_ball(lambda bits: mapped(value.enclose(bits), bits), _carried(value.fragile, mapped))
+    return replace(found, how=value.how)
 
 
 def difference(later: Answer, earlier: Answer) -> Answer:
@@ -137,10 +145,11 @@ def difference(later: Answer, earlier: Answer) -> Answer:
     if later.exact is not None and earlier.exact is not None:
         return Answer.of_exact(later.exact - earlier.exact)
 
-    def refine(bits: int) -> arb:
-        end, start = later.enclose(bits), earlier.enclose(bits)
+    def between(start: arb, end: arb, bits: int) -> arb:
         with working_precision(bits):
             return end - start
 
-    found = Answer.of_ball(refine, later.fragile or earlier.fragile)
+    fragile = _carried(later.fragile, lambda other, bits: between(earlier.enclose(bits), other, bits))
+    fragile = fragile or _carried(earlier.fragile, lambda other, bits: between(other, later.enclose(bits), bits))
+    found = Answer.of_ball(lambda bits: between(earlier.enclose(bits), later.enclose(bits), bits), fragile)
     return replace(found, how=lambda: together("the later less the earlier", later=later, earlier=earlier))

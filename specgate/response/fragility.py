@@ -69,6 +69,8 @@ def fragility(
     """
     time = 0.0 if passage.crossing is None else passage.crossing.guess
     for cells, index in passage.near:
+        if passage.crossing is not None and _behind(cells, index, time, backward=target.backward):
+            continue
         zero = _near_turn(course, target, cells, index, time, budget)
         if zero is not None:
             return _fragile(course, zero, "turns within 1 % of the edge without crossing it")
@@ -81,6 +83,12 @@ def fragility(
     if not _differs(wider.guess, time) or not _dips(course, target, time, wider.guess):
         return None
     return _fragile(course, wider, reason)
+
+
+def _behind(cells: Cells, index: int, time: float, *, backward: bool) -> bool:
+    """Whether a cell lies where the walk would have gone only after the crossing."""
+    left, right = map(float_of, ends(cells, index))
+    return right < time if backward else left > time
 
 
 def _fragile(course: Course, zero: Zero, reason: str) -> Fragile:

@@ -15,7 +15,10 @@ CONTRACT = {
     *("hidden-mode", "algebraic-loop", "improper-model", "unused-subsystem", "value-without-source"),
     *("requirement-orphan", "dangling-link", "derivation-cycle"),
 }
-ADDED = {"hidden-from-samples", "threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"}
+ADDED = {
+    *("hidden-from-samples", "threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"),
+    "fragile-result",
+}
 NO_ROWS = {"__init__", "rule", "table"}
 
 
