@@ -5,6 +5,7 @@ Its extremes over a range lie at the ends of the range or where above' below - a
 
 from __future__ import annotations
 
+from dataclasses import replace
 from functools import cached_property
 
 from flint import fmpq, fmpq_poly
@@ -12,7 +13,7 @@ from flint import fmpq, fmpq_poly
 from specgate.frequency.choose import Candidate, greatest
 from specgate.frequency.questions import Range
 from specgate.frequency.scale import Scale, X, ends, within
-from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots
+from specgate.frequency.spots import FIRST, Infinity, Rational, Spot, positive_roots
 from specgate.frequency.values import root_of
 from specgate.response.answers import Answer
 
@@ -47,7 +48,9 @@ class Magnitude:
             Candidate(spot.ratio(self.above, self.below), {"frequency": self.scale.frequency(spot)}) for spot in spots
         )
         assert found is not None
-        return Candidate(root_of(found.value), found.at).answer
+        still = wronskian(self.above, self.below)
+        answer = Candidate(root_of(found.value), found.at).answer
+        return replace(answer, how=lambda: {**counted(still), "candidates": len(spots)})
 
     def at(self, frequency: fmpq) -> Answer:
         """Return the magnitude at a frequency (rad/s)."""
@@ -55,6 +58,12 @@ class Magnitude:
         if spot.sign(self.below) == 0:
             return Answer.nothing("a pole lies on the imaginary axis at this frequency", infinite=True)
         return root_of(spot.ratio(self.above, self.below))
+
+
+def counted(p: fmpq_poly) -> dict[str, object]:
+    """Return what is told of a polynomial in the record of a proof."""
+    positive = len(roots(p))
+    return {"polynomial in omega^2, degree": p.degree(), "positive roots": positive, "bits at first": FIRST}
 
 
 def origin(p: fmpq_poly) -> tuple[Spot, ...]:

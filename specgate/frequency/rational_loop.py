@@ -15,6 +15,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 from functools import cached_property
+from typing import Literal
 
 from flint import fmpq
 
@@ -22,7 +23,7 @@ from specgate.frequency import margins
 from specgate.frequency.axis import AxisFunction, along_the_axis
 from specgate.frequency.choose import Candidate, least
 from specgate.frequency.fragile import Watch, tangencies
-from specgate.frequency.magnitude import Magnitude, origin, roots, wronskian
+from specgate.frequency.magnitude import Magnitude, counted, origin, roots, wronskian
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
@@ -158,14 +159,13 @@ class RationalLoop:
     def _gain_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
             return self._unstable
-        crossings = self._phase_crossings(over)
-        found = margins.gain_margin(crossings, *directions)
+        found = self._recorded(margins.gain_margin(self._phase_crossings(over), *directions), "phase crossings")
         return found if over else self._near_phase.warned(found, lambda some: margins.gain_margin(some, *directions))
 
     def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
             return self._unstable
-        found = margins.phase_margin(self._gain_crossings(over), *directions)
+        found = self._recorded(margins.phase_margin(self._gain_crossings(over), *directions), "gain crossings")
         return found if over else self._near_gain.warned(found, lambda some: margins.phase_margin(some, *directions))
 
     def gain_margin_up(self, over: Range | None = None) -> Answer:
@@ -200,8 +200,14 @@ class RationalLoop:
         far = self._far_value
         if over is None and top.absent is not None and (far is None or abs(far) >= 1):
             return replace(Answer.of_exact(0), at={"frequency": top})
-        found = margins.delay_margin(self._gain_crossings(over))
+        found = self._recorded(margins.delay_margin(self._gain_crossings(over)), "gain crossings")
         return found if over else self._near_gain.warned(found, margins.delay_margin)
+
+    def _recorded(self, answer: Answer, crossings: Literal["gain crossings", "phase crossings"]) -> Answer:
+        """Put the record of the proof beside a margin: whose roots were certified, and how many of them count."""
+        excess = self.axis.above - self.axis.below if crossings == "gain crossings" else self.axis.imaginary
+        count = len(self._gain_spots if crossings == "gain crossings" else self._phase_spots)
+        return replace(answer, how=lambda: {**counted(excess), crossings: count, "closed loop": "stable"})
 
     # --- peaks and frequencies ----------------------------------------------------------------------------
 

@@ -27,7 +27,8 @@ from specgate.terms.verdicts import Proof
 
 Sign = Literal[-1, 0, 1]
 
-_FIRST = 64
+FIRST = 64
+"""Bits at which roots are isolated; they are refined as far as a question needs."""
 _EXACT_FROM = 256
 """Bits at which a polynomial that may vanish at a root is looked at by its greatest common divisor with the other."""
 
@@ -116,7 +117,7 @@ class Root:
 
     def sign(self, p: fmpq_poly) -> Sign:
         """Return the sign of p at the root."""
-        whole, bits = p.numer(), _FIRST
+        whole, bits = p.numer(), FIRST
         while bits <= _MOST:
             found = self._sign_at(whole, bits)
             if found is not None:
@@ -149,7 +150,7 @@ class Root:
     def ratio(self, p: fmpq_poly, q: fmpq_poly) -> Answer:
         """Return p / q at the root."""
         above, below, factor = p.numer(), q.numer(), fmpq(q.denom(), p.denom())
-        if self._sign_at(above, _FIRST) is None and self.sign(p) == 0:
+        if self._sign_at(above, FIRST) is None and self.sign(p) == 0:
             return Answer.of_exact(0)
 
         def refine(bits: int) -> arb:
@@ -184,7 +185,7 @@ def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:
     square_free = whole // whole.gcd(whole.derivative())
     if square_free.degree() == 1:
         return (Rational(fmpq(-square_free[0], square_free[1])),)
-    real = [root.real for root, _ in _complex_roots(square_free, _FIRST) if root.imag.is_zero() and root.real > 0]
+    real = [root.real for root, _ in _complex_roots(square_free, FIRST) if root.imag.is_zero() and root.real > 0]
     return tuple(_spot(square_free, ball) for ball in sorted(real, key=lambda ball: ball.mid().fmpq()))
 
 
@@ -202,7 +203,7 @@ def _spot(p: fmpz_poly, ball: arb) -> Spot:
 
 def _clear(p: fmpz_poly, isolating: arb) -> arb:
     """Return the root in an isolating ball in one so narrow that p' does not vanish in it."""
-    slope, bits = p.derivative(), _FIRST
+    slope, bits = p.derivative(), FIRST
     while True:
         with working_precision(bits):
             if not slope(isolating).contains(0):

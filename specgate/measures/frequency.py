@@ -77,7 +77,8 @@ ROWS = (
         unit=UnitRule.DEGREE,
         definition=(
             "Phase of the frequency response at the stated frequency, followed continuously from zero frequency (an "
-            "integrator begins at -90 deg, a negative gain at -180 deg)."
+            "integrator begins at -90 deg, a negative gain at -180 deg). An undamped pole is passed by -180 deg, an "
+            "undamped zero by 180 deg, as if they were slightly damped."
         ),
         absent_when="a pole or zero lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
@@ -106,7 +107,7 @@ ROWS = (
         subjects=("response",),
         unit=UnitRule.RADIAN_PER_SECOND,
         definition="The first frequency at which the gain falls 3 dB (10^(-3/20)) below its value at zero frequency.",
-        absent_when="the gain at zero frequency is zero or infinite, or never falls so far",
+        absent_when="the gain at zero frequency is zero or infinite, or never falls so far; a mode grows",
         source="common practice; the constant and the first crossing fixed by specgate",
         method=_ROOTS,
         read=over_frequency(lambda gain, _: gain.bandwidth()),
@@ -118,7 +119,7 @@ ROWS = (
         subjects=("response",),
         unit=UnitRule.DECIBEL,
         definition="The greatest gain over frequency, relative to the gain at zero frequency.",
-        absent_when="the gain at zero frequency is zero or infinite, or a pole lies on the imaginary axis",
+        absent_when="the gain at zero frequency is zero or infinite; a pole lies on the imaginary axis, or right of it",
         source="common practice",
         method=_ROOTS,
         read=over_frequency(lambda gain, given: gain.resonance_peak(given.over)),

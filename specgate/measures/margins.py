@@ -9,16 +9,27 @@ from specgate.measures.measure import Argument, Arguments, Measure, UnitRule
 from specgate.measures.reading import over_frequency
 from specgate.response.answers import Answer
 
-_NO_MARGIN = "the nominal loop is unstable; a margin that nothing uses up is infinite and meets every at_least"
+_NO_MARGIN = "the closed loop is unstable as it is; a margin that nothing uses up is infinite and meets every at_least"
 _ALWAYS = ("gain_margin", "phase_margin", "delay_margin", "sensitivity_peak")
-_CROSSINGS = "exact crossing polynomials in the square of the frequency, certified roots"
-
-
+_CROSSINGS = (
+    "exact crossing polynomials in the square of the frequency, all their roots certified; zero and infinite frequency "
+    "are looked at as well"
+)
+_STATIONARY = (
+    "certified roots of the derivative of |1/(1+L)|^2, an exact polynomial in the square of the frequency; zero and "
+    "infinite frequency, or the ends of a range, are candidates"
+)
 _RANGE = (Argument("over", "range", "range of frequencies that is looked at; all unless given"),)
 
 
 def _margin(
-    name: str, title: str, unit: UnitRule, definition: str, source: str, ask: Callable[[OpenLoop, Arguments], Answer]
+    name: str,
+    title: str,
+    unit: UnitRule,
+    definition: str,
+    source: str,
+    ask: Callable[[OpenLoop, Arguments], Answer],
+    method: str = _CROSSINGS,
 ) -> Measure:
     return Measure(
         name,
@@ -28,7 +39,7 @@ def _margin(
         definition,
         _NO_MARGIN,
         source,
-        _CROSSINGS,
+        method,
         read=over_frequency(ask),
         arguments=_RANGE,
         always=name in _ALWAYS,
@@ -43,7 +54,9 @@ ROWS = (
         "gain_margin",
         "Gain margin",
         UnitRule.DECIBEL,
-        "The smallest change of the loop gain, up or down, that makes the loop unstable; positive, with its direction.",
+        "The smallest change of the loop gain, up or down, at which the loop is stable no more; positive, with its "
+        "direction. Called fragile where a change of less than 0.6 deg in the phase would create or remove the "
+        "crossing that decides.",
         _GAIN,
         lambda loop, given: loop.gain_margin(given.over),
     ),
@@ -51,7 +64,7 @@ ROWS = (
         "gain_margin_up",
         "Gain margin upwards",
         UnitRule.DECIBEL,
-        "The smallest rise of the loop gain that makes the loop unstable.",
+        "The smallest rise of the loop gain at which the loop is stable no more.",
         _GAIN,
         lambda loop, given: loop.gain_margin_up(given.over),
     ),
@@ -59,7 +72,8 @@ ROWS = (
         "gain_margin_down",
         "Gain margin downwards",
         UnitRule.DECIBEL,
-        "The smallest fall of the loop gain that makes the loop unstable; positive.",
+        "The smallest fall of the loop gain at which the loop is stable no more: of a loop around an unstable plant, "
+        "or one that is stable between two gains only. Positive.",
         _GAIN,
         lambda loop, given: loop.gain_margin_down(given.over),
     ),
@@ -67,7 +81,8 @@ ROWS = (
         "phase_margin",
         "Phase margin",
         UnitRule.DEGREE,
-        "The smallest change of phase, lag or lead, that makes the loop unstable; positive, with its direction.",
+        "The smallest change of phase, lag or lead, at which the loop is stable no more; positive, with its direction. "
+        "Called fragile where a change of less than 1 % in the gain would create or remove the crossing that decides.",
         _PHASE,
         lambda loop, given: loop.phase_margin(given.over),
     ),
@@ -75,7 +90,7 @@ ROWS = (
         "phase_margin_lag",
         "Phase margin against lag",
         UnitRule.DEGREE,
-        "The smallest added phase lag that makes the loop unstable.",
+        "The smallest added phase lag at which the loop is stable no more, below 360 deg.",
         _PHASE,
         lambda loop, given: loop.phase_margin_lag(given.over),
     ),
@@ -83,7 +98,7 @@ ROWS = (
         "phase_margin_lead",
         "Phase margin against lead",
         UnitRule.DEGREE,
-        "The smallest added phase lead that makes the loop unstable.",
+        "The smallest added phase lead at which the loop is stable no more, below 360 deg.",
         _PHASE,
         lambda loop, given: loop.phase_margin_lead(given.over),
     ),
@@ -91,8 +106,8 @@ ROWS = (
         "delay_margin",
         "Delay margin",
         UnitRule.SECOND,
-        "The smallest added dead time that makes the loop unstable; zero where the loop gain does not fall below one "
-        "at high frequency.",
+        "The smallest added dead time at which the loop is stable no more: the least of lag over frequency at the gain "
+        "crossings; zero where the loop gain does not fall below one at high frequency.",
         "specgate's own definition; the least phase lag over frequency at the gain crossings",
         lambda loop, given: loop.delay_margin(given.over),
     ),
@@ -103,13 +118,16 @@ ROWS = (
         "The least distance of the open-loop frequency response from the point -1.",
         "reciprocal of the sensitivity peak",
         lambda loop, given: loop.least_distance(given.over),
+        _STATIONARY,
     ),
     _margin(
         "sensitivity_peak",
         "Sensitivity peak",
         UnitRule.RATIO,
-        "The greatest gain over frequency of 1/(1+L), by which the loop amplifies what disturbs it.",
+        "The greatest gain over frequency of 1/(1+L), by which the loop amplifies what disturbs it, with the frequency "
+        "where it is taken; where it is only approached, at infinite frequency, there is none.",
         "Skogestad, Postlethwaite: Multivariable Feedback Control, 2nd ed. 2005, section 2.4",
         lambda loop, given: loop.sensitivity_peak(given.over),
+        _STATIONARY,
     ),
 )
