@@ -18,7 +18,7 @@ from functools import cached_property
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.approximations.approximation import Accuracy
-from specgate.approximations.crowding import signed_percent
+from specgate.approximations.crowding import outward, signed_percent
 from specgate.approximations.features import Features
 from specgate.approximations.figures import SHOWN
 from specgate.approximations.spots import Spot
@@ -32,7 +32,6 @@ from specgate.terms.records import record
 _DIVIDED_AT = 256
 _SPARE = fmpq(1, 10**9)
 """Part by which a is taken greater than it is: far more than a couple divided out to seventy digits is off by."""
-_STATED_TO = 100000
 
 
 @record
@@ -116,8 +115,7 @@ class Cancellation:
         (low, high), floor, ceiling = (ends(one.enclose(SHOWN)) for one in (value, least, most))
         if floor[0] <= 0:
             return None
-        lower = fmpq((_STATED_TO * (low / ceiling[1] - 1)).floor(), _STATED_TO)
-        upper = fmpq((_STATED_TO * (high / floor[0] - 1)).ceil(), _STATED_TO)
+        lower, upper = outward(low / ceiling[1] - 1, high / floor[0] - 1)
         tail = f"a tail of at most {100 * printed_short(self.tail.enclose(SHOWN)):.3g} % of the change is left out"
         return Accuracy(
             lower,

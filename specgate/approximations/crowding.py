@@ -21,6 +21,7 @@ SINGLE, SEVERAL = fmpq(1, 5), fmpq(2, 5)
 
 
 _COMPARED_AT = 128
+_FINEST = fmpq(1, 10**9)
 _QUIET, _QUIET_AT_PEAK = fmpq(1, 50), fmpq(1, 10000)
 
 
@@ -100,6 +101,14 @@ def _accuracy(thousandths: tuple[int | fmpq, int | fmpq], where: str) -> Accurac
     if low == high == 0:
         return Accuracy(fmpq(0), fmpq(0), f"exact ({where})")
     return Accuracy(low, high, f"{signed_percent(low)} to {signed_percent(high)} % ({where})")
+
+
+def outward(low: fmpq, high: fmpq) -> tuple[fmpq, fmpq]:
+    """Return a range rounded outward, to between a hundredth and a thousandth of its width."""
+    step = fmpq(1)
+    while step * 100 > high - low and step > _FINEST:
+        step /= 10
+    return step * (low / step).floor(), step * (high / step).ceil()
 
 
 def signed_percent(part: fmpq) -> str:

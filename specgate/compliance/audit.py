@@ -151,8 +151,8 @@ def _found(condition: Condition, link: Link, arguments: Arguments, threshold: fm
 
 def _evaluated(audited: Audit, chained: Linked, matter: Matter) -> Audit:
     formula = chained.formula(matter.arguments)
-    beyond = any(one.beyond for one in audited.conditions)
-    accuracy = None if beyond or formula.absent is not None else chained.accuracy(matter.arguments)
+    outside = any(one.beyond or one.found.holds is Trilean.NO for one in audited.conditions)
+    accuracy = None if outside or formula.absent is not None else chained.accuracy(matter.arguments)
     audited = replace(
         audited,
         formula=formula,

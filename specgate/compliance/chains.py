@@ -11,7 +11,7 @@ from collections.abc import Sequence
 from flint import fmpq
 
 from specgate.approximations.approximation import Accuracy, Approximation
-from specgate.approximations.crowding import signed_percent
+from specgate.approximations.crowding import outward, signed_percent
 from specgate.approximations.features import Features
 from specgate.approximations.table import chain, entry
 from specgate.measures.measure import Arguments
@@ -19,8 +19,6 @@ from specgate.project.types import Basis
 from specgate.response.answers import Absent, Answer
 from specgate.terms.records import record
 from specgate.terms.verdicts import Proof
-
-_STATED_TO = 100000
 
 
 @record
@@ -92,9 +90,6 @@ def together(parts: Sequence[Accuracy | None]) -> Accuracy | None:
     low, high = fmpq(1), fmpq(1)
     for part in stated:
         low, high = low * (1 + part.lower), high * (1 + part.upper)
-    lower, upper = (
-        fmpq((_STATED_TO * (low - 1)).floor(), _STATED_TO),
-        fmpq((_STATED_TO * (high - 1)).ceil(), _STATED_TO),
-    )
+    lower, upper = outward(low - 1, high - 1)
     each = "; then ".join(part.text for part in stated)
     return Accuracy(lower, upper, f"{each}; together {signed_percent(lower)} to {signed_percent(upper)} %")

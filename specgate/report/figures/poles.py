@@ -133,7 +133,7 @@ def _asked(separation: Separation, x: Scale, y: Scale) -> list[str]:
         inside = [(x(real), y(imaginary)) for real, imaginary in arc if x.holds(real) and y.holds(imaginary)]
         if len(inside) > 1:
             parts.append(svg.path(inside, svg.FORBIDDEN, 1.0, stroke_dasharray="2 3"))
-            label = y(0) - 4
+            label = HEIGHT - BOTTOM - 17
             parts.append(svg.text(x(-radius) + 3, label, f"outside: {separation.outside}", 7, fill=svg.FORBIDDEN))
     return parts
 
