@@ -51,7 +51,7 @@ class Expansion:
 
     @cached_property
     def _matrix(self) -> acb_mat:
-        rows = self.derivative_rows(4)
+        rows = self._rows
         flat = [c for row in rows for mode in row for c in mode]
         return acb_mat(4, len(flat) // 4, flat)
 
@@ -69,6 +69,80 @@ class Expansion:
                     basis.append(term)
             value, first, second, third = (self._matrix * acb_mat(len(basis), 1, basis)).entries()
         return value.real, first.real, second.real, third.real
+
+    def envelope(self, time: arb) -> tuple[arb, arb, arb, arb]:
+        """Return the same over a ball of times that is long beside a period: of a mode that turns in it its magnitude.
+
+        Re(c e^(pt)) in boxes would be up to sqrt(2) times as large.
+        """
+        with working_precision(self.bits):
+            totals = [arb(0)] * 4
+            for index, mode in enumerate(self.modes):
+                turns = bool(time.rad() * abs(mode.pole.imag) > 1)
+                growth = (mode.pole.real * time if turns else mode.pole * time).exp()
+                for order, row in enumerate(self._rows):
+                    part: acb | arb = arb(0)
+                    for c in reversed(row[index]):
+                        part = part * time + (abs(c) if turns else c)
+                    value = part * growth
+                    totals[order] += arb(0, abs(value).upper()) if turns else acb(value).real
+        value, first, second, third = totals
+        return value, first, second, third
+
+    def taylor(self, time: arb, terms: int) -> tuple[arb, arb, arb, arb]:
+        """Return the same over a ball of times, by Taylor's polynomials about its middle with `terms` terms.
+
+        They keep what modes cancel each other; the remainder of the k-th derivative is that of order k + terms over
+        the whole ball, mode by mode, times r^terms / terms!.
+        """
+        with working_precision(self.bits):
+            middle = time.mid()
+            away = arb(0, time.rad())
+            values = self._at(middle, terms + 4)
+            rest = time.rad() ** terms / factorial(terms)
+            result = []
+            for order in range(4):
+                total = arb(0)
+                for k in range(terms - 1, -1, -1):
+                    total = values[order + k] + total * away / (k + 1)
+                result.append(total + arb(0, (self._magnitude(time, order + terms) * rest).upper()))
+        return result[0], result[1], result[2], result[3]
+
+    def _at(self, time: arb, orders: int) -> list[arb]:
+        """Return the first derivatives at an instant."""
+        rows = self._many_rows(orders)
+        values = [arb(0)] * orders
+        for index, mode in enumerate(self.modes):
+            growth = (mode.pole * time).exp()
+            for order in range(orders):
+                part = acb(0)
+                for c in reversed(rows[order][index]):
+                    part = part * time + c
+                values[order] += (part * growth).real
+        return values
+
+    def _magnitude(self, time: arb, order: int) -> arb:
+        """Return a bound of the magnitude of a derivative over a ball of times, mode by mode."""
+        total = arb(0)
+        for mode, row in zip(self.modes, self._many_rows(order + 1)[order], strict=True):
+            part = arb(0)
+            for c in reversed(row):
+                part = part * abs(time) + abs(c)
+            total += part * (mode.pole.real * time).exp()
+        return total
+
+    def _many_rows(self, orders: int) -> tuple[tuple[tuple[acb, ...], ...], ...]:
+        if len(self._longest) < orders:
+            self._longest[:] = self.derivative_rows(orders)
+        return tuple(self._longest)
+
+    @cached_property
+    def _longest(self) -> list[tuple[tuple[acb, ...], ...]]:
+        return []
+
+    @cached_property
+    def _rows(self) -> tuple[tuple[tuple[acb, ...], ...], ...]:
+        return self.derivative_rows(4)
 
     def rescaled(self, time: int, value: int) -> Expansion:
         """Return the expansion of 2^-value y(2^-time t): powers of two, so nothing is rounded."""

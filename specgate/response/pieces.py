@@ -43,6 +43,10 @@ class Pieces(Protocol):
         """Return by how much y jumps at kink `index` (y(0+) for the first), exactly; None: not told exactly."""
         return None
 
+    def guard(self) -> int:
+        """Return how many bits cancel in y, about: a hint of how precisely to look, never part of a proof."""
+        return 0
+
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return a piece as a rational polynomial in the time from its kink on; None: it is none, or that is not told.
 

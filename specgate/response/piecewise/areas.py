@@ -26,7 +26,8 @@ _FAINT = 40
 _DEEPEST = 100
 _RUNGS = ((64, 56), (160, 160), (HIGHEST, 280))
 """Up to how many bits are asked for, and how many bits what is left out is below the whole then."""
-_FLAT = 140
+_FLAT = 24
+"""Bits by which the bound on a stretch where the sign is not told is below what is left out."""
 
 
 @dataclass(frozen=True)
@@ -51,8 +52,8 @@ class Areas:
         self._pieces = ground.pieces
         self._size = size
         self._known: dict[Patch, tuple[int, Zero | None] | None] = {}
-        self._runs: dict[fmpq, list[Run]] = {}
         self._sizes: dict[int, fmpq] = {}
+        self._flat = dyadic(-_FAINT)
         self._work = Work()
 
     def absolute(self) -> Answer:
@@ -81,6 +82,7 @@ class Areas:
         return Answer.of_ball(refine)
 
     def _total(self, power: int, bits: int) -> arb:
+        self._flat = dyadic(-bits - _FLAT)
         until, total = self._remainder(power, bits)
         with working_precision(bits + GUARD):
             for part in self._squares(until, bits) if power else self._magnitudes(until, bits):
@@ -157,10 +159,8 @@ class Areas:
             return (end.left + end.right) / 2, height.abs_upper() * (end.right - end.left)
 
     def _found(self, until: fmpq) -> list[Run]:
-        if until not in self._runs:
-            self._work = Work()
-            self._runs[until] = list(self._all(until))
-        return self._runs[until]
+        self._work = Work()
+        return list(self._all(until))
 
     def _all(self, until: fmpq) -> list[Run]:
         return [run for index, begin, end in self._ground.kinks(until) for run in self._piece(index, begin, end, until)]
@@ -198,11 +198,11 @@ class Areas:
                 if patch not in self._known:
                     self._work.spend()
                     self._known[patch] = self._judge(patch)
-                found = self._known[patch]
+                found = self._known[patch] or self._unsigned(patch)
                 if found is None or (patch.right > until and found[1] is not None):
                     waiting += reversed(patch.parts)
                 elif patch.right > until:
-                    yield Patch(patch.pieces, index, patch.left, until), *found
+                    yield patch.between(patch.left, until), *found
                 else:
                     yield patch, *found
 
@@ -215,6 +215,9 @@ class Areas:
 
     def _judge(self, patch: Patch) -> tuple[int, Zero | None] | None:
         """Return the sign of y on a patch, or at its right end and its zero; None where it has to be cut."""
+        start = self._ground.start(patch.index)
+        if start is not None and patch.right <= start[0] and patch.index == 0 and self._pieces.jump(0) == 0:
+            return start[1], None
         low, high = patch.rough(0)
         if low >= 0 or high <= 0:
             return (1 if low >= 0 else -1), None
@@ -228,9 +231,14 @@ class Areas:
             )
             if before is not None and after is not None:
                 return _monotone(patch, before, after)
+        return None
+
+    def _unsigned(self, patch: Patch) -> tuple[int, None] | None:
+        """Return that the sign of y is not told on a patch, where so little of the integral lies; None elsewhere."""
+        low, high = patch.hull(0)
         with working_precision(LOOK):
             share = arb(patch.right - patch.left) / self._length(patch.index)
-            flat = bool((high - low) * share < self._size * dyadic(-_FLAT))
+            flat = bool((high - low) * share < self._size * self._flat)
             # Where a value is known no better than this, a shorter patch tells no more.
             flat = flat or bool(8 * patch.middle[0].rad() > high - low)
         return (0, None) if flat or patch.depth > _DEEPEST else None

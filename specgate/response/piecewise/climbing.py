@@ -76,7 +76,7 @@ class Ceiling:
             near, far = max(root.left, since), min(root.right, until)
             if degree > 1 and near < far and not self._starts_one_way(root):
                 whole = near == root.left and far == root.right
-                self._push(root if whole else Patch(root.pieces, index, near, far))
+                self._push(root if whole else root.between(near, far))
 
     def _degree(self, index: int) -> int:
         """Return the degree of the derivative that is searched on a piece, 2 for all but constant and straight ones."""
@@ -129,7 +129,7 @@ class Ceiling:
             if self._domed(patch) and self._turns(patch):
                 continue
             self._raise(self._sign * patch.middle[self._order])
-            with working_precision(LOOK):
+            with working_precision(patch.bits):
                 near = bool(top - self._slack < self.best)
             if near:
                 self.blurred.append(patch)

@@ -16,7 +16,7 @@ from dataclasses import dataclass, field
 from flint import arb, fmpq
 
 from specgate.response.budget import Exhausted, OutOfWork
-from specgate.response.piecewise.patches import LOOK, Ground, Line, Patch
+from specgate.response.piecewise.patches import Ground, Line, Patch
 from specgate.response.piecewise.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
 
@@ -140,7 +140,7 @@ class Walk:
             left, right = max(root.left, since), root.right if until is None else min(root.right, until)
             if left < right:
                 whole = left == root.left and right == root.right
-                yield root if whole else Patch(root.pieces, index, left, right)
+                yield root if whole else root.between(left, right)
 
     def _within(self, root: Patch) -> Where | None:
         """Walk through a patch and its parts, the near ones first."""
@@ -188,7 +188,7 @@ class Walk:
     def _judge(self, patch: Patch) -> Where | bool | None:
         """Return the crossing on a patch, True where there is none, None where it has to be cut."""
         side = self.side
-        with working_precision(LOOK):
+        with working_precision(patch.bits):
             low, high = patch.rough(0)
             ends = arb(self.line.at(patch.left)).union(arb(self.line.at(patch.right)))
             if self._is_inside(high - ends if side > 0 else ends - low):

@@ -24,7 +24,7 @@ from specgate.response.pieces import Pieces
 from specgate.terms.precision import working_precision
 
 LOOK = 96
-"""Bits at which patches are enclosed."""
+"""Bits at which patches are enclosed where nothing cancels."""
 
 _SHARE = fmpq(33, 64)
 _UNEVEN = fmpq(509, 512)
@@ -55,36 +55,41 @@ Hull = tuple[arb, arb]
 class Patch:
     """A stretch [left, right] of piece `index`; `depth` counts the cuts that it came from."""
 
-    __slots__ = ("__dict__", "depth", "index", "left", "pieces", "right")
+    __slots__ = ("__dict__", "bits", "depth", "index", "left", "pieces", "right")
 
-    def __init__(self, pieces: Pieces, index: int, left: fmpq, right: fmpq, depth: int = 0) -> None:
+    def __init__(self, pieces: Pieces, index: int, left: fmpq, right: fmpq, bits: int, depth: int = 0) -> None:
         self.pieces = pieces
         self.index = index
         self.left = left
         self.right = right
+        self.bits = bits
         self.depth = depth
+
+    def between(self, left: fmpq, right: fmpq) -> Patch:
+        """Return a part of the patch that no search has cut."""
+        return Patch(self.pieces, self.index, left, right, self.bits)
 
     @cached_property
     def whole(self) -> tuple[arb, arb, arb, arb]:
         """Balls of y, y', y'', y''' over the whole patch."""
         with working_precision(LOOK):
             span = arb(self.left).union(arb(self.right))
-        return self.pieces.derivatives(self.index, span, LOOK)
+        return self.pieces.derivatives(self.index, span, self.bits)
 
     @cached_property
     def middle(self) -> tuple[arb, arb, arb, arb]:
         """Balls of y, y', y'', y''' in the middle."""
-        with working_precision(LOOK):
+        with working_precision(self.bits):
             time = arb((self.left + self.right) / 2)
-        return self.pieces.derivatives(self.index, time, LOOK)
+        return self.pieces.derivatives(self.index, time, self.bits)
 
     @cached_property
     def parts(self) -> tuple[Patch, Patch]:
         """The two patches that this one is cut into, in order of time."""
         cut = self.left + (self.right - self.left) * _SHARE
         return (
-            Patch(self.pieces, self.index, self.left, cut, self.depth + 1),
-            Patch(self.pieces, self.index, cut, self.right, self.depth + 1),
+            Patch(self.pieces, self.index, self.left, cut, self.bits, self.depth + 1),
+            Patch(self.pieces, self.index, cut, self.right, self.bits, self.depth + 1),
         )
 
     def rough(self, order: int) -> Hull:
@@ -104,7 +109,7 @@ class Patch:
 
     def above(self, line: Line, order: int) -> Hull:
         """Return the hull of the derivative of an order (0, 1 or 2) of y - line."""
-        with working_precision(LOOK):
+        with working_precision(self.bits):
             middle = (self.left + self.right) / 2
             away = arb(0, arb((self.right - self.left) / 2).upper())
             values = list(self.middle[:3])
@@ -139,6 +144,11 @@ class Ground:
         self._starts: dict[int, tuple[fmpq, int] | None] = {}
         self._begins: list[fmpq] = [fmpq(0)]
         self._ended = False
+
+    @cached_property
+    def bits(self) -> int:
+        """Bits at which patches are enclosed."""
+        return LOOK + self.pieces.guard()
 
     def kinks(self, until: fmpq | None) -> Iterator[tuple[int, fmpq, fmpq | None]]:
         """Yield (index, begin, end) of the pieces that begin before `until` (None: all), in order."""
@@ -209,5 +219,5 @@ class Ground:
     def _root(self, index: int, number: int, left: fmpq, right: fmpq) -> Patch:
         key = (index, number)
         if key not in self._roots:
-            self._roots[key] = Patch(self.pieces, index, left, right)
+            self._roots[key] = Patch(self.pieces, index, left, right, self.bits)
         return self._roots[key]

@@ -4,13 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from functools import cached_property
+from math import frexp
 
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Absent
-from specgate.response.modes import Expansion, Mode
+from specgate.response.modes import Expansion, Mode, dyadic
 from specgate.response.pieces import Pieces
-from specgate.response.segments import at_most
+from specgate.response.segments import at_most, exact
 from specgate.response.superposed.closing import closing
 from specgate.response.superposed.ending import Ending, derived
 from specgate.response.superposed.integrals import integral, square_integral
@@ -19,6 +20,11 @@ from specgate.systems.polynomials import least_common_multiple, order_at_origin
 from specgate.systems.stability import is_hurwitz
 from specgate.terms.precision import HIGHEST, working_precision
 
+_WIDE, _NARROW = 1, 2.0**-40
+"""Between them, in radians, Taylor polynomials are worth their price where modes cancel."""
+
+_FEW, _TERMS = 6, 14
+_SEEN = 8
 UNSETTLED = "the response does not settle"
 _RUNGS = (128, 256, 512, 1024, 2048, HIGHEST, HIGHEST + 512)
 
@@ -95,8 +101,35 @@ class Superposed(Pieces):
         """Return balls of y, y', y'', y''' over a ball of times inside the closed piece, one-sided at its ends."""
         whole = self._whole(index, bits)
         with working_precision(whole.bits):
-            value, first, second, third = whole.deviation(time - arb(self._kinks[index]))
+            local = time - arb(self._kinks[index])
+            reach = local.rad() * self.speed(index)
+            if reach > _WIDE:
+                value, first, second, third = whole.envelope(local)
+            elif reach > _NARROW and self.guard() > _FEW:
+                value, first, second, third = whole.taylor(local, _TERMS)
+            else:
+                value, first, second, third = whole.deviation(local)
             return value + arb(whole.offset), first, second, third
+
+    def guard(self) -> int:
+        """Return how many bits cancel: the modes against the largest value seen at a few instants of each piece."""
+        return self._guard
+
+    @cached_property
+    def _guard(self) -> int:
+        seen, summed = 0.0, 0.0
+        for index in range(min(_SEEN, len(self._kinks))):
+            modes = self._sum(index, _RUNGS[1]).modes
+            unit = exact(1.0 / (self.speed(index) or 1.0))
+            with working_precision(_RUNGS[1]):
+                summed = max([summed, *(at_most(abs(c)) for mode in modes for c in mode.coefficients)])
+                times = [arb(unit * dyadic(k)) for k in range(-2, 10)]
+            whole = self._whole(index, _RUNGS[1])
+            with working_precision(whole.bits):
+                values = [whole.deviation(time)[0] + arb(whole.offset) for time in times]
+            seen = max([seen, *(at_most(abs(value)) for value in values)])
+        lost = frexp(summed)[1] - frexp(seen)[1] if summed > 0.0 and seen > 0.0 else 0
+        return min(max(0, lost), _RUNGS[3])
 
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return a piece without modes as the polynomial that it is."""
