@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import replace
 
-from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, Study
+from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, ResponseAnalysis, Study
 from specgate.analysis.responses import response_analysis, same
 from specgate.analysis.sampled import sampled_breaks, sampled_responses
 from specgate.analysis.wiring import subsystems_of
@@ -78,7 +78,10 @@ def loop_analysis(project: Project, loop: Loop, built: InstantiatedLoop, known: 
 def _sampled(
     project: Project, loop: Loop, built: InstantiatedLoop, known: Values, wiring: SampledWiring
 ) -> LoopAnalysis:
-    solution = solve_sampled(wiring)
+    try:
+        solution = solve_sampled(wiring)
+    except ValueError as reason:
+        return _unanswered(project, loop, built, str(reason))
     return LoopAnalysis(
         loop=loop,
         subsystems=subsystems_of(project, loop),
@@ -87,6 +90,21 @@ def _sampled(
         subject=LoopSubject(solution) if built.unsupported is None else Missing(built.unsupported, later=True),
         responses=sampled_responses(loop, built.signals, solution, built.responses, known),
         breaks=sampled_breaks(loop, solution, built.breaks),
+    )
+
+
+def _unanswered(project: Project, loop: Loop, built: InstantiatedLoop, reason: str) -> LoopAnalysis:
+    missing = Missing(reason, later=True)
+    return LoopAnalysis(
+        loop=loop,
+        subsystems=subsystems_of(project, loop),
+        signals=built.signals,
+        solution=solved(built.wiring),
+        subject=missing,
+        responses={
+            name: ResponseAnalysis(one, built.signals.unit(one.to), missing) for name, one in loop.responses.items()
+        },
+        breaks={name: BreakAnalysis(one, missing) for name, one in loop.breaks.items()},
     )
 
 

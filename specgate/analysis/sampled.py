@@ -19,7 +19,7 @@ from specgate.response.counted import Counted
 from specgate.response.inputs import Input, respond
 from specgate.response.piecewise import PiecewiseResponse
 from specgate.response.questions import TimeResponse
-from specgate.sampled.channel import SampledChannel, channel, pieces
+from specgate.sampled.channel import SampledChannel, channel, delayed, pieces
 from specgate.sampled.drive import drive
 from specgate.sampled.opened import opened
 from specgate.sampled.over_frequency import over_frequency
@@ -83,9 +83,10 @@ def _in_time(one: SampledChannel, driven: Sequence[tuple[str, Input]]) -> TimeRe
     """Return the response; without a sampled block on the way it is that of the blocks in s."""
     if any(given.kind == "white_noise" for _, given in driven):
         return NOISE
+    late = delayed(one.solution, driven)
     if not one.sampled:
-        return respond([(one.continuous(source), given) for source, given in driven])
-    found = drive(driven)
+        return respond([(one.continuous(source), given) for source, given in late])
+    found = drive(late)
     if isinstance(found, Absent):
         return found
     response = PiecewiseResponse(pieces(one, found))

@@ -31,8 +31,8 @@ Node = tuple[str, str]
 class InstantiatedLoop:
     """A loop in coherent SI.
 
-    wiring: a block that this version does not answer (dead time beside a sampled block) is left out of it, and its
-    outputs are inputs named `block.output`; what no path through such a block reaches is answered as if it stood there.
+    wiring: a block that this version does not answer is left out of it, and its outputs are inputs named
+    `block.output`; what no path through such a block reaches is answered as if it stood there.
     sampled: the same with the sampled blocks, which are left out of `wiring` too; None where there are none.
     signals: the unit and the span of each signal. rest: value of every input and signal before the step, temperatures
     from the zero of the signal's unit. unsupported: why nothing about the loop as a whole is answered. responses,
@@ -85,16 +85,8 @@ class Drawn:
         self.names = dict(self._named())
         built = {name: blocks[self.classes[number][0].call.subsystem] for number, name in self.names.items()}
         self.periodic = {name: one.sampled for name, one in built.items() if one.sampled is not None}
-        self.missing = {name: reason for name, one in built.items() if (reason := self._unanswered(one))}
+        self.missing = {name: reason for name, one in built.items() if (reason := one.unsupported)}
         self.arcs = self._arcs()
-
-    def _unanswered(self, built: BuiltBlock) -> str | None:
-        if built.block is not None and built.block.dead_time != 0 and self.periodic:
-            return (
-                f"`{built.block.name}` has a dead time and stands in a loop with a sampled block, which this version "
-                "does not answer; one that belongs to what a sampled block sends can be stated there"
-            )
-        return built.unsupported
 
     def _by_subsystem(self) -> dict[str, list[int]]:
         """Return the classes of each subsystem that is used, in the order of the project. Raises Fault."""

@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping, Sequence
+from dataclasses import replace
 from functools import cached_property
 
 from flint import fmpq, fmpq_poly
 
+from specgate.sampled.late import Punctual, punctual
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.terms.records import record
 
@@ -58,6 +60,27 @@ class SampledWiring:
     instances: tuple[SampledInstance, ...]
 
     @cached_property
+    def punctual(self) -> Punctual:
+        """The continuous wiring with its dead times moved. Raises ValueError for one inside a loop of blocks in s."""
+        return punctual(self.continuous)
+
+    @property
+    def late(self) -> bool:
+        """Whether a continuous block has a dead time."""
+        return any(one.block.dead_time != 0 for one in self.continuous.instances)
+
+    def members(self, names: Collection[str]) -> tuple[str, ...]:
+        """Return the continuous blocks of a set of names, and the later copies of them."""
+        copies = (copy for copy, own in self.punctual.copies.items() if own in names)
+        return (*(one.name for one in self.continuous.instances if one.name in names), *copies)
+
+    def later(self, held: Sequence[str]) -> tuple[tuple[str, int, fmpq], ...]:
+        """Return what arrives later of some held outputs: its name, the number of the output, how much later."""
+        return tuple(
+            (late, held.index(name), more) for late, (name, more) in self.punctual.late.items() if name in held
+        )
+
+    @cached_property
     def inputs(self) -> tuple[str, ...]:
         """The inputs of the loop itself."""
         return tuple(name for name in self.continuous.inputs if name not in self._held)
@@ -77,7 +100,9 @@ class SampledWiring:
         step = fmpq_poly([1, self.period])
         instances = [
             *(
-                Instance(one.name, one.block, {name: self._joined(form) for name, form in one.arguments.items()})
+                Instance(
+                    one.name, self._slow(one.block), {key: self._joined(form) for key, form in one.arguments.items()}
+                )
                 for one in self.continuous.instances
             ),
             *(
@@ -97,6 +122,11 @@ class SampledWiring:
         ]
         signals = {name: self._joined(form) for name, form in self.continuous.signals.items()}
         return Wiring(self.inputs, tuple(instances), signals)
+
+    def _slow(self, block: Block) -> Block:
+        """Return a block with its dead time as so many samples: it is one to slow signals, and nothing at once."""
+        step = fmpq_poly([1, self.period]) ** whole_periods(block.dead_time, self.period)
+        return replace(block, denominator=block.denominator * step, dead_time=fmpq(0))
 
     def _joined(self, form: LinearForm) -> LinearForm:
         """Return a form that reads sampled blocks themselves instead of what they hold."""

@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 from flint import fmpq, fmpq_mat
 
 from specgate.response.answers import Absent
+from specgate.response.inputs import Input
 from specgate.sampled.components import UNTOLD, Component
 from specgate.sampled.cycle import Controller, Cycle
 from specgate.sampled.drive import Drive
@@ -86,16 +88,31 @@ def pieces(found: SampledChannel, drive: Drive) -> SampledPieces:
     wiring = found.solution.wiring
     sampled = [one for one in wiring.instances if one.name in found.instances]
     held = [one.held(output) for one in sampled for output in one.block.outputs]
-    plant = Plant(wiring.continuous, found.instances, [*held, *drive.sources])
+    later = wiring.later(held)
+    sent = [*held, *(name for name, _, _ in later)]
+    taps = [(number, more) for _, number, more in later]
+    plant = Plant(wiring.punctual.wiring, wiring.members(found.instances), [*sent, *drive.sources])
     samplers = [one.arguments[name] for one in sampled for name in one.block.inputs]
     least = plant.seen([*samplers, found.target]).reduced()
     controllers = [Controller(realised(one.block), one.block.delay) for one in sampled]
-    alone = Cycle(_from_held(least, len(held), len(samplers)), controllers, wiring.period)
-    driven = _driven(least, len(held), drive)
-    cycle = Cycle(_from_held(driven, len(held), len(samplers)), controllers, wiring.period)
-    line = (list(driven.c.tolist()[-1]), list(driven.d.tolist()[-1])[: len(held)])
+    alone = Cycle(_from_held(least, len(sent), len(samplers)), controllers, wiring.period, taps)
+    driven = _driven(least, len(sent), drive)
+    cycle = Cycle(_from_held(driven, len(sent), len(samplers)), controllers, wiring.period, taps)
+    line = (list(driven.c.tolist()[-1]), list(driven.d.tolist()[-1])[: len(sent)])
     final, rest = _rest(found, least, alone, drive, line)
     return SampledPieces(cycle, line, drive, final, rest)
+
+
+def delayed(solution: SampledSolution, driven: Sequence[tuple[str, Input]]) -> tuple[tuple[str, Input], ...]:
+    """Return what is driven, and the same later wherever a dead time makes a block see it so."""
+    late = solution.wiring.punctual.late
+    more = [
+        (name, replace(given, begin=given.begin + later))
+        for name, (source, later) in late.items()
+        for own, given in driven
+        if own == source
+    ]
+    return (*driven, *more)
 
 
 def _from_held(system: StateSpace, held: int, samplers: int) -> StateSpace:
@@ -140,11 +157,13 @@ def _rest(
     given = fmpq_mat(len(drive.rest), 1, list(drive.rest))
     fed = _columns(least.b, held, len(drive.rest)) * given
     direct = [list(row) for row in (_columns(least.d, held, len(drive.rest)) * given).tolist()]
-    moving, own, kept = steady_state(alone, fed, of_rows(direct[:samplers], 1))
-    after = direct[-1][0]
-    final = _dot(line[0][: len(moving)], moving) + _dot(line[1], kept) + after
-    memory = [value for value, (whole, part) in zip(kept, alone.lags, strict=True) for _ in range(whole + (part > 0))]
-    return final, [*moving, *drive.last, *own, *memory]
+    try:
+        moving, own, kept = steady_state(alone, fed, of_rows(direct[:samplers], 1))
+    except ZeroDivisionError:
+        return Absent("a dead time leaves the steady state open", proved=False), []
+    spread = [kept[output] for output in alone.outputs]
+    final = _dot(line[0][: len(moving)], moving) + _dot(line[1], spread) + direct[-1][0]
+    return final, [*moving, *drive.last, *own, *alone.memory(kept)]
 
 
 def _dot(one: Sequence[fmpq], other: Sequence[fmpq]) -> fmpq:

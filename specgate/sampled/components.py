@@ -134,9 +134,15 @@ def component(
     if not sampled:
         return Component(signals, instances, wiring.period, modes, None)
     sources = [one.held(output) for one in sampled for output in one.block.outputs]
-    plant = Plant(wiring.continuous, instances, sources)
-    whole = plant.seen([one.arguments[name] for one in sampled for name in one.block.inputs])
-    least = whole.reduced()
-    free = exact_quotient(whole.a.charpoly(), least.a.charpoly())
+    later = wiring.later(sources)
+    continuous = wiring.punctual.wiring
+    plant = Plant(continuous, wiring.members(instances), [*sources, *(name for name, _, _ in later)])
+    least = plant.seen([one.arguments[name] for one in sampled for name in one.block.inputs]).reduced()
+    # a later copy of a block is no mode of its own: those of the blocks as drawn are all there are
+    own = Plant(continuous, instances, sources).dynamics[0].charpoly()
+    if own % least.a.charpoly():
+        raise ValueError("dead times make one block act twice in a sampled loop, which is not answered")
+    free = exact_quotient(own, least.a.charpoly())
     controllers = [Controller(realised(one.block), one.block.delay) for one in sampled]
-    return Component(signals, instances, wiring.period, free, Cycle(least, controllers, wiring.period))
+    taps = [(number, more) for _, number, more in later]
+    return Component(signals, instances, wiring.period, free, Cycle(least, controllers, wiring.period, taps))

@@ -48,16 +48,28 @@ class Stretch:
 class Cycle:
     """One period of `motion` (from all held outputs to all samplers' inputs) with its controllers.
 
-    The inputs of the controllers are the outputs of `motion`, in order; their outputs are its inputs. Raises ValueError
-    where the samples do not determine each other (an algebraic loop at the sample).
+    The inputs of the controllers are the outputs of `motion`, in order; their outputs are its first inputs. later: its
+    further inputs, each an output (by its number) that arrives so much later. Raises ValueError where the samples do
+    not determine each other (an algebraic loop at the sample).
     """
 
-    def __init__(self, motion: StateSpace, controllers: Sequence[Controller], period: fmpq) -> None:
+    def __init__(
+        self,
+        motion: StateSpace,
+        controllers: Sequence[Controller],
+        period: fmpq,
+        later: Sequence[tuple[int, fmpq]] = (),
+    ) -> None:
         self.motion = motion
         self.period = period
-        self.delays = [one.delay for one in controllers for _ in range(int(one.system.d.nrows()))]
+        delays = [one.delay for one in controllers for _ in range(int(one.system.d.nrows()))]
         self.law = StateSpace(*(diagonal(part) for part in zip(*map(_parts, controllers), strict=True)))
-        self.lags = [_lag(delay, period) for delay in self.delays]
+        self.outputs = [*range(len(delays)), *(output for output, _ in later)]
+        """For each input of the motion, the output that it holds."""
+        self.lags = [
+            _lag(delays[output] + more, period)
+            for output, more in (*((j, fmpq(0)) for j in range(len(delays))), *later)
+        ]
 
     # --- layout of the state ------------------------------------------------------------------------------
 
@@ -72,8 +84,25 @@ class Cycle:
         return self.moving + self.law.order + sum(self._registers)
 
     @cached_property
-    def _registers(self) -> list[int]:
+    def counts(self) -> list[int]:
+        """For each input of the motion, by how many samples a sampler sees it late."""
         return [whole + (part > 0) for whole, part in self.lags]
+
+    @cached_property
+    def _registers(self) -> list[int]:
+        """For each output, how many earlier answers are kept."""
+        count = int(self.law.d.nrows())
+        return [max(c for c, own in zip(self.counts, self.outputs, strict=True) if own == j) for j in range(count)]
+
+    @property
+    def spread(self) -> fmpq_mat:
+        """What the inputs of the motion are in a steady state, as rows over the outputs."""
+        count = int(self.law.d.nrows())
+        return of_rows([[fmpq(int(own == j)) for j in range(count)] for own in self.outputs], count)
+
+    def memory(self, kept: Sequence[fmpq]) -> list[fmpq]:
+        """Return what is kept of earlier answers in a steady state."""
+        return [value for value, count in zip(kept, self._registers, strict=True) for _ in range(count)]
 
     def _register(self, output: int, age: int) -> int:
         """Return the place of what an output sent out `age` samples ago, 1 or more."""
@@ -85,8 +114,15 @@ class Cycle:
     def sent(self) -> fmpq_mat:
         """What the controllers answer, as rows over the state."""
         law, motion = self.law, self.motion
-        at_once = diagonal(fmpq_mat([[int(count == 0)]]) for count in self._registers)
-        around = identity(len(self.lags)) - law.d * motion.d * at_once
+        size = int(law.d.nrows())
+        at_once = of_rows(
+            [
+                [fmpq(int(count == 0 and own == j)) for j in range(size)]
+                for count, own in zip(self.counts, self.outputs, strict=True)
+            ],
+            size,
+        )
+        around = identity(size) - law.d * motion.d * at_once
         if around.nrows() and around.det() == 0:
             raise ValueError("the samples act on each other at once and do not determine each other")
         given = law.d * self._samples_of(self._arrived()) + self._placed(law.c, self.moving)
@@ -95,7 +131,8 @@ class Cycle:
     def _arrived(self) -> fmpq_mat:
         """What is held just at the sample of earlier answers; zero where an answer is held at once."""
         rows = [
-            self._unit(self._register(j, count)) if count else self._zero() for j, count in enumerate(self._registers)
+            self._unit(self._register(own, count)) if count else self._zero()
+            for own, count in zip(self.outputs, self.counts, strict=True)
         ]
         return of_rows(rows, self.order)
 
@@ -117,10 +154,10 @@ class Cycle:
             for start, end in zip(starts, ends, strict=True)
         )
 
-    def _held(self, output: int, since: fmpq) -> list[fmpq]:
-        """Return what an output holds from a time in the period on."""
-        whole, part = self.lags[output]
-        age = whole + (since < part)
+    def _held(self, source: int, since: fmpq) -> list[fmpq]:
+        """Return what an input of the motion holds from a time in the period on."""
+        whole, part = self.lags[source]
+        age, output = whole + (since < part), self.outputs[source]
         return self._unit(self._register(output, age)) if age else list(self.sent.tolist()[output])
 
     @cached_property

@@ -34,6 +34,8 @@ _SAMPLE = StateSpace(fmpq_mat(1, 1), fmpq_mat(1, 1, [1]), fmpq_mat(1, 1, [1]), f
 
 def hidden_modes(solution: SampledSolution) -> Answer:
     """Return the number of hidden modes, with multiplicity."""
+    if solution.wiring.late:
+        return Answer.undecided("how many modes are hidden is not answered beside a dead time in a sampled loop")
     try:
         whole = _Whole(solution)
     except ValueError as reason:

@@ -172,7 +172,9 @@ def _transfer(solution: SampledSolution, cut: _Cut, members: Sequence[str], slow
     wiring = _injected(solution.wiring, cut)
     inside = [one for one in wiring.instances if one.name in (*members, _NAME)]
     sources = [one.held(output) for one in inside for output in one.block.outputs]
-    plant = Plant(wiring.continuous, members, sources)
+    later = wiring.later(sources)
+    outputs, sources = sources, [*sources, *(name for name, _, _ in later)]
+    plant = Plant(wiring.punctual.wiring, wiring.members(members), sources)
     samplers = [one.arguments[name] for one in inside for name in one.block.inputs]
     whole = plant.seen([*samplers, wiring.continuous.signals[cut.replaced]])
     least = whole.reduced()
@@ -180,10 +182,10 @@ def _transfer(solution: SampledSolution, cut: _Cut, members: Sequence[str], slow
     motion = type(least)(
         least.a, least.b, of_rows(least.c.tolist()[:-1], least.order), of_rows(least.d.tolist()[:-1], len(sources))
     )
-    cycle = Cycle(motion, controllers, wiring.period)
+    cycle = Cycle(motion, controllers, wiring.period, [(number, more) for _, number, more in later])
     if cut.sent:
         back = [
-            sum((cut.sent.get(name, fmpq(0)) * cycle.sent[i, j] for i, name in enumerate(sources)), fmpq(0))
+            sum((cut.sent.get(name, fmpq(0)) * cycle.sent[i, j] for i, name in enumerate(outputs)), fmpq(0))
             for j in range(cycle.order)
         ]
     else:
@@ -194,7 +196,8 @@ def _transfer(solution: SampledSolution, cut: _Cut, members: Sequence[str], slow
     place = cycle.moving + cycle.law.order - 1
     if cycle.exact is not None:
         return _exactly(cycle.exact, back, place)
-    lost = order_at_origin(whole.a.charpoly()) - order_at_origin(least.a.charpoly())
+    drawn = Plant(wiring.punctual.wiring, members, sources).dynamics[0].charpoly()
+    lost = order_at_origin(drawn) - order_at_origin(least.a.charpoly())
     below = _known_below(wiring, members, lost)
     above = _known_above(inside, below, slow)
     return PulseTransfer(above, below, lambda bits: _enclosed(cycle, back, place, above, below, bits))

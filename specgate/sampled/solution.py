@@ -131,5 +131,12 @@ class SampledSolution:
 
 
 def solve_sampled(wiring: SampledWiring) -> SampledSolution:
-    """Solve a sampled wiring. Raises KeyError for a reference to nothing; an algebraic loop is part of the answer."""
-    return SampledSolution(wiring, solve(wiring.continuous), solve(wiring.slow))
+    """Solve a sampled wiring. Raises KeyError for a reference to nothing; an algebraic loop is part of the answer.
+
+    Raises ValueError for what is not answered: an improper block in a circle with a sampled one, a dead time inside a
+    loop of blocks in s.
+    """
+    found = SampledSolution(wiring, solve(wiring.punctual.wiring), solve(wiring.slow))
+    if found.algebraic_loop is None:
+        _ = found.components
+    return found

@@ -62,7 +62,7 @@ def realised(block: Block | SampledBlock) -> StateSpace:
         for output in block.outputs
     ]
     if any(entry.degree() > denominator.degree() for row in entries for entry in row):
-        raise ValueError("an improper block has no state")
+        raise ValueError(f"`{block.name}` differentiates without a lag, which is not answered beside a sampled block")
     if len(block.inputs) == 1:
         return _from_one_input([row[0] for row in entries], denominator)
     if len(block.outputs) == 1:

@@ -20,9 +20,10 @@ def equations(cycle: Cycle) -> fmpq_mat:
     """Return the matrix of the steady state over (z, q, v)."""
     motion, law = cycle.motion, cycle.law
     size = motion.order + law.order + int(law.d.nrows())
-    between = _joined(motion.a, fmpq_mat(motion.order, law.order), motion.b)
-    inside = _joined(law.b * motion.c, law.a - identity(law.order), law.b * motion.d)
-    answer = _joined(law.d * motion.c, law.c, law.d * motion.d - identity(int(law.d.nrows())))
+    forced, direct = motion.b * cycle.spread, motion.d * cycle.spread
+    between = _joined(motion.a, fmpq_mat(motion.order, law.order), forced)
+    inside = _joined(law.b * motion.c, law.a - identity(law.order), law.b * direct)
+    answer = _joined(law.d * motion.c, law.c, law.d * direct - identity(int(law.d.nrows())))
     return of_rows([*between, *inside, *answer], size)
 
 
@@ -33,7 +34,7 @@ def has_mode_at_one(cycle: Cycle) -> bool:
 
 
 def steady_state(cycle: Cycle, drive: fmpq_mat, seen: fmpq_mat) -> tuple[Row, Row, Row]:
-    """Return the moving states, those of the controllers and the held outputs at rest under a constant input.
+    """Return the moving states, those of the controllers and their outputs at rest under a constant input.
 
     drive: column by which the input drives the moving states. seen: column by which the samplers see it. z = 1 must be
     no mode of the loop.
