@@ -1,7 +1,8 @@
 """A sum of modes on a whole piece as one Taylor polynomial: good over wide balls of times, where modes cancel.
 
 About the middle of a piece of half-width h a mode q(x) e^(p x) has coefficients of at most sum |q_j| |p|^(m-j)/(m-j)!.
-Those from M on add up, on the disc |x| <= 2 h, to at most
+High powers of q that are small on the piece are left out first. Those coefficients from M on add up, on the disc
+|x| <= 2 h, to at most
 
     B = sum |q_j| (2 h)^j times the tail of e^z at z = 2 |p| h from M - j on,
 
@@ -10,7 +11,7 @@ and by Cauchy's estimate the derivative of order k of what they leave is at most
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from math import factorial
 
@@ -19,6 +20,12 @@ from flint import acb, acb_poly, acb_series, arb, arb_poly, fmpq
 from specgate.delays.remainder import ORDERS
 from specgate.delays.steps import Mode, Values
 from specgate.terms.precision import series_terms, working_precision
+
+Moved = tuple[acb, acb_poly]
+"""A pole, and the polynomial of its mode in the time from the middle."""
+
+_BITS = 60
+"""Bits, relative to y in the middle, to which a panel is good: it serves wide balls of times."""
 
 _MOST_TERMS = 120
 _STEEPEST = 16.0
@@ -52,34 +59,88 @@ def panel(terms: Iterable[tuple[fmpq, fmpq, Mode]], left: fmpq, right: fmpq, bit
     width = int((right - left).p) / int((right - left).q)
     if speed * width > _STEEPEST:
         return None
-    degree = max((mode.polynomials[0].degree() for _, _, mode in given), default=0)
-    count = min(_MOST_TERMS, int(2.8 * speed * width + bits / 5 + degree))
     middle, half = (left + right) / 2, (right - left) / 2
-    with working_precision(bits), series_terms(count):
-        total, left_out = arb_poly([0]), arb(0)
-        for origin, factor, mode in given:
-            shift = arb(middle - origin)
-            scale = arb(factor) * mode.weight
-            moved = mode.polynomials[0](acb_poly([shift, 1])) * ((mode.pole * shift).exp() * scale)
-            series = acb_series(moved.coeffs()) * acb_series([acb(0), mode.pole]).exp()
-            total += arb_poly([c.real for c in series.coeffs()])
-            left_out += _tail(moved, mode.pole, arb(2 * half), count)
+    with working_precision(bits):
+        moved = [_moved(mode, arb(middle - origin), arb(factor) * mode.weight) for origin, factor, mode in given]
+        reach = arb(2 * half)
+        tiny = (_size(moved, arb(half)) * arb(2) ** -_BITS).upper()
+        short, left_out = _shortened(moved, reach, tiny)
+        count = _enough(short, reach, tiny)
+        if count is None:
+            return None
+        left_out += sum((_tail(polynomial, pole, reach, count) for pole, polynomial in short), arb(0))
+        total = arb_poly([0])
+        with series_terms(count):
+            for pole, polynomial in short:
+                series = acb_series(polynomial.coeffs()) * acb_series(_powers(pole, count))
+                total += arb_poly([c.real for c in series.coeffs()])
         rest = [(left_out * factorial(order) / arb(half / 2) ** order).abs_upper() for order in ORDERS]
         polynomials = [total]
         for _ in ORDERS[1:]:
             polynomials.append(polynomials[-1].derivative())
-    if not all(size.is_finite() for size in rest):
-        return None
     return Panel(middle, tuple(polynomials), tuple(arb(0, size) for size in rest), bits)
+
+
+def _moved(mode: Mode, shift: arb, scale: arb) -> Moved:
+    """Return a mode in the time from `shift` on."""
+    polynomial = mode.polynomials[0](acb_poly([shift, 1])) * ((mode.pole * shift).exp() * scale)
+    return mode.pole, polynomial
+
+
+def _powers(pole: acb, count: int) -> list[acb]:
+    """Return the coefficients of e^(pole x)."""
+    result, term = [], acb(1)
+    for power in range(count):
+        result.append(term)
+        term = term * pole / (power + 1)
+    return result
+
+
+def _size(moved: Sequence[Moved], half: arb) -> arb:
+    """Return about how large the sum, its slope or its bend are in the middle, over the half-width."""
+    value, slope, bend = acb(0), acb(0), acb(0)
+    for pole, polynomial in moved:
+        first = polynomial.derivative() + polynomial * pole
+        value, slope = value + polynomial[0], slope + first[0]
+        bend += (first.derivative() + first * pole)[0]
+    return (abs(value.real) + abs(slope.real) * half + abs(bend.real) * half * half).abs_upper()
+
+
+def _shortened(moved: Sequence[Moved], reach: arb, tiny: arb) -> tuple[list[Moved], arb]:
+    """Return modes without the high powers that add up to less than `tiny` on |x| <= reach, and what those are."""
+    result, left_out = [], arb(0)
+    for pole, polynomial in moved:
+        factors = polynomial.coeffs()
+        growth = (abs(pole) * reach).exp()
+        while factors:
+            size = abs(factors[-1]) * reach ** (len(factors) - 1) * growth
+            if not size < tiny / (8 * len(factors) * len(moved)):
+                break
+            left_out += size
+            factors.pop()
+        result.append((pole, acb_poly(factors)))
+    return result, left_out
+
+
+def _enough(moved: Sequence[Moved], reach: arb, tiny: arb) -> int | None:
+    """Return how many terms leave less than `tiny`."""
+    count = 16 + max((polynomial.degree() for _, polynomial in moved), default=0)
+    while count <= _MOST_TERMS:
+        if sum((_tail(polynomial, pole, reach, count) for pole, polynomial in moved), arb(0)) < tiny:
+            return count
+        count += 6
+    return None
 
 
 def _tail(polynomial: acb_poly, pole: acb, reach: arb, count: int) -> arb:
     """Return B of the module's text."""
     z = (abs(pole) * reach).upper()
-    total = arb(0)
-    for power, c in enumerate(polynomial.coeffs()):
+    total, scale = arb(0), arb(1)
+    factors = polynomial.coeffs()
+    for power, c in enumerate(factors):
         first = count - power
         if not z < first + 1:
             return arb("inf")
-        total += abs(c) * reach**power * z**first / arb(factorial(first)) / (1 - z / (first + 1))
+        total += abs(c) * scale * z**first / arb(factorial(first)) / (1 - z / (first + 1))
+        scale = scale * reach
     return total.abs_upper()

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -87,11 +87,15 @@ class Stretch:
 
     @cached_property
     def _panel(self) -> Panel | None:
-        """The same as one polynomial, for wide balls of times."""
-        if self.span is None or any(group.drift or group.rest is not None for group in self.groups):
+        """The groups of the method of steps as one polynomial, for wide balls of times."""
+        if self.span is None:
             return None
-        terms = ((group.origin, group.factor, mode) for group in self.groups for mode in group.modes)
+        terms = ((group.origin, group.factor, mode) for group in self._early for mode in group.modes)
         return panel(terms, *self.span, self.bits)
+
+    @cached_property
+    def _early(self) -> tuple[Group, ...]:
+        return tuple(group for group in self.groups if group.rest is None)
 
     def at(self, time: arb) -> Values:
         """Return balls of y, y', y'', y''' over a ball of times."""
@@ -101,10 +105,12 @@ class Stretch:
         if self.span is not None and not time.rad() < _NARROW * arb(self.span[1] - self.span[0]):
             wide = self._panel
             if wide is not None:
-                return wide.at(time)
+                return self._sum(time, list(wide.at(time)), (g for g in self.groups if g.rest is not None))
+        return self._sum(time, [arb(0)] * len(ORDERS), self.groups)
+
+    def _sum(self, time: arb, total: list[arb], groups: Iterable[Group]) -> Values:
         with working_precision(self.bits):
-            total = [arb(0)] * len(ORDERS)
-            for group in self.groups:
+            for group in groups:
                 group.add(total, time)
         return total[0], total[1], total[2], total[3]
 
