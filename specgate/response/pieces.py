@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import Protocol
 
 from flint import arb, fmpq, fmpq_poly
@@ -92,6 +93,21 @@ class Pieces(Protocol):
 
         Where y is exactly its final value from some time on the sign is 0.
         """
+        return None
+
+    def runaway(self) -> int | None:
+        """Return where y goes if it grows without bound: 1 up, -1 down, 0 both ways; None: it does not, or not told.
+
+        Asked where y does not settle, like the two that follow.
+        """
+        return None
+
+    def reach(self, sign: int) -> Callable[[int], arb] | None:
+        """Return the limit superior of sign * y, as balls by bits, of what swings for ever; None: not told."""
+        return None
+
+    def beyond(self, sign: int, level: fmpq) -> fmpq | None:
+        """Return a time from which on sign * y <= level is proved; None: none found."""
         return None
 
     def slow_by(self, rate: fmpq) -> fmpq | None:

@@ -109,7 +109,7 @@ def stretches(points: Points, forever: bool) -> Iterator[Stretch]:
 def _end(ground: Ground, line: Line, side: int, final: fmpq | None, size: fmpq) -> fmpq | None:
     """Return a time from which on a limit for ever is not passed; None: it will be, or that is not told."""
     if final is None:
-        return None
+        return ground.pieces.beyond(side, side * line.value)
     gap = (line.value - final) * side
     if gap > 0:
         until = ground.pieces.settled_by(gap)
@@ -125,4 +125,6 @@ def _end(ground: Ground, line: Line, side: int, final: fmpq | None, size: fmpq) 
 
 
 def _ends_well(ground: Ground, line: Line, side: int, final: fmpq | None) -> bool:
-    return final is not None and ((line.value - final) * side > 0 or ground.pieces.lasting() is not None)
+    if final is None:
+        return ground.pieces.beyond(side, side * line.value) is not None
+    return (line.value - final) * side > 0 or ground.pieces.lasting() is not None

@@ -16,11 +16,12 @@ from specgate.response.piecewise.instants import first_arrival, settling
 from specgate.response.piecewise.masking import within
 from specgate.response.piecewise.outline import outline
 from specgate.response.piecewise.patches import LOOK, Ground
+from specgate.response.piecewise.unsettled import unsettled_extreme
 from specgate.response.questions import Mask
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Proof
 
-_UNSETTLED = "the greatest value of a response that does not settle is not searched where it has kinks"
+_UNSETTLED = "the greatest rate of a response that does not settle is not searched where it has kinks"
 _KINKS = 4000
 """Kinks at which a jump is looked for where it is not told that there are no more."""
 
@@ -80,11 +81,11 @@ class PiecewiseResponse:
 
     @cached_property
     def _highest(self) -> Extreme:
-        return self._heights.supremum(1) if self.settles else Extreme.undecided(_UNSETTLED)
+        return self._heights.supremum(1) if self.settles else unsettled_extreme(self._ground, 1)
 
     @cached_property
     def _lowest(self) -> Extreme:
-        return self._heights.supremum(-1) if self.settles else Extreme.undecided(_UNSETTLED)
+        return self._heights.supremum(-1) if self.settles else unsettled_extreme(self._ground, -1)
 
     def peak_deviation(self) -> Extreme:
         """Return sup |y| over t > 0, jumps and values that are only approached included."""

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from functools import cached_property
 from math import frexp
 
@@ -15,6 +15,7 @@ from specgate.response.segments import at_most, exact
 from specgate.response.superposed.closing import closing
 from specgate.response.superposed.ending import Ending, derived
 from specgate.response.superposed.integrals import integral, square_integral
+from specgate.response.superposed.lasting import Lasting
 from specgate.response.superposed.waves import Wave, combined
 from specgate.systems.polynomials import least_common_multiple, order_at_origin
 from specgate.systems.stability import is_hurwitz
@@ -146,6 +147,22 @@ class Superposed(Pieces):
     def settled_by(self, distance: fmpq) -> fmpq | None:
         """Return a time from which on |y - final| <= distance is proved; None: none found."""
         return None if isinstance(self.final, Absent) else self._ending.below(distance)
+
+    @cached_property
+    def _lasting_part(self) -> Lasting:
+        return Lasting(self._ending, self._drift(len(self._kinks) - 1))
+
+    def runaway(self) -> int | None:
+        """Return where y goes if it grows without bound: 1, -1, 0 both ways; None: it does not, or not told."""
+        return self._lasting_part.runaway()
+
+    def reach(self, sign: int) -> Callable[[int], arb] | None:
+        """Return the limit superior of sign * y of what swings for ever; None: not told."""
+        return self._lasting_part.reach(sign)
+
+    def beyond(self, sign: int, level: fmpq) -> fmpq | None:
+        """Return a time from which on sign * y <= level is proved; None: none found."""
+        return self._lasting_part.beyond(sign, level)
 
     def slow_by(self, rate: fmpq) -> fmpq | None:
         """Return a time from which on |y'| <= rate is proved; None: none found."""
