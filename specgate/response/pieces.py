@@ -126,6 +126,10 @@ class Pieces(Protocol):
         """Return bounds of the integrals of |y| and of y^2 from `time` on, for a final value of zero; None: none."""
         return None
 
+    def closing_square(self, bits: int) -> tuple[fmpq, arb] | None:
+        """Return a time and a ball of the integral of y^2 from there on, about 2^-bits of the whole; None: none."""
+        return None
+
     def closing(self, bits: int) -> tuple[fmpq, arb] | None:
         """Return a time and a ball of the integral of |y| from there on, about 2^-bits of the whole; None: none.
 

@@ -27,6 +27,7 @@ class Decay:
     def __init__(self, states: States, quadratic: arb_mat) -> None:
         self._states = states
         self._ready = False
+        self._terms = 0
         self._known: dict[int, arb] = {}
         with working_precision(_BITS):
             total = quadratic
@@ -35,6 +36,7 @@ class Decay:
                 total = total + power.transpose() * total * power
                 if _row_sum(states.power(exponent + 1)) < _SMALL:
                     self._ready = True
+                    self._terms = 2 << exponent
                     break
             self._form = total
             self._sum = sum((abs(entry) for entry in total.entries()), arb(0))
@@ -51,6 +53,20 @@ class Decay:
                 far = self._sum * (arb(greatest) * (1 + arb(fmpq(1, 1 << 40))) * _SMALL) ** 2
                 self._known[index] = near.union(far).upper().sqrt().upper()
         return self._known[index]
+
+    def integrals(self, index: int, period: fmpq) -> tuple[fmpq, fmpq] | None:
+        """Return bounds of the integrals of what is looked at, and of its square, from a sample on.
+
+        The squares of the greatest values of the next N periods add up to at most the square of the bound; so their sum
+        is at most sqrt(N) times it (Cauchy), and what follows after every further N periods is 2^-64 of that.
+        """
+        bound = self.from_sample(index)
+        if bound is None:
+            return None
+        with working_precision(_BITS):
+            whole = 2 * bound * arb(self._terms).sqrt() * period
+            square = 2 * bound * bound * period
+        return whole.upper().fmpq(), square.upper().fmpq()
 
     def first_within(self, distance: fmpq) -> int | None:
         """Return a sample (not far from the first) from which on the bound is within a distance."""

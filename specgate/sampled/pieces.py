@@ -1,8 +1,7 @@
-"""The response of a sampled loop, at and between its samples, as smooth pieces from jump to jump."""
+"""The response of a sampled loop as smooth pieces: what is known of them all at once, and for good."""
 
 from __future__ import annotations
 
-from bisect import bisect_right
 from collections.abc import Callable
 from functools import cached_property
 
@@ -10,10 +9,11 @@ from flint import acb_mat, arb, arb_mat, fmpq, fmpq_mat, fmpq_poly
 
 from specgate.response.answers import Absent
 from specgate.response.modes import Expansion
-from specgate.response.pieces import Pieces
-from specgate.sampled.cycle import Cycle
+from specgate.response.superposed.integrals import integral, square_integral
+from specgate.sampled import areas
+from specgate.sampled.areas import all_time, one_sided
+from specgate.sampled.course import SampledCourse
 from specgate.sampled.decay import Decay, quadratic
-from specgate.sampled.drive import Drive, Setting
 from specgate.sampled.hulls import BLOCK, Hulls, derived
 from specgate.sampled.lasting import side
 from specgate.sampled.shapes import Shapes
@@ -22,135 +22,15 @@ from specgate.sampled.state_space import Row
 from specgate.sampled.states import States
 from specgate.terms.precision import working_precision
 
-_GUARD = 96
-_KEPT = 4096
 _LOOKED = 512
 """Blocks of samples that are looked through for a likely summit."""
 _BOUND_BITS = 256
 
 
-class SampledPieces(Pieces):
-    """y = c z + d (what is held), z with the states of the drive last, from rest.
+class SampledPieces(SampledCourse):
+    """The same with all that is known of its pieces for good, for searches to be short and answers exact."""
 
-    final: the limit of y, or why there is none. rest: the state at the samples that the loop comes to, where it does.
-    """
-
-    def __init__(self, cycle: Cycle, line: tuple[Row, Row], drive: Drive, final: fmpq | Absent, rest: Row) -> None:
-        self._cycle = cycle
-        self._line = line
-        self._drive = drive
-        self._final = final
-        self._rest = rest
-        self._shapes = Shapes(cycle.motion.a, cycle.motion.b, *line)
-        self._first = int((drive.starts[-1][0] / cycle.period).ceil())
-        self._ways: dict[int, list[arb_mat]] = {}
-        self._starts: dict[int, tuple[list[arb_mat], States]] = {}
-        self._expansions: dict[tuple[int, int], Expansion] = {}
-
-    # --- where the pieces are -----------------------------------------------------------------------------
-
-    @property
-    def final(self) -> fmpq | Absent:
-        """The limit of y, exact, or the reason why there is none."""
-        return self._final
-
-    @cached_property
-    def _early(self) -> list[tuple[fmpq, int, int]]:
-        """The pieces before the drive is set for the last time: start, period, stretch."""
-        found = []
-        sets = [time for time, _ in self._drive.starts]
-        for period in range(self._first):
-            begin = period * self._cycle.period
-            for number, stretch in enumerate(self._cycle.stretches):
-                start = begin + stretch.start
-                inside = [time for time in sets if start < time < start + stretch.length]
-                found += [(time, period, number) for time in [start, *inside]]
-        return found
-
-    def kink(self, index: int) -> fmpq:
-        """Return where piece `index` begins (s)."""
-        if index < len(self._early):
-            return self._early[index][0]
-        period, number = divmod(index - len(self._early), len(self._cycle.stretches))
-        return (self._first + period) * self._cycle.period + self._cycle.stretches[number].start
-
-    def holding(self, time: fmpq) -> int:
-        """Return the piece that holds a time."""
-        period = int((time / self._cycle.period).floor())
-        if period < self._first:
-            return bisect_right([start for start, _, _ in self._early], time) - 1
-        inside = time - period * self._cycle.period
-        number = sum(stretch.start <= inside for stretch in self._cycle.stretches) - 1
-        return len(self._early) + (period - self._first) * len(self._cycle.stretches) + number
-
-    def speed(self, index: int) -> float:
-        """Return how fast the pieces vary (rad/s)."""
-        return self._shapes.speed
-
-    # --- what they are ------------------------------------------------------------------------------------
-
-    def derivatives(self, index: int, time: arb, bits: int) -> tuple[arb, arb, arb, arb]:
-        """Return balls of y, y', y'', y''' over a ball of times in the piece."""
-        expansion = self._expansion(index, bits)
-        start = self.kink(index)
-        with working_precision(expansion.bits):
-            return expansion.deviation(time - arb(start))
-
-    def _expansion(self, index: int, bits: int) -> Expansion:
-        key = (index, bits)
-        if key not in self._expansions:
-            if len(self._expansions) >= _KEPT:
-                self._expansions.clear()
-            self._expansions[key] = self._shapes.expansion(self._state(index, bits + _GUARD), bits + _GUARD)
-        return self._expansions[key]
-
-    def _state(self, index: int, bits: int) -> arb_mat:
-        """Return (z, what is held) at the start of a piece."""
-        early, states = self._from_start(bits)
-        if index < len(early):
-            return early[index]
-        period, number = divmod(index - len(early), len(self._cycle.stretches))
-        with working_precision(bits):
-            return self._way(bits)[number] * states.at(period)
-
-    def _way(self, bits: int) -> list[arb_mat]:
-        """Return for each stretch (z at its start, what is held on it) as rows over the state at the sample."""
-        if bits not in self._ways:
-            self._ways[bits] = self._cycle.ways(bits)
-        return self._ways[bits]
-
-    def _from_start(self, bits: int) -> tuple[list[arb_mat], States]:
-        """Return the states at the starts of the early pieces, and those at the samples from then on."""
-        if bits not in self._starts:
-            early, first = self._set_in_motion(bits)
-            self._starts[bits] = early, States(self._cycle.enclosed(bits), first, bits)
-        return self._starts[bits]
-
-    def _set_in_motion(self, bits: int) -> tuple[list[arb_mat], arb_mat]:
-        cycle, sets = self._cycle, dict(self._drive.starts)
-        found: list[arb_mat] = []
-        with working_precision(bits):
-            state = arb_mat(cycle.order, 1)
-            ends = [*(start for start, _, _ in self._early), self._first * cycle.period][1:]
-            moving = arb_mat(cycle.moving, 1)
-            for (start, _, number), end in zip(self._early, ends, strict=True):
-                self._set(moving, sets.get(start))
-                if (start / cycle.period).q == 1:
-                    self._set(state, sets.get(start))
-                found.append(_stacked(moving, arb_mat(cycle.stretches[number].held) * state))
-                motion = arb_mat(cycle.motion_over(end - start, bits).tolist()[: cycle.moving])
-                moving = motion * found[-1]
-                if (end / cycle.period).q == 1:
-                    state = _stacked(moving, arb_mat(cycle.settled_samples) * state)
-            self._set(state, sets.get(self._first * cycle.period))
-        return found, state
-
-    def _set(self, state: arb_mat, setting: Setting | None) -> None:
-        """Set the states of the drive, the last of those that move."""
-        first = self._cycle.moving - self._drive.order
-        for place, value in enumerate(setting or ()):
-            if value is not None:
-                state[first + place, 0] = arb(value)
+    # --- many pieces at once ----------------------------------------------------------------------------------
 
     def flat(self, index: int) -> bool:
         """Whether the signal only holds what sampled blocks send."""
@@ -272,6 +152,52 @@ class SampledPieces(Pieces):
             state = exact * state
         return None
 
+    # --- integrals, of a response that tends to zero ----------------------------------------------------------
+
+    def area(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
+        """Return a ball of the integral of y over a part of a piece."""
+        begin = self.kink(index)
+        return integral(self._expansion(index, bits), fmpq_poly(), left - begin, right - begin)
+
+    def square(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
+        """Return a ball of the integral of y^2 over a part of a piece."""
+        begin = self.kink(index)
+        return square_integral(self._expansion(index, bits), fmpq_poly(), left - begin, right - begin)
+
+    def rest(self, time: fmpq) -> tuple[fmpq, fmpq] | None:
+        """Return bounds of the integrals of |y| and of y^2 from a time on."""
+        sample = int((time / self._cycle.period).floor()) - self._first
+        if self._final != 0 or self._decay is None or sample < 0:
+            return None
+        return self._decay.integrals(sample, self._cycle.period)
+
+    def closing_square(self, bits: int) -> tuple[fmpq, arb] | None:
+        """Return the first sample after the drive is set last, and the integral of y^2 from there on."""
+        if self._final != 0 or self._deviation is None:
+            return None
+        precision = 4 * bits + _BOUND_BITS
+        matrix, first, kept = self._deviation_at(precision)
+        total = all_time(matrix, first, areas.quadratic(self._spans(kept, precision), precision), precision)
+        return None if total is None else (self._first * self._cycle.period, total)
+
+    def closing(self, bits: int) -> tuple[fmpq, arb] | None:
+        """Return a time from which on y keeps its sign, and the integral of |y| from there on."""
+        lasting = self.lasting()
+        if self._final != 0 or lasting is None or lasting[0] == 0:
+            return None
+        precision = 2 * bits + _BOUND_BITS
+        matrix, first, kept = self._deviation_at(precision)
+        sample = int((lasting[1] / self._cycle.period).ceil()) - self._first
+        state = States(matrix, first, precision).far(sample)
+        total = one_sided(matrix, state, areas.linear(self._spans(kept, precision), precision), precision)
+        return lasting[1], lasting[0] * total
+
+    def _spans(self, kept: list[int], bits: int) -> list[areas.Stretch]:
+        ways = zip(self._cycle.stretches, self._way(bits), strict=True)
+        return [(self._shapes.rows(bits), _columns(way, kept), stretch.length) for stretch, way in ways]
+
+    # --- how it decays ----------------------------------------------------------------------------------------
+
     def slow_by(self, rate: fmpq) -> fmpq | None:
         """Return a time from which on |y'| <= rate is proved; None: none found."""
         if isinstance(self._final, Absent) or self._slowing is None:
@@ -309,18 +235,22 @@ class SampledPieces(Pieces):
 
         The states of the drive are left out: those that are kept, by their places, come last.
         """
-        cycle, bits = self._cycle, _BOUND_BITS
+        if self._cycle.order == self._drive.order:
+            return None
+        matrix, first, kept = self._deviation_at(_BOUND_BITS)
+        return matrix, first, self._form(0, kept), kept
+
+    def _deviation_at(self, bits: int) -> tuple[arb_mat, arb_mat, list[int]]:
+        cycle = self._cycle
         drive = range(cycle.moving - self._drive.order, cycle.moving)
         kept = [j for j in range(cycle.order) if j not in drive]
-        if not kept:
-            return None
         _, states = self._from_start(bits)
         with working_precision(bits):
             whole = cycle.enclosed(bits).tolist()
             matrix = arb_mat([[whole[i][j] for j in kept] for i in kept])
             state = states.at(0)
             first = arb_mat(len(kept), 1, [state[j, 0] - arb(self._rest[j]) for j in kept])
-        return matrix, first, self._form(0, kept), kept
+        return matrix, first, kept
 
     def start(self, index: int) -> tuple[fmpq, int] | None:
         """Return how y leaves its rest: how long it moves one way from a kink on, and which way."""
@@ -344,12 +274,6 @@ def _of_deviation(shapes: Shapes, way: arb_mat, kept: list[int]) -> Callable[[ar
 
 def _columns(matrix: arb_mat, places: list[int]) -> arb_mat:
     return arb_mat([[row[j] for j in places] for row in matrix.tolist()])
-
-
-def _stacked(above: arb_mat, below: arb_mat) -> arb_mat:
-    columns = max(int(above.ncols()), int(below.ncols()))
-    rows = [*above.tolist(), *below.tolist()]
-    return arb_mat(len(rows), columns, [entry for row in rows for entry in row])
 
 
 def _below(level: fmpq) -> float:

@@ -91,7 +91,7 @@ class Areas:
 
     def _remainder(self, power: int, bits: int) -> tuple[fmpq, arb]:
         """Return a time and a ball of the integral from there on."""
-        closed = self._pieces.closing(bits) if power == 0 else None
+        closed = self._pieces.closing_square(bits) if power else self._pieces.closing(bits)
         if closed is not None:
             return closed
         until = self._horizon(power, bits)

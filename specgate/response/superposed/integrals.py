@@ -25,7 +25,7 @@ def integral(modes: Expansion, drift: fmpq_poly, left: fmpq, right: fmpq) -> arb
     with working_precision(modes.bits):
         total = arb(primitive(right) - primitive(left))
         for mode in modes.modes:
-            total += _exponential(mode.pole, mode.coefficients, left, right, modes.bits).real
+            total += exponential(mode.pole, mode.coefficients, left, right, modes.bits).real
         return total
 
 
@@ -41,18 +41,18 @@ def square_integral(modes: Expansion, drift: fmpq_poly, left: fmpq, right: fmpq)
         constant = tuple(acb(arb(c)) for c in drift.coeffs())
         for index, (pole, factors) in enumerate(terms):
             if constant:
-                total += 2 * _exponential(pole, _product(factors, constant), left, right, modes.bits).real
+                total += 2 * exponential(pole, _product(factors, constant), left, right, modes.bits).real
             for other, (second, more) in enumerate(terms[: index + 1]):
                 weight = 1 if other == index else 2
-                both = _exponential(pole + second, _product(factors, more), left, right, modes.bits)
-                apart = _exponential(
+                both = exponential(pole + second, _product(factors, more), left, right, modes.bits)
+                apart = exponential(
                     pole + _conjugate(second), _product(factors, _conjugates(more)), left, right, modes.bits
                 )
                 total += weight * (both + apart).real / 2
         return total
 
 
-def _exponential(rate: acb, factors: Sequence[acb], left: fmpq, right: fmpq, bits: int) -> acb:
+def exponential(rate: acb, factors: Sequence[acb], left: fmpq, right: fmpq, bits: int) -> acb:
     """Return the integral of e^(rate t) times a polynomial in t."""
     length = arb(right - left)
     if not bool(abs(rate) * length > _SMALL):
