@@ -1,4 +1,4 @@
-"""Integrals of the error and rates of sampled responses, against sums over their pieces in closed form and on a grid."""
+"""Integrals of the error and rates of sampled responses, against sums over their pieces and values on a grid."""
 
 from __future__ import annotations
 
@@ -21,17 +21,16 @@ CASES = {
 }
 
 
-def error(case: Case) -> SampledPieces:
-    solution = solve_sampled(case.wiring())
-    return pieces(channel(solution, ["ask"], form(ask=1, place=-1)), step("ask", fmpq(1)))
+def response(case: Case, **signal: int) -> SampledPieces:
+    return pieces(channel(solve_sampled(case.wiring()), ["ask"], form(**signal)), step("ask", fmpq(1)))
 
 
 @pytest.mark.parametrize("name", CASES)
 def test_integrals_are_those_of_the_pieces(name: str) -> None:
     """The square piece by piece; the magnitude from below and above by the areas and by the squares."""
     case, count = CASES[name]
-    found = error(case)
-    response = PiecewiseResponse(found)
+    found = response(case, ask=1, place=-1)
+    searched = PiecewiseResponse(found)
     squares = areas = arb(0)
     for index in range(count):
         left, right = found.kink(index), found.kink(index + 1)
@@ -40,10 +39,10 @@ def test_integrals_are_those_of_the_pieces(name: str) -> None:
         assert area is not None
         with working_precision(160):
             squares, areas = squares + square, areas + abs(area)
-    whole = response.squared_integral().enclose(64)
+    whole = searched.squared_integral().enclose(64)
     with working_precision(160):
         assert abs(whole - squares) < arb(fmpq(1, 10**9)) * whole
-        absolute = response.absolute_integral().enclose(64)
+        absolute = searched.absolute_integral().enclose(64)
         assert absolute > areas - arb(fmpq(1, 10**8))
         assert absolute < areas * arb(fmpq(103, 100))
         if name == "never passed":
@@ -53,7 +52,7 @@ def test_integrals_are_those_of_the_pieces(name: str) -> None:
 @pytest.mark.parametrize("name", CASES)
 def test_no_rate_on_a_grid_is_higher(name: str) -> None:
     case, _ = CASES[name]
-    found = error(case)
+    found = response(case, place=1)
     peak = PiecewiseResponse(found).peak_rate()
     highest = peak.value.enclose(64)
     for k in range(1, 400):
