@@ -40,9 +40,15 @@ def mirrored(extreme: Extreme) -> Extreme:
     if value.exact is not None:
         return Extreme(replace(value, exact=-value.exact), extreme.time)
     if value.refine is not None:
-        turned = Answer.of_ball(lambda bits: -value.enclose(bits), value.fragile)
+        turned = Answer.of_ball(lambda bits: _negative(value.enclose(bits), bits), value.fragile)
         return Extreme(replace(turned, how=value.how), extreme.time)
     return extreme
+
+
+def _negative(ball: arb, bits: int) -> arb:
+    """Return -ball; a change of sign rounds to the precision that is set."""
+    with working_precision(2 * bits + GUARD):
+        return -ball
 
 
 def greater(first: Extreme, second: Extreme) -> Extreme:

@@ -42,13 +42,23 @@ class Ceiling:
 
     def at(self, time: fmpq) -> None:
         """Take up the value at an instant (just after it at a kink)."""
-        self._candidate(self._ground.index(time), time)
+        with working_precision(self._bits):
+            self._candidate(self._ground.index(time), time)
+
+    @property
+    def _bits(self) -> int:
+        """Bits of all that is done with balls here: at fewer even a change of sign would round them."""
+        return self._ground.bits + LOOK
 
     def over(self, since: fmpq, until: fmpq) -> None:
         """Search a stretch of time, its ends and the kinks in it included. Raises OutOfWork.
 
         Kinks are looked at from both sides where y may jump. A piece on which y rests is what it is at its begin.
         """
+        with working_precision(self._bits):
+            self._over(since, until)
+
+    def _over(self, since: fmpq, until: fmpq) -> None:
         index, last = self._ground.span(since, until)
         likely = self._ground.pieces.likely(index + 1, last, self._order, self._sign)
         if likely is not None:
@@ -196,7 +206,9 @@ class Peak:
 
     def height(self, bits: int) -> arb:
         """Return sign * y^(order) there."""
-        return self.sign * self.value(bits)
+        value = self.value(bits)
+        with working_precision(2 * bits + LOOK):
+            return self.sign * value
 
     def value(self, bits: int) -> arb:
         """Return y^(order) there."""
@@ -233,14 +245,15 @@ def tallest(peaks: Iterable[Peak], floor: arb, reached: arb, most: int) -> list[
     """Return the peaks that are not proved lower than another one, than the floor or than a value that is reached."""
     left, bits = list(peaks), 64
     while left and bits <= most:
-        heights = [peak.height(bits) for peak in left]
-        best = reached
-        for height in heights:
-            low = height.lower()
-            best = low if low > best else best
-        kept = [(peak, height) for peak, height in zip(left, heights, strict=True) if not height < best]
-        left = [peak for peak, height in kept if not height < floor]
-        if len(left) == 1 and kept[0][1] > floor:
+        with working_precision(2 * bits + LOOK):
+            heights = [(peak, peak.height(bits)) for peak in left]
+            best = reached
+            for _, height in heights:
+                low = height.lower()
+                best = low if low > best else best
+            kept = [(peak, height) for peak, height in heights if not (height < best or height < floor)]
+        left = [peak for peak, _ in kept]
+        if len(kept) == 1 and kept[0][1] > floor:
             break
         bits *= 2
     return left

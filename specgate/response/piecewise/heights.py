@@ -70,7 +70,11 @@ class Heights:
 
     def supremum(self, sign: int, since: fmpq = _START) -> Extreme:
         """Return sup sign * y over t >= since, as a value of y, and where it is taken."""
-        with working_precision(LOOK):
+        with working_precision(self._ground.bits + LOOK):
+            return self._supremum(sign, since)
+
+    def _supremum(self, sign: int, since: fmpq) -> Extreme:
+        with working_precision(self._ground.bits):
             floor = arb(sign * self._final).lower()
         slack = self.size * dyadic(SLACK)
         ceiling = Ceiling(self._ground, 0, sign, floor, slack)
@@ -95,7 +99,7 @@ class Heights:
         """Search as far as needed; return whether nothing beyond is above the final value."""
         done, lasting = since, self._pieces.lasting()
         for stage in _STAGES:
-            with working_precision(LOOK):
+            with working_precision(self._ground.bits):
                 lead = (ceiling.best - sign * self._final).lower().fmpq()
             if lead >= slack:
                 self._up_to(ceiling, done, self._pieces.settled_by(lead))
@@ -106,7 +110,7 @@ class Heights:
                 return True
             self._up_to(ceiling, done, until)
             done = max(done, until or done)
-        with working_precision(LOOK):
+        with working_precision(self._ground.bits):
             return bool(ceiling.best - sign * self._final > arb(slack))
 
     def _up_to(self, ceiling: Ceiling, done: fmpq, until: fmpq | None) -> None:
@@ -141,6 +145,10 @@ class Heights:
 
     def rate(self) -> Extreme:
         """Return sup |y'| over t > 0, for a response that does not jump."""
+        with working_precision(self._ground.bits + LOOK):
+            return self._rate()
+
+    def _rate(self) -> Extreme:
         slack = self._largest(1) * dyadic(SLACK)
         rising, falling = Ceiling(self._ground, 1, 1, arb(0), slack), Ceiling(self._ground, 1, -1, arb(0), slack)
         try:
@@ -244,7 +252,12 @@ def _magnitude(value: Answer) -> Answer:
 
 
 def _absolute(refine: Callable[[int], arb]) -> Callable[[int], arb]:
-    return lambda bits: abs(refine(bits))
+    def magnitude(bits: int) -> arb:
+        ball = refine(bits)
+        with working_precision(2 * bits + LOOK):
+            return abs(ball)
+
+    return magnitude
 
 
 def _shifted(extreme: Extreme, offset: fmpq) -> Extreme:

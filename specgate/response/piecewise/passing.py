@@ -20,7 +20,7 @@ from specgate.response.piecewise.patches import Ground, Line, Patch
 from specgate.response.piecewise.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
 
-PATCHES = 60_000
+PATCHES = 20_000
 """Patches that one search may look at."""
 
 _DEEPEST = 120
@@ -239,7 +239,8 @@ class Walk:
         summit = Zero(patch.pieces, patch.index, 1, self.line, ends, rising=self.side < 0)
         bits = 64
         while bits <= HIGHEST:
-            height = summit.value(bits) * self.side
+            with working_precision(2 * bits):
+                height = summit.value(bits) * self.side
             if height < 0:
                 return True
             if height > 0:

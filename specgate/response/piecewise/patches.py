@@ -95,7 +95,8 @@ class Patch:
     def rough(self, order: int) -> Hull:
         """Return a hull of the derivative of an order, from the ball of times as a whole."""
         ball = self.whole[order]
-        return ball.lower(), ball.upper()
+        with working_precision(self.bits):
+            return ball.lower(), ball.upper()
 
     @cached_property
     def _hulls(self) -> dict[int, Hull]:

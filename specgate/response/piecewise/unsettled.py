@@ -28,7 +28,8 @@ def unsettled_extreme(ground: Ground, sign: int) -> Extreme:
     if way is None and reach is None:
         return Extreme.undecided(_OPEN)
     try:
-        return _searched(ground, sign)
+        with working_precision(ground.bits + LOOK):
+            return _searched(ground, sign)
     except OutOfWork as limit:
         return Extreme.undecided(limit.reason)
 

@@ -113,7 +113,10 @@ class Superposed(Pieces):
             return value + arb(whole.offset), first, second, third
 
     def guard(self) -> int:
-        """Return how many bits cancel: the modes against the largest value seen at a few instants of each piece."""
+        """Return how many bits cancel: the modes against the largest value seen at a few instants of each piece.
+
+        Modes that are small beside a constant need as many bits more.
+        """
         return self._guard
 
     @cached_property
@@ -129,8 +132,9 @@ class Superposed(Pieces):
             with working_precision(whole.bits):
                 values = [whole.deviation(time)[0] + arb(whole.offset) for time in times]
             seen = max([seen, *(at_most(abs(value)) for value in values)])
-        lost = frexp(summed)[1] - frexp(seen)[1] if summed > 0.0 and seen > 0.0 else 0
-        return min(max(0, lost), _RUNGS[3])
+        if not (summed > 0.0 and seen > 0.0):
+            return 0
+        return min(abs(frexp(summed)[1] - frexp(seen)[1]), _RUNGS[3])
 
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return a piece without modes as the polynomial that it is."""
