@@ -136,7 +136,7 @@ class DelayedLoop:
             reached = max(reached, end)
             ups = [one for one in found if one.rise > 0]
             if ups:
-                return (*found, *self._phase_between(reached, self._last_end(ups, reached)))
+                return (*found, *self._phase_between(reached, self._last_end(ups)))
             weakest = weakest * 2
             if weakest * _LEAST > 1:
                 return tuple(found)
@@ -149,10 +149,13 @@ class DelayedLoop:
         reached = max((one.frequency.enclose(64).upper().fmpq() for one in self._phase), default=fmpq(0))
         return (*known, *self._phase_between(max(over[0], reached), over[1]))
 
-    def _last_end(self, ups: Sequence[PhaseCrossing], reached: fmpq) -> fmpq:
-        """Return the frequency beyond which no crossing is nearer to -1 than the nearest of some."""
+    def _last_end(self, ups: Sequence[PhaseCrossing]) -> fmpq:
+        """Return the frequency beyond which no crossing is nearer to -1 than the nearest of some. Raises OutOfWork."""
         nearest = min(one.factor.enclose(64).upper().fmpq() for one in ups)
-        return self.axis.below_one_beyond(nearest) or reached
+        end = self.axis.below_one_beyond(nearest)
+        if end is None:
+            raise OutOfWork(_FAR)
+        return end
 
     def _phase_between(self, start: fmpq, end: fmpq) -> list[PhaseCrossing]:
         if end <= start:

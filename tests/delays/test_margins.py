@@ -256,6 +256,13 @@ def test_a_gain_that_does_not_fall_below_one_has_no_delay_margin() -> None:
     assert math.isfinite(float(loop_of(late([fmpq(1, 2), 1], [1, 5], fmpq(1))).gain_at(fmpq(1)).enclose(64).mid()))
 
 
+def test_a_gain_that_stays_at_high_frequency_limits_the_gain_margin() -> None:
+    """L = 0.6 (s + 0.1)/(s + 4) e^(-s): endless crossings come nearer to the factor 1/0.6 and never reach it."""
+    found = loop_of(late([fmpq(3, 5), fmpq(3, 50)], [1, 4], fmpq(1))).gain_margin_up()
+    assert found.absent is not None
+    assert not found.absent.proved
+
+
 def test_ranges_restrict_what_is_looked_at() -> None:
     loop = loop_of(late([2], [5, 1], fmpq(1)))
     assert loop.gain_margin_up((fmpq(1), fmpq(2))).enclose(64).overlaps(loop.gain_margin_up().enclose(64))

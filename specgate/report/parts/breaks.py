@@ -91,8 +91,10 @@ def sheet(
         name=name,
         anchor=anchors.opened(loop, name),
         at=opened.at,
-        numerator=shown.polynomial(opened.numerator) if opened.numerator else "",
-        denominator=shown.polynomial(opened.denominator) if opened.denominator else "",
+        numerator=shown.transfer(opened.numerator, opened.numerator_terms),
+        denominator=shown.transfer(opened.denominator, opened.denominator_terms)
+        if opened.denominator or opened.denominator_terms
+        else "",
         reason=opened.reason or "",
         margins=_margins(placed, definitions),
         crossings=tuple(_crossing(one) for one in opened.crossings),

@@ -150,8 +150,10 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
             wiring=loop.wiring,
             channels=tuple((response.from_, response.to) for response in loop.responses.values()),
         ),
-        characteristic=shown.polynomial(loop.characteristic_polynomial) if loop.characteristic_polynomial else "",
-        order=counted(max(0, len(loop.characteristic_polynomial) - 1), "mode"),
+        characteristic=_characteristic(loop),
+        order="with dead time: modes without end"
+        if loop.characteristic_terms
+        else counted(max(0, len(loop.characteristic_polynomial) - 1), "mode"),
         poles=pole_rows(loop.poles),
         hidden=tuple(_hidden(mode) for mode in loop.hidden_modes),
         map=_map(name, loop),
@@ -175,6 +177,13 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
     )
 
 
+def _characteristic(loop: LoopReview) -> str:
+    """Return the characteristic polynomial, or the sum of terms that it is with dead time."""
+    if not loop.characteristic_polynomial and not loop.characteristic_terms:
+        return ""
+    return shown.transfer(loop.characteristic_polynomial, loop.characteristic_terms)
+
+
 def _response(
     loop: str,
     name: str,
@@ -190,7 +199,7 @@ def _response(
         target=response.to,
         drive=_drive(response.input),
         unit=response.unit,
-        numerator=shown.polynomial(response.numerator),
+        numerator=shown.transfer(response.numerator, response.numerator_terms),
         denominator=_denominator(response, characteristic),
         zeros=_listed(response.zeros),
         reason=response.reason or "",
@@ -214,10 +223,10 @@ def _drive(given: Mapping[str, str]) -> str:
 
 def _denominator(response: ResponseReview, characteristic: tuple[str, ...]) -> str:
     """Return the denominator of a response, or that it is the loop's characteristic polynomial."""
-    if not response.denominator:
+    if not response.denominator and not response.denominator_terms:
         return ""
-    same = response.denominator == characteristic
-    return "the characteristic polynomial" if same else shown.polynomial(response.denominator)
+    same = response.denominator == characteristic and not response.denominator_terms
+    return "the characteristic polynomial" if same else shown.transfer(response.denominator, response.denominator_terms)
 
 
 def _criterion(requirement: str, c: CriterionReview, definitions: Mapping[str, DefinitionReview]) -> CriterionRow:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from specgate.report import digits
 from specgate.report.words import UNITLESS, edges, spaced, with_unit, yes_no
-from specgate.review.types import LimitReview, Pole, ReserveReview, Result
+from specgate.review.types import DelayedTerm, LimitReview, Pole, ReserveReview, Result
 from specgate.terms.records import record
 
 _RAISED = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
@@ -84,6 +84,26 @@ def polynomial(coefficients: tuple[str, ...], variable: str = "s") -> str:
         sign = digits.MINUS if text.startswith("-") else "+"
         terms.append(f"{sign} {body}" if terms else body if sign == "+" else digits.MINUS + body)
     return ("" if whole else "≈ ") + (" ".join(terms) or "0")
+
+
+def delayed(terms: tuple[DelayedTerm, ...]) -> str:
+    """Return a sum of polynomials with dead time: `s² + 0.5 s + (0.45 s + 0.25) e^(−1.2 s)`."""
+    parts = [_delayed(term) for term in terms]
+    return " + ".join(parts) or "0"
+
+
+def _delayed(term: DelayedTerm) -> str:
+    body = polynomial(term.coefficients)
+    if term.delay == "0":
+        return body
+    size = digits.fraction(term.delay)[0]
+    power = f"e^({digits.MINUS}{'' if size == '1' else size + ' '}s)"
+    return power if body == "1" else f"({body}) {power}"
+
+
+def transfer(coefficients: tuple[str, ...], terms: tuple[DelayedTerm, ...] | None) -> str:
+    """Return a numerator or denominator, with dead time or without."""
+    return polynomial(coefficients) if terms is None else delayed(terms)
 
 
 def pole(of: Pole) -> str:
