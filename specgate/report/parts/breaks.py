@@ -87,12 +87,13 @@ def sheet(
 ) -> BreakSheet:
     """Return what is shown of a break."""
     placed = [m for m in opened.measures if m.at is not None and m.at.frequency is not None]
+    variable = "s" if opened.in_z is None else "z"
     return BreakSheet(
         name=name,
         anchor=anchors.opened(loop, name),
         at=opened.at,
-        numerator=shown.transfer(opened.numerator, opened.numerator_terms),
-        denominator=shown.transfer(opened.denominator, opened.denominator_terms)
+        numerator=shown.transfer(opened.numerator, opened.numerator_terms, variable),
+        denominator=shown.transfer(opened.denominator, opened.denominator_terms, variable)
         if opened.denominator or opened.denominator_terms
         else "",
         reason=opened.reason or "",

@@ -9,7 +9,7 @@ from specgate.report import anchors, digits
 from specgate.report.figures.poles import Point, PoleFigure
 from specgate.report.figures.step import StepFigure
 from specgate.report.figures.wiring import WiringFigure
-from specgate.report.parts import breaks, plots, shown
+from specgate.report.parts import breaks, plots, sampled, shown
 from specgate.report.parts.breaks import BreakSheet
 from specgate.report.parts.measures import Comparison, MeasureTable, comparisons, table
 from specgate.report.words import VERDICTS, Status, counted, limit, titled
@@ -154,7 +154,7 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
         order="with dead time: modes without end"
         if loop.characteristic_terms
         else counted(max(0, len(loop.characteristic_polynomial) - 1), "mode"),
-        poles=pole_rows(loop.poles),
+        poles=pole_rows(sampled.poles(loop)),
         hidden=tuple(_hidden(mode) for mode in loop.hidden_modes),
         map=_map(name, loop),
         measures=table(loop.measures, review.definitions),
@@ -178,10 +178,11 @@ def _sheet(name: str, loop: LoopReview, review: Review, subjects: Mapping[str, C
 
 
 def _characteristic(loop: LoopReview) -> str:
-    """Return the characteristic polynomial, or the sum of terms that it is with dead time."""
+    """Return the characteristic polynomial, in z of a sampled loop, or the sum of terms that it is with dead time."""
     if not loop.characteristic_polynomial and not loop.characteristic_terms:
         return ""
-    return shown.transfer(loop.characteristic_polynomial, loop.characteristic_terms)
+    variable = "s" if loop.in_z is None else "z"
+    return shown.transfer(loop.characteristic_polynomial, loop.characteristic_terms, variable)
 
 
 def _response(
@@ -280,7 +281,7 @@ def _map(name: str, loop: LoopReview) -> PoleFigure | None:
     hidden = {(p.real, p.imaginary) for mode in loop.hidden_modes for p in mode.poles}
     points = [
         Point("hidden" if (p.real, p.imaginary) in hidden else "pole", p.real, p.imaginary, p.multiplicity)
-        for p in loop.poles
+        for p in sampled.poles(loop)
     ]
     zeros = dict.fromkeys((z.real, z.imaginary, z.multiplicity) for r in loop.responses.values() for z in r.zeros)
     points += [Point("zero", *zero) for zero in zeros]

@@ -101,9 +101,9 @@ def _delayed(term: DelayedTerm) -> str:
     return power if body == "1" else f"({body}) {power}"
 
 
-def transfer(coefficients: tuple[str, ...], terms: tuple[DelayedTerm, ...] | None) -> str:
+def transfer(coefficients: tuple[str, ...], terms: tuple[DelayedTerm, ...] | None, variable: str = "s") -> str:
     """Return a numerator or denominator, with dead time or without."""
-    return polynomial(coefficients) if terms is None else delayed(terms)
+    return polynomial(coefficients, variable) if terms is None else delayed(terms)
 
 
 def pole(of: Pole) -> str:
