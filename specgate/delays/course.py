@@ -220,6 +220,16 @@ class Course:
         return index - (0 if self._kinks and self._kinks[0] == 0 else 1)
 
     @cached_property
+    def leading(self) -> Mode | None:
+        """The mode right of all others; None where that is not told."""
+        if self.modal is None:
+            return None
+        modes = self.modal.modes(2 * _BITS)
+        with working_precision(64):
+            ahead = [one for one in modes if all(one is other or one.pole.real > other.pole.real for other in modes)]
+        return ahead[0] if ahead else None
+
+    @cached_property
     def fading(self) -> Fading | None:
         """What is left beside the polynomial in the end; None where that is not known, or does not fade."""
         if self.transform.stable is not True:

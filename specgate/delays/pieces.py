@@ -7,13 +7,14 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
-from flint import arb, fmpq, fmpq_poly
+from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.delays.course import Course
 from specgate.delays.steps import Values
 from specgate.delays.stretch import Stretch, polynomial_of
 from specgate.response.answers import Absent
 from specgate.response.pieces import Pieces
+from specgate.terms.precision import working_precision
 
 _NOT_DECIDED = Absent("whether every mode on the way decays was not decided", proved=False)
 _UNSETTLED = Absent("the response does not settle")
@@ -151,9 +152,10 @@ class DelayedPieces(Pieces):
         return self._below(1, rate)
 
     def _below(self, order: int, size: fmpq) -> fmpq | None:
-        """Return when every part has its share of a distance left."""
-        if isinstance(self.final, Absent):
-            return None
+        return None if isinstance(self.final, Absent) else self._faded(order, size)
+
+    def _faded(self, order: int, size: fmpq) -> fmpq | None:
+        """Return when every part has no more than its share of a distance left beside its polynomial."""
         latest = fmpq(0)
         for part in self.parts:
             fading, weight = part.course.fading, abs(part.factor) * len(self.parts)
@@ -172,6 +174,40 @@ class DelayedPieces(Pieces):
         if found is None:
             return None
         return (found[0] if part.factor > 0 else -found[0]), part.begin + found[1]
+
+    def runaway(self) -> int | None:
+        """Return where y goes if it grows without bound: 1 up, -1 down, 0 both ways; None: it does not, or not told."""
+        if all(part.course.transform.stable for part in self.parts):
+            return None if self._drift.degree() < 1 else 1 if self._drift.leading_coefficient() > 0 else -1
+        courses = {id(part.course) for part in self.parts}
+        leading = self.parts[0].course.leading if len(courses) == 1 else None
+        if leading is None or not leading.pole.real > 0:
+            return None
+        with working_precision(128):
+            shares = (acb(arb(part.factor)) * (-leading.pole * part.begin).exp() for part in self.parts)
+            factors = leading.polynomials[0].coeffs()
+            lead = factors[-1] * sum(shares, acb(0)) if factors else acb(0)
+            if lead.contains(0):
+                return None
+            return 0 if not leading.pole.imag.is_zero() else 1 if lead.real > 0 else -1
+
+    def beyond(self, sign: int, level: fmpq) -> fmpq | None:
+        """Return a time from which on sign * y <= level is proved, where y runs away along a line or a parabola."""
+        if not all(part.course.transform.stable for part in self.parts) or not 1 <= self._drift.degree() <= 2:
+            return None
+        drift = self._drift * sign
+        if drift.leading_coefficient() > 0:
+            return None
+        # From its vertex on it falls, and so does what fades.
+        since = max(fmpq(0), -drift[1] / (2 * drift[2])) if drift.degree() == 2 else fmpq(0)
+        step = fmpq(1)
+        for _ in range(200):
+            room = level - drift(since + step)
+            fades = self._faded(0, room) if room > 0 else None
+            if fades is not None and fades <= since + step:
+                return since + step
+            step = step * 2
+        return None
 
     def rest(self, time: fmpq) -> tuple[fmpq, fmpq] | None:
         """Return bounds of the integrals of |y| and of y^2 from `time` on, for a final value of zero; None: none.

@@ -193,6 +193,19 @@ def test_ramps_and_pulses_are_sums_of_delayed_steps() -> None:
         assert abs(slope - 2 * step.at(Fraction(20))) < mpmath.mpf(10) ** -3
 
 
+def test_what_runs_away_has_no_extreme_on_that_side() -> None:
+    ramp = response(transfer(*LOOPS["wrong way first"]), "ramp", slope=fmpq(2))
+    up, down = ramp.greatest().value, ramp.least().value
+    assert up.absent is not None
+    assert up.absent.proved
+    assert down.absent is None
+    assert number(down) < 0
+    growing = response(transfer(([2], [1], 0), ([1], [1, 0], 1)))
+    for value in (growing.greatest().value, growing.least().value):
+        assert value.absent is not None
+        assert value.absent.proved
+
+
 def test_a_growing_loop_is_followed_and_does_not_settle() -> None:
     blocks = (([2], [1], 0), ([1], [1, 0], 1))
     found, reference = response(transfer(*blocks)), chain(*blocks)
