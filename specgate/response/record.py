@@ -41,7 +41,7 @@ def modal_record(course: Course, method: str, *, brackets: int, since: fmpq | No
         "brackets": brackets,
     }
     if since is not None:
-        found["searched_until"] = _rounded_up(deviation.to_time(arb(since), LOWEST))
+        found["searched_until"] = rounded_up(deviation.to_time(arb(since), LOWEST))
     return found
 
 
@@ -53,7 +53,8 @@ def _radius(*balls: arb) -> float:
     return float(f"1e{ceil((largest.log() / arb(10).log()).upper().fmpq())}")
 
 
-def _rounded_up(time: arb) -> float:
+def rounded_up(time: arb) -> float:
+    """Return a time rounded up to three digits."""
     return to_float(rounded(ends(time)[1], "up", _DIGITS))
 
 

@@ -16,6 +16,7 @@ from specgate.response.piecewise.instants import first_arrival, settling
 from specgate.response.piecewise.masking import within
 from specgate.response.piecewise.outline import outline
 from specgate.response.piecewise.patches import LOOK, Ground
+from specgate.response.piecewise.recording import FIRST, LAST, recorded, with_record
 from specgate.response.piecewise.unsettled import unsettled_extreme
 from specgate.response.questions import Mask
 from specgate.terms.precision import working_precision
@@ -81,11 +82,13 @@ class PiecewiseResponse:
 
     @cached_property
     def _highest(self) -> Extreme:
-        return self._heights.supremum(1) if self.settles else unsettled_extreme(self._ground, 1)
+        found = self._heights.supremum(1) if self.settles else unsettled_extreme(self._ground, 1)
+        return recorded(found, self._ground)
 
     @cached_property
     def _lowest(self) -> Extreme:
-        return self._heights.supremum(-1) if self.settles else unsettled_extreme(self._ground, -1)
+        found = self._heights.supremum(-1) if self.settles else unsettled_extreme(self._ground, -1)
+        return recorded(found, self._ground)
 
     def peak_deviation(self) -> Extreme:
         """Return sup |y| over t > 0, jumps and values that are only approached included."""
@@ -102,7 +105,9 @@ class PiecewiseResponse:
         if not self.settles:
             return self.final_value()
         if distance not in self._settling:
-            self._settling[distance] = settling(self._ground, self._final, distance)
+            found = settling(self._ground, self._final, distance)
+            since = self.pieces.settled_by(distance)
+            self._settling[distance] = with_record(found, self._ground, LAST, 1, since)
         return self._settling[distance]
 
     def first_arrival(self, level: fmpq) -> Answer:
@@ -110,7 +115,8 @@ class PiecewiseResponse:
         if not self.settles:
             return self.final_value()
         if level not in self._arrivals:
-            self._arrivals[level] = first_arrival(self._ground, self._final, level, self._heights.size)
+            found = first_arrival(self._ground, self._final, level, self._heights.size)
+            self._arrivals[level] = with_record(found, self._ground, FIRST, 1, None)
         return self._arrivals[level]
 
     def enclose(self, time: fmpq | arb, bits: int) -> arb:
