@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from functools import cached_property, lru_cache
 
-from flint import acb, arb, fmpq
+from flint import acb, arb, ctx, fmpq, fmpq_poly
 
 from specgate.delays.isolate import Function
 from specgate.delays.laurent import of_quasi
@@ -58,8 +58,6 @@ class DelayedAxis:
         return function
 
     def _with_slopes(self, frequency: arb) -> tuple[acb, acb, acb, acb]:
-        from flint import ctx
-
         above, below = self._at(ctx.prec)
         s = acb(0, frequency)
         return above.value(s), below.value(s), above.slope(s), below.slope(s)
@@ -106,6 +104,4 @@ _MOST_POWERS = 40
 
 def mirrored(quasi: Quasi) -> Quasi:
     """Return the quasi-polynomial at -s (its delays are negative)."""
-    from flint import fmpq_poly
-
     return Quasi.of({-delay: p(fmpq_poly([0, -1])) for delay, p in quasi.terms})

@@ -13,7 +13,7 @@ from flint import acb, arb, fmpq
 
 from specgate.delays.seeds import seeds
 from specgate.systems.quasi import Quasi
-from specgate.systems.quasi_count import Evaluated, dominated_beyond, line
+from specgate.systems.quasi_count import Evaluated, dominated_beyond
 from specgate.systems.quasi_stability import is_stable
 from specgate.terms.precision import working_precision
 
@@ -43,23 +43,11 @@ class Rightmost:
             return tuple(_narrowed(function, root, bits) for root in self.roots)
 
 
-def rightmost(quasi: Quasi, left: fmpq) -> Rightmost | None:
-    """Return all roots right of Re s = left; None where they were not all found, or the line passes too near to one.
-
-    `quasi` is primitive, without a root at 0, square-free, so that its roots are simple (see `quasi_stability`).
-    """
-    counted = line(quasi, left)
-    if counted is None:
-        return None
-    for fineness in (1.0, 2.5, 6.0):
-        found = certified_right(quasi, left, counted.height, fineness)
-        if found.count == counted.count:
-            return found
-    return None
-
-
 def certified_right(quasi: Quasi, left: fmpq, height: fmpq, fineness: float = 1.0) -> Rightmost:
-    """Return roots right of Re s = left that a search up to a height finds, 0 not among them: perhaps not all."""
+    """Return roots right of Re s = left that a search up to a height finds, 0 not among them: perhaps not all.
+
+    `quasi` is primitive and square-free, so that its roots but 0 are simple (see `quasi_stability`).
+    """
     edge, top = (int(value.p) / int(value.q) for value in (left, height))
     right = 0.0 if is_stable(quasi) else _reach(quasi)
     with working_precision(_FIRST):

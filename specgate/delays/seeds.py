@@ -10,7 +10,7 @@ from __future__ import annotations
 from math import pi
 
 import numpy as np
-from flint import fmpq_poly
+from flint import fmpq, fmpq_poly
 from numpy.typing import NDArray
 
 from specgate.systems.quasi import Quasi
@@ -104,5 +104,5 @@ def _floats(p: fmpq_poly) -> NDArray[np.float64]:
     return np.array([_float(c) for c in reversed(p.coeffs())] or [0.0], dtype=np.float64)
 
 
-def _float(value: object) -> float:
-    return int(value.p) / int(value.q)  # type: ignore[attr-defined]
+def _float(value: fmpq) -> float:
+    return int(value.p) / int(value.q)

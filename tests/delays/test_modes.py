@@ -7,11 +7,12 @@ import pytest
 from flint import arb, fmpq, fmpq_poly
 
 from specgate.delays.modes import least_over_late_modes
-from specgate.delays.roots import rightmost
+from specgate.delays.roots import certified_right
 from specgate.response.answers import Answer
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.delayed import DelayedSolution, solve_delayed
 from specgate.systems.quasi import Quasi
+from specgate.systems.quasi_count import line
 
 
 def integrator(gain: fmpq, delay: fmpq) -> Quasi:
@@ -35,8 +36,10 @@ def lambert(gain: mpmath.mpf, delay: mpmath.mpf, branch: int) -> mpmath.mpc:
 )
 def test_all_poles_right_of_a_line_are_those_of_lambert(gain: fmpq, delay: fmpq) -> None:
     left = -fmpq(4) / delay * fmpq(199, 200)
-    found = rightmost(integrator(gain, delay), left)
-    assert found is not None
+    counted = line(integrator(gain, delay), left)
+    assert counted is not None
+    found = certified_right(integrator(gain, delay), left, counted.height)
+    assert found.count == counted.count
     with mpmath.workdps(40):
         k, t = (mpmath.mpf(int(x.p)) / int(x.q) for x in (gain, delay))
         known = [lambert(k, t, branch) for branch in range(-60, 60)]

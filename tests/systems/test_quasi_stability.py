@@ -7,7 +7,7 @@ import math
 import mpmath
 import numpy as np
 import pytest
-from flint import fmpq, fmpq_poly
+from flint import ctx, fmpq, fmpq_poly
 
 from specgate.systems.polynomials import highest_first
 from specgate.systems.quasi import Quasi
@@ -139,6 +139,4 @@ def test_series_at_the_origin_is_that_of_mpmath() -> None:
 def test_precision_is_left_as_it_was() -> None:
     with working_precision(77):
         is_stable(quasi(d0=[1, 0, 3], d1=[1, 1]))
-        from flint import ctx
-
         assert ctx.prec == 77
