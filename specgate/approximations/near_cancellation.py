@@ -26,7 +26,7 @@ from specgate.approximations.figures import quotient
 from specgate.measures.measure import Arguments
 from specgate.measures.table import MEASURES
 from specgate.response.answers import Absent, Answer
-from specgate.terms.verdicts import Proof
+from specgate.terms.verdicts import Proof, Trilean
 
 _SETTLING = "settling_time"
 _SHAPE = ("overshoot", "rise_time", "delay_time")
@@ -56,19 +56,26 @@ def _couple(features: Features, _: Arguments, __: fmpq | None) -> Found:
 
 def _tail_in_band(features: Features, arguments: Arguments, threshold: fmpq | None) -> Found:
     found, band = features.once(cancellation), arguments.band
-    if found is None or band is None or threshold is None:
+    if found is None or band is None:
         return words(_NO_COUPLE, False)
-    return at_most(quotient(found.tail, Answer.of_exact(found.width(band))), threshold)
+    return _within(found, found.width(band), threshold)
 
 
 def _tail(features: Features, _: Arguments, threshold: fmpq | None) -> Found:
     found = features.once(cancellation)
-    return words(_NO_COUPLE, False) if found is None or threshold is None else at_most(found.tail, threshold)
+    return words(_NO_COUPLE, False) if found is None else _within(found, fmpq(1), threshold)
+
+
+def _within(found: Cancellation, yardstick: fmpq, threshold: fmpq | None) -> Found:
+    """Find the tail in parts of a yardstick, which is in parts of the change."""
+    if found.tail.absent is not None or threshold is None:
+        return Found(found.tail.absent.reason if found.tail.absent is not None else None, Trilean.UNKNOWN)
+    return at_most(quotient(found.tail, Answer.of_exact(yardstick)), threshold)
 
 
 def _accuracy(features: Features, arguments: Arguments) -> Accuracy | None:
     found = features.once(cancellation)
-    return None if found is None else _stated(found, arguments)
+    return None if found is None or found.tail.absent is not None else _stated(found, arguments)
 
 
 def _stated(found: Cancellation, arguments: Arguments) -> Accuracy | None:

@@ -14,7 +14,10 @@ from specgate.approximations.features import Features
 from specgate.approximations.table import conditions, entry
 from specgate.measures.measure import Arguments, Band
 from specgate.measures.table import MEASURES
-from specgate.response.answers import Absent
+from specgate.response.answers import Absent, Answer
+from specgate.response.extremes import Extreme
+from specgate.response.step import StepResponse
+from specgate.terms.verdicts import Trilean
 
 ROW = entry("near_cancellation")
 TWO, FIVE = (Arguments(band=Band(fmpq(band, 100), relative=True), measure="settling_time") for band in (2, 5))
@@ -187,3 +190,14 @@ def test_a_band_in_the_unit_of_the_signal(build: Any, shown: Any) -> None:
     distance = Arguments(band=Band(fmpq(1, 5), relative=False), measure="settling_time")
     assert abs(shown.error(ROW, part, TWO) - shown.error(ROW, whole, distance)) < 1e-15
     assert ROW.accuracy(part, TWO) == ROW.accuracy(whole, distance)
+
+
+def test_a_tail_that_is_not_told_is_not_small(build: Any, shown: Any, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Where the peak of the tail stays undecided the condition does too, and nothing is stated."""
+    lost = Extreme(Answer.undecided("out of work"), Answer.undecided("out of work"))
+    monkeypatch.setattr(StepResponse, "peak_deviation", lambda _: lost)
+    system = build.pair("0.5", ["-0.05"], ["-0.0501"])
+    assert found(system, TWO, "tail_in_band").holds is Trilean.UNKNOWN
+    assert found(system, SHAPE[1], "tail").value == "out of work"
+    assert ROW.accuracy(system, TWO) is None
+    assert not shown.holds(ROW, system, TWO)
