@@ -61,7 +61,7 @@ class Mode:
         """Return what a derivative of a decaying mode does not exceed in magnitude at x and after."""
         total = arb(0)
         for power, coefficient in enumerate(self.polynomials[order].coeffs()):
-            at = x.max(arb(power) / -self.pole.real)
+            at = x.max(arb(power) / -self.pole.real) if power else x
             total += abs(coefficient) * at**power * (self.pole.real * at).exp()
         return (total * self.weight).abs_upper()
 

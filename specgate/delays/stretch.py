@@ -53,15 +53,16 @@ class Group:
         for mode in self.modes:
             mode.add(total, time - self.origin)
         since = time - self.begin
+        fallen = None if self.rest is None else (-since.lower() * self.rest.rate).exp()
         for order in ORDERS:
-            part = total[order] + self._error(order, since)
+            part = total[order] if fallen is None else total[order] + self._error(order, fallen)
             into[order] += (part + _drift(self.drift, order, since) if self.drift else part) * self.factor
 
-    def _error(self, order: int, since: arb) -> arb:
-        if self.rest is None:
-            return arb(0)
-        size = self.rest.at(order, since.lower())
-        return arb(0, (size + self.left_out[order]).upper() if self.left_out else size)
+    def _error(self, order: int, fallen: arb) -> arb:
+        """Return what is left out; fallen: by how much the rest has."""
+        assert self.rest is not None
+        size = self.rest.sizes[order] * fallen
+        return arb(0, (size + self.left_out[order] if self.left_out else size).abs_upper())
 
     def sizes(self, left: fmpq, right: fmpq) -> tuple[arb, arb]:
         """Return upper bounds of what is left out on [left, right]: at most, and its integral."""
