@@ -92,3 +92,15 @@ def test_a_mask_for_ever_over_what_swings_for_ever() -> None:
     # 1/2 + 1/sqrt(2) = 1.2071 is approached
     assert response.within(Mask(upper=((fmpq(0), fmpq(1208, 1000)),), forever=True)).truth is True
     assert response.within(Mask(upper=((fmpq(0), fmpq(12, 10)),), forever=True)).truth is False
+
+
+def test_a_swing_that_is_taken_is_not_said_to_be_only_approached() -> None:
+    """y = 1 - cos t: its greatest value 2 is taken at pi."""
+    wave = StepWave(fmpq_poly([1]), fmpq_poly([1, 0, 1]), fmpq(1), fmpq(0))
+    response = PiecewiseResponse(Superposed([wave]))
+    highest = response.greatest()
+    assert highest.value.enclose(60).contains(2)
+    assert highest.time.absent is None or not highest.time.absent.proved
+    at_the_edge = response.within(Mask(upper=((fmpq(0), fmpq(2)),), forever=True))
+    assert at_the_edge.truth is None
+    assert response.within(Mask(upper=((fmpq(0), fmpq(199, 100)),), forever=True)).truth is False

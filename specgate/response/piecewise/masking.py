@@ -25,6 +25,7 @@ from specgate.terms.verdicts import Proof
 
 Stretch = tuple[fmpq, fmpq | None, Line]
 
+_CLOSE = 256
 _TOUCHES = "whether the response passes a limit of the mask or only touches it is not told"
 
 
@@ -109,7 +110,7 @@ def stretches(points: Points, forever: bool) -> Iterator[Stretch]:
 def _end(ground: Ground, line: Line, side: int, final: fmpq | None, size: fmpq) -> fmpq | None:
     """Return a time from which on a limit for ever is not passed; None: it will be, or that is not told."""
     if final is None:
-        return ground.pieces.beyond(side, side * line.value)
+        return _unsettled_end(ground, side, side * line.value)
     gap = (line.value - final) * side
     if gap > 0:
         until = ground.pieces.settled_by(gap)
@@ -122,6 +123,17 @@ def _end(ground: Ground, line: Line, side: int, final: fmpq | None, size: fmpq) 
     if lasting is not None:
         return None if lasting[0] * side > 0 else lasting[1]
     return ground.pieces.settled_by(size * dyadic(SLACK))
+
+
+def _unsettled_end(ground: Ground, side: int, level: fmpq) -> fmpq | None:
+    """Return the same for a response that does not settle. Raises OutOfWork where it is not told."""
+    until = ground.pieces.beyond(side, level)
+    if until is not None or ground.pieces.runaway() in (side, 0):
+        return until
+    reach = ground.pieces.reach(side)
+    if reach is not None and reach(_CLOSE) > level:
+        return None
+    raise OutOfWork("whether the response passes a limit that it comes back to for ever is not told")
 
 
 def _ends_well(ground: Ground, line: Line, side: int, final: fmpq | None) -> bool:

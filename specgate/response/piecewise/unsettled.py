@@ -11,7 +11,6 @@ from specgate.response.modes import dyadic
 from specgate.response.piecewise.climbing import Ceiling, tallest, value_at
 from specgate.response.piecewise.heights import as_extreme, first_of
 from specgate.response.piecewise.patches import LOOK, Ground
-from specgate.response.supremum import APPROACHED
 from specgate.terms.precision import working_precision
 
 _ROUNDS = 12
@@ -65,16 +64,18 @@ def _searched(ground: Ground, sign: int) -> Extreme:
         raise OutOfWork(_OPEN)
     peaks = tallest(ceiling.found, floor, ceiling.best, EQUAL_BITS)
     if ceiling.blurred or not clear or not peaks:
-        return _about(ceiling, sign, slack, reach is not None and not clear)
+        return _about(ceiling, sign, slack)
     return first_of([as_extreme(peak) for peak in peaks])
 
 
-def _about(ceiling: Ceiling, sign: int, slack: fmpq, swings: bool) -> Extreme:
-    """Return the best value and a little more, where a summit is not told from the reach of a swing."""
+def _about(ceiling: Ceiling, sign: int, slack: fmpq) -> Extreme:
+    """Return the best value and a little more, where a summit is not told from the reach of a swing.
+
+    Whether that is taken or only approached is not told either: without a transient it is taken in every period.
+    """
     with working_precision(LOOK):
         value = sign * ceiling.best.union(ceiling.best + arb(8 * slack))
-    time = Answer.nothing(APPROACHED) if swings else Answer.undecided("when it is taken is not told")
-    return Extreme(Answer.of_ball(lambda _: value), time)
+    return Extreme(Answer.of_ball(lambda _: value), Answer.undecided("when it is taken, if it is, is not told"))
 
 
 def _size(value: arb) -> fmpq:
