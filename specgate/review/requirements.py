@@ -25,6 +25,7 @@ from specgate.compliance.wording import found_value, subject_name
 from specgate.project.types import Project
 from specgate.response.answers import Answer
 from specgate.review.assumptions import assumption
+from specgate.review.masks import mask_of
 from specgate.review.pictures import error_curve, separation
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
 from specgate.review.types import (
@@ -133,6 +134,7 @@ def _criterion(assessed: CriterionAssessment, project: Project, wanted: Wanted) 
         basis=_basis(assessed, drawn=wanted.drawn),
         standing=assessed.standing.value,
         location=location(criterion.place),
+        mask=mask_of(assessed) if wanted.drawn else None,
         reason=assessed.reason,
     )
 

@@ -419,6 +419,20 @@ class ReserveReview:
 
 
 @record
+class MaskReview:
+    """Limits along a mask for drawing, 6 digits: corners as (s or rad/s, value), two at one place a jump.
+
+    over: `time` or `frequency`. unit: of the values; % is of the change. forever: the last values go on.
+    """
+
+    over: str
+    unit: str
+    upper: tuple[tuple[float, float], ...]
+    lower: tuple[tuple[float, float], ...]
+    forever: bool
+
+
+@record
 class CriterionReview:
     """One limit of a requirement: what was found, the verdict, the audit."""
 
@@ -434,6 +448,7 @@ class CriterionReview:
     standing: str
     """The worst of the standing of the basis and of the ranges that the response rests on."""
     location: Location
+    mask: MaskReview | None = _omitted()
     reason: str | None = _omitted()
 
 

@@ -7,7 +7,8 @@ from collections.abc import Iterator, Sequence
 from typing import Literal
 
 from specgate.report.digits import MINUS
-from specgate.report.figures import svg
+from specgate.report.figures import masks, svg
+from specgate.report.figures.masks import Boundary
 from specgate.report.figures.scales import LogScale, Scale, clipped, simplified, widened
 from specgate.terms.records import record
 
@@ -47,6 +48,7 @@ class FrequencyFigure:
     gain: tuple[float, ...]
     phase: tuple[float, ...]
     marks: tuple[Mark, ...] = ()
+    masks: tuple[Boundary, ...] = ()
 
 
 def axes(figure: FrequencyFigure) -> tuple[LogScale, Scale, Scale]:
@@ -57,10 +59,11 @@ def axes(figure: FrequencyFigure) -> tuple[LogScale, Scale, Scale]:
     high = max(0.0, min(REACH, max(figure.gain)), *ends)
     turned = [value for mark in figure.marks if mark.panel == "phase" for value in (mark.level, mark.limit)]
     lag, lead = min(*figure.phase, *turned, -180.0), max(*figure.phase, *turned)
+    room = lead - lag or 1.0
     return (
         across,
         Scale(*widened(low, high, 0.06), GAIN[1], GAIN[0]),
-        Scale(*widened(lag, lead, 0.14), PHASE[1], PHASE[0]),
+        Scale(lag - 0.24 * room, lead + 0.08 * room, PHASE[1], PHASE[0]),
     )
 
 
@@ -68,6 +71,7 @@ def draw(figure: FrequencyFigure) -> str:
     """Return the figure as SVG."""
     x, gain, phase = axes(figure)
     shown = [mark for mark in figure.marks if x.holds(mark.frequency)]
+    hatch = f"hatch-{figure.name}"
     return svg.figure(
         WIDTH,
         HEIGHT,
@@ -75,12 +79,18 @@ def draw(figure: FrequencyFigure) -> str:
         *_across(x),
         *_panel(gain, GAIN, "gain, dB", _levels(gain, (1, 2, 5, 10, 20, 40, 60, 100)), [0.0]),
         *_panel(phase, PHASE, "phase, deg", _levels(phase, (15, 30, 45, 90, 180, 360, 720)), _critical(phase)),
+        *([svg.hatching(hatch)] if figure.masks else []),
+        *(part for mask in figure.masks for part in masks.draw(mask, x, gain, _panel_of(GAIN), hatch)),
         *_curve(figure.frequency, figure.gain, x, gain),
         *_curve(figure.frequency, figure.phase, x, phase),
         *(_bar(mark, x, gain if mark.panel == "gain" else phase) for mark in shown),
         *_labels(shown, x, gain, phase),
         class_="plot",
     )
+
+
+def _panel_of(ends: tuple[float, float]) -> tuple[float, float, float, float]:
+    return LEFT, ends[0], WIDTH - RIGHT, ends[1]
 
 
 def _across(x: LogScale) -> Iterator[str]:

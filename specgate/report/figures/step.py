@@ -4,16 +4,16 @@ from __future__ import annotations
 
 from typing import Literal
 
-from specgate.report.figures import svg
+from specgate.report.figures import masks, svg
+from specgate.report.figures.masks import STRIP, Boundary
 from specgate.report.figures.scales import Scale, simplified, widened
 from specgate.terms.records import record
 
 WIDTH, HEIGHT = 640.0, 186.0
 LEFT, RIGHT, TOP, BOTTOM = 58.0, 14.0, 24.0, 38.0
+_PANEL = (LEFT, TOP, WIDTH - RIGHT, HEIGHT - BOTTOM)
 SMOOTH = 0.15
 """How far the drawn line may leave the points of the curve, pixels."""
-STRIP = 9.0
-"""Breadth of the hatching along a limit, pixels."""
 
 
 @record
@@ -64,6 +64,7 @@ class StepFigure:
     edges: tuple[Edge, ...] = ()
     crosses: tuple[Cross, ...] = ()
     rings: tuple[Ring, ...] = ()
+    masks: tuple[Boundary, ...] = ()
 
 
 def axes(figure: StepFigure) -> tuple[Scale, Scale]:
@@ -77,6 +78,7 @@ def axes(figure: StepFigure) -> tuple[Scale, Scale]:
     levels = [c.value for c in figure.crosses] + [r.value for r in figure.rings]
     levels += [e.at for e in figure.edges if e.axis == "value"]
     levels += [v for e in figure.edges if e.outside for v in e.outside]
+    levels += [v for mask in figure.masks for t, v in mask.points if t <= last]
     near = [v for v in levels if low - reach <= v <= high + reach]
     low, high = widened(min([low, *near]), max([high, *near]), 0.07)
     first = min(0.0, figure.time[0])
@@ -98,6 +100,7 @@ def draw(figure: StepFigure) -> str:
         *_frame(figure, x, y),
         *(_forbidden(edge, x, y, hatch) for edge in shown),
         *_limit_lines(figure, shown, x, y),
+        *(part for mask in figure.masks for part in masks.draw(mask, x, y, _PANEL, hatch)),
         curve,
         *(_ring(ring, x, y) for ring in figure.rings if x.holds(ring.time) and y.holds(ring.value)),
         *(_cross(cross, x, y) for cross in figure.crosses if x.holds(cross.time) and y.holds(cross.value)),

@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
+from typing import Literal
 
 from specgate.report import anchors, digits
 from specgate.report.figures.frequency import REACH, FrequencyFigure, Mark
+from specgate.report.figures.masks import Boundary
 from specgate.report.parts import shown
 from specgate.report.parts.measures import MeasureTable, table
 from specgate.report.words import VERDICTS, Status, amount, limit, titled
@@ -16,6 +18,7 @@ from specgate.review.types import (
     CrossingReview,
     DefinitionReview,
     FrequencyCurve,
+    MaskReview,
     MeasureResult,
 )
 from specgate.terms.records import record
@@ -86,6 +89,7 @@ def sheet(
     definitions: Mapping[str, DefinitionReview],
 ) -> BreakSheet:
     """Return what is shown of a break."""
+    asked = list(criteria)
     placed = [m for m in opened.measures if m.at is not None and m.at.frequency is not None]
     variable = "s" if opened.in_z is None else "z"
     return BreakSheet(
@@ -99,8 +103,8 @@ def sheet(
         reason=opened.reason or "",
         margins=_margins(placed, definitions),
         crossings=tuple(_crossing(one) for one in opened.crossings),
-        figure=figure(loop, name, opened),
-        criteria=tuple(_criterion(requirement, c, definitions) for requirement, c in criteria),
+        figure=figure(loop, name, opened, [c for _, c in asked]),
+        criteria=tuple(_criterion(requirement, c, definitions) for requirement, c in asked),
         measures=table([m for m in opened.measures if m not in placed], definitions),
     )
 
@@ -144,8 +148,10 @@ def _criterion(requirement: str, c: CriterionReview, definitions: Mapping[str, D
     )
 
 
-def figure(loop: str, name: str, opened: BreakReview) -> FrequencyFigure | None:
-    """Return the picture of an opened loop, None where there are no points."""
+def figure(
+    loop: str, name: str, opened: BreakReview, criteria: Iterable[CriterionReview] = ()
+) -> FrequencyFigure | None:
+    """Return the picture of an opened loop with the masks that are laid over it, None where there are no points."""
     if opened.frequency_response is None or len(opened.frequency_response.frequency) < 2:
         return None
     curve = _within_reach(opened.frequency_response, opened.crossings)
@@ -156,7 +162,17 @@ def figure(loop: str, name: str, opened: BreakReview) -> FrequencyFigure | None:
         gain=curve.gain_db,
         phase=curve.phase_deg,
         marks=tuple(_marks(opened, curve)),
+        masks=tuple(boundary for c in criteria if c.mask is not None for boundary in _boundaries(c.mask)),
     )
+
+
+def _boundaries(mask: MaskReview) -> Iterator[Boundary]:
+    if mask.over == "frequency":
+        sides: tuple[tuple[Literal["above", "below"], tuple[tuple[float, float], ...]], ...] = (
+            ("above", mask.upper),
+            ("below", mask.lower),
+        )
+        yield from (Boundary(corners, side, mask.forever) for side, corners in sides if corners)
 
 
 def _within_reach(curve: FrequencyCurve, crossings: Iterable[CrossingReview]) -> FrequencyCurve:

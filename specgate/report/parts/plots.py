@@ -10,11 +10,12 @@ from typing import Literal
 
 from specgate.report.anchors import anchor
 from specgate.report.digits import number
+from specgate.report.figures.masks import Boundary
 from specgate.report.figures.step import Cross, Edge, Ring, StepFigure
 from specgate.report.parts import shown
 from specgate.report.parts.conversion import ratio
 from specgate.report.words import amount, edges, limit
-from specgate.review.types import CriterionReview, Curve, MeasureResult, ResponseReview, Result
+from specgate.review.types import CriterionReview, Curve, MaskReview, MeasureResult, ResponseReview, Result
 
 Side = Literal["below", "above"]
 _NUMBER = re.compile(r"[0-9]+(\.[0-9]*)?|\.[0-9]+")
@@ -46,6 +47,7 @@ def response_figure(
         edges=tuple(marks.edges),
         crosses=tuple(marks.crosses),
         rings=tuple(marks.rings),
+        masks=tuple(marks.masks),
     )
 
 
@@ -60,6 +62,7 @@ class _Marks:
         self.edges: list[Edge] = []
         self.crosses: list[Cross] = []
         self.rings: list[Ring] = []
+        self.masks: list[Boundary] = []
 
     def add(self, requirement: str, criterion: CriterionReview) -> None:
         """Draw in a criterion, if its measure has a place in the picture."""
@@ -67,6 +70,25 @@ class _Marks:
             self._instant(requirement, criterion)
         elif criterion.measure in LEVELS:
             self._level(requirement, criterion)
+        elif criterion.mask is not None and criterion.mask.over == "time":
+            self._mask(criterion, criterion.mask)
+
+    def _mask(self, criterion: CriterionReview, mask: MaskReview) -> None:
+        """Draw in a mask, and a cross where it is first left."""
+        size = (self.final or 0.0) / 100 if mask.unit == "%" and self.unit != "%" else ratio(mask.unit, self.unit)
+        if not size:
+            return
+        sides: tuple[Side, Side] = ("above", "below") if size > 0 else ("below", "above")
+        for side, corners in zip(sides, (mask.upper, mask.lower), strict=True):
+            if corners:
+                points = tuple((time, value * size) for time, value in corners)
+                self.masks.append(Boundary(points, side, mask.forever))
+        at = criterion.result.at
+        if at is not None and at.time is not None and at.value is not None:
+            time, value = at.time.value, at.value.value
+            factor = ratio(at.value.unit, self.unit)
+            if time is not None and value is not None and factor is not None:
+                self.crosses.append(Cross(time, value * factor, "value", value * factor, value * factor))
 
     def _instant(self, requirement: str, criterion: CriterionReview) -> None:
         seconds = ratio(_unit(criterion) or "s", "s")
