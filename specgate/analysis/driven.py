@@ -12,6 +12,10 @@ NOISE = Absent("white noise has no course in time: only its standard deviation i
 SEVERAL = Absent("several inputs are driven at once: there is no single channel", proved=False)
 ERROR_JUMPS = Absent("the error jumps without limit: the reference is differentiated", proved=False)
 
+UNASKED = ""
+"""In place of the name of a reference: nobody wants the error, so that none is made."""
+_UNASKED = Absent("nobody asks for the error here", proved=False)
+
 
 def plain(inputs: Sequence[Input]) -> bool:
     """Whether a response is to a single step."""
@@ -46,6 +50,8 @@ def reference_of(named: str | None, sources: Sequence[str], to: str, signals: Lo
 
     Without a name it is the input that is driven, of several the one of the signal's dimension.
     """
+    if named == UNASKED:
+        return _UNASKED
     if named is not None:
         return named
     unit = signals.unit(to)

@@ -17,6 +17,7 @@ from flint import fmpq
 
 from specgate.analysis.analyse import loop_analysis
 from specgate.analysis.analyses import LoopAnalysis, ResponseAnalysis
+from specgate.analysis.driven import UNASKED
 from specgate.analysis.rest import Rest
 from specgate.analysis.wiring import subsystems_of
 from specgate.project.instances import Use, Uses
@@ -188,7 +189,7 @@ def _instances(project: Project, uses: Uses) -> Iterator[tuple[str, Use]]:
 
 def _at(response: Response, signal: str) -> Response:
     """Return the same response at another signal, with no error to be measured."""
-    return replace(response, to=signal, reference="0")
+    return replace(response, to=signal, reference=UNASKED)
 
 
 def _key(response: Response, probe: str) -> str:
