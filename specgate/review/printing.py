@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import replace
+from dataclasses import fields, replace
 from typing import Any, cast
 
 from flint import fmpq, fmpq_poly
@@ -131,10 +131,17 @@ def _record(reading: Reading, unit: Unit, scale: fmpq | None, method: str) -> Pr
     how: dict[str, Any] = {"method": method, **({} if answer.how is None else answer.how())}
     parts = how.pop("parts", None)
     return ProofRecord(
-        **how,
+        **_sorted_out(how),
         bits=precision_of(reading.in_unit(unit).enclose, scale),
-        parts=None if parts is None else {name: ProofPart(**part) for name, part in parts.items()},
+        parts=None if parts is None else {name: ProofPart(**_sorted_out(part)) for name, part in parts.items()},
     )
+
+
+def _sorted_out(how: Mapping[str, Any]) -> dict[str, Any]:
+    """Put what has no field of its own among what else was counted."""
+    known = {field.name for field in fields(ProofPart)}
+    counts = {name: value for name, value in how.items() if name not in known}
+    return {**{name: value for name, value in how.items() if name in known}, "counts": counts or None}
 
 
 def _beside(reading: Reading, signal: Unit) -> Beside:

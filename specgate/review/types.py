@@ -69,6 +69,8 @@ class ProofPart:
     """Intervals that hold what is searched, with one proved change of sign each."""
     searched_until: float | None = _omitted()
     """Time (s) from which on a bound excludes what is searched, rounded up."""
+    counts: Mapping[str, Any] | None = _omitted()
+    """What else was counted: degrees of polynomials, candidates, crossings; each by its name."""
 
 
 @record

@@ -121,3 +121,13 @@ def test_the_schema_knows_records(proved: Review) -> None:
 
     schema = plain.loads(files("specgate.schemas").joinpath("results.schema.json").read_text())
     jsonschema.validate(plain.loads(json.write(proved)), schema)
+
+
+def test_margins_say_what_was_counted(proved: Review) -> None:
+    found = {one.measure: one for one in proved.loops["level"].breaks["main"].measures}
+    record = found["phase_margin"].proof_record
+    assert record is not None
+    assert record.counts is not None
+    assert record.counts["gain crossings"] == len(
+        [c for c in proved.loops["level"].breaks["main"].crossings if c.kind == "gain"]
+    )
