@@ -51,11 +51,24 @@ def is_schur_in_balls(coefficients: Coefficients) -> bool | None:
     """Whether every root lies strictly inside the circle; None where the highest precision does not tell."""
     bits = FIRST
     while bits <= HIGHEST:
-        found = _is_hurwitz(_padded(coefficients(bits), bits), bits)
+        found = schur_at(coefficients(bits), bits)
         if found is not None:
             return found
         bits *= 2
     return None
+
+
+def in_w_padded(p: arb_poly, degree: int, bits: int) -> list[arb]:
+    """Return the coefficients of (1 - w)^degree p((1 + w)/(1 - w)), lowest first, for any degree from that of p on."""
+    with working_precision(bits):
+        lifted = in_w_balls(p, bits) * arb_poly([1, -1]) ** (degree - max(p.degree(), 0))
+    found = lifted.coeffs()
+    return [*found, *([arb(0)] * (degree + 1 - len(found)))]
+
+
+def schur_at(p: arb_poly, bits: int) -> bool | None:
+    """Whether every root of every polynomial in a ball lies strictly inside (True), or not so for any (False)."""
+    return _is_hurwitz(_padded(p, bits), bits)
 
 
 def _padded(p: arb_poly, bits: int) -> list[arb]:

@@ -14,7 +14,7 @@ from functools import cached_property
 from math import factorial
 from typing import TypeVar
 
-from flint import arb_mat, fmpq, fmpq_mat, fmpq_poly
+from flint import arb, arb_mat, fmpq, fmpq_mat, fmpq_poly
 
 from specgate.sampled.state_space import StateSpace, diagonal, identity, of_rows
 from specgate.terms.precision import working_precision
@@ -204,9 +204,10 @@ class Cycle:
 
     def enclosed(self, bits: int) -> arb_mat:
         """Return the state at the next sample as rows of balls over the state."""
-        with working_precision(bits + _GUARD):
-            if self.exact is not None:
+        if self.exact is not None:
+            with working_precision(bits + _GUARD):
                 return arb_mat(self.exact)
+        with working_precision(bits + _GUARD):
             moved = arb_mat(self._placed(identity(self.moving), 0))
             for stretch in self.stretches:
                 motion = self.motion_over(stretch.length, bits)
@@ -225,10 +226,12 @@ class Cycle:
                 moving = arb_mat(self.moving, len(whole), [entry for row in motion for entry in row]) * found[-1]
         return found
 
-    def motion_over(self, length: fmpq, bits: int) -> arb_mat:
+    def motion_over(self, length: fmpq | arb, bits: int) -> arb_mat:
         """Return e^(M length) of the moving states together with what is held, which stays as it is."""
         with working_precision(bits + _GUARD):
-            return arb_mat(_joined(self.motion) * length).exp()
+            if isinstance(length, fmpq):
+                return arb_mat(_joined(self.motion) * length).exp()
+            return (arb_mat(_joined(self.motion)) * length).exp()
 
 
 def _moved(motion: Matrix, moving: int, states: Matrix, held: Matrix) -> Matrix:

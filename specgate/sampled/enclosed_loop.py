@@ -29,8 +29,6 @@ from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 
-NO_LAG = "a dead time of a part of a period is no lag of L(z): its margin is not answered in a sampled loop"
-
 _Place = Crossed | Tangent
 
 
@@ -38,7 +36,14 @@ class EnclosedLoop:
     """L(z) at the samples of a loop. slow: L of slow signals. at_one: L(1), None where it is infinite (exact)."""
 
     def __init__(
-        self, transfer: PulseTransfer, slow: TransferFunction, at_one: fmpq | None, period: fmpq, *, stable: bool
+        self,
+        transfer: PulseTransfer,
+        slow: TransferFunction,
+        at_one: fmpq | None,
+        period: fmpq,
+        late: Callable[[], Answer] | None,
+        *,
+        stable: bool,
     ) -> None:
         self._transfer = transfer
         self._slow = slow
@@ -46,6 +51,7 @@ class EnclosedLoop:
         self._axis = Axis(transfer, unit_at_one=at_one is not None and abs(at_one) == 1)
         self._scale = SampledScale(period)
         self._stable = stable
+        self._late = late
 
     # --- the ends -----------------------------------------------------------------------------------------
 
@@ -194,8 +200,8 @@ class EnclosedLoop:
         return self._phase_margin(over, "lag", "lead")
 
     def delay_margin(self, over: Range | None = None) -> Answer:
-        """Leave it open: lag over frequency is not the dead time that a sampled loop stands."""
-        return Answer.undecided(NO_LAG)
+        """Return the least dead time that makes the loop unstable; it belongs to no frequency."""
+        return delay_stood(self._late, over, stable=self._stable)
 
     # --- peaks --------------------------------------------------------------------------------------------
 
@@ -276,6 +282,15 @@ class EnclosedLoop:
     def within(self, mask: Mask) -> Answer:
         """Return whether |L| stays inside a mask over frequency."""
         return Answer.undecided("a mask over the frequencies of a sampled loop is not answered by this version")
+
+
+def delay_stood(late: Callable[[], Answer] | None, over: Range | None, *, stable: bool) -> Answer:
+    """Return the dead time that a sampled loop stands; late: how it is found, None where no loop passes here."""
+    if not stable:
+        return Answer.nothing(UNSTABLE)
+    if over is not None:
+        return Answer.undecided("the dead time that a sampled loop stands belongs to no frequency: ask without a range")
+    return Answer.nothing(margins.NOT_USED_UP, infinite=True) if late is None else late()
 
 
 def _told(ask: Callable[[], Answer]) -> Answer:

@@ -16,6 +16,7 @@ from collections.abc import Mapping, Sequence
 from flint import arb, arb_mat, arb_poly, fmpq, fmpq_mat, fmpq_poly
 
 from specgate.sampled.blocks import SampledBlock, SampledInstance, SampledWiring, held
+from specgate.sampled.components import Component
 from specgate.sampled.cycle import Controller, Cycle
 from specgate.sampled.plant import Plant
 from specgate.sampled.solution import SampledSolution, solve_sampled
@@ -41,7 +42,7 @@ class SampledOpening:
 
     slow: L for slow signals, in s: the same order and leading coefficient at s = 0 as L(z) at z = 1. transfer: L(z);
     None where there is none, with the reason (`algebraic_loop`, or `reason` for what is not answered). stable: whether
-    every mode of the closed component decays; None where that is not told.
+    every mode of the closed component decays; None where that is not told. component: that one, where it has L.
     """
 
     signal: str
@@ -51,6 +52,7 @@ class SampledOpening:
     stable: bool | None
     algebraic_loop: AlgebraicLoop | None = None
     reason: str | None = None
+    component: Component | None = None
 
 
 @record
@@ -83,7 +85,9 @@ def opened(solution: SampledSolution, signal: str) -> SampledOpening:
     if isinstance(cut, str):
         return SampledOpening(signal, solution.period, slow.transfer, None, stable, reason=cut)
     transfer = _transfer(solution, cut, members, slow.transfer)
-    return SampledOpening(signal, solution.period, slow.transfer, transfer, stable)
+    return SampledOpening(
+        signal, solution.period, slow.transfer, transfer, stable, component=solution.components[closed]
+    )
 
 
 def _component(solution: SampledSolution, signal: str) -> int | None:
