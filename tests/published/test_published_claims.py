@@ -15,6 +15,7 @@ import yaml
 from specgate.intake.load import Problems, load
 from specgate.review.build import review
 from specgate.review.types import CriterionReview
+from specgate.review.wanted import Wanted
 
 DATA = Path(__file__).resolve().parents[1] / "data" / "published_values.yaml"
 ROWS: dict[str, dict[str, Any]] = {row["id"]: row for row in yaml.safe_load(DATA.read_text())}
@@ -88,7 +89,7 @@ def claimed(folder: Path, row: dict[str, Any], read: tuple[str, str, str], basis
     )
     project = load(path)
     assert not isinstance(project, Problems), [one.message for one in project.findings]
-    return review(project, curves=False).requirements["R"].criteria[0]
+    return review(project, Wanted(drawn=False)).requirements["R"].criteria[0]
 
 
 @pytest.mark.parametrize("name", CLAIMS)
