@@ -54,12 +54,14 @@ def square_of_factor(bits: int) -> arb:
 def _simple(start: fmpq_poly, level: fmpq_poly, hull: arb, bits: int) -> Zero | None:
     """Return the zero of start - c level in a hull that holds it, if its slope does not vanish there."""
     pair, slopes = (start, level), (start.derivative(), level.derivative())
-    if _difference(slopes, hull, bits).contains(0):
+    slope = _difference(slopes, hull, bits)
+    if slope.contains(0):
         return None
     return Zero(
         lambda x, precision: _difference(pair, x, precision),
         lambda x, precision: _difference(slopes, x, precision),
         hull,
+        rising=bool(slope > 0),
     )
 
 

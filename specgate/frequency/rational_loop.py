@@ -32,6 +32,7 @@ from specgate.frequency.scale import Continuous, Scale, X, ends, within
 from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots, sign_of
 from specgate.frequency.values import reciprocal
 from specgate.response.answers import Answer
+from specgate.response.budget import OutOfWork
 from specgate.response.questions import Mask
 from specgate.systems.transfer import TransferFunction
 
@@ -130,8 +131,11 @@ class RationalLoop:
         return PhaseCrossing(self.scale.frequency(spot), factor, rise)
 
     def crossings(self, over: Range | None = None) -> tuple[Crossing, ...]:
-        """Return all crossings, by frequency."""
-        return margins.described(self._gain_crossings(over), self._phase_crossings(over))
+        """Return all crossings, by frequency; none where there is too much to find, which the margins then say."""
+        try:
+            return margins.described(self._gain_crossings(over), self._phase_crossings(over))
+        except OutOfWork:
+            return ()
 
     @cached_property
     def _near_gain(self) -> Watch[GainCrossing]:

@@ -109,7 +109,7 @@ def first_violation(room: Room) -> Answer | None:
         elif room.sign_at(left) < 0 or (room.sign_at(left) == 0 and slope < 0):
             return Answer.of_exact(left)
         elif slope < 0 and room.sign_at(right) < 0:
-            return Answer(Proof.ENCLOSED, refine=Zero(room.value, room.slope, cell).enclose)
+            return Answer(Proof.ENCLOSED, refine=Zero(room.value, room.slope, cell, rising=False).enclose)
     raise NotTold
 
 

@@ -21,6 +21,7 @@ from flint import acb, arb, fmpq, fmpq_poly, fmpz_poly
 from specgate.frequency.chebyshev import chebyshev_modulo
 from specgate.frequency.newton import Function, Zero
 from specgate.response.answers import Answer
+from specgate.response.budget import OutOfWork
 from specgate.systems.polynomials import order_at_origin, primitive
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
@@ -31,6 +32,9 @@ FIRST = 64
 """Bits at which roots are isolated; they are refined as far as a question needs."""
 _EXACT_FROM = 256
 """Bits at which a polynomial that may vanish at a root is looked at by its greatest common divisor with the other."""
+
+_HIGHEST = 200
+"""Degree beyond which isolating all roots would take too long (some seconds at this one)."""
 
 _NIVEN = (-2, -1, 0, 1, 2)
 """Twice the rational cosines of rational parts of a turn (Niven 1956, theorem 6.16)."""
@@ -109,7 +113,8 @@ class Root:
 
     def __init__(self, polynomial: fmpz_poly, isolating: arb) -> None:
         self._polynomial = polynomial
-        self._zero = Zero(_at(polynomial), _at(polynomial.derivative()), _clear(polynomial, isolating))
+        ball, rising = _clear(polynomial, isolating)
+        self._zero = Zero(_at(polynomial), _at(polynomial.derivative()), ball, rising=rising)
 
     def enclose(self, bits: int) -> arb:
         """Return a ball of at least `bits` relative bits that holds the root; it only ever gets narrower."""
@@ -177,11 +182,16 @@ class Root:
 
 
 def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:
-    """Return the distinct positive roots of a polynomial that is not zero, in rising order; rational ones as such."""
+    """Return the distinct positive roots of a polynomial that is not zero, in rising order; rational ones as such.
+
+    Raises OutOfWork for a polynomial of too high a degree.
+    """
     whole = primitive(p.right_shift(order_at_origin(p)))
     signs = [c > 0 for c in whole.coeffs() if c != 0]
     if all(signs) or not any(signs):
         return ()  # Descartes: no change of sign among the coefficients, no positive root
+    if whole.degree() > _HIGHEST:
+        raise OutOfWork(f"a loop of more than order {_HIGHEST // 2} is not answered over frequency")
     square_free = whole // whole.gcd(whole.derivative())
     if square_free.degree() == 1:
         return (Rational(fmpq(-square_free[0], square_free[1])),)
@@ -201,13 +211,14 @@ def _spot(p: fmpz_poly, ball: arb) -> Spot:
     return root
 
 
-def _clear(p: fmpz_poly, isolating: arb) -> arb:
-    """Return the root in an isolating ball in one so narrow that p' does not vanish in it."""
+def _clear(p: fmpz_poly, isolating: arb) -> tuple[arb, bool]:
+    """Return the root of an isolating ball in one in which p' does not vanish, and whether p rises there."""
     slope, bits = p.derivative(), FIRST
     while True:
         with working_precision(bits):
-            if not slope(isolating).contains(0):
-                return isolating
+            steep = slope(isolating)
+            if not steep.contains(0):
+                return isolating, bool(steep > 0)
         bits *= 2
         real = [root.real for root, _ in _complex_roots(p, bits) if root.imag.is_zero()]
         # a ball of a neighbour may reach over the edge of the old one: more bits tell them apart

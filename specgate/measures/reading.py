@@ -11,6 +11,7 @@ from flint import arb, fmpq
 from specgate.measures.measure import Arguments, Reader
 from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.response.answers import Absent, Answer, Fragile
+from specgate.response.budget import OutOfWork
 from specgate.response.extremes import Extreme
 from specgate.response.questions import TimeResponse
 from specgate.response.record import together
@@ -62,7 +63,10 @@ def over_frequency(ask: Callable[[Any, Arguments], Answer]) -> Reader:
         if isinstance(subject, ResponseSubject) and subject.void is not None:
             return missing(subject.void)
         found = subject.loop if isinstance(subject, BreakSubject) else subject.gain
-        return Answer.undecided(_LATER) if found is None else ask(found, arguments)
+        try:
+            return Answer.undecided(_LATER) if found is None else ask(found, arguments)
+        except OutOfWork as limit:
+            return Answer.undecided(limit.reason)
 
     return reader
 

@@ -5,10 +5,14 @@ from __future__ import annotations
 from collections.abc import Callable
 
 import pytest
-from flint import fmpq
+from flint import fmpq, fmpq_poly
 
 from specgate.frequency.rational_loop import RationalLoop
+from specgate.measures.measure import Arguments
+from specgate.measures.subjects import BreakSubject
+from specgate.measures.table import MEASURES
 from specgate.response.answers import Answer
+from specgate.systems.transfer import TransferFunction
 from tests.frequency.conftest import rational
 
 Loop = Callable[..., RationalLoop]
@@ -197,3 +201,16 @@ def test_the_phase_is_followed_from_zero_frequency(loop: Loop) -> None:
     assert number(loop([-3], [1, 1]).phase_at(fmpq(0))) == pytest.approx(-3.14159265)
     assert number(loop([-1, 1], [1, 1, 0]).phase_at(fmpq(1))) == pytest.approx(-3.14159265)
     assert loop([1, 0], [1, 1]).phase_at(fmpq(0)).absent is not None
+
+
+def test_a_loop_of_very_high_order_is_left_open() -> None:
+    """Isolating all roots of a polynomial of degree 450 would take minutes: it is said, not tried."""
+    above, below = fmpq_poly([1]), fmpq_poly([1, 1]) ** 450 + fmpq_poly([1, 1])
+    loop = RationalLoop(TransferFunction(above, below), stable=True)
+    assert loop.crossings() == ()
+    read = MEASURES["gain_margin"].read
+    assert read is not None
+    answer = read(BreakSubject(TransferFunction(above, below), Answer.of_truth(True), loop), Arguments())
+    assert answer.absent is not None
+    assert not answer.absent.proved
+    assert "order 100" in answer.absent.reason
