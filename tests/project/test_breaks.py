@@ -107,3 +107,22 @@ def test_stable_means_with_the_others_held_open(tmp_path: Path) -> None:
     assert margin.reason.startswith("with place held open, the closed loop is not stable")
     assert subject(tmp_path, "{at: speed, into: command, with_open: [place]}", "-0.5").stable.truth is True
     assert subject(tmp_path, "{at: speed, into: command}", "-0.5").stable.truth is False
+
+
+def test_the_order_of_blocks_and_lines_does_not_matter(tmp_path: Path) -> None:
+    """A chain of blocks in either order, its lines upside down: the same L."""
+    chain = "place: drum(drive(error))", "place: drive(drum(error))"
+    found = []
+    for place in chain:
+        for lines in (["error: order - place", place], [place, "error: order - place"]):
+            head, _, _ = CASCADE.format(opened="place", gain="20").partition("    signals:\n")
+            body = "    signals:\n" + "".join(f"      {line}\n" for line in lines) + "    breaks: {here: place}\n"
+            path = tmp_path / "specgate.yaml"
+            path.write_text(head + body)
+            project = load(path)
+            assert not isinstance(project, Problems), [finding.message for finding in project.findings]
+            opened = analyse(project).loops["cascade"].breaks["here"].subject
+            assert isinstance(opened, BreakSubject)
+            found.append(opened.open_loop.reduced())
+    assert all(one == found[0] for one in found)
+    assert found[0].denominator == highest_first([1, 1, 0])
