@@ -122,4 +122,5 @@ def _break(declared: Break, solution: SampledSolution, unsupported: str | None) 
     if found.slow is None or found.reason is not None:
         return BreakAnalysis(declared, Missing(found.reason or "", later=True))
     loop = over_frequency(found)
-    return BreakAnalysis(declared, BreakSubject(SlowTransfer(found.slow), decided(found.stable), loop), found)
+    subject = BreakSubject(SlowTransfer(found.slow), decided(found.stable), loop, on_request=("delay_margin",))
+    return BreakAnalysis(declared, subject, found)

@@ -53,11 +53,13 @@ class BreakSubject:
 
     open_loop: L; of a sampled loop that which slow signals see (`SlowTransfer`).
     loop: L over frequency; None where this version does not answer that.
+    on_request: measures that are otherwise always reported and whose search takes too long to be made unasked.
     """
 
     open_loop: TransferFunction | DelayedTransfer | SlowTransfer
     stable: Answer
     loop: OpenLoop | None = None
+    on_request: tuple[str, ...] = ()
 
 
 @record

@@ -15,7 +15,7 @@ from specgate.compliance.wording import hides
 from specgate.frequency.questions import OpenLoop
 from specgate.measures.inputs import REPORTED
 from specgate.measures.measure import Arguments, Measure, Reader, SubjectKind
-from specgate.measures.subjects import ResponseSubject, Subject
+from specgate.measures.subjects import BreakSubject, ResponseSubject, Subject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Response
 from specgate.response.answers import Absent
@@ -210,7 +210,10 @@ def _measures(
         return ()
     rows = (row for row in MEASURES.values() if row.read is not None and kind in row.subjects)
     chosen = REPORTED.get(subject.kind) if isinstance(subject, ResponseSubject) else None
-    reported = (row for row in rows if (row.always if chosen is None else row.name in chosen))
+    unasked = subject.on_request if isinstance(subject, BreakSubject) else ()
+    reported = (
+        row for row in rows if (row.always and row.name not in unasked if chosen is None else row.name in chosen)
+    )
     return tuple(_measure(row, subject, again, signal, wanted) for row in reported)
 
 
