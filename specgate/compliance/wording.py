@@ -124,11 +124,13 @@ def _violation(assessed: CriterionAssessment) -> str:
         return ""
     over_time = "time" in at
     unit = assessed.signal if over_time else _DECIBEL
-    numbers = " against ".join(apart([Reading.once(one).in_unit(unit) for one in (value, limit)], unit))
+    # Where a curve goes out through a limit the two are one: the number is said once.
+    printed = tuple(dict.fromkeys(apart([Reading.once(one).in_unit(unit) for one in (value, limit)], unit)))
+    numbers = " against ".join(printed)
     if not isinstance(where, Answer) or where.absent is not None:
         return f" ({numbers})"
     place = figure(Reading.once(where).in_unit(_SECOND if over_time else _RATE), _SECOND if over_time else _RATE)
-    return f" (first at {place}: {numbers})"
+    return f" (first at {place}: {numbers})" if len(printed) > 1 else f" (left at {place}, at {numbers})"
 
 
 def condition_words(audited: AuditedCondition) -> str:

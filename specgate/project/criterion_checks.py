@@ -174,6 +174,9 @@ class CriterionCheck:
         if unit is not None and unit.kind == "decibel" and self.measure.unit not in _RATIOS:
             message = f"`{value.as_written}`: {self.measure.name} is no ratio that could be in dB"
             raise Fault(faults.DIMENSION, message, value.place)
+        if unit is not None and unit.angle and self.measure.unit in _RATIOS:
+            message = f"`{value.as_written}`: {self.measure.name} is a ratio, not an angle: give it plain or in dB"
+            raise Fault(faults.DIMENSION, message, value.place)
 
     def _no_cycles(self, value: Value) -> None:
         for node in written_numbers(value.expression, self.values):

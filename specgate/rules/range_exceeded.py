@@ -54,9 +54,14 @@ def _broken(assumptions: Sequence[Assumption]) -> list[Assumption]:
 
 def _words(facts: Facts, broken: list[Assumption]) -> str:
     first, *others = broken
-    more = f"; {', '.join(signal_words(one.ranged) for one in others)} too" if others else ""
+    more = f"; {', '.join(dict.fromkeys(map(_named, others)))} too" if others else ""
     largest = largest_words(broken)
     return f"in {first.on} {excess_words(first)}{more}{f'; {largest}' if largest else ''}"
+
+
+def _named(one: Assumption) -> str:
+    signal = signal_words(one.ranged)
+    return f"the rate of {signal}" if one.ranged.kind == "rate_range" else signal
 
 
 def _places(broken: list[Assumption]) -> tuple[Related, ...]:
