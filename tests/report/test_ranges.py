@@ -7,6 +7,7 @@ from types import ModuleType
 
 import pytest
 
+from specgate.report import html
 from specgate.report.parts.front import front
 from specgate.report.parts.ranges import Range, ranges
 from specgate.report.parts.trace import open_points
@@ -96,6 +97,25 @@ def test_page_one_names_the_signal_the_peak_and_the_size(whole: Review) -> None:
     outside = resting(whole, assumption(allowed=Amount(-5.0, "%")), assumption(signal="speed"))
     (hold,) = [one for one in front(outside).holds if one.requirement == NAME]
     assert "opening rests at 20 %, outside its range; speed too" in hold.words
+
+
+def test_page_one_names_the_size_that_keeps_all_ranges_and_each_signal_once(whole: Review) -> None:
+    tighter = assumption(signal="speed", largest_size=Amount(7.25, "Pa"), largest_factor=0.145)
+    rate = replace(tighter, kind="rate_range")
+    (hold,) = [one for one in front(resting(whole, assumption(), tighter, rate)).holds if one.requirement == NAME]
+    assert "(kept up to 7.25 Pa); speed too" in hold.words
+    never = replace(tighter, largest_size=None, largest_factor=None)
+    (hold,) = [one for one in front(resting(whole, assumption(), never)).holds if one.requirement == NAME]
+    assert "kept up to" not in hold.words
+
+
+def test_a_reason_has_the_width_of_a_sentence(whole: Review) -> None:
+    grows = assumption(
+        peak=Result(None, reason=GROWS), reason=GROWS, holds=None, largest_size=None, largest_factor=None
+    )
+    assert only(whole, grows).worded
+    assert not only(whole, assumption()).worded
+    assert f'<td colspan="2">{GROWS}</td>' in html.render(resting(whole, grows))
 
 
 def test_what_is_not_decided_is_an_open_point_and_a_caution(whole: Review) -> None:

@@ -127,6 +127,17 @@ def test_the_figure_of_a_settling_time(sample: ModuleType) -> None:
     assert [ring.time for ring in figure.rings] == [0.8]
 
 
+def test_a_formula_without_a_value_is_why_there_is_no_error(sample: ModuleType) -> None:
+    review = sample.review()
+    name = view(review).audits[0].requirement
+    first, *others = review.requirements[name].criteria
+    without = replace(first, basis=replace(first.basis, formula=None, error=None))
+    changed = replace(review.requirements[name], criteria=(without, *others))
+    audits = view(replace(review, requirements={**review.requirements, name: changed})).audits
+    (audit,) = [one for one in audits if one.requirement == name]
+    assert audit.error == "not defined: the formula has no value on this loop"
+
+
 def test_a_peak_deviation_is_forbidden_on_both_sides(sample: ModuleType) -> None:
     sheet = view(sample.review()).loops[0]
     figure = next(response.figure for response in sheet.responses if response.name == "reject")

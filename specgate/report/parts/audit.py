@@ -122,6 +122,8 @@ def _formula(basis: BasisReview) -> str:
 
 def _error(basis: BasisReview) -> str:
     """Return the error of the formula against the proved value, signed, with its side."""
+    if basis.error is None and basis.formula is None:
+        return "not defined: the formula has no value on this loop"
     if basis.error is None:
         return "not defined: there is no proved value to compare with"
     parts = []

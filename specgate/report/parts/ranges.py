@@ -23,6 +23,8 @@ class Range:
     what: str
     allowed: str
     goes: str
+    worded: bool
+    """Whether `goes` is a reason, which needs the width of a sentence."""
     size: str
     state: Status
     requirements: tuple[tuple[str, str], ...]
@@ -50,6 +52,7 @@ def _range(one: AssumptionReview, names: list[str]) -> Range:
         what=_what(one),
         allowed="none" if (one.allowed.value or 0.0) < 0 else amount(one.allowed),
         goes="" if peak is None else one.reason or "none" if peak.value == "none" else peak.whole,
+        worded=peak is not None and peak.value == "none",
         size=largest(one),
         state=CONDITIONS[one.holds],
         requirements=tuple((name, anchors.row(name)) for name in names),
@@ -87,11 +90,19 @@ def beyond(requirement: RequirementReview) -> str:
         words = f"{first.signal or port(first)} leaves its range: {first.reason or 'no peak'}"
     else:
         goes = amount(Amount(float(first.peak.value), first.peak.unit or "1"))
-        kept = largest(first)
+        kept = _kept([one for one in broken if one.response == first.response])
         words = f"{first.signal or port(first)} goes {goes} where its range leaves {amount(first.allowed)}"
         words += f" (kept up to {kept})" if kept else ""
-    others = [one.signal or port(one) for one in broken[1:]]
+    named = dict.fromkeys(one.signal or port(one) for one in broken)
+    others = [name for name in named if name != (first.signal or port(first))]
     return f"{words}; {listed(others)} too" if others else words
+
+
+def _kept(broken: list[AssumptionReview]) -> str:
+    """Return the largest size of one input that keeps every one of its broken ranges; nothing where there is none."""
+    if any(one.largest_factor is None for one in broken):
+        return ""
+    return largest(min(broken, key=lambda one: one.largest_factor or 0.0))
 
 
 def undecided(requirement: RequirementReview) -> str:
