@@ -15,6 +15,7 @@ from specgate.sampled.drive import Drive, Setting
 from specgate.sampled.shapes import Shapes
 from specgate.sampled.state_space import Row
 from specgate.sampled.states import States
+from specgate.sampled.swings import Swings
 from specgate.terms.precision import working_precision
 
 _GUARD = 96
@@ -33,6 +34,8 @@ class SampledCourse(Pieces):
         self._drive = drive
         self._final = final
         self._rest = rest
+        first = cycle.moving - drive.order
+        self._swings = Swings(cycle.motion.a, line[0], [(first + place, bump) for place, bump in drive.bumps])
         self._shapes = Shapes(cycle.motion.a, cycle.motion.b, *line)
         self._first = int((drive.starts[-1][0] / cycle.period).ceil())
         self._ways: dict[int, list[arb_mat]] = {}
@@ -77,7 +80,7 @@ class SampledCourse(Pieces):
 
     def speed(self, index: int) -> float:
         """Return how fast the pieces vary (rad/s)."""
-        return self._shapes.speed
+        return max(self._shapes.speed, self._swings.speed(self.kink(index)))
 
     # --- what they are ------------------------------------------------------------------------------------
 
@@ -93,11 +96,13 @@ class SampledCourse(Pieces):
         if key not in self._expansions:
             if len(self._expansions) >= _KEPT:
                 self._expansions.clear()
-            self._expansions[key] = self._shapes.expansion(self._state(index, bits + _GUARD), bits + _GUARD)
+            found = self._shapes.expansion(self._state(index, bits + _GUARD), bits + _GUARD)
+            swings = tuple(self._swings.modes(self.kink(index), found.bits))
+            self._expansions[key] = Expansion(found.offset, (*found.modes, *swings), found.bits)
         return self._expansions[key]
 
     def _state(self, index: int, bits: int) -> arb_mat:
-        """Return (z, what is held) at the start of a piece."""
+        """Return (z, what is held) at the start of a piece, z less what the loop swings with an input."""
         early, states = self._from_start(bits)
         if index < len(early):
             return early[index]
@@ -129,9 +134,12 @@ class SampledCourse(Pieces):
                 self._set(moving, sets.get(start))
                 if (start / cycle.period).q == 1:
                     self._set(state, sets.get(start))
-                found.append(_stacked(moving, arb_mat(cycle.stretches[number].held) * state))
+                    self._swings.sample(state, start)
+                self._swings.level(moving, start)
+                calm = moving - self._swings.moved(start, start, bits)
+                found.append(_stacked(calm, arb_mat(cycle.stretches[number].held) * state))
                 motion = arb_mat(cycle.motion_over(end - start, bits).tolist()[: cycle.moving])
-                moving = motion * found[-1]
+                moving = motion * found[-1] + self._swings.moved(start, end, bits)
                 if (end / cycle.period).q == 1:
                     state = _stacked(moving, arb_mat(cycle.settled_samples) * state)
             self._set(state, sets.get(self._first * cycle.period))

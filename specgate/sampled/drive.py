@@ -1,18 +1,20 @@
 """What drives a response: a linear system of its own, set anew at given times.
 
 Steps, ramps and parabolas on one input are one chain w, w', w'' that is known exactly at every time, so that a ramp
-that is held ends as exactly constant; a sine is a pair w, w' of its own.
+that is held ends as exactly constant; a sine is a pair w, w' of its own. One minus a cosine has a state that says where
+it is fed in, and that is exactly zero before and after; what it is in between is said by `Swings`.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
+from itertools import accumulate
 from math import factorial
 
 from flint import fmpq, fmpq_mat, fmpq_poly
 
 from specgate.response.answers import Absent
-from specgate.response.inputs import Input, Term, terms
+from specgate.response.inputs import Bump, Input, Term, terms
 from specgate.sampled.state_space import Row, diagonal
 from specgate.systems.polynomials import order_at_origin
 from specgate.terms.records import record
@@ -25,7 +27,8 @@ Setting = tuple[fmpq | None, ...]
 class Drive:
     """w[source] = reads[source] r, r' = motion r, with r set at each of `starts` (time in s), the first of them at 0.
 
-    rest: the values that the sources keep from the last start on; None where one keeps none.
+    rest: the values that the sources keep from the last start on; None where one keeps none. bumps: one minus a cosine
+    each, and the state that it has while it acts.
     """
 
     sources: tuple[str, ...]
@@ -33,6 +36,7 @@ class Drive:
     reads: tuple[Row, ...]
     starts: tuple[tuple[fmpq, Setting], ...]
     rest: tuple[fmpq, ...] | None
+    bumps: tuple[tuple[int, Bump], ...] = ()
 
     @property
     def order(self) -> int:
@@ -56,6 +60,7 @@ class _Part:
     motion: fmpq_mat
     starts: tuple[tuple[fmpq, Row], ...]
     rest: fmpq | None
+    bump: Bump | None = None
 
 
 def step(source: str, size: fmpq) -> Drive:
@@ -70,7 +75,10 @@ def drive(driven: Sequence[tuple[str, Input]]) -> Drive | Absent:
     for source, given in driven:
         powers.setdefault(source, [])
         for term in terms(given):
-            if not isinstance(term, Term) or (term.numerator.degree() > 0 and term.denominator.degree() == 0):
+            if isinstance(term, Bump):
+                parts.append(_bump(source, term))
+                continue
+            if term.numerator.degree() > 0 and term.denominator.degree() == 0:
                 return Absent(f"{given.kind.replace('_', ' ')} is not answered on a sampled loop", proved=False)
             order = order_at_origin(term.denominator)
             if order == term.denominator.degree():
@@ -111,6 +119,12 @@ def _sine(source: str, term: Term) -> _Part:
     return _Part(source, motion, ((term.begin, [fmpq(0), slope]),), None)
 
 
+def _bump(source: str, bump: Bump) -> _Part:
+    """Return one minus a cosine, which begins and ends at zero."""
+    ends = (bump.begin, bump.begin + bump.period)
+    return _Part(source, fmpq_mat(1, 1), tuple((time, [fmpq(0)]) for time in ends), fmpq(0), bump)
+
+
 def _joined(sources: tuple[str, ...], parts: Sequence[_Part]) -> Drive:
     motion = diagonal(part.motion for part in parts)
     reads: list[Row] = [[] for _ in sources]
@@ -126,7 +140,9 @@ def _joined(sources: tuple[str, ...], parts: Sequence[_Part]) -> Drive:
             sum((part.rest for part in parts if part.source == source and part.rest is not None), fmpq(0))
             for source in sources
         )
-    return Drive(sources, motion, tuple(reads), starts, rest)
+    firsts = accumulate((int(part.motion.nrows()) for part in parts), initial=0)
+    bumps = tuple((first, part.bump) for first, part in zip(firsts, parts, strict=False) if part.bump is not None)
+    return Drive(sources, motion, tuple(reads), starts, rest, bumps)
 
 
 def _setting(parts: Sequence[_Part], time: fmpq) -> Iterator[fmpq | None]:

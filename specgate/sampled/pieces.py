@@ -88,9 +88,12 @@ class SampledPieces(SampledCourse):
         begin = self.kink(index)
         inside = begin - (begin / self._cycle.period).floor() * self._cycle.period
         arriving = [factor for factor, (_, part) in zip(self._line[1], self._cycle.lags, strict=True) if part == inside]
-        sets = any(time == begin for time, _ in self._drive.starts)
+        setting = next((states for time, states in self._drive.starts if time == begin), ())
+        swinging = [place for place, _ in self._drive.bumps]
+        # one minus a cosine begins and ends at zero
+        sets = [place for place, value in enumerate(setting) if value is not None and place not in swinging]
         read = self._line[0][self._cycle.moving - self._drive.order :]
-        moved = (sets and any(factor != 0 for factor in read)) or any(factor != 0 for factor in arriving)
+        moved = any(read[place] != 0 for place in sets) or any(factor != 0 for factor in arriving)
         return None if moved else fmpq(0)
 
     def continuous_from(self) -> fmpq | None:
@@ -254,7 +257,7 @@ class SampledPieces(SampledCourse):
 
     def start(self, index: int) -> tuple[fmpq, int] | None:
         """Return how y leaves its rest: how long it moves one way from a kink on, and which way."""
-        if not self._at_rest(index):
+        if not self._at_rest(index) or self._swings.acting(self.kink(index)):
             return None
         return start(self._shapes, self._state(index, _BOUND_BITS), self.kink(index + 1) - self.kink(index))
 
