@@ -32,6 +32,7 @@ from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.questions import Crossing, Direction, Range
 from specgate.frequency.rational_loop import UNSTABLE, RationalLoop
 from specgate.frequency.scale import Continuous
+from specgate.frequency.sided import SidedMargins
 from specgate.frequency.spots import positive_roots
 from specgate.frequency.values import reciprocal
 from specgate.response.answers import Answer
@@ -48,7 +49,7 @@ _FAR = "how the loop behaves at high frequency, where its gain does not fall bel
 _TOUCHES = "whether the gain of the open loop passes one or only comes close to it was not told"
 
 
-class DelayedLoop:
+class DelayedLoop(SidedMargins):
     """L = numerator/denominator, no common factor; stable: of the closed loop with every mode (None: not decided)."""
 
     def __init__(self, open_loop: DelayedTransfer, stable: bool | None, unstable: str = UNSTABLE) -> None:
@@ -215,30 +216,6 @@ class DelayedLoop:
             return margins.phase_margin(_within(self._gain, over), *directions)
         except OutOfWork as limit:
             return Answer.undecided(limit.reason)
-
-    def gain_margin_up(self, over: Range | None = None) -> Answer:
-        """Return the least factor k > 1 such that k L is at the limit."""
-        return self._gain_margin(over, "up")
-
-    def gain_margin_down(self, over: Range | None = None) -> Answer:
-        """Return the least factor k > 1 such that L / k is at the limit."""
-        return self._gain_margin(over, "down")
-
-    def gain_margin(self, over: Range | None = None) -> Answer:
-        """Return the smaller of both."""
-        return self._gain_margin(over, "up", "down")
-
-    def phase_margin_lag(self, over: Range | None = None) -> Answer:
-        """Return the least phase lag (rad, in [0, 2 pi)) that brings L to -1."""
-        return self._phase_margin(over, "lag")
-
-    def phase_margin_lead(self, over: Range | None = None) -> Answer:
-        """Return the least phase lead (rad, in [0, 2 pi)) that brings L to -1."""
-        return self._phase_margin(over, "lead")
-
-    def phase_margin(self, over: Range | None = None) -> Answer:
-        """Return the smaller of both."""
-        return self._phase_margin(over, "lag", "lead")
 
     def delay_margin(self, over: Range | None = None) -> Answer:
         """Return the least dead time (s) that brings L to -1: least lag over frequency, 0 where |L(inf)| >= 1."""

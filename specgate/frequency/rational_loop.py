@@ -29,6 +29,7 @@ from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
 from specgate.frequency.questions import Crossing, Direction, Range
 from specgate.frequency.scale import Continuous, Scale, X, ends, within
+from specgate.frequency.sided import SidedMargins
 from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots, sign_of
 from specgate.frequency.values import reciprocal
 from specgate.response.answers import Answer
@@ -44,7 +45,7 @@ _BY_PHASE = "less than 0.6 deg in the phase"
 _ORIGIN, _INFINITY = Rational(fmpq(0)), Infinity()
 
 
-class RationalLoop:
+class RationalLoop(SidedMargins):
     """L = numerator/denominator, and whether the closed loop is stable with every mode, hidden ones included.
 
     unstable: why there is no margin where it is not.
@@ -171,30 +172,6 @@ class RationalLoop:
             return self._unstable
         found = self._recorded(margins.phase_margin(self._gain_crossings(over), *directions), "gain crossings")
         return found if over else self._near_gain.warned(found, lambda some: margins.phase_margin(some, *directions))
-
-    def gain_margin_up(self, over: Range | None = None) -> Answer:
-        """Return the least factor k > 1 such that k L is at the limit."""
-        return self._gain_margin(over, "up")
-
-    def gain_margin_down(self, over: Range | None = None) -> Answer:
-        """Return the least factor k > 1 such that L / k is at the limit."""
-        return self._gain_margin(over, "down")
-
-    def gain_margin(self, over: Range | None = None) -> Answer:
-        """Return the smaller of both."""
-        return self._gain_margin(over, "up", "down")
-
-    def phase_margin_lag(self, over: Range | None = None) -> Answer:
-        """Return the least phase lag (rad, in [0, 2 pi)) that brings L to -1."""
-        return self._phase_margin(over, "lag")
-
-    def phase_margin_lead(self, over: Range | None = None) -> Answer:
-        """Return the least phase lead (rad, in [0, 2 pi)) that brings L to -1."""
-        return self._phase_margin(over, "lead")
-
-    def phase_margin(self, over: Range | None = None) -> Answer:
-        """Return the smaller of both."""
-        return self._phase_margin(over, "lag", "lead")
 
     def delay_margin(self, over: Range | None = None) -> Answer:
         """Return the least dead time (s) that brings L to -1: least lag over frequency, 0 where |L(inf)| >= 1."""

@@ -17,6 +17,7 @@ from specgate.frequency.choose import Candidate, greatest, least
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.questions import Crossing, Direction, Range
 from specgate.frequency.rational_loop import UNSTABLE
+from specgate.frequency.sided import SidedMargins
 from specgate.frequency.spots import Infinity, Sign
 from specgate.frequency.values import reciprocal, root_of
 from specgate.response.answers import Answer
@@ -32,7 +33,7 @@ from specgate.terms.verdicts import Proof
 _Place = Crossed | Tangent
 
 
-class EnclosedLoop:
+class EnclosedLoop(SidedMargins):
     """L(z) at the samples of a loop. slow: L of slow signals. at_one: L(1), None where it is infinite (exact)."""
 
     def __init__(
@@ -174,30 +175,6 @@ class EnclosedLoop:
 
     def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
         return self._of_stable(lambda: margins.phase_margin(self._gain_crossings(over), *directions))
-
-    def gain_margin_up(self, over: Range | None = None) -> Answer:
-        """Return the least factor k > 1 such that k L is at the limit."""
-        return self._gain_margin(over, "up")
-
-    def gain_margin_down(self, over: Range | None = None) -> Answer:
-        """Return the least factor k > 1 such that L / k is at the limit."""
-        return self._gain_margin(over, "down")
-
-    def gain_margin(self, over: Range | None = None) -> Answer:
-        """Return the smaller of both."""
-        return self._gain_margin(over, "up", "down")
-
-    def phase_margin_lag(self, over: Range | None = None) -> Answer:
-        """Return the least phase lag (rad, in [0, 2 pi)) that brings L to -1."""
-        return self._phase_margin(over, "lag")
-
-    def phase_margin_lead(self, over: Range | None = None) -> Answer:
-        """Return the least phase lead (rad, in [0, 2 pi)) that brings L to -1."""
-        return self._phase_margin(over, "lead")
-
-    def phase_margin(self, over: Range | None = None) -> Answer:
-        """Return the smaller of both."""
-        return self._phase_margin(over, "lag", "lead")
 
     def delay_margin(self, over: Range | None = None) -> Answer:
         """Return the least dead time that makes the loop unstable; it belongs to no frequency."""
