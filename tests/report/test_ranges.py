@@ -115,7 +115,9 @@ def test_a_reason_has_the_width_of_a_sentence(whole: Review) -> None:
     )
     assert only(whole, grows).worded
     assert not only(whole, assumption()).worded
-    assert f'<td colspan="2">{GROWS}</td>' in html.render(resting(whole, grows))
+    text = html.render(resting(whole, grows))
+    assert f'<td colspan="2">{GROWS}</td>' in text
+    assert '<div class="scroll" tabindex="0" role="region" aria-labelledby="ranges">' in text
 
 
 def test_what_is_not_decided_is_an_open_point_and_a_caution(whole: Review) -> None:
