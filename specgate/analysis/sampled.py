@@ -86,10 +86,10 @@ def _in_time(one: SampledChannel, driven: Sequence[tuple[str, Input]]) -> TimeRe
     late = delayed(one.solution, driven)
     if not one.sampled:
         return respond([(one.continuous(source), given) for source, given in late])
-    found = drive(late)
-    if isinstance(found, Absent):
-        return found
-    response = PiecewiseResponse(pieces(one, found))
+    found = pieces(one, drive(late))
+    if found.undefined is not None:
+        return found.undefined
+    response = PiecewiseResponse(found)
     since = max(given.since for _, given in driven)
     return response if since == 0 else Counted(response, since)
 

@@ -11,7 +11,7 @@ from specgate.response.answers import Absent
 from specgate.response.modes import Expansion
 from specgate.response.pieces import Pieces
 from specgate.sampled.cycle import Cycle
-from specgate.sampled.drive import Drive, Setting
+from specgate.sampled.drive import Drive
 from specgate.sampled.shapes import Shapes
 from specgate.sampled.state_space import Row
 from specgate.sampled.states import States
@@ -124,16 +124,16 @@ class SampledCourse(Pieces):
         return self._starts[bits]
 
     def _set_in_motion(self, bits: int) -> tuple[list[arb_mat], arb_mat]:
-        cycle, sets = self._cycle, dict(self._drive.starts)
+        cycle = self._cycle
         found: list[arb_mat] = []
         with working_precision(bits):
             state = arb_mat(cycle.order, 1)
             ends = [*(start for start, _, _ in self._early), self._first * cycle.period][1:]
             moving = arb_mat(cycle.moving, 1)
             for (start, _, number), end in zip(self._early, ends, strict=True):
-                self._set(moving, sets.get(start))
+                self._set(moving, start)
                 if (start / cycle.period).q == 1:
-                    self._set(state, sets.get(start))
+                    self._set(state, start)
                     self._swings.sample(state, start)
                 self._swings.level(moving, start)
                 calm = moving - self._swings.moved(start, start, bits)
@@ -142,15 +142,23 @@ class SampledCourse(Pieces):
                 moving = motion * found[-1] + self._swings.moved(start, end, bits)
                 if (end / cycle.period).q == 1:
                     state = _stacked(moving, arb_mat(cycle.settled_samples) * state)
-            self._set(state, sets.get(self._first * cycle.period))
+            self._set(state, self._first * cycle.period)
         return found, state
 
-    def _set(self, state: arb_mat, setting: Setting | None) -> None:
-        """Set the states of the drive, the last of those that move."""
+    def _set(self, state: arb_mat, time: fmpq) -> None:
+        """Set the states of the drive, the last of those that move; by an impulse the others jump."""
         first = self._cycle.moving - self._drive.order
-        for place, value in enumerate(setting or ()):
+        for place, value in enumerate(dict(self._drive.starts).get(time, ())):
             if value is not None:
                 state[first + place, 0] = arb(value)
+        for place, jump in enumerate(self._kick(time)):
+            state[place, 0] = state[place, 0] + arb(jump)
+
+    def _kick(self, time: fmpq) -> Row:
+        """Return by how much the states that move jump by impulses: x' = A x + b a delta(t) leaves x at b a."""
+        motion, first = self._cycle.motion.a, self._cycle.moving - self._drive.order
+        kicks = [(first + place, area) for place, begin, area in self._drive.impulses if begin == time]
+        return [sum((motion[i, j] * area for j, area in kicks), fmpq(0)) for i in range(first)] if kicks else []
 
 
 def _stacked(above: arb_mat, below: arb_mat) -> arb_mat:

@@ -2,7 +2,8 @@
 
 Steps, ramps and parabolas on one input are one chain w, w', w'' that is known exactly at every time, so that a ramp
 that is held ends as exactly constant; a sine is a pair w, w' of its own. One minus a cosine has a state that says where
-it is fed in, and that is exactly zero before and after; what it is in between is said by `Swings`.
+it is fed in, and that is exactly zero before and after; what it is in between is said by `Swings`. An impulse has one
+that is always zero: by where it is fed in the other states jump.
 """
 
 from __future__ import annotations
@@ -13,7 +14,6 @@ from math import factorial
 
 from flint import fmpq, fmpq_mat, fmpq_poly
 
-from specgate.response.answers import Absent
 from specgate.response.inputs import Bump, Input, Term, terms
 from specgate.sampled.state_space import Row, diagonal
 from specgate.systems.polynomials import order_at_origin
@@ -28,7 +28,7 @@ class Drive:
     """w[source] = reads[source] r, r' = motion r, with r set at each of `starts` (time in s), the first of them at 0.
 
     rest: the values that the sources keep from the last start on; None where one keeps none. bumps: one minus a cosine
-    each, and the state that it has while it acts.
+    each, and the state that it has while it acts. impulses: state, time, area.
     """
 
     sources: tuple[str, ...]
@@ -37,6 +37,7 @@ class Drive:
     starts: tuple[tuple[fmpq, Setting], ...]
     rest: tuple[fmpq, ...] | None
     bumps: tuple[tuple[int, Bump], ...] = ()
+    impulses: tuple[tuple[int, fmpq, fmpq], ...] = ()
 
     @property
     def order(self) -> int:
@@ -61,6 +62,7 @@ class _Part:
     starts: tuple[tuple[fmpq, Row], ...]
     rest: fmpq | None
     bump: Bump | None = None
+    area: fmpq | None = None
 
 
 def step(source: str, size: fmpq) -> Drive:
@@ -68,8 +70,8 @@ def step(source: str, size: fmpq) -> Drive:
     return Drive((source,), fmpq_mat(1, 1), ([fmpq(1)],), ((fmpq(0), (size,)),), (size,))
 
 
-def drive(driven: Sequence[tuple[str, Input]]) -> Drive | Absent:
-    """Return inputs that act at once as one drive, or why they are not answered on a sampled loop."""
+def drive(driven: Sequence[tuple[str, Input]]) -> Drive:
+    """Return inputs that act at once as one drive. Raises ValueError for white noise."""
     powers: dict[str, list[tuple[fmpq, int, fmpq]]] = {}
     parts: list[_Part] = []
     for source, given in driven:
@@ -78,8 +80,10 @@ def drive(driven: Sequence[tuple[str, Input]]) -> Drive | Absent:
             if isinstance(term, Bump):
                 parts.append(_bump(source, term))
                 continue
-            if term.numerator.degree() > 0 and term.denominator.degree() == 0:
-                return Absent(f"{given.kind.replace('_', ' ')} is not answered on a sampled loop", proved=False)
+            if term.numerator.degree() > term.denominator.degree():
+                area = term.size * term.numerator[1]
+                parts.append(_Part(source, fmpq_mat(1, 1), ((term.begin, [fmpq(0)]),), fmpq(0), area=area))
+                continue
             order = order_at_origin(term.denominator)
             if order == term.denominator.degree():
                 lead = term.numerator[0] / term.denominator.leading_coefficient()
@@ -141,8 +145,10 @@ def _joined(sources: tuple[str, ...], parts: Sequence[_Part]) -> Drive:
             for source in sources
         )
     firsts = accumulate((int(part.motion.nrows()) for part in parts), initial=0)
-    bumps = tuple((first, part.bump) for first, part in zip(firsts, parts, strict=False) if part.bump is not None)
-    return Drive(sources, motion, tuple(reads), starts, rest, bumps)
+    placed = list(zip(firsts, parts, strict=False))
+    bumps = tuple((first, part.bump) for first, part in placed if part.bump is not None)
+    impulses = tuple((first, part.starts[0][0], part.area) for first, part in placed if part.area is not None)
+    return Drive(sources, motion, tuple(reads), starts, rest, bumps, impulses)
 
 
 def _setting(parts: Sequence[_Part], time: fmpq) -> Iterator[fmpq | None]:

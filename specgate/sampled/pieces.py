@@ -30,6 +30,18 @@ _BOUND_BITS = 256
 class SampledPieces(SampledCourse):
     """The same with all that is known of its pieces for good, for searches to be short and answers exact."""
 
+    @property
+    def undefined(self) -> Absent | None:
+        """Why there is no such response: an impulse that no block in s makes a jump of."""
+        first = self._cycle.moving - self._drive.order
+        seen = self._cycle.motion.c.tolist()
+        for place, _, _ in self._drive.impulses:
+            if any(row[first + place] != 0 for row in seen):
+                return Absent("an impulse reaches a sampler directly, and a sample of it means nothing")
+            if self._line[0][first + place] != 0:
+                return Absent("an impulse passes straight through to the signal")
+        return None
+
     # --- many pieces at once ----------------------------------------------------------------------------------
 
     def flat(self, index: int) -> bool:
@@ -93,7 +105,8 @@ class SampledPieces(SampledCourse):
         # one minus a cosine begins and ends at zero
         sets = [place for place, value in enumerate(setting) if value is not None and place not in swinging]
         read = self._line[0][self._cycle.moving - self._drive.order :]
-        moved = any(read[place] != 0 for place in sets) or any(factor != 0 for factor in arriving)
+        kicked = sum((c * z for c, z in zip(self._line[0], self._kick(begin), strict=False)), fmpq(0))
+        moved = kicked != 0 or any(read[place] != 0 for place in sets) or any(factor != 0 for factor in arriving)
         return None if moved else fmpq(0)
 
     def continuous_from(self) -> fmpq | None:
@@ -101,7 +114,8 @@ class SampledPieces(SampledCourse):
         if any(factor != 0 for factor in self._line[1]):
             return None
         read = self._line[0][self._cycle.moving - self._drive.order :]
-        return self._drive.starts[-1][0] if any(factor != 0 for factor in read) else fmpq(0)
+        jumps = any(factor != 0 for factor in read) or bool(self._drive.impulses)
+        return self._drive.starts[-1][0] if jumps else fmpq(0)
 
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return zero for a piece before anything has moved."""
@@ -115,6 +129,8 @@ class SampledPieces(SampledCourse):
         first = self._cycle.moving - self._drive.order
         for place, value in enumerate(self._drive.starts[0][1]):
             state[first + place] = fmpq(0) if value is None else value
+        for place, jump in enumerate(self._kick(fmpq(0))):
+            state[place] = jump
         return state
 
     def settled_by(self, distance: fmpq) -> fmpq | None:

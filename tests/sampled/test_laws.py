@@ -83,9 +83,9 @@ def test_responses_to_several_inputs_add_up() -> None:
         ("ask", Input("step", {"size": fmpq(2)})),
         ("load", Input("pulse", {"size": fmpq(1), "duration": fmpq(7, 10)}, fmpq(1, 3))),
     ]
-    whole = PiecewiseResponse(pieces(channel(solution, ["ask", "load"], form(place=1)), drive(both)))  # type: ignore[arg-type]
+    whole = PiecewiseResponse(pieces(channel(solution, ["ask", "load"], form(place=1)), drive(both)))
     parts = [
-        PiecewiseResponse(pieces(channel(solution, [source], form(place=1)), drive([(source, given)])))  # type: ignore[arg-type]
+        PiecewiseResponse(pieces(channel(solution, [source], form(place=1)), drive([(source, given)])))
         for source, given in both
     ]
     for time in (fmpq(1, 7), fmpq(1, 3), fmpq(4, 5), fmpq(31, 30), fmpq(9, 2)):
