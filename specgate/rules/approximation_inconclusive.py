@@ -29,8 +29,8 @@ def check(facts: Facts) -> Iterator[Finding]:
                     rule=NAME,
                     level=facts.restating(Standing.INCONCLUSIVE, assessment),
                     message=(
-                        f"{name}: {basis_words(audit)} does not decide {subject(criterion)}: {audit.reason}; "
-                        f"{promise_words(criterion)}; {instead_words(criterion)}"
+                        f"{name}: {basis_words(audit)} does not decide {subject(criterion)}: "
+                        f"{'; '.join(filter(None, (audit.reason, promise_words(criterion), instead_words(criterion))))}"
                     ),
                     place=audit.place,
                     requirement=name,
