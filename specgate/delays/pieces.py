@@ -38,6 +38,7 @@ class DelayedPieces(Pieces):
     def __init__(self, parts: Sequence[Part]) -> None:
         self.parts = tuple(parts)
         self._stretches: dict[int, Stretch] = {}
+        self._squares: dict[tuple[int, fmpq, fmpq], arb | None] = {}
 
     @property
     def origin(self) -> object:
@@ -99,7 +100,10 @@ class DelayedPieces(Pieces):
 
     def square(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
         """Return a ball of the integral of y^2 over a part of a piece."""
-        return self._stretch(index).square(left, right)
+        asked = index, left, right
+        if asked not in self._squares:
+            self._squares[asked] = self._stretch(index).square(left, right)
+        return self._squares[asked]
 
     def jump(self, index: int) -> fmpq | None:
         """Return by how much y jumps at kink `index`, exactly."""

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from flint import acb, arb, fmpq, fmpq_poly
+from flint import acb, acb_poly, arb, fmpq, fmpq_poly
 
 from specgate.response.modes import Expansion
 from specgate.terms.precision import working_precision
@@ -76,12 +76,12 @@ def _nearly_polynomial(rate: acb, factors: Sequence[acb], left: fmpq, right: fmp
     length = arb(right - left)
     shifted = _shifted(factors, arb(left))
     reach = (abs(rate) * length).upper()
-    total, power, term, bound = acb(0), 0, acb(1), arb(1)
+    terms, power, term, bound = [], 0, acb(1), arb(1)
     while bound > arb(2) ** -bits or power <= 2 * reach:
-        for j, c in enumerate(shifted):
-            total += c * term * length ** (j + power + 1) / (j + power + 1)
+        terms.append(term)
         power += 1
         term, bound = term * rate / power, bound * reach / power
+    total = (acb_poly(terms) * acb_poly(shifted)).integral()(length)
     size = sum((abs(c) * length ** (j + 1) for j, c in enumerate(shifted)), arb(0))
     spread = (2 * bound * size).upper()
     return (total + acb(arb(0, spread), arb(0, spread))) * (rate * arb(left)).exp()
