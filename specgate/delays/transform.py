@@ -11,6 +11,8 @@ from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_stability import is_stable
 from specgate.terms.records import record
 
+_S = fmpq_poly([0, 1])
+
 
 @record
 class Transform:
@@ -37,10 +39,13 @@ class Transform:
 
     @cached_property
     def stable(self) -> bool | None:
-        """Whether every pole of the channels decays, and every one of the inputs is at s = 0; None: not decided."""
+        """Whether every pole decays but those at s = 0, which leave a polynomial in time; None: not decided."""
         if self.below.right_shift(order_at_origin(self.below)).degree() > 0:
             return False
-        return is_stable(self.loop)
+        integrators = order_at_origin(self.loop.content)
+        if self.loop.first_at_origin()[0] > integrators:
+            return None
+        return is_stable(self.loop.over(_S**integrators))
 
     @cached_property
     def at_origin(self) -> tuple[fmpq, ...]:

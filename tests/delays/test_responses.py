@@ -193,6 +193,17 @@ def test_ramps_and_pulses_are_sums_of_delayed_steps() -> None:
         assert abs(slope - 2 * step.at(Fraction(20))) < mpmath.mpf(10) ** -3
 
 
+def test_a_pulse_through_an_integrator_settles() -> None:
+    channel = late([1, 2], [1, 1, 0], fmpq(5, 7))
+    found = response(channel, "pulse", size=3, duration=2)
+    assert found.final_value().exact == 12
+    step = response(channel)
+    assert step.final_value().absent is not None
+    rising = step.greatest().value.absent
+    assert rising is not None
+    assert rising.proved
+
+
 def test_what_runs_away_has_no_extreme_on_that_side() -> None:
     ramp = response(transfer(*LOOPS["wrong way first"]), "ramp", slope=fmpq(2))
     up, down = ramp.greatest().value, ramp.least().value
