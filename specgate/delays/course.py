@@ -63,7 +63,10 @@ class Course:
     @cached_property
     def modal(self) -> Modal | None:
         """The modal sum; None where there is none, or it was not found."""
-        return modal(self.transform, 6 * self.longest) if self.looped and self.retarded else None
+        if not (self.looped and self.retarded):
+            return None
+        inside = self.transform.denominator.delayed[-1][0]
+        return modal(self.transform, max(6 * inside, self.longest + 5 * inside))
 
     @cached_property
     def _scale(self) -> arb:
@@ -151,12 +154,19 @@ class Course:
         """The early terms, at a precision at which little enough is lost at their end."""
         bits = 2 * _BITS
         while True:
-            steps = Steps(self.transform.numerator, self.transform.denominator, self._kinks, bits)
+            steps = Steps(self.transform, self._kinks, bits)
             with working_precision(bits):
                 end = summed(steps.modes(len(self._kinks) - 1), arb(0))[0] if self._kinks else arb(0)
                 if end.rad() < self._scale * arb(2) ** -_BITS or bits > HIGHEST:
                     return steps
             bits *= 2
+
+    def _modes(self, number: int) -> tuple[Mode, ...]:
+        """Return the modes from an early kink on, without the oscillation of the input where that is gone for good."""
+        modes = self._steps.modes(number)
+        if self.transform.period is None or self.looped or number < len(self._kinks) - 1:
+            return modes
+        return modes[:-1]
 
     def stretch(self, index: int) -> Stretch:
         """Return piece `index`."""
@@ -170,12 +180,14 @@ class Course:
             return self._late[index - len(self.begins) + len(self._late)]
         if number < 0:
             return Stretch((), _BITS)
-        group = Group(_ZERO, _ONE, self._kinks[number], self._steps.modes(number))
+        group = Group(_ZERO, _ONE, self._kinks[number], self._modes(number))
         return Stretch((group,), self._steps.bits)
 
     @cached_property
     def jumps(self) -> dict[fmpq, fmpq]:
         """The limit of s c_T(s) for large s at each early kink: by how much y jumps there (see `steps`)."""
+        if self.transform.period is not None:
+            return {}
         numerator, denominator = self.transform.numerator, self.transform.denominator
         degree, lead = denominator.undelayed.degree(), denominator.undelayed.leading_coefficient()
         driven = {delay: p[degree - 1] for delay, p in numerator.terms}
@@ -190,7 +202,7 @@ class Course:
 
     @cached_property
     def _polynomials(self) -> tuple[fmpq_poly, ...]:
-        return polynomials(self.transform, self._kinks)
+        return polynomials(self.transform, self._kinks) if self.transform.period is None else ()
 
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return a piece as a rational polynomial in the time from its begin on; None: it is none, or not told."""
@@ -209,6 +221,7 @@ class Course:
         if self._number(index) != 0 or len(self._kinks) < 2:
             return None
         order = self.transform.denominator.undelayed.degree() - self.transform.numerator.terms[0][1].degree() - 1
+        order += 0 if self.transform.period is None else 2
         if order < 1:
             return None
         return monotone_start(self._steps.modes(0), order, self._kinks[1] - self._kinks[0], self._steps.bits)
@@ -241,5 +254,5 @@ class Course:
         if not self._kinks:
             return Fading((), None, _ZERO, _ZERO)
         last = self._kinks[-1]
-        modes = self._steps.modes(len(self._kinks) - 1)
+        modes = self._modes(len(self._kinks) - 1)
         return Fading(tuple(mode for mode in modes if not mode.pole.is_zero()), None, last, last)

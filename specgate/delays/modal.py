@@ -11,6 +11,7 @@ from specgate.delays.laurent import as_time_polynomial, of_quasi, principal, wit
 from specgate.delays.remainder import Remainder, remainder
 from specgate.delays.roots import Rightmost, certified_right
 from specgate.delays.steps import Mode
+from specgate.delays.swing import shaped
 from specgate.delays.transform import Transform
 from specgate.systems.quasi_count import Line, dominated_beyond, line
 from specgate.systems.roots import certified_roots
@@ -102,7 +103,7 @@ class Modal:
 
     def _mode(self, pole: acb, times: int) -> Mode:
         with series_terms(2 * times):
-            above = of_quasi(self.transform.numerator, pole)
+            above = shaped(of_quasi(self.transform.numerator, pole), pole, self.transform.period)
             below = without_root(of_quasi(self.transform.denominator, pole), times)
         with series_terms(times):
             parts = principal(above / below, times)
@@ -116,7 +117,7 @@ def modal(transform: Transform, since: fmpq) -> Modal | None:
             poles = poles_right_of(transform, left * nudge)
             if poles is None:
                 continue
-            rest = remainder(transform.numerator, transform.denominator, poles.line, since)
+            rest = remainder(transform, poles.line, since)
             if rest is not None:
                 return Modal(transform, poles, rest)
     return None

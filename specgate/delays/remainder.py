@@ -16,6 +16,9 @@ right of the line they cancel those of Y_K there, since Y has no pole at a root 
 are residues at roots of d0 left of the line, sums of a u^(l-1)/(l-1)! e^(p u) with u = t - T, each at most its value
 at the least u asked for, or at the summit of u^(l-1) e^(-(|Re p| - g) u), times e^(-g u).
 
+With one minus a cosine as input every term has a factor G more (see `swing`); N has that which makes it entire, so that
+nothing else is passed. It is left out of the integral, and bounded on the line as a whole.
+
 The integral is bounded cell by cell, with |D| from below by the cells that counted its roots; beyond their height W by
 |D| >= |d0| (1 - |R|), and from some height on by powers of w alone.
 """
@@ -28,6 +31,8 @@ from dataclasses import dataclass
 from flint import acb, acb_poly, arb, fmpq, fmpq_poly
 
 from specgate.delays.laurent import of_polynomial, principal, without_root
+from specgate.delays.swing import bound_on, shaped
+from specgate.delays.transform import Transform
 from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_count import Evaluated, Line
 from specgate.systems.roots import certified_roots
@@ -51,13 +56,13 @@ class Remainder:
         return (self.sizes[order] * (-time * self.rate).exp()).abs_upper()
 
 
-def remainder(numerator: Quasi, denominator: Quasi, line: Line, since: fmpq) -> Remainder | None:
-    """Return what is left of N/D beside its residues right of a line, from a time on; None where it was not bounded.
+def remainder(transform: Transform, line: Line, since: fmpq) -> Remainder | None:
+    """Return what is left of Y beside its residues right of a line, from a time on; None where it was not bounded.
 
     N is of lower degree than the undelayed term of D, the delayed ones too. since: the least t asked for.
     """
     with working_precision(_BITS):
-        bound = _Bound(numerator, denominator, line)
+        bound = _Bound(transform, line)
         if bound.last_delay >= since:
             return None
         sizes = bound.integrals()
@@ -70,8 +75,10 @@ def remainder(numerator: Quasi, denominator: Quasi, line: Line, since: fmpq) -> 
 
 
 class _Bound:
-    def __init__(self, numerator: Quasi, denominator: Quasi, line: Line) -> None:
+    def __init__(self, transform: Transform, line: Line) -> None:
+        numerator, denominator = transform.numerator, transform.denominator
         self.line = line
+        self.period = transform.period
         self.base = denominator.undelayed
         self.delayed = Quasi(denominator.delayed)
         self.numerator = numerator
@@ -107,7 +114,8 @@ class _Bound:
                 continue
             totals = [(total + size * (end - start)).upper() for total, size in zip(totals, sizes, strict=True)]
         beyond = self._beyond(far)
-        return [((total + rest) / arb.pi()).abs_upper() for total, rest in zip(totals, beyond, strict=True)]
+        factor = bound_on(self.line.real, self.period) / arb.pi()
+        return [((total + rest) * factor).abs_upper() for total, rest in zip(totals, beyond, strict=True)]
 
     def _over(self, start: fmpq, end: fmpq, least: arb | None) -> list[arb] | None:
         """Return upper bounds of |s^k Y_K| over a cell of heights; None where it has to be cut."""
@@ -183,7 +191,7 @@ class _Bound:
             divisor = without_root(of_polynomial(self.base, root), multiplicity) ** (power + 1)
             for delay, polynomial in part.terms:
                 driven = of_polynomial(polynomial * fmpq_poly([0, 1]) ** order, root)
-                parts = principal(driven / divisor, times)
+                parts = principal(shaped(driven, root, self.period) / divisor, times)
                 age = arb(since - delay)
                 shift = (-arb(self.line.real) * delay).exp()
                 for size in _decayed(parts, spare, age):

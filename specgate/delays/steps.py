@@ -9,6 +9,8 @@ finitely many of them count, and y(t) is the sum of their residues exactly. Abou
 recursion is one of Laurent series, each step adding m to the order of the pole. Between two kinks the terms with one p
 are put together: a polynomial in t times e^(p t).
 
+With one minus a cosine as input every c_T has a factor G more (see `swing`), and a simple pole at jw.
+
 How many digits cancel between roots near each other is seen in the balls; more bits give them back.
 """
 
@@ -20,6 +22,8 @@ from dataclasses import dataclass
 from flint import acb, acb_poly, acb_series, arb, fmpq
 
 from specgate.delays.laurent import as_time_polynomial, of_polynomial, principal, without_root
+from specgate.delays.swing import pole_of, shaped
+from specgate.delays.transform import Transform
 from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root, certified_roots
 from specgate.terms.precision import series_terms, working_precision
@@ -88,17 +92,20 @@ def kinks_of(numerator: Quasi, denominator: Quasi, until: fmpq, most: int) -> tu
 
 
 class Steps:
-    """The terms of N/D that begin at some times, at one working precision; all delays of N and D are >= 0.
+    """The terms of Y that begin at some times, at one working precision; all delays of N and D are >= 0.
 
     kinks: every time at which a term begins, from the first on, without a gap.
     """
 
-    def __init__(self, numerator: Quasi, denominator: Quasi, kinks: Sequence[fmpq], bits: int) -> None:
+    def __init__(self, transform: Transform, kinks: Sequence[fmpq], bits: int) -> None:
         self.kinks = tuple(kinks)
         self.bits = bits
-        self._numerator, self._denominator = numerator, denominator
+        self._numerator, self._denominator = transform.numerator, transform.denominator
+        self._period = transform.period
         with working_precision(bits):
             self._terms = [self._about(root.value, root.multiplicity) for root in self._roots()]
+            if self._period is not None:
+                self._terms.append(self._about_swing(self._period))
         self._pieces: list[tuple[Mode, ...]] = []
 
     def _roots(self) -> list[Root]:
@@ -109,14 +116,16 @@ class Steps:
         """Return a root of d0 with the polynomial in t - T of each term that begins at T."""
         levels = _levels(self.kinks, self._numerator, self._denominator)
         with series_terms(multiplicity * max(levels, default=1) + multiplicity):
-            local = _Local(self._numerator, self._denominator, root, multiplicity)
-            known: dict[fmpq, tuple[int, acb_series]] = {}
-            polynomials = []
-            for time in self.kinks:
-                level, series = known[time] = local.term(time, known)
-                parts = principal(series, level * multiplicity)
-                polynomials.append(acb_poly(as_time_polynomial(parts)))
-        return root, polynomials
+            local = _Local(self._numerator, self._denominator, root, multiplicity, self._period)
+            found = [principal(series, level * multiplicity) for level, series in local.terms(self.kinks)]
+        return root, [acb_poly(as_time_polynomial(parts)) for parts in found]
+
+    def _about_swing(self, period: fmpq) -> tuple[acb, list[acb_poly]]:
+        """Return the same for the pole of the input."""
+        pole, residue = pole_of(period)
+        with series_terms(1):
+            local = _Local(self._numerator, self._denominator, pole, 0, None)
+            return pole, [acb_poly([series[0] * residue]) for _, series in local.terms(self.kinks)]
 
     def modes(self, index: int) -> tuple[Mode, ...]:
         """Return y between kink `index` and the next as modes, x counted from the kink."""
@@ -137,15 +146,25 @@ class Steps:
 
 
 class _Local:
-    """The recursion of the terms as Laurent series about one root of d0; a term is x^(-m level) times a series."""
+    """The recursion of the terms as Laurent series about one root of d0; a term is x^(-m level) times a series.
 
-    def __init__(self, numerator: Quasi, denominator: Quasi, root: acb, multiplicity: int) -> None:
+    multiplicity: 0 for a point that is no root.
+    """
+
+    def __init__(self, numerator: Quasi, denominator: Quasi, root: acb, multiplicity: int, period: fmpq | None) -> None:
         self._m = multiplicity
         self._inverse = 1 / without_root(of_polynomial(denominator.undelayed, root), multiplicity)
         self._delayed = [(delay, of_polynomial(p, root)) for delay, p in denominator.delayed]
-        self._driven = {delay: of_polynomial(p, root) for delay, p in numerator.terms}
+        self._driven = {delay: shaped(of_polynomial(p, root), root, period) for delay, p in numerator.terms}
 
-    def term(self, time: fmpq, known: dict[fmpq, tuple[int, acb_series]]) -> tuple[int, acb_series]:
+    def terms(self, kinks: Sequence[fmpq]) -> Iterator[tuple[int, acb_series]]:
+        """Yield the terms that begin at some times; all before one of them are among them."""
+        known: dict[fmpq, tuple[int, acb_series]] = {}
+        for time in kinks:
+            known[time] = self._term(time, known)
+            yield known[time]
+
+    def _term(self, time: fmpq, known: dict[fmpq, tuple[int, acb_series]]) -> tuple[int, acb_series]:
         """Return c_T from the terms that begin before."""
         parts = [(0, self._driven[time])] if time in self._driven else []
         for delay, polynomial in self._delayed:

@@ -16,16 +16,18 @@ _S = fmpq_poly([0, 1])
 
 @record
 class Transform:
-    """Y = numerator / (loop * below).
+    """Y = numerator / (loop * below), with a period times the factor G (see `swing`).
 
     loop: the denominator of the channels. factors: of it, without common roots but s = 0 and each with simple roots
-    but there, with their multiplicities. below: what the inputs add to the denominator.
+    but there, with their multiplicities. below: what the inputs add to the denominator. period: of one minus a
+    cosine; the numerator has its end as well.
     """
 
     numerator: Quasi
     loop: Quasi
     factors: tuple[tuple[Quasi, int], ...]
     below: fmpq_poly
+    period: fmpq | None = None
 
     @cached_property
     def denominator(self) -> Quasi:
@@ -49,7 +51,10 @@ class Transform:
 
     @cached_property
     def at_origin(self) -> tuple[fmpq, ...]:
-        """The principal part of Y at s = 0: coefficients of s^-1, s^-2, … (exact, for e^0 is 1)."""
+        """The principal part of Y at s = 0: coefficients of s^-1, s^-2, … (exact, for e^0 is 1).
+
+        With a period that holds for no more than two.
+        """
         order = self.zero_times
         above = self.numerator.at_origin(order)
         below = self.denominator.at_origin(2 * order)[order:]
