@@ -21,6 +21,7 @@ from specgate.response.piecewise import PiecewiseResponse
 from specgate.response.questions import TimeResponse
 from specgate.sampled.channel import SampledChannel, channel, delayed, pieces
 from specgate.sampled.drive import drive
+from specgate.sampled.following import lasting_error
 from specgate.sampled.opened import opened
 from specgate.sampled.over_frequency import over_frequency
 from specgate.sampled.solution import SampledSolution, SlowTransfer
@@ -66,15 +67,17 @@ def _response(
         return ResponseAnalysis(response, unit, Missing(reason), improper=True)
     driven = tuple(zip((one.source for one in response.excitations), inputs, strict=True))
     only = slow[sources[0]]
+    error = _error(signals, response, solution, sources)
     subject = ResponseSubject(
         SlowTransfer(only) if len(sources) == 1 else SEVERAL,
         inputs[0].quantities["size"] if plain(inputs) else fmpq(1),
         _in_time(channel(solution, sources, form), driven),
-        _error(signals, response, solution, driven),
+        error if isinstance(error, Absent) else _in_time(error, driven),
         next((void(source, response.to) for source, one in single.items() if one.hides_instability), None),
         None,
         inputs,
         BEYOND,
+        None if isinstance(error, Absent) or len(inputs) > 1 or not error.sampled else lasting_error(error, inputs[0]),
     )
     return ResponseAnalysis(response, unit, subject)
 
@@ -95,18 +98,14 @@ def _in_time(one: SampledChannel, driven: Sequence[tuple[str, Input]]) -> TimeRe
 
 
 def _error(
-    signals: LoopSignals, response: Response, solution: SampledSolution, driven: Sequence[tuple[str, Input]]
-) -> TimeResponse | Absent:
-    sources = list(dict.fromkeys(source for source, _ in driven))
-    name = reference_of(response.reference, sources, response.to, signals)
+    signals: LoopSignals, response: Response, solution: SampledSolution, sources: Sequence[str]
+) -> SampledChannel | Absent:
+    name = reference_of(response.reference, list(sources), response.to, signals)
     if isinstance(name, Absent):
         return name
     reference = () if name == "0" else ((_ONE, SignalRef(name)),)
-    form = LinearForm((*reference, (-_ONE, SignalRef(response.to))))
-    one = channel(solution, sources, form)
-    if not all(one.slow(source).proper for source in sources):
-        return ERROR_JUMPS
-    return _in_time(one, driven)
+    one = channel(solution, sources, LinearForm((*reference, (-_ONE, SignalRef(response.to)))))
+    return one if all(one.slow(source).proper for source in sources) else ERROR_JUMPS
 
 
 def _break(declared: Break, solution: SampledSolution, unsupported: str | None) -> BreakAnalysis:

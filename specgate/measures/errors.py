@@ -17,7 +17,7 @@ def _signed_error(subject: ResponseSubject, _: Arguments) -> Answer:
         return missing(subject.void)
     if isinstance(subject.error, Absent):
         return missing(subject.error)
-    return subject.error.final_value()
+    return subject.error.final_value() if subject.lasting is None else Answer.of_exact(subject.lasting)
 
 
 def _error(subject: ResponseSubject, arguments: Arguments) -> Answer:

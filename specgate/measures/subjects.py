@@ -30,6 +30,7 @@ class ResponseSubject:
               mode hidden on the path from input to signal); None where there is no such reason.
     inputs:   what is driven, and how.
     beyond:   why formulas for step responses of rational transfer functions say nothing of this one; None: they may.
+    lasting:  what the error tends to (SI), where that is told although its course is not searched.
     """
 
     channel: TransferFunction | DelayedTransfer | SlowTransfer | Absent
@@ -40,6 +41,7 @@ class ResponseSubject:
     gain: Gain | None = None
     inputs: tuple[Input, ...] = ()
     beyond: str | None = None
+    lasting: fmpq | None = None
 
     @property
     def kind(self) -> str:
