@@ -86,7 +86,8 @@ class Context:
     def unknown(self, what: str, name: str, known: Iterable[str], place: Place, owner: str | None = None) -> None:
         """Report a name that nothing in the project (or nothing of its `owner`) has."""
         names = tuple(known)
-        own = (candidate for candidate in names if candidate.rpartition(".")[2] == name)
+        ending_in = "." + name
+        own = (candidate for candidate in names if candidate.endswith(ending_in) or candidate == name)
         close = next(own, None) or self.collector.nearest(name, names)
         if close is not None:
             ending = f": did you mean `{close}`?"

@@ -38,7 +38,12 @@ _WORDS = {"true": True, "True": True, "TRUE": True, "false": False, "False": Fal
 _NULLS = frozenset(("", "~", "null", "Null", "NULL"))
 _UNPRINTABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x84\x86-\x9f\ufffe\uffff]")
 
+_ENDS = (yaml.MappingEndEvent, yaml.SequenceEndEvent)
 _Loader: Any = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
+
+
+class _Enough(Exception):
+    """So much is wrong with the file that reading on would help nobody."""
 
 
 class _Refused(Exception):
@@ -57,7 +62,10 @@ class Allowance:
 
 
 def read(data: bytes, origin: Origin, allowance: Allowance, collector: Collector) -> Node:
-    """Read one file. What is wrong goes to the collector; a file that cannot be read gives a Broken node."""
+    """Read one file. What is wrong goes to the collector; a file that cannot be read gives a Broken node.
+
+    Reading ends where the collector is full.
+    """
     try:
         text = _decoded(data)
         with _garbage_left_alone():
@@ -66,6 +74,8 @@ def read(data: bytes, origin: Origin, allowance: Allowance, collector: Collector
         place = Place(origin.path, refused.line + 1, refused.column + 1, origin.via)
         collector.error("yaml-invalid", refused.message, place)
         return Broken(Spot(origin, refused.line + 1, refused.column + 1))
+    except _Enough:
+        return Broken(Spot(origin, 1, 1))
     return root
 
 
@@ -128,12 +138,17 @@ class _Tree:
         self.done: Node | None = None
 
     def root(self) -> Node:
-        """Return the only document of the file. Raises _Refused."""
+        """Return the only document of the file. Raises _Refused and _Enough."""
         for event in self._events():
-            if isinstance(event, yaml.NodeEvent):
-                self._node(event)
-            elif isinstance(event, yaml.CollectionEndEvent):
+            kind = type(event)
+            if kind is yaml.ScalarEvent:
+                self._counted(event)
+                self._scalar(event)
+            elif kind in _ENDS:
                 self._value(self.open.pop().node())
+            elif isinstance(event, yaml.NodeEvent):
+                self._counted(event)
+                self._collection(event)
             elif isinstance(event, yaml.DocumentStartEvent) and self.done is not None:
                 raise _refusal("a second document begins here: a file holds one, remove the `---`", event)
         if self.done is None:
@@ -163,18 +178,15 @@ class _Tree:
             line, column = opened
         return _Refused(f"this is not YAML: {hint}", line, column)
 
-    def _node(self, event: Any) -> None:
+    def _counted(self, event: Any) -> None:
+        """Take a node off the allowance. Raises _Refused where there is none left, and for aliases and tags."""
         self.allowance.nodes -= 1
         if self.allowance.nodes < 0:
             raise _refusal(f"the project has more than {MOST_NODES} values: split it", event)
-        if isinstance(event, yaml.AliasEvent):
+        if type(event) is yaml.AliasEvent:
             raise _refusal(f"the alias `*{event.anchor}` is refused: write the value out, or use a parameter", event)
         if event.tag is not None:
             raise _refusal(f"the tag `{event.tag[:60]}` is refused: tags have no meaning in this format", event)
-        if isinstance(event, yaml.ScalarEvent):
-            self._scalar(event)
-        else:
-            self._collection(event)
 
     def _collection(self, event: Any) -> None:
         if len(self.open) >= DEEPEST:
@@ -201,10 +213,15 @@ class _Tree:
         frame.key = key
         first = frame.entries.get(key.value)
         frame.skip = first is not None
-        if first is not None and not self.collector.full:
-            there = Related(first.key.spot.place, "first written here")
-            message = f"`{key.value}` is written twice, first in line {first.key.spot.line}: remove or rename one"
-            self.collector.error("id-duplicate", message, key.spot.place, there)
+        if first is not None:
+            self._twice(first.key, key)
+
+    def _twice(self, first: Text, second: Text) -> None:
+        there = Related(first.spot.place, "first written here")
+        message = f"`{first.value}` is written twice, first in line {first.spot.line}: remove or rename one"
+        self.collector.error("id-duplicate", message, second.spot.place, there)
+        if self.collector.full:
+            raise _Enough
 
     def _value(self, node: Node) -> None:
         """Put a finished node where it belongs."""
@@ -235,6 +252,8 @@ class _Tree:
                 exact_decimal(value)
             except DecimalError as error:
                 self.collector.error("yaml-invalid", str(error), spot.place)
+                if self.collector.full:
+                    raise _Enough from None
                 return Broken(spot)
         return Number(spot, value)
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import os
-import time
+from collections.abc import Callable
 from pathlib import Path
 
 import pytest
@@ -96,11 +96,13 @@ def test_a_pattern_is_not_tried_on_a_whole_disk(folder: Path, monkeypatch: pytes
         FolderSource(folder).glob("**/*.yaml")
 
 
-def test_a_hostile_pattern_is_quick(folder: Path) -> None:
+def test_a_hostile_pattern_is_little_work(folder: Path, work: Callable[[Callable[[], object]], int]) -> None:
     (folder / ("a" * 200)).write_text("")
-    before = time.process_time()
-    assert FolderSource(folder).glob("*a" * 100 + "b") == []
-    assert FolderSource(folder).glob("/".join(["**"] * 80 + ["x"])) == []
-    with pytest.raises(SourceError):
-        FolderSource(folder).glob("**/" * 200 + "*.yaml")
-    assert time.process_time() - before < 0.5
+
+    def look() -> None:
+        assert FolderSource(folder).glob("*a" * 100 + "b") == []
+        assert FolderSource(folder).glob("/".join(["**"] * 80 + ["x"])) == []
+        with pytest.raises(SourceError):
+            FolderSource(folder).glob("**/" * 200 + "*.yaml")
+
+    assert work(look) < 40_000

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import contextlib
-import time
+from collections.abc import Callable
 
 import pytest
 from flint import fmpq
@@ -14,6 +14,7 @@ from specgate.terms.dimensions import CURRENT, DIMENSIONLESS, LENGTH, MASS, RATE
 from specgate.terms.units import PI, PRECISE_PI, UnitError, UnitTable, frequency_problem
 
 UNITS = UnitTable.standard()
+Work = Callable[[Callable[[], object]], int]
 _symbols = st.sampled_from(sorted(symbol for symbol, unit in UNITS.units.items() if unit.kind != "decibel"))
 
 
@@ -122,11 +123,12 @@ def test_what_is_no_unit_says_why(text: str, message: str) -> None:
 
 
 @given(st.text(max_size=80))
-def test_any_text_is_a_unit_or_an_error_and_quickly(text: str) -> None:
-    before = time.process_time()
-    with contextlib.suppress(UnitError):
-        assert UNITS.parse(text).symbol == text.strip()
-    assert time.process_time() - before < 0.5
+def test_any_text_is_a_unit_or_an_error_after_little_work(work: Work, text: str) -> None:
+    def read() -> None:
+        with contextlib.suppress(UnitError):
+            assert UNITS.parse(text).symbol == text.strip()
+
+    assert work(read) < 20_000
 
 
 class TestOwnUnits:
