@@ -1,0 +1,88 @@
+"""The specification as it stands in the files: typed, frozen, every number still an expression.
+
+Nothing here is evaluated: `specgate.project.instantiate` gives the loops for given values.
+Mappings keep the order of the files. Absent optional parts are None or empty.
+"""
+
+from __future__ import annotations
+
+from specgate.project.types.criteria import Band, Basis, Claim, Corner, Criterion, Limit, MaskDefinition, Subject
+from specgate.project.types.loops import (
+    Break,
+    Call,
+    Excitation,
+    Loop,
+    LoopInput,
+    Response,
+    Scaled,
+    Signal,
+    SignalExpression,
+    SignalName,
+    Sum,
+)
+from specgate.project.types.models import (
+    FactoredModel,
+    Matrix,
+    MatrixModel,
+    Model,
+    Pair,
+    PidModel,
+    PoleZeroModel,
+    Polynomial,
+    PolynomialModel,
+    Root,
+    SampledModel,
+    StateSpaceModel,
+)
+from specgate.project.types.requirements import Link, Method, NotApplicable, Requirement
+from specgate.project.types.subsystems import Port, Subsystem
+from specgate.project.types.values import Parameter, Tolerance, Value
+from specgate.project.types.whole import GatePolicy, InputFile, Kept, Project, ProjectInfo
+
+__all__ = [
+    "Band",
+    "Basis",
+    "Break",
+    "Call",
+    "Claim",
+    "Corner",
+    "Criterion",
+    "Excitation",
+    "FactoredModel",
+    "GatePolicy",
+    "InputFile",
+    "Kept",
+    "Limit",
+    "Link",
+    "Loop",
+    "LoopInput",
+    "MaskDefinition",
+    "Matrix",
+    "MatrixModel",
+    "Method",
+    "Model",
+    "NotApplicable",
+    "Pair",
+    "Parameter",
+    "PidModel",
+    "PoleZeroModel",
+    "Polynomial",
+    "PolynomialModel",
+    "Port",
+    "Project",
+    "ProjectInfo",
+    "Requirement",
+    "Response",
+    "Root",
+    "SampledModel",
+    "Scaled",
+    "Signal",
+    "SignalExpression",
+    "SignalName",
+    "StateSpaceModel",
+    "Subject",
+    "Subsystem",
+    "Sum",
+    "Tolerance",
+    "Value",
+]
