@@ -11,10 +11,11 @@ from collections.abc import Callable
 
 from flint import arb, fmpq
 
-from specgate.approximations.approximation import Accuracy, Approximation, Variant
+from specgate.approximations.approximation import Accuracy, Variant
 from specgate.approximations.conditions import ALONE, damping_between
 from specgate.approximations.features import Features
 from specgate.approximations.figures import combined
+from specgate.approximations.variants import offered
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
 
@@ -68,16 +69,11 @@ VARIANTS = (
     ),
 )
 
-ROW = Approximation(
+ROW = offered(
+    VARIANTS,
     name="bandwidth_from_pair",
     title="Bandwidth of a pair from its natural frequency and damping ratio",
     estimates=("bandwidth",),
-    formula="",
-    source="",
-    conditions=(),
-    evaluate=VARIANTS[0].evaluate,
-    accuracy=VARIANTS[0].accuracy,
     text=__doc__,
     premises=("dominant_pair",),
-    variants=VARIANTS,
-).taken_as("half_power")
+)

@@ -9,10 +9,11 @@ from __future__ import annotations
 
 from flint import fmpq
 
-from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found, Variant
+from specgate.approximations.approximation import Accuracy, Condition, Found, Variant
 from specgate.approximations.conditions import ALONE, at_most, damping_between, words
 from specgate.approximations.features import Features
 from specgate.approximations.figures import SHOWN, combined
+from specgate.approximations.variants import offered
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
 from specgate.terms.verdicts import Trilean
@@ -76,16 +77,11 @@ VARIANTS = (
     ),
 )
 
-ROW = Approximation(
+ROW = offered(
+    VARIANTS,
     name="resonance_from_damping",
     title="Resonance peak from the damping ratio of a pair",
     estimates=("resonance_peak",),
-    formula="",
-    source="",
-    conditions=(),
-    evaluate=VARIANTS[0].evaluate,
-    accuracy=VARIANTS[0].accuracy,
     text=__doc__,
     premises=("dominant_pair",),
-    variants=VARIANTS,
-).taken_as("exact")
+)

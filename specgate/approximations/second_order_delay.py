@@ -11,10 +11,11 @@ from collections.abc import Callable
 
 from flint import fmpq
 
-from specgate.approximations.approximation import Accuracy, Approximation, Variant
+from specgate.approximations.approximation import Accuracy, Variant
 from specgate.approximations.conditions import ALONE
 from specgate.approximations.features import Features
 from specgate.approximations.fits import Polynomial, over_frequency
+from specgate.approximations.variants import offered
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
 
@@ -53,16 +54,11 @@ VARIANTS = (
     ),
 )
 
-ROW = Approximation(
+ROW = offered(
+    VARIANTS,
     name="second_order_delay",
     title="Delay time of a pair",
     estimates=("delay_time",),
-    formula="",
-    source="",
-    conditions=(),
-    evaluate=VARIANTS[0].evaluate,
-    accuracy=VARIANTS[0].accuracy,
     text=__doc__,
     premises=("dominant_pair",),
-    variants=VARIANTS,
-).taken_as("quadratic")
+)

@@ -23,11 +23,12 @@ from collections.abc import Callable
 
 from flint import fmpq
 
-from specgate.approximations.approximation import Accuracy, Approximation, Variant
+from specgate.approximations.approximation import Accuracy, Variant
 from specgate.approximations.conditions import counted_between, damping_between
 from specgate.approximations.crowding import Ranges, in_distances
 from specgate.approximations.features import Features
 from specgate.approximations.fits import Polynomial, over_frequency
+from specgate.approximations.variants import offered
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
 
@@ -115,17 +116,12 @@ VARIANTS = (
     ),
 )
 
-ROW = Approximation(
+ROW = offered(
+    VARIANTS,
     name="second_order_rise",
     title="Rise time of the dominant pair",
     estimates=("rise_time",),
-    formula="",
-    source="",
-    conditions=(),
-    evaluate=VARIANTS[0].evaluate,
-    accuracy=VARIANTS[0].accuracy,
     text=__doc__,
     premises=("dominant_pair",),
     alternatives=("dominant_pair",),
-    variants=VARIANTS,
-).taken_as("cubic")
+)
