@@ -8,6 +8,9 @@ from functools import cached_property
 from flint import fmpq
 
 from specgate.approximations.features import Features
+from specgate.approximations.opened import OpenedLoop
+from specgate.approximations.viewed import Viewed
+from specgate.approximations.whole import WholeLoop
 from specgate.measures.measure import Arguments, Measure
 from specgate.measures.subjects import BreakSubject, LoopSubject, ResponseSubject
 from specgate.project import types as project_types
@@ -18,6 +21,7 @@ from specgate.sampled.opened import SampledOpening
 from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedChannel, DelayedOpenLoop, DelayedSolution
 from specgate.systems.solution import Channel, LoopSolution, OpenLoop
+from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Proof
@@ -62,9 +66,10 @@ class ResponseAnalysis:
 
     @cached_property
     def features(self) -> Features | None:
-        """What approximations look at; None where there is no response to look at, or none of the kind they are for."""
+        """What approximations look at; None where there is no response to look at, or no single rational channel."""
         subject = self.subject
-        return None if isinstance(subject, Missing) or subject.beyond is not None else Features(subject)
+        rational = isinstance(subject, ResponseSubject) and isinstance(subject.channel, TransferFunction)
+        return Features(subject) if isinstance(subject, ResponseSubject) and rational else None
 
 
 @record
@@ -91,6 +96,26 @@ class LoopAnalysis:
     subject: LoopSubject | Missing
     responses: Mapping[str, ResponseAnalysis]
     breaks: Mapping[str, BreakAnalysis]
+
+    @cached_property
+    def opened(self) -> Mapping[str, OpenedLoop]:
+        """What approximations look at in the loop opened at each break that has an L."""
+        subjects = {name: one.subject for name, one in self.breaks.items()}
+        return {name: OpenedLoop(name, one) for name, one in subjects.items() if isinstance(one, BreakSubject)}
+
+    @cached_property
+    def whole(self) -> WholeLoop | None:
+        """What approximations look at in the loop itself; None where there is none to look at."""
+        return None if isinstance(self.subject, Missing) else WholeLoop(self.subject, self.opened)
+
+    def viewed(self, about: project_types.Subject) -> Viewed | None:
+        """Return what approximations look at in the subject of a criterion; None where it is missing."""
+        if about.kind == "loop" or about.name is None:
+            return self.whole
+        if about.kind == "break":
+            return self.opened.get(about.name)
+        found = self.responses[about.name].features
+        return None if found is None else found.beside(lambda: self.opened)
 
 
 @record

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import replace
-from typing import Literal
+from typing import Any, Literal
 
 from flint import arb, fmpq
 
@@ -37,7 +37,7 @@ class Condition:
     name: str
     source: str
     required: str
-    find: Callable[[Features, Arguments, fmpq | None], Found]
+    find: Callable[[Any, Arguments, fmpq | None], Found]
     threshold: fmpq | None = None
     tighter: Literal["larger", "smaller"] = "larger"
     concerns: tuple[str, ...] = ()
@@ -87,14 +87,16 @@ class Variant:
     formula: str
     source: str
     conditions: tuple[Condition, ...]
-    evaluate: Callable[[Features, Arguments], Answer]
-    accuracy: Callable[[Features, Arguments], Accuracy | None]
+    evaluate: Callable[[Any, Arguments], Answer]
+    accuracy: Callable[[Any, Arguments], Accuracy | None]
 
 
 @record
 class Approximation:
     """One row: formula, range, stated accuracy, source.
 
+    Its functions take what the measure is read from, as approximations look at it (see `viewed`): a response, a loop
+    opened at a break, or a whole loop.
     estimates: names of the measures it estimates; `Arguments.measure` says which one is asked for (the first, if
     it is not set). evaluate: formula on this response, in the unit in which the measure is read (SI, ratios plain);
     absent where the features it needs do not exist.
@@ -104,6 +106,7 @@ class Approximation:
     variants: where there are several formulas, all of them, the one that is offered first; `variant` names
     the one whose formula the row carries (see `taken_as`).
     reduce: set where the approximation drops a part of the response, so that others can follow it in a chain.
+    inputs: kinds of input besides a single step for whose responses it is derived.
     """
 
     name: str
@@ -112,8 +115,8 @@ class Approximation:
     formula: str
     source: str
     conditions: tuple[Condition, ...]
-    evaluate: Callable[[Features, Arguments], Answer]
-    accuracy: Callable[[Features, Arguments], Accuracy | None]
+    evaluate: Callable[[Any, Arguments], Answer]
+    accuracy: Callable[[Any, Arguments], Accuracy | None]
     text: str
     premises: tuple[str, ...] = ()
     alternatives: tuple[str, ...] = ()
@@ -122,6 +125,7 @@ class Approximation:
     variants: tuple[Variant, ...] = ()
     variant: str | None = None
     reduce: Reduction | None = None
+    inputs: tuple[str, ...] = ()
 
     def taken_as(self, variant: str) -> Approximation:
         """Return the row with the formula of one of its variants. Raises KeyError for a name that none has."""

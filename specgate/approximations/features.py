@@ -11,7 +11,9 @@ from typing import TypeVar, cast
 from flint import fmpq, fmpq_poly
 
 from specgate.approximations.figures import quotient, root
+from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.spots import Spot, spots
+from specgate.approximations.unity import unity_around
 from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.answers import Absent, Answer
@@ -28,12 +30,12 @@ _PICKED_AT = 256
 class Features:
     """Poles, zeros and what follows from them, of the reduced channel of a response; each is computed once.
 
-    Only of a response with a rational channel that is driven by a single step: `ResponseSubject.beyond` is None.
-    Figures are answers: exact where they are rational, refinable balls else (coherent SI).
-    open_loops: L at each break that the loop of the response declares, where it is rational (see `beside`).
+    Only of a response with a rational channel; most rows are derived for a single step (`ResponseSubject.beyond` is
+    None). Figures are answers: exact where they are rational, refinable balls else (coherent SI).
+    breaks: the loop of the response opened at each break that it declares (see `beside`).
     """
 
-    open_loops: Mapping[str, TransferFunction] = MappingProxyType({})
+    breaks: Mapping[str, OpenedLoop] = MappingProxyType({})
 
     def __init__(self, subject: ResponseSubject) -> None:
         self.subject = subject
@@ -46,12 +48,17 @@ class Features:
             self._kept[find] = find(self)
         return cast("Found", self._kept[find])
 
-    def beside(self, open_loops: Callable[[], Mapping[str, TransferFunction]]) -> Features:
+    def beside(self, breaks: Callable[[], Mapping[str, OpenedLoop]]) -> Features:
         """Return the features with the opened loop around them: the same each time, since a response has one loop."""
         if self._in_loop is None:
             self._in_loop = Features(self.subject)
-            self._in_loop.open_loops = open_loops()
+            self._in_loop.breaks = breaks()
         return self._in_loop
+
+    @property
+    def around(self) -> OpenedLoop | None:
+        """The first declared break around which the response is that of unity negative feedback, exactly."""
+        return self.once(_unity)
 
     def of(self, numerator: fmpq_poly, denominator: fmpq_poly) -> Features:
         """Return the features of another channel in place of this one: what is left when something is dropped."""
@@ -138,6 +145,10 @@ class Features:
         """Value of the channel at s = 0, None where a pole lies there."""
         channel = self.channel
         return None if channel.denominator[0] == 0 else channel.numerator[0] / channel.denominator[0]
+
+
+def _unity(features: Features) -> OpenedLoop | None:
+    return unity_around(features.subject, features.breaks)
 
 
 def _least(items: Sequence[Spot], figures: Sequence[Answer]) -> list[Spot]:

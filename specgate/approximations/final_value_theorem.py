@@ -3,7 +3,8 @@
 For a step this is the size of the step times the channel's value at s = 0. The limit of the transform is that of the
 response only if all poles of s*Y(s) lie strictly left of the imaginary axis. Where one does not, the limit theorem
 still gives a finite number for a response that runs away or rings for ever, and the number means nothing. For a
-response with an integrator the limit itself is infinite.
+response with an integrator the limit itself is infinite. What is left of the error of a ramp or a parabola is read the
+same way, from the error in place of the response.
 
 Inside its condition it is exact.
 """
@@ -65,4 +66,5 @@ ROW = Approximation(
     evaluate=_limit,
     accuracy=lambda _, __: Accuracy(fmpq(0), fmpq(0), "exact"),
     text=__doc__,
+    inputs=("ramp", "parabola"),
 )

@@ -1,68 +1,78 @@
-"""Steady-state error of unity feedback from the position constant of the opened loop: size/|1 + Kp| for a step.
+"""Steady-state error of unity feedback from the error constants of the opened loop.
 
-Kp is L at s = 0 at a break that the loop declares; with an integrator in L it is infinite and the error zero. Exact
-where the response is that of unity negative feedback around this break, with the error taken where the reference
-comes in: error/reference = 1/(1 + L), whatever blocks L is made of. A demand that is filtered on its way, a sensor with
-a gain, or a disturbance that enters elsewhere is another loop: an integrator in the plant does not cancel a load step
-that enters before it, although L has the type that "no error" is read from.
+For a step of the reference it is size/|1 + Kp|, for a ramp slope/|Kv|, for a parabola curvature/|Ka|, with Kp, Kv and
+Ka the limits of L, s L and s^2 L at s = 0 at a break that the loop declares. An integrator in L makes Kp infinite and
+the error of a step zero, two do so for a ramp, three for a parabola; with one too few the constant is zero and the
+error grows without bound. Exact where the response is that of unity negative feedback around this break, with the
+error taken where the reference comes in: error/reference = 1/(1 + L), whatever blocks L is made of. A demand that is
+filtered on its way, a sensor with a gain, or a disturbance that enters elsewhere is another loop: an integrator in the
+plant does not cancel a load step that enters before it, although L has the type that "no error" is read from.
 """
 
 from __future__ import annotations
+
+from collections.abc import Callable, Mapping
 
 from flint import fmpq
 
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
 from specgate.approximations.conditions import SETTLES, words
 from specgate.approximations.features import Features
+from specgate.approximations.opened import OpenedLoop
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
-from specgate.response.step import StepResponse
-from specgate.systems.error_constants import loop_type, position_constant
+from specgate.systems.error_constants import acceleration_constant, loop_type, position_constant, velocity_constant
 from specgate.systems.transfer import TransferFunction
 
 _SOURCE = "K. Ogata, Modern Control Engineering, chapter 5; N. S. Nise, Control Systems Engineering, chapter 7"
 _NO_BREAK = "no break is declared in this loop"
 
+_BY_INPUT: Mapping[str, tuple[int, str, Callable[[TransferFunction], fmpq | None]]] = {
+    "step": (0, "size", lambda opened: _plus_one(position_constant(opened))),
+    "ramp": (1, "slope", velocity_constant),
+    "parabola": (2, "curvature", acceleration_constant),
+}
+"""Integrators that leave an error, what describes the input, and what that is divided by (None: infinite)."""
 
-def _around(features: Features) -> str | None:
-    """Return the first declared break around which the response is one of unity feedback."""
-    return next((name for name, opened in features.open_loops.items() if _unity(features, opened)), None)
+
+def _plus_one(constant: fmpq | None) -> fmpq | None:
+    return None if constant is None else 1 + constant
 
 
-def _unity(features: Features, opened: TransferFunction) -> bool:
-    """Whether error over reference is 1/(1 + L), exactly."""
-    error = features.subject.error
-    if not isinstance(error, StepResponse):
-        return False
-    closed = opened.denominator + opened.numerator
-    return bool(error.numerator * closed == error.denominator * opened.denominator)
+def _looked_at(features: Features) -> OpenedLoop | None:
+    """Return the break around which the response is one of unity feedback, else the first one that has an L."""
+    rational = (one for one in features.breaks.values() if one.transfer is not None)
+    return features.around or next(rational, None)
 
 
 def _error(features: Features, _: Arguments) -> Answer:
-    name = features.once(_around) or next(iter(features.open_loops), None)
-    if name is None:
+    opened, subject = _looked_at(features), features.subject
+    if opened is None or opened.transfer is None:
         return Answer.nothing(f"{_NO_BREAK}: declare the point at which it is opened")
-    opened = features.open_loops[name]
-    if loop_type(opened) > 0:
+    if subject.kind not in _BY_INPUT:
+        return Answer.nothing("error constants are for steps, ramps and parabolas")
+    integrators, quantity, divisor_of = _BY_INPUT[subject.kind]
+    if loop_type(opened.transfer) > integrators:
         return Answer.of_exact(0)
-    constant = position_constant(opened)
-    if constant is None or constant == -1:
-        return Answer.nothing("1 + Kp is zero")
-    return Answer.of_exact(abs(features.subject.size / (1 + constant)))
+    divisor = divisor_of(opened.transfer)
+    if not divisor:
+        return Answer.nothing("1 + Kp is zero" if integrators == 0 else "L has too few integrators: the error grows")
+    driven = subject.size if subject.kind == "step" else subject.inputs[0].quantities[quantity]
+    return Answer.of_exact(abs(driven / divisor))
 
 
 def _found(features: Features, _: Arguments, __: fmpq | None) -> Found:
-    if not features.open_loops:
+    if not any(one.transfer for one in features.breaks.values()):
         return words(_NO_BREAK, False)
-    name = features.once(_around)
-    return words("around none of its breaks" if name is None else f"around `{name}`", name is not None)
+    around = features.around
+    return words("around none of its breaks" if around is None else f"around `{around.name}`", around is not None)
 
 
 ROW = Approximation(
     name="static_error_constants",
-    title="Steady-state error from the position constant",
+    title="Steady-state error from error constants",
     estimates=("steady_state_error",),
-    formula="size/|1 + Kp| for a step",
+    formula="size/|1 + Kp| for a step, slope/|Kv| for a ramp, curvature/|Ka| for a parabola",
     source=_SOURCE,
     conditions=(
         SETTLES,
@@ -78,4 +88,5 @@ ROW = Approximation(
     accuracy=lambda _, __: Accuracy(fmpq(0), fmpq(0), "exact"),
     text=__doc__,
     alternatives=("final_value_theorem",),
+    inputs=("ramp", "parabola"),
 )

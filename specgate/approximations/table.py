@@ -6,11 +6,13 @@ from collections.abc import Iterator, Mapping, Sequence
 
 from specgate.approximations import (
     bandwidth_from_pair,
+    delay_margin_from_phase_margin,
     distant_zero,
     dominant_pair,
     final_value_theorem,
     first_order_rise,
     first_order_settling,
+    margins_from_sensitivity,
     near_cancellation,
     real_poles_settling,
     resonance_from_damping,
@@ -47,6 +49,8 @@ _ROWS = (
     right_half_plane_undershoot,
     bandwidth_from_pair,
     resonance_from_damping,
+    margins_from_sensitivity,
+    delay_margin_from_phase_margin,
 )
 
 APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for module in _ROWS}
@@ -56,8 +60,6 @@ LATER: Mapping[str, str] = {
     "damping_from_phase_margin": "damping ratio as phase margin over 100 deg",
     "overshoot_from_phase_margin": "overshoot by way of the damping ratio from the phase margin",
     "rise_from_bandwidth": "rise time as 2.2 over bandwidth",
-    "margins_from_sensitivity": "least margins that a sensitivity peak leaves",
-    "delay_margin_from_phase_margin": "delay margin as phase margin over crossover frequency",
     "pade_dead_time": "dead time as a rational function",
     "half_rule": "a high-order model as one of low order with dead time",
     "hold_as_delay": "a hold as a dead time of half the period",

@@ -2,19 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-
 from flint import fmpq
 
-from specgate.analysis.analyses import LoopAnalysis, Missing, Study
+from specgate.analysis.analyses import Missing, Study
 from specgate.analysis.arguments import arguments, number
-from specgate.approximations.features import Features
+from specgate.approximations.viewed import Viewed
 from specgate.compliance.compare import Limits, Sign
 from specgate.measures.measure import Arguments, Measure, Reader
-from specgate.measures.subjects import BreakSubject, Subject
+from specgate.measures.subjects import Subject
 from specgate.project.types import Criterion, Limit
 from specgate.response.answers import Answer
-from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
 from specgate.terms.unit import ONE, Unit
 
@@ -46,24 +43,10 @@ class Asked:
         return self.measure.at_limit(self.subject, self.arguments, limit)
 
     @property
-    def features(self) -> Features | None:
-        """What approximations look at; None for what is no response, or one that is missing."""
+    def viewed(self) -> Viewed | None:
+        """What approximations look at; None of what is missing."""
         about = self.criterion.subject
-        if about.kind != "response" or about.name is None:
-            return None
-        loop = self.study.loops[about.loop]
-        found = loop.responses[about.name].features
-        return None if found is None else found.beside(lambda: _open_loops(loop))
-
-
-def _open_loops(loop: LoopAnalysis) -> Mapping[str, TransferFunction]:
-    """Return L at each declared break, where it is rational."""
-    subjects = {name: opened.subject for name, opened in loop.breaks.items()}
-    return {
-        name: subject.open_loop
-        for name, subject in subjects.items()
-        if isinstance(subject, BreakSubject) and isinstance(subject.open_loop, TransferFunction)
-    }
+        return self.study.loops[about.loop].viewed(about)
 
 
 def ask(study: Study, criterion: Criterion, measure: Measure) -> Asked:

@@ -13,9 +13,9 @@ from flint import arb, fmpq
 
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
 from specgate.approximations.conditions import OF_STEP
-from specgate.approximations.features import Features
 from specgate.approximations.figures import negative, smallest
 from specgate.approximations.table import APPROXIMATIONS, conditions
+from specgate.approximations.viewed import Viewed
 from specgate.compliance.assessment import Audit, AuditedCondition, Instead, Side, Slip
 from specgate.compliance.chains import Link, Linked, linked
 from specgate.compliance.claims import claim_range, claim_unit
@@ -41,12 +41,12 @@ _NO_BOUND = "the stated accuracy sets no bound on this side"
 class Matter:
     """What a basis is audited against.
 
-    features, again: of the response, with the fixed decimal for pi and with more digits (the same object where pi has
+    viewed, again: what is looked at, with the fixed decimal for pi and with more digits (the same object where pi has
     no part in it). reading: the proved value of the criterion's measure. unit: of the result.
     """
 
-    features: Features
-    again: Features
+    viewed: Viewed
+    again: Viewed
     arguments: Arguments
     reading: Reading
     limits: Limits
@@ -77,7 +77,7 @@ def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
     unknown = next((name for name in basis.chain if name not in APPROXIMATIONS), None)
     if unknown is not None:
         return replace(started, reason=f"{unknown} is in the catalogue and not audited by this version")
-    chained = linked(basis, matter.features, matter.again, matter.arguments)
+    chained = linked(basis, matter.viewed, matter.again, matter.arguments)
     audited = replace(
         started,
         variant=chained.row.variant,
@@ -139,8 +139,8 @@ def _audited(link: Link, arguments: Arguments, policy: Policy) -> Iterator[Audit
 
 
 def _found(condition: Condition, link: Link, arguments: Arguments, threshold: fmpq | None) -> Found:
-    found = condition.find(link.features, arguments, threshold)
-    if link.again is link.features:
+    found = condition.find(link.viewed, arguments, threshold)
+    if link.again is link.viewed:
         return found
     again = condition.find(link.again, arguments, threshold)
     return found if again.holds is found.holds else Found(PI_DECIDES, Trilean.UNKNOWN)
@@ -275,9 +275,9 @@ def _applicable(audited: Audit, matter: Matter, policy: Policy) -> Iterator[tupl
     for row in _others(audited):
         if matter.arguments.measure not in row.estimates:
             continue
-        link = Link(row, matter.features, matter.again)
+        link = Link(row, matter.viewed, matter.again)
         if all(one.found.holds is Trilean.YES for one in _audited(link, matter.arguments, policy)):
-            value = row.evaluate(matter.features, matter.arguments)
+            value = row.evaluate(matter.viewed, matter.arguments)
             if value.absent is None:
                 yield row, value
 

@@ -14,6 +14,7 @@ from specgate.approximations.approximation import Accuracy, Approximation
 from specgate.approximations.crowding import outward, signed_percent
 from specgate.approximations.features import Features
 from specgate.approximations.table import chain, entry
+from specgate.approximations.viewed import Viewed
 from specgate.measures.measure import Arguments
 from specgate.project.types import Basis
 from specgate.response.answers import Absent, Answer
@@ -23,14 +24,14 @@ from specgate.terms.verdicts import Proof
 
 @record
 class Link:
-    """An approximation and the response that it is read from.
+    """An approximation and what it is read from.
 
-    features, again: with the fixed decimal for pi and with more digits (the same object where pi has no part in it).
+    viewed, again: with the fixed decimal for pi and with more digits (the same object where pi has no part in it).
     """
 
     row: Approximation
-    features: Features
-    again: Features
+    viewed: Viewed
+    again: Viewed
 
 
 @record
@@ -45,16 +46,16 @@ class Linked:
         """Return the value of the last formula, on what the links before it have left."""
         if self.nothing is not None:
             return Answer(Proof.EXACT if self.nothing.proved else Proof.ESTIMATED, absent=self.nothing)
-        return self.row.evaluate(self.links[-1].features, arguments)
+        return self.row.evaluate(self.links[-1].viewed, arguments)
 
     def accuracy(self, arguments: Arguments) -> Accuracy | None:
         """Return the stated accuracy of all links together; None where one of them states none."""
         if self.nothing is not None:
             return None
-        return together([link.row.accuracy(link.features, arguments) for link in self.links])
+        return together([link.row.accuracy(link.viewed, arguments) for link in self.links])
 
 
-def linked(basis: Basis, features: Features, again: Features, arguments: Arguments) -> Linked:
+def linked(basis: Basis, viewed: Viewed, again: Viewed, arguments: Arguments) -> Linked:
     """Return the links of a basis. Raises KeyError for a name or a variant that is not in the table."""
     last = entry(basis.chain[-1], basis.variant)
     rows = [*(entry(name) for name in basis.chain[:-1]), last]
@@ -62,22 +63,25 @@ def linked(basis: Basis, features: Features, again: Features, arguments: Argumen
     for place, row in enumerate(rows[:-1]):
         if row.reduce is None or any(row in chain(other.name) for other in rows[place + 1 :]):
             continue
-        links.append(Link(row, features, again))
-        left, left_again = _left(row, features, again, arguments)
+        links.append(Link(row, viewed, again))
+        left, left_again = _left(row, viewed, again, arguments)
         if isinstance(left, Absent) or isinstance(left_again, Absent):
             reason = left if isinstance(left, Absent) else left_again
             assert isinstance(reason, Absent)
             return Linked(last, tuple(links), reason)
-        features, again = left, left_again
-    return Linked(last, (*links, Link(last, features, again)))
+        viewed, again = left, left_again
+    return Linked(last, (*links, Link(last, viewed, again)))
 
 
 def _left(
-    row: Approximation, features: Features, again: Features, arguments: Arguments
+    row: Approximation, viewed: Viewed, again: Viewed, arguments: Arguments
 ) -> tuple[Features | Absent, Features | Absent]:
+    """Return what a link leaves of a response; that it is one is seen to where the basis is read."""
     assert row.reduce is not None
-    left = row.reduce(features, arguments)
-    return left, left if again is features else row.reduce(again, arguments)
+    assert isinstance(viewed, Features)
+    assert isinstance(again, Features)
+    left = row.reduce(viewed, arguments)
+    return left, left if again is viewed else row.reduce(again, arguments)
 
 
 def together(parts: Sequence[Accuracy | None]) -> Accuracy | None:

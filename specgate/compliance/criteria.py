@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from specgate.analysis.analyses import Analyses, Missing
-from specgate.approximations.table import LATER
+from specgate.approximations.table import APPROXIMATIONS, LATER
 from specgate.compliance.asking import Asked, ask
 from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
 from specgate.compliance.assumptions import Assumptions
@@ -19,6 +19,7 @@ from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Basis, Criterion, Project
 from specgate.response.answers import Answer
+from specgate.systems.transfer import TransferFunction
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Standing, Verdict
 
@@ -95,15 +96,22 @@ class Criteria:
             reason = f"the evidence {basis.evidence} is not judged by this version"
             return Audit("evidence", Standing.INCONCLUSIVE, basis.place, reason)
         subject = nominal.subject
-        if isinstance(subject, ResponseSubject) and subject.beyond is not None:
+        if isinstance(subject, ResponseSubject) and subject.beyond is not None and not _derived_for(basis, subject):
             return audit_beyond(basis, subject.beyond, reading, nominal.study.values, unit)
-        features = nominal.features
-        precise = features if again is nominal else again.features
-        if features is None or precise is None:
-            reason = nominal.subject.reason if isinstance(nominal.subject, Missing) else "it is no response"
+        viewed = nominal.viewed
+        precise = viewed if again is nominal else again.viewed
+        if viewed is None or precise is None:
+            reason = nominal.subject.reason if isinstance(nominal.subject, Missing) else "there is nothing to look at"
             return Audit("approximation", Standing.INCONCLUSIVE, basis.place, reason, chain=basis.chain)
-        matter = Matter(features, precise, nominal.arguments, reading, nominal.limits, nominal.study.values, unit)
+        matter = Matter(viewed, precise, nominal.arguments, reading, nominal.limits, nominal.study.values, unit)
         return audit(basis, matter, self.policy)
+
+
+def _derived_for(basis: Basis, subject: ResponseSubject) -> bool:
+    """Whether every link of a basis is derived for an input that is no single step, through a rational channel."""
+    rows = [APPROXIMATIONS.get(name) for name in basis.chain]
+    rational = isinstance(subject.channel, TransferFunction)
+    return rational and all(row is None or subject.kind in row.inputs for row in rows)
 
 
 def _reading(nominal: Asked, again: Asked, read: Reader | None, deciding: Unanswered | None) -> Reading:

@@ -235,6 +235,13 @@ def estimates_one(rests_on: Basis, measures: Sequence[str], context: Context) ->
         return False
     name = rests_on.chain[-1]
     estimated = APPROXIMATIONS[name].estimates
+    dropping = next(
+        (link for link in rests_on.chain[:-1] if link in APPROXIMATIONS and APPROXIMATIONS[link].reduce), None
+    )
+    if dropping is not None and not any("response" in MEASURES[measure].subjects for measure in estimated):
+        message = f"`{dropping}` drops a part of a response, and `{name}` is not read from one"
+        context.collector.error("schema-violation", message, rests_on.place)
+        return False
     fitting = [measure for measure in measures if measure in estimated]
     if len(fitting) == 1:
         return True

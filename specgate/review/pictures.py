@@ -31,7 +31,10 @@ _SHAPE = "distance"
 def error_curve(audit: Audit, arguments: Arguments) -> ErrorCurveReview | None:
     """Return the error of a rule over the damping ratio of the pair alone, and where this response is; None without."""
     read = audit.read
-    if read is None or not _second_order(read.row) or read.features.damping is None or not read.features.stable:
+    features = None if read is None else read.viewed
+    if read is None or not _second_order(read.row) or not isinstance(features, Features):
+        return None
+    if features.damping is None or not features.stable:
         return None
     points = _points(read.row.name, read.row.variant, arguments)
     if not points:
@@ -43,14 +46,15 @@ def error_curve(audit: Audit, arguments: Arguments) -> ErrorCurveReview | None:
         error=tuple(_error(point) for point in points),
         lower=_short(Answer.of_exact(min(holding))) if holding else None,
         upper=_short(Answer.of_exact(max(holding))) if holding else None,
-        here=PointReview(_short(read.features.damping), None if error is None else plain_number(error, fmpq(1))),
+        here=PointReview(_short(features.damping), None if error is None else plain_number(error, fmpq(1))),
     )
 
 
 def separation(audit: Audit, arguments: Arguments) -> SeparationReview | None:
     """Return the poles and zeros about the dominant pair, and how far from it they have to be; None without a pair."""
     read = audit.read
-    if read is None or read.features.pair is None or not read.features.stable:
+    features = None if read is None else read.viewed
+    if read is None or not isinstance(features, Features) or features.pair is None or not features.stable:
         return None
     if not any(row.name == _DOMINANT for row in chain(read.row.name)):
         return None
@@ -59,7 +63,7 @@ def separation(audit: Audit, arguments: Arguments) -> SeparationReview | None:
     }
     if not {*_SETTLING, _SHAPE} & set(thresholds):
         return None
-    return _map(read.features, thresholds)
+    return _map(features, thresholds)
 
 
 def _map(features: Features, thresholds: dict[str, fmpq]) -> SeparationReview:

@@ -11,13 +11,17 @@ from flint import fmpq, fmpq_poly
 
 from specgate.approximations.approximation import Approximation
 from specgate.approximations.features import Features
+from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.table import conditions
+from specgate.approximations.viewed import Viewed
 from specgate.frequency.rational_gain import RationalGain
+from specgate.frequency.rational_loop import RationalLoop
 from specgate.measures.measure import Arguments
-from specgate.measures.subjects import ResponseSubject
+from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.measures.table import MEASURES
-from specgate.response.answers import Absent
+from specgate.response.answers import Absent, Answer
 from specgate.response.step import StepResponse
+from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Trilean
@@ -88,16 +92,26 @@ class Builder:
         above = fmpq_poly([exact(c) for c in reversed(numerator)])
         return of_polynomials(above, fmpq_poly([exact(c) for c in reversed(denominator)]), size, **more)
 
+    def opened(self, numerator: fmpq_poly, denominator: fmpq_poly) -> OpenedLoop:
+        """Return L = numerator/denominator at a break of a loop that has no other modes."""
+        transfer = TransferFunction(numerator, denominator)
+        stable = is_hurwitz(numerator + denominator)
+        return OpenedLoop("b", BreakSubject(transfer, Answer.of_truth(stable), RationalLoop(transfer, stable)))
+
+    def loop(self, gain: float | str | fmpq, poles: Sequence[Root], zeros: Sequence[Root] = ()) -> OpenedLoop:
+        """Return the opened loop with these poles and zeros; each factor but s is 1 at the origin."""
+        return self.opened(exact(gain) * monic(zeros), monic(poles))
+
 
 class Shown:
     """Shows a stated accuracy: errors of a row against proved values, extremes found by search."""
 
-    def holds(self, row: Approximation, features: Features, arguments: Arguments) -> bool:
+    def holds(self, row: Approximation, features: Viewed, arguments: Arguments) -> bool:
         """Tell whether every condition of a row is met."""
         every = conditions(row.name, arguments.measure, row.variant)
         return all(one.find(features, arguments, one.threshold).holds is Trilean.YES for _, one in every)
 
-    def error(self, row: Approximation, features: Features, arguments: Arguments) -> float:
+    def error(self, row: Approximation, features: Viewed, arguments: Arguments) -> float:
         """Return formula / proved value - 1 of a response in range; it lies inside what is stated for it."""
         assert self.holds(row, features, arguments)
         read = MEASURES[arguments.measure].read

@@ -1,0 +1,71 @@
+"""What approximations look at in a loop opened at a break: L over frequency, gain crossings, poles and zeros."""
+
+from __future__ import annotations
+
+from functools import cached_property
+
+from flint import arb
+
+from specgate.approximations.spots import Spot, spots
+from specgate.frequency.questions import Crossing, OpenLoop
+from specgate.measures.subjects import BreakSubject
+from specgate.response.answers import Answer
+from specgate.systems.transfer import TransferFunction
+from specgate.terms.precision import working_precision
+
+
+class OpenedLoop:
+    """L at one declared break, and whether the loop closed again is stable."""
+
+    def __init__(self, name: str, subject: BreakSubject) -> None:
+        self.name, self.subject = name, subject
+
+    @property
+    def around(self) -> OpenedLoop:
+        """Itself: what a rule for a loop looks at, whether it is asked about a break, a response or the whole loop."""
+        return self
+
+    @property
+    def loop(self) -> OpenLoop | None:
+        """L over frequency; None where this version does not answer that."""
+        return self.subject.loop
+
+    @property
+    def stable(self) -> bool | None:
+        """Whether the closed loop is stable, with every mode; None where that is not decided."""
+        return self.subject.stable.truth
+
+    @cached_property
+    def transfer(self) -> TransferFunction | None:
+        """L as written; None where it is not rational: with a dead time, or sampled."""
+        found = self.subject.open_loop
+        return found if isinstance(found, TransferFunction) else None
+
+    @cached_property
+    def poles(self) -> tuple[Spot, ...]:
+        """The poles of a rational L, common factors cancelled; none of another."""
+        return () if self.transfer is None else spots(self.transfer.reduced().denominator)
+
+    @cached_property
+    def zeros(self) -> tuple[Spot, ...]:
+        """The zeros of a rational L, common factors cancelled; none of another."""
+        return () if self.transfer is None or not self.transfer.numerator else spots(self.transfer.reduced().numerator)
+
+    @cached_property
+    def gain_crossings(self) -> tuple[Crossing, ...]:
+        """Where |L| = 1, by frequency."""
+        every = () if self.loop is None else self.loop.crossings()
+        return tuple(one for one in every if one.kind == "gain")
+
+
+def lag(crossing: Crossing) -> Answer:
+    """Return the lag (rad, 0 to 2 pi) that brings L to -1 at a gain crossing."""
+    if crossing.direction == "lag":
+        return crossing.margin
+
+    def refine(bits: int) -> arb:
+        ball = crossing.margin.enclose(bits)
+        with working_precision(bits):
+            return 2 * arb.pi() - ball
+
+    return Answer.of_ball(refine)
