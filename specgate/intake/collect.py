@@ -7,7 +7,7 @@ from contextlib import contextmanager
 from dataclasses import dataclass, field
 
 from specgate.project.types import InputFile
-from specgate.terms.findings import Finding, Related, in_order
+from specgate.terms.findings import Finding, Related, in_order, with_use
 from specgate.terms.names import nearest
 from specgate.terms.places import Place
 from specgate.terms.records import record
@@ -76,7 +76,7 @@ class Collector:
 
     def problems(self, inputs: tuple[InputFile, ...]) -> Problems:
         """Return what was found, in order."""
-        found = in_order(self.findings)
+        found = in_order(map(with_use, self.findings))
         if self.full:
             words = f"only the first {MOST} findings are shown: put these right first"
             found = (*found, Finding(found[-1].rule, Level.ERROR, words, found[-1].place))

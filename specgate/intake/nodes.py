@@ -13,10 +13,11 @@ from specgate.terms.records import record
 
 @record
 class Origin:
-    """The file that a node comes from, and what brought that file (or that text) in."""
+    """The file that a node comes from, and what brought that file (or that text) in; the template it is a text of."""
 
     path: str
     via: Place | None = None
+    template: str | None = None
 
 
 class Spot(NamedTuple):
@@ -29,11 +30,12 @@ class Spot(NamedTuple):
     @property
     def place(self) -> Place:
         """Return the place for a finding."""
-        return Place(self.origin.path, self.line, self.column, self.origin.via)
+        return self.moved(0)
 
     def moved(self, columns: int) -> Place:
         """Return the place `columns` further right on the same line."""
-        return Place(self.origin.path, self.line, self.column + columns, self.origin.via)
+        origin = self.origin
+        return Place(origin.path, self.line, self.column + columns, origin.via, origin.template)
 
 
 @dataclass(frozen=True, slots=True, eq=False)

@@ -10,6 +10,7 @@ from specgate.intake.criteria import basis, criterion, estimates_one
 from specgate.intake.nodes import Entry, Items, Node, Spot, Table, Text, Truth, as_kept
 from specgate.intake.values import Reader
 from specgate.project.types import Basis, Criterion, Link, Method, NotApplicable, Requirement
+from specgate.terms.places import Place
 
 DecidedBy = Literal["criteria", "derived", "evidence"]
 
@@ -47,7 +48,14 @@ def requirement(entry: Entry, context: Context) -> Requirement | None:
         external=_kept_or_none(node.get("external")),
         not_applicable=_not_applicable(node.get("not_applicable")),
         budget=_kept_or_none(node.get("budget")),
+        template_place=_template(node),
     )
+
+
+def _template(node: Table) -> Place | None:
+    """Return where the text of the template begins that a requirement is made from."""
+    keys = (entry.key.spot for entry in node.entries.values())
+    return next((spot.place for spot in keys if spot.origin.template is not None), None)
 
 
 def _criteria(node: Table) -> Iterator[tuple[Node, Spot]]:

@@ -42,7 +42,7 @@ def _expanded(entry: Entry, templates: Mapping[str, Entry], collector: Collector
         collector.error("name-unknown", f"there is no template `{name[:80]}`{ending}", use.spot.place)
         return Entry(entry.key, Broken(node.spot))
     given = table(node.get("with"))
-    body = _Filling(given, use.spot.place, collector).fill(template.value)
+    body = _Filling(name, given, use.spot.place, collector).fill(template.value)
     if not isinstance(body, Table):
         return Entry(entry.key, Broken(node.spot))
     own = {key: value for key, value in node.entries.items() if key not in ("use", "with")}
@@ -52,9 +52,9 @@ def _expanded(entry: Entry, templates: Mapping[str, Entry], collector: Collector
 class _Filling:
     """Puts the values of one use into a template."""
 
-    def __init__(self, given: Table | None, via: Place, collector: Collector) -> None:
+    def __init__(self, template: str, given: Table | None, via: Place, collector: Collector) -> None:
         self.given: Mapping[str, Entry] = given.entries if given is not None else {}
-        self.via, self.collector = via, collector
+        self.template, self.via, self.collector = template, via, collector
         self.origins: dict[str, Origin] = {}
         self.used: set[str] = set()
         self.missing: dict[str, Place] = {}
@@ -116,5 +116,5 @@ class _Filling:
 
     def _spot(self, spot: Spot) -> Spot:
         path = spot.origin.path
-        origin = self.origins.setdefault(path, Origin(path, self.via))
+        origin = self.origins.setdefault(path, Origin(path, self.via, self.template))
         return Spot(origin, spot.line, spot.column)

@@ -41,7 +41,7 @@ def check(facts: Facts) -> Iterator[Finding]:
 
 
 def _records(what: str, records: Iterable[Kept], requirements: Iterable[str]) -> Iterator[Finding]:
-    known = list(requirements)
+    known = dict.fromkeys(requirements)
     for record in records:
         for name in record.requirements:
             if name not in known:

@@ -7,7 +7,7 @@ from collections.abc import Callable, Iterator, Mapping
 from specgate.analysis.analyses import Analyses
 from specgate.compliance.assessment import Assessment
 from specgate.compliance.assumptions import Assumptions
-from specgate.project.types import Project
+from specgate.project.types import Project, Requirement
 from specgate.terms.findings import Finding
 from specgate.terms.records import record
 from specgate.terms.verdicts import Level, Standing, Verdict
@@ -23,6 +23,13 @@ class Facts:
     graph: Graph
     assessments: Mapping[str, Assessment]
     assumptions: Assumptions
+
+    def leaves(self) -> Iterator[Requirement]:
+        """Give the requirements at the end of the trace: nothing is derived from them, and nothing has to be."""
+        for name, requirement in self.project.requirements.items():
+            waits = requirement.decided_by == "derived" or requirement.not_applicable is not None
+            if not waits and not self.graph.children[name]:
+                yield requirement
 
     def restating(self, what: Verdict | Standing, assessment: Assessment) -> Level:
         """Return the level of a finding that only restates a verdict or a standing: a note where nothing is due yet."""

@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 
 from specgate.rules import (
     algebraic_loop,
+    allocation_unused,
     approximation_inconclusive,
     approximation_out_of_range,
     claim_disagrees_with_formula,
     dangling_link,
     derivation_cycle,
+    document_issues_differ,
+    document_unregistered,
     fragile_result,
     hidden_from_samples,
     hidden_mode,
@@ -20,16 +24,22 @@ from specgate.rules import (
     not_answered_yet,
     range_exceeded,
     range_undecided,
+    requirement_childless,
     requirement_not_met,
     requirement_open,
     requirement_orphan,
+    requirement_unallocated,
     rest_outside_range,
+    text_duplicate,
     threshold_loosened,
     unused_subsystem,
     value_without_source,
+    verification_missing,
+    verification_without_criterion,
+    verification_without_evidence,
 )
 from specgate.rules.rule import Facts, Rule
-from specgate.terms.findings import Finding, in_order
+from specgate.terms.findings import Finding, Related, in_order, with_use
 
 _ROWS = (
     requirement_not_met,
@@ -49,9 +59,18 @@ _ROWS = (
     algebraic_loop,
     improper_model,
     requirement_orphan,
+    requirement_childless,
     dangling_link,
     derivation_cycle,
+    text_duplicate,
+    requirement_unallocated,
+    allocation_unused,
     unused_subsystem,
+    verification_missing,
+    verification_without_criterion,
+    verification_without_evidence,
+    document_unregistered,
+    document_issues_differ,
     value_without_source,
     not_answered_yet,
 )
@@ -62,4 +81,15 @@ RULES: Mapping[str, Rule] = {module.RULE.name: module.RULE for module in _ROWS}
 
 def findings(facts: Facts) -> tuple[Finding, ...]:
     """Return what all rules have to say, in the order of the places."""
-    return in_order(finding for rule in RULES.values() for finding in rule.check(facts))
+    found = (finding for rule in RULES.values() for finding in rule.check(facts))
+    return in_order(with_use(_with_template(one, facts)) for one in found)
+
+
+def _with_template(finding: Finding, facts: Facts) -> Finding:
+    """Show the template beside a finding at a requirement that is made from one."""
+    about = facts.project.requirements.get(finding.requirement or "")
+    if about is None or about.template_place is None or finding.place.template is not None:
+        return finding
+    there = about.template_place
+    text = Related(there, f"the text is that of the template `{there.template}`")
+    return replace(finding, related=(*finding.related, text))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from dataclasses import replace
 
 from specgate.terms.places import Place
 from specgate.terms.records import record
@@ -37,6 +38,15 @@ class Finding:
     subsystem: str | None = None
     related: tuple[Related, ...] = ()
     restates: bool = False
+
+
+def with_use(finding: Finding) -> Finding:
+    """Show the use of the template beside a finding in the text of one."""
+    place = finding.place
+    if place.template is None or place.via is None:
+        return finding
+    use = Related(place.via, f"the template `{place.template}` is used here")
+    return finding if use in finding.related else replace(finding, related=(*finding.related, use))
 
 
 def in_order(findings: Iterable[Finding]) -> tuple[Finding, ...]:

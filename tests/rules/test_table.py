@@ -18,6 +18,9 @@ CONTRACT = {
 ADDED = {
     *("hidden-from-samples", "threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"),
     "fragile-result",
+    *("requirement-childless", "text-duplicate", "requirement-unallocated", "allocation-unused"),
+    *("verification-missing", "verification-without-criterion", "verification-without-evidence"),
+    *("document-unregistered", "document-issues-differ"),
 }
 NO_ROWS = {"__init__", "rule", "table"}
 

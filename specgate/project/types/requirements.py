@@ -60,3 +60,5 @@ class Requirement:
     not_applicable: NotApplicable | None = None
     budget: Mapping[str, object] | None = None
     kept: Mapping[str, object] = field(default_factory=dict)
+    template_place: Place | None = None
+    """Where the text of the template begins that it is made from."""
