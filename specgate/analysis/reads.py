@@ -9,6 +9,8 @@ from specgate.project.parameters import Values
 from specgate.project.types import Subsystem, Value
 from specgate.terms import expressions
 from specgate.terms.expressions import Expression
+from specgate.terms.places import Place
+from specgate.terms.unit import Unit
 
 
 def model_values(subsystem: Subsystem) -> tuple[Value, ...]:
@@ -19,14 +21,24 @@ def model_values(subsystem: Subsystem) -> tuple[Value, ...]:
 
 def parameters_read(subsystem: Subsystem, values: Values) -> tuple[str, ...]:
     """Return the qualified names of the parameters that a model rests on, those behind formulas included."""
+    return _followed([value.expression for value in model_values(subsystem)], subsystem.name, values)
+
+
+def read_by(node: object, scope: str | None, values: Values) -> tuple[str, ...]:
+    """Return the qualified names of the parameters that any part of a specification rests on, formulas followed.
+
+    scope: the subsystem in which its expressions stand; None outside of one.
+    """
+    return _followed(list(_expressions(node)), scope, values)
+
+
+def _followed(roots: list[Expression], scope: str | None, values: Values) -> tuple[str, ...]:
     found: dict[str, None] = {}
-    waiting: list[tuple[Expression, str | None]] = [
-        (value.expression, subsystem.name) for value in model_values(subsystem)
-    ]
+    waiting: list[tuple[Expression, str | None]] = [(one, scope) for one in roots]
     while waiting:
-        expression, scope = waiting.pop(0)
+        expression, within = waiting.pop(0)
         for name in expressions.names(expression):
-            qualified = values.scopes[scope].get(name)
+            qualified = values.scopes[within].get(name)
             if qualified is not None and qualified not in found:
                 found[qualified] = None
                 written, where = values.written[qualified]
@@ -47,12 +59,26 @@ def _own_data(expression: Expression) -> bool:
 def _values(node: object) -> Iterator[Value]:
     if isinstance(node, Value):
         yield node
-    elif isinstance(node, tuple):
-        for part in node:
+    else:
+        for part in _parts(node):
             yield from _values(part)
+
+
+def _expressions(node: object) -> Iterator[Expression]:
+    if isinstance(node, Value):
+        yield node.expression
+    elif isinstance(node, Expression):
+        yield node
+    elif not isinstance(node, Unit | Place):
+        for part in _parts(node):
+            yield from _expressions(part)
+
+
+def _parts(node: object) -> Iterator[object]:
+    if isinstance(node, tuple):
+        yield from node
     elif isinstance(node, Mapping):
-        for part in node.values():
-            yield from _values(part)
+        yield from node.values()
     elif dataclasses.is_dataclass(node):
         for field in dataclasses.fields(node):
-            yield from _values(getattr(node, field.name))
+            yield getattr(node, field.name)

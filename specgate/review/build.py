@@ -15,7 +15,8 @@ from specgate.review.definitions import definitions
 from specgate.review.gate import gate
 from specgate.review.loops import loop
 from specgate.review.printing import location, short
-from specgate.review.requirements import requirement, resting
+from specgate.review.requirements import requirement
+from specgate.review.resting import resting
 from specgate.review.specification import specification
 from specgate.review.types import (
     FindingReview,

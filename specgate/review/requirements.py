@@ -6,9 +6,7 @@ from collections.abc import Mapping
 
 from flint import fmpq
 
-from specgate.analysis.analyses import Analyses
 from specgate.analysis.arguments import said
-from specgate.analysis.reads import parameters_read
 from specgate.approximations.table import APPROXIMATIONS, chain
 from specgate.compliance.assessment import (
     Assessment,
@@ -28,6 +26,7 @@ from specgate.review.assumptions import assumption
 from specgate.review.masks import mask_of
 from specgate.review.pictures import error_curve, separation
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
+from specgate.review.resting import Resting
 from specgate.review.types import (
     BasisReview,
     ConditionReview,
@@ -50,11 +49,11 @@ def requirement(
     name: str,
     assessment: Assessment,
     project: Project,
-    rests: Mapping[str, tuple[str, ...]],
+    rests: Resting,
     graph: Graph,
     wanted: Wanted,
 ) -> RequirementReview:
-    """Print one requirement. rests: what each loop rests on (`resting`)."""
+    """Print one requirement."""
     declared = assessment.requirement
     exempt = declared.not_applicable
     return RequirementReview(
@@ -73,7 +72,7 @@ def requirement(
         assumptions=tuple(
             assumption(one, wanted) for criterion in by_response(assessment) for one in criterion.assumptions
         ),
-        rests_on=_rests_on(assessment, rests),
+        rests_on=rests.of(assessment),
         derived=graph.children[name],
         evidence=tuple(
             {"id": kept.id, **as_plain(kept.content)} for kept in project.evidence.values() if name in kept.requirements
@@ -91,23 +90,6 @@ def _method(assessed: MethodAssessment) -> MethodReview:
     return MethodReview(
         assessed.method.method, assessed.method.stage, outcome.value if isinstance(outcome, Verdict) else outcome
     )
-
-
-def resting(project: Project, analyses: Analyses) -> Mapping[str, tuple[str, ...]]:
-    """Return for each loop the parameters that its models read, then its subsystems."""
-    values = analyses.nominal.values
-    read = {name: parameters_read(one, values) for name, one in project.subsystems.items()}
-    return {
-        name: tuple(dict.fromkeys((*(one for block in loop.subsystems for one in read[block]), *loop.subsystems)))
-        for name, loop in analyses.loops.items()
-    }
-
-
-def _rests_on(assessment: Assessment, rests: Mapping[str, tuple[str, ...]]) -> tuple[str, ...]:
-    """Return the parameters and subsystems, then the responses, breaks and loops, that the criteria rest on."""
-    loops = dict.fromkeys(one.criterion.subject.loop for one in assessment.criteria)
-    below = (one for loop in loops for one in rests[loop])
-    return tuple(dict.fromkeys((*below, *(subject_name(one) for one in assessment.criteria))))
 
 
 # --- a criterion --------------------------------------------------------------------------------------------
@@ -134,7 +116,7 @@ def _criterion(assessed: CriterionAssessment, project: Project, wanted: Wanted) 
         basis=_basis(assessed, drawn=wanted.drawn),
         standing=assessed.standing.value,
         location=location(criterion.place),
-        mask=mask_of(assessed) if wanted.drawn else None,
+        mask=mask_of(assessed),
         reason=assessed.reason,
     )
 

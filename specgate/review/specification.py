@@ -131,7 +131,14 @@ def _subsystem(subsystem: Subsystem, values: Values, used: bool, by_fit: bool) -
         location=location(subsystem.place),
         realised=subsystem.realised,
         by_fit=by_fit,
+        ranges=_ranges({**subsystem.inputs, **subsystem.outputs}) or None,
     )
+
+
+def _ranges(ports: Mapping[str, Port]) -> dict[str, str]:
+    kinds = ("linear_range", "rate_range", "span")
+    given = ((f"{name} {kind}", getattr(port, kind)) for name, port in ports.items() for kind in kinds)
+    return {key: f"{ends[0].as_written} to {ends[1].as_written}" for key, ends in given if ends is not None}
 
 
 def _form(subsystem: Subsystem) -> str:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import Any
 
+from specgate.review.types.fields import omitted
 from specgate.review.types.values import Location
 from specgate.terms.records import record
 
@@ -42,6 +43,8 @@ class SubsystemReview:
     location: Location
     realised: str | None = None
     by_fit: bool = False
+    ranges: Mapping[str, str] | None = omitted()
+    """Linear and rate ranges and spans of its ports, as written, by `port kind`."""
 
 
 @record

@@ -1,0 +1,110 @@
+"""Which fields of a Review somebody declared, and what hangs on them; everything else in it is computed.
+
+A test holds every field of the Review's records against these tables, so that a new field is placed in one of them.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Mapping
+from typing import Any
+
+from specgate.revisions.said import said
+from specgate.revisions.types import Change
+from specgate.terms.records import record
+
+
+@record
+class Declared:
+    """A declared field: its name, whether a result can rest on it, and the word for a change of it.
+
+    of: what is compared and shown of its value.
+    """
+
+    name: str
+    bears: bool = True
+    how: str = "changed"
+    of: Callable[[Any], Any] = lambda value: value
+
+
+def _stages(methods: Any) -> Any:
+    return tuple(f"{one.method} at {one.stage}" if one.stage else one.method for one in methods)
+
+
+def _without_id(records: Any) -> Any:
+    return tuple({key: value for key, value in one.items() if key != "outcome"} for one in records)
+
+
+REQUIREMENT = (
+    Declared("text", bears=False, how="reworded"),
+    Declared("title", bears=False, how="reworded"),
+    Declared("rationale", bears=False, how="reworded"),
+    Declared("owner", bears=False),
+    Declared("derived_from"),
+    Declared("allocated_to", bears=False),
+    Declared("decided_by"),
+    Declared("methods", of=_stages),
+    Declared("evidence", of=_without_id),
+    Declared("waiver"),
+    Declared("not_applicable"),
+    Declared("external"),
+)
+CRITERION = (Declared("arguments"), Declared("evaluate"), Declared("mask"))
+PARAMETER = (
+    Declared("value", of=str),
+    Declared("tolerance"),
+    Declared("source", bears=False),
+)
+SUBSYSTEM = (
+    Declared("title", bears=False, how="reworded"),
+    Declared("owner", bears=False),
+    Declared("inputs"),
+    Declared("outputs"),
+    Declared("model"),
+    Declared("realised"),
+    Declared("ranges"),
+)
+LOOP = (
+    Declared("title", bears=False, how="reworded"),
+    Declared("wiring"),
+    Declared("inputs"),
+    Declared("rest"),
+)
+RESPONSE = (Declared("from_"), Declared("to"), Declared("input"))
+BREAK = (Declared("at"),)
+PROJECT = (
+    Declared("id", bears=False),
+    Declared("title", bears=False, how="reworded"),
+    Declared("revision"),
+    Declared("date"),
+    Declared("stage"),
+    Declared("stages"),
+    Declared("sign_off", bears=False),
+)
+POLICY = (Declared("hold_on", bears=False), Declared("evaluate"))
+SAID_AS = {"from_": "from", "methods": "verification"}
+"""Names of fields in the files, where they differ."""
+
+
+def changes(
+    kind: str, name: str, fields: tuple[Declared, ...], old: Any, new: Any, prefix: str = ""
+) -> Iterator[Change]:
+    """Give the declared fields in which two records of one kind differ."""
+    for field in fields:
+        before, after = field.of(getattr(old, field.name)), field.of(getattr(new, field.name))
+        if before != after:
+            what = prefix + SAID_AS.get(field.name, field.name)
+            places = located(old), located(new)
+            yield Change(kind, name, what, field.how, said(before), said(after), field.bears, *places)
+
+
+def come_and_gone(kind: str, old: Mapping[str, Any], new: Mapping[str, Any]) -> Iterator[Change]:
+    """Give the names that stand on one side only."""
+    for name in sorted(old.keys() ^ new.keys()):
+        gone = name in old
+        places = (located(old[name]), None) if gone else (None, located(new[name]))
+        yield Change(kind, name, "", "removed" if gone else "added", None, None, True, *places)
+
+
+def located(thing: Any) -> Any:
+    """Return where a record stands in the files, None where it does not say."""
+    return getattr(thing, "location", None)
