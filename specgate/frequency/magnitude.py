@@ -5,15 +5,15 @@ Its extremes over a range lie at the ends of the range or where above' below - a
 
 from __future__ import annotations
 
-from dataclasses import replace
 from functools import cached_property
 
 from flint import fmpq, fmpq_poly
 
 from specgate.frequency.choose import Candidate, greatest
 from specgate.frequency.questions import Range
+from specgate.frequency.recording import SQUARE, STILL, of_roots, of_values
 from specgate.frequency.scale import Scale, X, ends, within
-from specgate.frequency.spots import FIRST, Infinity, Rational, Spot, positive_roots
+from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots
 from specgate.frequency.values import root_of
 from specgate.response.answers import Answer
 
@@ -50,20 +50,14 @@ class Magnitude:
         assert found is not None
         still = wronskian(self.above, self.below)
         answer = Candidate(root_of(found.value), found.at).answer
-        return replace(answer, how=lambda: {**counted(still), "candidates": len(spots)})
+        return answer.accounted(lambda: of_roots(STILL, self.scale, still, candidates=len(spots)))
 
     def at(self, frequency: fmpq) -> Answer:
         """Return the magnitude at a frequency (rad/s)."""
         spot = self.scale.spot(frequency)
         if spot.sign(self.below) == 0:
             return Answer.nothing("a pole lies on the imaginary axis at this frequency", infinite=True)
-        return root_of(spot.ratio(self.above, self.below))
-
-
-def counted(p: fmpq_poly) -> dict[str, object]:
-    """Return what is told of a polynomial in the record of a proof."""
-    positive = len(roots(p))
-    return {"polynomial in omega^2, degree": p.degree(), "positive roots": positive, "bits at first": FIRST}
+        return root_of(spot.ratio(self.above, self.below)).accounted(lambda: of_values(SQUARE, self.scale))
 
 
 def origin(p: fmpq_poly) -> tuple[Spot, ...]:

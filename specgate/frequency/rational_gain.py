@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from functools import cached_property
 
 from flint import fmpq
@@ -12,6 +13,7 @@ from specgate.frequency.magnitude import Magnitude
 from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
 from specgate.frequency.questions import Range
+from specgate.frequency.recording import ANGLES, FALL, SIDES, of_values
 from specgate.frequency.scale import Continuous
 from specgate.frequency.values import root_of
 from specgate.response.answers import Answer
@@ -28,6 +30,7 @@ class RationalGain:
 
     def __init__(self, channel: TransferFunction) -> None:
         self.axis = AxisFunction(channel)
+        self._scale = Continuous()
 
     @cached_property
     def _missing(self) -> Answer | None:
@@ -44,12 +47,14 @@ class RationalGain:
 
     @cached_property
     def _magnitude(self) -> Magnitude:
-        return Magnitude(self.axis.above, self.axis.below, Continuous())
+        return Magnitude(self.axis.above, self.axis.below, self._scale)
 
     @cached_property
     def _bandwidth(self) -> Answer:
         found = first_fall(self.axis.above, self.axis.below)
-        return found if found.absent is not None else root_of(found)
+        if found.absent is not None:
+            return found
+        return replace(root_of(found), fragile=found.fragile).accounted(lambda: of_values(FALL, self._scale))
 
     def bandwidth(self) -> Answer:
         """Return the first frequency at which the gain falls 3 dB, 10^(-3/20), below that at zero frequency."""
@@ -60,7 +65,7 @@ class RationalGain:
         if self._unreferred is not None:
             return self._unreferred
         above, below = self.axis.above, self.axis.below
-        return Magnitude(above * below[0], below * above[0], self._magnitude.scale).supremum(over)
+        return Magnitude(above * below[0], below * above[0], self._scale).supremum(over)
 
     def gain_at(self, frequency: fmpq) -> Answer:
         """Return the gain."""
@@ -68,8 +73,10 @@ class RationalGain:
 
     def phase_at(self, frequency: fmpq) -> Answer:
         """Return the phase, followed from zero frequency (rad)."""
-        return self._missing or phase_at(self.axis, frequency)
+        found = self._missing or phase_at(self.axis, frequency)
+        return found.accounted(lambda: of_values(ANGLES, self._scale))
 
     def within(self, mask: Mask) -> Answer:
         """Return whether the gain stays inside a mask over frequency; `at` names the first violation."""
-        return self._missing or inside(self.axis.above, self.axis.below, mask)
+        found = self._missing or inside(self.axis.above, self.axis.below, mask)
+        return found.accounted(lambda: of_values(SIDES, self._scale))

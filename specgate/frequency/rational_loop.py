@@ -15,7 +15,6 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import replace
 from functools import cached_property
-from typing import Literal
 
 from flint import fmpq
 
@@ -23,11 +22,12 @@ from specgate.frequency import margins
 from specgate.frequency.axis import AxisFunction, along_the_axis
 from specgate.frequency.choose import Candidate, least
 from specgate.frequency.fragile import Watch, tangencies
-from specgate.frequency.magnitude import Magnitude, counted, origin, roots, wronskian
+from specgate.frequency.magnitude import Magnitude, origin, roots, wronskian
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.masks import inside
 from specgate.frequency.phase import phase_at
 from specgate.frequency.questions import Crossing, Direction, Range
+from specgate.frequency.recording import ANGLES, REAL, SIDES, UNIT, of_roots, of_values
 from specgate.frequency.scale import Continuous, Scale, X, ends, within
 from specgate.frequency.sided import SidedMargins
 from specgate.frequency.spots import Infinity, Rational, Spot, positive_roots, sign_of
@@ -164,13 +164,13 @@ class RationalLoop(SidedMargins):
     def _gain_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
             return self._unstable
-        found = self._recorded(margins.gain_margin(self._phase_crossings(over), *directions), "phase crossings")
+        found = self._by_phase(margins.gain_margin(self._phase_crossings(over), *directions))
         return found if over else self._near_phase.warned(found, lambda some: margins.gain_margin(some, *directions))
 
     def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
         if not self.stable:
             return self._unstable
-        found = self._recorded(margins.phase_margin(self._gain_crossings(over), *directions), "gain crossings")
+        found = self._by_gain(margins.phase_margin(self._gain_crossings(over), *directions))
         return found if over else self._near_gain.warned(found, lambda some: margins.phase_margin(some, *directions))
 
     def delay_margin(self, over: Range | None = None) -> Answer:
@@ -181,14 +181,18 @@ class RationalLoop(SidedMargins):
         far = self._far_value
         if over is None and top.absent is not None and (far is None or abs(far) >= 1):
             return replace(Answer.of_exact(0), at={"frequency": top})
-        found = self._recorded(margins.delay_margin(self._gain_crossings(over)), "gain crossings")
+        found = self._by_gain(margins.delay_margin(self._gain_crossings(over)))
         return found if over else self._near_gain.warned(found, margins.delay_margin)
 
-    def _recorded(self, answer: Answer, crossings: Literal["gain crossings", "phase crossings"]) -> Answer:
-        """Put the record of the proof beside a margin: whose roots were certified, and how many of them count."""
-        excess = self.axis.above - self.axis.below if crossings == "gain crossings" else self.axis.imaginary
-        count = len(self._gain_spots if crossings == "gain crossings" else self._phase_spots)
-        return replace(answer, how=lambda: {**counted(excess), crossings: count, "closed loop": "stable"})
+    def _by_gain(self, answer: Answer) -> Answer:
+        """Say that an answer comes from where |L| = 1."""
+        excess, counts = self.axis.above - self.axis.below, {"gain crossings": len(self._gain_spots)}
+        return answer.accounted(lambda: of_roots(UNIT, self.scale, excess, **counts))
+
+    def _by_phase(self, answer: Answer) -> Answer:
+        """Say that an answer comes from where L is real and negative."""
+        counts = {"phase crossings": len(self._phase_spots)}
+        return answer.accounted(lambda: of_roots(REAL, self.scale, self.axis.imaginary, **counts))
 
     # --- peaks and frequencies ----------------------------------------------------------------------------
 
@@ -212,15 +216,16 @@ class RationalLoop(SidedMargins):
             return peak
         if peak.exact == 0:
             return Answer.nothing("L is infinite on the whole of this range", infinite=True)
-        return replace(reciprocal(peak), at=peak.at)
+        return replace(reciprocal(peak), at=peak.at, how=peak.how)
 
     def crossover_frequency(self, over: Range | None = None) -> Answer:
         """Return the first frequency with |L| = 1 (rad/s); further ones are in `crossings`."""
-        return _first(self._gain_crossings(over), "the gain of the open loop is one at no frequency")
+        return self._by_gain(_first(self._gain_crossings(over), "the gain of the open loop is one at no frequency"))
 
     def phase_crossover_frequency(self, over: Range | None = None) -> Answer:
         """Return the first frequency with L on the negative real axis (rad/s)."""
-        return _first(self._phase_crossings(over), "the open loop is real and negative at no frequency")
+        found = _first(self._phase_crossings(over), "the open loop is real and negative at no frequency")
+        return self._by_phase(found)
 
     def peak_gain(self, over: Range | None = None) -> Answer:
         """Return sup |L|."""
@@ -232,11 +237,11 @@ class RationalLoop(SidedMargins):
 
     def phase_at(self, frequency: fmpq) -> Answer:
         """Return arg L(j frequency), followed from zero frequency (rad)."""
-        return phase_at(self.axis, frequency)
+        return phase_at(self.axis, frequency).accounted(lambda: of_values(ANGLES, self.scale))
 
     def within(self, mask: Mask) -> Answer:
         """Return whether |L| stays inside a mask over frequency; `at` names the first violation."""
-        return inside(self.axis.above, self.axis.below, mask)
+        return inside(self.axis.above, self.axis.below, mask).accounted(lambda: of_values(SIDES, self.scale))
 
 
 def _first(crossings: Iterable[GainCrossing | PhaseCrossing], none: str) -> Answer:

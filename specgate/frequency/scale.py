@@ -22,6 +22,10 @@ X = fmpq_poly([0, 1])
 class Scale(Protocol):
     """Between spots and angular frequencies."""
 
+    @property
+    def variable(self) -> str:
+        """What x is, in words."""
+
     def frequency(self, spot: Spot) -> Answer:
         """Return the frequency (rad/s) of a spot; absent and infinite where there is none."""
 
@@ -34,6 +38,8 @@ class Scale(Protocol):
 
 class Continuous:
     """The axis of a loop in s."""
+
+    variable = "the square of the frequency"
 
     def frequency(self, spot: Spot) -> Answer:
         """Return sqrt(x)."""

@@ -40,7 +40,7 @@ def _without_limit(open_loop: error_constants.Opened, power: int) -> Answer:
     return Answer.nothing(f"{reason}: it grows without limit", infinite=True)
 
 
-_METHOD = "exact: rational arithmetic on the reduced open loop"
+_METHOD = "exact: rational arithmetic at s = 0 (of a sampled loop z = 1) on the open loop, reduced"
 _SOURCE = "common control practice (error constants); says something of the error only where the closed loop is stable"
 
 

@@ -72,7 +72,7 @@ ROWS = (
         definition="The greatest distance of the response from its final value from the stated time on, for good.",
         absent_when="the response does not settle",
         source="specgate's own definition",
-        method="enclosed: the greater of both extremes from that time on",
+        method="enclosed: the further of both extremes from that time on",
         read=in_time(_deviation_after),
         arguments=(Argument("time", "time", "time after the step from which on the distance counts", required=True),),
         inputs=ENDING,
@@ -99,7 +99,10 @@ ROWS = (
         definition="Integral over all time of the square of reference minus response.",
         absent_when=_INTEGRAL,
         source="common control criterion (ISE)",
-        method="exact by Parseval's theorem, enclosed where the input has kinks",
+        method=(
+            "exact by Parseval's theorem for a step through a rational loop; else enclosed: the squares of its pieces "
+            "integrated in closed form"
+        ),
         read=_integral(lambda error: error.squared_integral()),
         inputs=VANISHING,
     ),

@@ -15,7 +15,10 @@ from specgate.response.answers import Answer
 
 _FREQUENCY = (Argument("frequency", "frequency", "frequency at which it is read", required=True),)
 _RANGE = (Argument("over", "range", "range of frequencies that is looked at; all unless given"),)
-_ROOTS = "certified roots of exact polynomials in the square of the frequency"
+_ROOTS = (
+    "enclosed: isolated roots of exact polynomials in the square of the frequency; where dead time or sampling leaves "
+    "no such polynomial, all zeros isolated in balls up to a frequency beyond which none matters"
+)
 
 
 def _at(ask: Callable[[Any, fmpq], Answer]) -> Reader:
@@ -64,7 +67,7 @@ ROWS = (
         definition="Magnitude of the frequency response at the stated frequency.",
         absent_when="a pole lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
-        method="exact square, enclosed level",
+        method="enclosed: the root of an exact square; through dead time or samplers in balls",
         read=_at(lambda found, frequency: found.gain_at(frequency)),
         arguments=_FREQUENCY,
         signed=True,
@@ -82,7 +85,7 @@ ROWS = (
         ),
         absent_when="a pole or zero lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
-        method="enclosed: sum over certified poles and zeros",
+        method="enclosed: the angles of certified poles and zeros; through dead time or samplers followed in balls",
         read=_at(lambda found, frequency: found.phase_at(frequency)),
         arguments=_FREQUENCY,
         signed=True,

@@ -36,7 +36,10 @@ ROWS = (
         ),
         absent_when="the loop has an algebraic loop: its signals are not determined",
         source="modes that are not controllable or not observable (IEC 60050-351:2013, 351-42-22, 351-42-23)",
-        method="exact: det P(s) against the reduced channels, in rational arithmetic",
+        method=(
+            "exact: det P(s) against the reduced channels in rational arithmetic; of a sampled loop counted from both "
+            "sides"
+        ),
         read=_hidden_modes,
         always=True,
     ),

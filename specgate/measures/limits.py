@@ -52,6 +52,23 @@ def _times(points: Points, factor: fmpq) -> Points:
     return tuple((at, limit * factor) for at, limit in points)
 
 
+_EXAMPLE = """
+masks:
+  opening:                     # corners [time, limit]; two at one time are a jump
+    upper: [[0 s, 110 %], [2 s, 110 %], [2 s, 102 %]]
+    lower: [[1 s, 0 %], [3 s, 98 %]]
+    to: forever                # each last limit holds on; without it, it ends there
+  loop_gain:                   # over frequency: limits in dB are straight over its logarithm
+    lower: [[0.1 rad/s, 20 dB], [1 rad/s, 6 dB]]
+    upper: [[30 rad/s, -6 dB], [300 rad/s, -26 dB]]
+requirements:
+  R-1:
+    text: The opening shall stay between its limits, and the loop gain between its own.
+    criteria:
+      - {response: hoist.follow, measure: within_mask, mask: opening, equals: true}
+      - {break: hoist.main, measure: within_mask, mask: loop_gain, equals: true}
+"""
+
 ROWS = (
     Measure(
         name="within_mask",
@@ -66,9 +83,13 @@ ROWS = (
         ),
         absent_when="the limits are in per cent of a change that there is not",
         source="specgate's own definition",
-        method="proved: the first crossing of each limit, searched from corner to corner",
+        method=(
+            "proved: over time the first crossing of each limit, searched from corner to corner; over frequency the "
+            "sign of mask minus gain between the roots of exact polynomials, or zeros isolated in balls"
+        ),
         read=_within,
         arguments=(Argument("mask", "mask", "name of the mask", required=True),),
+        example=_EXAMPLE,
         inputs=COURSE,
     ),
     Measure(

@@ -12,14 +12,14 @@ from specgate.response.answers import Answer
 _NO_MARGIN = "the closed loop is unstable as it is; a margin that nothing uses up is infinite and meets every at_least"
 _ALWAYS = ("gain_margin", "phase_margin", "delay_margin", "sensitivity_peak")
 _CROSSINGS = (
-    "exact crossing polynomials in the square of the frequency, all their roots certified; zero and infinite frequency "
-    "are looked at as well; where dead time or sampling leaves no such polynomial, all zeros isolated in balls up to a "
-    "frequency beyond which none matters"
+    "enclosed: all crossings, from isolated roots of exact polynomials in the square of the frequency; zero and "
+    "infinite frequency are looked at as well; where dead time or sampling leaves no such polynomial, all zeros "
+    "isolated in balls up to a frequency beyond which none matters"
 )
 _STATIONARY = (
-    "certified roots of the derivative of |1/(1+L)|^2, an exact polynomial in the square of the frequency; zero and "
-    "infinite frequency, or the ends of a range, are candidates; where dead time or sampling leaves no such "
-    "polynomial, its zeros isolated in balls"
+    "enclosed: the greatest of |1/(1+L)| where it stands still, from isolated roots of an exact polynomial in the "
+    "square of the frequency, and at zero and infinite frequency or the ends of a range; where dead time or sampling "
+    "leaves no such polynomial, zeros isolated in balls"
 )
 _RANGE = (Argument("over", "range", "range of frequencies that is looked at; all unless given"),)
 

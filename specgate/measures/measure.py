@@ -97,6 +97,7 @@ class Measure:
     absent_when: when there is no value. signed: may be of either sign (see `sign-ambiguous-limit`).
     read is None for a measure that this version does not answer yet.
     beside: a second value printed next to the first (the signed value of a magnitude).
+    example: how it is written in YAML, where the arguments alone do not show that.
     always: reported on every step response (or break, or loop), asked for or not.
     of_error: read from reference minus response, so that there has to be a reference of the same dimension.
     inputs: of a response: the kinds of input for which it exists, as far as the input alone tells.
@@ -114,6 +115,7 @@ class Measure:
     at_limit: Comparer | None = None
     beside: Reader | None = None
     arguments: tuple[Argument, ...] = ()
+    example: str = ""
     signed: bool = False
     always: bool = False
     of_error: bool = False

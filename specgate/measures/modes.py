@@ -10,6 +10,7 @@ from specgate.delays.modes import Figure, least_over_late_modes
 from specgate.measures.measure import Argument, Arguments, Comparer, Measure, Reader, UnitRule
 from specgate.measures.reading import decided
 from specgate.measures.subjects import LoopSubject
+from specgate.response.accounts import Account, Footing, radius_of
 from specgate.response.answers import Answer
 from specgate.sampled.modes import is_at_one, is_dead, least_over_modes, oscillates
 from specgate.sampled.solution import SampledSolution
@@ -25,6 +26,8 @@ from specgate.systems.roots import Root, certified_roots
 from specgate.systems.solution import LoopSolution
 from specgate.terms.precision import HIGHEST, working_precision
 
+_SHOWN = 128
+_CHARACTERISTIC = "the poles of the loop: all roots of det P(s) as wired, certified"
 _NO_POLES = "the loop has no dynamics: there is no pole"
 
 
@@ -88,7 +91,15 @@ def _over_poles(
                 first = first.min(value)
             return first
 
-    return Answer.of_ball(refine)
+    return Answer.of_ball(refine).accounted(lambda: _account(polynomial, sum(picked)))
+
+
+def _account(polynomial: fmpq_poly, picked: int) -> Account:
+    """Say which poles a figure was taken over; `picked`: how many different ones."""
+    roots = certified_roots(polynomial, _SHOWN)
+    radius = max(radius_of(root.value.real, root.value.imag) for root in roots)
+    footing = Footing(_CHARACTERISTIC, sum(root.multiplicity for root in roots), radius, _SHOWN)
+    return Account("the least over the poles that count", footing, counts={"different poles that count": picked})
 
 
 def _polynomial(solution: LoopSolution | DelayedSolution) -> fmpq_poly | None:
@@ -156,7 +167,10 @@ _RANGE = (
         "over", "range", "range of frequencies: only poles p with |p| in it count, its ends included; all unless given"
     ),
 )
-_ROOTS = "enclosed: certified roots of det P(s); equality with a limit decided in rational arithmetic"
+_ROOTS = (
+    "enclosed: certified roots of det P(s); with dead time its proved rightmost ones; of a sampled loop those in z, "
+    "said in s"
+)
 
 ROWS = (
     Measure(
@@ -170,7 +184,10 @@ ROWS = (
         ),
         absent_when="the loop has an algebraic loop: its signals are not determined",
         source="IEC 60050-351:2013, 351-42-21 (asymptotic stability), of the loop with all its modes",
-        method="exact: Routh's array in integers on det P(s) as wired, never reduced",
+        method=(
+            "exact: Routh's array in integers on det P(s) as wired, never reduced; with dead time the roots right of "
+            "the axis are counted in balls; of a sampled loop Routh's array in balls after the bilinear map"
+        ),
         read=_well_posed(_stable),
         always=True,
     ),

@@ -156,4 +156,4 @@ def difference(later: Answer, earlier: Answer) -> Answer:
     fragile = _carried(later.fragile, lambda other, bits: between(earlier.enclose(bits), other, bits))
     fragile = fragile or _carried(earlier.fragile, lambda other, bits: between(other, later.enclose(bits), bits))
     found = Answer.of_ball(lambda bits: between(earlier.enclose(bits), later.enclose(bits), bits), fragile)
-    return replace(found, how=lambda: together("the later less the earlier", later=later, earlier=earlier))
+    return found.accounted(lambda: together("the later less the earlier", later=later, earlier=earlier))

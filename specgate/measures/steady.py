@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import Literal
 
 from flint import acb, arb, fmpq, fmpq_poly
@@ -10,6 +11,7 @@ from specgate.measures.inputs import NOISE, SINE
 from specgate.measures.measure import Arguments, Measure, UnitRule
 from specgate.measures.reading import missing
 from specgate.measures.subjects import ResponseSubject
+from specgate.response.accounts import Account, Footing
 from specgate.response.answers import Absent, Answer
 from specgate.systems.energy import energy
 from specgate.systems.stability import is_hurwitz
@@ -20,6 +22,11 @@ Sign = Literal[-1, 0, 1]
 
 _UNSETTLED = "the channel does not settle"
 _GUARD = 32
+
+_REDUCED = "the reduced channel, exact, whose poles all decay (Hurwitz's criterion in rational arithmetic)"
+_SQUARED_GAIN = "the square of the amplitude, exact: that of the input times |N|^2/|D|^2 at its frequency; its root"
+_ARGUMENT = "the argument of N conj D at the frequency of the input, an exact complex number"
+_PARSEVAL = "the variance, exact by Parseval's theorem (half the density times the integral of h^2), and its root"
 
 
 def _channel(subject: ResponseSubject) -> TransferFunction | Answer:
@@ -69,7 +76,7 @@ def _variance(subject: ResponseSubject, _: Arguments) -> fmpq | Answer:
     return density / 2 * energy(channel.numerator, channel.denominator)
 
 
-def _root(square: fmpq | Answer) -> Answer:
+def _root(square: fmpq | Answer, how: Callable[[], Account]) -> Answer:
     """Return the square root of a rational: exact where it is rational."""
     if isinstance(square, Answer):
         return square
@@ -83,7 +90,18 @@ def _root(square: fmpq | Answer) -> Answer:
         with working_precision(bits + _GUARD):
             return arb(square).sqrt()
 
-    return Answer.of_ball(refine)
+    return Answer.of_ball(refine).accounted(how)
+
+
+def _by(method: str, subject: ResponseSubject) -> Callable[[], Account]:
+    """Return how a number was read off a reduced channel."""
+
+    def how() -> Account:
+        channel = _channel(subject)
+        assert isinstance(channel, TransferFunction)
+        return Account(method, Footing(_REDUCED, poles=channel.denominator.degree()))
+
+    return how
 
 
 def _sign(square: fmpq | Answer, limit: fmpq) -> Sign | None:
@@ -113,7 +131,7 @@ def _phase(subject: ResponseSubject, _: Arguments) -> Answer:
             angle: arb = acb(arb(real), arb(imaginary)).arg()
             return angle
 
-    return Answer.of_ball(refine)
+    return Answer.of_ball(refine).accounted(_by(_ARGUMENT, subject))
 
 
 ROWS = (
@@ -125,8 +143,10 @@ ROWS = (
         definition="Amplitude of the oscillation that a sine at the input leaves once the transient has decayed.",
         absent_when="the channel does not settle",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
-        method="exact square: amplitude of the input times the magnitude of the channel at its frequency",
-        read=lambda subject, arguments: _root(_squared_amplitude(subject, arguments)),
+        method=(
+            "enclosed root of an exact square: that of the input's amplitude times the channel's gain at its frequency"
+        ),
+        read=lambda subject, given: _root(_squared_amplitude(subject, given), _by(_SQUARED_GAIN, subject)),
         at_limit=lambda subject, arguments, limit: _sign(_squared_amplitude(subject, arguments), limit),
         inputs=SINE,
     ),
@@ -158,8 +178,8 @@ ROWS = (
         ),
         absent_when="the channel does not settle, or passes white noise on directly",
         source="N. Wiener 1930 and A. Khinchin 1934: variance as the integral of the spectral density over frequency",
-        method="exact square by Parseval's theorem, enclosed root",
-        read=lambda subject, arguments: _root(_variance(subject, arguments)),
+        method="enclosed root of an exact variance (Parseval's theorem)",
+        read=lambda subject, given: _root(_variance(subject, given), _by(_PARSEVAL, subject)),
         at_limit=lambda subject, arguments, limit: _sign(_variance(subject, arguments), limit),
         inputs=NOISE,
     ),

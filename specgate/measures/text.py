@@ -39,6 +39,11 @@ def _input_line(measure: Measure) -> str:
     )
 
 
+def _example(measure: Measure) -> str:
+    lines = measure.example.strip().splitlines()
+    return "\n".join(["As it is written:", *(f"  {line}" for line in lines)]) if lines else ""
+
+
 def _limits_line(measure: Measure) -> str:
     if measure.unit is UnitRule.YES_NO:
         return "Limits: `equals: true` or `equals: false`."
@@ -53,6 +58,8 @@ def _equality_line(measure: Measure) -> str:
         return ""
     if measure.at_limit is not None:
         return "At its limit: decided by an exact predicate, so that a value equal to the limit meets it."
+    if measure.unit is UnitRule.DEGREE and measure.subjects != ("response",):
+        return "At its limit: rational parts of a whole turn are decided exactly where the loop is rational."
     if measure.unit in _ALGEBRAIC:
         return "At its limit: decided exactly where the loop is rational and the limit is; in dB by digits alone."
     return (
@@ -70,6 +77,7 @@ def describe(name: str) -> Explanation:
         f"Read from {' or '.join(_ON[kind] for kind in measure.subjects)}, in: {measure.unit.value}.",
         _input_line(measure),
         _argument_lines(measure),
+        _example(measure),
         _limits_line(measure),
         f"No value: {measure.absent_when}.",
         f"How it is obtained: {measure.method}.",

@@ -15,7 +15,7 @@ def _value_at(response: TimeResponse, arguments: Arguments) -> Answer:
     time = arguments.time
     if time is None:
         raise ValueError("value_at needs the argument `time`")
-    return Answer.of_ball(lambda bits: response.enclose(time, bits))
+    return response.value_at(time)
 
 
 ROWS = (
@@ -96,7 +96,7 @@ ROWS = (
         definition="The value at the stated time after the step, as a signed deviation from the value before it.",
         absent_when="never, for a channel that has a step response",
         source="specgate's own definition",
-        method="enclosed: sum of the modes in ball arithmetic",
+        method="enclosed: the response in ball arithmetic at that instant; exact where it is a polynomial there",
         read=in_time(_value_at),
         arguments=(Argument("time", "time", "time after the step", required=True),),
         signed=True,

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 from flint import arb, fmpq
 
+from specgate.response.accounts import Account
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Proof
 
@@ -45,8 +46,7 @@ class Answer:
     absent:  no value, and why.
     at:      what belongs to the answer and is printed beside it, by the names of the results format: `frequency`
              (rad/s), `time` (s), `value` and `limit` (the signal's unit, SI), `direction` (a word).
-    how:     how the value was obtained, for the record of a proof: poles, tail time, counts, working precision, in
-             plain values.
+    how:     how the value was obtained, for the record of a proof; computed where it is asked for.
     against: exact sign of the value minus a rational (SI), for algebraic values, of which no ball can tell that they
              are equal to a limit; it returns None where it cannot tell either.
     """
@@ -58,7 +58,7 @@ class Answer:
     absent: Absent | None = None
     fragile: Fragile | None = None
     at: Mapping[str, Answer | str] | None = None
-    how: Callable[[], Mapping[str, object]] | None = None
+    how: Callable[[], Account] | None = None
     against: Callable[[fmpq], Literal[-1, 0, 1] | None] | None = None
 
     @staticmethod
@@ -85,6 +85,10 @@ class Answer:
     def undecided(reason: str) -> Answer:
         """Return a question left open: a work limit was reached, or it is not answered by this version."""
         return Answer(Proof.ESTIMATED, absent=Absent(reason, proved=False))
+
+    def accounted(self, how: Callable[[], Account]) -> Answer:
+        """Return the answer with how it was obtained; a missing one, or one that says so already, as it is."""
+        return self if self.absent is not None or self.how is not None else replace(self, how=how)
 
     def enclose(self, bits: int) -> arb:
         """Return a ball that contains the value. Raises ValueError if there is none."""

@@ -69,6 +69,10 @@ class Counted(TimeResponse):
             later = time + self.since
         return self.counted.enclose(later, bits)
 
+    def value_at(self, time: fmpq) -> Answer:
+        """Return y(time)."""
+        return self.counted.value_at(time + self.since)
+
     def deviation_after(self, time: fmpq) -> Extreme:
         """Return sup over t >= time of |y(t) - final|."""
         return self._moved(self.counted.deviation_after(time + self.since))

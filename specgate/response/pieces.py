@@ -7,6 +7,7 @@ from typing import Protocol
 
 from flint import arb, fmpq, fmpq_poly
 
+from specgate.response.accounts import Footing
 from specgate.response.answers import Absent
 
 
@@ -112,6 +113,10 @@ class Pieces(Protocol):
 
     def slow_by(self, rate: fmpq) -> fmpq | None:
         """Return a time from which on |y'| <= rate is proved; None: none found."""
+        return None
+
+    def footing(self) -> Footing | None:
+        """Return what a proof stands on: what kind of response this is, and how its values are enclosed."""
         return None
 
     def area(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:

@@ -63,6 +63,9 @@ class TimeResponse(Protocol):
     def enclose(self, time: fmpq | arb, bits: int) -> arb:
         """Return a ball that contains y(time); at a jump the value just after it."""
 
+    def value_at(self, time: fmpq) -> Answer:
+        """Return y(time), at a jump the value just after it."""
+
     def deviation_after(self, time: fmpq) -> Extreme:
         """Return sup over t >= time of |y(t) - final|, and where it is."""
 

@@ -1,27 +1,24 @@
-"""How a number of a response was proved, in plain values: for the record, computed only where it is asked for.
-
-Nothing stands here that two processors could find differently: counts of what is proved, radii rounded up to a power of
-ten, times from which on something is proved rounded up to three digits.
-"""
+"""What is told of the proof of a number that was searched in a sum of modes (see `specgate.response.accounts`)."""
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from math import ceil
+from collections.abc import Iterable
 
 from flint import arb, fmpq
 
+from specgate.response.accounts import Account, Footing, radius_of, rounded_up
 from specgate.response.answers import Answer
 from specgate.response.course import Course
 from specgate.response.deviation import LOWEST
-from specgate.response.modes import power_of_two
-from specgate.terms.enclosed import ends, rounded, to_float
+from specgate.response.modes import Mode, power_of_two
 from specgate.terms.precision import working_precision
 
-_DIGITS = 3
+MODES = "a sum of modes e^(pt) at certified poles p, with residues in balls; between two instants Taylor's remainder"
 
 
-def modal_record(course: Course, method: str, *, brackets: int, since: fmpq | None = None) -> Mapping[str, object]:
+def modal_account(
+    course: Course, method: str, *, brackets: int | None = None, since: fmpq | None = None, **counts: int
+) -> Account:
     """Say what a search in a sum of modes rests on.
 
     brackets: intervals with one proved change of sign each that hold what is searched. since: normalised time from
@@ -29,35 +26,21 @@ def modal_record(course: Course, method: str, *, brackets: int, since: fmpq | No
     """
     deviation = course.deviation
     expansion = deviation.at(LOWEST)
-    with working_precision(expansion.bits):
-        scale = power_of_two(deviation.time_exponent)
-        radius = max((_radius(mode.pole.real * scale, mode.pole.imag * scale) for mode in expansion.modes), default=0.0)
-    poles = sum(len(mode.coefficients) * (2 if mode.oscillates else 1) for mode in expansion.modes)
-    found: dict[str, object] = {
-        "method": method,
-        "poles": poles,
-        "pole_radius": radius,
-        "bits_of_modes": expansion.bits,
-        "brackets": brackets,
-    }
-    if since is not None:
-        found["searched_until"] = rounded_up(deviation.to_time(arb(since), LOWEST))
-    return found
+    until = None if since is None else rounded_up(deviation.to_time(arb(since), LOWEST))
+    footing = modal_footing(MODES, expansion.modes, expansion.bits, deviation.time_exponent)
+    return Account(method, footing, brackets, until, counts)
 
 
-def _radius(*balls: arb) -> float:
-    """Return a power of ten that the radii of balls do not exceed, 0 for exact ones."""
-    largest = max((ball.rad() for ball in balls), key=float)
-    if largest == 0:
-        return 0.0
-    return float(f"1e{ceil((largest.log() / arb(10).log()).upper().fmpq())}")
+def modal_footing(ground: str, modes: Iterable[Mode], bits: int, time_exponent: int = 0) -> Footing:
+    """Return what a sum of modes stands on; their poles are in units of 2^time_exponent per second."""
+    found = tuple(modes)
+    poles = sum(len(mode.coefficients) * (2 if mode.oscillates else 1) for mode in found)
+    with working_precision(bits):
+        scale = power_of_two(time_exponent)
+        radius = max((radius_of(mode.pole.real * scale, mode.pole.imag * scale) for mode in found), default=0.0)
+    return Footing(ground, poles, radius, bits)
 
 
-def rounded_up(time: arb) -> float:
-    """Return a time rounded up to three digits."""
-    return to_float(rounded(ends(time)[1], "up", _DIGITS))
-
-
-def together(method: str, **parts: Answer) -> Mapping[str, object]:
-    """Say that a number is made of others, each with its own record."""
-    return {"method": method, "parts": {name: part.how() for name, part in parts.items() if part.how is not None}}
+def together(method: str, **parts: Answer) -> Account:
+    """Say that a number is made of others, each with its own account."""
+    return Account(method, parts={name: part.how() for name, part in parts.items() if part.how is not None})

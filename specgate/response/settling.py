@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
-from dataclasses import replace
+from collections.abc import Callable
 from functools import reduce
 
 from flint import arb, fmpq
 
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer, Fragile
 from specgate.response.budget import Budget, OutOfWork
 from specgate.response.certify import Bracket, Zero
@@ -15,7 +15,7 @@ from specgate.response.course import Course
 from specgate.response.fragility import Target, fragility
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
-from specgate.response.record import modal_record
+from specgate.response.record import modal_account
 from specgate.response.segments import exact, float_of
 from specgate.response.signs import sign_at
 from specgate.response.tail import tail
@@ -73,10 +73,10 @@ def _answer(course: Course, target: Target, search: Search, without: Answer) -> 
             else Answer(Proof.EXACT, without.truth, without.exact, None, without.absent, fragile)
         )
     found = Answer.of_ball(lambda bits: _span(course, zeros, passage.crossing is None, bits), fragile)
-    return replace(found, how=lambda: _how(course, target, len(zeros)))
+    return found.accounted(lambda: _how(course, target, len(zeros)))
 
 
-def _how(course: Course, target: Target, brackets: int) -> Mapping[str, object]:
+def _how(course: Course, target: Target, brackets: int) -> Account:
     """Say how a crossing was found."""
     band = target.band(fmpq(1))
     since = _tail(course, target.size) if target.backward else _last_chance(course, band)
@@ -84,7 +84,7 @@ def _how(course: Course, target: Target, brackets: int) -> Mapping[str, object]:
         "the last crossing of the band: beyond it the sum of all modes is a bound, and the search goes back from there"
     )
     first = "the first crossing of the level, from the start on"
-    return modal_record(course, last if target.backward else first, brackets=brackets, since=since)
+    return modal_account(course, last if target.backward else first, brackets=brackets, since=since)
 
 
 def _tail(course: Course, edge: fmpq) -> fmpq | None:

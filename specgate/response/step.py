@@ -14,6 +14,7 @@ from specgate.response.extremes import Extreme, greater, mirrored
 from specgate.response.piecewise.areas import LASTING
 from specgate.response.piecewise.response import JUMPS, PiecewiseResponse
 from specgate.response.questions import Mask
+from specgate.response.record import modal_account
 from specgate.response.settling import first_arrival, settling
 from specgate.response.superposed import Superposed
 from specgate.response.superposed.waves import StepWave
@@ -149,6 +150,14 @@ class StepResponse:
         if not self._moves or (isinstance(time, fmpq) and time == 0):
             return Answer.of_exact(self._jump).enclose(bits)
         return self._course.deviation.value_at(time, bits)
+
+    def value_at(self, time: fmpq) -> Answer:
+        """Return y(time) for time > 0, y(0+) at 0."""
+        if not self._moves or time == 0:
+            return Answer.of_exact(self._jump)
+        return Answer.of_ball(lambda bits: self.enclose(time, bits)).accounted(
+            lambda: modal_account(self._course, "the sum of all modes at that instant")
+        )
 
     @cached_property
     def _in_pieces(self) -> PiecewiseResponse:

@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
 from itertools import compress
 from math import inf
 
 import numpy as np
 from flint import arb, fmpq
 
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer
 from specgate.response.budget import Budget, Exhausted, OutOfWork
 from specgate.response.certify import Zero
@@ -19,7 +20,7 @@ from specgate.response.extremes import EQUAL_BITS, Extreme, joined
 from specgate.response.grid import Grid
 from specgate.response.modes import GUARD
 from specgate.response.peak import Climb, Last
-from specgate.response.record import modal_record
+from specgate.response.record import modal_account
 from specgate.response.segments import exact, float_of
 from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
@@ -149,19 +150,19 @@ def _tallest(summits: Sequence[Zero], sign: int, floor: Floor) -> tuple[list[Zer
     return left, clear
 
 
-def _how(course: Course, sign: int, summits: Sequence[Zero], last: Last) -> Mapping[str, object]:
+def _how(course: Course, sign: int, summits: Sequence[Zero], last: Last) -> Account:
     """Say how a greatest value was found; it is looked for until a bound is below it."""
     firm = sign * summits[0].value(LOWEST)
     best = float_of(firm.lower().fmpq())
     method = "the highest turning point: where a bound of the cells is below it nothing was searched"
-    return modal_record(course, method, brackets=len(summits), since=last(best, lambda bits: firm))
+    return modal_account(course, method, brackets=len(summits), since=last(best, lambda bits: firm))
 
 
-def _at(course: Course, summit: Zero, how: Callable[[], Mapping[str, object]]) -> Extreme:
+def _at(course: Course, summit: Zero, how: Callable[[], Account]) -> Extreme:
     deviation = course.deviation
 
     def time(bits: int) -> arb:
         return deviation.to_time(summit.enclose(bits), bits + GUARD)
 
     value = Answer.of_ball(lambda bits: deviation.response(summit.value(bits)))
-    return Extreme(replace(value, how=how), replace(Answer.of_ball(time), how=how))
+    return Extreme(value.accounted(how), Answer.of_ball(time).accounted(how))

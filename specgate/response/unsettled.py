@@ -7,6 +7,7 @@ exactly zero, so that what neither grows nor decays is known exactly.
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 
 import numpy as np
 from flint import arb, fmpq
@@ -18,6 +19,7 @@ from specgate.response.deviation import LOWEST
 from specgate.response.extremes import Extreme
 from specgate.response.falling import smallest
 from specgate.response.modes import Expansion, Mode
+from specgate.response.record import modal_account
 from specgate.response.segments import Floats, at_least, at_most, exact
 from specgate.response.supremum import APPROACHED, Floor, above, exact_floor
 from specgate.response.tables import FloatModes
@@ -25,6 +27,7 @@ from specgate.response.tail import float_tail
 from specgate.terms.precision import working_precision
 
 _NOT_TOLD = "whether the growth of the response is one-sided is not told"
+_SWING = "the amplitude of the one lasting oscillation about its middle; nothing else is higher"
 _SEVERAL = "the greatest value of several lasting oscillations together is not searched"
 
 
@@ -113,11 +116,13 @@ def _pure_swing(course: Course, sign: int) -> Extreme:
             turn = angle if angle > 0 else angle + 2 * arb.pi()
             return deviation.to_time(turn / mode.pole.imag, expansion.bits)
 
-    return Extreme(_swing_top(course, 0, sign), Answer.of_ball(time))
+    how = partial(modal_account, course, _SWING)
+    return Extreme(_swing_top(course, 0, sign), Answer.of_ball(time).accounted(how))
 
 
 def _swing_top(course: Course, index: int, sign: int) -> Answer:
-    return Answer.of_ball(lambda bits: course.deviation.response(sign * _amplitude(course, index, bits)))
+    top = Answer.of_ball(lambda bits: course.deviation.response(sign * _amplitude(course, index, bits)))
+    return top.accounted(partial(modal_account, course, _SWING))
 
 
 def _amplitude(course: Course, index: int, bits: int) -> arb:

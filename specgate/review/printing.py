@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import fields, replace
+from dataclasses import replace
 from typing import Any, cast
 
 from flint import fmpq, fmpq_poly
 
 from specgate.compliance.readings import Reading
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer, Fragile
 from specgate.review.types import Amount, Beside, DelayedTerm, Location, Pole, ProofPart, ProofRecord, Result
 from specgate.systems.quasi import Quasi
@@ -29,6 +30,8 @@ from specgate.terms.places import Place
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.units import UnitTable
 from specgate.terms.verdicts import Proof
+
+_EXACT = "an exact number in rational arithmetic; the bounds are those of pi or of the decibels that it is printed with"
 
 SECOND = UnitTable.standard().parse("s")
 RADIAN_PER_SECOND = UnitTable.standard().parse("rad/s")
@@ -117,31 +120,41 @@ def result(
     """Print what was read. unit None: a whole number, yes or no. scale: what it is small against, in that unit.
 
     signal: the unit of the signal that is looked at, for what is printed beside the result. method: of the measure,
-    where a bounded result is to say how it was obtained.
+    where a bounded result, or a yes or no that was searched for, is to say how it was obtained.
     """
     found = _result(reading, unit, scale, beside)
-    if method is not None and found.proof == Proof.ENCLOSED.value and unit is not None:
-        found = replace(found, proof_record=_record(reading, unit, scale, method))
+    if method is not None:
+        found = replace(found, proof_record=_record(reading, found, unit, scale, method))
     return found if reading.settled.at is None else replace(found, at=_beside(reading, signal))
 
 
-def _record(reading: Reading, unit: Unit, scale: fmpq | None, method: str) -> ProofRecord:
-    """Say how a bounded result was obtained."""
+def _record(reading: Reading, found: Result, unit: Unit | None, scale: fmpq | None, method: str) -> ProofRecord | None:
+    """Say how a bounded result was obtained; None of one that is exact."""
     answer = reading.settled
-    how: dict[str, Any] = {"method": method, **({} if answer.how is None else answer.how())}
-    parts = how.pop("parts", None)
-    return ProofRecord(
-        **_sorted_out(how),
-        bits=precision_of(reading.in_unit(unit).enclose, scale),
-        parts=None if parts is None else {name: ProofPart(**_sorted_out(part)) for name, part in parts.items()},
-    )
+    if found.value is None or (found.proof != Proof.ENCLOSED.value and (answer.truth is None or answer.how is None)):
+        return None
+    known = answer.exact is not None
+    account = answer.how() if answer.how is not None else Account(_EXACT if known else method)
+    bits = None if unit is None else precision_of(reading.in_unit(unit).enclose, scale)
+    return ProofRecord(**_told(account), bits=bits, parts=_parts(account))
 
 
-def _sorted_out(how: Mapping[str, Any]) -> dict[str, Any]:
-    """Put what has no field of its own among what else was counted."""
-    known = {field.name for field in fields(ProofPart)}
-    counts = {name: value for name, value in how.items() if name not in known}
-    return {**{name: value for name, value in how.items() if name in known}, "counts": counts or None}
+def _parts(account: Account) -> dict[str, ProofPart] | None:
+    return {name: ProofPart(**_told(part)) for name, part in account.parts.items()} or None
+
+
+def _told(account: Account) -> dict[str, Any]:
+    footing = account.footing
+    return {
+        "method": account.method,
+        "ground": None if footing is None else footing.ground,
+        "poles": None if footing is None else footing.poles,
+        "pole_radius": None if footing is None else footing.pole_radius,
+        "bits_of_modes": None if footing is None else footing.bits_of_modes,
+        "brackets": account.brackets,
+        "searched_until": account.searched_until,
+        "counts": dict(account.counts) or None,
+    }
 
 
 def _beside(reading: Reading, signal: Unit) -> Beside:

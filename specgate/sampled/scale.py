@@ -25,6 +25,8 @@ class Enclosed(Protocol):
 class SampledScale:
     """Between spots in x and frequencies in [0, pi/T] (rad/s)."""
 
+    variable = "the squared tangent of half the turn from sample to sample"
+
     def __init__(self, period: fmpq) -> None:
         self.period = period
 

@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 import pytest
 
+from specgate.intake.load import Problems, load
 from specgate.measures.table import MEASURES
 from specgate.measures.text import describe
+from specgate.review.build import review
 
 ANSWERED = {
     "response": """
@@ -86,3 +90,25 @@ def test_every_text_says_what_may_limit_it_and_what_happens_at_the_limit(name: s
     assert ("exact predicate" in said) is (row.at_limit is not None)
     assert ("wrong sign" in said) is row.sided
     assert ("asked for or not" in said) is row.always
+
+
+def test_the_masks_of_the_example_are_read_as_they_are_written(tmp_path: Path) -> None:
+    around = """
+specgate: 1
+project: {id: T-1, title: Test, revision: A}
+subsystems: {winch: {input: {unit: m}, output: {unit: m}, model: {gain: 1 1/s, integrators: 1}}}
+loops:
+  hoist:
+    inputs: {demand: {unit: m}}
+    signals: {opening: winch(demand - opening)}
+    breaks: {main: opening}
+    responses: {follow: {from: demand, to: opening, input: step, size: 1 m}}
+"""
+    example = MEASURES["within_mask"].example
+    assert "\n".join(f"  {line}" for line in example.strip().splitlines()) in describe("within_mask").text
+    path = tmp_path / "specgate.yaml"
+    path.write_text(around + example)
+    project = load(path)
+    assert not isinstance(project, Problems), [one.message for one in project.findings]
+    found = [criterion.result for criterion in review(project).requirements["R-1"].criteria]
+    assert [one.value for one in found] == [False, False]

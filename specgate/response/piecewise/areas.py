@@ -11,11 +11,13 @@ from dataclasses import dataclass
 
 from flint import arb, fmpq
 
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer
 from specgate.response.budget import OutOfWork
 from specgate.response.modes import GUARD, dyadic
 from specgate.response.piecewise.passing import Work
 from specgate.response.piecewise.patches import LEVEL, LOOK, Ground, Patch
+from specgate.response.piecewise.recording import LOBES, SQUARES, account
 from specgate.response.piecewise.turning import Zero, sign_at
 from specgate.response.segments import exact
 from specgate.terms.precision import HIGHEST, working_precision
@@ -79,7 +81,18 @@ class Areas:
                     kept[rung] = kept[_RUNGS[0][1]]
             return kept[rung]
 
-        return Answer.of_ball(refine)
+        return Answer.of_ball(refine).accounted(lambda: self._account(power))
+
+    def _account(self, power: int) -> Account:
+        """Say from when on the integral is known as a whole, and how many lobes there are before."""
+        bits = _RUNGS[0][1]
+        self._flat = dyadic(-bits - _FLAT)
+        until, _ = self._remainder(power, bits)
+        if power:
+            return account(self._ground, SQUARES, None, until)
+        runs = self._found(until)
+        told = sum(run.sign != 0 for run in runs)
+        return account(self._ground, LOBES, None, until, lobes=told, untold=len(runs) - told)
 
     def _total(self, power: int, bits: int) -> arb:
         self._flat = dyadic(-bits - _FLAT)

@@ -16,7 +16,17 @@ from specgate.response.piecewise.instants import first_arrival, settling
 from specgate.response.piecewise.masking import within
 from specgate.response.piecewise.outline import outline
 from specgate.response.piecewise.patches import LOOK, Ground
-from specgate.response.piecewise.recording import FIRST, LAST, recorded, with_record
+from specgate.response.piecewise.recording import (
+    FIRST,
+    FURTHEST,
+    GREATEST,
+    INSTANT,
+    LAST,
+    LIMITS,
+    STEEPEST,
+    accounted,
+    with_account,
+)
 from specgate.response.piecewise.unsettled import unsettled_extreme
 from specgate.response.questions import Mask
 from specgate.terms.precision import working_precision
@@ -52,7 +62,9 @@ class PiecewiseResponse:
         jump = self.pieces.jump(0)
         if jump is not None:
             return Answer.of_exact(jump)
-        return Answer.of_ball(lambda bits: value_at(self.pieces, 0, 0, fmpq(0), bits))
+        return with_account(
+            Answer.of_ball(lambda bits: value_at(self.pieces, 0, 0, fmpq(0), bits)), self._ground, INSTANT
+        )
 
     def final_value(self) -> Answer:
         """Return the limit of y for large t: exact, or the reason why there is none."""
@@ -82,13 +94,16 @@ class PiecewiseResponse:
 
     @cached_property
     def _highest(self) -> Extreme:
-        found = self._heights.supremum(1) if self.settles else unsettled_extreme(self._ground, 1)
-        return recorded(found, self._ground)
+        return self._supremum(1)
 
     @cached_property
     def _lowest(self) -> Extreme:
-        found = self._heights.supremum(-1) if self.settles else unsettled_extreme(self._ground, -1)
-        return recorded(found, self._ground)
+        return self._supremum(-1)
+
+    def _supremum(self, sign: int) -> Extreme:
+        if not self.settles:
+            return accounted(unsettled_extreme(self._ground, sign), self._ground, GREATEST)
+        return accounted(self._heights.supremum(sign), self._ground, GREATEST, self._final)
 
     def peak_deviation(self) -> Extreme:
         """Return sup |y| over t > 0, jumps and values that are only approached included."""
@@ -107,7 +122,7 @@ class PiecewiseResponse:
         if distance not in self._settling:
             found = settling(self._ground, self._final, distance)
             since = self.pieces.settled_by(distance)
-            self._settling[distance] = with_record(found, self._ground, LAST, 1, since)
+            self._settling[distance] = with_account(found, self._ground, LAST, 1, since)
         return self._settling[distance]
 
     def first_arrival(self, level: fmpq) -> Answer:
@@ -116,7 +131,7 @@ class PiecewiseResponse:
             return self.final_value()
         if level not in self._arrivals:
             found = first_arrival(self._ground, self._final, level, self._heights.size)
-            self._arrivals[level] = with_record(found, self._ground, FIRST, 1, None)
+            self._arrivals[level] = with_account(found, self._ground, FIRST, 1)
         return self._arrivals[level]
 
     def enclose(self, time: fmpq | arb, bits: int) -> arb:
@@ -129,6 +144,14 @@ class PiecewiseResponse:
         first, last = (self._ground.index(max(fmpq(0), end.fmpq())) for end in (time.lower(), time.upper()))
         with working_precision(bits):
             return self._over(time, first, last, bits)
+
+    def value_at(self, time: fmpq) -> Answer:
+        """Return y(time), at a jump the value just after it: exact where that piece is a rational polynomial."""
+        index = self._ground.index(time)
+        polynomial, begin = self.pieces.polynomial(index), self.pieces.kink(index)
+        if polynomial is not None and begin is not None:
+            return Answer.of_exact(polynomial(time - begin))
+        return with_account(Answer.of_ball(lambda bits: self.enclose(time, bits)), self._ground, INSTANT)
 
     def _over(self, time: arb, first: int, last: int, bits: int) -> arb:
         """Return a ball of y over a ball of times that may reach over several pieces."""
@@ -148,7 +171,8 @@ class PiecewiseResponse:
         if not self.settles:
             return Extreme(self.final_value(), self.final_value())
         if time not in self._deviations:
-            self._deviations[time] = self._heights.deviation(time)
+            found = self._heights.deviation(time)
+            self._deviations[time] = accounted(found, self._ground, FURTHEST, fmpq(0))
         return self._deviations[time]
 
     def peak_rate(self) -> Extreme:
@@ -160,7 +184,9 @@ class PiecewiseResponse:
         jump = self._first_jump()
         if jump is not None:
             return jump
-        return self._heights.rate() if self.settles else Extreme.undecided(_UNSETTLED)
+        if not self.settles:
+            return Extreme.undecided(_UNSETTLED)
+        return accounted(self._heights.rate(), self._ground, STEEPEST)
 
     def _first_jump(self) -> Extreme | None:
         """Return the infinite rate at the first jump, None where y does not jump."""
@@ -188,7 +214,7 @@ class PiecewiseResponse:
         if mask not in self._masks:
             final = self._final if self.settles else None
             size = self._heights.size if self.settles else fmpq(1)
-            self._masks[mask] = within(self._ground, mask, final, size)
+            self._masks[mask] = with_account(within(self._ground, mask, final, size), self._ground, LIMITS)
         return self._masks[mask]
 
     def absolute_integral(self) -> Answer:

@@ -8,9 +8,11 @@ from math import frexp
 
 from flint import acb, arb, fmpq, fmpq_poly
 
+from specgate.response.accounts import Footing
 from specgate.response.answers import Absent
 from specgate.response.modes import Expansion, Mode, dyadic
 from specgate.response.pieces import Pieces
+from specgate.response.record import modal_footing
 from specgate.response.segments import at_most, exact
 from specgate.response.superposed.closing import closing
 from specgate.response.superposed.ending import Ending, derived
@@ -27,6 +29,9 @@ _WIDE, _NARROW = 1, 2.0**-40
 _FEW, _TERMS = 6, 14
 _SEEN = 8
 UNSETTLED = "the response does not settle"
+_GROUND = (
+    "between two kinks of the input a polynomial and a sum of modes e^(pt) at certified poles p, with residues in balls"
+)
 _RUNGS = (128, 256, 512, 1024, 2048, HIGHEST, HIGHEST + 512)
 
 
@@ -155,6 +160,11 @@ class Superposed(Pieces):
     @cached_property
     def _lasting_part(self) -> Lasting:
         return Lasting(self._ending, self._drift(len(self._kinks) - 1))
+
+    def footing(self) -> Footing:
+        """Return what a proof stands on: the poles of all waves, those of waves of one kind once."""
+        different = {wave.key: wave for wave in self._waves}.values()
+        return modal_footing(_GROUND, [mode for wave in different for mode in wave.at(_RUNGS[0]).modes], _RUNGS[0])
 
     def runaway(self) -> int | None:
         """Return where y goes if it grows without bound: 1, -1, 0 both ways; None: it does not, or not told."""

@@ -51,6 +51,9 @@ class ProofPart:
     """How a number was proved, coherent SI; nothing in it depends on the processor."""
 
     method: str
+    """What was searched, and why nothing was missed."""
+    ground: str | None = omitted()
+    """The kind of response or loop that it was searched in, and how its values are enclosed."""
     poles: int | None = omitted()
     pole_radius: float | None = omitted()
     """No pole lies further from the middle of its enclosure, 1/s; a power of ten, 0 where all are exact."""
@@ -68,8 +71,8 @@ class ProofPart:
 class ProofRecord(ProofPart):
     """How a bounded result was obtained, and the records of the numbers that it is made of."""
 
-    bits: int = 0
-    """Working precision at which all printed digits are settled."""
+    bits: int | None = omitted()
+    """Working precision at which all printed digits are settled; none of a yes or no."""
     parts: Mapping[str, ProofPart] | None = omitted()
 
 
