@@ -7,6 +7,7 @@ that is asked (`modal`); there the pieces are doublings of time, on each of whic
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from functools import cached_property
 
 from flint import acb, arb, fmpq, fmpq_poly
@@ -14,7 +15,7 @@ from flint import acb, arb, fmpq, fmpq_poly
 from specgate.delays.exactly import monotone_start, polynomials
 from specgate.delays.fading import Fading
 from specgate.delays.modal import Modal, modal
-from specgate.delays.remainder import ORDERS
+from specgate.delays.remainder import ORDERS, Remainder
 from specgate.delays.steps import Mode, Steps, kinks_of, summed
 from specgate.delays.stretch import Group, Stretch
 from specgate.delays.transform import Transform
@@ -26,7 +27,14 @@ _BITS = 112
 More bits than these make no ball narrower: what has to be told apart more closely than 33 digits stays open.
 """
 
+_ENOUGH = 64
+_LONG = 60
+"""Bits, instead, that suffice where the method of steps would go on for more than so many of the longest delay."""
+
 _MOST_KINKS = 600
+_CHUNK = 32
+"""Early terms that are told first; more are told, twice as many each time, as they are asked for."""
+
 _ALONE = 24
 """Longest delays over which a response is followed that has no modal sum."""
 
@@ -42,6 +50,8 @@ class Course:
     def __init__(self, transform: Transform) -> None:
         self.transform = transform
         self._stretches: dict[int, Stretch] = {}
+        self._told: dict[int, Steps] = {}
+        self._lost = 0
 
     @cached_property
     def longest(self) -> fmpq:
@@ -83,20 +93,19 @@ class Course:
         """T at which the remainder is 2^-_BITS of the size of the response, or as far as the response is followed."""
         if self.modal is None:
             return _ALONE * self.longest if self.looped else self.longest
-        rest = self.modal.rest
+        full, enough = (self._fallen(self.modal.rest, bits) for bits in (_BITS, _ENOUGH))
+        return max(self.modal.rest.since, min(full, max(enough, _LONG * self.longest)))
+
+    def _fallen(self, rest: Remainder, bits: int) -> fmpq:
+        """Return when a remainder has fallen to a part 2^-bits of the size of the response."""
         with working_precision(64):
-            times = ((rest.sizes[0] / self._scale).log() + _BITS * arb(2).log()) / rest.rate * 4 / self.longest
-        return max(rest.since, self.longest * fmpq(int(times.upper().fmpq().ceil())) / 4)
+            times = ((rest.sizes[0] / self._scale).log() + bits * arb(2).log()) / rest.rate * 4 / self.longest
+        return self.longest * fmpq(int(times.upper().fmpq().ceil())) / 4
 
     @cached_property
     def _early(self) -> tuple[tuple[fmpq, ...], fmpq]:
         """The kinks that are told one by one, and where they end."""
-        until = self._wanted
-        while True:
-            found = kinks_of(self.transform.numerator, self.transform.denominator, until, _MOST_KINKS)
-            if found is not None:
-                return found, until
-            until = until / 2
+        return kinks_of(self.transform.numerator, self.transform.denominator, self._wanted, _MOST_KINKS)
 
     @property
     def _kinks(self) -> tuple[fmpq, ...]:
@@ -109,8 +118,8 @@ class Course:
 
     @cached_property
     def followed(self) -> bool:
-        """Whether the modal sum takes over where the method of steps ends."""
-        return self.modal is not None and self.ends == self._wanted
+        """Whether the modal sum takes over where the method of steps ends: its bound holds there, be it wide or not."""
+        return self.modal is not None and self.ends >= self.modal.rest.since
 
     @cached_property
     def begins(self) -> tuple[fmpq, ...]:
@@ -149,21 +158,41 @@ class Course:
                     alive.append(mode)
         return Group(_ZERO, _ONE, _ZERO, tuple(alive), self.transform.at_origin, modal.rest, tuple(left))
 
-    @cached_property
-    def _steps(self) -> Steps:
-        """The early terms, at a precision at which little enough is lost at their end."""
-        bits = 2 * _BITS
+    def _steps(self, number: int) -> Steps:
+        """Return early terms as far as one of them at least, precisely enough for little to be lost at their end."""
+        count = _CHUNK
+        while count <= number:
+            count *= 2
+        if count not in self._told:
+            self._told[count] = self._precise(self._kinks[:count])
+        return self._told[count]
+
+    def _precise(self, kinks: Sequence[fmpq]) -> Steps:
+        """Return the terms of kinks; about twice as many bits are lost in the sums of twice as many."""
+        bits = 2 * (_BITS + self._lost)
         while True:
-            steps = Steps(self.transform, self._kinks, bits)
+            steps = Steps(self.transform, kinks, bits)
             with working_precision(bits):
-                end = summed(steps.modes(len(self._kinks) - 1), arb(0))[0] if self._kinks else arb(0)
-                if end.rad() < self._scale * arb(2) ** -_BITS or bits > HIGHEST:
-                    return steps
-            bits *= 2
+                end = summed(steps.modes(len(kinks) - 1), arb(0))[0] if kinks else arb(0)
+            missing = self._missing(end)
+            self._lost = max(0, missing + bits - _BITS)
+            if missing <= 0 or bits > HIGHEST:
+                return steps
+            bits += max(missing, _BITS)
+
+    def _missing(self, value: arb) -> int:
+        """Return how many bits too few a value of the response is known to."""
+        with working_precision(64):
+            if not value.is_finite():
+                return 2 * _BITS
+            if value.rad() == 0:
+                return -HIGHEST
+            lost = (arb(value.rad()) / self._scale).log() / arb(2).log() + _BITS
+            return int(lost.upper().fmpq().ceil())
 
     def _modes(self, number: int) -> tuple[Mode, ...]:
         """Return the modes from an early kink on, without the oscillation of the input where that is gone for good."""
-        modes = self._steps.modes(number)
+        modes = self._steps(number).modes(number)
         if self.transform.period is None or self.looped or number < len(self._kinks) - 1:
             return modes
         return modes[:-1]
@@ -181,7 +210,7 @@ class Course:
         if number < 0:
             return Stretch((), _BITS)
         group = Group(_ZERO, _ONE, self._kinks[number], self._modes(number))
-        return Stretch((group,), self._steps.bits)
+        return Stretch((group,), self._steps(number).bits)
 
     @cached_property
     def jumps(self) -> dict[fmpq, fmpq]:
@@ -224,7 +253,8 @@ class Course:
         order += 0 if self.transform.period is None else 2
         if order < 1:
             return None
-        return monotone_start(self._steps.modes(0), order, self._kinks[1] - self._kinks[0], self._steps.bits)
+        first = self._steps(0)
+        return monotone_start(first.modes(0), order, self._kinks[1] - self._kinks[0], first.bits)
 
     def _number(self, index: int) -> int | None:
         """Return the number of the kink at which a piece begins, -1 before the first; None after the early pieces."""
@@ -250,7 +280,7 @@ class Course:
         if self.looped:
             if not self.followed or self.modal is None:
                 return None
-            return Fading(self.modal.modes(2 * _BITS), self.modal.rest, _ZERO, self.ends)
+            return Fading(self.modal.modes(2 * _BITS), self.modal.rest, _ZERO, self.modal.rest.since)
         if not self._kinks:
             return Fading((), None, _ZERO, _ZERO)
         last = self._kinks[-1]

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import lru_cache
+from itertools import chain, islice
 
 from flint import acb, acb_poly, arb, fmpq
 
@@ -20,8 +22,15 @@ from specgate.terms.precision import series_terms, working_precision
 _RADIANS = 90
 """Height of the line times the longest delay that is worth its cells."""
 
-_SPREADS = (12, 8, 6, 5, 4, fmpq(7, 2), 3, fmpq(5, 2), 2, fmpq(3, 2), 1)
-"""Distances of the line from the axis that are tried, in parts of the longest delay."""
+_FAR = tuple(fmpq(halves, 2) for halves in (24, 16, 12, 10, 8, 7, 6, 5, 4, 3, 2))
+_NEAR = tuple(fmpq(part, 2**power) for power in range(2, 8) for part in (3, 2))
+"""Distances of the line from the axis that are tried, in parts of the longest delay.
+
+Beside a dead time much longer than the lags a long chain of poles lies near Re s = ln(gain)/delay, and the line is best
+right of it.
+"""
+
+_TRIED = 4
 
 
 @dataclass(frozen=True)
@@ -73,16 +82,17 @@ def poles_right_of(transform: Transform, left: fmpq) -> Poles | None:
     return None
 
 
-def suitable_lines(transform: Transform) -> list[fmpq]:
-    """Return lines (real parts) to try, those that leave least first: far from the axis, and yet with few poles."""
+def suitable_lines(transform: Transform, *, near: bool = False) -> Iterator[fmpq]:
+    """Yield lines (real parts) to try, those that leave least first: far from the axis, and yet with few poles.
+
+    near: those within one over the longest delay.
+    """
     longest = transform.denominator.delayed[-1][0]
-    found = []
-    for spread in _SPREADS:
-        left = -fmpq(spread) / longest * fmpq(199, 200)
+    for spread in _NEAR if near else _FAR:
+        left = -spread / longest * fmpq(199, 200)
         height = dominated_beyond(transform.denominator, left)
         if height is not None and height * longest <= _RADIANS:
-            found.append(left)
-    return found
+            yield left
 
 
 class Modal:
@@ -112,7 +122,8 @@ class Modal:
 
 def modal(transform: Transform, since: fmpq) -> Modal | None:
     """Return the modal sum of a retarded, stable transform with its remainder from a time on; None: not found."""
-    for left in suitable_lines(transform)[:4]:
+    lines = (islice(suitable_lines(transform, near=near), _TRIED) for near in (False, True))
+    for left in chain.from_iterable(lines):
         for nudge in (fmpq(1), fmpq(93, 100)):
             poles = poles_right_of(transform, left * nudge)
             if poles is None:

@@ -40,7 +40,7 @@ from specgate.terms.precision import series_terms, working_precision
 
 ORDERS = (0, 1, 2, 3)
 _BITS = 64
-_MOST = 4000
+_MOST = 12000
 
 
 @dataclass(frozen=True)

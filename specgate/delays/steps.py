@@ -6,8 +6,8 @@ With D = d0 + sum of dk e^(-tk s), Y = N/D = sum over T of c_T(s) e^(-T s), wher
 
 Every c_T is rational with poles at the roots of d0 alone, and its inverse transform acts from t = T on: up to any time
 finitely many of them count, and y(t) is the sum of their residues exactly. About a root p of d0 of multiplicity m the
-recursion is one of Laurent series, each step adding m to the order of the pole. Between two kinks the terms with one p
-are put together: a polynomial in t times e^(p t).
+recursion is one of Laurent series, each step adding m to the order of the pole, less the times that p is a root of all
+dk. Between two kinks the terms with one p are put together: a polynomial in t times e^(p t).
 
 With one minus a cosine as input every c_T has a factor G more (see `swing`), and a simple pole at jw.
 
@@ -18,12 +18,14 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from heapq import heappop, heappush
 
 from flint import acb, acb_poly, acb_series, arb, fmpq
 
 from specgate.delays.laurent import as_time_polynomial, of_polynomial, principal, without_root
 from specgate.delays.swing import pole_of, shaped
 from specgate.delays.transform import Transform
+from specgate.systems.polynomials import order_at_origin
 from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root, certified_roots
 from specgate.terms.precision import series_terms, working_precision
@@ -78,17 +80,25 @@ def summed(modes: Sequence[Mode], x: arb) -> Values:
     return total[0], total[1], total[2], total[3]
 
 
-def kinks_of(numerator: Quasi, denominator: Quasi, until: fmpq, most: int) -> tuple[fmpq, ...] | None:
-    """Return the times up to `until` at which a new term begins, in order; None for more than `most`."""
+def kinks_of(numerator: Quasi, denominator: Quasi, until: fmpq, most: int) -> tuple[tuple[fmpq, ...], fmpq]:
+    """Return the times up to `until` at which a new term begins, in order, and up to when these are all.
+
+    At most `most` of them: where there are more, they are all up to the first that is left out.
+    """
     steps = [delay for delay, _ in denominator.delayed]
-    found = {delay for delay, _ in numerator.terms if delay <= until}
-    fresh = set(found)
-    while fresh:
-        fresh = {time + step for time in fresh for step in steps if time + step <= until} - found
-        found |= fresh
-        if len(found) > most:
-            return None
-    return tuple(sorted(found))
+    waiting = sorted(delay for delay, _ in numerator.terms if delay <= until)
+    found: list[fmpq] = []
+    while waiting:
+        time = heappop(waiting)
+        if found and found[-1] == time:
+            continue
+        if len(found) == most:
+            return tuple(found), time
+        found.append(time)
+        for step in steps:
+            if time + step <= until:
+                heappush(waiting, time + step)
+    return tuple(found), until
 
 
 class Steps:
@@ -114,17 +124,23 @@ class Steps:
 
     def _about(self, root: acb, multiplicity: int) -> tuple[acb, list[acb_poly]]:
         """Return a root of d0 with the polynomial in t - T of each term that begins at T."""
+        order = _Order(multiplicity, self._shared if root.is_zero() else 0)
         levels = _levels(self.kinks, self._numerator, self._denominator)
-        with series_terms(multiplicity * max(levels, default=1) + multiplicity):
-            local = _Local(self._numerator, self._denominator, root, multiplicity, self._period)
-            found = [principal(series, level * multiplicity) for level, series in local.terms(self.kinks)]
+        with series_terms(order.at(max(levels, default=1)) + multiplicity):
+            local = _Local(self._numerator, self._denominator, root, order, self._period)
+            found = [principal(series, order.at(level)) for level, series in local.terms(self.kinks)]
         return root, [acb_poly(as_time_polynomial(parts)) for parts in found]
+
+    @property
+    def _shared(self) -> int:
+        """How often s = 0 is a root of every delayed term of D."""
+        return min((order_at_origin(p) for _, p in self._denominator.delayed), default=0)
 
     def _about_swing(self, period: fmpq) -> tuple[acb, list[acb_poly]]:
         """Return the same for the pole of the input."""
         pole, residue = pole_of(period)
         with series_terms(1):
-            local = _Local(self._numerator, self._denominator, pole, 0, None)
+            local = _Local(self._numerator, self._denominator, pole, _Order(0, 0), None)
             return pole, [acb_poly([series[0] * residue]) for _, series in local.terms(self.kinks)]
 
     def modes(self, index: int) -> tuple[Mode, ...]:
@@ -145,16 +161,36 @@ class Steps:
         )
 
 
-class _Local:
-    """The recursion of the terms as Laurent series about one root of d0; a term is x^(-m level) times a series.
+@dataclass(frozen=True)
+class _Order:
+    """How often d0 has a root, and how often, no more than that, every delayed term of D has it."""
 
-    multiplicity: 0 for a point that is no root.
+    own: int
+    shared: int
+
+    @property
+    def gain(self) -> int:
+        """By how much the order of the pole grows from one term to those that it drives."""
+        return self.own - self.shared
+
+    def at(self, level: int) -> int:
+        """Return the order of the pole of a term that has been divided by d0 so often."""
+        return self.own + (level - 1) * self.gain
+
+
+class _Local:
+    """The recursion of the terms as Laurent series about one root of d0; a term is x^-order.at(level) times a series.
+
+    order: of zeros for a point that is no root.
     """
 
-    def __init__(self, numerator: Quasi, denominator: Quasi, root: acb, multiplicity: int, period: fmpq | None) -> None:
-        self._m = multiplicity
-        self._inverse = 1 / without_root(of_polynomial(denominator.undelayed, root), multiplicity)
-        self._delayed = [(delay, of_polynomial(p, root)) for delay, p in denominator.delayed]
+    def __init__(self, numerator: Quasi, denominator: Quasi, root: acb, order: _Order, period: fmpq | None) -> None:
+        self._order = order
+        self._base = without_root(of_polynomial(denominator.undelayed, root), order.own)
+        self._inverse = 1 / self._base
+        self._delayed = [
+            (delay, without_root(of_polynomial(p, root), order.shared)) for delay, p in denominator.delayed
+        ]
         self._driven = {delay: shaped(of_polynomial(p, root), root, period) for delay, p in numerator.terms}
 
     def terms(self, kinks: Sequence[fmpq]) -> Iterator[tuple[int, acb_series]]:
@@ -174,8 +210,13 @@ class _Local:
         highest = max(level for level, _ in parts)
         total = acb_series([0])
         for level, series in parts:
-            total = total + series * acb_series([*([0] * (self._m * (highest - level))), 1])
-        return highest + 1, total * self._inverse
+            lifted = self._order.gain * (highest - level)
+            total = total + (series * acb_series([*([0] * lifted), 1]) if lifted else series)
+        return highest + 1, self._divided(total)
+
+    def _divided(self, series: acb_series) -> acb_series:
+        """Return a series divided by d0, the root left out; FLINT divides by a linear one in one pass."""
+        return series / self._base if len(self._base.coeffs()) <= 2 else series * self._inverse
 
 
 def _levels(kinks: Sequence[fmpq], numerator: Quasi, denominator: Quasi) -> Iterator[int]:

@@ -105,11 +105,20 @@ class Patch:
     def hull(self, order: int) -> Hull:
         """Return the hull of the derivative of an order (0, 1 or 2)."""
         if order not in self._hulls:
-            self._hulls[order] = self.above(LEVEL, order)
+            self._hulls[order] = self._above(LEVEL, order)
         return self._hulls[order]
 
     def above(self, line: Line, order: int) -> Hull:
         """Return the hull of the derivative of an order (0, 1 or 2) of y - line."""
+        if line.slope != 0:
+            return self._above(line, order)
+        low, high = self.hull(order)
+        if order > 0 or line.value == 0:
+            return low, high
+        with working_precision(self.bits):
+            return (low - line.value).lower(), (high - line.value).upper()
+
+    def _above(self, line: Line, order: int) -> Hull:
         with working_precision(self.bits):
             middle = (self.left + self.right) / 2
             away = arb(0, arb((self.right - self.left) / 2).upper())

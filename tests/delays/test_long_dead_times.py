@@ -1,0 +1,115 @@
+"""A dead time much longer than the lag of what it stands before, against a closed form.
+
+With L = (k + i/s) e^(-s) / (lag s + 1) the step response is the sum over j of (-1)^(j - 1) times the step response of
+L^j. That of 1/(lag s + 1)^j is the distribution function F_j of a sum of j exponential times (Erlang); integrated n
+times it is E[(t - G)_+^n]/n!, G the sum, and E[G^m; G <= t] = lag^m j (j + 1) ... (j + m - 1) F_(j + m)(t).
+"""
+
+from __future__ import annotations
+
+from fractions import Fraction
+from functools import cache
+
+import mpmath
+import pytest
+from flint import arb, fmpq
+
+from specgate.delays.inputs import respond_late
+from specgate.response.inputs import Input
+from specgate.response.questions import TimeResponse
+
+from .conftest import closed, late
+
+DIGITS = 160
+LAWS = {
+    "proportional": (Fraction(1, 2), Fraction(0)),
+    "strong proportional": (Fraction(4, 5), Fraction(0)),
+    "integral": (Fraction(0), Fraction(9, 25)),
+    "both": (Fraction(1, 3), Fraction(2, 5)),
+    "near its limit": (Fraction(9, 10), Fraction(0)),
+}
+LOOPS = [(law, ratio) for law in LAWS for ratio in (100, 1000) if (law, ratio) != ("near its limit", 1000)]
+
+
+def erlang(count: int, x: mpmath.mpf) -> mpmath.mpf:
+    """Return P(G <= x) for a sum of so many exponential times of mean one."""
+    term = total = mpmath.mpf(1)
+    for k in range(1, count):
+        term = term * x / k
+        total += term
+    return 1 - mpmath.exp(-x) * total
+
+
+@cache
+def true_value(law: str, ratio: int, time: Fraction) -> mpmath.mpf:
+    """Return y at a time, the unit step at 0."""
+    k, i = LAWS[law]
+    with mpmath.workdps(DIGITS):
+        total = mpmath.mpf(0)
+        for j in range(1, int(time) + 1):
+            x = mpmath.mpf((time - j).numerator) / (time - j).denominator
+            for n in range(j + 1):
+                factor = mpmath.binomial(j, n) * k ** (j - n) * i**n
+                if factor != 0:
+                    total -= (-1) ** j * factor * _integrated(j, n, x, ratio)
+        return total
+
+
+def _integrated(j: int, n: int, x: mpmath.mpf, ratio: int) -> mpmath.mpf:
+    total, rising = mpmath.mpf(0), mpmath.mpf(1)
+    for m in range(n + 1):
+        total += mpmath.binomial(n, m) * x ** (n - m) * (-1) ** m * rising / ratio**m * erlang(j + m, x * ratio)
+        rising *= j + m
+    return total / mpmath.factorial(n)
+
+
+@cache
+def response(law: str, ratio: int) -> TimeResponse:
+    k, i = (fmpq(value.numerator, value.denominator) for value in LAWS[law])
+    lag = fmpq(1, ratio)
+    above, below = ([k, i], [lag, 1, 0]) if i != 0 else ([k], [lag, 1])
+    found = respond_late([(closed(late(above, below, fmpq(1))), Input("step", {"size": fmpq(1)}))])
+    assert not hasattr(found, "reason"), found
+    return found  # type: ignore[return-value]
+
+
+def near(ball: arb) -> Fraction:
+    exact = ball.mid().fmpq()
+    return Fraction(int(exact.p), int(exact.q))
+
+
+@pytest.mark.parametrize(("law", "ratio"), LOOPS)
+def test_values(law: str, ratio: int) -> None:
+    found = response(law, ratio)
+    for j in (1, 2, 5, 9):
+        for after in (Fraction(1, 3 * ratio), Fraction(j, ratio), Fraction(7 * j, 2 * ratio), Fraction(1, 2)):
+            ball = found.enclose(fmpq((j + after).numerator, (j + after).denominator), 128)
+            assert ball.rad() < arb(2) ** -90
+            with mpmath.workdps(40):
+                found_value = mpmath.mpf(ball.mid().str(40, radius=False))
+                assert abs(found_value - true_value(law, ratio, j + after)) < mpmath.mpf(10) ** -26
+
+
+@pytest.mark.parametrize(("law", "ratio"), LOOPS)
+def test_settling_and_extremes(law: str, ratio: int) -> None:
+    """Just before the settling time y is outside of the band, just after it inside; no value is above the greatest."""
+    found = response(law, ratio)
+    final = found.final_value().exact
+    assert final is not None
+    band = final / 20
+    settled = found.settling(band)
+    assert settled.absent is None
+    time, edge = near(settled.enclose(80)), Fraction(int(band.p), int(band.q))
+    target = Fraction(int(final.p), int(final.q))
+    for side, outside in ((-1, True), (1, False)):
+        away = abs(true_value(law, ratio, time + Fraction(side, 10**9)) - _mp(target))
+        assert bool(away > _mp(edge)) is outside
+    top, low = (_mp(near(ball)) for ball in (found.greatest().value.enclose(60), found.least().value.enclose(60)))
+    close = mpmath.mpf(10) ** -12
+    for step in range(1, 60):
+        value = true_value(law, ratio, Fraction(step, 7) + Fraction(3, 2 * ratio))
+        assert low - close <= value <= top + close
+
+
+def _mp(value: Fraction) -> mpmath.mpf:
+    return mpmath.mpf(value.numerator) / value.denominator
