@@ -199,6 +199,10 @@ def _sign(value: Answer, threshold: fmpq) -> int | None:
     """Return the sign of value minus threshold, None where it stays undecided."""
     if value.exact is not None:
         return int(value.exact > threshold) - int(value.exact < threshold)
+    equal = None if value.against is None or not value.enclose(SHOWN).overlaps(arb(threshold)) else value.against
+    decided = None if equal is None else equal(threshold)
+    if decided is not None:
+        return decided
 
     def difference(bits: int) -> arb:
         ball = value.enclose(bits)

@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping, Sequence
 
 from specgate.approximations import (
     bandwidth_from_pair,
+    damping_from_phase_margin,
     delay_margin_from_phase_margin,
     distant_zero,
     dominant_pair,
@@ -14,9 +15,11 @@ from specgate.approximations import (
     first_order_settling,
     margins_from_sensitivity,
     near_cancellation,
+    overshoot_from_phase_margin,
     real_poles_settling,
     resonance_from_damping,
     right_half_plane_undershoot,
+    rise_from_bandwidth,
     second_order_delay,
     second_order_overshoot,
     second_order_peak_time,
@@ -49,6 +52,9 @@ _ROWS = (
     right_half_plane_undershoot,
     bandwidth_from_pair,
     resonance_from_damping,
+    rise_from_bandwidth,
+    damping_from_phase_margin,
+    overshoot_from_phase_margin,
     margins_from_sensitivity,
     delay_margin_from_phase_margin,
 )
@@ -57,9 +63,6 @@ APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for m
 """Every approximation that this version audits, by its name in the format."""
 
 LATER: Mapping[str, str] = {
-    "damping_from_phase_margin": "damping ratio as phase margin over 100 deg",
-    "overshoot_from_phase_margin": "overshoot by way of the damping ratio from the phase margin",
-    "rise_from_bandwidth": "rise time as 2.2 over bandwidth",
     "pade_dead_time": "dead time as a rational function",
     "half_rule": "a high-order model as one of low order with dead time",
     "hold_as_delay": "a hold as a dead time of half the period",

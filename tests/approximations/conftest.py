@@ -92,6 +92,10 @@ class Builder:
         above = fmpq_poly([exact(c) for c in reversed(numerator)])
         return of_polynomials(above, fmpq_poly([exact(c) for c in reversed(denominator)]), size, **more)
 
+    def closed(self, numerator: fmpq_poly, denominator: fmpq_poly) -> Features:
+        """Return the response of unity negative feedback around L = numerator/denominator."""
+        return of_polynomials(numerator, numerator + denominator)
+
     def opened(self, numerator: fmpq_poly, denominator: fmpq_poly) -> OpenedLoop:
         """Return L = numerator/denominator at a break of a loop that has no other modes."""
         transfer = TransferFunction(numerator, denominator)
