@@ -16,6 +16,11 @@ def configure(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--proof", action="store_true", help="with --format json: say of every bounded result how it was obtained"
     )
+    parser.add_argument(
+        "--formulas",
+        action="store_true",
+        help="put every formula of the catalogue to every response, break and loop: which hold, which not",
+    )
     parser.add_argument("-o", "--output", metavar="FILE", default="-", help="write to FILE instead of the terminal")
     parser.add_argument(
         "--color",
@@ -36,7 +41,7 @@ def run(options: argparse.Namespace) -> int:
     if options.proof and options.format != "json":
         print("specgate: --proof goes with --format json: the text has no room for records", file=sys.stderr)
         return status.UNUSABLE
-    judged = judge(options.project, drawn=options.format == "json", proof=options.proof)
+    judged = judge(options.project, drawn=options.format == "json", proof=options.proof, formulas=options.formulas)
     if options.format == "json":
         from specgate.exchange import json
 

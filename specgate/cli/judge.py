@@ -23,10 +23,11 @@ class Judged:
     status: int
 
 
-def judge(project: str, *, drawn: bool = True, proof: bool = False) -> Judged:
+def judge(project: str, *, drawn: bool = True, proof: bool = False, formulas: bool = False) -> Judged:
     """Read, compute and judge the project at the path `project` (a folder or one YAML file).
 
-    drawn, proof: whether what drawings show, and how bounded results were obtained, is computed too.
+    drawn, proof, formulas: whether what drawings show, how bounded results were obtained, and what every formula of the
+    catalogue gives, is computed too.
     """
     from specgate.intake.load import Problems, load
     from specgate.review.build import review, unusable
@@ -34,5 +35,5 @@ def judge(project: str, *, drawn: bool = True, proof: bool = False) -> Judged:
 
     with progress("reading and computing"):
         loaded = load(Path(project))
-        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, Wanted(drawn, proof))
+        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, Wanted(drawn, proof, formulas))
     return Judged(result, _STATUS[result.gate.outcome])

@@ -44,7 +44,7 @@ def run(options: argparse.Namespace) -> int:
     from specgate.report import terminal
     from specgate.review.types import Unusable
 
-    judged = judge(options.project)
+    judged = judge(options.project, formulas=True)
     if isinstance(judged.review, Unusable):
         text = terminal.render(judged.review, width=width(sys.stderr), colour=colour("auto", sys.stderr))
         print(text, end="", file=sys.stderr)

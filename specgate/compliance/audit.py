@@ -116,7 +116,7 @@ def _union(chained: Linked, arguments: Arguments, policy: Policy) -> Iterator[Au
     """Yield the conditions of all links; one that holds for two of them is said once."""
     held: set[tuple[str, str]] = set()
     for link in chained.links:
-        for one in _audited(link, arguments, policy):
+        for one in audited_conditions(link, arguments, policy):
             name = one.approximation, one.condition.key
             if name not in held or one.found.holds is not Trilean.YES:
                 yield one
@@ -124,7 +124,7 @@ def _union(chained: Linked, arguments: Arguments, policy: Policy) -> Iterator[Au
                 held.add(name)
 
 
-def _audited(link: Link, arguments: Arguments, policy: Policy) -> Iterator[AuditedCondition]:
+def audited_conditions(link: Link, arguments: Arguments, policy: Policy) -> Iterator[AuditedCondition]:
     """Yield every condition of a link, those of its premises first, with what was found."""
     for owner, condition in conditions(link.row.name, arguments.measure, link.row.variant):
         own = policy.own(owner.name, condition)
@@ -276,7 +276,7 @@ def _applicable(audited: Audit, matter: Matter, policy: Policy) -> Iterator[tupl
         if matter.arguments.measure not in row.estimates:
             continue
         link = Link(row, matter.viewed, matter.again)
-        if all(one.found.holds is Trilean.YES for one in _audited(link, matter.arguments, policy)):
+        if all(one.found.holds is Trilean.YES for one in audited_conditions(link, matter.arguments, policy)):
             value = row.evaluate(matter.viewed, matter.arguments)
             if value.absent is None:
                 yield row, value

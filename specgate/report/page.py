@@ -17,13 +17,14 @@ from markupsafe import Markup, escape
 
 from specgate.report.figures import error, frequency, poles, reserve, step, wiring
 from specgate.report.figures.scales import LogScale, Scale
-from specgate.report.parts import matrix, ranges
+from specgate.report.parts import formulas, matrix, ranges
 from specgate.report.view import View
 
 SECTIONS = (
     ("front", "May we sign?"),
     ("matrix", "Compliance matrix"),
     ("audits", "Where the claims stand"),
+    ("formulas", "Which formulas hold"),
     ("loops", "Loop sheets"),
     ("trace", "Trace"),
     ("open", "Waivers, deviations, open points"),
@@ -213,7 +214,7 @@ def _render(
         .render(
             view=view,
             screen=screen,
-            sections=SECTIONS,
+            sections=[one for one in SECTIONS if one[0] != "formulas" or view.formulas],
             styles=[(medium, Markup(style)) for medium, style in styles],
             created=None if view.front.title.date == "undated" else view.front.title.date,
             owners=owners,
@@ -223,6 +224,7 @@ def _render(
             findings_left_out=max(0, len(view.findings) - findings),
             trace_lines=view.trace[:lines],
             trace_left_out=max(0, len(view.trace) - lines),
+            formulas=view.formulas if screen else formulas.printed(view.formulas),
             ranges_at_most=len(view.ranges) if screen else ranges.ROWS_AT_MOST,
             **(more | marked),
         )

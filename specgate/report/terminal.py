@@ -7,7 +7,7 @@ from collections.abc import Callable, Iterator
 from specgate.report.clean import cleaned
 from specgate.report.columns import GAP, Cell, Column, cells, cut, filled, fitted, wrapped
 from specgate.report.digits import FIGURE_SPACE, POINT_SPACE, aligned
-from specgate.report.parts import front, matrix
+from specgate.report.parts import formulas, front, matrix
 from specgate.report.words import LEVELS, OUTCOMES, Status, counted
 from specgate.review.types import FindingReview, Review, Unusable
 
@@ -31,6 +31,16 @@ COLUMNS = (
     Column("reserve", number=True, expendable=3),
     Column("standing", expendable=4),
     Column("basis", least=12, expendable=1),
+)
+FORMULA_COLUMNS = (
+    Column("formula", least=24),
+    Column("estimates", least=14),
+    Column("gives", number=True),
+    Column("proved", number=True, expendable=2),
+    Column("error", right=True),
+    Column("side", expendable=1),
+    Column("state"),
+    Column("fails"),
 )
 STANDING = next(k for k, column in enumerate(COLUMNS) if column.heading == "standing")
 """Number of the column of the standing; where it is left out, a standing that is not sound is said below the line."""
@@ -83,6 +93,41 @@ def _review(review: Review, width: int, paint: _Paint) -> Iterator[str]:
         yield ""
         yield paint(f"Findings ({_levels(review.findings)})", "bold")
         yield from _findings(review.findings, width, paint)
+    for table in formulas.tables(review):
+        yield ""
+        yield from _formulas(table, width, paint)
+
+
+def _formulas(table: formulas.FormulaTable, width: int, paint: _Paint) -> Iterator[str]:
+    """Yield the formulas on one response: those that hold first, below each of the others what fails."""
+    yield paint(f"Formulas on {table.name}", "bold")
+    yield from wrapped(table.sentence, width)
+    lines = [
+        [
+            Cell(row.name),
+            Cell(row.measure),
+            Cell(row.gives),
+            Cell(row.proved),
+            Cell(row.error, "out_of_range" if row.notable else ""),
+            Cell(row.side, "quiet"),
+            Cell(f"{row.state.shape} {row.state.word}", row.state.key),
+            Cell(row.fails, "quiet"),
+        ]
+        for row in table.rows
+    ]
+    lines = _aligned(lines, [k for k, column in enumerate(FORMULA_COLUMNS) if column.number])
+    if lines:
+        widths = fitted(FORMULA_COLUMNS, lines, width)
+        headings = [Cell(column.heading, "bold") for column in FORMULA_COLUMNS]
+        for line in (headings, *lines):
+            yield GAP.join(
+                paint(filled(cut(line[k].text, w), w, FORMULA_COLUMNS[k].right), line[k].key) for k, w in widths.items()
+            )
+    for letter, condition in table.conditions:
+        yield from wrapped(f"{letter} {condition}", width, "  ", "    ")
+    for words, groups in (("No value here", table.silent), ("Nothing to estimate", table.absent)):
+        for names, reason in groups:
+            yield from (paint(text, "quiet") for text in wrapped(f"{words}: {names} ({reason})", width, "", "    "))
 
 
 def _table(review: Review, width: int, paint: _Paint) -> Iterator[str]:

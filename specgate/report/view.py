@@ -9,6 +9,7 @@ from collections.abc import Callable
 
 from specgate.report.clean import cleaned
 from specgate.report.parts.audit import Audit, audits
+from specgate.report.parts.formulas import FormulaTable, tables
 from specgate.report.parts.front import Front, front
 from specgate.report.parts.loops import LoopSheet, sheets
 from specgate.report.parts.matrix import Group, groups
@@ -27,6 +28,7 @@ class View:
     groups: tuple[Group, ...]
     audits: tuple[Audit, ...]
     ranges: tuple[Range, ...]
+    formulas: tuple[FormulaTable, ...]
     loops: tuple[LoopSheet, ...]
     trace: tuple[TraceLine, ...]
     open_points: tuple[OpenPoint, ...]
@@ -43,6 +45,7 @@ def view(review: Review, shown: Callable[[str], bool] = lambda character: True) 
         groups=groups(review),
         audits=audits(review),
         ranges=ranges(review),
+        formulas=tables(review),
         loops=sheets(review),
         trace=lines(review),
         open_points=open_points(review),

@@ -10,8 +10,10 @@ from specgate.analysis.analyse import analyse
 from specgate.compliance.assess import assess
 from specgate.compliance.assumptions import Assumptions
 from specgate.compliance.thresholds import policy
+from specgate.compliance.uninvited import Uninvited
 from specgate.project.types import InputFile, Project
 from specgate.review.definitions import definitions
+from specgate.review.formulas import with_formulas
 from specgate.review.gate import gate
 from specgate.review.loops import loop
 from specgate.review.printing import location, short
@@ -54,6 +56,9 @@ def review(project: Project, wanted: Wanted | None = None) -> Review:
     said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments, assumptions))))
     again = analyses.again.loops
     loops = {name: loop(one, again[name], asked) for name, one in analyses.loops.items()}
+    thresholds = policy(project, analyses.nominal.values)
+    if asked.formulas:
+        loops = with_formulas(loops, analyses.loops, Uninvited(project, analyses, thresholds))
     rests = resting(project, analyses)
     requirements = {name: requirement(name, one, project, rests, graph, asked) for name, one in assessments.items()}
     shown = tuple(_finding(one) for one in said)
@@ -74,7 +79,7 @@ def review(project: Project, wanted: Wanted | None = None) -> Review:
                     "project": one.as_written,
                     "change": "looser" if one.looser else "tighter",
                 }
-                for one in policy(project, analyses.nominal.values).stated
+                for one in thresholds.stated
             ),
         ),
         units=project.units_read,

@@ -4,34 +4,29 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from flint import fmpq
-
 from specgate.analysis.arguments import said
 from specgate.approximations.table import APPROXIMATIONS, chain
 from specgate.compliance.assessment import (
     Assessment,
     Audit,
-    AuditedCondition,
     CriterionAssessment,
-    FormulaError,
     MethodAssessment,
 )
 from specgate.compliance.readings import Reading
 from specgate.compliance.reserves import reserve
 from specgate.compliance.resting import by_response
-from specgate.compliance.wording import found_value, subject_name
+from specgate.compliance.wording import subject_name
 from specgate.project.types import Project
 from specgate.response.answers import Answer
 from specgate.review.assumptions import assumption
+from specgate.review.audited import condition, error_of
 from specgate.review.masks import mask_of
 from specgate.review.pictures import error_curve, separation
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
 from specgate.review.resting import Resting
 from specgate.review.types import (
     BasisReview,
-    ConditionReview,
     CriterionReview,
-    ErrorReview,
     InsteadReview,
     LimitReview,
     MethodReview,
@@ -39,9 +34,8 @@ from specgate.review.types import (
     ReserveReview,
 )
 from specgate.review.wanted import Wanted
-from specgate.terms.enclosed import ends, rounded
 from specgate.terms.unit import ONE, Unit
-from specgate.terms.verdicts import Trilean, Verdict
+from specgate.terms.verdicts import Verdict
 from specgate.traceability.graph import Graph
 
 
@@ -173,11 +167,11 @@ def _basis(assessed: CriterionAssessment, *, drawn: bool) -> BasisReview:
         else stated(audit.claimed, unit, audit.claim.value.as_written),
         formula=None if audit.formula is None else amount_of(audit.formula, unit),
         formula_text=audit.formula_text,
-        error=None if audit.error is None else _error(audit.error, unit),
+        error=None if audit.error is None else error_of(audit.error, unit),
         claim_agrees=audit.agrees,
         implied=_implied(audit, unit),
         accuracy=audit.accuracy,
-        conditions=tuple(_condition(one) for one in audit.conditions),
+        conditions=tuple(condition(one) for one in audit.conditions),
         instead=_instead(audit, unit),
         reason=audit.reason,
         variant=audit.variant,
@@ -203,33 +197,6 @@ def _implied(audit: Audit, unit: Unit) -> Mapping[str, float] | None:
     if low is None:
         return None
     return {"lower": low} if high is None else {"lower": low, "upper": high}
-
-
-def _error(error: FormulaError, unit: Unit) -> ErrorReview:
-    relative = None if error.relative is None else plain_number(error.relative, fmpq(1))
-    return ErrorReview(relative, error.side, amount_of(error.absolute, unit, _size(error.truth, unit)))
-
-
-def _size(truth: Answer, unit: Unit) -> fmpq | None:
-    """Return the truth to two digits, as what an error is small against."""
-    if unit.kind == "decibel":
-        return None
-    size = rounded(ends(abs(truth.enclose(64)))[1], "up", 2) / unit.si_factor
-    return size if size != 0 else None
-
-
-def _condition(audited: AuditedCondition) -> ConditionReview:
-    holds = audited.found.holds
-    return ConditionReview(
-        key=audited.condition.key,
-        name=audited.condition.named(audited.threshold),
-        source=audited.condition.source,
-        required=audited.condition.asked(audited.threshold),
-        found=found_value(audited.found),
-        holds=None if holds is Trilean.UNKNOWN else holds is Trilean.YES,
-        approximation=audited.approximation,
-        policy=audited.policy,
-    )
 
 
 def _instead(audit: Audit, unit: Unit) -> InsteadReview | None:

@@ -191,3 +191,17 @@ def test_proof_is_for_the_machine_readable_result() -> None:
     found = json.loads(run("check", HELD, "--proof", "--format", "json").stdout)
     settling = found["requirements"]["GH-SYS-031"]["criteria"][0]["result"]
     assert settling["proof_record"]["searched_until"] >= settling["value"]
+
+
+def test_formulas_are_put_to_every_response_where_that_is_asked_for() -> None:
+    plain, asked = run("check", HELD).stdout, run("check", HELD, "--formulas").stdout
+    assert asked.startswith(plain)
+    assert "Formulas on gate_position.follow" in asked.removeprefix(plain)
+    found = json.loads(run("check", HELD, "--formulas", "--format", "json", env={"PYTHONHASHSEED": "3"}).stdout)
+    jsonschema.Draft202012Validator(json.loads((ROOT / "schemas" / "results.schema.json").read_text())).validate(found)
+    follow = found["loops"]["gate_position"]["responses"]["follow"]
+    settling = next(row for row in follow["formulas"]["rows"] if row["approximation"] == "second_order_settling")
+    assert settling["applies"] is False
+    assert settling["failing"][0]["key"] == "separation"
+    assert settling["error"]["relative"] == pytest.approx(-0.78, abs=5e-3)
+    assert "formulas" not in json.loads(run("check", HELD, "--format", "json").stdout)["loops"]["gate_position"]

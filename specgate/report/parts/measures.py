@@ -104,14 +104,14 @@ def _column(
         if name not in cells:
             yield ""
         elif value == "none":
-            yield f"none [{letters.setdefault(cells[name].note, _letter(len(letters)))}]"
+            yield f"none [{letters.setdefault(cells[name].note, letter(len(letters)))}]"
         else:
             proof = {"exact": "= ", "estimated": "~ "}.get(cells[name].bound, "")
             said = cells[name].unit in ("", unit or own)
             yield proof + (value if said else f"{value} {cells[name].unit}")
 
 
-def _letter(number: int) -> str:
+def letter(number: int) -> str:
     """Return a, b … z, aa, ab …"""
     high, low = divmod(number, 26)
-    return (_letter(high - 1) if high else "") + "abcdefghijklmnopqrstuvwxyz"[low]
+    return (letter(high - 1) if high else "") + "abcdefghijklmnopqrstuvwxyz"[low]

@@ -17,6 +17,7 @@ from specgate.review.types.bases import (
     PointReview,
     SeparationReview,
 )
+from specgate.review.types.formulas import FormulaReview, FormulasReview
 from specgate.review.types.loops import (
     BreakReview,
     CrossingReview,
@@ -77,6 +78,8 @@ __all__ = [
     "ErrorCurveReview",
     "ErrorReview",
     "FindingReview",
+    "FormulaReview",
+    "FormulasReview",
     "FrequencyCurve",
     "GateReview",
     "HiddenMode",

@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import field
 
 from specgate.review.types.fields import omitted
+from specgate.review.types.formulas import FormulasReview
 from specgate.review.types.values import Amount, DelayedTerm, Enclosure, MeasureResult, Pole
 from specgate.terms.records import record
 
@@ -35,6 +36,8 @@ class ResponseReview:
     numerator_terms: tuple[DelayedTerm, ...] | None = omitted()
     """With dead time, in place of the numerator: a sum of terms."""
     denominator_terms: tuple[DelayedTerm, ...] | None = omitted()
+    formulas: FormulasReview | None = omitted()
+    """Every formula of the catalogue against this response; only where that was asked for."""
     reason: str | None = omitted()
     """Why there is no response (improper, not answered yet)."""
 
@@ -88,6 +91,7 @@ class BreakReview:
     numerator_terms: tuple[DelayedTerm, ...] | None = omitted()
     denominator_terms: tuple[DelayedTerm, ...] | None = omitted()
     frequency_response: FrequencyCurve | None = None
+    formulas: FormulasReview | None = omitted()
     reason: str | None = omitted()
 
 
@@ -124,5 +128,6 @@ class LoopReview:
     """Of a sampled loop: characteristic polynomial and poles are in z."""
     characteristic_terms: tuple[DelayedTerm, ...] | None = omitted()
     """With dead time, in place of the characteristic polynomial: a sum of terms."""
+    formulas: FormulasReview | None = omitted()
     reason: str | None = omitted()
     """Why the loop could not be solved (an algebraic loop)."""
