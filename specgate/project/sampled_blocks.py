@@ -19,13 +19,10 @@ from specgate.project.fit import Pair, plain_gain
 from specgate.project.rational_forms import Rational, only_pair
 from specgate.project.reader import ModelReader, is_zero
 from specgate.project.types import Polynomial, SampledModel, Subsystem, Value
-from specgate.sampled.blocks import SampledBlock
+from specgate.sampled.blocks import LONGEST_DELAY, SampledBlock
 from specgate.terms.dimensions import DIMENSIONLESS, TIME
 from specgate.terms.expressions import PLAIN, Inferred, as_dimension
 from specgate.terms.records import record
-
-LONGEST_DELAY = 200
-"""Longest delay in periods: every period of it is one more mode of the loop."""
 
 _RULES: Mapping[str, tuple[fmpq_poly, fmpq_poly]] = {
     "forward": (fmpq_poly([-1, 1]), fmpq_poly([1])),

@@ -15,7 +15,7 @@ from specgate.project.parameters import Values
 from specgate.project.signals import LoopSignals
 from specgate.project.temperatures import absolute
 from specgate.project.types import Break, Loop, Project, Response
-from specgate.sampled.blocks import SampledBlock, SampledInstance, SampledWiring, held
+from specgate.sampled.blocks import LONGEST_DELAY, SampledBlock, SampledInstance, SampledWiring, held
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.graph import reached, reversed_arcs
 from specgate.systems.opening import Cut
@@ -141,7 +141,9 @@ class Drawn:
         if not instances:
             return None
         self._refuse_two_periods()
-        return SampledWiring(self.periodic[instances[0].name].period, wiring, tuple(instances))
+        period = self.periodic[instances[0].name].period
+        self._refuse_long_dead_times(period)
+        return SampledWiring(period, wiring, tuple(instances))
 
     def _refuse_two_periods(self) -> None:
         first, *others = ((number, name) for number, name in self.names.items() if name in self.periodic)
@@ -155,6 +157,19 @@ class Drawn:
                     "rates in one loop are not answered",
                     other.place,
                     Related(one.place, f"`{one.subsystem}` is used here"),
+                )
+
+    def _refuse_long_dead_times(self, period: fmpq) -> None:
+        for uses in self.classes.values():
+            subsystem = self.project.subsystems[uses[0].call.subsystem]
+            block = self.blocks[subsystem.name].block
+            if block is not None and subsystem.dead_time is not None and block.dead_time > LONGEST_DELAY * period:
+                raise Fault(
+                    faults.VALUE,
+                    f"`{subsystem.dead_time.as_written}` is more than {LONGEST_DELAY} sampling periods of "
+                    f"{_seconds(period)}, which is not worked with: is the period meant?",
+                    subsystem.dead_time.place,
+                    Related(uses[0].call.place, f"`{subsystem.name}` is used here in a sampled loop"),
                 )
 
     def _outside(self, name: str) -> bool:

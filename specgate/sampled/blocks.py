@@ -12,6 +12,9 @@ from specgate.sampled.late import Punctual, punctual
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.terms.records import record
 
+LONGEST_DELAY = 200
+"""Longest delay in periods, of what a block holds on all ways together: every period of it is one more mode."""
+
 
 @record
 class SampledBlock:
@@ -61,8 +64,22 @@ class SampledWiring:
 
     @cached_property
     def punctual(self) -> Punctual:
-        """The continuous wiring with its dead times moved. Raises ValueError for one inside a loop of blocks in s."""
-        return punctual(self.continuous)
+        """The continuous wiring with its dead times moved.
+
+        Raises ValueError for one inside a loop of blocks in s, and for more than `LONGEST_DELAY` periods in all.
+        """
+        found = punctual(self.continuous)
+        if sum(self._kept(one, found) for one in self.instances) > LONGEST_DELAY:
+            raise ValueError(
+                f"the delays and dead times on the ways from the sampled blocks add up to more than {LONGEST_DELAY} "
+                "sampling periods, which is not worked with"
+            )
+        return found
+
+    def _kept(self, one: SampledInstance, found: Punctual) -> int:
+        """Return how many of the answers of a block are on their way at once."""
+        later = [[more for name, more in found.late.values() if name == one.held(out)] for out in one.block.outputs]
+        return sum(whole_periods(one.block.delay + max(more, default=fmpq(0)), self.period) for more in later)
 
     @property
     def late(self) -> bool:

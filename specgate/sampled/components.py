@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from functools import cached_property
 from itertools import combinations
 
@@ -11,6 +12,7 @@ from specgate.sampled.blocks import SampledWiring
 from specgate.sampled.circle import is_schur, is_schur_in_balls, roots_in_balls
 from specgate.sampled.cycle import Controller, Cycle
 from specgate.sampled.plant import Plant
+from specgate.sampled.rungs import kept
 from specgate.sampled.state_space import realised
 from specgate.sampled.steady import has_mode_at_one
 from specgate.systems.polynomials import ONE, exact_quotient
@@ -67,8 +69,12 @@ class Component:
             return ONE
         return None if self.cycle.exact is None else self.cycle.exact.charpoly()
 
-    def polynomial(self, bits: int) -> arb_poly:
-        """Return the characteristic polynomial in z of what the samples close, in balls."""
+    @cached_property
+    def polynomial(self) -> Callable[[int], arb_poly]:
+        """From a precision in bits to the characteristic polynomial in z of what the samples close, in balls."""
+        return kept(self._polynomial)
+
+    def _polynomial(self, bits: int) -> arb_poly:
         with working_precision(bits):
             if self.exact is not None:
                 return arb_poly(self.exact)

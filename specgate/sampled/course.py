@@ -20,6 +20,8 @@ from specgate.terms.precision import working_precision
 
 _GUARD = 96
 _KEPT = 4096
+MOST_EARLY = 4000
+"""Sampling periods until an input is set for the last time that are gone through one by one."""
 
 
 class SampledCourse(Pieces):

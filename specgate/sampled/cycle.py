@@ -228,10 +228,23 @@ class Cycle:
 
     def motion_over(self, length: fmpq | arb, bits: int) -> arb_mat:
         """Return e^(M length) of the moving states together with what is held, which stays as it is."""
-        with working_precision(bits + _GUARD):
-            if isinstance(length, fmpq):
-                return arb_mat(_joined(self.motion) * length).exp()
-            return (arb_mat(_joined(self.motion)) * length).exp()
+        if isinstance(length, arb):
+            with working_precision(bits + _GUARD):
+                return (arb_mat(self._joined) * length).exp()
+        key = (int(length.p), int(length.q), bits)
+        if key not in self._motions:
+            with working_precision(bits + _GUARD):
+                self._motions[key] = arb_mat(self._joined * length).exp()
+        return self._motions[key]
+
+    @cached_property
+    def _joined(self) -> fmpq_mat:
+        return _joined(self.motion)
+
+    @cached_property
+    def _motions(self) -> dict[tuple[int, int, int], arb_mat]:
+        """The motions over the lengths that were asked for, by length and precision."""
+        return {}
 
 
 def _moved(motion: Matrix, moving: int, states: Matrix, held: Matrix) -> Matrix:

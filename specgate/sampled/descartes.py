@@ -13,7 +13,7 @@ from collections.abc import Sequence
 from itertools import pairwise
 from math import comb
 
-from flint import arb, arb_poly, fmpq
+from flint import arb, arb_mat, arb_poly, fmpq
 
 from specgate.terms.precision import working_precision
 
@@ -40,6 +40,7 @@ def positive_roots(p: arb_poly, bits: int) -> Sequence[arb] | None:
 
 def _isolated(bernstein: list[arb]) -> Sequence[arb] | None:
     found: list[arb] = []
+    cut_in_two = _Cut(len(bernstein) - 1)
     waiting = [(fmpq(0), fmpq(1), bernstein, 0)]
     while waiting:
         left, right, b, depth = waiting.pop()
@@ -53,7 +54,7 @@ def _isolated(bernstein: list[arb]) -> Sequence[arb] | None:
         if depth == _DEEPEST:
             return None
         cut = left + (right - left) * _CUT
-        before, after = _halves(b)
+        before, after = cut_in_two.halves(b)
         if before[-1].contains(0):
             return None
         waiting += [(cut, right, after, depth + 1), (left, cut, before, depth + 1)]
@@ -79,16 +80,29 @@ def _changes(b: Sequence[arb]) -> tuple[int, int]:
     return min(low for low, _ in best.values()), max(high for _, high in best.values())
 
 
-def _halves(b: list[arb]) -> tuple[list[arb], list[arb]]:
-    """Return the coefficients left and right of the cut (de Casteljau)."""
-    part = arb(_CUT)
-    rest, row = 1 - part, b
-    before, after = [row[0]], [row[-1]]
-    while len(row) > 1:
-        row = [rest * one + part * other for one, other in pairwise(row)]
-        before.append(row[0])
-        after.append(row[-1])
-    return before, after[::-1]
+class _Cut:
+    """The cut of a part in two, as one matrix for all polynomials of a degree.
+
+    de Casteljau's scheme forms convex mixtures: row i is C(i, j) (1 - c)^(i - j) c^j; those of the right half are the
+    same from the other end.
+    """
+
+    def __init__(self, degree: int) -> None:
+        part = arb(_CUT)
+        rest, row = 1 - part, [arb(1)]
+        left = [row]
+        for _ in range(degree):
+            row = [rest * row[0], *(rest * one + part * other for other, one in pairwise(row)), part * row[-1]]
+            left.append(row)
+        zero = arb(0)
+        before = [[*row, *([zero] * (degree + 1 - len(row)))] for row in left]
+        after = [[*([zero] * (degree + 1 - len(row))), *row] for row in reversed(left)]
+        self._matrix = arb_mat([*before, *after])
+
+    def halves(self, b: Sequence[arb]) -> tuple[list[arb], list[arb]]:
+        """Return the coefficients left and right of the cut."""
+        found = (self._matrix * arb_mat(len(b), 1, b)).entries()
+        return found[: len(b)], found[len(b) :]
 
 
 def _between(left: fmpq, right: fmpq) -> arb:

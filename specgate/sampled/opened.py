@@ -19,6 +19,7 @@ from specgate.sampled.blocks import SampledBlock, SampledInstance, SampledWiring
 from specgate.sampled.components import Component
 from specgate.sampled.cycle import Controller, Cycle
 from specgate.sampled.plant import Plant
+from specgate.sampled.rungs import kept
 from specgate.sampled.solution import SampledSolution, solve_sampled
 from specgate.sampled.state_space import Row, of_rows, realised
 from specgate.sampled.transfer import Parts, PulseTransfer, divided
@@ -204,7 +205,7 @@ def _transfer(solution: SampledSolution, cut: _Cut, members: Sequence[str], slow
     lost = order_at_origin(drawn) - order_at_origin(least.a.charpoly())
     below = _known_below(wiring, members, lost)
     above = _known_above(inside, below, slow)
-    return PulseTransfer(above, below, lambda bits: _enclosed(cycle, back, place, above, below, bits))
+    return PulseTransfer(above, below, kept(lambda bits: _enclosed(cycle, back, place, above, below, bits)))
 
 
 def _injected(wiring: SampledWiring, cut: _Cut) -> SampledWiring:

@@ -12,7 +12,7 @@ from specgate.response.modes import Expansion
 from specgate.response.superposed.integrals import integral, square_integral
 from specgate.sampled import areas
 from specgate.sampled.areas import all_time, one_sided
-from specgate.sampled.course import SampledCourse
+from specgate.sampled.course import MOST_EARLY, SampledCourse
 from specgate.sampled.decay import Decay, quadratic
 from specgate.sampled.hulls import BLOCK, Hulls, derived
 from specgate.sampled.lasting import side
@@ -32,7 +32,10 @@ class SampledPieces(SampledCourse):
 
     @property
     def undefined(self) -> Absent | None:
-        """Why there is no such response: an impulse that no block in s makes a jump of."""
+        """Why there is no such response, or why it is not searched."""
+        if self._first > MOST_EARLY:
+            reason = f"an input that begins or ends more than {MOST_EARLY} sampling periods late is not searched"
+            return Absent(reason, proved=False)
         first = self._cycle.moving - self._drive.order
         seen = self._cycle.motion.c.tolist()
         for place, _, _ in self._drive.impulses:

@@ -7,6 +7,7 @@ from flint import arb_mat
 from specgate.terms.precision import working_precision
 
 _BLOCK = 64
+_FEW = 8
 
 
 class States:
@@ -36,10 +37,11 @@ class States:
         number, offset = divmod(index, _BLOCK)
         if number not in self._heads:
             self._heads[number] = self.far(number * _BLOCK)
-        if offset == 0:
-            return self._heads[number]
+        state = self._heads[number]
         with working_precision(self._bits):
-            return self._within(offset) * self._heads[number]
+            for power in (offset - offset % _FEW, offset % _FEW):
+                state = self._within(power) * state if power else state
+        return state
 
     def _within(self, offset: int) -> arb_mat:
         """Return M^offset, offset > 0."""

@@ -95,3 +95,14 @@ def test_it_does_not_matter_where_in_a_chain_the_dead_time_is() -> None:
         margins.append(loop.gain_margin().enclose(64))
     assert margins[0].overlaps(margins[1])
     assert margins[1].overlaps(margins[2])
+
+
+def test_delays_on_all_ways_are_limited_together() -> None:
+    case = CASES["fraction"][0]
+    for periods, allowed in ((99, True), (100, True), (101, False)):
+        wiring = late(replace(case, delay=Fraction(periods, 5)), str(Fraction(periods, 5)))
+        if allowed:
+            assert wiring.punctual.late
+            continue
+        with pytest.raises(ValueError, match="add up to more than 200 sampling periods"):
+            _ = wiring.punctual
