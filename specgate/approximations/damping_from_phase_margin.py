@@ -14,7 +14,6 @@ from flint import arb
 from specgate.approximations.approximation import Accuracy, Approximation
 from specgate.approximations.figures import combined
 from specgate.approximations.near_type_one import CONDITIONS, phase_margin, stated
-from specgate.approximations.of_loops import CLOSED_LOOP_STABLE
 from specgate.approximations.viewed import Viewed
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
@@ -33,8 +32,8 @@ def _damping(viewed: Viewed, _: Arguments) -> Answer:
     return damping(viewed)
 
 
-def _accuracy(viewed: Viewed, _: Arguments) -> Accuracy | None:
-    return stated(viewed, _ALONE, _BESIDE)
+def _accuracy(viewed: Viewed, arguments: Arguments) -> Accuracy | None:
+    return stated(viewed, _ALONE, _BESIDE) if arguments.over is None else None
 
 
 ROW = Approximation(
@@ -43,7 +42,7 @@ ROW = Approximation(
     estimates=("damping_ratio",),
     formula="PM/100 deg",
     source="R. C. Dorf, R. H. Bishop, Modern Control Systems, chapter 9",
-    conditions=(CLOSED_LOOP_STABLE, *CONDITIONS),
+    conditions=CONDITIONS,
     evaluate=_damping,
     accuracy=_accuracy,
     text=__doc__,

@@ -20,34 +20,34 @@ from specgate.approximations.conditions import count
 from specgate.approximations.figures import SHOWN, quotient, smallest
 from specgate.approximations.of_loops import CLOSED_LOOP_STABLE, CONTINUOUS, FALLS_OFF
 from specgate.approximations.opened import OpenedLoop, lag
-from specgate.frequency.questions import Crossing
+from specgate.frequency.questions import Crossing, Range
 from specgate.measures.measure import Arguments
 from specgate.response.answers import Answer
 
 _NONE = "the gain of the open loop is nowhere one"
 
 
-def _finite(opened: OpenedLoop) -> Sequence[Crossing]:
+def _finite(opened: OpenedLoop, over: Range | None) -> Sequence[Crossing]:
     """Return the gain crossings that a dead time turns: not those at zero or infinite frequency."""
-    crossings = opened.gain_crossings
+    crossings = opened.crossings(over)
     return [one for one in crossings if one.frequency.absent is None and one.frequency.exact != 0]
 
 
-def _over_every(opened: OpenedLoop, _: Arguments) -> Answer:
-    times = [quotient(lag(one), one.frequency) for one in _finite(opened)]
+def _over_every(opened: OpenedLoop, arguments: Arguments) -> Answer:
+    times = [quotient(lag(one), one.frequency) for one in _finite(opened, arguments.over)]
     return smallest(times) if times else Answer.nothing(_NONE, infinite=True)
 
 
-def _over_the_least(opened: OpenedLoop, _: Arguments) -> Answer:
-    crossings = _finite(opened)
+def _over_the_least(opened: OpenedLoop, arguments: Arguments) -> Answer:
+    crossings = _finite(opened, arguments.over)
     if not crossings:
         return Answer.nothing(_NONE, infinite=True)
     nearest = min(crossings, key=lambda one: lag(one).enclose(SHOWN).mid().fmpq())
     return quotient(lag(nearest), nearest.frequency)
 
 
-def _number(opened: OpenedLoop, _: Arguments, __: fmpq | None) -> Found:
-    number = len(_finite(opened))
+def _number(opened: OpenedLoop, arguments: Arguments, _: fmpq | None) -> Found:
+    number = len(_finite(opened, arguments.over))
     return count(number, number <= 1)
 
 

@@ -7,7 +7,7 @@ from flint import arb, fmpq
 from specgate.approximations.approximation import Accuracy, Condition, Found
 from specgate.approximations.conditions import at_least, at_most, words
 from specgate.approximations.figures import SHOWN, combined, quotient, smallest, total
-from specgate.approximations.of_loops import NO_BREAK
+from specgate.approximations.of_loops import CLOSED_LOOP_STABLE, NO_BREAK
 from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.spots import Spot
 from specgate.approximations.viewed import Viewed
@@ -101,6 +101,7 @@ CONDITIONS = (
         required="at one of the breaks",
         find=_whole,
     ),
+    CLOSED_LOOP_STABLE,
     Condition(
         key="phase_margin",
         name="phase margin, deg",

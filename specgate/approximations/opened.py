@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from functools import cached_property
 
-from flint import arb
+from flint import arb, fmpq
 
 from specgate.approximations.spots import Spot, spots
-from specgate.frequency.questions import Crossing, OpenLoop
+from specgate.frequency.questions import Crossing, OpenLoop, Range
 from specgate.measures.subjects import BreakSubject
 from specgate.response.answers import Answer
+from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import working_precision
 
@@ -42,19 +43,37 @@ class OpenedLoop:
         return found if isinstance(found, TransferFunction) else None
 
     @cached_property
+    def late(self) -> tuple[TransferFunction, fmpq] | None:
+        """The rational rest of L and the dead time (s) that is a factor of it; None of any other L."""
+        found = self.subject.open_loop
+        if not isinstance(found, DelayedTransfer) or not found.denominator.is_rational or not found.numerator:
+            return None
+        (dead_time, above), *more = found.numerator.terms
+        return None if more or dead_time == 0 else (TransferFunction(above, found.denominator.undelayed), dead_time)
+
+    @property
+    def rest(self) -> TransferFunction | None:
+        """L without the dead time that is a factor of it; None where L is no such product."""
+        return self.transfer if self.late is None else self.late[0]
+
+    @cached_property
     def poles(self) -> tuple[Spot, ...]:
-        """The poles of a rational L, common factors cancelled; none of another."""
-        return () if self.transfer is None else spots(self.transfer.reduced().denominator)
+        """The poles of L but for its dead time, common factors cancelled; none of an L that is no such product."""
+        return () if self.rest is None else spots(self.rest.reduced().denominator)
 
     @cached_property
     def zeros(self) -> tuple[Spot, ...]:
-        """The zeros of a rational L, common factors cancelled; none of another."""
-        return () if self.transfer is None or not self.transfer.numerator else spots(self.transfer.reduced().numerator)
+        """The zeros of L but for its dead time, common factors cancelled; none of an L that is no such product."""
+        return () if self.rest is None or not self.rest.numerator else spots(self.rest.reduced().numerator)
 
     @cached_property
     def gain_crossings(self) -> tuple[Crossing, ...]:
         """Where |L| = 1, by frequency."""
-        every = () if self.loop is None else self.loop.crossings()
+        return self.crossings()
+
+    def crossings(self, over: Range | None = None) -> tuple[Crossing, ...]:
+        """Return where |L| = 1, all or those in a range of frequencies."""
+        every = () if self.loop is None else self.loop.crossings(over)
         return tuple(one for one in every if one.kind == "gain")
 
 

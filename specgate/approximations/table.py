@@ -7,18 +7,22 @@ from collections.abc import Iterator, Mapping, Sequence
 from specgate.approximations import (
     bandwidth_from_pair,
     damping_from_phase_margin,
+    dead_time_limit,
     delay_margin_from_phase_margin,
     distant_zero,
     dominant_pair,
     final_value_theorem,
     first_order_rise,
     first_order_settling,
+    half_rule,
     margins_from_sensitivity,
     near_cancellation,
     overshoot_from_phase_margin,
+    pade_dead_time,
     real_poles_settling,
     resonance_from_damping,
     right_half_plane_undershoot,
+    right_half_plane_zero_limit,
     rise_from_bandwidth,
     second_order_delay,
     second_order_overshoot,
@@ -29,6 +33,7 @@ from specgate.approximations import (
     settling_envelope,
     slowest_pole_settling,
     static_error_constants,
+    unstable_pole_limit,
 )
 from specgate.approximations.approximation import Approximation, Condition
 
@@ -57,19 +62,19 @@ _ROWS = (
     overshoot_from_phase_margin,
     margins_from_sensitivity,
     delay_margin_from_phase_margin,
+    pade_dead_time,
+    dead_time_limit,
+    right_half_plane_zero_limit,
+    unstable_pole_limit,
+    half_rule,
 )
 
 APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for module in _ROWS}
 """Every approximation that this version audits, by its name in the format."""
 
 LATER: Mapping[str, str] = {
-    "pade_dead_time": "dead time as a rational function",
-    "half_rule": "a high-order model as one of low order with dead time",
     "hold_as_delay": "a hold as a dead time of half the period",
     "fast_sampling_as_continuous": "a sampled controller as a continuous one",
-    "dead_time_limit": "highest crossover frequency that a dead time leaves",
-    "right_half_plane_zero_limit": "highest crossover frequency that a zero to the right of the axis leaves",
-    "unstable_pole_limit": "lowest crossover frequency that an unstable pole asks for",
     "inner_loop_as_lag": "an inner loop as a single lag",
     "desired_lag": "a closed loop as the lag it was tuned for",
     "linear_range": "the linear model itself, within the range of its signals",
