@@ -11,6 +11,7 @@ from specgate.approximations.approximation import Condition, Found
 from specgate.compliance.assumptions import Assumption
 from specgate.compliance.chains import Link
 from specgate.compliance.compare import Limits
+from specgate.compliance.model.fact import ModelAssumption
 from specgate.compliance.readings import Reading
 from specgate.measures.measure import Arguments, Measure
 from specgate.project.types import Claim, Criterion, Method, Requirement
@@ -116,7 +117,7 @@ class CriterionAssessment:
     reading: the measure in coherent SI. limits, limits_again: with the fixed decimal for pi, and with more digits.
     unit: in which it is printed (None: a whole number, yes or no). scale: what a number is small against, in that unit.
     beside: a second value printed next to the first. signal: the unit of the signal that is looked at. assumptions:
-    ranges of signals that the reading rests on.
+    ranges of signals that the reading rests on. model: what the models of the blocks take for granted.
     """
 
     criterion: Criterion
@@ -134,11 +135,13 @@ class CriterionAssessment:
     unanswered: tuple[Unanswered, ...] = ()
     signal: Unit = ONE
     assumptions: tuple[Assumption, ...] = ()
+    model: tuple[ModelAssumption, ...] = ()
 
     @property
     def standing(self) -> Standing:
         """The worst of what the audit of the basis and the assumptions of the model leave."""
-        return worst_standing((self.audit.standing, *(one.standing for one in self.assumptions)))
+        ranges, models = (one.standing for one in self.assumptions), (one.standing for one in self.model)
+        return worst_standing((self.audit.standing, *ranges, *models))
 
     @property
     def least(self) -> Reading | None:

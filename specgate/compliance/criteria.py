@@ -11,6 +11,7 @@ from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswere
 from specgate.compliance.assumptions import Assumptions
 from specgate.compliance.audit import Matter, audit, audit_beyond
 from specgate.compliance.compare import Comparison, compare
+from specgate.compliance.model.assumed import ModelAssumptions
 from specgate.compliance.readings import PI_DECIDES, Reading
 from specgate.compliance.thresholds import Policy
 from specgate.compliance.units import default_unit, is_plain, limit_unit, smallness
@@ -32,6 +33,7 @@ class Criteria:
 
     def __init__(self, project: Project, analyses: Analyses, policy: Policy, assumptions: Assumptions) -> None:
         self.project, self.analyses, self.policy, self.assumptions = project, analyses, policy, assumptions
+        self.model = ModelAssumptions(project, analyses)
 
     def assess(self, criterion: Criterion, basis: Basis | None) -> CriterionAssessment:
         """Judge one criterion; `basis` None means computed."""
@@ -60,6 +62,7 @@ class Criteria:
             unanswered=unanswered,
             signal=nominal.signal,
             assumptions=self.assumptions.of(criterion.subject),
+            model=self.model.of(criterion.subject, (nominal.arguments, again.arguments), reading),
         )
 
     def _unit(self, asked: Asked) -> Unit | None:

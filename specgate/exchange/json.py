@@ -155,10 +155,13 @@ def _record(kind: type, value: Any, where: str) -> Any:
 
 
 def _one_of(kinds: tuple[Any, ...], value: Any, where: str) -> Any:
-    """Take the only alternative that is not plain (the format has no union of two records)."""
+    """Take the only alternative that is not plain; of two records the first that knows every key of the value."""
     if value is None:
         return None
     shaped = [one for one in kinds if dataclasses.is_dataclass(one) or typing.get_origin(one) in (tuple, Mapping)]
+    if len(shaped) > 1 and isinstance(value, dict):
+        fitting = (one for one in shaped if value.keys() <= {field.key for field in _fields(typing.cast(type, one))})
+        return _build(next(fitting, shaped[0]), value, where)
     return _build(shaped[0], value, where) if shaped else value
 
 

@@ -8,13 +8,14 @@ from typing import Literal, cast
 from specgate.intake.collect import Collector
 from specgate.intake.context import Context, Ports, entries, keys, table, text
 from specgate.intake.models import model
-from specgate.intake.nodes import Entry, Node, Number, Table, Text, as_kept
+from specgate.intake.nodes import Entry, Node, Number, Table, Text
 from specgate.intake.values import Reader
-from specgate.project.types import Parameter, Port, Subsystem
+from specgate.project.types import Parameter, Pedigree, Port, StandIn, Subsystem
 from specgate.terms import expressions
 from specgate.terms.units import RESERVED
 
-_KEPT = ("pedigree", "valid_to", "stands_for")
+STAND_INS = ("hold_as_delay", "fast_sampling_as_continuous", "pade_dead_time")
+"""Approximations by which a continuous block stands for something else."""
 
 
 def ports_of(node: Node) -> Ports:
@@ -103,10 +104,12 @@ def subsystem(entry: Entry, context: Context) -> Subsystem | None:
     read = model(body, reader, context.ports[name]) if body is not None else None
     dead_time_node = body.get("dead_time") if body is not None else None
     dead_time = reader.value(dead_time_node)
-    kept = _kept(node, reader)
+    valid_to = reader.value(node.get("valid_to"))
+    stands_for = _stand_in(node, reader)
     ports = context.ports[name]
-    whole = len(own) == len(keys(node.get("parameters"))) and kept is not None
+    whole = len(own) == len(keys(node.get("parameters"))) and (valid_to or not node.get("valid_to"))
     whole = whole and (len(inputs), len(outputs)) == (len(ports.inputs), len(ports.outputs))
+    whole = whole and (stands_for is not None or not node.get("stands_for"))
     if not whole or not inputs or not outputs or body is None or read is None or (dead_time_node and not dead_time):
         return None
     return Subsystem(
@@ -122,7 +125,9 @@ def subsystem(entry: Entry, context: Context) -> Subsystem | None:
         parameters=own,
         dead_time=dead_time,
         separate_instances=text(node.get("instances")) == "separate",
-        kept=kept or {},
+        pedigree=_pedigree(node),
+        valid_to=valid_to,
+        stands_for=stands_for,
     )
 
 
@@ -153,13 +158,30 @@ def _port(name: str, entry: Entry, reader: Reader) -> Port | None:
     return Port(name, unit, entry.key.spot.place, **ranges)
 
 
-def _kept(node: Table, reader: Reader) -> dict[str, object] | None:
-    """Keep what is answered later; the quantities in it must be readable now."""
-    represents = table(node.get("stands_for"))
-    quantities = [node.get("valid_to")]
-    if represents is not None:
-        quantities += [represents.get("sampled"), represents.get("delay")]
-    given = [quantity for quantity in quantities if quantity is not None]
-    if any(reader.value(quantity) is None for quantity in given):
+def _pedigree(node: Table) -> Pedigree | None:
+    entry = node.entries.get("pedigree")
+    body = table(entry.value) if entry is not None else None
+    if entry is None or body is None:
         return None
-    return {key: as_kept(value) for key, value in ((k.value, v) for k, v in node.items()) if key in _KEPT}
+    kind = cast('Literal["identified", "physical_law", "data_sheet", "assumed"]', text(body.get("kind")))
+    return Pedigree(kind, text(body.get("from")), entry.key.spot.place)
+
+
+def _stand_in(node: Table, reader: Reader) -> StandIn | None:
+    """Read what a block stands for. None if there is nothing to read, or something in it was reported."""
+    entry = node.entries.get("stands_for")
+    body = table(entry.value) if entry is not None else None
+    if entry is None or body is None:
+        return None
+    place, collector = entry.key.spot.place, reader.context.collector
+    sampled, delay = (reader.value(body.get(key)) for key in ("sampled", "delay"))
+    if body.get("sampled") is None and body.get("delay") is None:
+        message = "`stands_for` says neither a sampling period (`sampled: 1 ms`) nor a dead time (`delay: 0.5 ms`)"
+        collector.error("schema-violation", message, place)
+        return None
+    by = text(body.get("by"))
+    if by is not None and by not in STAND_INS:
+        reader.context.unknown("approximation by which a block stands for something else", by, STAND_INS, place)
+        return None
+    missing = [key for key, value in (("sampled", sampled), ("delay", delay)) if body.get(key) and value is None]
+    return None if missing else StandIn(sampled, delay, by, place)

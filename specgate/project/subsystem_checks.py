@@ -8,21 +8,24 @@ from specgate.project import faults
 from specgate.project.blocks import BuiltBlock, build
 from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault, Faults
-from specgate.project.parameters import Values, infer
+from specgate.project.parameters import Values, evaluate, infer
+from specgate.project.rational_forms import refuse_written_rate
 from specgate.project.temperatures import absolute
 from specgate.project.types import Port, Subsystem, Value
-from specgate.terms.dimensions import TIME, Dimension
+from specgate.terms.dimensions import RATE, TIME, Dimension
 from specgate.terms.expressions import PLAIN, as_dimension
 from specgate.terms.trees import Number
 from specgate.terms.unit import Unit
 
 _SECOND = Unit("s", fmpq(1), 0, TIME)
+_RADIAN_PER_SECOND = Unit("rad/s", fmpq(1), 0, RATE)
 
 
 def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> BuiltBlock | None:
     """Note everything wrong with a subsystem; return its block if the model can be built."""
     for port in (*subsystem.inputs.values(), *subsystem.outputs.values()):
         _check_port(port, subsystem.name, values, found)
+    _check_validity(subsystem, values, found)
     with found.noted(subsystem=subsystem.name):
         return build(subsystem, values)
     return None
@@ -39,6 +42,23 @@ def _check_port(port: Port, subsystem: str, values: Values, found: Faults) -> No
         for name, pair, dimension in ranges:
             if pair is not None:
                 _check_range(name, pair, dimension, port, subsystem, values)
+
+
+def _check_validity(subsystem: Subsystem, values: Values, found: Faults) -> None:
+    """Check what the subsystem says of its model: up to which frequency it holds, and what it stands for."""
+    stands_for = subsystem.stands_for
+    said = (
+        ("the frequency up to which a model holds", subsystem.valid_to, _RADIAN_PER_SECOND),
+        ("a sampling period", None if stands_for is None else stands_for.sampled, _SECOND),
+        ("a dead time", None if stands_for is None else stands_for.delay, _SECOND),
+    )
+    for name, value, unit in said:
+        if value is not None:
+            with found.noted(subsystem=subsystem.name):
+                refuse_written_rate(value, values, subsystem.name)
+                wants(value, unit, values, subsystem.name)
+                if evaluate(value, values, subsystem.name) <= 0:
+                    raise Fault(faults.VALUE, f"`{value.as_written}`: {name} is greater than zero", value.place)
 
 
 def _check_range(

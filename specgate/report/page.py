@@ -17,7 +17,7 @@ from markupsafe import Markup, escape
 
 from specgate.report.figures import error, frequency, poles, reserve, step, wiring
 from specgate.report.figures.scales import LogScale, Scale
-from specgate.report.parts import formulas, matrix, ranges
+from specgate.report.parts import formulas, matrix, models, ranges
 from specgate.report.view import View
 
 SECTIONS = (
@@ -225,6 +225,7 @@ def _render(
             trace_lines=view.trace[:lines],
             trace_left_out=max(0, len(view.trace) - lines),
             formulas=view.formulas if screen else formulas.printed(view.formulas),
+            models_at_most=len(view.models) if screen else models.ROWS_AT_MOST,
             ranges_at_most=len(view.ranges) if screen else ranges.ROWS_AT_MOST,
             **(more | marked),
         )

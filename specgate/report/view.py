@@ -13,6 +13,7 @@ from specgate.report.parts.formulas import FormulaTable, tables
 from specgate.report.parts.front import Front, front
 from specgate.report.parts.loops import LoopSheet, sheets
 from specgate.report.parts.matrix import Group, groups
+from specgate.report.parts.models import ModelRow, rows
 from specgate.report.parts.ranges import Range, ranges
 from specgate.report.parts.trace import Finding, OpenPoint, TraceLine, findings, lines, open_points
 from specgate.report.parts.trust import Trust, cautions, trust
@@ -28,6 +29,7 @@ class View:
     groups: tuple[Group, ...]
     audits: tuple[Audit, ...]
     ranges: tuple[Range, ...]
+    models: tuple[ModelRow, ...]
     formulas: tuple[FormulaTable, ...]
     loops: tuple[LoopSheet, ...]
     trace: tuple[TraceLine, ...]
@@ -45,6 +47,7 @@ def view(review: Review, shown: Callable[[str], bool] = lambda character: True) 
         groups=groups(review),
         audits=audits(review),
         ranges=ranges(review),
+        models=rows(review),
         formulas=tables(review),
         loops=sheets(review),
         trace=lines(review),

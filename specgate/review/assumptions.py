@@ -1,15 +1,16 @@
-"""Ranges that a requirement rests on, as they stand in a Review."""
+"""Ranges and models that a requirement rests on, as they stand in a Review."""
 
 from __future__ import annotations
 
 from flint import fmpq
 
 from specgate.compliance.assumptions import Assumption
+from specgate.compliance.model.fact import ModelAssumption
 from specgate.compliance.range_words import at_most
 from specgate.compliance.readings import Reading
 from specgate.response.answers import Answer
-from specgate.review.printing import amount, result
-from specgate.review.types import Amount, AssumptionReview
+from specgate.review.printing import amount, location, place_of, result
+from specgate.review.types import Amount, AssumptionReview, FigureReview, ModelAssumptionReview
 from specgate.review.wanted import Wanted
 from specgate.terms.enclosed import DIGITS
 from specgate.terms.verdicts import Trilean
@@ -37,6 +38,21 @@ def assumption(assumed: Assumption, asked: Wanted) -> AssumptionReview:
         largest_size=_size(assumed) if wanted else None,
         largest_factor=None if not wanted or assumed.factor is None else at_most(assumed.factor.settled, DIGITS),
         reason=decision.reason,
+    )
+
+
+def model_assumption(assumed: ModelAssumption) -> ModelAssumptionReview:
+    """Print what a model takes for granted, with the numbers that tell whether it holds."""
+    holds = assumed.holds
+    return ModelAssumptionReview(
+        kind=assumed.kind,
+        on=assumed.on,
+        subsystem=assumed.subsystem,
+        holds=None if holds is Trilean.UNKNOWN else holds is Trilean.YES,
+        standing=assumed.standing.value,
+        words=assumed.words,
+        figures=tuple(FigureReview(one.name, place_of(one.reading, one.unit)) for one in assumed.figures),
+        location=location(assumed.place),
     )
 
 

@@ -40,9 +40,11 @@ def _why(assessment: Assessment, standing: Standing) -> Iterator[str]:
     """Say what a standing comes from: the bases of the requirement, or the ranges of signals."""
     if any(one.audit.standing is standing for one in assessment.criteria):
         yield _WORDS[standing.value]
-    beyond = [one.assumptions for one in assessment.criteria if one.audit.standing is not one.standing is standing]
+    beyond = [one for one in assessment.criteria if one.audit.standing is not one.standing is standing]
     if beyond:
-        yield f"rests on a linear model that does not hold: {standing_words(beyond[0])}"
+        ranges = standing_words([one for one in beyond[0].assumptions if one.standing is standing])
+        models = (one.words for one in beyond[0].model if one.standing is standing)
+        yield f"rests on a model that does not hold: {ranges or next(models, '')}"
 
 
 def _errors(findings: tuple[Finding, ...]) -> Iterator[str]:

@@ -14,11 +14,11 @@ from specgate.compliance.assessment import (
 )
 from specgate.compliance.readings import Reading
 from specgate.compliance.reserves import reserve
-from specgate.compliance.resting import by_response
+from specgate.compliance.resting import by_response, models
 from specgate.compliance.wording import subject_name
 from specgate.project.types import Project
 from specgate.response.answers import Answer
-from specgate.review.assumptions import assumption
+from specgate.review.assumptions import assumption, model_assumption
 from specgate.review.audited import condition, error_of
 from specgate.review.masks import mask_of
 from specgate.review.pictures import error_curve, separation
@@ -63,8 +63,9 @@ def requirement(
         decided_by=declared.decided_by,
         methods=tuple(_method(one) for one in assessment.methods),
         criteria=tuple(_criterion(one, project, wanted) for one in assessment.criteria),
-        assumptions=tuple(
-            assumption(one, wanted) for criterion in by_response(assessment) for one in criterion.assumptions
+        assumptions=(
+            *(assumption(one, wanted) for criterion in by_response(assessment) for one in criterion.assumptions),
+            *(model_assumption(one) for one in models(assessment)),
         ),
         rests_on=rests.of(assessment),
         derived=graph.children[name],

@@ -19,14 +19,10 @@ _POLICIES = ("decision_rule", "model_agreement")
 
 
 def check(facts: Facts) -> Iterator[Finding]:
-    """Report what stays unanswered: requirement by requirement, then of the subsystems and of the project."""
+    """Report what stays unanswered: requirement by requirement, then of the project."""
     for name, assessment in facts.assessments.items():
         for unanswered in assessment.unanswered:
             yield Finding(NAME, Level.NOTE, f"{name}: {unanswered.what}", unanswered.place, requirement=name)
-    for name, subsystem in facts.project.subsystems.items():
-        if subsystem.kept:
-            message = f"{name}: {', '.join(subsystem.kept)}: kept, and not audited by this version"
-            yield Finding(NAME, Level.NOTE, message, subsystem.place, subsystem=name)
     yield from _thresholds(facts)
     for name in _POLICIES:
         for kept in facts.project.kept.get(name, ()):

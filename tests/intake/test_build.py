@@ -143,10 +143,19 @@ def test_ports(whole: Project) -> None:
     assert list(whole.subsystems["plant"].outputs) == ["flow", "current"]
 
 
-def test_what_a_later_version_answers_is_kept(whole: Project) -> None:
+def test_what_a_subsystem_says_of_its_model(whole: Project) -> None:
     valve, controller = whole.subsystems["valve"], whole.subsystems["controller"]
-    assert valve.kept == {"pedigree": {"kind": "identified", "from": "KD-DAT-2, figure 3"}, "valid_to": "30 rad/s"}
-    assert controller.kept == {"stands_for": {"sampled": "1 ms", "by": "hold_as_delay", "delay": "0.5 ms"}}
+    assert valve.pedigree is not None
+    assert (valve.pedigree.kind, valve.pedigree.source) == ("identified", "KD-DAT-2, figure 3")
+    assert valve.valid_to is not None
+    assert valve.valid_to.as_written == "30 rad/s"
+    stands_for = controller.stands_for
+    assert stands_for is not None
+    assert stands_for.by == "hold_as_delay"
+    assert [value and value.as_written for value in (stands_for.sampled, stands_for.delay)] == ["1 ms", "0.5 ms"]
+
+
+def test_what_a_later_version_answers_is_kept(whole: Project) -> None:
     assert {name: [kept.id for kept in entries] for name, entries in whole.kept.items()} == {
         "cases": ["hot"],
         "decision_rule": ["decision_rule"],

@@ -16,6 +16,8 @@ CONTRACT = {
     *("requirement-orphan", "dangling-link", "derivation-cycle"),
 }
 ADDED = {
+    "model-assumed",
+    "model-beyond-validity",
     *("hidden-from-samples", "threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"),
     "fragile-result",
     *("requirement-childless", "text-duplicate", "requirement-unallocated", "allocation-unused"),

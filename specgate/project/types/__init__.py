@@ -35,7 +35,7 @@ from specgate.project.types.models import (
     StateSpaceModel,
 )
 from specgate.project.types.requirements import Link, Method, NotApplicable, Requirement
-from specgate.project.types.subsystems import Port, Subsystem
+from specgate.project.types.subsystems import Pedigree, Port, StandIn, Subsystem
 from specgate.project.types.values import Parameter, Tolerance, Value
 from specgate.project.types.whole import GatePolicy, InputFile, Kept, Project, ProjectInfo
 
@@ -64,6 +64,7 @@ __all__ = [
     "NotApplicable",
     "Pair",
     "Parameter",
+    "Pedigree",
     "PidModel",
     "PoleZeroModel",
     "Polynomial",
@@ -79,6 +80,7 @@ __all__ = [
     "Signal",
     "SignalExpression",
     "SignalName",
+    "StandIn",
     "StateSpaceModel",
     "Subject",
     "Subsystem",

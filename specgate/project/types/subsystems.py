@@ -26,11 +26,34 @@ class Port:
 
 
 @record
+class Pedigree:
+    """What kind of knowledge a model is, and the document or campaign that it comes from."""
+
+    kind: Literal["identified", "physical_law", "data_sheet", "assumed"]
+    source: str | None
+    place: Place
+
+
+@record
+class StandIn:
+    """That a continuous block represents something else.
+
+    sampled: sampling period of what it stands for; None where that is not sampled. delay: its computation time, or
+    the dead time. by: the approximation by which it does, as written.
+    """
+
+    sampled: Value | None
+    delay: Value | None
+    by: str | None
+    place: Place
+
+
+@record
 class Subsystem:
     """A block with inputs, outputs and a model.
 
     dead_time: beside any model, or alone (then the model is a gain of 1).
-    kept: parts of the format that a later version answers (pedigree, valid_to, stands_for …), as written.
+    valid_to: angular frequency up to which the model holds.
     """
 
     name: str
@@ -45,4 +68,6 @@ class Subsystem:
     parameters: Mapping[str, Parameter] = field(default_factory=dict)
     dead_time: Value | None = None
     separate_instances: bool = False
-    kept: Mapping[str, object] = field(default_factory=dict)
+    pedigree: Pedigree | None = None
+    valid_to: Value | None = None
+    stands_for: StandIn | None = None

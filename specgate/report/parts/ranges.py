@@ -35,10 +35,15 @@ def ranges(review: Review) -> tuple[Range, ...]:
     """Return every range once, with the requirements that rest on it."""
     resting: dict[AssumptionReview, list[str]] = {}
     for name, requirement in review.requirements.items():
-        for one in requirement.assumptions:
+        for one in of_signals(requirement):
             resting.setdefault(one, []).append(name)
     rows = [_range(one, names) for one, names in resting.items()]
     return tuple(sorted(rows, key=lambda row: row.state.weight))
+
+
+def of_signals(requirement: RequirementReview) -> tuple[AssumptionReview, ...]:
+    """Return the ranges of signals that a requirement rests on."""
+    return tuple(one for one in requirement.assumptions if isinstance(one, AssumptionReview))
 
 
 def _range(one: AssumptionReview, names: list[str]) -> Range:
@@ -80,7 +85,7 @@ def largest(one: AssumptionReview) -> str:
 
 def beyond(requirement: RequirementReview) -> str:
     """Say which signals leave their range, for page one; nothing where all are inside."""
-    broken = [one for one in requirement.assumptions if one.holds is False]
+    broken = [one for one in of_signals(requirement) if one.holds is False]
     if not broken:
         return ""
     first = broken[0]
@@ -106,6 +111,8 @@ def _kept(broken: list[AssumptionReview]) -> str:
 
 
 def undecided(requirement: RequirementReview) -> str:
-    """Say which signal is not shown to stay inside its range."""
-    named = dict.fromkeys(one.signal or port(one) for one in requirement.assumptions if one.holds is None)
+    """Say which signal is not shown to stay inside its range; nothing where that is shown of all."""
+    named = dict.fromkeys(one.signal or port(one) for one in of_signals(requirement) if one.holds is None)
+    if not named:
+        return ""
     return f"whether {listed(named)} {'stays' if len(named) == 1 else 'stay'} in range is not decided"

@@ -6,7 +6,7 @@ from collections.abc import Iterator, Mapping
 from typing import Any
 
 from specgate.report import anchors
-from specgate.report.parts import ranges
+from specgate.report.parts import models, ranges
 from specgate.report.parts.matrix import Method, row
 from specgate.report.words import LEVELS, VERDICTS, Status, counted, listed, spaced
 from specgate.review.types import FindingReview, RequirementReview, Review
@@ -139,7 +139,7 @@ def open_points(review: Review) -> tuple[OpenPoint, ...]:
 def _inconclusive(requirement: RequirementReview) -> str:
     if any(criterion.basis.standing == "inconclusive" for criterion in requirement.criteria):
         return "the stated accuracy of its formula does not decide the limit"
-    return ranges.undecided(requirement)
+    return ranges.undecided(requirement) or models.undecided(requirement)
 
 
 def _approved(exemption: Mapping[str, Any]) -> str:

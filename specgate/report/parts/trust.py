@@ -152,7 +152,7 @@ def cautions(review: Review) -> tuple[str, ...]:
     own = []
     if review.policy.evaluate == "nominal":
         own.append("Parameters were taken at their nominal values; tolerances were not varied.")
-    own += _ranges([a for r in review.requirements.values() for a in r.assumptions])
+    own += _ranges([a for r in review.requirements.values() for a in r.assumptions if isinstance(a, AssumptionReview)])
     unanswered = _unanswered(review)
     if unanswered:
         own.append(f"Not answered by this version, and open wherever a verdict needs it: {listed(unanswered)}.")

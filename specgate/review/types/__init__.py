@@ -31,9 +31,11 @@ from specgate.review.types.loops import (
 from specgate.review.types.requirements import (
     AssumptionReview,
     CriterionReview,
+    FigureReview,
     LimitReview,
     MaskReview,
     MethodReview,
+    ModelAssumptionReview,
     RequirementReview,
     ReserveReview,
 )
@@ -77,6 +79,7 @@ __all__ = [
     "Enclosure",
     "ErrorCurveReview",
     "ErrorReview",
+    "FigureReview",
     "FindingReview",
     "FormulaReview",
     "FormulasReview",
@@ -92,6 +95,7 @@ __all__ = [
     "MaskReview",
     "MeasureResult",
     "MethodReview",
+    "ModelAssumptionReview",
     "ParameterReview",
     "PointReview",
     "Pole",

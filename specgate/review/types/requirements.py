@@ -61,7 +61,7 @@ class CriterionReview:
     reserve: ReserveReview | None
     basis: BasisReview
     standing: str
-    """The worst of the standing of the basis and of the ranges that the response rests on."""
+    """The worst of the standing of the basis and of the ranges and models that the criterion rests on."""
     location: Location
     mask: MaskReview | None = omitted()
     reason: str | None = omitted()
@@ -104,6 +104,33 @@ class AssumptionReview:
 
 
 @record
+class FigureReview:
+    """A number with its name; `value` is null where there is none."""
+
+    name: str
+    value: Amount
+
+
+@record
+class ModelAssumptionReview:
+    """Something that the models of blocks take for granted under a requirement, beside the ranges of signals.
+
+    holds: None where nobody can tell. standing: what it leaves to whatever rests on it.
+    """
+
+    kind: str
+    on: str
+    """The response, break or loop."""
+    subsystem: str | None
+    """Whose model it is; None where it is the loop's."""
+    holds: bool | None
+    standing: str
+    words: str
+    figures: tuple[FigureReview, ...]
+    location: Location
+
+
+@record
 class RequirementReview:
     """A requirement with its verdict. Verdict is `not_applicable` where it does not apply."""
 
@@ -119,7 +146,7 @@ class RequirementReview:
     decided_by: str
     methods: tuple[MethodReview, ...]
     criteria: tuple[CriterionReview, ...]
-    assumptions: tuple[AssumptionReview, ...] = ()
+    assumptions: tuple[AssumptionReview | ModelAssumptionReview, ...] = ()
     rests_on: tuple[str, ...] = ()
     derived: tuple[str, ...] = ()
     """Ids of the requirements derived from it."""
