@@ -73,7 +73,7 @@ class Course:
     @cached_property
     def modal(self) -> Modal | None:
         """The modal sum; None where there is none, or it was not found."""
-        if not (self.looped and self.retarded):
+        if not self.looped:
             return None
         inside = self.transform.denominator.delayed[-1][0]
         return modal(self.transform, max(6 * inside, self.longest + 5 * inside))
@@ -211,6 +211,18 @@ class Course:
             return Stretch((), _BITS)
         group = Group(_ZERO, _ONE, self._kinks[number], self._modes(number))
         return Stretch((group,), self._steps(number).bits)
+
+    @cached_property
+    def smooth(self) -> bool:
+        """Whether y is continuous: no term of the numerator comes within one degree of the denominator."""
+        degree = self.transform.denominator.undelayed.degree()
+        return self.transform.period is not None or self.transform.numerator.degree < degree - 1
+
+    def jump(self, time: fmpq) -> fmpq | None:
+        """Return by how much y jumps at a time; None where that is not told: of neutral type it may for ever."""
+        if self.smooth or time in self.jumps:
+            return self.jumps.get(time, _ZERO)
+        return _ZERO if self.retarded or not self.looped or time < self.ends else None
 
     @cached_property
     def jumps(self) -> dict[fmpq, fmpq]:

@@ -6,8 +6,9 @@ from functools import cached_property
 
 from flint import arb, fmpq
 
-from specgate.delays.magnitude import DelayedMagnitude, SquaredGain
+from specgate.delays.magnitude import DelayedMagnitude
 from specgate.delays.phase import late_phase
+from specgate.delays.squared_gain import SquaredGain
 from specgate.frequency.fall import square_of_factor
 from specgate.frequency.questions import Range
 from specgate.frequency.rational_gain import UNSTABLE, RationalGain

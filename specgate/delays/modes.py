@@ -43,7 +43,8 @@ def least_over_late_modes(solution: DelayedSolution, figure: Figure, over: tuple
         return Answer.undecided(_ENDLESS)
     whole = Quasi.rational(fmpq_poly([1]))
     transform = Transform(whole, solution.determinant, solution.factors, fmpq_poly([1]))
-    for left in (*reversed(list(suitable_lines(transform))), *suitable_lines(transform, near=True)):
+    far = list(suitable_lines(transform))
+    for left in reversed(far) if far else suitable_lines(transform, near=True):
         poles = poles_right_of(transform, left)
         if poles is None:
             continue

@@ -3,7 +3,7 @@
 With f(s) = c s^q (1 + …) the argument of f(j w) begins at arg c + q pi/2. Up to some w0 it differs from that by the
 argument of f(s)/(c s^q), which is an average of f^(q)/(c q!) over the way from 0 (Taylor's formula with the integral as
 remainder): a ball of the latter right of the imaginary axis holds it. From w0 on it grows cell by cell, as where roots
-are counted (`quasi_count`); a root on the axis leaves no phase.
+are counted (`quasi_count`); a root on the axis leaves no phase. A dead time that is a factor of f turns it by -delay w.
 """
 
 from __future__ import annotations
@@ -43,9 +43,13 @@ def late_phase(transfer: DelayedTransfer, frequency: fmpq) -> Answer:
 
 def _turned(quasi: Quasi, frequency: fmpq, bits: int) -> arb | None:
     """Return how far f(j w)/(c s^q) turns from w = 0 on; None where it comes too near to zero to tell."""
-    if frequency == 0 or (len(quasi.terms) == 1 and quasi.terms[0][1].degree() == 0):
+    if len(quasi.terms) == 1 and quasi.terms[0][0] != 0:
+        ((delay, polynomial),) = quasi.terms
+        turned = _turned(Quasi.rational(polynomial), frequency, bits)
         with working_precision(bits):
-            return -sum((arb(delay * frequency) for delay, _ in quasi.terms), arb(0))
+            return None if turned is None else turned - arb(delay * frequency)
+    if frequency == 0 or (quasi.degree == 0 and quasi.is_rational):
+        return arb(0)
     order, lead = quasi.first_at_origin()
     start = _calm(quasi, order, lead, frequency)
     if start is None:

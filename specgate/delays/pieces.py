@@ -106,9 +106,14 @@ class DelayedPieces(Pieces):
         return self._squares[asked]
 
     def jump(self, index: int) -> fmpq | None:
-        """Return by how much y jumps at kink `index`, exactly."""
-        begin = self._begins[index]
-        return sum((p.course.jumps.get(begin - p.begin, fmpq(0)) * p.factor for p in self.parts), fmpq(0))
+        """Return by how much y jumps at kink `index`, exactly; None where that is not told."""
+        begin, total = self._begins[index], fmpq(0)
+        for part in self.parts:
+            jump = part.course.jump(begin - part.begin)
+            if jump is None:
+                return None
+            total += jump * part.factor
+        return total
 
     def polynomial(self, index: int) -> fmpq_poly | None:
         """Return a piece as a rational polynomial in the time from its kink on; None: it is none, or not told."""
@@ -141,7 +146,7 @@ class DelayedPieces(Pieces):
 
     def continuous_from(self) -> fmpq | None:
         """Return a time from which on y does not jump; None: it may for ever."""
-        if not all(part.course.retarded for part in self.parts):
+        if not all(part.course.retarded or part.course.smooth for part in self.parts):
             return None
         jumps = [p.begin + time for p in self.parts for time, jump in p.course.jumps.items() if jump != 0]
         # The kinks are asked for that begin before this time.

@@ -1,6 +1,6 @@
 """What the roots left of a line leave of a delayed response: at most C e^(-g t), by a bound of an integral.
 
-Let Y = N/D, D = d0 + E with E the delayed terms, of lower degree than d0 (retarded type), R = E/d0, and let the line
+Retarded type. Let Y = N/D, D = d0 + E with E the delayed terms, of lower degree than d0, R = E/d0, and let the line
 Re s = -g hold no root of D or d0. Y splits exactly into
 
     Y = sum over j < K of (N/d0) (-R)^j  +  Y_K,   Y_K = (N/D) (-R)^K.
@@ -16,11 +16,26 @@ right of the line they cancel those of Y_K there, since Y has no pole at a root 
 are residues at roots of d0 left of the line, sums of a u^(l-1)/(l-1)! e^(p u) with u = t - T, each at most its value
 at the least u asked for, or at the summit of u^(l-1) e^(-(|Re p| - g) u), times e^(-g u).
 
+Neutral type. Where delayed terms reach the degree of d0, let A be the sum of ak e^(-tk s), ak the ratios of leading
+coefficients, E = A d0 + E', and let the sum of |ak| e^(g tk) be less than 1. Then B = 1/(1 + A) is, right of the line,
+the transform of a sum of impulses bm at times Tm (Neumann's series), and that of |bm| e^(g Tm) is at most
+
+    b = 1/(1 - sum of |ak| e^(g tk)).
+
+The same split holds with B N/d0 for N/d0 and R = B E'/d0, which falls at least like 1/|s|, |B| <= b on the line: Y_K is
+bounded as before. The other terms are rational ones V e^(-T s) times a power of B. Let V have the inverse transform v,
+a sum of a_l u^(l-1)/(l-1)! e^(p u), u >= 0. Those with p left of the line are at most C e^(-g u); of those with p
+right of it the continuation to u < 0 is at most C e^(g |u|) (C: the sum of |a_l| u^(l-1)/(l-1)! e^(-|g + Re p| |u|) at
+its summits). Driven by impulses bm, the former add up to at most C b e^(-g (t - T)) at any t. The latter, had all
+impulses acted, would be the residues at p, which cancel as before; the impulses yet to come leave out at most
+C b e^(-g (t - T)). Derivatives are those between the jumps: there v' takes the place of v.
+
 With one minus a cosine as input every term has a factor G more (see `swing`); N has that which makes it entire, so that
-nothing else is passed. It is left out of the integral, and bounded on the line as a whole.
+nothing else is passed. It is left out of the integral, and bounded on the line as a whole. Of neutral type its poles on
+the axis count as roots right of the line.
 
 The integral is bounded cell by cell, with |D| from below by the cells that counted its roots; beyond their height W by
-|D| >= |d0| (1 - |R|), and from some height on by powers of w alone.
+|D| >= |d0| (1 - |E/d0|), and from some height on by powers of w alone.
 """
 
 from __future__ import annotations
@@ -31,7 +46,7 @@ from dataclasses import dataclass
 from flint import acb, acb_poly, arb, fmpq, fmpq_poly
 
 from specgate.delays.laurent import of_polynomial, principal, without_root
-from specgate.delays.swing import bound_on, shaped
+from specgate.delays.swing import bound_on, pole_of, shaped
 from specgate.delays.transform import Transform
 from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_count import Evaluated, Line
@@ -59,11 +74,11 @@ class Remainder:
 def remainder(transform: Transform, line: Line, since: fmpq) -> Remainder | None:
     """Return what is left of Y beside its residues right of a line, from a time on; None where it was not bounded.
 
-    N is of lower degree than the undelayed term of D, the delayed ones too. since: the least t asked for.
+    N is of lower degree than the undelayed term of D, the delayed ones of no higher. since: the least t asked for.
     """
     with working_precision(_BITS):
         bound = _Bound(transform, line)
-        if bound.last_delay >= since:
+        if not bound.echoes < 1 or (bound.retarded and bound.last_delay >= since):
             return None
         sizes = bound.integrals()
         if sizes is None:
@@ -75,6 +90,8 @@ def remainder(transform: Transform, line: Line, since: fmpq) -> Remainder | None
 
 
 class _Bound:
+    """The parts of Y: base is d0, delayed E, falling E'. echoes: the sum of |ak| e^(g tk), 0 for retarded type."""
+
     def __init__(self, transform: Transform, line: Line) -> None:
         numerator, denominator = transform.numerator, transform.denominator
         self.line = line
@@ -82,16 +99,30 @@ class _Bound:
         self.base = denominator.undelayed
         self.delayed = Quasi(denominator.delayed)
         self.numerator = numerator
-        self._functions = Evaluated(numerator), Evaluated(self.delayed)
+        top = self.base.degree()
+        leads = {delay: fmpq_poly([-p[top] / self.base[top]]) for delay, p in denominator.delayed}
+        self.falling = self.delayed + Quasi.of(leads) * Quasi.rational(self.base)
+        self.retarded = self.falling == self.delayed
+        self.echoes = sum((abs(arb(a[0])) * self._shift(delay) for delay, a in leads.items()), arb(0)).abs_upper()
+        self._functions = tuple(Evaluated(part) for part in (numerator, self.falling, self.delayed))
         self._base = acb_poly(self.base)
-        fall = self.base.degree() - self.delayed.degree
-        excess = numerator.degree - self.base.degree()
+        fall = top - self.falling.degree
+        excess = numerator.degree - top
         self.powers = [max(0, -(-(order + excess + 2) // fall)) for order in ORDERS]
         self.exponents = [order + excess - fall * power for order, power in zip(ORDERS, self.powers, strict=True)]
 
     @property
+    def impulses(self) -> arb:
+        """The bound b of the sum of |bm| e^(g Tm), 1 for retarded type."""
+        return 1 / (1 - self.echoes)
+
+    def _shift(self, delay: fmpq) -> arb:
+        """Return |e^(-delay s)| on the line."""
+        return (-arb(self.line.real) * delay).exp()
+
+    @property
     def last_delay(self) -> fmpq:
-        """The latest time at which a term that is split off begins."""
+        """The latest time at which a term that is split off begins, for retarded type."""
         longest = self.delayed.terms[-1][0]
         return self.numerator.terms[-1][0] + longest * max(0, max(self.powers) - 1)
 
@@ -120,15 +151,17 @@ class _Bound:
     def _over(self, start: fmpq, end: fmpq, least: arb | None) -> list[arb] | None:
         """Return upper bounds of |s^k Y_K| over a cell of heights; None where it has to be cut."""
         s = acb(self.line.real, arb((start + end) / 2, (end - start) / 2))
-        above, delayed = (function.value(s).abs_upper() for function in self._functions)
+        above, falling = (function.value(s).abs_upper() for function in self._functions[:2])
         base = self._base(s).abs_lower()
         if not base > 0:
             return None
-        ratio = (delayed / base).upper()
-        below = least if least is not None else (base * (1 - ratio)).lower()
+        below = least
+        if below is None:
+            delayed = falling if self.retarded else self._functions[2].value(s).abs_upper()
+            below = (base - delayed).lower()
         if not below > 0:
             return None
-        size = s.abs_upper()
+        size, ratio = s.abs_upper(), (falling * self.impulses / base).upper()
         found = [
             (above * size**order * ratio**power / below).abs_upper()
             for order, power in zip(ORDERS, self.powers, strict=True)
@@ -136,11 +169,11 @@ class _Bound:
         return found if all(one.is_finite() for one in found) else None
 
     def _far(self) -> fmpq:
-        """Return a height from which on |d0| is at least half its leading term and |E| at most a quarter of that."""
+        """Return a height from which on |d0| exceeds |E| by at least half of what its leading term does in the end."""
         height = max(self.line.height, -self.line.real, fmpq(1, 2**60)) * 2
         while True:
             lead, rest, delayed = self._leading(height)
-            if lead > 2 * rest and lead > 4 * delayed:
+            if lead * (1 - self.echoes) > 2 * (rest + delayed - lead * self.echoes):
                 return height
             height = height * 2
 
@@ -156,15 +189,15 @@ class _Bound:
         total = arb(0)
         for delay, polynomial in quasi.terms:
             size = _size(_shifted(polynomial, self.line.real), height, degree)
-            total += size * (-arb(self.line.real) * delay).exp()
+            total += size * self._shift(delay)
         return total.abs_upper()
 
     def _beyond(self, far: fmpq) -> list[arb]:
         """Return the integral from a height on: there |s^k Y_K| <= A (h/far)^exponent, exponent <= -2."""
         lead, rest, delayed = self._leading(far)
         base = lead - rest
-        above = self._terms(self.numerator, far, self.base.degree())
-        ratio = delayed / base
+        above, falling = (self._terms(part, far, self.base.degree()) for part in (self.numerator, self.falling))
+        ratio = falling * self.impulses / base
         size = acb(self.line.real, far).abs_upper()
         found = []
         for order, power, exponent in zip(ORDERS, self.powers, self.exponents, strict=True):
@@ -173,30 +206,41 @@ class _Bound:
         return found
 
     def residues(self, order: int, since: fmpq) -> arb:
-        """Return the size of what the split-off terms leave at roots of d0 left of the line."""
+        """Return the size of what split-off terms leave at roots of d0: left of the line, or all of neutral type."""
         total = arb(0)
-        roots = [root for root in certified_roots(self.base, _BITS) if not root.value.real > arb(self.line.real)]
+        roots = [(root.value, root.multiplicity) for root in certified_roots(self.base, _BITS)]
+        if self.retarded:
+            roots = [(root, times) for root, times in roots if not root.real > arb(self.line.real)]
         part = self.numerator
         for power in range(self.powers[order]):
-            for root in roots:
-                total += self._residue(part, root.value, root.multiplicity, order, power, since)
-            part = part * self.delayed
+            driven = self.impulses ** (power + 1)
+            for root, times in roots:
+                total += self._residue(part, root, times, order, power, since) * driven
+            if self.period is not None and not self.retarded:
+                total += self._swing(part, order, power, self.period) * driven
+            part = part * self.falling
         return total.abs_upper()
 
     def _residue(self, part: Quasi, root: acb, multiplicity: int, order: int, power: int, since: fmpq) -> arb:
         times = multiplicity * (power + 1)
-        spare = -root.real + self.line.real
+        spare = abs(root.real - self.line.real)
         total = arb(0)
         with series_terms(times + multiplicity):
             divisor = without_root(of_polynomial(self.base, root), multiplicity) ** (power + 1)
             for delay, polynomial in part.terms:
                 driven = of_polynomial(polynomial * fmpq_poly([0, 1]) ** order, root)
                 parts = principal(shaped(driven, root, self.period) / divisor, times)
-                age = arb(since - delay)
-                shift = (-arb(self.line.real) * delay).exp()
+                age = arb(since - delay) if self.retarded else arb(0)
                 for size in _decayed(parts, spare, age):
-                    total += size * shift
+                    total += size * self._shift(delay)
         return total.abs_upper()
+
+    def _swing(self, part: Quasi, order: int, power: int, period: fmpq) -> arb:
+        """Return the same at the poles of the input, a conjugate pair."""
+        pole, residue = pole_of(period)
+        factor = residue * pole**order / self._base(pole) ** (power + 1)
+        total = sum((abs(acb_poly(p)(pole)) * self._shift(delay) for delay, p in part.terms), arb(0))
+        return (2 * abs(factor) * total).abs_upper()
 
 
 def _decayed(parts: tuple[acb, ...], spare: arb, age: arb) -> Iterator[arb]:
