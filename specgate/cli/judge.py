@@ -10,7 +10,13 @@ from specgate.cli import status
 from specgate.cli.terminal import progress
 
 if TYPE_CHECKING:
+    from collections.abc import Callable
+
+    from specgate.intake.load import Problems
+    from specgate.project.types import Project
     from specgate.review.types import Review, Unusable
+    from specgate.review.wanted import Wanted
+    from specgate.terms.sources import Source
 
 _STATUS = {"pass": status.PASSES, "hold": status.HOLDS, "unusable": status.UNUSABLE}
 
@@ -29,11 +35,25 @@ def judge(project: str, *, drawn: bool = True, proof: bool = False, formulas: bo
     drawn, proof, formulas: whether what drawings show, how bounded results were obtained, and what every formula of the
     catalogue gives, is computed too.
     """
-    from specgate.intake.load import Problems, load
-    from specgate.review.build import review, unusable
+    from specgate.intake.load import load
     from specgate.review.wanted import Wanted
 
+    return _judged(lambda: load(Path(project)), Wanted(drawn, proof, formulas))
+
+
+def judge_source(source: Source, entry: str) -> Judged:
+    """Read, compute and judge the project that begins with the file `entry` of a source of files."""
+    from specgate.intake.load import load_source
+    from specgate.review.wanted import Wanted
+
+    return _judged(lambda: load_source(source, entry), Wanted())
+
+
+def _judged(read: Callable[[], Project | Problems], wanted: Wanted) -> Judged:
+    from specgate.intake.load import Problems
+    from specgate.review.build import review, unusable
+
     with progress("reading and computing"):
-        loaded = load(Path(project))
-        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, Wanted(drawn, proof, formulas))
+        loaded = read()
+        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, wanted)
     return Judged(result, _STATUS[result.gate.outcome])

@@ -11,7 +11,7 @@ import specgate
 from specgate.cli import status
 from specgate.cli.commands import COMMANDS
 from specgate.terms.cautions import CAUTIONS
-from specgate.terms.errors import EnvironmentProblem
+from specgate.terms.errors import EnvironmentProblem, UnusableProblem
 
 _DESCRIPTION = """\
 Checks control-system specifications written in YAML: computes what each loop does with a proved error bound, judges
@@ -68,6 +68,9 @@ def main(arguments: Sequence[str]) -> int:
     except EnvironmentProblem as problem:
         print(f"specgate: {problem}", file=sys.stderr)
         return status.ENVIRONMENT
+    except UnusableProblem as problem:
+        print(f"specgate: {problem}", file=sys.stderr)
+        return status.UNUSABLE
     except Exception:
         import traceback
 

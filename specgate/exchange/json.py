@@ -22,7 +22,12 @@ _WIDTH = 120
 
 def write(review: Review | Unusable) -> str:
     """Write a result as JSON text that ends with a line break."""
-    return "".join(_lines(_plain(review), "")) + "\n"
+    return written(review)
+
+
+def written(record: object) -> str:
+    """Write any record as JSON text that ends with a line break."""
+    return "".join(_lines(_plain(record), "")) + "\n"
 
 
 def read(text: str) -> Review | Unusable:
@@ -30,14 +35,21 @@ def read(text: str) -> Review | Unusable:
     tree = json.loads(text)
     if not isinstance(tree, dict) or "format" not in tree:
         raise ValueError("this is not a result of specgate: the key `format` is missing")
-    return typing.cast("Review | Unusable", _build(Review if "project" in tree else Unusable, tree, "result"))
+    return typing.cast("Review | Unusable", built(Review if "project" in tree else Unusable, tree, "result"))
+
+
+def built(kind: type, tree: object, where: str) -> Any:
+    """Build a record of the type `kind` from plain values. Raises ValueError, with the place below `where`."""
+    return _build(kind, tree, where)
 
 
 # --- from types to plain values ----------------------------------------------------------------------------
 
 
 @dataclasses.dataclass(frozen=True)
-class _Field:
+class Field:
+    """A field of a record as it is written: its key, and when it is left out."""
+
     name: str
     key: str
     omit: bool
@@ -46,14 +58,14 @@ class _Field:
 
 
 @cache
-def _fields(kind: type) -> tuple[_Field, ...]:
+def field_table(kind: type) -> tuple[Field, ...]:
     """Return the fields of a type in writing order: what it adds to its base comes first."""
     hints = typing.get_type_hints(kind)
     base = kind.__mro__[1]
     inherited = {one.name for one in dataclasses.fields(base)} if dataclasses.is_dataclass(base) else set()
     every = sorted(dataclasses.fields(kind), key=lambda one: one.name in inherited)
     return tuple(
-        _Field(
+        Field(
             one.name,
             one.metadata.get("json", one.name),
             one.metadata.get("omit", False),
@@ -66,7 +78,7 @@ def _fields(kind: type) -> tuple[_Field, ...]:
 
 def _plain(value: Any) -> Any:
     if dataclasses.is_dataclass(value) and not isinstance(value, type):
-        pairs = ((one, getattr(value, one.name)) for one in _fields(type(value)))
+        pairs = ((one, getattr(value, one.name)) for one in field_table(type(value)))
         return {one.key: _plain(part) for one, part in pairs if part is not None or _said(one, value)}
     if isinstance(value, Mapping):
         return {str(key): _plain(part) for key, part in value.items()}
@@ -75,7 +87,7 @@ def _plain(value: Any) -> Any:
     return value
 
 
-def _said(field: _Field, record: Any) -> bool:
+def _said(field: Field, record: Any) -> bool:
     """Whether a key stands in the text although there is nothing to say under it."""
     return not field.omit or (field.said_for is not None and field.said_for == getattr(record, "measure", None))
 
@@ -144,7 +156,7 @@ def _build(kind: Any, value: Any, where: str) -> Any:
 def _record(kind: type, value: Any, where: str) -> Any:
     if not isinstance(value, dict):
         raise ValueError(f"{where}: an object is wanted")
-    known = {one.key: one for one in _fields(kind)}
+    known = {one.key: one for one in field_table(kind)}
     unknown = [key for key in value if key not in known]
     if unknown:
         raise ValueError(f"{where}: the key `{unknown[0]}` is not one of this format")

@@ -15,7 +15,7 @@ from jinja2 import Environment, FunctionLoader, StrictUndefined, pass_context
 from jinja2.runtime import Context
 from markupsafe import Markup, escape
 
-from specgate.report.figures import error, frequency, poles, reserve, step, wiring
+from specgate.report.figures import error, frequency, overlay, poles, reserve, step, wiring
 from specgate.report.figures.scales import LogScale, Scale
 from specgate.report.parts import formulas, matrix, models, ranges
 from specgate.report.view import View
@@ -46,7 +46,8 @@ def resource(name: str) -> bytes:
     return files("specgate.templates").joinpath(*name.split("/")).read_bytes()
 
 
-def _text(name: str) -> str:
+def template(name: str) -> str:
+    """Return the text of a template, a style or a script."""
     return resource(name).decode()
 
 
@@ -57,6 +58,7 @@ Figure = (
     | poles.PoleFigure
     | reserve.ReserveBar
     | wiring.WiringFigure
+    | overlay.OverlayFigure
 )
 
 
@@ -75,6 +77,8 @@ def draw(figure: Figure) -> Markup:
             return Markup(reserve.draw(figure))
         case wiring.WiringFigure():
             return Markup(wiring.draw(figure))
+        case overlay.OverlayFigure():
+            return Markup(overlay.draw(figure))
 
 
 def readings(figure: step.StepFigure | frequency.FrequencyFigure) -> str:
@@ -139,7 +143,11 @@ def breakable(context: Context, name: str) -> Markup:
 def environment() -> Environment:
     """Return the template environment: everything is escaped, nothing may be undefined."""
     env = Environment(
-        loader=FunctionLoader(_text), autoescape=True, undefined=StrictUndefined, trim_blocks=True, lstrip_blocks=True
+        loader=FunctionLoader(template),
+        autoescape=True,
+        undefined=StrictUndefined,
+        trim_blocks=True,
+        lstrip_blocks=True,
     )
     env.filters["short"] = short
     env.filters["quoted"] = quoted
@@ -148,7 +156,8 @@ def environment() -> Environment:
     return env
 
 
-def _fonts() -> str:
+def fonts() -> str:
+    """Return the faces that a page on screen carries, as style."""
     faces = []
     for family, weight, name in FACES:
         data = base64.b64encode(resource(f"fonts/{name}.woff2")).decode()
@@ -157,21 +166,22 @@ def _fonts() -> str:
     return "\n".join(faces)
 
 
-def _hash(text: str) -> str:
+def hashed(text: str) -> str:
+    """Return a text as the security policy of a page names it."""
     return f"'sha256-{base64.b64encode(hashlib.sha256(text.encode()).digest()).decode()}'"
 
 
 def on_screen(view: View) -> str:
     """Return the HTML report: one file that loads nothing and runs one script, which its security policy names."""
-    script = _text("report/report.js")
+    script = template("report/report.js")
     styles = [
-        ("", _fonts()),
-        ("", _text("report/base.css")),
-        ("screen", _text("report/screen.css")),
-        ("print", _text("report/print.css")),
+        ("", fonts()),
+        ("", template("report/base.css")),
+        ("screen", template("report/screen.css")),
+        ("print", template("report/print.css")),
     ]
     policy = (
-        f"default-src 'none'; style-src {' '.join(_hash(style) for _, style in styles)}; script-src {_hash(script)}; "
+        f"default-src 'none'; style-src {' '.join(hashed(style) for _, style in styles)}; script-src {hashed(script)}; "
         "font-src data:; img-src data:; base-uri 'none'; form-action 'none'"
     )
     return _render(
@@ -181,9 +191,16 @@ def on_screen(view: View) -> str:
 
 def on_paper(view: View, paper: str) -> str:
     """Return the document that is laid out as PDF; `paper` is A4 or Letter. Long tables are cut, and say so."""
-    styles = [("", _text("report/base.css")), ("", _text("report/print.css").replace("size: A4", f"size: {paper}"))]
+    styles = [
+        ("", template("report/base.css")),
+        ("", template("report/print.css").replace("size: A4", f"size: {paper}")),
+    ]
     groups, left_out = matrix.printed(view.groups)
-    html = _render(view, False, styles, groups, left_out, LINES_AT_MOST, LINES_AT_MOST)
+    return for_paper(_render(view, False, styles, groups, left_out, LINES_AT_MOST, LINES_AT_MOST))
+
+
+def for_paper(html: str) -> str:
+    """Return a document without what only the screen uses, and with its blanks where the layout engine wants them."""
     return _BLANK_BEFORE.sub(r"\1 ", _FIGURE_CLASS.sub("", html))
 
 

@@ -19,6 +19,7 @@ from specgate.report import anchors, finish, typeface
 from specgate.report.view import View, view
 from specgate.review.types import Review
 from specgate.terms.errors import EnvironmentProblem
+from specgate.terms.records import record
 
 LIBRARIES = "libpango-1.0-0 libpangoft2-1.0-0 libharfbuzz-subset0"
 """Debian packages of the system libraries that lay out text."""
@@ -36,24 +37,46 @@ def render(review: Review, attachments: Mapping[str, bytes], *, paper: str = "A4
     Attachments that are inputs of the review are its source, all others are data. Raises EnvironmentProblem where
     a system library is missing, Refused where the document cannot be laid out cleanly.
     """
-    engine = _engine()
+    require()
     from specgate.report.page import on_paper
 
     seen = view(review, typeface.characters().__contains__)
-    html = on_paper(seen, paper)
-    names = sorted(attachments, key=_name_in_pdf)
-    identity = hashlib.sha256(html.encode() + b"".join(attachments[name] for name in names)).hexdigest()[:32]
-    sources = {item.path for item in review.inputs}
+    held = Attachments(attachments, frozenset(item.path for item in review.inputs), review.project.date)
+    return laid_out(on_paper(seen, paper), held, destinations(seen))
+
+
+@record
+class Attachments:
+    """Files that a PDF carries, by name. sources: those that are inputs; date: of the project."""
+
+    files: Mapping[str, bytes]
+    sources: frozenset[str]
+    date: str | None
+
+
+def require() -> None:
+    """Raise EnvironmentProblem where a system library is missing."""
+    _engine()
+
+
+def laid_out(html: str, held: Attachments, places: Mapping[str, str]) -> bytes:
+    """Lay out a document as a PDF that carries files; `places` says in words where its links lead.
+
+    Raises what `render` raises.
+    """
+    engine = _engine()
+    names = sorted(held.files, key=_name_in_pdf)
+    identity = hashlib.sha256(html.encode() + b"".join(held.files[name] for name in names)).hexdigest()[:32]
     with typeface.only_ours(), _no_garbage_collection(), page_references_kept(), _complaints() as said:
         fetcher = _closed(engine)
         document = engine.HTML(string=html, url_fetcher=fetcher)
-        files = [_attachment(engine, name, attachments[name], name in sources, review.project.date) for name in names]
+        files = [_attachment(engine, name, held.files[name], name in held.sources, held.date) for name in names]
         try:
             data = document.write_pdf(
                 pdf_variant="pdf/a-3a",
                 attachments=files,
                 pdf_identifier=identity.encode(),
-                finisher=partial(_finish, destinations(seen)),
+                finisher=partial(_finish, places),
             )
         except BaseException as error:
             # The engine's own error about a refused address does not derive from Exception.

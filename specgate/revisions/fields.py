@@ -93,8 +93,18 @@ def changes(
         before, after = field.of(getattr(old, field.name)), field.of(getattr(new, field.name))
         if before != after:
             what = prefix + SAID_AS.get(field.name, field.name)
+            was, now = _unlike(before, after)
             places = located(old), located(new)
-            yield Change(kind, name, what, field.how, said(before), said(after), field.bears, *places)
+            yield Change(kind, name, what, field.how, said(was), said(now), field.bears, *places)
+
+
+def _unlike(before: Any, after: Any) -> tuple[Any, Any]:
+    """Return two values, of mappings only the entries that are not the same."""
+    if not (isinstance(before, Mapping) and isinstance(after, Mapping)):
+        return before, after
+    same = {key for key in before.keys() & after.keys() if before[key] == after[key]}
+    kept = [{key: part for key, part in side.items() if key not in same} for side in (before, after)]
+    return kept[0], kept[1]
 
 
 def come_and_gone(kind: str, old: Mapping[str, Any], new: Mapping[str, Any]) -> Iterator[Change]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator, Mapping
 from fnmatch import fnmatchcase
 from itertools import takewhile
 from pathlib import Path, PurePosixPath
@@ -83,6 +83,39 @@ class FolderSource:
                 )
             inside = PurePosixPath(Path(folder).relative_to(self.root).as_posix())
             yield from (str(inside / name) for name in sorted(files) if not name.startswith("."))
+
+
+@record
+class HeldSource:
+    """Files that are held in memory, by their paths: attachments of a report, the files of a revision."""
+
+    files: Mapping[str, bytes]
+
+    def read(self, path: str) -> bytes:
+        """Return the bytes of a file. Raises SourceError."""
+        wanted = "/".join(_parts(path))
+        if wanted not in self.files:
+            raise SourceError(f"there is no file `{path}`")
+        return self.files[wanted]
+
+    def glob(self, pattern: str) -> list[str]:
+        """Return the files that match, sorted; hidden ones only where they are named. Raises SourceError."""
+        return matching(self.files, pattern)
+
+
+def matching(paths: Iterable[str], pattern: str) -> list[str]:
+    """Return the paths that a pattern matches, sorted, as a folder with these files would. Raises SourceError."""
+    wanted = _parts(pattern)
+    if not any(set(part) & _WILD for part in wanted):
+        return ["/".join(wanted)] if "/".join(wanted) in set(paths) else []
+    parts = ((path, tuple(path.split("/"))) for path in paths)
+    return sorted(path for path, names in parts if not _hidden(names, wanted) and _matches(names, wanted))
+
+
+def _hidden(names: tuple[str, ...], pattern: tuple[str, ...]) -> bool:
+    """Tell whether a file is hidden, or lies in a hidden folder, below the part of the pattern without wild cards."""
+    fixed = len(tuple(takewhile(lambda part: not set(part) & _WILD, pattern)))
+    return any(name.startswith(".") for name in names[fixed:])
 
 
 def _parts(path: str) -> tuple[str, ...]:

@@ -15,7 +15,7 @@ COMPUTED: dict[type, set[str]] = {
     types.ParameterReview: {"exact", "unit", "as_written", "location"},
     types.SubsystemReview: {"used", "location", "by_fit"},
     types.LoopReview: {"signal_units", "subsystems", "poles", "hidden_modes", "measures", "in_z", "reason"}
-    | {"characteristic_polynomial", "characteristic_terms"},
+    | {"characteristic_polynomial", "characteristic_terms", "formulas"},
     types.ResponseReview: {"unit", "measures", "poles", "zeros", "curve", "reason"},
     types.BreakReview: {"measures", "crossings", "frequency_response", "reason", "in_z"},
     types.ProjectReview: set(),
