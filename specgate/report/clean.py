@@ -57,7 +57,9 @@ def _cleaned(tree: Any, shown: Shown | None) -> Any:
         changed = {name: after for name, part in before if (after := _cleaned(part, shown)) is not part}
         return replace(tree, **changed) if changed else tree
     if isinstance(tree, Mapping):
-        return {_cleaned(key, shown): _cleaned(value, shown) for key, value in tree.items()}
+        pairs = [(_cleaned(key, shown), _cleaned(value, shown)) for key, value in tree.items()]
+        same = all(key is old and value is part for (key, value), (old, part) in zip(pairs, tree.items(), strict=True))
+        return tree if same else dict(pairs)
     return tree
 
 

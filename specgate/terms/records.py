@@ -1,16 +1,19 @@
 """Records: frozen dataclasses that are quick to define.
 
-`@dataclass(frozen=True)` writes and compiles six functions for every class. A run defines two hundred classes before
-it reads its first file, which took a fifth of its time. A record has one function of its own, `__init__`; the others
-are shared by all records. In everything else (fields, defaults, `replace`, what a type checker knows) it is a frozen
-dataclass.
+`@dataclass(frozen=True)` looks at every field of a class and compiles six functions for it. A run defines more than two
+hundred classes before it reads its first file, makes objects of half of them, and asks few for their fields: that took
+a third of all imports. A record is made ready when it is first used: its one own function, `__init__`, is written with
+its first object, and `dataclass` itself only sees it where somebody asks for its fields. All other functions are shared
+by all records. In everything else (fields, defaults, `replace`, what a type checker knows) it is a frozen dataclass,
+all annotations of which are fields.
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import MISSING, FrozenInstanceError, dataclass, field, fields
-from typing import Any, NoReturn, TypeVar, cast, dataclass_transform
+from dataclasses import MISSING, Field, FrozenInstanceError, dataclass, field, fields
+from operator import attrgetter
+from typing import Any, NoReturn, TypeVar, dataclass_transform
 
 T = TypeVar("T")
 
@@ -18,37 +21,101 @@ T = TypeVar("T")
 @dataclass_transform(frozen_default=True, field_specifiers=(field,))
 def record(kind: type[T]) -> type[T]:
     """Make a class whose annotations are its fields: set once, compared and hashed by value, shown by `repr`."""
-    made: Any = dataclass(init=False, repr=False, eq=False)(kind)
-    made.__compared__ = tuple(one.name for one in fields(made) if one.compare)
     own = vars(kind)
-    for name, function in {"__init__": _initialiser(made), **_SHARED}.items():
+    for name, function in _SHARED.items():
         if name not in own:
-            setattr(made, name, function)
-    return cast("type[T]", made)
+            setattr(kind, name, function)
+    for name, complete in _LATER.items():
+        if name not in own:
+            setattr(kind, name, _Later(kind, name, complete))
+    return kind
 
 
-def _initialiser(kind: Any) -> Callable[..., None]:
+class _Later:
+    """An attribute of a class that is made, and takes its own place, when it is first asked for."""
+
+    __slots__ = ("_complete", "_kind", "_name")
+
+    def __init__(self, kind: type, name: str, complete: Callable[[Any], None]) -> None:
+        self._kind, self._name, self._complete = kind, name, complete
+
+    def __get__(self, instance: object, owner: type) -> Any:
+        self._complete(self._kind)
+        return getattr(owner if instance is None else instance, self._name)
+
+
+def _make_callable(kind: Any) -> None:
+    """Give a record its `__init__`, and what it is compared by."""
+    parts, types = _parts(kind)
+    kind.__parts__ = parts, types
+    compared = [name for name, one in parts.items() if one.compare]
+    kind.__key__ = attrgetter(*compared) if compared else staticmethod(_nothing)
+    if isinstance(vars(kind)["__init__"], _Later):
+        kind.__init__ = _initialiser(kind, parts, types)
+
+
+def _make_dataclass(kind: Any) -> None:
+    """Let `dataclass` see a record."""
+    if isinstance(vars(kind)["__parts__"], _Later):
+        _make_callable(kind)
+    for name in _OF_DATACLASSES:
+        if isinstance(vars(kind).get(name), _Later):
+            delattr(kind, name)
+    dataclass(init=False, repr=False, eq=False)(kind)
+
+
+_OF_DATACLASSES = ("__dataclass_fields__", "__dataclass_params__", "__match_args__")
+_LATER: dict[str, Callable[[Any], None]] = {
+    **dict.fromkeys(("__init__", "__key__", "__parts__"), _make_callable),
+    **dict.fromkeys(_OF_DATACLASSES, _make_dataclass),
+}
+
+_Parts = tuple[dict[str, "Field[Any]"], dict[str, str]]
+
+
+def _parts(kind: Any) -> _Parts:
+    """Return the fields of a record by name, those of its bases first, and their annotations."""
+    parts: dict[str, Field[Any]] = {}
+    types: dict[str, str] = {}
+    for base in kind.__mro__[-1:0:-1]:
+        inherited = getattr(base, "__parts__", None)
+        if inherited is not None:
+            parts.update(inherited[0])
+            types.update(inherited[1])
+    own = vars(kind)
+    for name, annotation in own.get("__annotations__", {}).items():
+        value = own.get(name, MISSING)
+        parts[name] = value if isinstance(value, Field) else field(default=value)
+        types[name] = annotation
+    return parts, types
+
+
+def _initialiser(kind: Any, parts: dict[str, Field[Any]], types: dict[str, str]) -> Callable[..., None]:
     """Return the function that takes the fields and sets them, written out so that Python itself checks each call."""
     given: dict[str, Any] = {"_put": object.__setattr__, "_missing": MISSING}
     parameters, lines = ["self"], ["pass"]
-    for one in sorted(fields(kind), key=lambda one: one.kw_only is True):
-        if one.kw_only and "*" not in parameters:
+    for name, one in sorted(parts.items(), key=lambda part: part[1].kw_only is True):
+        if one.kw_only is True and "*" not in parameters:
             parameters.append("*")
-        value, default = one.name, ""
+        value, default = name, ""
         if one.default is not MISSING:
-            default = f"=_default_{one.name}"
-            given[f"_default_{one.name}"] = one.default
+            default = f"=_default_{name}"
+            given[f"_default_{name}"] = one.default
         elif one.default_factory is not MISSING:
             default = "=_missing"
-            value = f"_make_{one.name}() if {one.name} is _missing else {one.name}"
-            given[f"_make_{one.name}"] = one.default_factory
-        parameters.append(one.name + default)
-        lines.append(f"_put(self, {one.name!r}, {value})")
+            value = f"_make_{name}() if {name} is _missing else {name}"
+            given[f"_make_{name}"] = one.default_factory
+        parameters.append(name + default)
+        lines.append(f"_put(self, {name!r}, {value})")
     exec(f"def __init__({', '.join(parameters)}):\n " + "\n ".join(lines), given)
     function: Callable[..., None] = given["__init__"]
     function.__qualname__ = f"{kind.__qualname__}.__init__"
-    function.__annotations__ = {one.name: one.type for one in fields(kind)}
+    function.__annotations__ = dict(types)
     return function
+
+
+def _nothing(_: object) -> tuple[()]:
+    return ()
 
 
 def _refuse_to_set(self: object, name: str, value: object) -> NoReturn:
@@ -60,15 +127,11 @@ def _refuse_to_delete(self: object, name: str) -> NoReturn:
 
 
 def _equal(self: Any, other: Any) -> bool:
-    return _key(self) == _key(other) if other.__class__ is self.__class__ else NotImplemented
+    return self.__key__(self) == self.__key__(other) if other.__class__ is self.__class__ else NotImplemented
 
 
 def _hashed(self: Any) -> int:
-    return hash(_key(self))
-
-
-def _key(self: Any) -> tuple[object, ...]:
-    return tuple([getattr(self, name) for name in self.__compared__])
+    return hash(self.__key__(self))
 
 
 def _shown(self: Any) -> str:
