@@ -11,7 +11,7 @@ import dataclasses
 import json
 import types
 import typing
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from typing import Any, TypeVar, cast
 
 from specgate.exchange.json import Field, field_table
@@ -82,12 +82,18 @@ class _Reading:
     def _one_of(self, kinds: tuple[Any, ...], value: Any) -> Any:
         if value is None and type(None) in kinds:
             return None
-        for kind in kinds:
+        keys = value.keys() if isinstance(value, dict) else set()
+        for kind in sorted(kinds, key=lambda kind: not _knows(kind, keys)):
             try:
                 return self.build(kind, value)
             except (TypeError, ValueError):
                 continue
         raise TypeError(value)
+
+
+def _knows(kind: Any, keys: Collection[str]) -> bool:
+    """Tell whether a record of a union has a field for every key of a value."""
+    return dataclasses.is_dataclass(kind) and set(keys) <= {one.key for one in field_table(cast(type, kind))}
 
 
 def _of(kind: type[T], value: Any) -> T:

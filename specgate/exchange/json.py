@@ -172,7 +172,9 @@ def _one_of(kinds: tuple[Any, ...], value: Any, where: str) -> Any:
         return None
     shaped = [one for one in kinds if dataclasses.is_dataclass(one) or typing.get_origin(one) in (tuple, Mapping)]
     if len(shaped) > 1 and isinstance(value, dict):
-        fitting = (one for one in shaped if value.keys() <= {field.key for field in _fields(typing.cast(type, one))})
+        fitting = (
+            one for one in shaped if value.keys() <= {field.key for field in field_table(typing.cast(type, one))}
+        )
         return _build(next(fitting, shaped[0]), value, where)
     return _build(shaped[0], value, where) if shaped else value
 

@@ -16,8 +16,8 @@ COMPUTED: dict[type, set[str]] = {
     types.SubsystemReview: {"used", "location", "by_fit"},
     types.LoopReview: {"signal_units", "subsystems", "poles", "hidden_modes", "measures", "in_z", "reason"}
     | {"characteristic_polynomial", "characteristic_terms", "formulas"},
-    types.ResponseReview: {"unit", "measures", "poles", "zeros", "curve", "reason"},
-    types.BreakReview: {"measures", "crossings", "frequency_response", "reason", "in_z"},
+    types.ResponseReview: {"unit", "measures", "poles", "zeros", "curve", "reason", "formulas"},
+    types.BreakReview: {"measures", "crossings", "frequency_response", "reason", "in_z", "formulas"},
     types.ProjectReview: set(),
     types.PolicyReview: set(),
 }
