@@ -111,12 +111,16 @@ def _unanswered(project: Project, loop: Loop, built: InstantiatedLoop, reason: s
 def _breaks(
     loop: Loop, solution: LoopSolution | DelayedSolution, built: InstantiatedLoop
 ) -> Mapping[str, BreakAnalysis]:
-    return {name: _break(one, built.cuts[name], solution, built.breaks.get(name)) for name, one in loop.breaks.items()}
+    return {
+        name: break_analysis(one, built.cuts[name], solution, built.breaks.get(name))
+        for name, one in loop.breaks.items()
+    }
 
 
-def _break(
+def break_analysis(
     declared: Break, cut: Cut, solution: LoopSolution | DelayedSolution, unsupported: str | None
 ) -> BreakAnalysis:
+    """Return the loop opened at a break, or why it is not. unsupported: why this version does not answer it."""
     if unsupported is not None:
         return BreakAnalysis(declared, Missing(unsupported, later=True))
     if solution.algebraic_loop is not None:

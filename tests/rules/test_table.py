@@ -18,6 +18,8 @@ CONTRACT = {
 ADDED = {
     "model-assumed",
     "model-beyond-validity",
+    "stand-in-out-of-range",
+    "dead-time-as-fraction",
     *("hidden-from-samples", "threshold-loosened", "range-exceeded", "range-undecided", "rest-outside-range"),
     "fragile-result",
     *("requirement-childless", "text-duplicate", "requirement-unallocated", "allocation-unused"),
