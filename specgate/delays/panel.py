@@ -24,10 +24,10 @@ from specgate.terms.precision import series_terms, working_precision
 Moved = tuple[acb, acb_poly]
 """A pole, and the polynomial of its mode in the time from the middle."""
 
-_BITS = 60
-"""Bits, relative to y in the middle, to which a panel is good: it serves wide balls of times."""
+COARSE, FINE = 60, 130
+"""Bits, relative to y in the middle, to which a panel is good: for wide balls of times, and for integrals."""
 
-_MOST_TERMS = 120
+_MOST_TERMS = 240
 _STEEPEST = 16.0
 """Speed times width of a piece beyond which no polynomial is made of it."""
 
@@ -48,11 +48,29 @@ class Panel:
             a, b, c, d = (p(x) + rest for p, rest in zip(self.polynomials, self.rest, strict=True))
         return a, b, c, d
 
+    def area(self, left: fmpq, right: fmpq) -> arb:
+        """Return a ball of the integral of y over a part of the piece."""
+        with working_precision(self.bits):
+            return self._between(self.polynomials[0], left, right) + self.rest[0] * (right - left)
 
-def panel(terms: Iterable[tuple[fmpq, fmpq, Mode]], left: fmpq, right: fmpq, bits: int) -> Panel | None:
+    def square(self, left: fmpq, right: fmpq) -> arb:
+        """Return a ball of the integral of y^2: with y = p + e it is p^2 and e (2 p + e)."""
+        with working_precision(self.bits):
+            polynomial, rest = self.polynomials[0], self.rest[0]
+            height = polynomial(arb(left - self.middle).union(arb(right - self.middle)))
+            return self._between(polynomial * polynomial, left, right) + rest * (2 * height + rest) * (right - left)
+
+    def _between(self, polynomial: arb_poly, left: fmpq, right: fmpq) -> arb:
+        summed = polynomial.integral()
+        return summed(arb(right - self.middle)) - summed(arb(left - self.middle))
+
+
+def panel(
+    terms: Iterable[tuple[fmpq, fmpq, Mode]], left: fmpq, right: fmpq, bits: int, good: int = COARSE
+) -> Panel | None:
     """Return the panel of sum of factor * mode(t - origin) on a piece; None where it would take too many terms.
 
-    terms: (origin, factor, mode).
+    terms: (origin, factor, mode). good: bits to which it is.
     """
     given = list(terms)
     speed = max((float(abs(mode.pole).mid()) for _, _, mode in given), default=0.0)
@@ -63,7 +81,7 @@ def panel(terms: Iterable[tuple[fmpq, fmpq, Mode]], left: fmpq, right: fmpq, bit
     with working_precision(bits):
         moved = [_moved(mode, arb(middle - origin), arb(factor) * mode.weight) for origin, factor, mode in given]
         reach = arb(2 * half)
-        tiny = (_size(moved, arb(half)) * arb(2) ** -_BITS).upper()
+        tiny = (_size(moved, arb(half)) * arb(2) ** -good).upper()
         short, left_out = _shortened(moved, reach, tiny)
         count = _enough(short, reach, tiny)
         if count is None:

@@ -11,7 +11,7 @@ from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.delays.course import Course
 from specgate.delays.steps import Values
-from specgate.delays.stretch import Stretch, polynomial_of
+from specgate.delays.stretch import ROUGH, Stretch, polynomial_of
 from specgate.response.answers import Absent
 from specgate.response.pieces import Pieces
 from specgate.terms.precision import working_precision
@@ -38,7 +38,7 @@ class DelayedPieces(Pieces):
     def __init__(self, parts: Sequence[Part]) -> None:
         self.parts = tuple(parts)
         self._stretches: dict[int, Stretch] = {}
-        self._squares: dict[tuple[int, fmpq, fmpq], arb | None] = {}
+        self._squares: dict[tuple[int, fmpq, fmpq, bool], arb | None] = {}
 
     @property
     def origin(self) -> object:
@@ -96,13 +96,13 @@ class DelayedPieces(Pieces):
 
     def area(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
         """Return a ball of the integral of y over a part of a piece."""
-        return self._stretch(index).area(left, right)
+        return self._stretch(index).area(left, right, bits)
 
     def square(self, index: int, left: fmpq, right: fmpq, bits: int) -> arb | None:
         """Return a ball of the integral of y^2 over a part of a piece."""
-        asked = index, left, right
+        asked = index, left, right, bits <= ROUGH
         if asked not in self._squares:
-            self._squares[asked] = self._stretch(index).square(left, right)
+            self._squares[asked] = self._stretch(index).square(left, right, bits)
         return self._squares[asked]
 
     def jump(self, index: int) -> fmpq | None:

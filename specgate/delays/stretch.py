@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
 from flint import acb_poly, arb, fmpq, fmpq_poly
 
-from specgate.delays.panel import Panel, panel
+from specgate.delays.panel import FINE, Panel, panel
 from specgate.delays.remainder import ORDERS, Remainder
 from specgate.delays.steps import Mode, Values
 from specgate.response import modes as response_modes
@@ -18,6 +18,9 @@ from specgate.terms.precision import working_precision
 
 _NARROW = arb(2) ** -30
 """Part of a piece below which a ball of times is narrow."""
+
+ROUGH = 96
+"""Bits up to which the polynomial that serves wide balls of times gives an integral well enough."""
 
 
 @dataclass(frozen=True)
@@ -89,10 +92,10 @@ class Stretch:
     @cached_property
     def _panel(self) -> Panel | None:
         """The groups of the method of steps as one polynomial, for wide balls of times."""
-        if self.span is None:
-            return None
-        terms = ((group.origin, group.factor, mode) for group in self._early for mode in group.modes)
-        return panel(terms, *self.span, self.bits)
+        return None if self.span is None else panel(self._terms(), *self.span, self.bits)
+
+    def _terms(self) -> Iterator[tuple[fmpq, fmpq, Mode]]:
+        return ((group.origin, group.factor, mode) for group in self._early for mode in group.modes)
 
     @cached_property
     def _early(self) -> tuple[Group, ...]:
@@ -120,10 +123,24 @@ class Stretch:
         """The speed of the fastest mode (rad/s)."""
         return max((float(abs(mode.pole).mid()) for group in self.groups for mode in group.modes), default=0.0)
 
-    def area(self, left: fmpq, right: fmpq) -> arb | None:
+    @cached_property
+    def _fine(self) -> Panel | None:
+        """The same about as good as the terms themselves are, for integrals."""
+        return None if self.span is None else panel(self._terms(), *self.span, self.bits, FINE)
+
+    def _quick(self, bits: int) -> Panel | None:
+        """Return the polynomial where it is all of the stretch, for an integral to `bits`."""
+        if len(self._early) < len(self.groups):
+            return None
+        return self._panel if bits <= ROUGH else self._fine
+
+    def area(self, left: fmpq, right: fmpq, bits: int) -> arb | None:
         """Return a ball of the integral of y from left to right."""
         if not self.known:
             return None
+        quick = self._quick(bits)
+        if quick is not None:
+            return quick.area(left, right)
         with working_precision(self.bits):
             expansion, drift = self._from(left)
             total = integral(expansion, drift, fmpq(0), right - left)
@@ -131,10 +148,13 @@ class Stretch:
                 total += arb(0, group.sizes(left, right)[1].upper())
         return total
 
-    def square(self, left: fmpq, right: fmpq) -> arb | None:
+    def square(self, left: fmpq, right: fmpq, bits: int) -> arb | None:
         """Return a ball of the integral of y^2: |(y + e)^2 - y^2| <= |e| (2 |y + e| + |e|)."""
         if not self.known:
             return None
+        quick = self._quick(bits)
+        if quick is not None:
+            return quick.square(left, right)
         with working_precision(self.bits):
             expansion, drift = self._from(left)
             total = square_integral(expansion, drift, fmpq(0), right - left)
