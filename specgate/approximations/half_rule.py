@@ -24,7 +24,7 @@ _SKOGESTAD = (
 _HALF, _NO_TIME = Answer.of_exact(fmpq(1, 2)), Answer.of_exact(0)
 
 
-def _model(features: Features) -> tuple[Answer, Answer] | None:
+def lag_and_dead_time(features: Features) -> tuple[Answer, Answer] | None:
     """Return lag and dead time of the reduced model, s; None where the poles are not real and decaying."""
     if not features.stable or not features.poles or any(pole.oscillates for pole in features.poles):
         return None
@@ -35,7 +35,7 @@ def _model(features: Features) -> tuple[Answer, Answer] | None:
 
 
 def _time(features: Features, arguments: Arguments) -> Answer:
-    model, band = _model(features), relative_band(arguments)
+    model, band = lag_and_dead_time(features), relative_band(arguments)
     if model is None:
         return Answer.nothing("the rule is for real poles that decay")
     if arguments.measure == "rise_time":

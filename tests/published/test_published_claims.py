@@ -14,7 +14,7 @@ import yaml
 
 from specgate.intake.load import Problems, load
 from specgate.review.build import review
-from specgate.review.types import CriterionReview
+from specgate.review.types import CriterionReview, Review
 from specgate.review.wanted import Wanted
 
 DATA = Path(__file__).resolve().parents[1] / "data" / "published_values.yaml"
@@ -76,6 +76,10 @@ CLAIMS: dict[str, tuple[tuple[str, str, str], str, bool, bool]] = {
 
 
 def claimed(folder: Path, row: dict[str, Any], read: tuple[str, str, str], basis: str) -> CriterionReview:
+    return reviewed(folder, row, read, basis).requirements["R"].criteria[0]
+
+
+def reviewed(folder: Path, row: dict[str, Any], read: tuple[str, str, str], basis: str) -> Review:
     measure, limit, unit = read
     path = folder / "specgate.yaml"
     path.write_text(
@@ -89,7 +93,7 @@ def claimed(folder: Path, row: dict[str, Any], read: tuple[str, str, str], basis
     )
     project = load(path)
     assert not isinstance(project, Problems), [one.message for one in project.findings]
-    return review(project, Wanted(drawn=False)).requirements["R"].criteria[0]
+    return review(project, Wanted(drawn=False))
 
 
 @pytest.mark.parametrize("name", CLAIMS)
@@ -111,7 +115,9 @@ def test_digits_that_are_off_are_slips(tmp_path: Path, name: str) -> None:
     read, approximation, _, _ = CLAIMS[name]
     row = ROWS[name]
     assert row["verdict"] == "disagrees"
-    basis = claimed(tmp_path, row, read, approximation).basis
+    found = reviewed(tmp_path, row, read, approximation)
+    assert any(one.rule == "claim-disagrees-with-formula" for one in found.findings)
+    basis = found.requirements["R"].criteria[0].basis
     assert basis.formula is not None
     assert abs((basis.formula.value or 0.0) - float(row["printed"])) > float(row["tolerance"])
 
