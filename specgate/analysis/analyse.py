@@ -63,6 +63,7 @@ def loop_analysis(project: Project, loop: Loop, built: InstantiatedLoop, known: 
     solution = solved(built.wiring)
     return LoopAnalysis(
         loop=loop,
+        built=built,
         subsystems=subsystems_of(project, loop),
         signals=built.signals,
         solution=solution,
@@ -84,6 +85,7 @@ def _sampled(
         return _unanswered(project, loop, built, str(reason))
     return LoopAnalysis(
         loop=loop,
+        built=built,
         subsystems=subsystems_of(project, loop),
         signals=built.signals,
         solution=solution,
@@ -97,6 +99,7 @@ def _unanswered(project: Project, loop: Loop, built: InstantiatedLoop, reason: s
     missing = Missing(reason, later=True)
     return LoopAnalysis(
         loop=loop,
+        built=built,
         subsystems=subsystems_of(project, loop),
         signals=built.signals,
         solution=solved(built.wiring),

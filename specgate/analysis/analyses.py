@@ -14,6 +14,7 @@ from specgate.approximations.whole import WholeLoop
 from specgate.measures.measure import Arguments, Measure
 from specgate.measures.subjects import BreakSubject, LoopSubject, ResponseSubject
 from specgate.project import types as project_types
+from specgate.project.instantiate import InstantiatedLoop
 from specgate.project.parameters import Values
 from specgate.project.signals import LoopSignals
 from specgate.response.answers import Absent, Answer
@@ -85,11 +86,13 @@ class BreakAnalysis:
 class LoopAnalysis:
     """A loop, solved once.
 
-    subsystems: names of those it is wired from, in the order of the files. signals: the unit and span of each.
+    built: it with values. subsystems: names of those it is wired from, in the order of the files. signals: the unit and
+    span of each.
     solution: where the subject is missing, that of what is left without the blocks that this version does not answer.
     """
 
     loop: project_types.Loop
+    built: InstantiatedLoop
     subsystems: tuple[str, ...]
     signals: LoopSignals
     solution: LoopSolution | DelayedSolution | SampledSolution

@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
 
 from flint import fmpq, fmpq_poly
 
 from specgate.analysis.analyses import Missing, ResponseAnalysis
 from specgate.analysis.delayed import delayed_response
-from specgate.analysis.driven import ERROR_JUMPS, NOISE, SEVERAL, beyond, improper, plain, reference_of, void
+from specgate.analysis.driven import ERROR_JUMPS, NOISE, SEVERAL, UNASKED, beyond, improper, plain, reference_of, void
 from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.subjects import ResponseSubject
 from specgate.project.excitations import evaluated
@@ -18,14 +19,25 @@ from specgate.project.types import Response
 from specgate.response.answers import Absent
 from specgate.response.inputs import Input, respond
 from specgate.response.questions import TimeResponse
+from specgate.systems.blocks import LinearForm
 from specgate.systems.delayed import DelayedSolution
 from specgate.systems.solution import Channel, LoopSolution
 from specgate.systems.transfer import TransferFunction
+from specgate.terms.records import record
+from specgate.terms.unit import Unit
 
 _NOTHING = TransferFunction(fmpq_poly([0]), fmpq_poly([1]))
 _ITSELF = TransferFunction(fmpq_poly([1]), fmpq_poly([1]))
 
 Errors = tuple[TransferFunction, ...] | Absent
+
+
+@record
+class Unnamed:
+    """A signal that a loop does not declare: what it is made of, and its unit."""
+
+    form: LinearForm
+    unit: Unit
 
 
 def response_analysis(
@@ -46,8 +58,30 @@ def response_analysis(
         return ResponseAnalysis(response, unit, Missing(solution.algebraic_loop.reason))
     if isinstance(solution, DelayedSolution):
         return delayed_response(signals, response, solution, known)
-    inputs = tuple(evaluated(excitation, known) for excitation in response.excitations)
     channels = {one.source: solution.channel(one.source, response.to) for one in response.excitations}
+    return _driven(signals, response, unit, solution, channels, known)
+
+
+def response_at(
+    signals: LoopSignals, response: Response, at: Unnamed, solution: LoopSolution, known: Values
+) -> ResponseAnalysis:
+    """Return the same of a signal that the loop does not declare, which `response.to` names; no error is measured."""
+    if solution.algebraic_loop is not None:
+        return ResponseAnalysis(response, at.unit, Missing(solution.algebraic_loop.reason))
+    sources = [one.source for one in response.excitations]
+    channels = {source: solution.channel_to(source, response.to, at.form) for source in sources}
+    return _driven(signals, replace(response, reference=UNASKED), at.unit, solution, channels, known)
+
+
+def _driven(
+    signals: LoopSignals,
+    response: Response,
+    unit: Unit,
+    solution: LoopSolution,
+    channels: Mapping[str, Channel],
+    known: Values,
+) -> ResponseAnalysis:
+    inputs = tuple(evaluated(excitation, known) for excitation in response.excitations)
     driven = [channels[one.source] for one in response.excitations]
     distinct = tuple(channels.values())
     over_time = _response([channel.transfer for channel in driven], inputs)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 from flint import fmpq
 
@@ -22,14 +22,14 @@ class Rest:
     of it; if none is, at the stationary output of its block; if it has none (an integrator), at 0.
     """
 
-    def __init__(self, built: InstantiatedLoop, declared: Sequence[str]) -> None:
-        """Take a wiring that holds signals beside those that the loop declares."""
-        self._built, self._wiring, self._declared = built, built.wiring, declared
+    def __init__(self, built: InstantiatedLoop, declared: Sequence[str], unnamed: Mapping[str, LinearForm]) -> None:
+        """Take a wiring, and what signals are made of that the loop does not declare."""
+        self._built, self._wiring, self._declared, self._unnamed = built, built.wiring, declared, unnamed
         self._instances = {one.name: one for one in built.wiring.instances}
 
     def carried(self, name: str) -> str | None:
         """Return the declared signal or input that another signal is the same as, None if it is none of them."""
-        form = self._wiring.signals[name]
+        form = self._unnamed[name]
         if len(form.terms) != 1 or form.terms[0][0] != 1:
             return None
         named = self._named(form.terms[0][1])
@@ -41,7 +41,7 @@ class Rest:
         A sum of temperatures whose factors come to one is a temperature again; other sums are differences.
         """
         carried = self.carried(name)
-        form = self._wiring.signals[name] if carried is None else LinearForm(((fmpq(1), SignalRef(carried)),))
+        form = self._unnamed[name] if carried is None else LinearForm(((fmpq(1), SignalRef(carried)),))
         value = self._sum(form)
         if unit.dimension != TEMPERATURE or sum((factor for factor, _ in form.terms), _ZERO) != 1:
             return value

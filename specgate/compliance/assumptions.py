@@ -215,7 +215,7 @@ class Assumptions:
         """Return the ranges of a loop for the values of a study; those of a loop without pi are the same in both."""
         key = id(study.loops[loop])
         if key not in self._ranges:
-            self._ranges[key] = Ranges(self._project, study.loops[loop].loop, study.values)
+            self._ranges[key] = Ranges(self._project, study.loops[loop], study.values)
         return self._ranges[key]
 
 

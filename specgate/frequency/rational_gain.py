@@ -26,11 +26,16 @@ _AT_ZERO = "the gain at zero frequency is {}: there is nothing to be measured fr
 
 
 class RationalGain:
-    """G = numerator/denominator, reduced on construction; a pole right of the axis leaves no answer."""
+    """G = numerator/denominator; a pole right of the axis leaves no answer."""
 
     def __init__(self, channel: TransferFunction) -> None:
-        self.axis = AxisFunction(channel)
+        self._channel = channel
         self._scale = Continuous()
+
+    @cached_property
+    def axis(self) -> AxisFunction:
+        """The channel on the axis."""
+        return AxisFunction(self._channel)
 
     @cached_property
     def _missing(self) -> Answer | None:

@@ -57,6 +57,8 @@ class Network:
 
     def total(self, form: LinearForm, source: SignalRef) -> TransferFunction:
         """Return the transfer function from a loop input to a form of signals, outputs and inputs, reduced."""
+        if len(form.terms) == 1 and form.terms[0][0] == 1:
+            return self.fraction(form.terms[0][1], source)
         found = TransferFunction(fmpq_poly(), ONE)
         for factor, node in form.terms:
             one = self.fraction(node, source)
@@ -90,11 +92,22 @@ class Network:
 
     def downstream(self, nodes: Iterable[Reference]) -> frozenset[Reference]:
         """Return the nodes that `nodes` act on, these included."""
-        return reached(nodes, self.equations.arcs)
+        return self._reached(tuple(nodes), back=False)
 
     def upstream(self, nodes: Iterable[Reference]) -> frozenset[Reference]:
         """Return the nodes that act on `nodes`, these included."""
-        return reached(nodes, self._reversed)
+        return self._reached(tuple(nodes), back=True)
+
+    def _reached(self, nodes: tuple[Reference, ...], *, back: bool) -> frozenset[Reference]:
+        known = self._known_reach
+        if (nodes, back) not in known:
+            known[nodes, back] = reached(nodes, self._reversed if back else self.equations.arcs)
+        return known[nodes, back]
+
+    @cached_property
+    def _known_reach(self) -> dict[tuple[tuple[Reference, ...], bool], frozenset[Reference]]:
+        """What was reached so far: many channels begin at one input, or end at one signal."""
+        return {}
 
     @cached_property
     def _reversed(self) -> Mapping[Reference, Sequence[Reference]]:

@@ -10,7 +10,7 @@ from functools import cached_property
 
 from flint import fmpq, fmpq_poly
 
-from specgate.systems.blocks import OutputRef, SignalRef, Wiring
+from specgate.systems.blocks import LinearForm, OutputRef, SignalRef, Wiring
 from specgate.systems.equations import Equations, Reference
 from specgate.systems.feedthrough import AlgebraicLoop, direct_cycles, is_proper, signals_of
 from specgate.systems.hidden import hidden_modes
@@ -39,7 +39,7 @@ class Component:
     modes: fmpq_poly
     hidden: fmpq_poly
 
-    @property
+    @cached_property
     def stable(self) -> bool:
         """Whether every mode decays."""
         return is_hurwitz(self.modes)
@@ -131,9 +131,15 @@ class LoopSolution:
 
     def channel(self, source: str, target: str) -> Channel:
         """Return the channel from a loop input to a signal. Raises KeyError for an unknown name."""
+        return self.channel_to(source, target, LinearForm(((fmpq(1), SignalRef(target)),)))
+
+    def channel_to(self, source: str, target: str, form: LinearForm) -> Channel:
+        """Return the channel from a loop input to a sum of inputs, signals and outputs; target: what it is called.
+
+        Raises KeyError for an unknown name.
+        """
         network = self.network
-        start, end = SignalRef(source), SignalRef(target)
-        after, before = network.downstream([start]), network.upstream([end])
+        after, before = network.downstream([SignalRef(source)]), network.upstream([node for _, node in form.terms])
         on_path, not_leading, not_reached = [], [], []
         for group, component in zip(network.groups, self.components, strict=True):
             if any(output in after and output in before for output in group.outputs):
@@ -143,7 +149,7 @@ class LoopSolution:
             elif not component.stable and any(output in before for output in group.outputs):
                 not_reached.append(component)
         modes = product(component.modes for component in on_path)
-        reduced = network.fraction(end, start)
+        reduced = network.total(form, SignalRef(source))
         hidden = exact_quotient(modes, reduced.denominator)
         return Channel(
             source,
