@@ -16,6 +16,7 @@ from itertools import islice
 from typing import TYPE_CHECKING, Any
 
 from specgate.intake.collect import MOST, Collector
+from specgate.intake.fits import NotUnderstood, fits
 from specgate.intake.nodes import Broken, Items, Node, Table, Text, plain
 from specgate.intake.wording import Misshape, Nearest, Path, worded
 
@@ -37,7 +38,7 @@ def schema() -> Mapping[str, Any]:
 
 @cache
 def _validator(part: str | None) -> Validator:
-    # imported here because it costs 60 ms, which `--help` and `schema` need not pay
+    # imported here because it costs 60 ms, which a run need not pay in which nothing is wrong
     from jsonschema import Draft202012Validator, FormatChecker
 
     whole = schema()
@@ -62,11 +63,23 @@ def _written_out(node: Any, definitions: Mapping[str, Any], known: dict[str, Any
     return {**known[name], **beside}
 
 
+def _fits(value: Any, part: str | None) -> bool:
+    """Whether a value is told to fit; where it is not, the validator says why, if there is a reason."""
+    whole = schema()
+    try:
+        return fits(value, whole if part is None else whole["$defs"][part], whole["$defs"])
+    except NotUnderstood:
+        return False
+
+
 def check(root: Node, collector: Collector, part: str | None = None) -> None:
     """Report everything about a tree that the schema (or one of its `$defs`) does not allow."""
     if isinstance(root, Broken):
         return
-    errors = islice(_validator(part).iter_errors(plain(root)), 2 * MOST)
+    value = plain(root)
+    if _fits(value, part):
+        return
+    errors = islice(_validator(part).iter_errors(value), 2 * MOST)
     for error in _telling([_misshape(root, error, collector.nearest) for error in errors]):
         _report(error, collector)
 
