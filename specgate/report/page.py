@@ -17,7 +17,7 @@ from markupsafe import Markup, escape
 
 from specgate.report.figures import error, frequency, overlay, poles, reserve, step, wiring
 from specgate.report.figures.scales import LogScale, Scale
-from specgate.report.parts import formulas, matrix, models, ranges
+from specgate.report.parts import audit, formulas, matrix, models, ranges
 from specgate.report.view import View
 
 SECTIONS = (
@@ -244,6 +244,7 @@ def _render(
             formulas=view.formulas if screen else formulas.printed(view.formulas),
             models_at_most=len(view.models) if screen else models.ROWS_AT_MOST,
             ranges_at_most=len(view.ranges) if screen else ranges.ROWS_AT_MOST,
+            pictures_at_most=len(view.audits) if screen else audit.PICTURED_AT_MOST,
             **(more | marked),
         )
     )

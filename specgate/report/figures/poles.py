@@ -14,6 +14,8 @@ WIDTH, HEIGHT = 310.0, 200.0
 LEFT, RIGHT, TOP, BOTTOM = 40.0, 12.0, 16.0, 34.0
 CROWD = 12.0
 """Points more than this many times farther out than the middle one are named at the edge instead of drawn."""
+ROOM = 90.0
+"""What the longest words beside a line take, pixels."""
 DAMPINGS = (0.2, 0.4, 0.6, 0.8)
 
 
@@ -84,7 +86,7 @@ def draw(figure: PoleFigure) -> str:
         figure.title,
         svg.hatching(hatch),
         svg.rectangle(x(0), TOP, WIDTH - RIGHT - x(0), HEIGHT - BOTTOM - TOP, f"url(#{hatch})", fill_opacity=0.45),
-        *_rays(x, y),
+        *_rays(x, y, labelled=figure.separation is None),
         *_frame(x, y),
         *(_asked(figure.separation, x, y) if figure.separation is not None else []),
         *(_mark(point, x, y) for point in near),
@@ -108,7 +110,7 @@ def _frame(x: Scale, y: Scale) -> list[str]:
     return parts
 
 
-def _rays(x: Scale, y: Scale) -> list[str]:
+def _rays(x: Scale, y: Scale, *, labelled: bool) -> list[str]:
     """Draw a ray for each damping, with its figure where the upper one leaves the frame."""
     rays, labels = [], []
     for damping in DAMPINGS:
@@ -116,7 +118,7 @@ def _rays(x: Scale, y: Scale) -> list[str]:
         real = min(-x.low, y.high / slope)
         rays += [(x(0), y(0), x(-real), y(side * real * slope)) for side in (1, -1)]
         labels.append(svg.text(x(-real) + 3, y(real * slope) + 9, f"{damping}", 7, fill=svg.QUIET))
-    return [svg.strokes(rays, svg.HAIR, 0.6), *labels]
+    return [svg.strokes(rays, svg.HAIR, 0.6), *(labels if labelled else [])]
 
 
 def _asked(separation: Separation, x: Scale, y: Scale) -> list[str]:
@@ -125,7 +127,7 @@ def _asked(separation: Separation, x: Scale, y: Scale) -> list[str]:
     if separation.real_part is not None and x.holds(separation.real_part):
         at = x(separation.real_part)
         parts.append(svg.line(at, TOP, at, HEIGHT - BOTTOM, svg.FORBIDDEN, 1.0, stroke_dasharray="5 3"))
-        parts.append(svg.text(at + 3, TOP + 8, "◁ other poles", 7, fill=svg.FORBIDDEN))
+        parts.append(_to_the_left(at, y(0) + 14, "◁ other poles"))
     if separation.distance is not None and separation.outside:
         radius = separation.distance
         around = [math.pi / 2 + math.pi * k / 60 for k in range(61)]
@@ -133,9 +135,14 @@ def _asked(separation: Separation, x: Scale, y: Scale) -> list[str]:
         inside = [(x(real), y(imaginary)) for real, imaginary in arc if x.holds(real) and y.holds(imaginary)]
         if len(inside) > 1:
             parts.append(svg.path(inside, svg.FORBIDDEN, 1.0, stroke_dasharray="2 3"))
-            label = HEIGHT - BOTTOM - 17
-            parts.append(svg.text(x(-radius) + 3, label, f"outside: {separation.outside}", 7, fill=svg.FORBIDDEN))
+            parts.append(_to_the_left(x(-radius), y(0) - 8, f"outside: {separation.outside}"))
     return parts
+
+
+def _to_the_left(at: float, level: float, words: str) -> str:
+    """Write words on the side of a line where things may lie, or right of it where there is no room."""
+    room = at - LEFT > ROOM
+    return svg.text(at - 4 if room else at + 4, level, words, 7, "end" if room else "start", svg.FORBIDDEN)
 
 
 def _mark(point: Point, x: Scale, y: Scale) -> str:

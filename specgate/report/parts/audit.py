@@ -23,6 +23,9 @@ from specgate.report.words import (
 from specgate.review.types import BasisReview, ConditionReview, CriterionReview, Review
 from specgate.terms.records import record
 
+PICTURED_AT_MOST = 12
+"""Claims that stand whose ranges a printed report shows in pictures."""
+
 
 @record
 class Condition:
@@ -65,6 +68,11 @@ class Audit:
     picture: StepFigure | None
     error_over_damping: ErrorFigure | None
     map: PoleFigure | None
+
+    @property
+    def pictured(self) -> bool:
+        """Whether its range has pictures that no block of its own shows."""
+        return self.brief and (self.error_over_damping is not None or self.map is not None)
 
 
 def audits(review: Review) -> tuple[Audit, ...]:
