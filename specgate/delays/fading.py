@@ -3,20 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 
 from flint import arb, fmpq
 
 from specgate.delays.remainder import Remainder
 from specgate.delays.steps import Mode
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _BITS = 64
 _DOUBLINGS = 200
 _HALVINGS = 40
 
 
-@dataclass(frozen=True)
+@record
 class Fading:
     """Decaying modes, x counted from `origin`, and a bound of what they leave, from a time `since` on."""
 

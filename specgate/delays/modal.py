@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from functools import lru_cache
 from itertools import chain, islice
 
@@ -18,6 +17,7 @@ from specgate.delays.transform import Transform
 from specgate.systems.quasi_count import Line, dominated_beyond, line
 from specgate.systems.roots import certified_roots
 from specgate.terms.precision import series_terms, working_precision
+from specgate.terms.records import record
 
 _RADIANS = 90
 """Height of the line times the longest delay that is worth its cells."""
@@ -33,7 +33,7 @@ right of it.
 _TRIED = 4
 
 
-@dataclass(frozen=True)
+@record
 class Poles:
     """All poles of Y right of a line, but s = 0: of polynomials in s alone, and of each factor with dead time."""
 

@@ -12,7 +12,6 @@ and by Cauchy's estimate the derivative of order k of what they leave is at most
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
 from math import factorial
 
 from flint import acb, acb_poly, acb_series, arb, arb_poly, fmpq
@@ -20,6 +19,7 @@ from flint import acb, acb_poly, acb_series, arb, arb_poly, fmpq
 from specgate.delays.remainder import ORDERS
 from specgate.delays.steps import Mode, Values
 from specgate.terms.precision import series_terms, working_precision
+from specgate.terms.records import record
 
 Moved = tuple[acb, acb_poly]
 """A pole, and the polynomial of its mode in the time from the middle."""
@@ -32,7 +32,7 @@ _STEEPEST = 16.0
 """Speed times width of a piece beyond which no polynomial is made of it."""
 
 
-@dataclass(frozen=True)
+@record
 class Panel:
     """Polynomials of y and its derivatives in the time from `middle`, each with what it leaves."""
 

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from bisect import bisect_right
 from collections.abc import Sequence
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import acb, arb, fmpq, fmpq_poly
@@ -15,12 +14,13 @@ from specgate.delays.stretch import ROUGH, Stretch, polynomial_of
 from specgate.response.answers import Absent
 from specgate.response.pieces import Pieces
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _NOT_DECIDED = Absent("whether every mode on the way decays was not decided", proved=False)
 _UNSETTLED = Absent("the response does not settle")
 
 
-@dataclass(frozen=True)
+@record
 class Part:
     """factor times a course, from `begin` on."""
 

@@ -41,7 +41,6 @@ The integral is bounded cell by cell, with |D| from below by the cells that coun
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 from flint import acb, acb_poly, arb, fmpq, fmpq_poly
 
@@ -52,13 +51,14 @@ from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_count import Evaluated, Line
 from specgate.systems.roots import certified_roots
 from specgate.terms.precision import series_terms, working_precision
+from specgate.terms.records import record
 
 ORDERS = (0, 1, 2, 3)
 _BITS = 64
 _MOST = 12000
 
 
-@dataclass(frozen=True)
+@record
 class Remainder:
     """|y^(k)(t) - modal sum| <= sizes[k] e^(-rate t) for t >= since."""
 

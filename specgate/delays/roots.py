@@ -7,8 +7,6 @@ counts right of the line are all.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import acb, arb, fmpq
 
 from specgate.delays.seeds import seeds
@@ -16,12 +14,13 @@ from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_count import Evaluated, dominated_beyond
 from specgate.systems.quasi_stability import is_stable
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _FIRST = 64
 _STEPS = 60
 
 
-@dataclass(frozen=True)
+@record
 class Rightmost:
     """Roots of a quasi-polynomial, all simple, of each conjugate pair the upper one, from right to left.
 

@@ -17,7 +17,6 @@ How many digits cancel between roots near each other is seen in the balls; more 
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
 from heapq import heappop, heappush
 
 from flint import acb, acb_poly, acb_series, arb, fmpq
@@ -29,12 +28,13 @@ from specgate.systems.polynomials import order_at_origin
 from specgate.systems.quasi import Quasi
 from specgate.systems.roots import Root, certified_roots
 from specgate.terms.precision import series_terms, working_precision
+from specgate.terms.records import record
 
 Values = tuple[arb, arb, arb, arb]
 """y and its first three derivatives."""
 
 
-@dataclass(frozen=True)
+@record
 class Mode:
     """Re(polynomial(x) e^(pole x)), twice that for a pole off the real axis; x: time from where the mode is told.
 
@@ -161,7 +161,7 @@ class Steps:
         )
 
 
-@dataclass(frozen=True)
+@record
 class _Order:
     """How often d0 has a root, and how often, no more than that, every delayed term of D has it."""
 

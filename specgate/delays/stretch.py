@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass
 from functools import cached_property
 
 from flint import acb_poly, arb, fmpq, fmpq_poly
@@ -15,6 +14,7 @@ from specgate.response import modes as response_modes
 from specgate.response.modes import Expansion
 from specgate.response.superposed.integrals import integral, square_integral
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _NARROW = arb(2) ** -30
 """Part of a piece below which a ball of times is narrow."""
@@ -23,7 +23,7 @@ ROUGH = 96
 """Bits up to which the polynomial that serves wide balls of times gives an integral well enough."""
 
 
-@dataclass(frozen=True)
+@record
 class Group:
     """factor * (drift(t - begin) + modes at t - origin), within |factor| (rest at t - begin, and left_out).
 
@@ -77,7 +77,7 @@ class Group:
         return (most + dead) * scale, (most / self.rest.rate + dead * (right - left)) * scale
 
 
-@dataclass(frozen=True)
+@record
 class Stretch:
     """The sum of some groups; without any it is zero.
 

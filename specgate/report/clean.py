@@ -15,6 +15,8 @@ from functools import cache
 from operator import is_not
 from typing import Any, TypeVar, cast
 
+from specgate.terms.records import names_of
+
 T = TypeVar("T")
 Shown = Callable[[str], bool]
 """Whether a character that does not act can be drawn."""
@@ -65,5 +67,5 @@ def _cleaned(tree: Any, shown: Shown | None) -> Any:
 
 @cache
 def _names(kind: type) -> tuple[str, ...]:
-    """Return the fields of a dataclass, of anything else none."""
-    return tuple(item.name for item in fields(kind)) if is_dataclass(kind) else ()
+    """Return the fields of a record or a dataclass, of anything else none."""
+    return names_of(kind) or (tuple(item.name for item in fields(kind)) if is_dataclass(kind) else ())

@@ -7,17 +7,18 @@ ten, times from which on something is proved rounded up to three digits.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import field
 from math import ceil
 
 from flint import arb
 
 from specgate.terms.enclosed import ends, rounded, to_float
+from specgate.terms.records import record
 
 _DIGITS = 3
 
 
-@dataclass(frozen=True)
+@record
 class Footing:
     """What a proof stands on: the kind of response or loop, and how its values are enclosed.
 
@@ -32,7 +33,7 @@ class Footing:
     bits_of_modes: int | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Account:
     """How one number, or one yes or no, was proved.
 

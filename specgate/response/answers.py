@@ -3,17 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from typing import Literal
 
 from flint import arb, fmpq
 
 from specgate.response.accounts import Account
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 from specgate.terms.verdicts import Proof
 
 
-@dataclass(frozen=True)
+@record
 class Absent:
     """Why there is no value.
 
@@ -27,7 +28,7 @@ class Absent:
     infinite: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class Fragile:
     """A result that a very small change of the model would move far: why, and the value it would jump to."""
 
@@ -35,7 +36,7 @@ class Fragile:
     other: Callable[[int], arb] | None = None
 
 
-@dataclass(frozen=True)
+@record
 class Answer:
     """A proved answer: exactly one of `truth`, `exact`, `refine`, `absent` decides (exact also carries refine).
 

@@ -10,8 +10,6 @@ is below one the sign is that of c. Terms of real poles with the sign of c are l
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from flint import arb, fmpq, fmpq_poly
 
@@ -21,9 +19,10 @@ from specgate.response.segments import Floats, at_most
 from specgate.systems.polynomials import primitive
 from specgate.systems.stability import classify
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Lasting:
     """From `since` on (normalised time) the deviation has this sign and is never zero."""
 

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from specgate.response.segments import UNIT_ROUNDOFF, Floats, Segment
+from specgate.terms.records import record
 
 HERMITE = 1.0 / 384.0
 """|f - Hermite cubic| <= M4 h^4 / 384 (f and f' matched at both ends of a cell of width h)."""
@@ -18,7 +17,7 @@ LINEAR = 1.0 / 8.0
 """|f - chord| <= M2 h^2 / 8."""
 
 
-@dataclass(frozen=True)
+@record
 class Cells:
     """Cells of one segment, n of them, in order of time; all fields in local time and normalised units.
 

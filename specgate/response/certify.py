@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from math import frexp
 
 from flint import arb, fmpq
@@ -11,12 +10,13 @@ from specgate.response.deviation import LOWEST, Modal
 from specgate.response.modes import GUARD
 from specgate.response.segments import float_of
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 
 _MARGIN = 16
 _STEPS = 6000
 
 
-@dataclass(frozen=True)
+@record
 class Bracket:
     """An interval with exactly one zero of g^(order) - target, which changes sign there; normalised time.
 

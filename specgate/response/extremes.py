@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from functools import reduce
 
 from flint import arb
@@ -11,12 +11,13 @@ from flint import arb
 from specgate.response.answers import Answer, Fragile
 from specgate.response.modes import GUARD
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 EQUAL_BITS = 1024
 """Precision beyond which two heights that still overlap are left standing side by side."""
 
 
-@dataclass(frozen=True)
+@record
 class Extreme:
     """An extreme value and when it is taken; the time is absent where the value is only approached."""
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 
 import numpy as np
 from flint import arb, fmpq
@@ -20,6 +19,7 @@ from specgate.response.segments import Floats, exact, float_of
 from specgate.response.signs import ends, slope_bracket
 from specgate.response.walk import Band, Passage
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 NEAR = fmpq(1, 100)
 """A turning point within this part of an edge, on either side of it, makes a result fragile."""
@@ -31,7 +31,7 @@ _PROBES = 32
 _DIP = 1.0 - 1e-6
 
 
-@dataclass(frozen=True)
+@record
 class Target:
     """What is crossed: the values at which |g - base| = size, on both sides (a band) or on that of `side`."""
 

@@ -9,7 +9,7 @@ period: its frequency, 2 pi over a rational time, is not rational (see `BumpWave
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import field
 from typing import Literal
 
 from flint import fmpq, fmpq_poly
@@ -23,6 +23,7 @@ from specgate.response.step import StepResponse
 from specgate.response.superposed import Superposed
 from specgate.response.superposed.waves import AfterBump, BumpWave, StepWave, Wave
 from specgate.systems.transfer import TransferFunction
+from specgate.terms.records import record
 
 Kind = Literal[
     "step", "ramp", "parabola", "impulse", "ramp_and_hold", "pulse", "one_minus_cosine", "sine", "white_noise"
@@ -32,7 +33,7 @@ _ONE = fmpq_poly([1])
 _S = fmpq_poly([0, 1])
 
 
-@dataclass(frozen=True)
+@record
 class Input:
     """What drives one input of a loop, coherent SI: its kind and what that is described by, and when it begins (s).
 
@@ -56,7 +57,7 @@ class Input:
         return self.quantities["size"] / self.quantities["slope"]
 
 
-@dataclass(frozen=True)
+@record
 class Term:
     """A step of `size` at `begin` through numerator / denominator."""
 
@@ -66,7 +67,7 @@ class Term:
     begin: fmpq
 
 
-@dataclass(frozen=True)
+@record
 class Bump:
     """size * (1 - cos(2 pi t / period)) over one period from `begin` on."""
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import cached_property
 from math import frexp
 
@@ -14,6 +13,7 @@ from specgate.response.deviation import LOWEST, Modal
 from specgate.response.grid import Block
 from specgate.response.segments import Floats, exact
 from specgate.response.tables import FloatModes
+from specgate.terms.records import record
 
 CHUNK = 512
 """Cells of a chunk."""
@@ -69,7 +69,7 @@ class FloatLayout:
         return [1 << int(power) for power in np.ceil(np.log2(wanted))]
 
 
-@dataclass(frozen=True)
+@record
 class _Octaves:
     """Whole octaves (left, cells) in one chunk."""
 
@@ -92,7 +92,7 @@ class _Octaves:
         return cells_between(self.table, np.concatenate([*nodes, [self.end]])[None, :])
 
 
-@dataclass(frozen=True)
+@record
 class _Octave:
     """The octave [left, 2 left] in `count` equal cells; both powers of two, so every node is exact."""
 

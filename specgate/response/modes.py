@@ -12,6 +12,7 @@ from flint import acb, acb_mat, acb_poly, acb_series, arb, fmpq, fmpq_poly
 from specgate.systems.polynomials import order_at_origin
 from specgate.systems.roots import Root, certified_roots
 from specgate.terms.precision import series_terms, working_precision
+from specgate.terms.records import record
 
 GUARD = 32
 """Bits beyond the asked precision at which poles and residues are computed."""
@@ -33,7 +34,7 @@ class Mode:
         return not self.pole.imag.is_zero()
 
 
-@dataclass(frozen=True)
+@record
 class Expansion:
     """offset + sum of modes; `bits` is the precision that it was made with and is evaluated at."""
 

@@ -14,7 +14,6 @@ bound.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import cache, cached_property
 from math import ceil, factorial, log2, perm
 
@@ -30,6 +29,7 @@ from specgate.response.modes import Expansion
 from specgate.response.segments import UNIT_ROUNDOFF, Floats, at_most, exact, float_of
 from specgate.response.tables import SLACK, TINY
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _REACH = 2.0
 """Half-width of a panel in time constants of the fastest living mode."""
@@ -46,7 +46,7 @@ _ORDERS = 6
 _MOST_HALVINGS = 6
 
 
-@dataclass(frozen=True)
+@record
 class TaylorPanel:
     """g(start + t) for 0 <= t <= 2 half, as polynomials in x = t / half - 1.
 
@@ -100,7 +100,7 @@ def _precision(change: float) -> tuple[int, int]:
     return (256, 56) if change > 2.0**-160 else (512, 96)
 
 
-@dataclass(frozen=True)
+@record
 class _Octave:
     """The octave [left, 2 left] in `chunks` panels."""
 

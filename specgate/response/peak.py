@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from functools import cached_property, reduce
 from typing import Protocol
 
@@ -21,6 +20,7 @@ from specgate.response.segments import exact
 from specgate.response.signs import before_time, slope_bracket, turning_point
 from specgate.response.tables import SLACK
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _CLOSE = 4
 _DEEPEST = 12
@@ -31,7 +31,7 @@ _MOST = 4096
 """Summits of one response kept for comparison."""
 
 
-@dataclass(frozen=True)
+@record
 class Summit:
     """A turning point at which sign * g is greatest nearby; floats that enclose sign * g there."""
 

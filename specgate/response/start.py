@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from math import exp, factorial
 
 from flint import arb, arb_series, fmpq_poly
@@ -10,6 +9,7 @@ from flint import arb, arb_series, fmpq_poly
 from specgate.response.budget import OutOfWork
 from specgate.response.segments import at_least, at_most
 from specgate.terms.precision import series_terms, working_precision
+from specgate.terms.records import record
 
 _BITS = 128
 _LONGEST, _SHORTEST = 4, -1000
@@ -17,7 +17,7 @@ _SLOWEST = 2.0**-20
 """Least rho: zero, for poles that all lie at the origin, would bound nothing."""
 
 
-@dataclass(frozen=True)
+@record
 class Start:
     """On (0, length] the slope of the response has the sign `direction` and |y'(t)| >= floor * t^power.
 

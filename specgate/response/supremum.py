@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
 from itertools import compress
 from math import inf
 
@@ -24,6 +23,7 @@ from specgate.response.record import modal_account
 from specgate.response.segments import exact, float_of
 from specgate.response.tail import tail
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 APPROACHED = "the value is approached and never taken"
 
@@ -31,7 +31,7 @@ SLACK = 2.0**-46
 """Parts of the change within which a supremum is known where its summit is not."""
 
 
-@dataclass(frozen=True)
+@record
 class Floor:
     """What is reached or approached whatever the summits are.
 

@@ -18,7 +18,6 @@ normal range are off by less than 1e-280, because the response is scaled to mode
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import cached_property
 from math import frexp
 
@@ -29,6 +28,7 @@ from numpy.typing import NDArray
 from specgate.response.falling import DOUBLINGS
 from specgate.response.modes import Expansion, power_of_two
 from specgate.response.segments import UNIT_ROUNDOFF, Floats
+from specgate.terms.records import record
 
 TINY = 1e-280
 """Absolute allowance for what falls out of the normal range of floats."""
@@ -39,7 +39,7 @@ SLACK = 1.01
 _ORDERS = 6
 
 
-@dataclass(frozen=True)
+@record
 class FloatModes:
     """The modes of an expansion as float columns, one for every mode and power j.
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 from functools import cached_property
 from math import inf
 
@@ -20,6 +19,7 @@ from specgate.response.panels import PanelMaker
 from specgate.response.segments import float_of
 from specgate.response.signs import before_time, ends, sign_at, turning_point, value_bracket
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 
 Flags = NDArray[np.bool_]
 
@@ -29,7 +29,7 @@ _CLOSE = 4
 _DEEPEST = 14
 
 
-@dataclass(frozen=True)
+@record
 class Band:
     """low <= g <= high, the edges inside; None: no edge on that side."""
 
@@ -57,7 +57,7 @@ class Band:
         return low, inf if self.high is None else float(np.nextafter(float_of(self.high), inf))
 
 
-@dataclass(frozen=True)
+@record
 class Passage:
     """What a walk met: the crossing at which it left the band, if it did.
 

@@ -31,6 +31,11 @@ def record(kind: type[T]) -> type[T]:
     return kind
 
 
+def names_of(kind: Any) -> tuple[str, ...]:
+    """Return the names of the fields of a record, without `dataclass` being asked; of anything else none."""
+    return tuple(kind.__parts__[0]) if hasattr(kind, "__parts__") else ()
+
+
 class _Later:
     """An attribute of a class that is made, and takes its own place, when it is first asked for."""
 

@@ -7,7 +7,6 @@ is bounded instead. A zero that is known to r gives an error of at most 2 r sup 
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 from flint import arb, fmpq
 
@@ -21,6 +20,7 @@ from specgate.response.piecewise.recording import LOBES, SQUARES, account
 from specgate.response.piecewise.turning import Zero, sign_at
 from specgate.response.segments import exact
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 
 LASTING = "what is integrated does not vanish in the end: its integral grows without bound"
 _OPEN = "its integral has no closed form here"
@@ -32,7 +32,7 @@ _FLAT = 24
 """Bits by which the bound on a stretch where the sign is not told is below what is left out."""
 
 
-@dataclass(frozen=True)
+@record
 class Run:
     """A stretch of one piece on which y has one sign (0: not told); its ends are instants or zeros of y."""
 

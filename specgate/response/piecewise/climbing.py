@@ -10,7 +10,6 @@ kept. A patch that is not told apart from the best value by more than a small sl
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 from heapq import heappop, heappush
 
 from flint import arb, fmpq
@@ -20,6 +19,7 @@ from specgate.response.piecewise.passing import Instant, Where, Work
 from specgate.response.piecewise.patches import LEVEL, LOOK, Ground, Patch
 from specgate.response.piecewise.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 _CLOSE = 512
 _FIRST = 64
@@ -187,7 +187,7 @@ class Ceiling:
         return True
 
 
-@dataclass(frozen=True)
+@record
 class Peak:
     """A place where sign * y^(order) may be greatest."""
 

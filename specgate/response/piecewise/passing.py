@@ -19,6 +19,7 @@ from specgate.response.budget import Exhausted, OutOfWork
 from specgate.response.piecewise.patches import Ground, Line, Patch
 from specgate.response.piecewise.turning import Zero, exact_at, sign_at
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 
 PATCHES = 20_000
 """Patches that one search may look at."""
@@ -27,7 +28,7 @@ _DEEPEST = 120
 _CLOSE = 512
 
 
-@dataclass(frozen=True)
+@record
 class Instant:
     """A kink, or an end of a stretch that was looked at, as it is."""
 

@@ -12,7 +12,6 @@ from __future__ import annotations
 
 from bisect import bisect_right
 from collections.abc import Iterator
-from dataclasses import dataclass
 from functools import cached_property
 from math import frexp
 
@@ -22,6 +21,7 @@ from specgate.response.budget import OutOfWork
 from specgate.response.modes import dyadic
 from specgate.response.pieces import Pieces
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
 
 LOOK = 96
 """Bits at which patches are enclosed where nothing cancels."""
@@ -33,7 +33,7 @@ _UNEVEN = fmpq(509, 512)
 _LONGEST = 1200
 
 
-@dataclass(frozen=True)
+@record
 class Line:
     """The line value + slope * t."""
 
