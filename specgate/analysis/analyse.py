@@ -1,4 +1,7 @@
-"""A project to its analyses: each loop instantiated and solved once, each declared response and break a subject."""
+"""A project to its analyses: each loop instantiated and solved once, each declared response and break a subject.
+
+What only loops with dead time or samplers need is imported where one is met: that is a thirtieth of another run.
+"""
 
 from __future__ import annotations
 
@@ -7,9 +10,7 @@ from dataclasses import replace
 
 from specgate.analysis.analyses import Analyses, BreakAnalysis, LoopAnalysis, Missing, ResponseAnalysis, Study
 from specgate.analysis.responses import response_analysis, same
-from specgate.analysis.sampled import sampled_breaks, sampled_responses
 from specgate.analysis.wiring import subsystems_of
-from specgate.delays.open_loop import DelayedLoop
 from specgate.frequency.questions import OpenLoop
 from specgate.frequency.rational_loop import UNSTABLE, RationalLoop
 from specgate.measures.reading import decided
@@ -18,7 +19,6 @@ from specgate.project.instantiate import InstantiatedLoop, instantiate
 from specgate.project.parameters import Values, depends_on_pi, values
 from specgate.project.types import Break, Loop, Project
 from specgate.sampled.blocks import SampledWiring
-from specgate.sampled.solution import solve_sampled
 from specgate.systems.delayed import DelayedOpenLoop, DelayedSolution, solved
 from specgate.systems.solution import Cut, LoopSolution
 from specgate.terms.unit import PRECISE_PI
@@ -79,6 +79,9 @@ def loop_analysis(project: Project, loop: Loop, built: InstantiatedLoop, known: 
 def _sampled(
     project: Project, loop: Loop, built: InstantiatedLoop, known: Values, wiring: SampledWiring
 ) -> LoopAnalysis:
+    from specgate.analysis.sampled import sampled_breaks, sampled_responses
+    from specgate.sampled.solution import solve_sampled
+
     try:
         solution = solve_sampled(wiring)
     except ValueError as reason:
@@ -144,6 +147,8 @@ def _late(opened: DelayedOpenLoop, unstable: str) -> OpenLoop:
     rational = opened.reduced.rational
     if rational is not None and opened.stable is not None:
         return RationalLoop(rational, opened.stable, unstable=unstable)
+    from specgate.delays.open_loop import DelayedLoop
+
     return DelayedLoop(opened.reduced, opened.stable, unstable)
 
 

@@ -8,7 +8,6 @@ from dataclasses import replace
 from flint import fmpq, fmpq_poly
 
 from specgate.analysis.analyses import Missing, ResponseAnalysis
-from specgate.analysis.delayed import delayed_response
 from specgate.analysis.driven import ERROR_JUMPS, NOISE, SEVERAL, UNASKED, beyond, improper, plain, reference_of, void
 from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.subjects import ResponseSubject
@@ -57,6 +56,8 @@ def response_analysis(
     if solution.algebraic_loop is not None:
         return ResponseAnalysis(response, unit, Missing(solution.algebraic_loop.reason))
     if isinstance(solution, DelayedSolution):
+        from specgate.analysis.delayed import delayed_response
+
         return delayed_response(signals, response, solution, known)
     channels = {one.source: solution.channel(one.source, response.to) for one in response.excitations}
     return _driven(signals, response, unit, solution, channels, known)

@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
+from typing import TYPE_CHECKING
 
 from flint import acb, arb, fmpq, fmpq_poly
 
-from specgate.delays.modes import Figure, least_over_late_modes
 from specgate.measures.measure import Argument, Arguments, Comparer, Measure, Reader, UnitRule
 from specgate.measures.reading import decided
 from specgate.measures.subjects import LoopSubject
@@ -25,6 +25,9 @@ from specgate.systems.ring import in_ring
 from specgate.systems.roots import Root, certified_roots
 from specgate.systems.solution import LoopSolution
 from specgate.terms.precision import HIGHEST, working_precision
+
+if TYPE_CHECKING:
+    from specgate.delays.modes import Figure
 
 _SHOWN = 128
 _CHARACTERISTIC = "the poles of the loop: all roots of det P(s) as wired, certified"
@@ -75,6 +78,8 @@ def _over_poles(
         return least_over_modes(solution, of, _OF_SAMPLED[which], reason)
     polynomial = _polynomial(solution)
     if polynomial is None:
+        from specgate.delays.modes import least_over_late_modes
+
         assert isinstance(solution, DelayedSolution)
         return least_over_late_modes(solution, _FIGURE[which], arguments.over)
     picked = _picked(polynomial, arguments.over, which)

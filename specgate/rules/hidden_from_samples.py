@@ -18,9 +18,7 @@ from specgate.compliance.wording import modes, number
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.piecewise import PiecewiseResponse
 from specgate.rules.rule import Facts, Rule
-from specgate.sampled.between import settled_late
 from specgate.sampled.components import Component
-from specgate.sampled.pieces import SampledPieces
 from specgate.sampled.solution import SampledSolution
 from specgate.systems.stability import is_hurwitz
 from specgate.terms.enclosed import printed_short
@@ -67,6 +65,9 @@ def _of_component(loop: LoopAnalysis, component: Component) -> Iterator[Finding]
 
 
 def _of_response(loop: LoopAnalysis, response: ResponseAnalysis, solution: SampledSolution) -> Iterator[Finding]:
+    from specgate.sampled.between import settled_late
+    from specgate.sampled.pieces import SampledPieces
+
     subject = response.subject
     if not isinstance(subject, ResponseSubject) or subject.void is not None or subject.kind != "step":
         return
