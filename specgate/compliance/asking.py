@@ -18,7 +18,10 @@ from specgate.terms.unit import ONE, Unit
 
 @record
 class Asked:
-    """What a criterion asks, with the values of one study. signal: unit of the signal a response looks at, else 1."""
+    """What a criterion asks, with the values of one study. signal: unit of the signal a response looks at, else 1.
+
+    span: of that signal.
+    """
 
     study: Study
     criterion: Criterion
@@ -27,6 +30,7 @@ class Asked:
     signal: Unit
     arguments: Arguments
     limits: Limits
+    span: fmpq | None = None
 
     def same_as(self, other: Asked) -> bool:
         """Whether both ask the very same of the very same subject, so that one answer serves for both."""
@@ -65,6 +69,7 @@ def ask(study: Study, criterion: Criterion, measure: Measure) -> Asked:
         signal,
         arguments(criterion, measure, study.values, spanned),
         _limits(criterion.limit, study, spanned),
+        spanned,
     )
 
 

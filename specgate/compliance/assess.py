@@ -3,35 +3,29 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
+from functools import partial
 
 from specgate.analysis.analyses import Analyses
 from specgate.approximations.table import APPROXIMATIONS
 from specgate.compliance.assessment import (
     Assessment,
     CriterionAssessment,
-    MethodAssessment,
+    RecordAssessment,
     Unanswered,
     worst_standing,
 )
 from specgate.compliance.assumptions import Assumptions
-from specgate.compliance.compare import worst
 from specgate.compliance.criteria import Criteria
 from specgate.compliance.methods import conclude
+from specgate.compliance.records import Records, resting
+from specgate.compliance.ruling import Ruling, listed, of_criteria, of_records, with_methods
 from specgate.compliance.thresholds import policy
-from specgate.compliance.wording import criterion_words, subject
-from specgate.project.types import Basis, Criterion, Kept, Project, Requirement
+from specgate.compliance.waivers import Excused, Missed, excuse
+from specgate.compliance.wording import subject
+from specgate.project.types import Basis, Criterion, Evidence, Project, Requirement, Waiver
 from specgate.terms.records import record
 from specgate.terms.verdicts import Standing, Verdict
 from specgate.traceability.graph import Graph
-
-
-@record
-class Ruling:
-    """A verdict, why it is not compliant, and whether it counts at this stage."""
-
-    verdict: Verdict
-    reason: str | None = None
-    due: bool = True
 
 
 def assess(
@@ -44,8 +38,11 @@ def assess(
     assumed = assumptions or Assumptions(project, analyses)
     criteria = Criteria(project, analyses, policy(project, analyses.nominal.values), assumed)
     done: dict[str, Assessment] = {}
+    judging = _Judging(
+        project, criteria, Records(project, analyses.nominal, analyses.again), Named.of(project), graph, done
+    )
     for name in graph.order:
-        done[name] = _Judging(project, criteria, graph, done).requirement(project.requirements[name])
+        done[name] = judging.requirement(project.requirements[name])
     return {name: done[name] for name in project.requirements}
 
 
@@ -55,20 +52,25 @@ class _Judging:
 
     project: Project
     judge: Criteria
+    records: Records
+    named: Named
     graph: Graph
     done: Mapping[str, Assessment]
 
     def requirement(self, requirement: Requirement) -> Assessment:
         if requirement.not_applicable is not None:
             return Assessment(requirement, None, reason=requirement.not_applicable.reason)
-        criteria = tuple(
+        computed = tuple(
             self.judge.assess(criterion, basis)
             for criterion, basis in zip(requirement.criteria, bases(requirement), strict=True)
         )
-        recorded = self._naming(requirement, self.project.evidence)
-        analysed = self._analysed(requirement, criteria)
-        methods = conclude(requirement, self.project.info, analysed.verdict, recorded=bool(recorded))
-        ruling = _with_methods(analysed, methods)
+        evidence = self.named.evidence.get(requirement.id, ())
+        records = tuple(self.records.assess(requirement.id, one, computed) for one in evidence)
+        criteria = tuple(resting(one, records) for one in computed)
+        analysed = self._analysed(requirement, criteria, records)
+        methods = conclude(requirement, self.project.info, analysed.verdict, records)
+        ruling = with_methods(analysed, methods, records)
+        excused = self._excused(requirement, criteria, records)
         return Assessment(
             requirement,
             ruling.verdict,
@@ -77,20 +79,43 @@ class _Judging:
             methods,
             ruling.due,
             ruling.reason,
-            tuple(self._unanswered(requirement, criteria, recorded)),
+            tuple(self._unanswered(requirement, criteria)),
+            records,
+            excused.waivers,
+            ruling.verdict is Verdict.NON_COMPLIANT and (excused.verdict or ruling.waived),
+            excused.standing,
         )
 
-    def _analysed(self, requirement: Requirement, criteria: tuple[CriterionAssessment, ...]) -> Ruling:
-        """Return what the criteria, or the requirements below, say."""
+    def _excused(
+        self,
+        requirement: Requirement,
+        criteria: tuple[CriterionAssessment, ...],
+        records: tuple[RecordAssessment, ...],
+    ) -> Excused:
+        """Judge the waivers by what the requirement misses: limits by their computed values, and records."""
+        limits = [Missed(one, partial(self.judge.under, one)) for one in criteria if _missed(one.verdict)]
+        shown = [
+            Missed(one, partial(self.records.under, one)) for one in records if _missed(one.verdict) and not one.stale
+        ]
+        waivers = self.named.waivers.get(requirement.id, ())
+        return excuse(requirement.id, waivers, self.project, [*limits, *shown], criteria)
+
+    def _analysed(
+        self,
+        requirement: Requirement,
+        criteria: tuple[CriterionAssessment, ...],
+        records: tuple[RecordAssessment, ...],
+    ) -> Ruling:
+        """Return what the criteria, the records, or the requirements below, say."""
         cycle = self.graph.cyclic(requirement.id)
         if cycle:
             return Ruling(Verdict.OPEN, f"it is derived in a circle ({', '.join(cycle)})")
         if requirement.decided_by == "derived":
             return self._derived(requirement)
         if requirement.decided_by == "evidence":
-            return Ruling(Verdict.OPEN, "it is decided by evidence, which this version keeps and does not judge")
+            return of_records(records)
         if requirement.criteria:
-            return _of_criteria(criteria)
+            return of_criteria(criteria)
         if requirement.budget is not None:
             return Ruling(Verdict.OPEN, "it is decided by a budget, which this version keeps and does not add up")
         return Ruling(Verdict.OPEN, "it has no criterion: add one, or say `decided_by: derived` or `evidence`")
@@ -105,29 +130,44 @@ class _Judging:
             if deciding:
                 are = "are" if len(deciding) > 1 else "is"
                 due = any(child.due for child in deciding.values())
-                return Ruling(verdict, f"{_listed(deciding)}, derived from it, {are} {words}", due)
+                waived = all(child.waived for child in deciding.values())
+                return Ruling(verdict, f"{listed(deciding)}, derived from it, {are} {words}", due, waived)
         if not requirement.coverage_complete:
             reason = "nobody has confirmed that what is derived from it covers it (`coverage: {complete: true}`)"
             return Ruling(Verdict.OPEN, reason)
         return Ruling(Verdict.COMPLIANT)
 
-    def _naming(self, requirement: Requirement, section: Mapping[str, Kept]) -> tuple[Kept, ...]:
-        return tuple(kept for kept in section.values() if requirement.id in kept.requirements)
-
-    def _unanswered(
-        self, requirement: Requirement, criteria: tuple[CriterionAssessment, ...], recorded: tuple[Kept, ...]
-    ) -> Iterator[Unanswered]:
+    def _unanswered(self, requirement: Requirement, criteria: tuple[CriterionAssessment, ...]) -> Iterator[Unanswered]:
         for criterion in criteria:
             for one in criterion.unanswered:
                 yield Unanswered(one.place, f"{subject(criterion)}: {one.what}", one.decides)
-        if requirement.decided_by == "evidence" and not recorded:
-            yield Unanswered(requirement.place, "evidence is not judged by this version")
         if requirement.budget is not None:
             yield Unanswered(requirement.place, "its budget is kept and not added up by this version")
-        for kept in recorded:
-            yield Unanswered(kept.place, f"the evidence {kept.id} is kept and not judged by this version")
-        for kept in self._naming(requirement, self.project.waivers):
-            yield Unanswered(kept.place, f"the waiver {kept.id} is kept and not applied by this version", decides=False)
+
+
+def _missed(verdict: Verdict) -> bool:
+    return verdict is Verdict.NON_COMPLIANT
+
+
+@record
+class Named:
+    """Records and waivers by the requirements that they name."""
+
+    evidence: Mapping[str, tuple[Evidence, ...]]
+    waivers: Mapping[str, tuple[Waiver, ...]]
+
+    @staticmethod
+    def of(project: Project) -> Named:
+        """Return those of a project."""
+        evidence: dict[str, tuple[Evidence, ...]] = {}
+        waivers: dict[str, tuple[Waiver, ...]] = {}
+        for one in project.evidence.values():
+            for name in dict.fromkeys(one.requirements):
+                evidence[name] = (*evidence.get(name, ()), one)
+        for waiver in project.waivers.values():
+            for name in dict.fromkeys(waiver.requirements):
+                waivers[name] = (*waivers.get(name, ()), waiver)
+        return Named(evidence, waivers)
 
 
 def bases(requirement: Requirement) -> tuple[Basis | None, ...]:
@@ -149,61 +189,6 @@ def _estimates(basis: Basis, criterion: Criterion) -> bool:
     return row is not None and criterion.measure in row.estimates
 
 
-def _of_criteria(criteria: tuple[CriterionAssessment, ...]) -> Ruling:
-    verdict = worst(one.verdict for one in criteria)
-    if verdict is Verdict.COMPLIANT:
-        return Ruling(verdict)
-    return Ruling(verdict, "; ".join(criterion_words(one) for one in criteria if one.verdict is verdict))
-
-
-def _with_methods(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ruling:
-    """Put together what is due: every method that is due must conclude."""
-    due = [one for one in methods if one.outcome != "due_later"]
-    if not methods:
-        return analysed
-    if not due:
-        return _later(analysed, methods)
-    if _violated_unasked(analysed, methods):
-        return analysed
-    verdict = worst(one.outcome if isinstance(one.outcome, Verdict) else Verdict.OPEN for one in due)
-    if verdict is Verdict.COMPLIANT:
-        return Ruling(verdict)
-    by_analysis = any(one.method.method == "analysis" for one in due)
-    reasons = [analysed.reason] if by_analysis and analysed.verdict is verdict and analysed.reason else []
-    others = [one for one in due if one.method.method != "analysis"] if verdict is Verdict.OPEN else []
-    reasons += [_unrecorded(one) for one in others]
-    return Ruling(verdict, "; ".join(reasons), True if others else analysed.due)
-
-
-def _violated_unasked(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> bool:
-    """Whether a limit is violated that no analysis is to show: what the loop does not do, no test will find."""
-    return analysed.verdict is Verdict.NON_COMPLIANT and all(one.method.method != "analysis" for one in methods)
-
-
-def _unrecorded(one: MethodAssessment) -> str:
-    name = one.method.method.replace("_", " ")
-    if one.outcome == "no_record":
-        return f"{name} is due and has no record"
-    return f"{name} is due and its evidence is not judged by this version"
-
-
-def _later(analysed: Ruling, methods: tuple[MethodAssessment, ...]) -> Ruling:
-    """Return what stands while no method is due: it does not hold this review, unless a limit is violated already."""
-    if _violated_unasked(analysed, methods):
-        return analysed
-    when = _listed(dict.fromkeys(f"{one.method.method} at {one.method.stage}" for one in methods))
-    later = f"nothing is due yet ({when})"
-    if analysed.verdict is Verdict.COMPLIANT:
-        return Ruling(Verdict.COMPLIANT, None, due=False)
-    waiting = analysed.verdict is Verdict.OPEN
-    return Ruling(analysed.verdict, later if waiting else f"{analysed.reason}; {later}", due=False)
-
-
 def _standing(criteria: Iterable[CriterionAssessment]) -> Standing | None:
     standings = [one.standing for one in criteria]
     return worst_standing(standings) if standings else None
-
-
-def _listed(names: Iterable[str]) -> str:
-    every = list(names)
-    return every[0] if len(every) == 1 else f"{', '.join(every[:-1])} and {every[-1]}"

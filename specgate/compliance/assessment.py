@@ -14,7 +14,7 @@ from specgate.compliance.compare import Limits
 from specgate.compliance.model.fact import ModelAssumption
 from specgate.compliance.readings import Reading
 from specgate.measures.measure import Arguments, Measure
-from specgate.project.types import Claim, Criterion, Method, Requirement
+from specgate.project.types import Claim, Criterion, Evidence, Method, Requirement, Waiver
 from specgate.response.answers import Answer
 from specgate.terms.places import Place
 from specgate.terms.records import record
@@ -86,7 +86,7 @@ class Audit:
     variant: which formula of the last of the chain, where it has several.
     agrees: whether the claim agrees with its formula (None: no claim, no formula, or undecided).
     implied: interval that the stated accuracy leaves for the truth. read: the last approximation, and what it is read
-    from.
+    from. evidence: the id of the record that it rests on.
     """
 
     kind: Literal["computed", "approximation", "evidence"]
@@ -108,6 +108,7 @@ class Audit:
     conditions: tuple[AuditedCondition, ...] = ()
     instead: Instead | None = None
     read: Link | None = None
+    evidence: str | None = None
 
 
 @record
@@ -116,8 +117,8 @@ class CriterionAssessment:
 
     reading: the measure in coherent SI. limits, limits_again: with the fixed decimal for pi, and with more digits.
     unit: in which it is printed (None: a whole number, yes or no). scale: what a number is small against, in that unit.
-    beside: a second value printed next to the first. signal: the unit of the signal that is looked at. assumptions:
-    ranges of signals that the reading rests on. model: what the models of the blocks take for granted.
+    beside: a second value printed next to the first. signal: the unit of the signal that is looked at, span: its span.
+    assumptions: ranges of signals that the reading rests on. model: what the models of the blocks take for granted.
     """
 
     criterion: Criterion
@@ -134,6 +135,7 @@ class CriterionAssessment:
     beside: Reading | None = None
     unanswered: tuple[Unanswered, ...] = ()
     signal: Unit = ONE
+    span: fmpq | None = None
     assumptions: tuple[Assumption, ...] = ()
     model: tuple[ModelAssumption, ...] = ()
 
@@ -166,11 +168,61 @@ def _limit(first: fmpq | None, again: fmpq | None) -> Reading | None:
 
 
 @record
+class Disagreement:
+    """A result that is further from the computed value than is borne; all in the unit of the record."""
+
+    result: Answer
+    model: Answer
+    allowed: Answer
+
+
+@record
+class RecordAssessment:
+    """What a record shows of a requirement. stale: it is of another revision of the design, and shows nothing.
+
+    criterion, unit, results, spread (the expanded uncertainty), worst and its reserve: where it has numbers.
+    """
+
+    evidence: Evidence
+    verdict: Verdict
+    stale: bool
+    reason: str | None = None
+    criterion: CriterionAssessment | None = None
+    unit: Unit | None = None
+    results: tuple[Answer, ...] = ()
+    spread: Answer | None = None
+    worst: Answer | None = None
+    reserve: Answer | None = None
+    disagreement: Disagreement | None = None
+
+
+@record
+class WaiverAssessment:
+    """A waiver on a requirement. lapsed: why it is not in force, or None.
+
+    needed: the requirement has something that it could excuse. covers: all of that is inside what it accepts.
+    reason: what is outside.
+    """
+
+    waiver: Waiver
+    lapsed: str | None
+    needed: bool
+    covers: bool
+    reason: str | None = None
+
+    @property
+    def excuses(self) -> bool:
+        """Whether it is in force, needed, and enough."""
+        return self.lapsed is None and self.needed and self.covers
+
+
+@record
 class MethodAssessment:
-    """A verification method and how it concludes."""
+    """A verification method and how it concludes; `records`: the ids of the evidence that it rests on."""
 
     method: Method
     outcome: Verdict | Literal["due_later", "no_record"]
+    records: tuple[str, ...] = ()
 
 
 @record
@@ -188,3 +240,9 @@ class Assessment:
     due: bool = True
     reason: str | None = None
     unanswered: tuple[Unanswered, ...] = ()
+    records: tuple[RecordAssessment, ...] = ()
+    waivers: tuple[WaiverAssessment, ...] = ()
+    waived: bool = False
+    """Whether waivers excuse that it is not met: what does not comply is inside what they accept."""
+    standing_waived: bool = False
+    """Whether a waiver accepts its standing."""

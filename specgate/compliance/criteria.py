@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
+from dataclasses import replace
 
 from specgate.analysis.analyses import Analyses, Missing
 from specgate.approximations.table import APPROXIMATIONS, LATER
@@ -10,7 +11,7 @@ from specgate.compliance.asking import Asked, ask
 from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
 from specgate.compliance.assumptions import Assumptions
 from specgate.compliance.audit import Matter, audit, audit_beyond
-from specgate.compliance.compare import Comparison, compare
+from specgate.compliance.compare import Comparison, Limits, compare
 from specgate.compliance.model.assumed import ModelAssumptions
 from specgate.compliance.readings import PI_DECIDES, Reading
 from specgate.compliance.thresholds import Policy
@@ -18,7 +19,7 @@ from specgate.compliance.units import default_unit, is_plain, limit_unit, smalln
 from specgate.measures.measure import Measure, Reader
 from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
-from specgate.project.types import Basis, Criterion, Project
+from specgate.project.types import Basis, Criterion, Limit, Project
 from specgate.response.answers import Answer
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.unit import ONE, Unit
@@ -61,9 +62,22 @@ class Criteria:
             beside=_reading(nominal, again, measure.beside, deciding) if measure.beside else None,
             unanswered=unanswered,
             signal=nominal.signal,
+            span=nominal.span,
             assumptions=self.assumptions.of(criterion.subject),
             model=self.model.of(criterion.subject, (nominal.arguments, again.arguments), reading),
         )
+
+    def under(self, assessed: CriterionAssessment, limits: Sequence[Limit]) -> Verdict:
+        """Judge what was read by other limits; sides that they do not name stay as they are."""
+        first, second = assessed.limits, assessed.limits_again
+        nominal = ask(self.analyses.nominal, assessed.criterion, assessed.measure)
+        for limit in limits:
+            relaxed = replace(assessed.criterion, limit=limit)
+            first = _beside(ask(self.analyses.nominal, relaxed, assessed.measure).limits, first)
+            second = _beside(ask(self.analyses.again, relaxed, assessed.measure).limits, second)
+        verdict = compare(assessed.reading.answer, first, nominal.at_limit).verdict
+        again = compare(assessed.reading.again, second, nominal.at_limit).verdict
+        return verdict if verdict is again else Verdict.OPEN
 
     def _unit(self, asked: Asked) -> Unit | None:
         """Return the unit of the limit, else that of the measure; None for whole numbers and yes/no."""
@@ -86,9 +100,7 @@ class Criteria:
         for key, what in _KEPT.items():
             if key in criterion.kept and measure.read is not None:
                 yield Unanswered(place, f"{what} is {_LATER}")
-        if basis is not None and basis.kind == "evidence":
-            yield Unanswered(basis.place, f"the evidence {basis.evidence} is kept and not judged by this version")
-        elif basis is not None and basis.kind == "approximation" and any(name in LATER for name in basis.chain):
+        if basis is not None and basis.kind == "approximation" and any(name in LATER for name in basis.chain):
             named = ", ".join(name for name in basis.chain if name in LATER)
             yield Unanswered(basis.place, f"the approximation {named} is not audited by this version", decides=False)
 
@@ -96,8 +108,7 @@ class Criteria:
         if basis is None or basis.kind == "computed":
             return Audit("computed", Standing.SOUND, basis.place if basis else nominal.criterion.place)
         if basis.kind == "evidence":
-            reason = f"the evidence {basis.evidence} is not judged by this version"
-            return Audit("evidence", Standing.INCONCLUSIVE, basis.place, reason)
+            return Audit("evidence", Standing.INCONCLUSIVE, basis.place, evidence=basis.evidence)
         subject = nominal.subject
         if isinstance(subject, ResponseSubject) and subject.beyond is not None and not _derived_for(basis, subject):
             return audit_beyond(basis, subject.beyond, reading, nominal.study.values, unit)
@@ -122,6 +133,14 @@ def _reading(nominal: Asked, again: Asked, read: Reader | None, deciding: Unansw
         return Reading.once(Answer.undecided(deciding.what if deciding else _LATER))
     answer = nominal.read(read)
     return Reading.once(answer) if again is nominal else Reading(answer, again.read(read))
+
+
+def _beside(relaxed: Limits, own: Limits) -> Limits:
+    return Limits(
+        own.least if relaxed.least is None else relaxed.least,
+        own.most if relaxed.most is None else relaxed.most,
+        own.truth if relaxed.truth is None else relaxed.truth,
+    )
 
 
 def _compared(nominal: Asked, again: Asked, reading: Reading) -> Comparison:

@@ -2,7 +2,11 @@
 
 from __future__ import annotations
 
-from specgate.compliance.assessment import MethodAssessment
+from collections.abc import Sequence
+from typing import Literal
+
+from specgate.compliance.assessment import MethodAssessment, RecordAssessment
+from specgate.compliance.compare import worst
 from specgate.project.types import Method, ProjectInfo, Requirement
 from specgate.terms.verdicts import Verdict
 
@@ -17,19 +21,39 @@ def due(method: Method, info: ProjectInfo) -> bool:
 
 
 def conclude(
-    requirement: Requirement, info: ProjectInfo, analysed: Verdict, recorded: bool
+    requirement: Requirement, info: ProjectInfo, analysed: Verdict, records: Sequence[RecordAssessment]
 ) -> tuple[MethodAssessment, ...]:
     """Return the outcome of every method.
 
-    analysed: what the analysis gives. recorded: whether evidence names the requirement; this version keeps it and
-    does not judge it, so that a method other than analysis is open with it and has no record without.
+    analysed: what the criteria, the budget or the requirements below give. A method other than analysis concludes by
+    its records, the worst of those on this revision of the design; a record that is there before it is due counts.
     """
-    outcomes: list[MethodAssessment] = []
+    found: list[MethodAssessment] = []
     for method in requirement.verification:
-        if not due(method, info):
-            outcomes.append(MethodAssessment(method, "due_later"))
-        elif method.method == "analysis":
-            outcomes.append(MethodAssessment(method, analysed))
-        else:
-            outcomes.append(MethodAssessment(method, Verdict.OPEN if recorded else "no_record"))
-    return tuple(outcomes)
+        kind = [one for one in records if one.evidence.kind == method.method]
+        outcome = _outcome(requirement, method, analysed, kind, now=due(method, info))
+        found.append(MethodAssessment(method, outcome, tuple(one.evidence.id for one in kind)))
+    return tuple(found)
+
+
+def _outcome(
+    requirement: Requirement, method: Method, analysed: Verdict, records: Sequence[RecordAssessment], *, now: bool
+) -> Verdict | Literal["due_later", "no_record"]:
+    current = [one.verdict for one in records if not one.stale]
+    shown = worst(current) if current else Verdict.OPEN if records else None
+    if method.method == "analysis" and (analysable(requirement) or _nothing(requirement, records)):
+        shown = worst([analysed, *current]) if now else None
+    if now:
+        return "no_record" if shown is None else shown
+    return "due_later" if shown is None or shown is Verdict.OPEN else shown
+
+
+def _nothing(requirement: Requirement, records: Sequence[RecordAssessment]) -> bool:
+    return requirement.decided_by == "criteria" and not records
+
+
+def analysable(requirement: Requirement) -> bool:
+    """Whether there is something of the requirement itself to analyse; else an analysis is a record like a test."""
+    if requirement.decided_by == "evidence":
+        return False
+    return bool(requirement.criteria) or requirement.budget is not None or requirement.decided_by == "derived"

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from typing import TypeVar
 
-from specgate.intake import policy, records
+from specgate.intake import evidence, policy, records
 from specgate.intake.collect import Collector
 from specgate.intake.context import Context, table
 from specgate.intake.criteria import evaluation
@@ -20,16 +20,19 @@ from specgate.terms.units import UnitTable
 _Thing = TypeVar("_Thing")
 
 
-def build(root: Table, inputs: tuple[InputFile, ...], collector: Collector) -> Project | None:
+def build(
+    root: Table, inputs: tuple[InputFile, ...], collector: Collector, digests: Mapping[str, str]
+) -> Project | None:
     """Build what can be built: a part in which something was reported is left out, with everything that needs it.
 
-    None if not even the units are known.
+    digests: of the files of records. None if not even the units are known.
     """
     title = table(root.get("project")) or Table(root.spot, {})
     units = policy.own_units(title, collector)
     if units is None:
         return None
     context = _context(root, title, units, collector)
+    context.digests = digests
     context.laid = records.masks(root.get("masks"), context)
     shared = parameters(root.get("parameters"), None, context)
     subsystems = _each(root, "subsystem", lambda entry: subsystem(entry, context), collector)
@@ -46,9 +49,11 @@ def build(root: Table, inputs: tuple[InputFile, ...], collector: Collector) -> P
         inputs=inputs,
         units=units,
         approximations=policy.thresholds(root.get("approximations"), context),
-        documents=records.documents(root.get("documents"), context),
-        evidence=records.evidence(root.get("evidence"), context),
-        waivers=records.waivers(root.get("waivers"), context),
+        documents=records.documents(root.get("documents")),
+        evidence=evidence.evidence(root.get("evidence"), context),
+        waivers=evidence.waivers(root.get("waivers"), context),
+        decision_rule=records.decision_rule(root.get("decision_rule")),
+        model_agreement=records.model_agreement(root.get("model_agreement"), context),
         masks=context.laid,
         evaluate=evaluation(root.get("evaluate")) or "nominal",
         kept=_kept(root, context),
@@ -128,9 +133,5 @@ def _about(requirements: dict[str, Requirement], loops: dict[str, Loop]) -> dict
 
 def _kept(root: Table, context: Context) -> dict[str, tuple[Kept, ...]]:
     """Keep the sections that a later version answers."""
-    sections = {
-        "cases": tuple(records.cases(root.get("cases"), context).values()),
-        "decision_rule": records.single("decision_rule", root.get("decision_rule"), context),
-        "model_agreement": records.single("model_agreement", root.get("model_agreement"), context),
-    }
-    return {name: kept for name, kept in sections.items() if kept}
+    cases = tuple(records.cases(root.get("cases"), context).values())
+    return {"cases": cases} if cases else {}

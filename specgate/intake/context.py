@@ -37,7 +37,7 @@ class Context:
     """Names by section, whether or not what stands behind them could be built; `broken` are those that could not.
 
     own: parameter names of each subsystem. A name that is broken has been reported: whoever meets it says nothing.
-    laid: the masks that could be read.
+    laid: the masks that could be read. digests: of the files of records, by path.
     """
 
     collector: Collector
@@ -51,6 +51,7 @@ class Context:
     cases: frozenset[str] = frozenset()
     evidence: frozenset[str] = frozenset()
     stages: tuple[str, ...] = ()
+    digests: Mapping[str, str] = field(default_factory=dict)
     broken: set[str] = field(default_factory=set)
     units_read: set[str] = field(default_factory=set)
     parsed: dict[str, Expression | ExpressionError] = field(default_factory=dict)

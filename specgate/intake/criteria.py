@@ -17,7 +17,8 @@ from specgate.project.percent import relative_to_change
 from specgate.project.types import Basis, Claim, Criterion, Limit, MaskDefinition, Subject, Value
 
 _ARGUMENTS = ("band", "from", "to", "time", "frequency")
-_LIMITS: tuple[Literal["at_most", "at_least", "between", "within", "equals"], ...] = (
+LimitKind = Literal["at_most", "at_least", "between", "within", "equals"]
+LIMITS: tuple[LimitKind, ...] = (
     "at_most",
     "at_least",
     "between",
@@ -36,7 +37,7 @@ def criterion(node: Node, place: Spot, context: Context) -> Criterion | None:
     reader = Reader(context)
     subject = _subject(body, context)
     measure = text(body.get("measure"))
-    limit = _limit(body, place, reader)
+    limit = _limit(body, reader)
     arguments = {name: reader.value(body.get(name)) for name in _ARGUMENTS if body.get(name) is not None}
     given = {name: value for name, value in arguments.items() if value is not None}
     kept = _kept(body, reader)
@@ -120,17 +121,19 @@ def _part_of_loop(kind: Literal["response", "break"], node: Text, context: Conte
 # --- limit ---------------------------------------------------------------------------------------------------
 
 
-def _limit(node: Table, place: Spot, reader: Reader) -> Limit | None:
-    for kind in _LIMITS:
-        entry = node.entries.get(kind)
-        if entry is None:
-            continue
-        where = entry.key.spot.place
-        if kind == "equals" and not isinstance(entry.value, Number):
-            return Limit("equals", (), where, truth=entry.value.value) if isinstance(entry.value, Truth) else None
-        values = complete([reader.value(part) for part in _limit_nodes(kind, node, entry.value)])
-        return Limit(kind, values, where) if values else None
-    return None
+def _limit(node: Table, reader: Reader) -> Limit | None:
+    given = next((kind for kind in LIMITS if kind in node.entries), None)
+    return None if given is None else limit_of(given, node, reader)
+
+
+def limit_of(kind: LimitKind, node: Table, reader: Reader) -> Limit | None:
+    """Read the limit of a kind in a table that has one. None if something in it was reported."""
+    entry = node.entries[kind]
+    where = entry.key.spot.place
+    if kind == "equals" and not isinstance(entry.value, Number):
+        return Limit("equals", (), where, truth=entry.value.value) if isinstance(entry.value, Truth) else None
+    values = complete([reader.value(part) for part in _limit_nodes(kind, node, entry.value)])
+    return Limit(kind, values, where) if values else None
 
 
 def _limit_nodes(kind: str, node: Table, value: Node) -> Sequence[Node | None]:

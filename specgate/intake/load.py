@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from pathlib import Path
 
-from specgate.intake import merge, shape
+from specgate.intake import evidence, merge, shape
 from specgate.intake.build import build, is_whole
 from specgate.intake.collect import Collector, Problems
 from specgate.intake.gather import Gathered, gather
@@ -35,13 +34,13 @@ def load_source(source: Source, entry: str = ENTRY) -> Project | Problems:
     """
     collector = Collector()
     gathered = gather(source, entry, collector)
-    project = _built(gathered, collector)
+    project = _built(gathered, collector, source)
     if project is None:
         return collector.problems(gathered.inputs)
     return project
 
 
-def _built(gathered: Gathered, collector: Collector) -> Project | None:
+def _built(gathered: Gathered, collector: Collector, source: Source) -> Project | None:
     """Build the project as far as its files allow, and report what is wrong."""
     roots = _roots(gathered, collector)
     # a section that cannot be read may declare any name: to call the others unknown would mislead
@@ -50,7 +49,9 @@ def _built(gathered: Gathered, collector: Collector) -> Project | None:
     root = merge.merged(roots, collector)
     shape.check(root, collector, "whole_project")
     merge.check_namespace(root, collector)
-    project = build(root, gathered.inputs, collector)
+    digests = evidence.digests(root.get("evidence"), source)
+    gathered.digests |= digests
+    project = build(root, gathered.inputs, collector, digests)
     if project is None or collector.full:
         return None
     for finding in dimensions.check(project):
@@ -59,7 +60,7 @@ def _built(gathered: Gathered, collector: Collector) -> Project | None:
         return None
     if not is_whole(project, root):
         raise AssertionError("a part of the project was left out without a word")
-    return replace(project, units_by_fit=dimensions.units_by_fit(project))
+    return dimensions.settled(project)
 
 
 def _roots(gathered: Gathered, collector: Collector) -> list[Node]:

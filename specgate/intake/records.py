@@ -1,35 +1,21 @@
-"""Sections that are kept for a later version: validated now, quantities in them readable now."""
+"""The register of documents, the masks, cases that are kept for a later version, and how records are judged."""
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from typing import Literal, cast
 
+from flint import fmpq
+
 from specgate.intake.context import Context, entries, items, table, text
-from specgate.intake.nodes import Items, Node, Table, Text, as_kept
+from specgate.intake.nodes import Node, Number, Table, Text, as_kept
 from specgate.intake.values import Reader
-from specgate.project.types import Corner, Kept, MaskDefinition
-
-_LIMITS = ("at_most", "at_least", "between", "within", "of")
-
-
-def evidence(node: Node | None, context: Context) -> dict[str, Kept]:
-    """Keep the records of tests and reviews."""
-    return _section(node, context, ("results", "expanded_uncertainty"))
+from specgate.project.types import Corner, DecisionRule, Kept, MaskDefinition, ModelAgreement
+from specgate.terms.decimals import exact_decimal
 
 
-def waivers(node: Node | None, context: Context) -> dict[str, Kept]:
-    """Keep the accepted departures."""
-    for _, waiver in entries(node):
-        accepted = table(waiver.get("accepts")) if isinstance(waiver, Table) else None
-        if accepted is not None:
-            _readable(accepted, _LIMITS, context)
-    return _section(node, context, ())
-
-
-def documents(node: Node | None, context: Context) -> dict[str, Kept]:
+def documents(node: Node | None) -> dict[str, Kept]:
     """Keep the list of documents."""
-    return _section(node, context, ())
+    return _section(node)
 
 
 def masks(node: Node | None, context: Context) -> dict[str, MaskDefinition]:
@@ -64,36 +50,30 @@ def cases(node: Node | None, context: Context) -> dict[str, Kept]:
             if reader.qualified(parameter.value) is None:
                 context.unknown("parameter", parameter.value, reader.known(), parameter.spot.place)
             reader.value(value)
-    return _section(node, context, ())
+    return _section(node)
 
 
-def single(name: str, node: Node | None, context: Context) -> tuple[Kept, ...]:
-    """Keep a section that is one table, such as `decision_rule`."""
+def decision_rule(node: Node | None) -> DecisionRule:
+    """Read how results are compared with limits."""
     body = table(node)
     if body is None:
-        return ()
-    _readable(body, ("at_most",), context)
-    return (Kept(name, {key.value: as_kept(value) for key, value in body.items()}, body.spot.place),)
+        return DecisionRule()
+    guard = body.get("guard")
+    if text(body.get("kind")) != "guarded_acceptance":
+        return DecisionRule()
+    return DecisionRule("guarded_acceptance", exact_decimal(guard.text) if isinstance(guard, Number) else fmpq(1))
 
 
-def _section(node: Node | None, context: Context, quantities: tuple[str, ...]) -> dict[str, Kept]:
-    return dict(_entries(node, context, quantities))
+def model_agreement(node: Node | None, context: Context) -> ModelAgreement | None:
+    """Read how far a result may be from the computed value."""
+    body = table(node)
+    value = Reader(context).value(body.get("at_most")) if body is not None else None
+    return None if body is None or value is None else ModelAgreement(value, body.spot.place)
 
 
-def _entries(node: Node | None, context: Context, quantities: tuple[str, ...]) -> Iterator[tuple[str, Kept]]:
-    for key, value in entries(node):
-        if isinstance(value, Table):
-            _readable(value, quantities, context)
-            content = {name.value: as_kept(part) for name, part in value.items()}
-            yield key.value, Kept(key.value, content, key.spot.place)
-
-
-def _readable(node: Table, quantities: tuple[str, ...], context: Context) -> None:
-    """Report the quantities under these keys that cannot be read."""
-    reader = Reader(context)
-    for name in quantities:
-        found = node.get(name)
-        if isinstance(found, Items):
-            reader.several(found)
-        elif found is not None:
-            reader.value(found)
+def _section(node: Node | None) -> dict[str, Kept]:
+    return {
+        key.value: Kept(key.value, {name.value: as_kept(part) for name, part in value.items()}, key.spot.place)
+        for key, value in entries(node)
+        if isinstance(value, Table)
+    }

@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from specgate.project.blocks import build
 from specgate.project.criterion_checks import check_requirement
 from specgate.project.faults import Fault, Faults
 from specgate.project.loop_checks import check_loop
 from specgate.project.parameters import settle
+from specgate.project.record_checks import check_records, with_chosen
 from specgate.project.signals import LoopSignals
 from specgate.project.subsystem_checks import check_subsystem
 from specgate.project.types import Project
@@ -31,7 +34,15 @@ def check(project: Project) -> tuple[Finding, ...]:
         check_loop(signals[name], blocks, found)
     for requirement in project.requirements.values():
         check_requirement(requirement, signals, values, found)
+    check_records(project, signals, values, found)
     return in_order((*findings, *found.findings))
+
+
+def settled(project: Project) -> Project:
+    """Return a project that passes the checks, with what only they can tell: units by fit, what records are about."""
+    values, _ = settle(project)
+    signals = {name: LoopSignals(project, loop, values) for name, loop in project.loops.items()}
+    return replace(with_chosen(project, signals, values), units_by_fit=units_by_fit(project))
 
 
 def units_by_fit(project: Project) -> tuple[str, ...]:

@@ -33,6 +33,7 @@ from specgate.review.types import (
 from specgate.review.wanted import Wanted
 from specgate.rules.rule import Facts
 from specgate.rules.table import findings
+from specgate.terms.enclosed import printed_exact
 from specgate.terms.findings import Finding, in_order
 from specgate.traceability.graph import trace
 
@@ -81,6 +82,9 @@ def review(project: Project, wanted: Wanted | None = None) -> Review:
                 }
                 for one in thresholds.stated
             ),
+            guard=_guard(project),
+            model_agreement=None if project.model_agreement is None else project.model_agreement.at_most.as_written,
+            today=project.today,
         ),
         units=project.units_read,
         specification=specification(project, analyses),
@@ -91,6 +95,11 @@ def review(project: Project, wanted: Wanted | None = None) -> Review:
         findings=shown,
         gate=gate(project.gate, assessments, said),
     )
+
+
+def _guard(project: Project) -> float | None:
+    rule = project.decision_rule
+    return printed_exact(rule.guard).value if rule.kind == "guarded_acceptance" else None
 
 
 def unusable(problems: Problems) -> Unusable:

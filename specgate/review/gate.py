@@ -29,11 +29,12 @@ def _verdicts(policy: GatePolicy, assessments: Mapping[str, Assessment]) -> Iter
     for name, assessment in assessments.items():
         if not assessment.due or assessment.verdict is None:
             continue
-        if assessment.verdict.value in policy.hold_on:
+        if assessment.verdict.value in policy.hold_on and not assessment.waived:
             why = f": {assessment.reason}" if assessment.reason else ""
             yield f"{name} is {_WORDS[assessment.verdict.value]}{why}"
-        if assessment.standing is not None and assessment.standing.value in policy.hold_on:
-            yield from (f"{name} {words}" for words in _why(assessment, assessment.standing))
+        standing = None if assessment.standing_waived else assessment.standing
+        if standing is not None and standing.value in policy.hold_on:
+            yield from (f"{name} {words}" for words in _why(assessment, standing))
 
 
 def _why(assessment: Assessment, standing: Standing) -> Iterator[str]:

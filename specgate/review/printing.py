@@ -77,7 +77,7 @@ def _pole(root: Root) -> Pole:
 
 def amount(reading: Reading, unit: Unit, as_written: str | None = None) -> Amount:
     """Print a number in coherent SI as an amount in `unit`."""
-    form = _form(reading.in_unit(unit), None)
+    form = printed_form(reading.in_unit(unit), None)
     return Amount(form.value, unit.symbol, form.exact, as_written)
 
 
@@ -94,7 +94,7 @@ def amount_of(answer: Answer, unit: Unit, scale: fmpq | None = None) -> Amount |
     if answer.absent is not None or answer.truth is not None:
         return None
     try:
-        form = _form(Reading.once(answer).in_unit(unit), scale)
+        form = printed_form(Reading.once(answer).in_unit(unit), scale)
     except OverflowError:
         return None
     return Amount(form.value, unit.symbol, form.exact)
@@ -103,7 +103,7 @@ def amount_of(answer: Answer, unit: Unit, scale: fmpq | None = None) -> Amount |
 def plain_number(answer: Answer, scale: fmpq | None = None) -> float | None:
     """Print an answer that has a value, in the unit in which it is; None where it is too large for that."""
     try:
-        return _form(answer, scale).value
+        return printed_form(answer, scale).value
     except OverflowError:
         return None
 
@@ -201,10 +201,12 @@ def _result(reading: Reading, unit: Unit | None, scale: fmpq | None, beside: Rea
     if unit.kind == "decibel" and answer.exact == 0:
         return Result(None, proof=answer.proof.value, reason="the gain is zero, which no number of decibels is")
     try:
-        form = _form(reading.in_unit(unit), scale)
+        form = printed_form(reading.in_unit(unit), scale)
     except OverflowError as problem:
         return Result(None, reason=str(problem))
-    signed = None if beside is None or beside.settled.absent is not None else _form(beside.in_unit(unit), scale).value
+    signed = (
+        None if beside is None or beside.settled.absent is not None else printed_form(beside.in_unit(unit), scale).value
+    )
     return Result(
         form.value,
         form.lower,
@@ -223,7 +225,8 @@ def _counted(answer: Answer) -> Result:
     return Result(int(answer.exact.p), proof=Proof.EXACT.value)
 
 
-def _form(answer: Answer, scale: fmpq | None) -> Enclosed:
+def printed_form(answer: Answer, scale: fmpq | None = None) -> Enclosed:
+    """Print an answer that has a value, in the unit in which it is. Raises OverflowError for one too large."""
     return printed_exact(answer.exact) if answer.exact is not None else printed(answer.enclose, scale)
 
 

@@ -23,6 +23,7 @@ from specgate.review.audited import condition, error_of
 from specgate.review.masks import mask_of
 from specgate.review.pictures import error_curve, separation
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
+from specgate.review.records import evidence, waiver
 from specgate.review.resting import Resting
 from specgate.review.types import (
     BasisReview,
@@ -69,9 +70,10 @@ def requirement(
         ),
         rests_on=rests.of(assessment),
         derived=graph.children[name],
-        evidence=tuple(
-            {"id": kept.id, **as_plain(kept.content)} for kept in project.evidence.values() if name in kept.requirements
-        ),
+        evidence=tuple(evidence(one) for one in assessment.records),
+        waiver=next((waiver(one) for one in assessment.waivers if one.excuses), None),
+        waivers=tuple(waiver(one) for one in assessment.waivers),
+        waived=assessment.waived,
         reason=assessment.reason,
         not_applicable=None
         if exempt is None
@@ -83,7 +85,10 @@ def requirement(
 def _method(assessed: MethodAssessment) -> MethodReview:
     outcome = assessed.outcome
     return MethodReview(
-        assessed.method.method, assessed.method.stage, outcome.value if isinstance(outcome, Verdict) else outcome
+        assessed.method.method,
+        assessed.method.stage,
+        outcome.value if isinstance(outcome, Verdict) else outcome,
+        assessed.records or None,
     )
 
 

@@ -132,7 +132,7 @@ def _names(document: str, one: RequirementReview, review: Review) -> bool:
     """Tell whether a requirement rests on a parameter or a record that names a document."""
     parameters = review.specification.parameters
     texts = [parameters[name].source or "" for name in one.rests_on if name in parameters]
-    texts += [str(value) for record in one.evidence for value in record.values()]
+    texts += [text for record in one.evidence for text in (record.id, record.title or "", record.source or "")]
     pattern = re.compile(rf"(?<![\w-]){re.escape(document)}(?![\w-])")
     return any(document in text and pattern.search(text) for text in texts)
 

@@ -8,7 +8,8 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator, Mapping
 from typing import Any
 
-from specgate.revisions.said import said
+from specgate.review.types import Amount, RecordFileReview
+from specgate.revisions.said import amount, said
 from specgate.revisions.types import Change
 from specgate.terms.records import record
 
@@ -30,8 +31,42 @@ def _stages(methods: Any) -> Any:
     return tuple(f"{one.method} at {one.stage}" if one.stage else one.method for one in methods)
 
 
-def _without_id(records: Any) -> Any:
-    return tuple({key: value for key, value in one.items() if key != "outcome"} for one in records)
+def _records(records: Any) -> Any:
+    """Return what is stated in each record, without what it shows."""
+    return tuple(_stated(one, _RECORD) for one in records)
+
+
+def _waivers(waivers: Any) -> Any:
+    """Return what is stated in each waiver, without what it excuses."""
+    return tuple(_stated(one, _WAIVER) for one in waivers)
+
+
+_RECORD = (
+    "id",
+    "kind",
+    "title",
+    "date",
+    "design_revision",
+    "outcome",
+    "results",
+    "expanded_uncertainty",
+    "file",
+    "source",
+)
+_WAIVER = ("id", "kind", "reason", "scope", "accepts", "approved_by", "approved_on", "expires")
+
+
+def _stated(one: Any, keys: tuple[str, ...]) -> dict[str, Any]:
+    found = {key: getattr(one, key) for key in keys}
+    return {key: _written(value) for key, value in found.items() if value not in (None, ())}
+
+
+def _written(value: Any) -> Any:
+    if isinstance(value, Amount):
+        return amount(value)
+    if isinstance(value, RecordFileReview):
+        return value.path if value.digest is None else f"{value.path} ({value.digest[:12]}…)"
+    return tuple(map(_written, value)) if isinstance(value, tuple) else value
 
 
 REQUIREMENT = (
@@ -43,8 +78,8 @@ REQUIREMENT = (
     Declared("allocated_to", bears=False),
     Declared("decided_by"),
     Declared("methods", of=_stages),
-    Declared("evidence", of=_without_id),
-    Declared("waiver"),
+    Declared("evidence", of=_records),
+    Declared("waivers", of=_waivers),
     Declared("not_applicable"),
     Declared("external"),
 )
@@ -80,7 +115,13 @@ PROJECT = (
     Declared("stages"),
     Declared("sign_off", bears=False),
 )
-POLICY = (Declared("hold_on", bears=False), Declared("evaluate"))
+POLICY = (
+    Declared("hold_on", bears=False),
+    Declared("evaluate"),
+    Declared("guard"),
+    Declared("model_agreement", bears=False),
+    Declared("today"),
+)
 SAID_AS = {"from_": "from", "methods": "verification"}
 """Names of fields in the files, where they differ."""
 

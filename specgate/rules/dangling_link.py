@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 
-from specgate.project.types import Kept
+from specgate.project.types import Evidence, Waiver
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.names import nearest
@@ -40,7 +40,7 @@ def check(facts: Facts) -> Iterator[Finding]:
     yield from _records("waiver", facts.project.waivers.values(), requirements)
 
 
-def _records(what: str, records: Iterable[Kept], requirements: Iterable[str]) -> Iterator[Finding]:
+def _records(what: str, records: Iterable[Evidence | Waiver], requirements: Iterable[str]) -> Iterator[Finding]:
     known = dict.fromkeys(requirements)
     for record in records:
         for name in record.requirements:

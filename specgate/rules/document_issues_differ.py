@@ -65,8 +65,8 @@ def _uses(facts: Facts) -> Iterator[_Use]:
     for subsystem in project.subsystems.values():
         for value in literals(subsystem):
             yield from _named(value.source, f"`{value.as_written}` of {subsystem.name}", value.place)
-    for kept in project.evidence.values():
-        yield from _named(str(kept.content.get("source", "")), f"the evidence {kept.id}", kept.place)
+    for evidence in project.evidence.values():
+        yield from _named(evidence.source, f"the evidence {evidence.id}", evidence.place)
 
 
 def _named(source: str | None, who: str, place: Place) -> Iterator[_Use]:

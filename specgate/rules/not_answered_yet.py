@@ -1,8 +1,8 @@
 """The specification asks for something that the format allows and this version does not answer.
 
 It is read, checked for its form, kept, and never approximated: a verdict that needs it is open, and what would only
-qualify a verdict (a waiver) is said here so that nobody takes it for applied. The finding is a
-note; where a verdict is open because of it, requirement-open says so with its own level.
+qualify a verdict is said here so that nobody takes it for applied. The finding is a note; where a verdict is open
+because of it, requirement-open says so with its own level.
 """
 
 from __future__ import annotations
@@ -15,7 +15,6 @@ from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Level
 
 NAME = "not-answered-yet"
-_POLICIES = ("decision_rule", "model_agreement")
 
 
 def check(facts: Facts) -> Iterator[Finding]:
@@ -24,9 +23,6 @@ def check(facts: Facts) -> Iterator[Finding]:
         for unanswered in assessment.unanswered:
             yield Finding(NAME, Level.NOTE, f"{name}: {unanswered.what}", unanswered.place, requirement=name)
     yield from _thresholds(facts)
-    for name in _POLICIES:
-        for kept in facts.project.kept.get(name, ()):
-            yield Finding(NAME, Level.NOTE, f"{name}: kept, and not applied by this version", kept.place)
 
 
 def _thresholds(facts: Facts) -> Iterator[Finding]:

@@ -32,8 +32,12 @@ class Facts:
                 yield requirement
 
     def restating(self, what: Verdict | Standing, assessment: Assessment) -> Level:
-        """Return the level of a finding that only restates a verdict or a standing: a note where nothing is due yet."""
-        if not assessment.due:
+        """Return the level of a finding that only restates a verdict or a standing.
+
+        A note where nothing is due yet, and where a waiver accepts it.
+        """
+        waived = assessment.standing_waived if isinstance(what, Standing) else assessment.waived
+        if not assessment.due or (waived and what is not Verdict.OPEN):
             return Level.NOTE
         return Level.ERROR if what.value in self.project.gate.hold_on else Level.WARNING
 

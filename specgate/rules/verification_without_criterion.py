@@ -36,7 +36,7 @@ def _analysable(requirement: Requirement, facts: Facts) -> bool:
         bool(requirement.criteria)
         or requirement.budget is not None
         or requirement.decided_by == "derived"
-        or any(one.content.get("kind") == "analysis" for one in recorded)
+        or any(one.kind == "analysis" for one in recorded)
     )
 
 

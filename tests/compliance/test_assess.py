@@ -114,5 +114,6 @@ def test_the_worst_standing_counts(judge: Judge) -> None:
 def test_what_is_not_answered_is_open_and_says_so(judge: Judge) -> None:
     found = judge(project(R1=OPEN, R2="verification: analysis, decided_by: evidence", R3="verification: analysis"))
     assert [found[name].verdict for name in found] == [Verdict.OPEN] * 3
-    assert [len(found[name].unanswered) for name in found] == [1, 1, 0]
+    assert [len(found[name].unanswered) for name in found] == [1, 0, 0]
+    assert found["R2"].reason == "analysis is due and has no record"
     assert found["R3"].reason == "it has no criterion: add one, or say `decided_by: derived` or `evidence`"

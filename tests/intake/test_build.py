@@ -5,10 +5,11 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
+from flint import fmpq
 
 from specgate.intake.load import load
 from specgate.project import types
-from specgate.project.types import Project
+from specgate.project.types import DecisionRule, Expiry, Project
 
 TESTS = Path(__file__).parents[1]
 
@@ -158,14 +159,30 @@ def test_what_a_subsystem_says_of_its_model(whole: Project) -> None:
 def test_what_a_later_version_answers_is_kept(whole: Project) -> None:
     assert {name: [kept.id for kept in entries] for name, entries in whole.kept.items()} == {
         "cases": ["hot"],
-        "decision_rule": ["decision_rule"],
-        "model_agreement": ["model_agreement"],
     }
-    record = whole.evidence["KD-TR-9"]
-    assert record.content["results"] == ["3.3 s", "3.1 s"]
-    assert record.content["design_revision"] == 2
-    assert list(whole.waivers) == ["KD-W-3", "KD-W-4"]
     assert whole.documents["KD-DAT-2"].content["issue"] == 3
+
+
+def test_records(whole: Project) -> None:
+    record = whole.evidence["KD-TR-9"]
+    assert [one.as_written for one in record.results] == ["3.3 s", "3.1 s"]
+    assert (record.design_revision, record.requirements, record.outcome) == ("2", ("KD-3",), None)
+    assert record.file is not None
+    assert (record.file.path, record.file.found) == ("leak_test.csv", None)
+    assert whole.evidence["KD-TR-10"].outcome == "meets"
+    assert whole.decision_rule == DecisionRule("guarded_acceptance", fmpq(1))
+    assert whole.model_agreement is not None
+    assert whole.model_agreement.at_most.as_written == "10 %"
+
+
+def test_waivers(whole: Project) -> None:
+    first, second, third = whole.waivers.values()
+    criteria = whole.requirements["KD-2"].criteria
+    assert first.chosen == {"KD-2": criteria[0]}
+    assert (first.scope, first.expires) == ("kiln 2", Expiry("2027-03-01", None))
+    assert (second.standing, second.expires) == ("out_of_range", Expiry(None, "C"))
+    assert [one for one in criteria if second.about("KD-2", one)] == [criteria[0]]
+    assert (third.outcome, third.limits) == (True, ())
 
 
 def test_what_a_criterion_keeps(whole: Project) -> None:
@@ -209,7 +226,7 @@ def test_responses_of_all_kinds(whole: Project) -> None:
 
 def test_the_rest_of_a_requirement(whole: Project) -> None:
     first, second, third, fourth = (whole.requirements[f"KD-{n}"] for n in (1, 2, 3, 4))
-    assert first.external == {"document": "KD-CON-1", "place": "4.1.2"}
+    assert first.external == {"document": "KD-CON-1", "issue": 2, "place": "4.1.2"}
     assert first.coverage == {"complete": True, "by": "Process", "on": "2026-02-01"}
     assert [(link.id, link.kept) for link in second.derived_from] == [
         ("KD-1", {"reaffirmed": {"by": "Process", "on": "2026-02-02"}})

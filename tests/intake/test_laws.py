@@ -15,6 +15,7 @@ from hypothesis import strategies as st
 
 from specgate.intake.load import Problems, load_source
 from specgate.project.types import Project
+from specgate.terms.sources import SourceError
 
 TESTS = Path(__file__).parents[1]
 EXAMPLE = (TESTS / "examples" / "spec_format" / "specgate.yaml").read_text(encoding="utf-8")
@@ -50,6 +51,8 @@ class Bytes:
         self.files = files
 
     def read(self, path: str) -> bytes:
+        if path not in self.files:
+            raise SourceError(f"there is no file `{path}`")
         return self.files[path]
 
     def glob(self, pattern: str) -> list[str]:

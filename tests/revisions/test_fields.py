@@ -10,7 +10,8 @@ from specgate.review import types
 from specgate.revisions import fields
 
 COMPUTED: dict[type, set[str]] = {
-    types.RequirementReview: {"location", "verdict", "standing", "assumptions", "rests_on", "derived", "reason"},
+    types.RequirementReview: {"location", "verdict", "standing", "assumptions", "rests_on", "derived", "reason"}
+    | {"waiver", "waived"},
     types.CriterionReview: {"verdict", "result", "reserve", "standing", "location", "reason"},
     types.ParameterReview: {"exact", "unit", "as_written", "location"},
     types.SubsystemReview: {"used", "location", "by_fit"},

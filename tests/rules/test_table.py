@@ -25,6 +25,16 @@ ADDED = {
     *("requirement-childless", "text-duplicate", "requirement-unallocated", "allocation-unused"),
     *("verification-missing", "verification-without-criterion", "verification-without-evidence"),
     *("document-unregistered", "document-issues-differ"),
+    *(
+        "evidence-stale",
+        "evidence-undecided",
+        "evidence-contradicts-analysis",
+        "test-disagrees-with-model",
+        "record-altered",
+        "waiver-not-in-force",
+        "waiver-insufficient",
+        "waiver-unneeded",
+    ),
 }
 NO_ROWS = {"__init__", "rule", "table"}
 

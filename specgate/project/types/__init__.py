@@ -34,12 +34,14 @@ from specgate.project.types.models import (
     SampledModel,
     StateSpaceModel,
 )
+from specgate.project.types.records import Aim, DecisionRule, Evidence, Expiry, ModelAgreement, RecordFile, Waiver
 from specgate.project.types.requirements import Link, Method, NotApplicable, Requirement
 from specgate.project.types.subsystems import Pedigree, Port, StandIn, Subsystem
 from specgate.project.types.values import Parameter, Tolerance, Value
 from specgate.project.types.whole import GatePolicy, InputFile, Kept, Project, ProjectInfo
 
 __all__ = [
+    "Aim",
     "Band",
     "Basis",
     "Break",
@@ -47,7 +49,10 @@ __all__ = [
     "Claim",
     "Corner",
     "Criterion",
+    "DecisionRule",
+    "Evidence",
     "Excitation",
+    "Expiry",
     "FactoredModel",
     "GatePolicy",
     "InputFile",
@@ -61,6 +66,7 @@ __all__ = [
     "MatrixModel",
     "Method",
     "Model",
+    "ModelAgreement",
     "NotApplicable",
     "Pair",
     "Parameter",
@@ -72,6 +78,7 @@ __all__ = [
     "Port",
     "Project",
     "ProjectInfo",
+    "RecordFile",
     "Requirement",
     "Response",
     "Root",
@@ -87,4 +94,5 @@ __all__ = [
     "Sum",
     "Tolerance",
     "Value",
+    "Waiver",
 ]

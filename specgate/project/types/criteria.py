@@ -41,6 +41,11 @@ class Subject:
     name: str | None
     place: Place
 
+    @property
+    def on(self) -> str:
+        """The loop, or loop and response or break: `gate_position.follow`."""
+        return self.loop if self.name is None else f"{self.loop}.{self.name}"
+
 
 @record
 class Claim:

@@ -8,6 +8,7 @@ from typing import Literal
 
 from specgate.project.types.criteria import MaskDefinition
 from specgate.project.types.loops import Loop
+from specgate.project.types.records import DecisionRule, Evidence, ModelAgreement, Waiver
 from specgate.project.types.requirements import Requirement
 from specgate.project.types.subsystems import Subsystem
 from specgate.project.types.values import Parameter, Value
@@ -18,17 +19,11 @@ from specgate.terms.units import UnitTable
 
 @record
 class Kept:
-    """A named entry of a section that a later version answers (evidence, waivers, cases …), as written."""
+    """A named entry of a section (documents, cases), as written."""
 
     id: str
     content: Mapping[str, object]
     place: Place
-
-    @property
-    def requirements(self) -> tuple[str, ...]:
-        """The ids of the requirements that it names."""
-        named = self.content.get("requirement")
-        return tuple(map(str, named)) if isinstance(named, list | tuple) else () if named is None else (str(named),)
 
 
 @record
@@ -81,10 +76,19 @@ class Project:
     approximations: Mapping[str, Mapping[str, Value]] = field(default_factory=dict)
     """Project policy: thresholds of conditions, by approximation and key."""
     documents: Mapping[str, Kept] = field(default_factory=dict)
-    evidence: Mapping[str, Kept] = field(default_factory=dict)
-    waivers: Mapping[str, Kept] = field(default_factory=dict)
+    evidence: Mapping[str, Evidence] = field(default_factory=dict)
+    waivers: Mapping[str, Waiver] = field(default_factory=dict)
+    decision_rule: DecisionRule = field(default_factory=DecisionRule)
+    model_agreement: ModelAgreement | None = None
     masks: Mapping[str, MaskDefinition] = field(default_factory=dict)
     kept: Mapping[str, tuple[Kept, ...]] = field(default_factory=dict)
-    """Sections answered later (cases, decision_rule …), by name."""
+    """Sections answered later (cases), by name."""
+    today: str | None = None
+    """The day as which waivers are judged, where another than the date of the title block was asked for."""
     warnings: tuple[object, ...] = ()
     """Findings of the intake below level error (specgate.terms.findings.Finding)."""
+
+    @property
+    def day(self) -> str | None:
+        """The day as which waivers are judged; None where nobody said one."""
+        return self.today or self.info.date

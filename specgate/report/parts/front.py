@@ -93,7 +93,7 @@ def front(review: Review) -> Front:
         sentence=sentence(review),
         verdicts=tuple(Count(status, verdicts[key]) for key, status in VERDICTS.items()),
         standings=tuple(Count(status, standings[key]) for key, status in STANDINGS.items()),
-        waived=sum(r.waiver is not None for r in review.requirements.values()),
+        waived=sum(r.waived or r.waiver is not None for r in review.requirements.values()),
         requirements=len(review.requirements),
         holds=holds[:HOLDS_AT_MOST],
         more_holds=max(0, len(holds) - HOLDS_AT_MOST),

@@ -108,7 +108,7 @@ def row(review: Review, name: str) -> Row:
         owner=requirement.owner or "",
         verdict=VERDICTS[requirement.verdict],
         standing=STANDINGS.get(requirement.standing or ""),
-        waived=requirement.waiver is not None,
+        waived=requirement.waived or requirement.waiver is not None,
         methods=tuple(
             Method(spaced(m.method), m.stage or "", METHODS.get(m.outcome, METHODS["no_record"]))
             for m in requirement.methods

@@ -9,7 +9,7 @@ from specgate.report import anchors
 from specgate.report.parts import models, ranges
 from specgate.report.parts.matrix import Method, row
 from specgate.report.words import LEVELS, VERDICTS, Status, counted, listed, spaced
-from specgate.review.types import FindingReview, RequirementReview, Review
+from specgate.review.types import FindingReview, RequirementReview, Review, WaiverReview
 from specgate.terms.records import record
 
 
@@ -125,8 +125,7 @@ def open_points(review: Review) -> tuple[OpenPoint, ...]:
     points: list[OpenPoint] = []
     for name, requirement in review.requirements.items():
         at = anchors.row(name)
-        if requirement.waiver:
-            points.append(OpenPoint("waiver", name, at, _approved(requirement.waiver)))
+        points += [OpenPoint(one.kind, name, at, _waived(one)) for one in requirement.waivers if one.needed]
         if requirement.verdict == "not_applicable":
             points.append(OpenPoint("not applicable", name, at, _approved(requirement.not_applicable or {})))
         if requirement.verdict == "open":
@@ -140,6 +139,17 @@ def _inconclusive(requirement: RequirementReview) -> str:
     if any(criterion.basis.standing == "inconclusive" for criterion in requirement.criteria):
         return "the stated accuracy of its formula does not decide the limit"
     return ranges.undecided(requirement) or models.undecided(requirement)
+
+
+def _waived(waiver: WaiverReview) -> str:
+    """Return what a waiver accepts, why, who approved it and until when it holds."""
+    accepted = ", ".join(f"{spaced(key)} {value}" for key, value in waiver.accepts.items())
+    until = f" Until {waiver.expires}." if waiver.expires else ""
+    lapsed = f" Not in force: {waiver.lapsed}." if waiver.lapsed else ""
+    short = f" Not enough: {waiver.short}." if waiver.short else ""
+    scope = f" For {waiver.scope}." if waiver.scope else ""
+    approved = f"Approved by {waiver.approved_by}, {waiver.approved_on}."
+    return f"{waiver.id} accepts {accepted}.{scope} {waiver.reason} {approved}{until}{lapsed}{short}"
 
 
 def _approved(exemption: Mapping[str, Any]) -> str:

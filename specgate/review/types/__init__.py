@@ -28,6 +28,7 @@ from specgate.review.types.loops import (
     LoopReview,
     ResponseReview,
 )
+from specgate.review.types.records import DisagreementReview, EvidenceReview, RecordFileReview, WaiverReview
 from specgate.review.types.requirements import (
     AssumptionReview,
     CriterionReview,
@@ -76,9 +77,11 @@ __all__ = [
     "Curve",
     "DefinitionReview",
     "DelayedTerm",
+    "DisagreementReview",
     "Enclosure",
     "ErrorCurveReview",
     "ErrorReview",
+    "EvidenceReview",
     "FigureReview",
     "FindingReview",
     "FormulaReview",
@@ -103,6 +106,7 @@ __all__ = [
     "ProjectReview",
     "ProofPart",
     "ProofRecord",
+    "RecordFileReview",
     "RequirementReview",
     "ReserveReview",
     "ResponseReview",
@@ -113,4 +117,5 @@ __all__ = [
     "SubsystemReview",
     "ToolReview",
     "Unusable",
+    "WaiverReview",
 ]

@@ -7,6 +7,7 @@ from typing import Any
 
 from specgate.review.types.bases import BasisReview
 from specgate.review.types.fields import omitted
+from specgate.review.types.records import EvidenceReview, WaiverReview
 from specgate.review.types.values import Amount, Location, Result
 from specgate.terms.records import record
 
@@ -74,6 +75,8 @@ class MethodReview:
     method: str
     stage: str | None
     outcome: str
+    evidence: tuple[str, ...] | None = omitted()
+    """Ids of the records of this kind, where there are any."""
 
 
 @record
@@ -150,8 +153,12 @@ class RequirementReview:
     rests_on: tuple[str, ...] = ()
     derived: tuple[str, ...] = ()
     """Ids of the requirements derived from it."""
-    evidence: tuple[Mapping[str, Any], ...] = ()
-    waiver: Mapping[str, Any] | None = None
+    evidence: tuple[EvidenceReview, ...] = ()
+    waiver: WaiverReview | None = None
+    """The first waiver that excuses something; the verdict stays what it is."""
+    waivers: tuple[WaiverReview, ...] = ()
+    waived: bool = False
+    """Whether waivers, of its own or of what is derived from it, keep its not being met from holding the gate."""
     reason: str | None = None
     """Why it is not compliant, in one sentence."""
     not_applicable: Mapping[str, Any] | None = None

@@ -72,6 +72,11 @@ class PolicyReview:
     hold_on: tuple[str, ...]
     evaluate: str
     changed_thresholds: tuple[Mapping[str, Any], ...] = ()
+    guard: float | None = omitted()
+    """Guard band of guarded acceptance, in expanded uncertainties; left out with simple acceptance."""
+    model_agreement: str | None = omitted()
+    today: str | None = omitted()
+    """The day as which waivers are judged, where it is not the date of the title block."""
 
 
 @record
