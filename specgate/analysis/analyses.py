@@ -7,6 +7,7 @@ from functools import cached_property
 
 from flint import fmpq
 
+from specgate.analysis.held import held_gain
 from specgate.approximations.features import Features
 from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.viewed import Viewed
@@ -104,7 +105,8 @@ class LoopAnalysis:
     def opened(self) -> Mapping[str, OpenedLoop]:
         """What approximations look at in the loop opened at each break that has an L."""
         subjects = {name: one.subject for name, one in self.breaks.items()}
-        return {name: OpenedLoop(name, one) for name, one in subjects.items() if isinstance(one, BreakSubject)}
+        held = held_gain(self.solution) if subjects else None
+        return {name: OpenedLoop(name, one, held) for name, one in subjects.items() if isinstance(one, BreakSubject)}
 
     @cached_property
     def whole(self) -> WholeLoop | None:

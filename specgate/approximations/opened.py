@@ -13,13 +13,26 @@ from specgate.response.answers import Answer
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import working_precision
+from specgate.terms.records import record
+
+
+@record
+class HeldGain:
+    """A loop whose only sampled block is a gain: L without sampling and hold, the period and the delay after it (s)."""
+
+    rest: TransferFunction
+    period: fmpq
+    delay: fmpq
 
 
 class OpenedLoop:
-    """L at one declared break, and whether the loop closed again is stable."""
+    """L at one declared break, and whether the loop closed again is stable.
 
-    def __init__(self, name: str, subject: BreakSubject) -> None:
-        self.name, self.subject = name, subject
+    held: what a sampled loop is without its sampling; None of others, and of loops with more than a sampled gain.
+    """
+
+    def __init__(self, name: str, subject: BreakSubject, held: HeldGain | None = None) -> None:
+        self.name, self.subject, self.held = name, subject, held
 
     @property
     def around(self) -> OpenedLoop:

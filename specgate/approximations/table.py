@@ -15,6 +15,7 @@ from specgate.approximations import (
     first_order_rise,
     first_order_settling,
     half_rule,
+    hold_as_delay,
     margins_from_sensitivity,
     near_cancellation,
     overshoot_from_phase_margin,
@@ -67,13 +68,13 @@ _ROWS = (
     right_half_plane_zero_limit,
     unstable_pole_limit,
     half_rule,
+    hold_as_delay,
 )
 
 APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for module in _ROWS}
 """Every approximation that this version audits, by its name in the format."""
 
 LATER: Mapping[str, str] = {
-    "hold_as_delay": "a hold as a dead time of half the period",
     "fast_sampling_as_continuous": "a sampled controller as a continuous one",
     "inner_loop_as_lag": "an inner loop as a single lag",
     "desired_lag": "a closed loop as the lag it was tuned for",

@@ -36,7 +36,7 @@ subsystems:
   law:
     input: {{unit: 1}}
     output: {{unit: 1}}
-    model: {{sampled: {{period: 0.1 s, numerator: [1], denominator: [1]}}}}
+    model: {{sampled: {{period: {period}, numerator: [1], denominator: [1]}}}}
 loops:
   bench:
     inputs: {{u: {{unit: 1}}}}
@@ -96,6 +96,7 @@ def audited(name: str, case: Case, folder: Path) -> Audit:
         PROJECT.format(
             plant=flow(case["plant"]),
             signals=SIGNALS[case.get("loop", "open")],
+            period=case.get("period", "0.1 s"),
             driven=INPUTS[case.get("input", "step")],
             subject={"response": "response: bench.r", "break": "break: bench.b", "loop": "loop: bench"}[kind],
             ask=", ".join(f"{key}: {value}" for key, value in case["ask"].items()),
@@ -143,7 +144,7 @@ def own(row: Approximation) -> list[tuple[str | None, Condition]]:
 NEVER_ON = {
     *("dominant_pair.dropped_amplitude", "dominant_pair.ringing", "dominant_pair.dropped_at_peak"),
     *("slowest_pole_settling.tail_growth", "near_cancellation.tail_in_band", "near_cancellation.tail"),
-    "pade_dead_time.phase_error",
+    *("pade_dead_time.phase_error", "hold_as_delay.sampling"),
 }
 ALIKE = ("stable", "dead_time")
 """Conditions that the variants of an entry share word for word: one of them has the cases."""
