@@ -9,12 +9,15 @@ inferior. For all w of at least h it is at most, and at least,
 
     (|c| + u)/(1 - |a| - v),   (|c| - u)/(1 + |a| + v),
 
-u and v what the other terms of N and D are at h together, in units of h^n: they fall as h rises.
+u and v what the other terms of N and D are at h together, in units of h^n: they fall as h rises. Let N have one term
+alone, and D = d0 + E e^(-T s). Where |N| <= |c| |d0| and |E| <= |a| |d0|, which are signs of polynomials in w^2, the
+triangle inequality gives the limit superior itself as a bound.
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import cached_property
 
 from flint import arb, fmpq
 
@@ -22,11 +25,12 @@ from specgate.delays.squared_gain import OSCILLATES, SquaredGain, size_from
 from specgate.response.answers import Absent
 from specgate.response.budget import OutOfWork
 from specgate.systems.quasi import Quasi
+from specgate.systems.quasi_count import beyond_last_root, squared
 from specgate.terms.precision import working_precision
 
 _BITS = 64
 _DOUBLINGS = 400
-_TURNS = 1000
+_TURNS = 600
 """Radians of the longest delay beyond which no peak is looked for."""
 
 
@@ -43,6 +47,20 @@ class EchoingGain(SquaredGain):
         self._through = abs(above[0] / lead) if above else fmpq(0)
         self._echo = abs(below[1] / lead)
         self._degree, self._lead = degree, abs(lead)
+
+    @cached_property
+    def _below_limit(self) -> fmpq | None:
+        """A frequency from which on the square does not exceed its limit superior; None: not told."""
+        if len(self._above.terms) > 1 or len(self._below.terms) != 2:
+            return None
+        base, height = squared(self._below.undelayed), fmpq(0)
+        for factor, (_, polynomial) in ((self._through, self._above.terms[0]), (self._echo, self._below.delayed[0])):
+            spare = base * (factor * factor) - squared(polynomial)
+            if spare:
+                if spare.leading_coefficient() < 0:
+                    return None
+                height = max(height, beyond_last_root(spare))
+        return height
 
     @property
     def final(self) -> fmpq | Absent:
@@ -69,8 +87,11 @@ class EchoingGain(SquaredGain):
     def beyond(self, sign: int, level: fmpq) -> fmpq | None:
         """Return a frequency from which on sign * square <= level; None: none is found that is worth a search."""
         height, last = fmpq(1, 2**20), _TURNS / self._below.delayed[-1][0]
+        told = self._below_limit if sign > 0 and level >= self._limit(1) ** 2 else None
         with working_precision(_BITS):
             for _ in range(_DOUBLINGS):
+                if told is not None and height > told:
+                    return told
                 if height > last:
                     return None
                 if self._below_from(height, sign, level):
@@ -87,7 +108,7 @@ class EchoingGain(SquaredGain):
         return bool(most > 0) and bool(-most * most <= arb(level))
 
     def bound(self) -> tuple[fmpq, arb]:
-        """Return a frequency, the last one that is searched, and what the square does not exceed from there on."""
+        """Return the last frequency that is searched, and what the square does not exceed from there on."""
         height = _TURNS / self._below.delayed[-1][0]
         with working_precision(_BITS):
             above = size_from(self._above, height, self._degree) / self._lead

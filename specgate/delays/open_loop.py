@@ -5,7 +5,8 @@ phase crossings, and gain crossings of loops that hold a dead time inside) are i
 which there is none up to one beyond which none matters:
 
 - no gain crossing lies where |L| < 1 for good;
-- a dead time turns the phase without end, so that phase crossings have no last one. Beyond a frequency from which on
+- a dead time turns the phase without end, so that phase crossings have no last one (`endless` where the gain has not
+  zero as its limit). Beyond a frequency from which on
   k |L| < 1, no factor up to k destabilises: all crossings are listed up to where this holds for the k of the first one
   with |L| < 1, which is at least the margin. Those left out are all further away from -1.
 
@@ -22,6 +23,7 @@ from typing import TypeVar
 from flint import arb, fmpq
 
 from specgate.delays.axis import DelayedAxis, mirrored
+from specgate.delays.endless import End, end_of
 from specgate.delays.isolate import Crossing as Zero
 from specgate.delays.isolate import isolate
 from specgate.delays.magnitude import DelayedMagnitude
@@ -44,6 +46,9 @@ from specgate.terms.precision import working_precision
 
 _LEAST = fmpq(1, 2**40)
 """Gain below which no crossing is looked for any more."""
+
+_MOST_TURNS = 60
+"""Turns by the dead time within which a crossing is looked for where the gain falls to its limit."""
 
 _FAR = "how the loop behaves at high frequency, where its gain does not fall below one, is not decided"
 _TOUCHES = "whether the gain of the open loop passes one or only comes close to it was not told"
@@ -132,31 +137,45 @@ class DelayedLoop(SidedMargins):
         while True:
             end = self.axis.below_one_beyond(weakest)
             if end is None:
-                raise OutOfWork(_FAR)
+                return (*found, *self._endless(reached))
             found += self._phase_between(reached, end)
             reached = max(reached, end)
             ups = [one for one in found if one.rise > 0]
             if ups:
-                return (*found, *self._phase_between(reached, self._last_end(ups)))
+                last = self._last_end(ups)
+                further = self._endless(reached) if last is None else self._phase_between(reached, last)
+                return (*found, *further)
             weakest = weakest * 2
             if weakest * _LEAST > 1:
                 return tuple(found)
+
+    def _endless(self, reached: fmpq) -> list[PhaseCrossing]:
+        """Return the crossings from a frequency on that matter, where the gain does not tend to zero (`endless`)."""
+        end, delay = self._end, self.transfer.numerator.terms[0][0]
+        if end is None or delay == 0:
+            raise OutOfWork(_FAR)
+        found = self._phase_between(reached, end.since)
+        reached = max(reached, end.since)
+        for _ in range(_MOST_TURNS):
+            following = reached + 7 / delay
+            found += self._phase_between(reached, following)
+            if any(one.rise > 0 for one in found):
+                return found if end.direction < 0 else [*found, end.crossing]
+            reached = following
+        raise OutOfWork(_FAR)
 
     def _phase_over(self, over: Range | None) -> tuple[PhaseCrossing, ...]:
         """Return the crossings that matter, or all in a range. Raises OutOfWork."""
         if over is None:
             return self._phase
         known = _within(self._phase, over)
-        reached = max((one.frequency.enclose(64).upper().fmpq() for one in self._phase), default=fmpq(0))
+        placed = [one.frequency for one in self._phase if one.frequency.absent is None]
+        reached = max((frequency.enclose(64).upper().fmpq() for frequency in placed), default=fmpq(0))
         return (*known, *self._phase_between(max(over[0], reached), over[1]))
 
-    def _last_end(self, ups: Sequence[PhaseCrossing]) -> fmpq:
-        """Return the frequency beyond which no crossing is nearer to -1 than the nearest of some. Raises OutOfWork."""
-        nearest = min(one.factor.enclose(64).upper().fmpq() for one in ups)
-        end = self.axis.below_one_beyond(nearest)
-        if end is None:
-            raise OutOfWork(_FAR)
-        return end
+    def _last_end(self, ups: Sequence[PhaseCrossing]) -> fmpq | None:
+        """Return the frequency beyond which no crossing is nearer to -1 than the nearest of some; None: none found."""
+        return self.axis.below_one_beyond(min(one.factor.enclose(64).upper().fmpq() for one in ups))
 
     def _phase_between(self, start: fmpq, end: fmpq) -> list[PhaseCrossing]:
         if end <= start:
@@ -181,7 +200,16 @@ class DelayedLoop(SidedMargins):
             value = factor(bits)
         if not value > 0:
             return None
-        return PhaseCrossing(Answer.of_ball(zero.enclose), Answer.of_ball(factor), 1 if value > 1 else -1)
+        # A gain that is the same everywhere leaves the same factor everywhere, exactly.
+        level = self._end if self._end is not None and self._end.direction == 0 else None
+        left = Answer.of_ball(factor) if level is None else level.crossing.factor
+        return PhaseCrossing(Answer.of_ball(zero.enclose), left, 1 if value > 1 else -1)
+
+    @cached_property
+    def _end(self) -> End | None:
+        """How the gain ends where it tends to a limit that is not zero."""
+        rational = self._undelayed
+        return None if rational is None else end_of(rational.axis.numerator, rational.axis.denominator)
 
     def crossings(self, over: Range | None = None) -> tuple[Crossing, ...]:
         """Return all crossings up to where none matters any more, by frequency; none where they were not all found."""
@@ -308,7 +336,9 @@ def _within(crossings: Sequence[Kind], over: Range | None) -> tuple[Kind, ...]:
     return tuple(
         one
         for one in crossings
-        if order(one.frequency, low) in (None, 0, 1) and order(one.frequency, high) in (None, 0, -1)
+        if one.frequency.absent is None
+        and order(one.frequency, low) in (None, 0, 1)
+        and order(one.frequency, high) in (None, 0, -1)
     )
 
 

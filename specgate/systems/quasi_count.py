@@ -28,6 +28,8 @@ from specgate.terms.records import record
 MOST_CELLS = 20000
 """Cells beyond which a count is given up."""
 
+_AXIS = fmpq(0)
+
 
 @record
 class Cell:
@@ -117,7 +119,7 @@ def exceeding_beyond(first: fmpq_poly, terms: Sequence[tuple[fmpq, fmpq_poly]], 
     With weights wk the square of sum |dk| is at most (sum wk) (sum |dk|^2 / wk) (Cauchy): the difference is an exact
     polynomial in the square of the height. None where the polynomial does not exceed the terms at infinity.
     """
-    base = _squared(first, real)
+    base = squared(first, real)
     degree = first.degree()
     rest = [(_grown(real, delay), polynomial) for delay, polynomial in terms]
     if any(polynomial.degree() > degree for _, polynomial in rest):
@@ -129,14 +131,18 @@ def exceeding_beyond(first: fmpq_poly, terms: Sequence[tuple[fmpq, fmpq_poly]], 
     weights = [lead + spare for lead in leads]
     total = fmpq_poly()
     for weight, (factor, polynomial) in zip(weights, rest, strict=True):
-        total += _squared(polynomial, real) * (factor * factor / weight)
-    difference = base - total * sum(weights, fmpq(0))
-    roots = [root.value.real for root in certified_roots(difference, 64) if root.value.imag.is_zero()]
+        total += squared(polynomial, real) * (factor * factor / weight)
+    return beyond_last_root(base - total * sum(weights, fmpq(0)))
+
+
+def beyond_last_root(polynomial: fmpq_poly) -> fmpq:
+    """Return a height from which on a polynomial in its square has no root. Raises ValueError for zero."""
+    roots = [root.value.real for root in certified_roots(polynomial, 64) if root.value.imag.is_zero()]
     highest = max((_above(root) for root in roots if not root < 0), default=fmpq(0))
     if highest == 0:
         return fmpq(0)
     with working_precision(64):
-        # Strictly beyond the last root of the difference: there both sides are equal.
+        # Strictly beyond the last root.
         return _above(arb(highest).sqrt()) * fmpq(65, 64)
 
 
@@ -152,7 +158,7 @@ def _above(ball: arb) -> fmpq:
     return ball.upper().fmpq()
 
 
-def _squared(polynomial: fmpq_poly, real: fmpq) -> fmpq_poly:
+def squared(polynomial: fmpq_poly, real: fmpq = _AXIS) -> fmpq_poly:
     """Return |p(real + j w)|^2 as a polynomial in w^2."""
     shifted = polynomial(fmpq_poly([real, 1]))
     mirrored = shifted(fmpq_poly([0, -1]))

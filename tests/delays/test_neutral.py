@@ -133,3 +133,19 @@ def test_the_peak_of_the_sensitivity(name: str) -> None:
 
 def _mp(value: Fraction) -> mpmath.mpf:
     return mpmath.mpf(value.numerator) / value.denominator
+
+
+@pytest.mark.parametrize("name", LOOPS)
+def test_the_gain_margin_bounds_the_stable_factors(name: str) -> None:
+    """A little less gain than the margin says is stable, a little more is not: counted, not read off crossings."""
+    channel = opened(name)
+    factor = DelayedLoop(channel, stable=True).gain_margin().enclose(60).mid().fmpq()
+    for change, stable in ((fmpq(999_999, 10**6), True), (fmpq(1_000_001, 10**6), False)):
+        assert is_stable(channel.denominator + channel.numerator.scaled(factor * change)) is stable
+
+
+def test_a_margin_at_infinite_frequency() -> None:
+    """A gain of 1/2 with dead time: every crossing leaves a factor of two, and no less."""
+    loop = DelayedLoop(late([fmpq(1, 2)], [1], fmpq(1)), stable=True)
+    assert loop.gain_margin().exact == 2
+    assert abs(float(loop.phase_crossover_frequency().enclose(60)) - np.pi) < 1e-12
