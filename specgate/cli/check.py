@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 import sys
 
-from specgate.cli import status
+from specgate.cli import status, today
 from specgate.cli.terminal import colour, width
 
 
@@ -30,6 +30,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
         dest="colour",
         help="colour in text (default: auto, only on a terminal; NO_COLOR is respected)",
     )
+    today.add(parser)
     parser.epilog = status.EXPLAINED
 
 
@@ -41,7 +42,13 @@ def run(options: argparse.Namespace) -> int:
     if options.proof and options.format != "json":
         print("specgate: --proof goes with --format json: the text has no room for records", file=sys.stderr)
         return status.UNUSABLE
-    judged = judge(options.project, drawn=options.format == "json", proof=options.proof, formulas=options.formulas)
+    judged = judge(
+        options.project,
+        drawn=options.format == "json",
+        proof=options.proof,
+        formulas=options.formulas,
+        today=options.date,
+    )
     if options.format == "json":
         from specgate.exchange import json
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -29,16 +29,18 @@ class Judged:
     status: int
 
 
-def judge(project: str, *, drawn: bool = True, proof: bool = False, formulas: bool = False) -> Judged:
+def judge(
+    project: str, *, drawn: bool = True, proof: bool = False, formulas: bool = False, today: str | None = None
+) -> Judged:
     """Read, compute and judge the project at the path `project` (a folder or one YAML file).
 
     drawn, proof, formulas: whether what drawings show, how bounded results were obtained, and what every formula of the
-    catalogue gives, is computed too.
+    catalogue gives, is computed too. today: the day as which waivers are judged, else the date of the title block.
     """
     from specgate.intake.load import load
     from specgate.review.wanted import Wanted
 
-    return _judged(lambda: load(Path(project)), Wanted(drawn, proof, formulas))
+    return _judged(lambda: load(Path(project)), Wanted(drawn, proof, formulas), today)
 
 
 def judge_source(source: Source, entry: str) -> Judged:
@@ -49,11 +51,14 @@ def judge_source(source: Source, entry: str) -> Judged:
     return _judged(lambda: load_source(source, entry), Wanted())
 
 
-def _judged(read: Callable[[], Project | Problems], wanted: Wanted) -> Judged:
+def _judged(read: Callable[[], Project | Problems], wanted: Wanted, today: str | None = None) -> Judged:
     from specgate.intake.load import Problems
     from specgate.review.build import review, unusable
 
     with progress("reading and computing"):
         loaded = read()
-        result = unusable(loaded) if isinstance(loaded, Problems) else review(loaded, wanted)
+        if isinstance(loaded, Problems):
+            result: Review | Unusable = unusable(loaded)
+        else:
+            result = review(loaded if today is None else replace(loaded, today=today), wanted)
     return Judged(result, _STATUS[result.gate.outcome])

@@ -7,7 +7,7 @@ import sys
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from specgate.cli import status
+from specgate.cli import status, today
 from specgate.cli.terminal import colour, progress, width
 
 if TYPE_CHECKING:
@@ -20,6 +20,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "-o", "--output", metavar="FILE", required=True, help="the report: FILE.pdf to sign, FILE.html to read"
     )
+    today.add(parser)
     parser.epilog = status.EXPLAINED
 
 
@@ -44,7 +45,7 @@ def run(options: argparse.Namespace) -> int:
     from specgate.report import terminal
     from specgate.review.types import Unusable
 
-    judged = judge(options.project, formulas=True)
+    judged = judge(options.project, formulas=True, today=options.date)
     if isinstance(judged.review, Unusable):
         text = terminal.render(judged.review, width=width(sys.stderr), colour=colour("auto", sys.stderr))
         print(text, end="", file=sys.stderr)

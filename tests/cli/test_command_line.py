@@ -205,3 +205,20 @@ def test_formulas_are_put_to_every_response_where_that_is_asked_for() -> None:
     assert settling["failing"][0]["key"] == "separation"
     assert settling["error"]["relative"] == pytest.approx(-0.78, abs=5e-3)
     assert "formulas" not in json.loads(run("check", HELD, "--format", "json").stdout)["loops"]["gate_position"]
+
+
+EXPIRING = str(ROOT / "tests" / "rule_cases" / "waiver_insufficient" / "enough.yaml")
+
+
+@pytest.mark.parametrize(("day", "outcome"), [("2026-10-20", 0), ("2026-10-19", 1)])
+def test_waivers_are_judged_as_of_the_day_that_is_said(day: str, outcome: int) -> None:
+    done = run("check", EXPIRING, "--date", day)
+    assert done.returncode == outcome
+    assert ("waiver-not-in-force" in done.stdout) is (outcome == 1)
+
+
+@pytest.mark.parametrize("day", ["2026-13-03", "20261103", "today", ""])
+def test_what_is_no_day_is_refused(day: str) -> None:
+    done = run("check", EXPIRING, "--date", day)
+    assert done.returncode == 2
+    assert "2026-11-02" in done.stderr
