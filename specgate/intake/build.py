@@ -7,44 +7,46 @@ from typing import TypeVar
 
 from specgate.intake import evidence, policy, records
 from specgate.intake.collect import Collector
-from specgate.intake.context import Context, table
+from specgate.intake.context import Context, keys, table
 from specgate.intake.criteria import evaluation
 from specgate.intake.loops import loop, names_of
 from specgate.intake.merge import section
 from specgate.intake.nodes import Entry, Node, Table
 from specgate.intake.requirements import requirement
-from specgate.intake.subsystems import find_broken, parameters, ports_of, subsystem
-from specgate.project.types import InputFile, Kept, Loop, Project, Requirement
-from specgate.terms.units import UnitTable
+from specgate.intake.subsystems import parameters, ports_of, subsystem
+from specgate.project.types import InputFile, Kept, Project
 
 _Thing = TypeVar("_Thing")
 
 
 def build(
-    root: Table, inputs: tuple[InputFile, ...], collector: Collector, digests: Mapping[str, str]
-) -> Project | None:
-    """Build what can be built: a part in which something was reported is left out, with everything that needs it.
+    root: Table,
+    inputs: tuple[InputFile, ...],
+    collector: Collector,
+    digests: Mapping[str, str],
+    *,
+    names_known: bool = True,
+) -> Project:
+    """Build what can be read: parts in which something was reported are left out, or marked as unread.
 
-    digests: of the files of records. None if not even the units are known.
+    digests: of the files of records. names_known: whether all names are there that the project declares, so that an
+    unknown one is unknown indeed.
     """
     title = table(root.get("project")) or Table(root.spot, {})
-    units = policy.own_units(title, collector)
-    if units is None:
-        return None
-    context = _context(root, title, units, collector)
-    context.digests = digests
+    context = _context(root, title, collector)
+    context.digests, context.names_known = digests, names_known
+    units = context.units
     context.laid = records.masks(root.get("masks"), context)
     shared = parameters(root.get("parameters"), None, context)
     subsystems = _each(root, "subsystem", lambda entry: subsystem(entry, context), collector)
-    built = frozenset(subsystems)
-    loops = _each(root, "loop", lambda entry: loop(entry, built, context), collector)
+    loops = _each(root, "loop", lambda entry: loop(entry, context), collector)
     requirements = _each(root, "requirement", lambda entry: requirement(entry, context), collector)
     return Project(
         info=policy.info(title, context),
         parameters=shared,
         subsystems=subsystems,
         loops=loops,
-        requirements=_about(requirements, loops),
+        requirements=requirements,
         gate=policy.gate(root.get("gate")),
         inputs=inputs,
         units=units,
@@ -58,6 +60,7 @@ def build(
         evaluate=evaluation(root.get("evaluate")) or "nominal",
         kept=_kept(root, context),
         units_read=tuple(sorted(context.units_read)),
+        partial=collector.failed or context.holes > 0,
     )
 
 
@@ -76,16 +79,17 @@ def is_whole(project: Project, root: Table) -> bool:
     return all(len(things) == len(section(root, name)) for name, things in found.items())
 
 
-def _context(root: Table, title: Table, units: UnitTable, collector: Collector) -> Context:
+def _context(root: Table, title: Table, collector: Collector) -> Context:
     """Collect the names that the project declares."""
+    units, lost = policy.own_units(title, collector)
     subsystems = section(root, "subsystems")
-    own = {name: _parameter_nodes(entry.value) for name, entry in subsystems.items()}
     shared = section(root, "parameters")
-    context = Context(
+    return Context(
         collector=collector,
         units=units,
+        lost_units=lost,
         shared=frozenset(shared),
-        own={name: frozenset(nodes) for name, nodes in own.items()},
+        own={name: _parameter_names(entry.value) for name, entry in subsystems.items()},
         ports={name: ports_of(entry.value) for name, entry in subsystems.items()},
         loops={name: names_of(entry.value) for name, entry in section(root, "loops").items()},
         masks=frozenset(section(root, "masks")),
@@ -93,42 +97,24 @@ def _context(root: Table, title: Table, units: UnitTable, collector: Collector) 
         evidence=frozenset(section(root, "evidence")),
         stages=policy.stages(title),
     )
-    declared: dict[str, tuple[Node, str | None]] = {name: (entry.value, None) for name, entry in shared.items()}
-    for block, nodes in own.items():
-        declared |= {f"{block}.{name}": (node, block) for name, node in nodes.items()}
-    find_broken(declared, context)
-    return context
 
 
-def _parameter_nodes(node: Node) -> dict[str, Node]:
+def _parameter_names(node: Node) -> frozenset[str]:
     body = table(node)
-    nodes = table(body.get("parameters")) if body is not None else None
-    return {} if nodes is None else {key.value: value for key, value in nodes.items()}
+    return frozenset(keys(body.get("parameters"))) if body is not None else frozenset()
 
 
 def _each(root: Table, kind: str, read: Callable[[Entry], _Thing | None], collector: Collector) -> dict[str, _Thing]:
-    """Read every entry of a section, leaving out those in which something was reported.
-
-    What is not of the right shape is read all the same, for the names and units in it; a key too many does no harm.
-    """
+    """Read every entry of a section as far as it can be read."""
     found: dict[str, _Thing] = {}
     for key, entry in section(root, f"{kind}s").items():
         if collector.full:
             break
         with collector.about(**{kind: key}):
             thing = read(entry)
-        if thing is not None and (kind, key) not in collector.misshapen:
+        if thing is not None:
             found[key] = thing
     return found
-
-
-def _about(requirements: dict[str, Requirement], loops: dict[str, Loop]) -> dict[str, Requirement]:
-    """Leave out the requirements on a loop that could not be built."""
-    return {
-        name: found
-        for name, found in requirements.items()
-        if all(criterion.subject.loop in loops for criterion in found.criteria)
-    }
 
 
 def _kept(root: Table, context: Context) -> dict[str, tuple[Kept, ...]]:

@@ -6,6 +6,7 @@ from collections.abc import Iterable, Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 
+from specgate.intake.nodes import Spot
 from specgate.project.types import InputFile
 from specgate.terms.findings import Finding, Related, in_order, with_use
 from specgate.terms.names import nearest
@@ -33,8 +34,10 @@ class Collector:
 
     findings: list[Finding] = field(default_factory=list)
     topic: dict[str, str] = field(default_factory=dict)
-    misshapen: set[tuple[str, str]] = field(default_factory=set)
-    """Kind and name of the subsystems, loops and requirements that are not of the shape that others rely on."""
+    misshapen: set[tuple[str | int, ...]] = field(default_factory=set)
+    """Paths (`loops`, name, `responses` …) of what is not of the shape that others rely on, and of what holds it."""
+    unreadable: set[Spot] = field(default_factory=set)
+    """Where values stand that were reported, or that a comma inside braces has cut."""
     comparisons: int = MOST_COMPARISONS
 
     def error(self, rule: str, message: str, place: Place, *related: Related, **about: str) -> None:
@@ -50,6 +53,10 @@ class Collector:
             yield
         finally:
             self.topic = before
+
+    def shapely(self, *path: str | int) -> bool:
+        """Whether what stands at a path is of the shape that others rely on."""
+        return path not in self.misshapen
 
     def add(self, finding: Finding) -> None:
         """Add a finding, unless there are far too many already."""

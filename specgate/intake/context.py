@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 
@@ -12,6 +13,8 @@ from specgate.terms.expressions import Expression, ExpressionError, parse
 from specgate.terms.places import Place
 from specgate.terms.records import record
 from specgate.terms.units import Unit, UnitError, UnitTable
+
+_WORD = re.compile(r"[A-Za-z_][A-Za-z0-9_]*", re.ASCII)
 
 
 @record
@@ -34,10 +37,10 @@ class LoopNames:
 
 @dataclass
 class Context:
-    """Names by section, whether or not what stands behind them could be built; `broken` are those that could not.
+    """Names by section, whether or not what stands behind them could be read.
 
-    own: parameter names of each subsystem. A name that is broken has been reported: whoever meets it says nothing.
-    laid: the masks that could be read. digests: of the files of records, by path.
+    own: parameter names of each subsystem. laid: the masks that could be read. digests: of the files of records, by
+    path.
     """
 
     collector: Collector
@@ -52,7 +55,12 @@ class Context:
     evidence: frozenset[str] = frozenset()
     stages: tuple[str, ...] = ()
     digests: Mapping[str, str] = field(default_factory=dict)
-    broken: set[str] = field(default_factory=set)
+    lost_units: frozenset[str] = frozenset()
+    """Units of the project's own that could not be read: a text with one in it is not reported again."""
+    names_known: bool = True
+    """Whether all names are known that the project declares: no file and no section of it is unreadable."""
+    holes: int = 0
+    """Parts that were left out or that could not be read, each of which has been reported."""
     units_read: set[str] = field(default_factory=set)
     parsed: dict[str, Expression | ExpressionError] = field(default_factory=dict)
     """Every text that was read as an expression, with what came of it."""
@@ -72,20 +80,31 @@ class Context:
 
     def unit(self, node: Node | None) -> Unit | None:
         """Read the unit at a node (`m/s`, or 1 for none)."""
-        if not isinstance(node, Text | Number):
+        if not isinstance(node, Text | Number) or node.spot in self.collector.unreadable:
             return None
         text = node.value if isinstance(node, Text) else node.text
         try:
             unit = self.units.parse(text)
         except UnitError as error:
-            self.collector.error("unit-unknown", error.message, node.spot.place)
+            if not self.loses(text):
+                self.collector.error("unit-unknown", error.message, node.spot.place)
             return None
         if text != "1":
             self.units_read.add(text)
         return unit
 
+    def loses(self, written: str) -> bool:
+        """Whether a text cannot be read because of a unit that was reported where it is defined."""
+        return not self.lost_units.isdisjoint(_WORD.findall(written))
+
     def unknown(self, what: str, name: str, known: Iterable[str], place: Place, owner: str | None = None) -> None:
-        """Report a name that nothing in the project (or nothing of its `owner`) has."""
+        """Report a name that nothing in the project (or nothing of its `owner`) has.
+
+        Where a part of the project is unreadable that may declare it, nothing is said.
+        """
+        self.holes += 1
+        if not self.names_known:
+            return
         names = tuple(known)
         ending_in = "." + name
         own = (candidate for candidate in names if candidate.endswith(ending_in) or candidate == name)

@@ -11,10 +11,11 @@ from flint import fmpq
 from specgate.approximations.table import APPROXIMATIONS, stray
 from specgate.intake.context import Context, items, table, text, texts
 from specgate.intake.nodes import Items, Node, Number, Spot, Table, Text, Truth, as_kept
-from specgate.intake.values import Reader, complete
+from specgate.intake.values import Reader
 from specgate.measures.table import MEASURES
 from specgate.project.percent import relative_to_change
 from specgate.project.types import Basis, Claim, Criterion, Limit, MaskDefinition, Subject, Value
+from specgate.terms.expressions import is_read
 
 _ARGUMENTS = ("band", "from", "to", "time", "frequency")
 LimitKind = Literal["at_most", "at_least", "between", "within", "equals"]
@@ -30,57 +31,47 @@ _CLAIM = re.compile(r"[-+]?(?P<whole>[0-9]*)(?:\.(?P<part>[0-9]*))?(?:[eE](?P<po
 
 
 def criterion(node: Node, place: Spot, context: Context) -> Criterion | None:
-    """Read one criterion. None if something in it was reported."""
+    """Read one criterion as far as it can be read; None where not even subject and measure are known."""
     body = table(node)
     if body is None:
         return None
     reader = Reader(context)
     subject = _subject(body, context)
     measure = text(body.get("measure"))
-    limit = _limit(body, reader)
-    arguments = {name: reader.value(body.get(name)) for name in _ARGUMENTS if body.get(name) is not None}
-    given = {name: value for name, value in arguments.items() if value is not None}
+    limit = _limit(body, place, reader)
+    arguments = {name: reader.value(value) for name in _ARGUMENTS if (value := body.get(name)) is not None}
     kept = _kept(body, reader)
-    written_over = body.get("over")
-    over = reader.pair(written_over)
+    over = reader.pair(body.get("over"))
     grounds = body.get("basis")
     rests_on = basis(grounds, context) if grounds is not None else None
-    if measure is None or measure not in MEASURES or subject is None or limit is None or kept is None:
-        return None
-    if len(given) < len(arguments) or (grounds is not None and rests_on is None):
-        return None
-    if written_over is not None and over is None:
-        return None
-    laid = body.get("mask")
-    mask = _mask(laid, context)
-    if laid is not None and mask is None:
+    mask = _mask(body.get("mask"), context)
+    _check_rising(arguments, place, context)
+    if measure is None or measure not in MEASURES or subject is None:
         return None
     if rests_on is not None and not estimates_one(rests_on, (measure,), context):
-        return None
-    if not _rising(given, place, context):
-        return None
+        rests_on = None
     return Criterion(
-        subject, measure, given, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept, over, mask
+        subject, measure, arguments, limit, place.place, rests_on, evaluation(body.get("evaluate")), kept, over, mask
     )
 
 
-def _rising(arguments: Mapping[str, Value], place: Spot, context: Context) -> bool:
+def _check_rising(arguments: Mapping[str, Value], place: Spot, context: Context) -> None:
     """See that `from` lies below `to`, where either may be left out."""
-    if not {"from", "to"} & set(arguments):
-        return True
-    low, high = (relative_to_change(arguments[name]) if name in arguments else None for name in ("from", "to"))
+    ends = {name: arguments[name] for name in ("from", "to") if name in arguments}
+    if not ends or not all(is_read(value.expression) for value in ends.values()):
+        return
+    low, high = (relative_to_change(ends[name]) if name in ends else None for name in ("from", "to"))
     low, high = fmpq(1, 10) if low is None else low, fmpq(9, 10) if high is None else high
-    if low < high:
-        return True
-    message = "`from` has to be less than `to`, which are 10 % and 90 % where they are left out"
-    context.collector.error("schema-violation", message, place.place)
-    return False
+    if low >= high:
+        message = "`from` has to be less than `to`, which are 10 % and 90 % where they are left out"
+        context.collector.error("schema-violation", message, place.place)
 
 
 # --- subject -------------------------------------------------------------------------------------------------
 
 
 def _subject(node: Table, context: Context) -> Subject | None:
+    """Read what a criterion is about; a name that is not known is reported, and kept."""
     kinds: tuple[Literal["response", "break"], ...] = ("response", "break")
     for kind in kinds:
         written = node.get(kind)
@@ -92,74 +83,81 @@ def _subject(node: Table, context: Context) -> Subject | None:
     name = written.value.strip()
     if name not in context.loops:
         context.unknown("loop", name, context.loops, written.spot.place)
-        return None
     return Subject("loop", name, None, written.spot.place)
 
 
-def _part_of_loop(kind: Literal["response", "break"], node: Text, context: Context) -> Subject | None:
+def _part_of_loop(kind: Literal["response", "break"], node: Text, context: Context) -> Subject:
     loop, dot, name = node.value.strip().partition(".")
-    if not dot:
-        return None  # the schema wants `loop.name`
+    if dot:  # else the schema says that `loop.name` is wanted
+        _check_part(kind, loop, name, node, context)
+    return Subject(kind, loop, name, node.spot.place)
+
+
+def _check_part(kind: Literal["response", "break"], loop: str, name: str, node: Text, context: Context) -> None:
     names = context.loops.get(loop)
     if names is None:
         context.unknown("loop", loop, context.loops, node.spot.place)
-        return None
+        return
     wanted, other = names.responses, names.breaks
     if kind == "break":
         wanted, other = other, wanted
     if name in wanted:
-        return Subject(kind, loop, name, node.spot.place)
+        return
     if name in other:
         right = "break" if kind == "response" else "response"
         message = f"`{loop}.{name}` is a {right}: write `{right}: {loop}.{name}`"
         context.collector.error("name-unknown", message, node.spot.place)
     else:
         context.unknown(kind, name, wanted, node.spot.place, loop)
-    return None
 
 
 # --- limit ---------------------------------------------------------------------------------------------------
 
 
-def _limit(node: Table, reader: Reader) -> Limit | None:
+def _limit(node: Table, place: Spot, reader: Reader) -> Limit:
+    """Read the limit; one that is missing could not be read."""
     given = next((kind for kind in LIMITS if kind in node.entries), None)
-    return None if given is None else limit_of(given, node, reader)
+    return Limit("at_most", (reader.unread(node),), place.place) if given is None else limit_of(given, node, reader)
 
 
-def limit_of(kind: LimitKind, node: Table, reader: Reader) -> Limit | None:
-    """Read the limit of a kind in a table that has one. None if something in it was reported."""
+def limit_of(kind: LimitKind, node: Table, reader: Reader) -> Limit:
+    """Read the limit of a kind in a table that has one; one of the wrong shape could not be read."""
     entry = node.entries[kind]
     where = entry.key.spot.place
     if kind == "equals" and not isinstance(entry.value, Number):
-        return Limit("equals", (), where, truth=entry.value.value) if isinstance(entry.value, Truth) else None
-    values = complete([reader.value(part) for part in _limit_nodes(kind, node, entry.value)])
-    return Limit(kind, values, where) if values else None
+        truth = entry.value.value if isinstance(entry.value, Truth) else None
+        return Limit("equals", () if truth is not None else (reader.unread(node),), where, truth=truth)
+    parts = _limit_nodes(kind, node, entry.value)
+    return Limit(kind, tuple(reader.unread(node) if part is None else reader.value(part) for part in parts), where)
 
 
 def _limit_nodes(kind: str, node: Table, value: Node) -> Sequence[Node | None]:
     if kind == "between":
-        return items(value) if isinstance(value, Items) else ()
+        return items(value) if isinstance(value, Items) and len(value.nodes) == 2 else (None, None)
     return (value, node.get("of")) if kind == "within" else (value,)
 
 
 def _mask(node: Node | None, context: Context) -> MaskDefinition | None:
     """Return the mask that is named; None where none is, where there is none, or where it was reported."""
     name = text(node)
-    if name is not None and name.strip() not in context.masks and node is not None:
+    if name is None or node is None:
+        return None
+    if name.strip() not in context.masks:
         context.unknown("mask", name.strip(), sorted(context.masks), node.spot.place)
-    return None if name is None else context.laid.get(name.strip())
+    mask = context.laid.get(name.strip())
+    context.holes += mask is None
+    return mask
 
 
 # --- what is kept ----------------------------------------------------------------------------------------------
 
 
-def _kept(node: Table, reader: Reader) -> dict[str, object] | None:
+def _kept(node: Table, reader: Reader) -> dict[str, object]:
     """Keep what is answered later; names and quantities in it must be right now."""
     evaluate = table(node.get("evaluate"))
     for case in items(node.get("cases")):
         if isinstance(case, Text) and case.value != "all" and case.value not in reader.context.cases:
             reader.context.unknown("case", case.value, sorted(reader.context.cases), case.spot.place)
-            return None
     kept = {key: as_kept(value) for key in _KEPT if (value := node.get(key)) is not None}
     return {**kept, "evaluate": as_kept(evaluate)} if evaluate is not None else kept
 
@@ -173,7 +171,7 @@ def evaluation(node: Node | None) -> str | None:
 
 
 def basis(node: Node, context: Context) -> Basis | None:
-    """Read a basis. None if something in it was reported."""
+    """Read a basis; None where it is of no kind. A name in it that is not known is reported, and left out."""
     place = node.spot.place
     if isinstance(node, Text):
         return Basis("computed", place) if node.value == "computed" else None
@@ -185,17 +183,14 @@ def basis(node: Node, context: Context) -> Basis | None:
         name = text(evidence) or ""
         if name not in context.evidence:
             context.unknown("evidence", name, sorted(context.evidence), evidence.spot.place)
-            return None
         return Basis("evidence", place, evidence=name)
     chain, claimed = texts(body.get("approximation")), body.get("claimed")
     claim = _claim(claimed, context) if claimed is not None else None
-    if not chain or (claimed is not None and claim is None):
+    if not chain:
         return None
     chosen = body.get("variant")
-    variant = text(chosen)
-    if chosen is not None and not (isinstance(chosen, Text) and _has_variant(chain[-1], chosen, context)):
-        return None
-    return Basis("approximation", place, chain, claim, variant=None if variant is None else variant.strip())
+    named = isinstance(chosen, Text) and _has_variant(chain[-1], chosen, context)
+    return Basis("approximation", place, chain, claim, variant=(text(chosen) or "").strip() if named else None)
 
 
 def _has_variant(name: str, chosen: Text, context: Context) -> bool:
@@ -214,8 +209,8 @@ def _has_variant(name: str, chosen: Text, context: Context) -> bool:
 
 def _claim(node: Node, context: Context) -> Claim | None:
     value = Reader(context).value(node)
-    match = _CLAIM.fullmatch(value.as_written) if value is not None else None
-    if value is None:
+    match = _CLAIM.fullmatch(value.as_written)
+    if not is_read(value.expression):
         return None
     if match is None or not (match["whole"] or match["part"]):
         message = "a claimed value is the number that was promised, with its unit, such as `0.71 s`"
@@ -228,6 +223,11 @@ def estimates_one(rests_on: Basis, measures: Sequence[str], context: Context) ->
     """See that a basis estimates exactly one of the measures; approximations answered later are taken as they are."""
     if rests_on.kind != "approximation" or rests_on.chain[-1] not in APPROXIMATIONS:
         return True
+    twice = next((name for place, name in enumerate(rests_on.chain) if name in rests_on.chain[:place]), None)
+    if twice is not None:
+        message = f"`{twice}` stands twice in this chain: once is enough"
+        context.collector.error("schema-violation", message, rests_on.place)
+        return False
     loose = stray(rests_on.chain)
     if loose is not None:
         message = (

@@ -49,11 +49,6 @@ def _record(key: Text, body: Table | None, context: Context) -> Evidence | None:
     kind, reader = text(body.get("kind")) if body is not None else None, Reader(context)
     if body is None or kind is None:
         return None
-    written, spread = body.get("results"), body.get("expanded_uncertainty")
-    results = reader.several(written) if written is not None else ()
-    uncertainty = reader.value(spread) if spread is not None else None
-    if results is None or (spread is not None and uncertainty is None):
-        return None
     return Evidence(
         id=key.value,
         kind=kind,
@@ -62,9 +57,9 @@ def _record(key: Text, body: Table | None, context: Context) -> Evidence | None:
         title=text(body.get("title")),
         date=text(body.get("date")),
         design_revision=text(body.get("design_revision")),
-        results=results,
+        results=reader.several(body.get("results")),
         outcome=cast('Literal["meets", "does_not_meet"] | None', text(body.get("outcome"))),
-        expanded_uncertainty=uncertainty,
+        expanded_uncertainty=reader.optional(body.get("expanded_uncertainty")),
         aim=_aim(body),
         file=_file(body, context),
         source=text(body.get("source")),
@@ -88,9 +83,6 @@ def _waiver(key: Text, body: Table | None, context: Context) -> Waiver | None:
     if body is None or accepts is None:
         return None
     reader = Reader(context)
-    limits = [limit_of(kind, accepts, reader) for kind in LIMITS if kind in accepts.entries]
-    if None in limits:
-        return None
     return Waiver(
         id=key.value,
         kind=cast('Literal["waiver", "deviation"]', text(body.get("kind"))),
@@ -99,7 +91,7 @@ def _waiver(key: Text, body: Table | None, context: Context) -> Waiver | None:
         approved_by=text(body.get("approved_by")) or "",
         approved_on=text(body.get("approved_on")) or "",
         place=key.spot.place,
-        limits=tuple(limit for limit in limits if limit is not None),
+        limits=tuple(limit_of(kind, accepts, reader) for kind in LIMITS if kind in accepts.entries),
         standing=cast('Literal["out_of_range", "inconclusive"] | None', text(accepts.get("standing"))),
         outcome=text(accepts.get("outcome")) == "does_not_meet",
         expires=_expiry(body),

@@ -8,7 +8,7 @@ from specgate.intake import evidence, merge, shape
 from specgate.intake.build import build, is_whole
 from specgate.intake.collect import Collector, Problems
 from specgate.intake.gather import Gathered, gather
-from specgate.intake.nodes import Node, Table
+from specgate.intake.nodes import Broken, Node, Table
 from specgate.intake.templates import expand
 from specgate.project import dimensions
 from specgate.project.types import Project
@@ -43,22 +43,24 @@ def load_source(source: Source, entry: str = ENTRY) -> Project | Problems:
 def _built(gathered: Gathered, collector: Collector, source: Source) -> Project | None:
     """Build the project as far as its files allow, and report what is wrong."""
     roots = _roots(gathered, collector)
-    # a section that cannot be read may declare any name: to call the others unknown would mislead
-    if not gathered.complete or not merge.readable(roots):
+    if not any(isinstance(root, Table) for root in roots) or collector.full:
         return None
+    # a section that cannot be read may declare any name: to call the others unknown would mislead
+    whole = gathered.complete and merge.readable(roots)
     root = merge.merged(roots, collector)
-    shape.check(root, collector, "whole_project")
+    if whole:
+        shape.check(root, collector, "whole_project")
     merge.check_namespace(root, collector)
     digests = evidence.digests(root.get("evidence"), source)
     gathered.digests |= digests
-    project = build(root, gathered.inputs, collector, digests)
-    if project is None or collector.full:
+    project = build(root, gathered.inputs, collector, digests, names_known=whole)
+    if collector.full:
         return None
     for finding in dimensions.check(project):
         collector.add(finding)
     if collector.failed:
         return None
-    if not is_whole(project, root):
+    if project.partial or not is_whole(project, root):
         raise AssertionError("a part of the project was left out without a word")
     return dimensions.settled(project)
 
@@ -66,9 +68,10 @@ def _built(gathered: Gathered, collector: Collector, source: Source) -> Project 
 def _roots(gathered: Gathered, collector: Collector) -> list[Node]:
     """Return the trees of the files with templates filled in, their shapes checked."""
     trees = [file.root for file in gathered.files]
+    known = gathered.complete and not any(isinstance(tree, Broken) for tree in trees)
     tables = [Table(tree.spot, {"templates": tree.entries["templates"]}) for tree in _with_templates(trees)]
     templates = merge.section(merge.merged(tables, Collector()), "templates") if tables else {}
-    roots = [expand(tree, templates, collector) for tree in trees]
+    roots = [expand(tree, templates, collector, all_known=known) for tree in trees]
     for root in roots:
         shape.check(root, collector)
     return roots

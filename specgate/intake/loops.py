@@ -10,15 +10,11 @@ from specgate.intake.signals import signal_expression
 from specgate.intake.values import Reader
 from specgate.project.types import (
     Break,
-    Call,
     Excitation,
     Loop,
     LoopInput,
     Response,
-    Scaled,
     Signal,
-    SignalExpression,
-    Sum,
     Value,
 )
 from specgate.terms.findings import Related
@@ -33,17 +29,18 @@ def names_of(node: Node) -> LoopNames:
     return LoopNames(inputs, signals, responses, breaks)
 
 
-def loop(entry: Entry, built: frozenset[str], context: Context) -> Loop | None:
-    """Read one loop. None if something in it was reported, or a block that it uses is broken."""
+def loop(entry: Entry, context: Context) -> Loop | None:
+    """Read one loop as far as it can be read; None where it is no table."""
     node = table(entry.value)
     if node is None:
         return None
-    reading = _Loop(entry.key.value, node, built, context)
+    reading = _Loop(entry.key.value, node, context)
     inputs, signals = dict(reading.inputs()), dict(reading.signals())
     breaks, responses = dict(reading.breaks()), dict(reading.responses())
     rest = dict(reading.rest())
     reading.distinct()
-    reading.blocks(signals)
+    for name in inputs.keys() & signals.keys():  # which of the two is meant, nobody can tell
+        del inputs[name], signals[name]
     sections: dict[str, Mapping[str, object]] = {
         "inputs": inputs,
         "signals": signals,
@@ -51,9 +48,7 @@ def loop(entry: Entry, built: frozenset[str], context: Context) -> Loop | None:
         "responses": responses,
         "rest": rest,
     }
-    whole = all(len(found) == len(keys(node.get(key))) for key, found in sections.items())
-    if not whole or not inputs or not signals or reading.broken:
-        return None
+    context.holes += any(len(found) < len(keys(node.get(key))) for key, found in sections.items())
     return Loop(
         entry.key.value, inputs, signals, responses, breaks, rest, entry.key.spot.place, text(node.get("title"))
     )
@@ -62,11 +57,10 @@ def loop(entry: Entry, built: frozenset[str], context: Context) -> Loop | None:
 class _Loop:
     """What is read of one loop; each part leaves out what was reported."""
 
-    def __init__(self, name: str, node: Table, built: frozenset[str], context: Context) -> None:
-        self.name, self.node, self.built, self.context = name, node, built, context
+    def __init__(self, name: str, node: Table, context: Context) -> None:
+        self.name, self.node, self.context = name, node, context
         self.names = names_of(node)
         self.reader = Reader(context)
-        self.broken = False
 
     def inputs(self) -> Iterator[tuple[str, LoopInput]]:
         for key, value in entries(self.node.get("inputs")):
@@ -87,9 +81,8 @@ class _Loop:
 
     def rest(self) -> Iterator[tuple[str, Value]]:
         for key, node in entries(self.node.get("rest")):
-            known = self._known("signal or input", key, (*self.names.signals, *self.names.inputs))
             value = self.reader.value(node)
-            if known and value is not None:
+            if self._known("signal or input", key, (*self.names.signals, *self.names.inputs)):
                 yield key.value, value
 
     def breaks(self) -> Iterator[tuple[str, Break]]:
@@ -112,29 +105,29 @@ class _Loop:
                 yield key.value, found
 
     def _response(self, key: Text, node: Table) -> Response | None:
+        """Read a response; names in it that the loop does not have are reported, and kept."""
         several = node.get("inputs")
         bodies = [node] if several is None else [table(item) or Table(item.spot, {}) for item in items(several)]
-        excitations = [self._excitation(body, key) for body in bodies]
-        given = tuple(excitation for excitation in excitations if excitation is not None)
+        excitations = [self._excitation(body) for body in bodies]
         to, reference = node.get("to"), node.get("reference")
-        good = self._known("signal", to, self.names.signals)
+        self._known("signal", to, self.names.signals)
         if isinstance(reference, Number) and reference.exact != 0:
             self.context.collector.error("schema-violation", "a reference is a signal, or 0", reference.spot.place)
-            good = False
-        good = self._known("signal or input", reference, (*self.names.inputs, *self.names.signals)) and good
-        if not good or not isinstance(to, Text) or len(given) < len(excitations) or not given:
+            reference = None
+        self._known("signal or input", reference, (*self.names.inputs, *self.names.signals))
+        given = tuple(excitation for excitation in excitations if excitation is not None)
+        shapely = self.context.collector.shapely("loops", self.name, "responses", key.value)
+        if not shapely or not isinstance(to, Text) or len(given) < len(excitations) or not given:
             return None
         return Response(key.value, given, to.value.strip(), key.spot.place, text(reference), text(node.get("title")))
 
-    def _excitation(self, node: Table, key: Text) -> Excitation | None:
+    def _excitation(self, node: Table) -> Excitation | None:
         source, kind = node.get("from"), text(node.get("input"))
-        good = self._known("input", source, self.names.inputs)
-        written = {name: node.get(name) for name in _QUANTITIES if node.get(name) is not None}
-        quantities = {name: self.reader.value(value) for name, value in written.items()}
-        given = {name: value for name, value in quantities.items() if value is not None}
+        self._known("input", source, self.names.inputs)
+        given = {name: self.reader.value(value) for name in _QUANTITIES if (value := node.get(name)) is not None}
         count_from = text(node.get("count_from"))
         options = {"count_from": count_from} if count_from is not None else {}
-        if not good or kind is None or not isinstance(source, Text) or len(given) < len(written):
+        if kind is None or not isinstance(source, Text):
             return None
         return Excitation(source.value.strip(), kind, given, options, source.spot.place)
 
@@ -159,24 +152,4 @@ class _Loop:
                 self._duplicate(message, here.entries[name].key, related)
 
     def _duplicate(self, message: str, key: Text, related: Related) -> None:
-        self.broken = True
         self.context.collector.error("id-duplicate", message, key.spot.place, related)
-
-    def blocks(self, signals: dict[str, Signal]) -> None:
-        """See whether a block that is used could not be built; that has been reported."""
-        used = {call.subsystem for signal in signals.values() for call in _calls(signal.expression)}
-        self.broken = self.broken or not used <= self.built
-
-
-def _calls(expression: SignalExpression) -> Iterator[Call]:
-    """Give all calls in an expression, the outer ones first."""
-    match expression:
-        case Call(arguments=arguments):
-            yield expression
-            for argument in arguments.values():
-                yield from _calls(argument)
-        case Scaled(operand=operand):
-            yield from _calls(operand)
-        case Sum(terms=terms):
-            for term in terms:
-                yield from _calls(term)

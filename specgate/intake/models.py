@@ -37,69 +37,45 @@ PID_TERMS = (
 
 
 def model(node: Table, reader: Reader, ports: Ports) -> Model | None:
-    """Read the model; dead time alone stands beside a gain of 1. None if something in it was reported."""
+    """Read the model; dead time alone stands beside a gain of 1. None if it is in no form."""
     for key, read in _FORMS.items():
-        form = node.get(key)
-        if form is not None:
+        if node.get(key) is not None:
             return read(node, reader, ports)
     alone = node.get("dead_time")
     return FactoredModel(gain=whole(1, alone)) if alone is not None else None
 
 
-def _polynomials(node: Table, reader: Reader, ports: Ports) -> PolynomialModel | None:
-    numerator, denominator = reader.several(node.get("numerator")), reader.several(node.get("denominator"))
-    return PolynomialModel(numerator, denominator) if numerator and denominator else None
+def _polynomials(node: Table, reader: Reader, ports: Ports) -> PolynomialModel:
+    return PolynomialModel(reader.several(node.get("numerator")), reader.several(node.get("denominator")))
 
 
-def _equation(node: Table, reader: Reader, ports: Ports) -> PolynomialModel | None:
+def _equation(node: Table, reader: Reader, ports: Ports) -> PolynomialModel:
     equation = table(node.get("equation")) or Table(node.spot, {})
     numerator, denominator = reader.several(equation.get("input")), reader.several(equation.get("output"))
-    return PolynomialModel(numerator, denominator, "equation") if numerator and denominator else None
+    return PolynomialModel(numerator, denominator, "equation")
 
 
-def _factored(node: Table, reader: Reader, ports: Ports) -> FactoredModel | None:
-    gain = reader.value(node.get("gain"))
-    lags, leads = (reader.several(node.get(key)) if node.get(key) else () for key in ("lags", "leads"))
+def _factored(node: Table, reader: Reader, ports: Ports) -> FactoredModel:
+    lags, leads = (reader.several(node.get(key)) for key in ("lags", "leads"))
     pairs, zero_pairs = (_pairs(node.get(key), reader) for key in ("pairs", "zero_pairs"))
-    if gain is None or lags is None or leads is None or pairs is None or zero_pairs is None:
-        return None
     integrators, differentiators = _whole(node.get("integrators")), _whole(node.get("differentiators"))
-    if integrators is None or differentiators is None:
-        return None
-    return FactoredModel(gain, integrators, differentiators, lags, leads, pairs, zero_pairs)
+    return FactoredModel(reader.under(node, "gain"), integrators, differentiators, lags, leads, pairs, zero_pairs)
 
 
-def _pairs(node: Node | None, reader: Reader) -> tuple[Pair, ...] | None:
-    found: list[Pair] = []
-    for item in items(node):
-        pair = table(item) or Table(item.spot, {})
-        frequency, damping = reader.value(pair.get("natural_frequency")), reader.value(pair.get("damping"))
-        if frequency is None or damping is None:
-            return None
-        found.append(Pair(frequency, damping))
-    return tuple(found)
+def _pairs(node: Node | None, reader: Reader) -> tuple[Pair, ...]:
+    tables = [table(item) or Table(item.spot, {}) for item in items(node)]
+    return tuple(Pair(reader.under(pair, "natural_frequency"), reader.under(pair, "damping")) for pair in tables)
 
 
-def _poles_and_zeros(node: Table, reader: Reader, ports: Ports) -> PoleZeroModel | None:
-    poles, zeros = _roots(node.get("poles"), reader), _roots(node.get("zeros"), reader)
-    leading = reader.value(node.get("leading_coefficient"))
-    if poles is None or zeros is None or leading is None:
-        return None
-    return PoleZeroModel(poles, zeros, leading)
+def _poles_and_zeros(node: Table, reader: Reader, ports: Ports) -> PoleZeroModel:
+    poles, zeros = (tuple(_root(item, reader) for item in items(node.get(key))) for key in ("poles", "zeros"))
+    return PoleZeroModel(poles, zeros, reader.under(node, "leading_coefficient"))
 
 
-def _roots(node: Node | None, reader: Reader) -> tuple[Root, ...] | None:
-    roots = [_root(item, reader) for item in items(node)]
-    found = tuple(root for root in roots if root is not None)
-    return found if len(found) == len(roots) else None
-
-
-def _root(node: Node, reader: Reader) -> Root | None:
+def _root(node: Node, reader: Reader) -> Root:
     if not isinstance(node, Table):
-        value = reader.value(node)
-        return None if value is None else Root(value)
-    real, imaginary = reader.value(node.get("real")), reader.value(node.get("imaginary"))
-    return None if real is None or imaginary is None else Root(real, imaginary)
+        return Root(reader.value(node))
+    return Root(reader.under(node, "real"), reader.under(node, "imaginary"))
 
 
 def _state_space(node: Table, reader: Reader, ports: Ports) -> StateSpaceModel | None:
@@ -121,23 +97,20 @@ def _matrix(node: Node | None, reader: Reader, rows: tuple[str, ...], columns: t
     if not isinstance(node, Items):
         return None
     if all(isinstance(item, Items) for item in node.nodes):
-        found = [reader.several(item) for item in node.nodes]
-        return tuple(row for row in found if row is not None) if None not in found else None
+        return tuple(reader.several(item) for item in node.nodes)
     values = reader.several(node)
-    if values is None:
-        return None
     return tuple((value,) for value in values) if len(columns) == 1 else (values,)
 
 
 def _named_matrix(node: Table, reader: Reader, rows: tuple[str, ...], columns: tuple[str, ...]) -> Matrix | None:
-    cells: dict[tuple[str, str], Value | None] = {}
+    cells: dict[tuple[str, str], Value] = {}
     good = True
     for row, line in entries(node):
         good = _known("row", row, rows, reader) and good
         for column, cell in entries(line):
             good = _known("column", column, columns, reader) and good
             cells[row.value, column.value] = reader.value(cell)
-    if None in cells.values() or not good:
+    if not good:
         return None
     return tuple(tuple(cells.get((row, column)) or whole(0, node) for column in columns) for row in rows)
 
@@ -154,48 +127,43 @@ def _pid(node: Table, reader: Reader, ports: Ports) -> PidModel | None:
 
 
 def pid(node: Table, reader: Reader) -> PidModel | None:
-    """Read a controller with proportional, integral and derivative terms."""
+    """Read a controller with proportional, integral and derivative terms. None if it is in no form."""
     form = cast('Literal["parallel", "standard", "series"] | None', text(node.get("form")))
-    terms = {name: reader.value(node.get(name)) for name in PID_TERMS if node.get(name) is not None}
-    good = {name: value for name, value in terms.items() if value is not None}
-    if form not in ("parallel", "standard", "series") or len(good) < len(terms) or not terms:
+    terms = {name: reader.value(term) for name in PID_TERMS if (term := node.get(name)) is not None}
+    if form not in ("parallel", "standard", "series") or not terms:
         return None
     differentiated = cast('Literal["error", "measurement"]', text(node.get("derivative_on")) or "error")
-    return PidModel(form, good, differentiated)
+    return PidModel(form, terms, differentiated)
 
 
 def _numerators(node: Table, reader: Reader, ports: Ports) -> MatrixModel | None:
     denominator = reader.several(node.get("denominator"))
-    found: dict[tuple[str, str], Polynomial | None] = {}
+    found: dict[tuple[str, str], Polynomial] = {}
     good = True
     for output, row in entries(node.get("numerators")):
         good = _known("output", output, ports.outputs, reader) and good
         for source, coefficients in entries(row):
             good = _known("input", source, ports.inputs, reader) and good
             found[output.value, source.value] = reader.several(coefficients)
-    numerators = {pair: numerator for pair, numerator in found.items() if numerator}
-    if not denominator or not numerators or not good or len(numerators) < len(found):
-        return None
-    return MatrixModel(numerators, denominator)
+    return MatrixModel(found, denominator) if good else None
 
 
 def _sampled(node: Table, reader: Reader, ports: Ports) -> SampledModel | None:
     sampled = table(node.get("sampled")) or Table(node.spot, {})
-    period = reader.value(sampled.get("period"))
-    numerator = reader.several(sampled.get("numerator")) or ()
-    denominator = reader.several(sampled.get("denominator")) or ()
-    inner, delay = table(sampled.get("pid")), sampled.get("delay")
+    period = reader.under(sampled, "period")
+    numerator, denominator = reader.several(sampled.get("numerator")), reader.several(sampled.get("denominator"))
+    inner = table(sampled.get("pid"))
     controller = pid(inner, reader) if inner is not None else None
-    wait = reader.value(delay) if delay is not None else None
-    if period is None or (delay is not None and wait is None) or (controller is None and not numerator):
+    wait = reader.optional(sampled.get("delay"))
+    if controller is None and not numerator:
         return None
     return SampledModel(period, numerator, denominator, controller, text(sampled.get("rule")), wait)
 
 
-def _whole(node: Node | None) -> int | None:
-    """Return a whole number, 0 where it is left out, None where something else was reported."""
-    exact = node.exact if isinstance(node, Number) else None
-    return 0 if node is None else exact if isinstance(exact, int) else None
+def _whole(node: Node | None) -> int:
+    """Return a whole number, 0 where it is left out or something else was reported."""
+    exact = node.exact if isinstance(node, Number) else 0
+    return exact if isinstance(exact, int) else 0
 
 
 _FORMS: dict[str, Callable[[Table, Reader, Ports], Model | None]] = {

@@ -12,6 +12,7 @@ from specgate.intake.values import Reader
 from specgate.project.types import GatePolicy, ProjectInfo, Value
 from specgate.terms import expressions
 from specgate.terms.dimensions import DIMENSIONLESS
+from specgate.terms.expressions import is_read
 from specgate.terms.units import UnitTable
 
 Holding = Literal["non_compliant", "open", "out_of_range", "inconclusive"]
@@ -19,8 +20,8 @@ DEFAULT_HOLD: tuple[Holding, ...] = ("non_compliant", "open", "out_of_range")
 """What holds the gate unless the project says otherwise."""
 
 
-def own_units(project: Table, collector: Collector) -> UnitTable | None:
-    """Return the table of units with the project's own. None if one of those was reported."""
+def own_units(project: Table, collector: Collector) -> tuple[UnitTable, frozenset[str]]:
+    """Return the table of units with the project's own, and the names of those that were reported."""
     node = table(project.get("units"))
     keys = {key.value: (key, value) for key, value in entries(node)}
     definitions = {name: text(value) or "" for name, (_, value) in keys.items()}
@@ -31,7 +32,7 @@ def own_units(project: Table, collector: Collector) -> UnitTable | None:
         taken = standard.is_unit(name)
         spot = key.spot if taken else value.spot
         collector.error("id-duplicate" if taken else "unit-unknown", problem.message, spot.place)
-    return None if problems else units
+    return units, frozenset(problems)
 
 
 def stages(project: Table) -> tuple[str, ...]:
@@ -70,7 +71,7 @@ def thresholds(node: Node | None, context: Context) -> dict[str, dict[str, Value
     for name, body in entries(node):
         for key, value in entries(body):
             threshold = Reader(context).value(value)
-            if threshold is not None and _allowed(name.value, key, threshold, context):
+            if is_read(threshold.expression) and _allowed(name.value, key, threshold, context):
                 found.setdefault(name.value, {})[key.value] = threshold
     return found
 

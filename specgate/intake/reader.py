@@ -18,7 +18,7 @@ import yaml
 
 from specgate.intake.collect import Collector
 from specgate.intake.nodes import Broken, Entry, Items, Node, Nothing, Number, Origin, Spot, Table, Text, Truth
-from specgate.intake.traps import syntax_hint
+from specgate.intake.traps import cut_number, syntax_hint
 from specgate.terms.decimals import DecimalError, exact_decimal
 from specgate.terms.findings import Related
 from specgate.terms.places import Place
@@ -124,6 +124,8 @@ class _Frame:
     nodes: list[Node] = field(default_factory=list)
     key: Text | None = None
     skip: bool = False
+    end: int = -1
+    """Where in the text the last scalar of a list in brackets ended."""
 
     def node(self) -> Node:
         return Table(self.spot, self.entries, self.braces) if self.table else Items(self.spot, tuple(self.nodes))
@@ -201,9 +203,24 @@ class _Tree:
         if self.open and self.open[-1].table and self.open[-1].key is None:
             self._key(self.open[-1], Text(spot, event.value), event)
         elif event.implicit[0]:
-            self._value(self._resolved(event, spot))
+            node = self._resolved(event, spot)
+            if self.open and self.open[-1].braces and not self.open[-1].table:
+                node = self._beside(self.open[-1], node, event)
+            self._value(node)
         else:
             self._value(Text(spot, event.value, _inset(event, 1)))
+
+    def _beside(self, frame: _Frame, node: Node, event: Any) -> Node:
+        """Return an entry of a list; where a decimal comma has cut it in two (`0,3 s`), one that is reported."""
+        before = frame.nodes[-1] if frame.nodes else None
+        together = isinstance(before, Number) and frame.end + 1 == event.start_mark.index
+        hint = cut_number(before.text, str(event.value)) if together and isinstance(before, Number) else None
+        frame.end = event.end_mark.index
+        if hint is None or before is None:
+            return node
+        self.collector.error("schema-violation", hint, before.spot.place)
+        frame.nodes.pop()
+        return Broken(before.spot)
 
     def _key(self, frame: _Frame, key: Text, event: Any) -> None:
         if key.value == "<<" and event.implicit[0]:

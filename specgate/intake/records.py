@@ -29,17 +29,18 @@ def _mask(key: Text, body: Table | None, context: Context) -> MaskDefinition | N
         return None
     over = text(body.get("over"))
     upper, lower = (_corners(body.get(side), context) for side in ("upper", "lower"))
-    if upper is None or lower is None or not (upper or lower) or over not in (None, "time", "frequency"):
+    shapely = context.collector.shapely("masks", key.value)
+    if not shapely or not (upper or lower) or over not in (None, "time", "frequency"):
         return None
     laid = cast('Literal["time", "frequency"] | None', over)
     forever = text(body.get("to")) == "forever"
     return MaskDefinition(key.value, laid, upper, lower, forever, key.spot.place)
 
 
-def _corners(node: Node | None, context: Context) -> tuple[Corner, ...] | None:
-    """Read `[[at, limit], ...]`; None where one cannot be read."""
-    pairs = [Reader(context).pair(point) for point in items(node)]
-    return None if None in pairs else tuple(Corner(*pair) for pair in pairs if pair is not None)
+def _corners(node: Node | None, context: Context) -> tuple[Corner, ...]:
+    """Read `[[at, limit], ...]`."""
+    pairs = (Reader(context).pair(point) for point in items(node))
+    return tuple(Corner(*pair) for pair in pairs if pair is not None)
 
 
 def cases(node: Node | None, context: Context) -> dict[str, Kept]:
@@ -67,8 +68,7 @@ def decision_rule(node: Node | None) -> DecisionRule:
 def model_agreement(node: Node | None, context: Context) -> ModelAgreement | None:
     """Read how far a result may be from the computed value."""
     body = table(node)
-    value = Reader(context).value(body.get("at_most")) if body is not None else None
-    return None if body is None or value is None else ModelAgreement(value, body.spot.place)
+    return None if body is None else ModelAgreement(Reader(context).under(body, "at_most"), body.spot.place)
 
 
 def _section(node: Node | None) -> dict[str, Kept]:

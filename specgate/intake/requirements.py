@@ -16,7 +16,7 @@ DecidedBy = Literal["criteria", "derived", "evidence"]
 
 
 def requirement(entry: Entry, context: Context) -> Requirement | None:
-    """Read one requirement. None if something in it was reported."""
+    """Read one requirement as far as it can be read; None where it is no table."""
     node = table(entry.value)
     if node is None:
         return None
@@ -26,9 +26,10 @@ def requirement(entry: Entry, context: Context) -> Requirement | None:
     rests_on = basis(grounds, context) if grounds is not None else None
     methods = list(_methods(node.get("verification"), context))
     verification = tuple(method for method in methods if method is not None)
-    good = len(found) == len(criteria) and len(verification) == len(methods) and _budget(node, context)
-    if not good or (grounds is not None and rests_on is None) or not _supports(rests_on, found, context):
-        return None
+    context.holes += len(found) < len(criteria) or len(verification) < len(methods)
+    if len(found) == len(criteria) and not _supports(rests_on, found, context):
+        rests_on = None
+    _check_budget(node, context)
     coverage = table(node.get("coverage"))
     return Requirement(
         id=entry.key.value,
@@ -96,11 +97,11 @@ def _links(node: Node | None) -> Iterator[Link]:
             yield Link(name, item.spot.place, {"reaffirmed": as_kept(reaffirmed)} if reaffirmed is not None else {})
 
 
-def _budget(node: Table, context: Context) -> bool:
-    """Whether the quantity in a budget can be read; the shares are added up by a later version."""
+def _check_budget(node: Table, context: Context) -> None:
+    """See that the quantity in a budget can be read; the shares are added up by a later version."""
     budget = table(node.get("budget"))
-    reserve = budget.get("reserve") if budget is not None else None
-    return reserve is None or Reader(context).value(reserve) is not None
+    if budget is not None:
+        Reader(context).optional(budget.get("reserve"))
 
 
 def _not_applicable(node: Node | None) -> NotApplicable | None:

@@ -17,7 +17,7 @@ from typing import TYPE_CHECKING, Any
 
 from specgate.intake.collect import MOST, Collector
 from specgate.intake.fits import NotUnderstood, fits
-from specgate.intake.nodes import Broken, Items, Node, Table, Text, plain
+from specgate.intake.nodes import Broken, Items, Node, Number, Table, Text, plain
 from specgate.intake.wording import Misshape, Nearest, Path, worded
 
 if TYPE_CHECKING:
@@ -122,6 +122,7 @@ def _telling(errors: list[Misshape]) -> Iterable[Misshape]:
     # on what is no table, `required` holds, so that all alternatives do: that it is no table is said by `type`
     errors = [error for error in errors if not _of_no_table(error)]
     cut = {(*error.path, key) for error in errors for key in error.cut_off}
+    cut |= {(*error.path, str(error.found)) for error in errors if error.of_name and error.cut_off}
     errors = [error for error in errors if error.path not in cut]
     certain = [error for error in errors if not error.conditional]
     unsettled = {e.path[:-1] for e in certain if e.keyword == "enum" and e.path}
@@ -176,12 +177,22 @@ def _repeats(error: Misshape, meant: set[str | None], wrong: set[Path]) -> bool:
     return error.path in wrong and error.keyword in ("type", "enum", "const")
 
 
+def _harmless(error: Misshape) -> bool:
+    """Whether others can rely on the shape all the same: a key too many that stands for none that is missing."""
+    if error.keyword != "additionalProperties" or error.cut_off:
+        return False
+    return not any(error.nearest(key, error.schema["properties"]) for key in error.unexpected)
+
+
 def _report(error: Misshape, collector: Collector) -> None:
     about = {}
     if len(error.path) > 1 and error.path[0] in _ABOUT:
-        kind, name = _ABOUT[str(error.path[0])], str(error.path[1])
-        about[kind] = name
-        if error.keyword != "additionalProperties" or error.cut_off:
-            collector.misshapen.add((kind, name))
+        about[_ABOUT[str(error.path[0])]] = str(error.path[1])
+    if not _harmless(error):
+        collector.misshapen.update(error.path[:length] for length in range(1, len(error.path) + 1))
+    if isinstance(error.node, Text | Number):
+        collector.unreadable.add(error.node.spot)
+    if isinstance(error.node, Table):
+        collector.unreadable.update(error.node.entries[key].value.spot for key in error.cut_off)
     for rule, message, spot in worded(error):
         collector.error(rule, message, spot.place, **about)

@@ -9,7 +9,7 @@ call   = block "(" sum | name "=" sum {"," name "=" sum} ")" ["." output]
 from __future__ import annotations
 
 import re
-from typing import Literal, NoReturn
+from typing import Literal
 
 from flint import fmpq
 
@@ -17,7 +17,7 @@ from specgate.intake.context import Context, LoopNames
 from specgate.intake.nodes import Text
 from specgate.intake.values import Reader
 from specgate.project.types import Call, Scaled, SignalExpression, SignalName, Sum
-from specgate.terms.expressions import Binary, Expression, Negative, Number
+from specgate.terms.expressions import Binary, Expression, Negative, Number, is_read
 from specgate.terms.records import record
 
 LONGEST = 4000
@@ -36,7 +36,7 @@ _TOKEN = re.compile(
 
 
 class _Refused(Exception):
-    """The expression cannot be read: a rule, a message and an offset; or it meets something already reported."""
+    """The expression cannot be read: a rule, a message (None where it was reported) and an offset."""
 
     def __init__(self, message: str | None, offset: int = 0, rule: str = "schema-violation") -> None:
         super().__init__(message)
@@ -57,11 +57,18 @@ class _Constant:
     expression: Expression
 
 
-_Part = SignalExpression | _Constant
+@record
+class _Stranger:
+    """A name that is not known: it may have been meant as a signal or as a constant, and fits wherever it stands."""
+
+    name: SignalName
+
+
+_Part = SignalExpression | _Constant | _Stranger
 
 
 def signal_expression(node: Text, names: LoopNames, context: Context) -> SignalExpression | None:
-    """Read the equation of a signal. None if something was reported, or a block in it is broken."""
+    """Read the equation of a signal. None if it cannot be read; names in it that are not known are kept."""
     try:
         return _Parser(node, names, context).read()
     except _Refused as refused:
@@ -127,6 +134,10 @@ class _Parser:
     def _joined(self, sign: _Token, left: _Part, right: _Part, start: int) -> _Part:
         if isinstance(left, _Constant) and isinstance(right, _Constant):
             return self._constant(start)
+        if isinstance(left, _Stranger):
+            return left if isinstance(right, _Constant) else right
+        if isinstance(right, _Stranger):
+            return right if isinstance(left, _Constant) else left
         if sign.text == "**":
             raise _Refused("a power of a signal is not linear: a loop is wired of sums and constants", sign.at)
         if isinstance(left, _Constant) and not isinstance(right, _Constant) and sign.text == "*":
@@ -161,13 +172,34 @@ class _Parser:
         ports = self.context.ports.get(block.text)
         if ports is None:
             self._unknown(block, "block", tuple(self.context.ports))
+            return self._stranger(block, opening)
         if not ports.inputs or not ports.outputs:
-            raise _Refused(None)
+            return self._stranger(block, opening)
         arguments = self._arguments(block, ports.inputs)
         self.depth -= 1
         self._close(opening)
         output = self._output(block, ports.outputs)
         return Call(block.text, arguments, output, self.node.place_of(block.at))
+
+    def _stranger(self, block: _Token, opening: _Token) -> Call:
+        """Read a call of a block of which nothing is known, for the sake of what it is applied to."""
+        arguments: dict[str, SignalExpression] = {}
+        while self._now.text != ")":
+            named = self._now.kind == "name" and self.tokens[self.index + 1].text == "="
+            name = self._take().text if named else "input"
+            if named:
+                self._take()
+            start = self._now.at
+            arguments[name] = self._signal(self._sum(), start)
+            if self._now.text != ",":
+                break
+            self._take()
+        self.depth -= 1
+        self._close(opening)
+        if self._now.text == ".":
+            self._take()
+            self._take()
+        return Call(block.text, arguments, "output", self.node.place_of(block.at))
 
     def _arguments(self, block: _Token, inputs: tuple[str, ...]) -> dict[str, SignalExpression]:
         if self._now.text == ")":
@@ -185,9 +217,9 @@ class _Parser:
                 break
             self._take()
         missing = [name for name in inputs if name not in found]
-        if missing:
+        if missing and found.keys() <= set(inputs):
             raise _Refused(f"the input `{missing[0]}` of `{block.text}` is given no signal", block.at)
-        return {name: found[name] for name in inputs}
+        return {name: found[name] for name in inputs if name in found}
 
     def _named_argument(self, block: _Token, inputs: tuple[str, ...], found: dict[str, SignalExpression]) -> None:
         name, equals = self._take(), self._take()
@@ -223,7 +255,8 @@ class _Parser:
             return self._constant(token.at)
         if token.text in self.context.shared or token.text == "pi":
             return self._constant(token.at)
-        return self._unknown(token, "signal, input or shared parameter", (*self.names.signals, *self.names.inputs))
+        self._unknown(token, "signal, input or shared parameter", (*self.names.signals, *self.names.inputs))
+        return _Stranger(SignalName(token.text, self.node.place_of(token.at)))
 
     # --- parts --------------------------------------------------------------------------------------------
 
@@ -232,19 +265,20 @@ class _Parser:
         last = self.tokens[self.index - 1]
         words = self.node.value[start : last.at + len(last.text)]
         inset = None if self.node.inset is None else self.node.inset + start
-        parsed = Reader(self.context).expression(Text(self.node.spot, words, inset))
-        if parsed is None:
-            raise _Refused(None)
-        return _Constant(parsed)
+        return _Constant(Reader(self.context).expression(Text(self.node.spot, words, inset)))
 
     def _signal(self, part: _Part, at: int) -> SignalExpression:
+        if isinstance(part, _Constant) and not is_read(part.expression):
+            raise _Refused(None)
         if isinstance(part, _Constant):
             raise _Refused("a constant is no signal: constant values belong under `rest`", at)
-        return part
+        return part.name if isinstance(part, _Stranger) else part
 
     def _minus(self, part: _Part, at: int) -> _Part:
         if isinstance(part, _Constant):
             return _Constant(Negative(part.expression, offset=at))
+        if isinstance(part, _Stranger):
+            return part
         return self._scaled(Number(fmpq(-1)), part, at)
 
     def _scaled(self, factor: Expression, operand: SignalExpression, at: int) -> Scaled:
@@ -271,9 +305,9 @@ class _Parser:
             raise _Refused(f"the bracket opened at character {opening.at + 1} is not closed", opening.at)
         self._take()
 
-    def _unknown(self, token: _Token, what: str, known: tuple[str, ...], owner: str | None = None) -> NoReturn:
+    def _unknown(self, token: _Token, what: str, known: tuple[str, ...], owner: str | None = None) -> None:
+        """Report a name; it is kept in the expression, where nothing is to be had from it."""
         self.context.unknown(what, token.text, known, self.node.place_of(token.at), owner)
-        raise _Refused(None)
 
 
 def _factor(sign: str, constant: Expression) -> Expression:

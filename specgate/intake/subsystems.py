@@ -2,16 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from typing import Literal, cast
 
-from specgate.intake.collect import Collector
 from specgate.intake.context import Context, Ports, entries, keys, table, text
 from specgate.intake.models import model
-from specgate.intake.nodes import Entry, Node, Number, Table, Text
+from specgate.intake.nodes import Entry, Node, Table
 from specgate.intake.values import Reader
-from specgate.project.types import Parameter, Pedigree, Port, StandIn, Subsystem
-from specgate.terms import expressions
+from specgate.project.types import Model, Parameter, Pedigree, Port, StandIn, Subsystem, UnreadModel
 from specgate.terms.units import RESERVED
 
 STAND_INS = ("hold_as_delay", "fast_sampling_as_continuous", "pade_dead_time")
@@ -29,38 +27,6 @@ def ports_of(node: Node) -> Ports:
 # --- parameters ----------------------------------------------------------------------------------------------
 
 
-def find_broken(declared: Mapping[str, tuple[Node, str | None]], context: Context) -> None:
-    """Mark the parameters that cannot be read, and those whose formula reads one of them.
-
-    declared: node and subsystem by qualified name. Nothing is reported here: `parameter` does that.
-    """
-    quiet = Context(Collector(), context.units, context.shared, context.own, parsed=context.parsed)
-    readers: dict[str, list[str]] = {}
-    waiting: list[str] = []
-    for name, (node, scope) in declared.items():
-        if quiet.collector.full:
-            return
-        reader, written = Reader(quiet, scope), _written(node)
-        parsed = reader.parsed(written) if written is not None else None
-        reads = [reader.qualified(read) for read in expressions.names(parsed)] if parsed is not None else [None]
-        if None in reads:
-            waiting.append(name)
-        for read in reads:
-            readers.setdefault(read or "", []).append(name)
-    while waiting:
-        name = waiting.pop()
-        if name not in context.broken:
-            context.broken.add(name)
-            waiting += readers.get(name, [])
-
-
-def _written(node: Node) -> Text | Number | None:
-    if isinstance(node, Table):
-        written = node.get("formula") if node.get("value") is None else node.get("value")
-        return written if isinstance(written, Text | Number) else None
-    return node if isinstance(node, Text | Number) else None
-
-
 def parameters(node: Node | None, scope: str | None, context: Context) -> dict[str, Parameter]:
     """Read the parameters of the project (scope None) or of a subsystem, by their names as written."""
     found: dict[str, Parameter] = {}
@@ -72,19 +38,13 @@ def parameters(node: Node | None, scope: str | None, context: Context) -> dict[s
             what = "a unit" if context.units.is_unit(key.value) else "a word of the format"
             message = f"a parameter cannot be named `{key.value}`: that is {what}"
             context.collector.error("id-duplicate", message, key.spot.place)
-        parameter = _parameter(key, value, qualified, Reader(context, scope))
-        if parameter is None:
-            context.broken.add(qualified)
-        else:
-            found[key.value] = parameter
+        found[key.value] = _parameter(value, qualified, Reader(context, scope))
     return found
 
 
-def _parameter(key: Text, node: Node, qualified: str, reader: Reader) -> Parameter | None:
+def _parameter(node: Node, qualified: str, reader: Reader) -> Parameter:
     formula = isinstance(node, Table) and node.get("formula") is not None
     value = reader.sourced(node, "formula") if isinstance(node, Table) and formula else reader.value(node)
-    if value is None or qualified in reader.context.broken:
-        return None
     title = text(node.get("title")) if isinstance(node, Table) else None
     return Parameter(qualified, value, formula, node.spot.place, title)
 
@@ -93,42 +53,43 @@ def _parameter(key: Text, node: Node, qualified: str, reader: Reader) -> Paramet
 
 
 def subsystem(entry: Entry, context: Context) -> Subsystem | None:
-    """Read one subsystem. None if something in it was reported."""
+    """Read one subsystem as far as it can be read; None where it is no table."""
     name, node = entry.key.value, table(entry.value)
     if node is None:
         return None
     reader = Reader(context, name)
     own = parameters(node.get("parameters"), name, context)
     inputs, outputs = dict(_ports(node, "input", reader)), dict(_ports(node, "output", reader))
-    body = table(node.get("model"))
-    read = model(body, reader, context.ports[name]) if body is not None else None
-    dead_time_node = body.get("dead_time") if body is not None else None
-    dead_time = reader.value(dead_time_node)
-    valid_to = reader.value(node.get("valid_to"))
-    stands_for = _stand_in(node, reader)
-    ports = context.ports[name]
-    whole = len(own) == len(keys(node.get("parameters"))) and (valid_to or not node.get("valid_to"))
-    whole = whole and (len(inputs), len(outputs)) == (len(ports.inputs), len(ports.outputs))
-    whole = whole and (stands_for is not None or not node.get("stands_for"))
-    if not whole or not inputs or not outputs or body is None or read is None or (dead_time_node and not dead_time):
-        return None
+    written = node.entries.get("model")
     return Subsystem(
         name=name,
         inputs=inputs,
         outputs=outputs,
-        model=read,
+        model=_model(node, (inputs, outputs), reader),
         place=entry.key.spot.place,
-        model_place=node.entries["model"].key.spot.place,
+        model_place=(written or entry).key.spot.place,
         title=text(node.get("title")),
         owner=text(node.get("owner")),
         realised=cast('Literal["software", "hardware"] | None', text(node.get("realised"))),
         parameters=own,
-        dead_time=dead_time,
+        dead_time=reader.optional(body.get("dead_time")) if (body := table(node.get("model"))) is not None else None,
         separate_instances=text(node.get("instances")) == "separate",
         pedigree=_pedigree(node),
-        valid_to=valid_to,
-        stands_for=stands_for,
+        valid_to=reader.optional(node.get("valid_to")),
+        stands_for=_stand_in(node, reader),
     )
+
+
+def _model(node: Table, read: tuple[dict[str, Port], dict[str, Port]], reader: Reader) -> Model:
+    """Read the model; it stands for nothing where its shape is wrong, or a port that it leads to is not known."""
+    ports, body = reader.context.ports[str(reader.scope)], table(node.get("model"))
+    made = model(body, reader, ports) if body is not None else None
+    shapely = reader.context.collector.shapely("subsystems", str(reader.scope), "model")
+    sides = zip(read, (ports.inputs, ports.outputs), strict=True)
+    if made is None or not shapely or not all(found and len(found) == len(declared) for found, declared in sides):
+        reader.context.holes += 1
+        return UnreadModel()
+    return made
 
 
 def _ports(node: Table, side: str, reader: Reader) -> Iterator[tuple[str, Port]]:
@@ -147,14 +108,10 @@ def _table_entries(node: Node | None) -> tuple[Entry, ...]:
 def _port(name: str, entry: Entry, reader: Reader) -> Port | None:
     node = table(entry.value)
     unit = reader.context.unit(node.get("unit")) if node is not None else None
-    if node is None:
+    if node is None or unit is None:
+        reader.context.holes += 1
         return None
-    ranges = {}
-    for key in ("linear_range", "rate_range", "span"):
-        if node.get(key) is not None:
-            ranges[key] = reader.pair(node.get(key))
-    if unit is None or None in ranges.values():
-        return None
+    ranges = {key: reader.pair(node.get(key)) for key in ("linear_range", "rate_range", "span")}
     return Port(name, unit, entry.key.spot.place, **ranges)
 
 
@@ -168,14 +125,14 @@ def _pedigree(node: Table) -> Pedigree | None:
 
 
 def _stand_in(node: Table, reader: Reader) -> StandIn | None:
-    """Read what a block stands for. None if there is nothing to read, or something in it was reported."""
+    """Read what a block stands for. None if there is nothing to read, or it stands for nothing that is known."""
     entry = node.entries.get("stands_for")
     body = table(entry.value) if entry is not None else None
     if entry is None or body is None:
         return None
     place, collector = entry.key.spot.place, reader.context.collector
-    sampled, delay = (reader.value(body.get(key)) for key in ("sampled", "delay"))
-    if body.get("sampled") is None and body.get("delay") is None:
+    sampled, delay = (reader.optional(body.get(key)) for key in ("sampled", "delay"))
+    if sampled is None and delay is None:
         message = "`stands_for` says neither a sampling period (`sampled: 1 ms`) nor a dead time (`delay: 0.5 ms`)"
         collector.error("schema-violation", message, place)
         return None
@@ -183,5 +140,4 @@ def _stand_in(node: Table, reader: Reader) -> StandIn | None:
     if by is not None and by not in STAND_INS:
         reader.context.unknown("approximation by which a block stands for something else", by, STAND_INS, place)
         return None
-    missing = [key for key, value in (("sampled", sampled), ("delay", delay)) if body.get(key) and value is None]
-    return None if missing else StandIn(sampled, delay, by, place)
+    return StandIn(sampled, delay, by, place)

@@ -14,28 +14,30 @@ from specgate.terms.places import Place
 _PLACEHOLDER = re.compile(r"\{([A-Za-z_][A-Za-z0-9_]*)\}", re.ASCII)
 
 
-def expand(root: Node, templates: Mapping[str, Entry], collector: Collector) -> Node:
+def expand(root: Node, templates: Mapping[str, Entry], collector: Collector, *, all_known: bool = True) -> Node:
     """Return a file's tree with every requirement that uses a template written out.
 
     Keys of the requirement itself come before those of the template. What is wrong is reported, and that requirement
-    stays unreadable for what follows.
+    stays unreadable for what follows. all_known: whether `templates` are all that the project has.
     """
     section = root.get("requirements") if isinstance(root, Table) else None
     if not isinstance(root, Table) or not isinstance(section, Table):
         return root
-    entries = {name: _expanded(entry, templates, collector) for name, entry in section.entries.items()}
+    entries = {name: _expanded(entry, templates, collector, all_known) for name, entry in section.entries.items()}
     written_out = Table(section.spot, entries, section.braces)
     key = root.entries["requirements"].key
     return Table(root.spot, {**root.entries, "requirements": Entry(key, written_out)}, root.braces)
 
 
-def _expanded(entry: Entry, templates: Mapping[str, Entry], collector: Collector) -> Entry:
+def _expanded(entry: Entry, templates: Mapping[str, Entry], collector: Collector, all_known: bool) -> Entry:
     node = entry.value
     use = node.get("use") if isinstance(node, Table) else None
     name = text(use)
     if not isinstance(node, Table) or use is None or name is None:
         return entry
     template = templates.get(name)
+    if template is None and not all_known:
+        return Entry(entry.key, Broken(node.spot))
     if template is None:
         close = collector.nearest(name, templates)
         ending = f": did you mean `{close}`?" if close else ""

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import re
+from itertools import pairwise
 
-from specgate.intake.nodes import Entry, Nothing, Number, Table, Text
+from specgate.intake.nodes import Entry, Node, Nothing, Number, Table, Text
 
 _TRUTHS = {"yes": "true", "on": "true", "y": "true", "no": "false", "off": "false", "n": "false"}
 _UNDERSCORES = re.compile(r"[+-]?[0-9]+(_[0-9]+)+(\.[0-9_]+)?")
@@ -12,6 +13,7 @@ _CLOCK = re.compile(r"[0-9]+(:[0-9]{2}){1,2}")
 _COMMA = re.compile(r"[+-]?[0-9]+,[0-9]+")
 
 _QUANTITY = re.compile(r"[-+]?[0-9.]")
+_REST = re.compile(r"[0-9]+(?:[eE][+-]?[0-9]+)?\s+\S")
 _WHOLE = re.compile(r"[+-]?\d+")
 _NO_NUMBER = re.compile(r"[+-]?\.(inf|Inf|INF|nan|NaN|NAN)")
 
@@ -62,6 +64,33 @@ def split_by_comma(table: Table, key: Text) -> str | None:
     if _QUANTITY.match(start) and _QUANTITY.match(key.value):
         return f"a comma inside braces splits: write a list, `{name}: [{start}, {key.value}]`"
     return f'a comma inside braces splits: put the text in quotes, `{name}: "{start}, {key.value}"`'
+
+
+def cut_number(first: str, second: str) -> str | None:
+    """Say that a comma without a space has made two entries of a list of one quantity, or return None.
+
+    Only where the first is a bare whole number and the second has a unit: `[1,2]` is a list of two like any other.
+    """
+    if _WHOLE.fullmatch(first) and _REST.match(second):
+        return (
+            f"`{first},{second}` in a list is two entries, {first} and {second}; the decimal sign is a point: write "
+            f"`{first}.{second}`, or a space after the comma if two are meant"
+        )
+    return None
+
+
+def split_in_list(nodes: tuple[Node, ...]) -> str | None:
+    """Say that a decimal comma may have made two entries of one in a list that has too many, or return None."""
+    for before, after in pairwise(nodes):
+        if not isinstance(before, Number) or not isinstance(after, Number | Text) or not _WHOLE.fullmatch(before.text):
+            continue
+        second = after.text if isinstance(after, Number) else after.value
+        beside = before.spot.line == after.spot.line and before.spot.column + len(before.text) + 1 == after.spot.column
+        if beside and second[:1].isdigit():
+            return (
+                f"the decimal sign is a point, write `{before.text}.{second}` if `{before.text},{second}` is one number"
+            )
+    return None
 
 
 def syntax_hint(lines: list[str], line: int, column: int, opened: tuple[int, int] | None, problem: str) -> str:

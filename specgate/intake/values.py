@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
 from dataclasses import replace
 from typing import Literal, cast
 
@@ -13,7 +12,7 @@ from specgate.intake.nodes import Items, Node, Number, Table, Text
 from specgate.intake.traps import scalar_hint
 from specgate.project.types import Tolerance, Value
 from specgate.terms import expressions
-from specgate.terms.expressions import Expression, ExpressionError, PercentOf
+from specgate.terms.expressions import Expression, ExpressionError, PercentOf, Unread, is_read
 from specgate.terms.records import record
 from specgate.terms.trees import ExpressionUnitError
 
@@ -23,45 +22,67 @@ SIGNAL_WORDS = frozenset({"span", "change"})
 
 @record
 class Reader:
-    """Reads values; `scope` is the subsystem whose own parameters may be read by their short names."""
+    """Reads values; `scope` is the subsystem whose own parameters may be read by their short names.
+
+    Where something is reported, what stands for it is a value that could not be read (`Unread`), so that reading goes
+    on and what rests on it stays silent.
+    """
 
     context: Context
     scope: str | None = None
 
-    def value(self, node: Node | None) -> Value | None:
+    def value(self, node: Node) -> Value:
         """Read a quantity, a number or an expression, or a table with `value`, `source` and `tolerance`."""
         if isinstance(node, Table):
             return self.sourced(node, "value")
-        if not isinstance(node, Text | Number):
-            return None
-        expression = self.expression(node)
-        written = text(node) or ""
-        return None if expression is None else Value(expression, written, node.spot.place)
+        expression = self.expression(node) if isinstance(node, Text | Number) else self._hole()
+        return Value(expression, text(node) or "", node.spot.place)
 
-    def sourced(self, node: Table, key: str) -> Value | None:
+    def optional(self, node: Node | None) -> Value | None:
+        """Read a value that may be left out."""
+        return None if node is None else self.value(node)
+
+    def under(self, node: Table, key: str) -> Value:
+        """Read the value under a key, which the shape of the table asks for."""
+        written = node.get(key)
+        return Value(self._hole(), "", node.spot.place) if written is None else self.value(written)
+
+    def sourced(self, node: Table, key: str) -> Value:
         """Read the value under `key` with the source and the tolerance beside it."""
-        value = self.value(node.get(key))
-        tolerance = self.tolerance(node)
-        if value is None or (tolerance is None and node.get("tolerance") is not None):
-            return None
-        return replace(value, source=text(node.get("source")), tolerance=tolerance)
+        return replace(self.under(node, key), source=text(node.get("source")), tolerance=self.tolerance(node))
 
-    def several(self, node: Node | None) -> tuple[Value, ...] | None:
-        """Read a list of values."""
-        return complete([self.value(item) for item in node.nodes]) if isinstance(node, Items) else None
+    def several(self, node: Node | None) -> tuple[Value, ...]:
+        """Read a list of values; none where there is no list."""
+        if isinstance(node, Items):
+            return tuple(self.value(item) for item in node.nodes)
+        self.context.holes += node is not None
+        return ()
 
     def pair(self, node: Node | None) -> tuple[Value, Value] | None:
-        """Read `[low, high]`."""
+        """Read `[low, high]`; None where it is left out or no pair."""
         found = self.several(node)
-        return (found[0], found[1]) if found is not None and len(found) == 2 else None
+        if len(found) == 2:
+            return found[0], found[1]
+        self.context.holes += node is not None
+        return None
 
-    def expression(self, node: Text | Number) -> Expression | None:
+    def unread(self, node: Node) -> Value:
+        """Return a value that stands for something that was reported at a node."""
+        return Value(self._hole(), text(node) or "", node.spot.place)
+
+    def expression(self, node: Text | Number) -> Expression:
         """Read an expression and see that every name in it is a parameter."""
         parsed = self.parsed(node)
-        return parsed if parsed is not None and self._named(parsed, node) else None
+        return parsed if parsed is not None and self._named(parsed, node) else self._hole()
+
+    def _hole(self) -> Expression:
+        self.context.holes += 1
+        return Unread()
 
     def parsed(self, node: Text | Number) -> Expression | None:
-        """Read an expression whatever the names in it."""
+        """Read an expression whatever the names in it; None where something is wrong, which is reported once."""
+        if node.spot in self.context.collector.unreadable:
+            return None
         written = node.value if isinstance(node, Text) else node.text
         try:
             parsed = self.context.parse(written)
@@ -72,6 +93,8 @@ class Reader:
         return parsed
 
     def _unreadable(self, node: Text | Number, error: ExpressionError) -> None:
+        if isinstance(error, ExpressionUnitError) and self.context.loses(text(node) or ""):
+            return
         rule = "unit-unknown" if isinstance(error, ExpressionUnitError) else "schema-violation"
         hint = scalar_hint(node.value) if isinstance(node, Text) else None
         place = node.place_of(error.offset) if isinstance(node, Text) else node.spot.place
@@ -88,7 +111,7 @@ class Reader:
             if qualified is None:
                 place = node.place_of(reference.offset) if isinstance(node, Text) else node.spot.place
                 self.context.unknown("parameter", reference.name, self.known(), place)
-            good = good and qualified is not None and qualified not in self.context.broken
+            good = good and qualified is not None
         return good
 
     def qualified(self, name: str) -> str | None:
@@ -116,10 +139,11 @@ class Reader:
             return None
         several = not isinstance(written, Text | Number)
         sides = [self.expression(side) for side in _scalars(written)]
-        if not sides or any(side is None for side in sides):
+        if not sides or not all(is_read(side) for side in sides):
+            self.context.holes += 1
             return None
-        upper = cast(Expression, sides[-1])
-        lower = cast(Expression, sides[0]) if several else negated(upper)
+        upper = sides[-1]
+        lower = sides[0] if several else negated(upper)
         relative = [_relative(side) for side in (lower, upper)]
         if relative[0] is not relative[1]:
             self._refuse("both deviations are relative with %, or both have a unit", written)
@@ -134,14 +158,8 @@ class Reader:
         return Tolerance(lower, upper, relative[0], f"[{shown}]" if several else shown, kind, covered)
 
     def _refuse(self, message: str, node: Node) -> None:
+        self.context.holes += 1
         self.context.collector.error("schema-violation", message, node.spot.place)
-
-
-def complete(values: Iterable[Value | None]) -> tuple[Value, ...] | None:
-    """Return the values if none of them is missing."""
-    found = tuple(values)
-    good = tuple(value for value in found if value is not None)
-    return good if len(good) == len(found) else None
 
 
 def units_of(expression: Expression) -> list[str]:

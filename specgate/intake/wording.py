@@ -8,7 +8,7 @@ from typing import Any
 
 from specgate.intake.collect import MOST
 from specgate.intake.nodes import Items, Node, Nothing, Number, Spot, Table, Text, Truth, shown
-from specgate.intake.traps import cut_before, scalar_hint, split_by_comma
+from specgate.intake.traps import cut_before, scalar_hint, split_by_comma, split_in_list
 from specgate.terms.records import record
 
 Path = tuple[str | int, ...]
@@ -60,11 +60,12 @@ class Misshape:
 
     @property
     def cut_off(self) -> list[str]:
-        """The keys whose values a comma inside braces has cut, for an `additionalProperties` error."""
-        if self.keyword != "additionalProperties" or not isinstance(self.node, Table):
-            return []
+        """The keys whose values a comma inside braces has cut, for an error about keys that are not allowed."""
         table = self.node
-        before = (cut_before(table, table.entries[key].key) for key in self.unexpected)
+        if not isinstance(table, Table) or not (self.of_name or self.keyword == "additionalProperties"):
+            return []
+        strangers = [str(self.found)] if self.of_name else self.unexpected
+        before = (cut_before(table, table.entries[key].key) for key in strangers)
         return [entry.key.value for entry in before if entry is not None]
 
     @property
@@ -135,6 +136,9 @@ def _unexpected(name: str, error: Misshape, table: Table) -> str:
 def _name(error: Misshape) -> str:
     """Say what is wrong with the name of a key."""
     found = str(error.found)
+    comma = split_by_comma(error.node, error.node.entries[found].key) if isinstance(error.node, Table) else None
+    if comma is not None:
+        return f"`{_cut(found)}` is no name: {comma}"
     said = error.schema.get("x-say")
     if said is not None:
         return str(said).replace("{found}", _cut(found))
@@ -227,6 +231,12 @@ def _wanted_here(error: Misshape, node: Node) -> str:
     return f"{_wanted(error)} is wanted here, found {shown(node)}"
 
 
+def _too_many(error: Misshape, node: Node) -> str:
+    message = _wanted_here(error, node)
+    comma = split_in_list(node.nodes) if isinstance(node, Items) else None
+    return f"{message}: {comma}" if comma is not None else message
+
+
 def _empty(error: Misshape, node: Node) -> str:
     return f"at least one entry is wanted here, found {shown(node)}"
 
@@ -251,7 +261,7 @@ _WORDS: dict[str, Callable[[Misshape, Node], str]] = {
     "dependentRequired": _dependent,
     "format": _wanted_here,
     "minItems": _wanted_here,
-    "maxItems": _wanted_here,
+    "maxItems": _too_many,
     "minProperties": _empty,
     "pattern": _wanted_here,
     "minimum": _wanted_here,

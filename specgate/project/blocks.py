@@ -25,6 +25,7 @@ from specgate.project.types import (
     SampledModel,
     StateSpaceModel,
     Subsystem,
+    UnreadModel,
 )
 from specgate.systems.blocks import Block
 from specgate.systems.transfer import TransferFunction
@@ -60,6 +61,8 @@ class BuiltBlock:
 def build(subsystem: Subsystem, values: Values) -> BuiltBlock:
     """Return the block of a subsystem. Its dead time is never approximated. Raises Fault."""
     reader = ModelReader(subsystem, values)
+    if isinstance(subsystem.model, UnreadModel):
+        raise Fault(faults.VALUE, "the model could not be read", subsystem.model_place, repeats=True)
     if isinstance(subsystem.model, SampledModel):
         sampled = sampled_block(reader, subsystem.model)
         return BuiltBlock(None, None, reader.rounded, reader.by_fit, sampled)
@@ -70,7 +73,7 @@ def build(subsystem: Subsystem, values: Values) -> BuiltBlock:
         tuple(subsystem.outputs),
         rational.numerators,
         rational.denominator,
-        _dead_time(subsystem, values),
+        dead_time(subsystem, values),
     )
     rounded = reader.rounded or (
         subsystem.dead_time is not None and depends_on_pi(subsystem.dead_time.expression, values)
@@ -102,8 +105,8 @@ def memoryless(built: BuiltBlock) -> bool:
     return all(numerator.degree() <= 0 for numerator in block.numerators.values())
 
 
-def _dead_time(subsystem: Subsystem, values: Values) -> fmpq:
-    """Return the dead time of a subsystem in s. Raises Fault."""
+def dead_time(subsystem: Subsystem, values: Values) -> fmpq:
+    """Return the dead time of a subsystem in s, which is not negative. Raises Fault."""
     value = subsystem.dead_time
     if value is None:
         return fmpq(0)

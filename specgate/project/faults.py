@@ -28,10 +28,16 @@ class Fault(Exception):
 
 
 class Faults:
-    """Takes faults on the way, so that one does not hide the next."""
+    """Takes faults on the way, so that one does not hide the next; `repeated` counts those that only follow."""
 
     def __init__(self) -> None:
         self.findings: list[Finding] = []
+        self.repeated = 0
+
+    @property
+    def count(self) -> int:
+        """How many faults there were, those that only follow from others included."""
+        return len(self.findings) + self.repeated
 
     @contextmanager
     def noted(self, **about: str | None) -> Iterator[None]:
@@ -39,5 +45,7 @@ class Faults:
         try:
             yield
         except Fault as fault:
-            if not fault.repeats:
+            if fault.repeats:
+                self.repeated += 1
+            else:
                 self.findings.append(fault.finding(**about))

@@ -13,7 +13,7 @@ from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, evaluate
 from specgate.project.percent import refuse_ambiguous
 from specgate.project.rational_forms import refuse_written_rate
-from specgate.project.signals import LoopSignals, misfit
+from specgate.project.signals import LoopSignals, calls, misfit
 from specgate.project.subsystem_checks import wants
 from specgate.project.types import Excitation, Response, Value
 from specgate.project.wiring import wire
@@ -42,20 +42,26 @@ _NOT_ZERO = frozenset({"size", "amplitude", "slope", "curvature", "area", "densi
 def check_loop(signals: LoopSignals, blocks: Mapping[str, BuiltBlock], found: Faults) -> None:
     """Note everything wrong with a loop; `blocks` are those of its subsystems that could be built."""
     project, loop, values = signals.project, signals.loop, signals.values
-    before = len(found.findings)
+    before = found.count
     for name in loop.signals:
-        with found.noted(loop=loop.name):
-            signals.check(name)
+        signals.check(name, found)
     for name, value in loop.rest.items():
         with found.noted(loop=loop.name):
             _check_rest(value, signals.unit(name), values)
+    for opened in loop.breaks.values():
+        with found.noted(loop=loop.name):
+            signals.unit(opened.at)
     for response in loop.responses.values():
         with found.noted(loop=loop.name, response=response.name):
+            signals.unit(response.to)
+        with found.noted(loop=loop.name, response=response.name):
             _check_reference(response, signals)
+        with found.noted(loop=loop.name, response=response.name):
             check_together(response)
         for excitation in response.excitations:
             _check_excitation(excitation, signals, found, response.name)
-    if len(found.findings) == before and set(project.subsystems) == set(blocks):
+    used = {call.subsystem for signal in loop.signals.values() for call in calls(signal.expression)}
+    if found.count == before and used <= blocks.keys():
         with found.noted(loop=loop.name):
             wire(project, loop, blocks, values)
 
@@ -72,6 +78,8 @@ def _check_reference(response: Response, signals: LoopSignals) -> None:
 
 
 def _check_excitation(excitation: Excitation, signals: LoopSignals, found: Faults, response: str) -> None:
+    with found.noted(loop=signals.loop.name, response=response):
+        signals.unit(excitation.source)
     for name, value in excitation.quantities.items():
         with found.noted(loop=signals.loop.name, response=response):
             unit = signals.unit(excitation.source)

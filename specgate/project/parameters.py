@@ -235,6 +235,8 @@ def written_numbers(expression: Expression, values: Values, scope: str | None = 
 def _read(value: Value, values: Values, scope: str | None) -> dict[str, str]:
     """Return the qualified names that a value reads, by the names as written."""
     known, read = values.scopes[scope], {}
+    if not expressions.is_read(value.expression):
+        raise Fault(faults.VALUE, f"`{value.as_written}` could not be read", value.place, repeats=True)
     for node in expressions.references(value.expression):
         if isinstance(node, PercentOf) and node.name in SIGNAL_WORDS:
             if node.name in known:

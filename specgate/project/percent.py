@@ -7,13 +7,18 @@ from flint import fmpq
 from specgate.project import faults
 from specgate.project.faults import Fault
 from specgate.project.types import Value
-from specgate.terms.expressions import Number, PercentOf, literal_unit
+from specgate.terms.expressions import Number, PercentOf, is_read, literal_unit
 from specgate.terms.unit import Unit
 
 
 def relative_to_change(value: Value) -> fmpq | None:
-    """Return the fraction if a value is in per cent of the change (`2 %`, `2 % of change`), else None."""
+    """Return the fraction if a value is in per cent of the change (`2 %`, `2 % of change`), else None.
+
+    Raises a repeating Fault for a value that could not be read.
+    """
     expression = value.expression
+    if not is_read(expression):
+        raise Fault(faults.VALUE, f"`{value.as_written}` could not be read", value.place, repeats=True)
     if isinstance(expression, PercentOf) and expression.name == "change":
         return expression.percent / 100
     unit = literal_unit(expression)

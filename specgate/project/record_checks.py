@@ -6,8 +6,9 @@ from collections.abc import Mapping
 from dataclasses import replace
 
 from specgate.project import faults
-from specgate.project.criterion_checks import CriterionCheck
+from specgate.project.criterion_checks import limit_check
 from specgate.project.faults import Fault, Faults
+from specgate.project.limit_checks import LimitCheck
 from specgate.project.parameters import Values, evaluate
 from specgate.project.percent import relative_to_change
 from specgate.project.signals import LoopSignals
@@ -63,7 +64,8 @@ def _only(
         return None
     if not hit and (criteria or one.aim != Aim()):
         there = ", ".join(f"{each.measure} on {each.subject.on}" for each in criteria) or "no criterion"
-        raise Fault(faults.NAME, f"{name} has no criterion that this could be about: there is {there}", one.place)
+        message = f"{name} has no criterion that this could be about: there is {there}"
+        raise Fault(faults.NAME, message, one.place, repeats=project.partial)
     if not _numbers(one) or len(hit) < 2:
         return hit[0] if hit and _numbers(one) else None
     fitting = [each for each in hit if _fits(one, each, signals, values)]
@@ -73,7 +75,7 @@ def _only(
         return fitting[0]
     measures = ", ".join(dict.fromkeys(each.measure for each in fitting or hit))
     message = f"{name} has several criteria: say by `measure` (and `on`) which of them is meant ({measures})"
-    raise Fault(faults.VALUE, message, one.place)
+    raise Fault(faults.VALUE, message, one.place, repeats=project.partial)
 
 
 def _fits(one: Evidence | Waiver, criterion: Criterion, signals: Mapping[str, LoopSignals], values: Values) -> bool:
@@ -92,7 +94,7 @@ def _check_evidence(
 ) -> None:
     if criterion is None:
         return
-    check = CriterionCheck(signals[criterion.subject.loop], criterion, values)
+    check = limit_check(criterion, signals, values)
     limited = [relative_to_change(value) is not None for value in criterion.limit.values]
     for value in evidence.results:
         check.counted(value)
@@ -105,7 +107,7 @@ def _check_evidence(
         _check_spread(spread, evidence.results, check, values)
 
 
-def _check_spread(spread: Value, results: tuple[Value, ...], check: CriterionCheck, values: Values) -> None:
+def _check_spread(spread: Value, results: tuple[Value, ...], check: LimitCheck, values: Values) -> None:
     check.counted(spread)
     if _decibel(spread) is not _decibel(results[0]) or any(_decibel(one) is not _decibel(spread) for one in results):
         message = f"`{spread.as_written}`: results and their uncertainty are either all in dB or all plain ratios"
@@ -125,9 +127,9 @@ def _check_waiver(
 ) -> None:
     for limit in waiver.limits if criterion is not None else ():
         assert criterion is not None
-        check = CriterionCheck(signals[criterion.subject.loop], replace(criterion, limit=limit), values)
         try:
-            check.limit()
+            for check in limit_check(criterion, signals, values).checks(limit):
+                check()
         except Fault as fault:
             # of two limits the other one stays, and keeps a value of the wrong sign out
             if fault.rule != faults.SIGN or criterion.limit.kind not in ("between", "within"):

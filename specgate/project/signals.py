@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
+from functools import partial
 
 from flint import fmpq
 
 from specgate.project import faults
-from specgate.project.faults import Fault
+from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, infer, values
 from specgate.project.temperatures import absolute
 from specgate.project.types import (
@@ -54,6 +55,19 @@ def _summed(node: SignalExpression) -> Iterator[str]:
     elif isinstance(node, Sum):
         for term in node.terms:
             yield from _summed(term)
+
+
+def calls(node: SignalExpression) -> Iterator[Call]:
+    """Give all calls in an expression, the outer ones first."""
+    if isinstance(node, Call):
+        yield node
+        for argument in node.arguments.values():
+            yield from calls(argument)
+    elif isinstance(node, Scaled):
+        yield from calls(node.operand)
+    elif isinstance(node, Sum):
+        for term in node.terms:
+            yield from calls(term)
 
 
 class LoopSignals:
@@ -103,7 +117,7 @@ class LoopSignals:
             return self.units[name]
         if name in self.faults:
             raise self.faults[name]
-        raise Fault(faults.NAME, f"the loop has no input or signal `{name}`", self.loop.place)
+        raise self._missing(f"the loop has no input or signal `{name}`", self.loop.place)
 
     def span(self, name: str) -> fmpq | None:
         """Return high minus low of the span of the port that gives a signal; None without a span. Raises Fault."""
@@ -139,7 +153,7 @@ class LoopSignals:
 
     def _known(self, name: str, place: Place) -> None:
         if name not in self.loop.inputs and name not in self.loop.signals:
-            raise Fault(faults.NAME, f"the loop has no input or signal `{name}`", place)
+            raise self._missing(f"the loop has no input or signal `{name}`", place)
 
     def _declared(self, dimension: Dimension) -> Unit:
         """Return the first unit of this dimension that the project declares, else the coherent one."""
@@ -151,10 +165,14 @@ class LoopSignals:
         """Return the output port that a call reads. Raises Fault."""
         subsystem = self.project.subsystems.get(call.subsystem)
         if subsystem is None:
-            raise Fault(faults.NAME, f"there is no subsystem `{call.subsystem}`", call.place)
+            raise self._missing(f"there is no subsystem `{call.subsystem}`", call.place)
         if call.output in subsystem.outputs:
             return subsystem.outputs[call.output]
-        raise Fault(faults.NAME, f"`{call.subsystem}` has no output `{call.output}`", call.place)
+        raise self._missing(f"`{call.subsystem}` has no output `{call.output}`", call.place)
+
+    def _missing(self, message: str, place: Place) -> Fault:
+        """Return the fault of a name that leads nowhere: said already where a part of the project was left out."""
+        return Fault(faults.NAME, message, place, repeats=self.project.partial)
 
     def factor(self, node: Scaled) -> Dimension:
         """Return the dimension of the constant in front of a signal. Raises Fault."""
@@ -162,23 +180,27 @@ class LoopSignals:
 
     # --- checks -------------------------------------------------------------------------------------------
 
-    def check(self, name: str) -> None:
-        """Check the dimensions in the equation of a signal. Raises Fault."""
-        self.unit(name)
-        self._check(self.loop.signals[name].expression)
+    def check(self, name: str, found: Faults) -> None:
+        """Note everything wrong with the dimensions in the equation of a signal."""
+        with found.noted(loop=self.loop.name):
+            self.unit(name)
+        for check in self._checks(self.loop.signals[name].expression):
+            with found.noted(loop=self.loop.name):
+                check()
 
-    def _check(self, node: SignalExpression) -> None:
+    def _checks(self, node: SignalExpression) -> Iterator[Callable[[], object]]:
+        """Give the checks of an expression, the inner ones first."""
         if isinstance(node, Scaled):
-            self.factor(node)
-            self._check(node.operand)
+            yield partial(self.factor, node)
+            yield from self._checks(node.operand)
         elif isinstance(node, Sum):
             for term in node.terms:
-                self._check(term)
-            self._sum(node)
+                yield from self._checks(term)
+            yield partial(self._sum, node)
         elif isinstance(node, Call):
             for name, argument in node.arguments.items():
-                self._check(argument)
-                self._argument(node, name, argument)
+                yield from self._checks(argument)
+                yield partial(self._argument, node, name, argument)
 
     def _sum(self, node: Sum) -> None:
         first = self.unit_of(node)
@@ -191,9 +213,10 @@ class LoopSignals:
                     raise Fault(faults.DIMENSION, message, term.place)
 
     def _argument(self, call: Call, name: str, argument: SignalExpression) -> None:
-        port = self.project.subsystems[call.subsystem].inputs.get(name)
+        subsystem = self.project.subsystems.get(call.subsystem)
+        port = subsystem.inputs.get(name) if subsystem is not None else None
         if port is None:
-            raise Fault(faults.NAME, f"`{call.subsystem}` has no input `{name}`", call.place)
+            raise self._missing(f"`{call.subsystem}` has no input `{name}`", call.place)
         unit = self.unit_of(argument)
         problem = None if unit is None else misfit(unit, port.unit)
         if unit is not None and problem is not None:
@@ -252,4 +275,4 @@ def owner(project: Project, port: Port) -> str | None:
     return next(names, None)
 
 
-__all__ = ["LoopSignals", "constant", "misfit", "owner", "signal_unit", "span"]
+__all__ = ["LoopSignals", "calls", "constant", "misfit", "owner", "signal_unit", "span"]

@@ -5,7 +5,7 @@ from __future__ import annotations
 from flint import fmpq
 
 from specgate.project import faults
-from specgate.project.blocks import BuiltBlock, build
+from specgate.project.blocks import BuiltBlock, build, dead_time
 from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault, Faults
 from specgate.project.parameters import Values, evaluate, infer
@@ -27,6 +27,8 @@ def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> Buil
         _check_port(port, subsystem.name, values, found)
     _check_validity(subsystem, values, found)
     with found.noted(subsystem=subsystem.name):
+        dead_time(subsystem, values)
+    with found.noted(subsystem=subsystem.name):
         return build(subsystem, values)
     return None
 
@@ -34,12 +36,13 @@ def check_subsystem(subsystem: Subsystem, values: Values, found: Faults) -> Buil
 def _check_port(port: Port, subsystem: str, values: Values, found: Faults) -> None:
     with found.noted(subsystem=subsystem):
         refuse_decibel(port.unit, port)
-        ranges = (
-            ("linear range", port.linear_range, port.unit.dimension),
-            ("range of rates", port.rate_range, port.unit.dimension / TIME),
-            ("span", port.span, port.unit.dimension),
-        )
-        for name, pair, dimension in ranges:
+    ranges = (
+        ("linear range", port.linear_range, port.unit.dimension),
+        ("range of rates", port.rate_range, port.unit.dimension / TIME),
+        ("span", port.span, port.unit.dimension),
+    )
+    for name, pair, dimension in ranges:
+        with found.noted(subsystem=subsystem):
             if pair is not None:
                 _check_range(name, pair, dimension, port, subsystem, values)
 

@@ -22,6 +22,7 @@ from specgate.terms.trees import (
     PercentOf,
     Pi,
     Power,
+    Unread,
 )
 from specgate.terms.unit import PI, Unit
 
@@ -39,9 +40,11 @@ __all__ = [
     "Pi",
     "Plain",
     "Power",
+    "Unread",
     "as_dimension",
     "dimension",
     "evaluate",
+    "is_read",
     "literal_unit",
     "names",
     "parse",
@@ -74,6 +77,11 @@ def names(expression: Expression) -> tuple[str, ...]:
 def references(expression: Expression) -> tuple[Name | PercentOf, ...]:
     """Return the nodes that read a name, each with its offset, in the order of the text."""
     return tuple(node for node in expression.walk() if isinstance(node, Name | PercentOf))
+
+
+def is_read(expression: Expression) -> bool:
+    """Whether all of an expression could be read."""
+    return not any(isinstance(node, Unread) for node in expression.walk())
 
 
 def literal_unit(expression: Expression) -> Unit | None:

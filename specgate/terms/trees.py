@@ -81,6 +81,11 @@ class Name(Expression):
 
 
 @record
+class Unread(Expression):
+    """Something that could not be read, which has been reported: whatever rests on it has nothing more to say."""
+
+
+@record
 class PercentOf(Expression):
     """`percent % of name`: of a parameter, or of the signal's `span` or `change`."""
 

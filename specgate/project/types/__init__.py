@@ -33,6 +33,7 @@ from specgate.project.types.models import (
     Root,
     SampledModel,
     StateSpaceModel,
+    UnreadModel,
 )
 from specgate.project.types.records import Aim, DecisionRule, Evidence, Expiry, ModelAgreement, RecordFile, Waiver
 from specgate.project.types.requirements import Link, Method, NotApplicable, Requirement
@@ -93,6 +94,7 @@ __all__ = [
     "Subsystem",
     "Sum",
     "Tolerance",
+    "UnreadModel",
     "Value",
     "Waiver",
 ]

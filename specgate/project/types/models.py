@@ -102,4 +102,18 @@ class SampledModel:
     reconstruction: str = "zero_order"
 
 
-Model = PolynomialModel | FactoredModel | PoleZeroModel | StateSpaceModel | PidModel | MatrixModel | SampledModel
+@record
+class UnreadModel:
+    """Stands where something in a model was reported: nothing can be built of it."""
+
+
+Model = (
+    PolynomialModel
+    | FactoredModel
+    | PoleZeroModel
+    | StateSpaceModel
+    | PidModel
+    | MatrixModel
+    | SampledModel
+    | UnreadModel
+)

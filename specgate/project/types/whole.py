@@ -85,6 +85,8 @@ class Project:
     """Sections answered later (cases), by name."""
     today: str | None = None
     """The day as which waivers are judged, where another than the date of the title block was asked for."""
+    partial: bool = False
+    """Something in it was reported: what could not be read is left out, and what refers to that says nothing."""
     warnings: tuple[object, ...] = ()
     """Findings of the intake below level error (specgate.terms.findings.Finding)."""
 
