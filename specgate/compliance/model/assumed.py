@@ -4,11 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
 
-from specgate.analysis.analyses import Analyses, LoopAnalysis, Missing, Study
+from specgate.analysis.analyses import Analyses, Missing
+from specgate.analysis.late_fractions import LateFraction
 from specgate.analysis.through import through
-from specgate.approximations.figures import SHOWN
-from specgate.compliance.model.fact import ModelAssumption
+from specgate.approximations.opened import OpenedLoop
+from specgate.compliance.model.fact import ModelAssumption, greatest
+from specgate.compliance.model.integrators import OF_LASTING_ERRORS, quasi_integrator, slowest_pole
 from specgate.compliance.model.late import Late, Where, fraction_of, stand_in, written_dead_time
+from specgate.compliance.model.tails import hidden_slow_mode, near_cancellation
 from specgate.compliance.model.validity import pedigrees, validities
 from specgate.compliance.model.where import Place, blocks, places
 from specgate.compliance.readings import Reading
@@ -28,6 +31,8 @@ class ModelAssumptions:
     def __init__(self, project: Project, analyses: Analyses) -> None:
         self._project, self._analyses = project, analyses
         self._crossovers: dict[tuple[str, str], Where | None] = {}
+        self._opened: dict[tuple[str, str], tuple[OpenedLoop | None, OpenedLoop | None]] = {}
+        self._fractions: dict[tuple[str, str], LateFraction | None] = {}
 
     def of(self, about: Subject, arguments: Both, reading: Reading) -> tuple[ModelAssumption, ...]:
         """Return what a criterion rests on. reading: what was read for it."""
@@ -40,19 +45,38 @@ class ModelAssumptions:
     def _found(
         self, about: Subject, subsystems: Sequence[Subsystem], arguments: Both, reading: Reading
     ) -> Iterator[ModelAssumption]:
-        on = about.loop if about.name is None else f"{about.loop}.{about.name}"
+        on = named(about)
         known = self._analyses.nominal.values, self._analyses.again.values
         yield from pedigrees(subsystems, on)
         if any(one.valid_to is not None for one in subsystems):
             yield from validities(subsystems, on, self._places(about, arguments, reading), known)
         loop = self._analyses.nominal.loops[about.loop]
-        for one in subsystems:
-            block = _block(loop, one.name)
-            if block is None or (one.stands_for is None and fraction_of(block) is None):
-                continue
-            late = Late(one, block, on, self._compared(about, one.name, arguments, reading), known)
-            found = stand_in(late), written_dead_time(late, arguments[0].measure)
-            yield from (each for each in found if each is not None)
+        found = [
+            hidden_slow_mode(loop, about, arguments[0]),
+            near_cancellation(loop, about, arguments[0], reading),
+            *(self._late(about, one, arguments, reading) for one in subsystems),
+            *(self._slow(about, one, arguments) for one in subsystems),
+        ]
+        yield from (one for one in found if one is not None)
+
+    def _late(self, about: Subject, one: Subsystem, arguments: Both, reading: Reading) -> ModelAssumption | None:
+        """Say what a block stands for, or that it holds a dead time that is written as a fraction."""
+        block = self._block(about.loop, one.name)
+        if block is None or (one.stands_for is None and self._fraction(about.loop, one.name) is None):
+            return None
+        known = self._analyses.nominal.values, self._analyses.again.values
+        late = Late(one, block, named(about), self._compared(about, one.name, arguments, reading), known)
+        return stand_in(late) or written_dead_time(late, arguments[0].measure)
+
+    def _slow(self, about: Subject, one: Subsystem, arguments: Both) -> ModelAssumption | None:
+        """Say of a block that it is counted on as an integrator and is none."""
+        block = None if arguments[0].measure not in OF_LASTING_ERRORS else self._block(about.loop, one.name)
+        pole = None if block is None else slowest_pole(block)
+        crossover = None if pole is None else self._crossover(about.loop, one.name)
+        opened = None if crossover is None else self._through(about.loop, one.name)[0]
+        if pole is None or crossover is None or opened is None:
+            return None
+        return quasi_integrator(one, pole, named(about), opened, crossover.frequency)
 
     # --- where ---------------------------------------------------------------------------------------------------
 
@@ -73,41 +97,53 @@ class ModelAssumptions:
         if found is not None:
             return found
         decided = self._places(about, arguments, reading)
-        highest = None if not decided else _greatest([one.answer for _, one in decided])
+        highest = None if not decided else greatest([one.answer for _, one in decided])
         return next((Where(place.what, one) for place, one in decided if one.answer is highest), None)
 
     def _crossover(self, loop: str, subsystem: str) -> Where | None:
         """Return the highest gain crossover of the loop through a block; searched once."""
         key = loop, subsystem
         if key not in self._crossovers:
-            nominal, again = self._analyses.nominal, self._analyses.again
-            first = _highest_crossover(nominal, loop, subsystem)
-            second = first if again.loops[loop] is nominal.loops[loop] else _highest_crossover(again, loop, subsystem)
+            first, second = (_highest_crossover(one) for one in self._through(loop, subsystem))
             both = None if first is None or second is None else Reading(first, second)
-            self._crossovers[key] = (
-                None if both is None else Where(f"the crossover of the loop through {subsystem}", both)
-            )
+            what = f"the crossover of the loop through {subsystem}"
+            self._crossovers[key] = None if both is None else Where(what, both)
         return self._crossovers[key]
 
+    def _through(self, loop: str, subsystem: str) -> tuple[OpenedLoop | None, OpenedLoop | None]:
+        """Return the loop through a block with both decimals for pi (the same object where pi has no part in it)."""
+        key = loop, subsystem
+        if key not in self._opened:
+            nominal, again = self._analyses.nominal.loops[loop], self._analyses.again.loops[loop]
+            first = through(nominal, subsystem)
+            self._opened[key] = first, first if again is nominal else through(again, subsystem)
+        return self._opened[key]
 
-def _block(loop: LoopAnalysis, subsystem: str) -> Block | None:
-    """Return a subsystem as a block in s, with the nominal values."""
-    found = (one.block for one in loop.solution.wiring.instances if one.block.name == subsystem)
-    return next((one for one in found if isinstance(one, Block)), None)
+    def _block(self, loop: str, subsystem: str) -> Block | None:
+        """Return a subsystem as a block in s, with the nominal values."""
+        instances = self._analyses.nominal.loops[loop].solution.wiring.instances
+        found = (one.block for one in instances if one.block.name == subsystem)
+        return next((one for one in found if isinstance(one, Block)), None)
+
+    def _fraction(self, loop: str, subsystem: str) -> LateFraction | None:
+        """Return the fraction in a block that stands for a dead time; looked for once."""
+        key = loop, subsystem
+        if key not in self._fractions:
+            block = self._block(loop, subsystem)
+            self._fractions[key] = None if block is None else fraction_of(block)
+        return self._fractions[key]
 
 
-def _highest_crossover(study: Study, loop: str, subsystem: str) -> Answer | None:
-    opened = through(study.loops[loop], subsystem)
+def named(about: Subject) -> str:
+    """Name what a criterion is about."""
+    return about.loop if about.name is None else f"{about.loop}.{about.name}"
+
+
+def _highest_crossover(opened: OpenedLoop | None) -> Answer | None:
     if opened is None:
         return None
     try:
         found = [one.frequency for one in opened.gain_crossings if one.frequency.absent is None]
     except OutOfWork:
         return None
-    return _greatest(found) if found else None
-
-
-def _greatest(answers: Sequence[Answer]) -> Answer:
-    """Return the greatest of some numbers, the first of those that cannot be told apart."""
-    balls = [one.enclose(SHOWN) for one in answers]
-    return next(one for one, own in zip(answers, balls, strict=True) if not any(other > own for other in balls))
+    return greatest(found) if found else None

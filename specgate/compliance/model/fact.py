@@ -2,10 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Literal
 
+from specgate.approximations.figures import SHOWN
 from specgate.compliance.compare import sign
 from specgate.compliance.readings import PI_DECIDES, Reading
+from specgate.response.answers import Answer
 from specgate.terms.places import Place
 from specgate.terms.precision import HIGHEST
 from specgate.terms.records import record
@@ -57,6 +60,12 @@ def exceeds(value: Reading, limit: Reading) -> Trilean:
         decided = None if answer.absent is not None else sign(answer, bound.exact)
         found.append(Trilean.UNKNOWN if decided is None else Trilean.of(decided > 0))
     return found[0] if found[0] is found[1] else Trilean.UNKNOWN
+
+
+def greatest(answers: Sequence[Answer]) -> Answer:
+    """Return the greatest of some numbers, the first of those that cannot be told apart."""
+    balls = [one.enclose(SHOWN) for one in answers]
+    return next(one for one, own in zip(answers, balls, strict=True) if not any(other > own for other in balls))
 
 
 UNTOLD = f"that cannot be told at {HIGHEST} bits, or {PI_DECIDES}"

@@ -8,6 +8,7 @@ from flint import arb, fmpq
 
 from specgate.analysis.analyses import LoopAnalysis, Missing, Study
 from specgate.approximations.spots import Spot, spots
+from specgate.compliance.model.fact import greatest
 from specgate.frequency.questions import Gain
 from specgate.measures.measure import Arguments
 from specgate.project.types import Subject
@@ -119,16 +120,14 @@ def _of_gain(gain: Gain, name: str) -> Iterator[Place]:
 
 
 def _modes(channel: TransferFunction) -> Iterator[Place]:
-    """Yield the distance from the origin of every mode that counts in the response to a step."""
+    """Yield the distance from the origin of the fastest mode that counts in the response to a step."""
     if not channel.proper or not is_hurwitz(channel.denominator) or channel.denominator.degree() < 1:
         return
     expansion = expand(channel.numerator, channel.denominator, fmpq(1), _BITS)
     counting = [one.pole for one in expansion.modes if _counts(one, expansion)]
-    seen: set[int] = set()
-    for spot in spots(channel.denominator):
-        if spot.index not in seen and any(pole.overlaps(spot.at(_BITS)) for pole in counting):
-            seen.add(spot.index)
-            yield Place("a mode that has 2 % of the change or more", spot.distance)
+    found = [one.distance for one in spots(channel.denominator) if any(p.overlaps(one.at(_BITS)) for p in counting)]
+    if found:
+        yield Place("the fastest mode that has 2 % of the change or more", greatest(found))
 
 
 def _counts(mode: Mode, expansion: Expansion) -> bool:
