@@ -41,7 +41,7 @@ class DelayedAxis:
         """Im(N conj D) with its slope over frequency."""
 
         def function(frequency: arb) -> tuple[arb, arb]:
-            n, d, dn, dd = self._with_slopes(frequency)
+            n, d, dn, dd = self.with_slopes(frequency)
             return (n * d.conjugate()).imag, (dn * d.conjugate() - n * dd.conjugate()).real
 
         return function
@@ -51,13 +51,14 @@ class DelayedAxis:
         """|N|^2 - |D|^2 with its slope over frequency."""
 
         def function(frequency: arb) -> tuple[arb, arb]:
-            n, d, dn, dd = self._with_slopes(frequency)
+            n, d, dn, dd = self.with_slopes(frequency)
             value = (n * n.conjugate()).real - (d * d.conjugate()).real
             return value, 2 * ((dd * d.conjugate()).imag - (dn * n.conjugate()).imag)
 
         return function
 
-    def _with_slopes(self, frequency: arb) -> tuple[acb, acb, acb, acb]:
+    def with_slopes(self, frequency: arb) -> tuple[acb, acb, acb, acb]:
+        """Return balls of N, D, N' and D' at the precision that is set."""
         above, below = self._at(ctx.prec)
         s = acb(0, frequency)
         return above.value(s), below.value(s), above.slope(s), below.slope(s)

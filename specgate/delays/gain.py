@@ -7,6 +7,7 @@ from functools import cached_property
 from flint import arb, fmpq
 
 from specgate.delays.magnitude import DelayedMagnitude
+from specgate.delays.masks import late_inside
 from specgate.delays.phase import late_phase
 from specgate.delays.squared_gain import SquaredGain
 from specgate.frequency.fall import square_of_factor
@@ -156,6 +157,4 @@ class DelayedGain:
         """Return whether the gain stays inside a mask over frequency; `at` names the first violation."""
         if self._undelayed is not None:
             return self._undelayed.within(mask)
-        return self._missing or Answer.undecided(
-            "a mask over frequency of a loop that holds a dead time inside is not answered"
-        )
+        return self._missing or late_inside(self.transfer, mask)

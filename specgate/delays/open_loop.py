@@ -27,6 +27,7 @@ from specgate.delays.endless import End, end_of
 from specgate.delays.isolate import Crossing as Zero
 from specgate.delays.isolate import isolate
 from specgate.delays.magnitude import DelayedMagnitude
+from specgate.delays.masks import late_inside
 from specgate.delays.phase import late_phase
 from specgate.frequency import margins
 from specgate.frequency.choose import Candidate, least, order
@@ -317,7 +318,7 @@ class DelayedLoop(SidedMargins):
         """Return whether |L| stays inside a mask over frequency."""
         if self._undelayed is not None:
             return self._undelayed.within(mask)
-        return Answer.undecided("a mask over frequency of a loop that holds a dead time inside is not answered")
+        return late_inside(self.transfer, mask)
 
 
 def _pi(bits: int) -> arb:

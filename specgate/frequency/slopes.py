@@ -8,6 +8,8 @@ corners, which are rational, the sign is exact. The first zero where E falls is 
 
 from __future__ import annotations
 
+from typing import Protocol
+
 from flint import arb, fmpq, fmpq_poly
 
 from specgate.frequency.newton import Zero
@@ -40,10 +42,11 @@ class Slope:
         with working_precision(bits):
             return arb(self.low * self.low) * ((omega / self.start).log() * self._power()).exp()
 
-    def power(self, bits: int) -> arb:
-        """Return a ball of q."""
+    def rise(self, omega: arb, bits: int) -> arb:
+        """Return a ball of the derivative of that square."""
+        square = self.square(omega, bits)
         with working_precision(bits):
-            return self._power()
+            return square * self._power() / omega
 
     def _power(self) -> arb:
         return 2 * arb(self.high / self.low).log() / arb(self.end / self.start).log()
@@ -56,6 +59,11 @@ class Room:
         self.edge, self.side = edge, side
         self._parts = (above, below, above.derivative(), below.derivative())
 
+    @property
+    def span(self) -> tuple[fmpq, fmpq]:
+        """Both ends of the edge (rad/s)."""
+        return self.edge.start, self.edge.end
+
     def value(self, omega: arb, bits: int) -> arb:
         """Return a ball of E."""
         a, b, _, _ = self._at(omega, bits)
@@ -66,15 +74,16 @@ class Room:
     def slope(self, omega: arb, bits: int) -> arb:
         """Return a ball of dE/d omega."""
         _, b, da, db = self._at(omega, bits)
-        square, power = self.edge.square(omega, bits), self.edge.power(bits)
+        square, rise = self.edge.square(omega, bits), self.edge.rise(omega, bits)
         with working_precision(bits):
-            return self.side * (square * (power / omega * b + 2 * omega * db) - 2 * omega * da)
+            return self.side * (square * db + rise * b - da)
 
     def _at(self, omega: arb, bits: int) -> tuple[arb, arb, arb, arb]:
+        """Return a and b, and their derivatives over omega."""
         with working_precision(bits):
             x = omega * omega
             first, second, third, fourth = (p.numer()(x) / p.denom() for p in self._parts)
-        return first, second, third, fourth
+            return first, second, 2 * omega * third, 2 * omega * fourth
 
     def sign_at(self, omega: fmpq) -> Sign:
         """Return the sign of E: exact at the corners. Raises NotTold."""
@@ -90,9 +99,26 @@ class Room:
         raise NotTold
 
 
-def first_violation(room: Room) -> Answer | None:
+class Rooms(Protocol):
+    """E between two frequencies, however the gain is given."""
+
+    @property
+    def span(self) -> tuple[fmpq, fmpq]:
+        """Both ends (rad/s)."""
+
+    def value(self, omega: arb, bits: int) -> arb:
+        """Return a ball of E."""
+
+    def slope(self, omega: arb, bits: int) -> arb:
+        """Return a ball of dE/d omega."""
+
+    def sign_at(self, omega: fmpq) -> Sign:
+        """Return the sign of E. Raises NotTold."""
+
+
+def first_violation(room: Rooms) -> Answer | None:
     """Return the first frequency beyond which there is no room; None where there is some everywhere. Raises NotTold."""
-    waiting = [(room.edge.start, room.edge.end)]
+    waiting = [room.span]
     for _ in range(_CELLS):
         if not waiting:
             return None
@@ -118,7 +144,7 @@ def _ball(left: fmpq, right: fmpq) -> arb:
         return arb(left).union(arb(right))
 
 
-def _positive(room: Room, cell: arb, slope: arb) -> bool:
+def _positive(room: Rooms, cell: arb, slope: arb) -> bool:
     """Whether E > 0 on a cell: by its enclosure, or by that at the middle and the slopes."""
     if room.value(cell, _BITS) > 0:
         return True
