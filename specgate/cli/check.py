@@ -6,6 +6,7 @@ import argparse
 import sys
 
 from specgate.cli import status, today
+from specgate.cli.baselines import add_options, chosen
 from specgate.cli.terminal import colour, width
 
 
@@ -21,6 +22,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
         action="store_true",
         help="put every formula of the catalogue to every response, break and loop: which hold, which not",
     )
+    add_options(parser)
     parser.add_argument("-o", "--output", metavar="FILE", default="-", help="write to FILE instead of the terminal")
     parser.add_argument(
         "--color",
@@ -48,6 +50,7 @@ def run(options: argparse.Namespace) -> int:
         proof=options.proof,
         formulas=options.formulas,
         today=options.date,
+        since=chosen(options),
     )
     if options.format == "json":
         from specgate.exchange import json

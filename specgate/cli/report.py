@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from specgate.cli import status, today
+from specgate.cli.baselines import add_options, chosen
 from specgate.cli.terminal import colour, progress, width
 
 if TYPE_CHECKING:
@@ -21,6 +22,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
         "-o", "--output", metavar="FILE", required=True, help="the report: FILE.pdf to sign, FILE.html to read"
     )
     today.add(parser)
+    add_options(parser)
     parser.epilog = status.EXPLAINED
 
 
@@ -45,7 +47,7 @@ def run(options: argparse.Namespace) -> int:
     from specgate.report import terminal
     from specgate.review.types import Unusable
 
-    judged = judge(options.project, formulas=True, today=options.date)
+    judged = judge(options.project, formulas=True, today=options.date, since=chosen(options))
     if isinstance(judged.review, Unusable):
         text = terminal.render(judged.review, width=width(sys.stderr), colour=colour("auto", sys.stderr))
         print(text, end="", file=sys.stderr)

@@ -6,7 +6,12 @@ import argparse
 import re
 from importlib.resources import files
 
-FILES = {"project": "specgate.schema.json", "results": "results.schema.json", "differences": "differences.schema.json"}
+FILES = {
+    "project": "specgate.schema.json",
+    "results": "results.schema.json",
+    "differences": "differences.schema.json",
+    "baseline": "baseline.schema.json",
+}
 
 _NAMED = re.compile(r'"#/\$defs/(\w+)"')
 """A definition that is referred to; those that a schema does not hold itself are those of the results."""
@@ -19,7 +24,7 @@ def configure(parser: argparse.ArgumentParser) -> None:
         nargs="?",
         choices=tuple(FILES),
         default="project",
-        help="of the project files (default), of results (`check --format json`), or of `diff --format json`",
+        help="of the project files (default), of what `check` and `diff` write as JSON, or of what `freeze` writes",
     )
     parser.epilog = (
         "for completion in an editor, write it beside the project and name it in the first line of specgate.yaml:\n"

@@ -34,8 +34,10 @@ class Foreign:
 
 
 def read_known(text: str) -> Foreign:
-    """Read what this version knows of a result. Raises ValueError where the text is no result at all."""
+    """Read what this version knows of a result, or of that in a baseline. Raises ValueError where there is none."""
     tree = json.loads(text)
+    if isinstance(tree, dict) and "baseline" in tree and "result" in tree:
+        tree = tree["result"]
     if not isinstance(tree, dict) or "format" not in tree or not isinstance(tree.get("gate"), dict):
         raise ValueError("this is not a result of specgate: the keys `format` and `gate` are missing")
     reading = _Reading()

@@ -35,6 +35,7 @@ from specgate.rules.rule import Facts
 from specgate.rules.table import findings
 from specgate.terms.enclosed import printed_exact
 from specgate.terms.findings import Finding, in_order
+from specgate.traceability.baseline import Baseline
 from specgate.traceability.graph import trace
 
 if TYPE_CHECKING:
@@ -44,17 +45,18 @@ FORMAT = 1
 """Version of the results format."""
 
 
-def review(project: Project, wanted: Wanted | None = None) -> Review:
+def review(project: Project, wanted: Wanted | None = None, baseline: Baseline | None = None) -> Review:
     """Compute and judge a project. Raises Fault for a project that its checks refuse.
 
-    wanted: what to compute beside the verdicts; what drawings show unless told otherwise.
+    wanted: what to compute beside the verdicts; what drawings show unless told otherwise. baseline: what the links
+    of the project stood on when they were frozen.
     """
     asked = wanted or Wanted()
     analyses, graph = analyse(project), trace(project)
     assumptions = Assumptions(project, analyses)
     assessments = assess(project, analyses, graph, assumptions)
     warned = (one for one in project.warnings if isinstance(one, Finding))
-    said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments, assumptions))))
+    said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments, assumptions, baseline))))
     again = analyses.again.loops
     loops = {name: loop(one, again[name], asked) for name, one in analyses.loops.items()}
     thresholds = policy(project, analyses.nominal.values)

@@ -11,6 +11,7 @@ from specgate.project.types import Project, Requirement
 from specgate.terms.findings import Finding
 from specgate.terms.records import record
 from specgate.terms.verdicts import Level, Standing, Verdict
+from specgate.traceability.baseline import Baseline
 from specgate.traceability.graph import Graph
 
 
@@ -23,6 +24,8 @@ class Facts:
     graph: Graph
     assessments: Mapping[str, Assessment]
     assumptions: Assumptions
+    baseline: Baseline | None = None
+    """What the links stood on when they were frozen; None where the run knows no baseline."""
 
     def leaves(self) -> Iterator[Requirement]:
         """Give the requirements at the end of the trace: nothing is derived from them, and nothing has to be."""

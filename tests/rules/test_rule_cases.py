@@ -1,6 +1,7 @@
 """Small projects, passing and failing, each with exactly the findings that stand in it behind `#!`.
 
-A line is `level rule line:column message`; a case without such lines has no findings.
+A line is `level rule line:column message`; a case without such lines has no findings. A file of the same name in the
+folder `baseline` beside a case is frozen, and the case is run with that baseline.
 """
 
 from __future__ import annotations
@@ -10,7 +11,9 @@ from pathlib import Path
 import pytest
 
 from specgate.intake.load import Problems, load
+from specgate.project.types import Project
 from specgate.review.build import review
+from specgate.review.freeze import freeze
 from specgate.rules.table import RULES
 
 CASES = Path(__file__).resolve().parents[1] / "rule_cases"
@@ -24,12 +27,18 @@ def test_findings_expected_and_no_others(path: Path) -> None:
 
 
 def found(path: Path) -> list[str]:
-    project = load(path)
-    assert not isinstance(project, Problems), [one.message for one in project.findings]
+    project, before = loaded(path), path.parent / "baseline" / path.name
+    frozen = freeze(loaded(before)).links if before.exists() else None
     return [
         f"{one.level} {one.rule} {one.location.line}:{one.location.column} {one.message}"
-        for one in review(project).findings
+        for one in review(project, baseline=frozen).findings
     ]
+
+
+def loaded(path: Path) -> Project:
+    project = load(path)
+    assert not isinstance(project, Problems), [one.message for one in project.findings]
+    return project
 
 
 @pytest.mark.parametrize("rule", RULES)

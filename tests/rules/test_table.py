@@ -38,6 +38,7 @@ ADDED = {
         "waiver-insufficient",
         "waiver-unneeded",
     ),
+    "link-stale",
 }
 NO_ROWS = {"__init__", "rule", "table"}
 

@@ -128,6 +128,9 @@ def _title(review: Review) -> Title:
 
 def sentence(review: Review) -> str:
     """Return the gate's outcome in a sentence."""
+    if review.gate.since is not None:
+        number = counted(len(review.gate.reasons), "thing") if review.gate.reasons else "Nothing"
+        return f"{number} got worse since the baseline of {review.gate.since}; what was so then does not hold the gate."
     if review.gate.outcome == "pass":
         exempt = sum(r.verdict == "not_applicable" for r in review.requirements.values())
         rest = f", {exempt} not applicable" if exempt else ""

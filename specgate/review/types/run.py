@@ -34,6 +34,8 @@ class GateReview:
 
     outcome: str
     reasons: tuple[str, ...]
+    since: str | None = omitted()
+    """The baseline that the gate counts from, where it holds only on what got worse since."""
 
 
 @record
