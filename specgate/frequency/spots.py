@@ -4,8 +4,8 @@ On the axis everything is a polynomial in x = omega^2 (times omega). A spot is a
 (zero included), an irrational root of a polynomial with whole coefficients, or infinity. At each of them the sign of
 any other polynomial is decided exactly and a quotient of two is enclosed to any precision.
 
-Roots. FLINT isolates all complex roots of a square-free polynomial in disjoint balls; roots that are real have an
-imaginary part of exactly zero there. Each is then enclosed by itself to any precision (`newton`).
+Roots. The positive roots of a square-free polynomial are isolated exactly (`systems.real_roots`). Each is then enclosed
+by itself, first where the polynomial is monotone (`narrowing`), then to any precision (`newton`).
 
 Signs. For a root r of a square-free f and any p let g = gcd(f, p) and f = g h. g and h have no root in common and r is
 a root of one of them: refining until g or h is proved not to vanish at r decides whether p(r) = 0. If it is not zero,
@@ -16,20 +16,22 @@ from __future__ import annotations
 
 from typing import Literal, Protocol, cast
 
-from flint import acb, arb, fmpq, fmpq_poly, fmpz_poly
+from flint import arb, fmpq, fmpq_poly, fmpz_poly
 
 from specgate.frequency.chebyshev import chebyshev_modulo
+from specgate.frequency.narrowing import monotone
 from specgate.frequency.newton import Function, Zero
 from specgate.response.answers import Answer
 from specgate.response.budget import OutOfWork
 from specgate.systems.polynomials import order_at_origin, primitive
+from specgate.systems.real_roots import may_have_rational_roots, positive_intervals
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 
 Sign = Literal[-1, 0, 1]
 
 FIRST = 64
-"""Bits at which roots are isolated; they are refined as far as a question needs."""
+"""Bits at which signs at roots are looked for first; roots are refined as far as a question needs."""
 _EXACT_FROM = 256
 """Bits at which a polynomial that may vanish at a root is looked at by its greatest common divisor with the other."""
 
@@ -111,9 +113,10 @@ class Infinity:
 class Root:
     """An irrational positive root of a square-free polynomial with whole coefficients."""
 
-    def __init__(self, polynomial: fmpz_poly, isolating: arb) -> None:
+    def __init__(self, polynomial: fmpz_poly, left: fmpq, right: fmpq) -> None:
+        """Take the root in (left, right), which is the only one there; right is no root."""
         self._polynomial = polynomial
-        ball, rising = _clear(polynomial, isolating)
+        ball, rising = monotone(polynomial, left, right)
         self._zero = Zero(_at(polynomial), _at(polynomial.derivative()), ball, rising=rising)
 
     def enclose(self, bits: int) -> arb:
@@ -195,35 +198,28 @@ def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:
     square_free = whole // whole.gcd(whole.derivative())
     if square_free.degree() == 1:
         return (Rational(fmpq(-square_free[0], square_free[1])),)
-    real = [root.real for root, _ in _complex_roots(square_free, FIRST) if root.imag.is_zero() and root.real > 0]
-    return tuple(_spot(square_free, ball) for ball in sorted(real, key=lambda ball: ball.mid().fmpq()))
+    intervals = positive_intervals(square_free)
+    rational = bool(intervals) and may_have_rational_roots(square_free)
+    return tuple(_spot(square_free, *interval, rational=rational) for interval in intervals)
 
 
-def _spot(p: fmpz_poly, ball: arb) -> Spot:
-    """Return a root as what it is: lead * root is a whole number if it is rational (p has whole coefficients)."""
-    root = Root(p, ball)
+def _spot(p: fmpz_poly, left: fmpq, right: fmpq, *, rational: bool) -> Spot:
+    """Return a root as what it is: lead * root is a whole number if it is rational (p has whole coefficients).
+
+    rational: whether p may have rational roots at all.
+    """
+    if left == right:
+        return Rational(right)
+    root = Root(p, left, right)
+    if not rational:
+        return root
     lead = p.leading_coefficient()
-    bits = int((ball.abs_upper() * abs(lead)).upper().fmpq().ceil()).bit_length() + 8
+    bits = int((right * abs(lead)).ceil()).bit_length() + 8
     with working_precision(2 * bits + 64):
         nearest = (root.enclose(bits) * lead).unique_fmpz()
     if nearest is not None and p(fmpq(nearest, lead)) == 0:
         return Rational(fmpq(nearest, lead))
     return root
-
-
-def _clear(p: fmpz_poly, isolating: arb) -> tuple[arb, bool]:
-    """Return the root of an isolating ball in one in which p' does not vanish, and whether p rises there."""
-    slope, bits = p.derivative(), FIRST
-    while True:
-        with working_precision(bits):
-            steep = slope(isolating)
-            if not steep.contains(0):
-                return isolating, bool(steep > 0)
-        bits *= 2
-        real = [root.real for root, _ in _complex_roots(p, bits) if root.imag.is_zero()]
-        # a ball of a neighbour may reach over the edge of the old one: more bits tell them apart
-        found = [ball for ball in real if ball.overlaps(isolating)]
-        isolating = found[0] if len(found) == 1 else isolating
 
 
 def _at(p: fmpz_poly) -> Function:
@@ -232,12 +228,6 @@ def _at(p: fmpz_poly) -> Function:
             return p(x)
 
     return value
-
-
-def _complex_roots(p: fmpz_poly, bits: int) -> list[tuple[acb, int]]:
-    with working_precision(bits):
-        # FLINT returns pairs with a multiplicity, its type stubs say otherwise.
-        return cast("list[tuple[acb, int]]", p.complex_roots())
 
 
 def sign_of(value: fmpq) -> Sign:
