@@ -143,7 +143,8 @@ def _highest_crossover(opened: OpenedLoop | None) -> Answer | None:
     if opened is None:
         return None
     try:
-        found = [one.frequency for one in opened.gain_crossings if one.frequency.absent is None]
+        every = [one.frequency for one in opened.gain_crossings]
+        found = [one for one in every if one.absent is None and one.exact != 0]
     except OutOfWork:
         return None
     return greatest(found) if found else None
