@@ -68,7 +68,7 @@ def in_w_padded(p: arb_poly, degree: int, bits: int) -> list[arb]:
 
 def schur_at(p: arb_poly, bits: int) -> bool | None:
     """Whether every root of every polynomial in a ball lies strictly inside (True), or not so for any (False)."""
-    return _is_hurwitz(_padded(p, bits), bits)
+    return is_hurwitz_in_balls(_padded(p, bits), bits)
 
 
 def _padded(p: arb_poly, bits: int) -> list[arb]:
@@ -77,7 +77,7 @@ def _padded(p: arb_poly, bits: int) -> list[arb]:
     return [*found, *([arb(0)] * (p.degree() + 1 - len(found)))]
 
 
-def _is_hurwitz(coefficients: Sequence[arb], bits: int) -> bool | None:
+def is_hurwitz_in_balls(coefficients: Sequence[arb], bits: int) -> bool | None:
     """Routh's array from the low end, as for exact coefficients (systems.stability); None where a sign is not told.
 
     A pivot of the other sign is a root that is not on the left, whatever follows. A leading coefficient that may be

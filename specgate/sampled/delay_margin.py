@@ -1,51 +1,72 @@
 """The dead time that a sampled loop stands: how much later its held output may arrive before the loop is unstable.
 
-A dead time of a part of a period is no lag of L(z): it makes another pulse transfer function. So the delay d = n T + e
-of the output goes into the loop itself, e being a ball: the characteristic polynomial then encloses those for all
-delays in a stretch, and Routh's array in balls proves all of them stable at once. Stretch after stretch is proved from
-zero on; where a delay is proved not to be stable, the margin lies between, and both ends are moved towards each other.
-With whole periods the polynomial is z^n D(z) + N(z), D without and D + N with the answer to what is held at n = 0.
-e = 0 and e = T belong to both neighbouring n: what is held for no time does not matter.
+A dead time of a part of a period is no lag of L(z): it makes another pulse transfer function. So the whole delay
+d = n T + e goes into the characteristic polynomial, z^n D(z) + N(z, e). The loop stops being stable where, for the
+first time, a root of it is on the unit circle. Where that may be is known for all n at once (`delay_cell`): the period
+is cut into intervals of e, and for each of them and each branch n theta - arg(-N/D) either holds no multiple of 2 pi
+over the whole interval, or the interval is cut until it does not or until the angle runs one way and its ends tell that
+it passes one. Between two n's that lie between the same multiples of 2 pi none has to be looked at, for theta > 0.
+e = T with n and e = 0 with n + 1 are the same delay; a root that is there as far as balls tell is between a little
+before and a little after. Where the plant passes on at once what is held, a sample at kT sees another value for every
+delay a little above n T than for n T: the loop is looked at anew there, and may lose its stability at once.
 """
 
 from __future__ import annotations
 
-from flint import arb, arb_mat, arb_poly, fmpq, fmpq_mat
+from collections.abc import Callable, Iterator
+from itertools import pairwise
 
+from flint import arb, arb_poly, fmpq, fmpq_mat
+
+from specgate.frequency.margins import NOT_USED_UP
+from specgate.response.accounts import Account, Footing
 from specgate.response.answers import Answer
-from specgate.sampled.circle import in_w_padded
+from specgate.sampled.blocks import LONGEST_DELAY
+from specgate.sampled.circle import is_hurwitz_in_balls
 from specgate.sampled.components import Component
-from specgate.sampled.cycle import Controller, Cycle
-from specgate.sampled.spread import Spread, is_hurwitz
+from specgate.sampled.delay_cell import Cell, Unclear
+from specgate.sampled.delay_family import Family, family
+from specgate.sampled.passages import Passage, Refined, TooNear, Touch, following, passage
+from specgate.sampled.rungs import kept
+from specgate.sampled.sayings import GROUND
 from specgate.sampled.state_space import StateSpace, of_rows
 from specgate.terms.precision import working_precision
 from specgate.terms.verdicts import Proof
 
-_TABLES = 400
-_LONGEST = 60
-_FINEST = fmpq(1, 1 << 14)
+_BITS = (256, 768)
+_PARTS = 6
+_CELLS = 1500
+"""Intervals that are looked at before the question is left open."""
+_STEPS = 5000
+_FINEST = fmpq(1, 1 << 60)
+_CUT = fmpq(33, 64)
+"""Cuts avoid the fractions of a period that a margin may be by design."""
+
+_METHOD = (
+    "the added dead time goes into the characteristic polynomial in z itself; where a root of it may be on the unit "
+    "circle is isolated in balls for all delays, and the first delay at which one is follows from a change of sign"
+)
 
 
-def delay_margin(component: Component) -> Answer:
-    """Return the least dead time (s) that makes a stable loop with a single held output unstable."""
+def delay_margin(component: Component, *, unit_at_one: bool = False) -> Answer:
+    """Return the least dead time (s) that makes a stable loop with a single held output unstable.
+
+    unit_at_one: whether L(1) is exactly 1, whatever the delay is.
+    """
     found = _single(component)
     if found is None:
         return Answer.undecided("several outputs are held in this loop: which of them arrives late is not told")
-    search = _Search(*found, component.period)
-    low, high = search.bracket()
-    if high is None:
-        least = int(low.p) / int(low.q)
-        return Answer.undecided(
-            f"the loop stands {least:.4g} s at least; how much more is not told within the work limit"
-        )
-    ends = [low, high]
-
-    def refine(bits: int) -> arb:
-        ends[:] = search.closer(ends[0], ends[1], bits)
-        with working_precision(bits + 16):
-            return arb(ends[0]).union(arb(ends[1]))
-
-    return Answer(Proof.ENCLOSED, refine=refine)
+    motion, law, delay = found
+    made = kept(lambda bits: family(motion, law, component.period, bits, unit_at_one=unit_at_one))
+    proved, direct = fmpq(0), any(entry != 0 for entry in motion.d.entries())
+    for bits in _BITS:
+        search = _Search(made, delay, component.period, bits, direct=direct)
+        try:
+            return search.answer()
+        except _Untold as untold:
+            proved = max(proved, untold.proved)
+    least = int(proved.p) / int(proved.q)
+    return Answer.undecided(f"the loop stands {least:.4g} s at least; how much more is not told within the work limit")
 
 
 def _single(component: Component) -> tuple[StateSpace, StateSpace, fmpq] | None:
@@ -71,136 +92,112 @@ def _column(rows: list[list[fmpq]], place: int) -> fmpq_mat:
     return of_rows([[row[place]] for row in rows], 1)
 
 
-def _zero(matrix: fmpq_mat) -> fmpq_mat:
-    return fmpq_mat(int(matrix.nrows()), int(matrix.ncols()))
+class _Untold(Exception):
+    """The search ends; up to `proved` (s) more the loop is proved stable."""
+
+    def __init__(self, proved: fmpq) -> None:
+        self.proved = proved
 
 
 class _Search:
-    def __init__(self, motion: StateSpace, law: StateSpace, delay: fmpq, period: fmpq) -> None:
-        self._motion, self._law, self._delay, self._period = motion, law, delay, period
-        # the fraction stands for any: only what moves over the rest of the period depends on it
-        self._cycle = Cycle(motion, [Controller(law, period / 2)], period)
-        self._silent = Cycle(
-            StateSpace(motion.a, _zero(motion.b), motion.c, _zero(motion.d)), [Controller(law, period / 2)], period
-        )
-        self._known: dict[int, _Family] = {}
-        self._tables = 0
+    def __init__(self, made: Callable[[int], Family], delay: fmpq, period: fmpq, bits: int, *, direct: bool) -> None:
+        self._made, self._delay, self._period, self._bits = made, delay, period, bits
+        self._direct = direct
+        self._first = int((delay / period).floor())
+        self._begin = delay - self._first * period
+        self._count = 0
+        self._reached = delay
 
-    def bracket(self) -> tuple[fmpq, fmpq | None]:
-        """Return a time up to which the loop is proved stable, and a later one at which it is proved not to be."""
-        time, step = fmpq(0), self._period / 8
-        while self._tables < _TABLES and time < _LONGEST * self._period and step >= self._period * _FINEST:
-            end = min(time + step, self._boundary(time) - self._delay)
-            if self._stable(time, end, 128):
-                time, step = end, min(2 * step, self._period / 2)
-                continue
-            # a stretch is proved only if it is short beside its distance from the limit: look for that further ahead
-            beyond = next(
-                (late for late in (end, time + 4 * step, time + 16 * step) if self._unstable(late, 128)), None
-            )
-            if beyond is not None:
-                return time, beyond
-            step = step / 2
-        return time, None
+    def answer(self) -> Answer:
+        """Return the margin. Raises _Untold."""
+        cells = list(self._cover())
+        whole = self._first
+        lost = self._begin == 0 and self._lost_at_once(whole)
+        if not lost and all(cell.empty for cell in cells):
+            return Answer.nothing(NOT_USED_UP, infinite=True)
+        for _ in range(_STEPS):
+            if lost:
+                return Answer.of_exact(whole * self._period - self._delay)
+            for cell in cells:
+                if whole > self._first or cell.low >= self._begin:
+                    found = self._passed(cell, whole)
+                    if found is not None:
+                        return self._answered(found)
+                    self._reached = whole * self._period + cell.high
+            whole = whole + 1 if self._direct else min(following(cell, whole + 1) for cell in cells)
+            self._reached = whole * self._period
+            lost = self._lost_at_once(whole)
+        raise self._end()
 
-    def closer(self, low: fmpq, high: fmpq, bits: int) -> tuple[fmpq, fmpq]:
-        """Move both ends of a bracket towards each other until it has so many bits, as far as the work limit goes."""
-        self._tables = 0
-        while high - low > high * fmpq(1, 1 << bits) and self._tables < _TABLES:
-            step, moved = (high - low) / 2, False
-            for _ in range(40):
-                middle = min(low + step, self._boundary(low) - self._delay)
-                if self._stable(low, middle, 2 * bits + 128):
-                    low, moved = middle, True
-                    break
-                if self._unstable(middle, 2 * bits + 128):
-                    high, moved = middle, True
-                    break
-                step = step / 2
-            if not moved:
-                break
-        return low, high
-
-    def _boundary(self, time: fmpq) -> fmpq:
-        """Return the next whole number of periods after a whole delay."""
-        return ((self._delay + time) / self._period).floor() * self._period + self._period
-
-    def _stable(self, low: fmpq, high: fmpq, bits: int) -> bool:
+    def _lost_at_once(self, whole: int) -> bool:
+        """Whether the loop is unstable for delays a little above whole periods. Raises _Untold."""
+        if not self._direct:
+            return False
+        if whole - self._first > LONGEST_DELAY:
+            raise self._end()
+        bits = self._bits + 8 * whole
+        made = self._made(bits)
+        answer, _ = made.over(arb(self._period))
         with working_precision(bits):
-            span = arb(low + self._delay).union(arb(high + self._delay))
-        return self._told(low, span, bits) is True
+            turned = arb_poly([1, 1]) ** whole * arb_poly(made.opened)
+            polynomial = turned + arb_poly([1, -1]) ** whole * arb_poly(answer)
+            found = polynomial.coeffs()
+            stable = is_hurwitz_in_balls([*found, *([arb(0)] * (whole + len(answer) - len(found)))], bits)
+        if stable is None:
+            raise self._end()
+        return not stable
 
-    def _unstable(self, time: fmpq, bits: int) -> bool:
-        with working_precision(bits):
-            delay = arb(time + self._delay)
-        return self._told(time, delay, bits) is False
+    def _answered(self, found: Passage | Touch) -> Answer:
+        refined = Refined(self._made, found, self._delay)
+        if not refined.good:
+            raise self._end()
+        return Answer(Proof.ENCLOSED, refine=refined, how=self._how(found))
 
-    def _told(self, time: fmpq, delay: arb, bits: int) -> bool | None:
-        """Whether every root is inside, of every delay in a ball within one period."""
-        self._tables += 1
-        whole = int(((self._delay + time) / self._period).floor())
-        precision = bits + 8 * whole
-        with working_precision(precision):
-            left = arb(self._period * (whole + 1)) - delay
-        family = self._family(precision)
-        middle, slope = family.over(left)
-        with working_precision(precision):
-            middle = family.opened * arb_poly([*([0] * whole), 1]) + middle
-            degree = whole + family.opened.degree()
-            away = left - left.mid()
-            pairs = zip(in_w_padded(middle, degree, precision), in_w_padded(slope, degree, precision), strict=True)
-            return is_hurwitz([Spread(value, change, away) for value, change in pairs])
+    def _how(self, found: Passage | Touch) -> Callable[[], Account]:
+        counts = {"intervals of the period": self._count, "bits at first": self._bits, "whole periods": found.whole}
+        return lambda: Account(_METHOD, Footing(GROUND), brackets=1, counts=counts)
 
-    def _family(self, bits: int) -> _Family:
-        if bits not in self._known:
-            self._known[bits] = _Family(self._cycle, self._silent, self._motion, self._period, bits)
-        return self._known[bits]
+    def _end(self) -> _Untold:
+        return _Untold(max(self._reached - self._delay, fmpq(0)))
 
+    # --- cells --------------------------------------------------------------------------------------------
 
-class _Family:
-    """N(z) of all fractions of a period, by what is left of the period once the output arrives.
+    def _cover(self) -> Iterator[Cell]:
+        """Give intervals over the whole period, in order, over each of which the branches are told apart."""
+        inner = {self._period * (fmpq(k, _PARTS) + fmpq(1, 1009)) for k in range(1, _PARTS)}
+        edges = sorted({fmpq(0), self._begin, self._period, *inner})
+        for low, high in pairwise(edges):
+            yield from self._told(self._cell(low, high))
 
-    With g the answer of the moving states to one that is held over the rest of the period, x[k + 1] is F x + G old
-    + g (new - old). So the characteristic polynomial is affine in g (a change of rank one).
-    """
+    def _told(self, cell: Cell) -> Iterator[Cell]:
+        if cell.told:
+            yield cell
+        else:
+            for part in self._cut(cell):
+                yield from self._told(part)
 
-    def __init__(self, cycle: Cycle, silent: Cycle, motion: StateSpace, period: fmpq, bits: int) -> None:
-        self._motion, self._bits, self._order = cycle, bits, motion.order
-        old, new = (arb_mat(stretch.held) for stretch in cycle.stretches)
-        with working_precision(bits):
-            self.opened: arb_poly = silent.enclosed(bits).charpoly()
-            whole = cycle.motion_over(period, bits).tolist()[: self._order]
-            rows = [list(row) for row in cycle.enclosed(bits).tolist()]
-            for i in range(self._order):
-                for j in range(cycle.order):
-                    own = whole[i][j] if j < self._order else arb(0)
-                    rows[i][j] = own + whole[i][self._order] * old[0, j]
-            base = arb_mat(rows).charpoly()
-            self._base: arb_poly = base - self.opened
-            self._parts: list[arb_poly] = []
-            for i in range(self._order):
-                moved = [list(row) for row in rows]
-                moved[i] = [entry + new[0, j] - old[0, j] for j, entry in enumerate(moved[i])]
-                self._parts.append(arb_mat(moved).charpoly() - base)
+    def _cell(self, low: fmpq, high: fmpq) -> Cell:
+        self._count += 1
+        if self._count > _CELLS or high - low < self._period * _FINEST:
+            raise self._end()
+        return Cell(self._made(self._bits), low, high)
 
-    def over(self, left: arb) -> tuple[arb_poly, arb_poly]:
-        """Return N in the middle of a ball of what is left of the period, and its slope over the ball."""
-        bits = self._bits
-        with working_precision(bits):
-            middle = left.mid()
-        at, slope = self._answers(middle)[0], self._answers(left)[1]
-        with working_precision(bits):
-            total, rate = self._base, arb_poly([0])
-            for value, change, part in zip(at, slope, self._parts, strict=True):
-                total, rate = total + part * value, rate + part * change
-            return total, rate
+    def _cut(self, cell: Cell) -> tuple[Cell, Cell]:
+        middle = cell.low + (cell.high - cell.low) * _CUT
+        return self._cell(cell.low, middle), self._cell(middle, cell.high)
 
-    def _answers(self, left: arb) -> tuple[list[arb], list[arb]]:
-        """Return g and its derivative at (a ball of) times: A g + B follows from g' = e^(At) B."""
-        motion = self._motion.motion
-        moved = self._motion.motion_over(left, self._bits)
-        with working_precision(self._bits):
-            value = [moved[i, self._order] for i in range(self._order)]
-            own = arb_mat([list(row)[: self._order] for row in moved.tolist()[: self._order]])
-            slope = (own * arb_mat(motion.b)).entries() if self._order else []
-        return value, list(slope)
+    # --- passages -----------------------------------------------------------------------------------------
+
+    def _passed(self, cell: Cell, whole: int) -> Passage | Touch | None:
+        """Return the first passage over a cell. Raises _Untold."""
+        try:
+            return passage(cell, whole)
+        except TooNear:
+            raise self._end() from None
+        except Unclear:
+            for part in self._cut(cell):
+                found = self._passed(part, whole)
+                if found is not None:
+                    return found
+                self._reached = max(self._reached, whole * self._period + part.high)
+            return None

@@ -38,8 +38,8 @@ class Balls:
         self._unit_at_one = unit_at_one
         above, below = transfer.in_w(bits)
         with working_precision(bits):
-            (a, b), (c, d) = _parts(above), _parts(below)
-            (e, f) = _parts(above + below)
+            (a, b), (c, d) = parts(above), parts(below)
+            (e, f) = parts(above + below)
             x = arb_poly([0, 1])
             self.above = a * a + x * b * b
             """|N|^2"""
@@ -193,7 +193,7 @@ class Crossed:
         return middle.union(high) if signs[1] * signs[2] < 0 else None
 
 
-def _parts(p: arb_poly) -> tuple[arb_poly, arb_poly]:
+def parts(p: arb_poly) -> tuple[arb_poly, arb_poly]:
     """Return E and O of p(jv) = E(x) + jv O(x)."""
     coefficients = p.coeffs()
     even = [-c if k % 2 else c for k, c in enumerate(coefficients[::2])]

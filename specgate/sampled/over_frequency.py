@@ -54,10 +54,11 @@ class RationalSampledLoop(RationalLoop):
 def over_frequency(opening: SampledOpening) -> OpenLoop | None:
     """Return L over frequency; None where there is no L or its stability is not told."""
     component = opening.component
-    late = None if component is None else partial(delay_margin, component)
     transfer, slow = opening.transfer, opening.slow
     if transfer is None or slow is None or opening.stable is None:
         return None
+    at_one = position_constant(slow)
+    late = None if component is None else partial(delay_margin, component, unit_at_one=at_one == 1)
     if transfer.rest is None:
         return RationalSampledLoop(transfer, slow, opening.period, late, stable=opening.stable)
-    return EnclosedLoop(transfer, slow, position_constant(slow), opening.period, late, stable=opening.stable)
+    return EnclosedLoop(transfer, slow, at_one, opening.period, late, stable=opening.stable)
