@@ -127,7 +127,7 @@ def _modes(channel: TransferFunction) -> Iterator[Place]:
     counting = [one.pole for one in expansion.modes if _counts(one, expansion)]
     found = [one.distance for one in spots(channel.denominator) if any(p.overlaps(one.at(_BITS)) for p in counting)]
     if found:
-        yield Place("the fastest mode that has 2 % of the change or more", greatest(found))
+        yield Place("the fastest mode that counts", greatest(found))
 
 
 def _counts(mode: Mode, expansion: Expansion) -> bool:
