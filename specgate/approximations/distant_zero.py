@@ -41,6 +41,10 @@ def _without_zeros(features: Features, arguments: Arguments) -> Answer:
 
 def _reduced(features: Features, _: Arguments) -> Features | Absent:
     """Return the response without its zeros."""
+    return features.once(_without)
+
+
+def _without(features: Features) -> Features | Absent:
     constant = fmpq_poly([features.channel.numerator[0]])
     if not constant:
         return Absent("a zero lies at the origin: without it there is another response")

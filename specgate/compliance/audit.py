@@ -124,9 +124,18 @@ def _union(chained: Linked, arguments: Arguments, policy: Policy) -> Iterator[Au
                 held.add(name)
 
 
-def audited_conditions(link: Link, arguments: Arguments, policy: Policy) -> Iterator[AuditedCondition]:
-    """Yield every condition of a link, those of its premises first, with what was found."""
+def audited_conditions(
+    link: Link, arguments: Arguments, policy: Policy, known: dict[int, AuditedCondition] | None = None
+) -> Iterator[AuditedCondition]:
+    """Yield every condition of a link, those of its premises first, with what was found.
+
+    known: what other rows have found with the same arguments in the same response, by the identity of the condition.
+    """
+    kept = {} if known is None else known
     for owner, condition in conditions(link.row.name, arguments.measure, link.row.variant):
+        if id(condition) in kept:
+            yield kept[id(condition)]
+            continue
         own = policy.own(owner.name, condition)
         threshold = condition.threshold if own is None else own.stated
         found = _found(condition, link, arguments, threshold)
@@ -135,7 +144,9 @@ def audited_conditions(link: Link, arguments: Arguments, policy: Policy) -> Iter
             and own.looser
             and _found(condition, link, arguments, own.catalogue).holds is not Trilean.YES
         )
-        yield AuditedCondition(owner.name, condition, threshold, found, None if own is None else own.words, beyond)
+        words = None if own is None else own.words
+        kept[id(condition)] = AuditedCondition(owner.name, condition, threshold, found, words, beyond)
+        yield kept[id(condition)]
 
 
 def _found(condition: Condition, link: Link, arguments: Arguments, threshold: fmpq | None) -> Found:

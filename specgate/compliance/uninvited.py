@@ -29,7 +29,7 @@ from specgate.measures import subjects
 from specgate.measures.measure import Arguments, Measure
 from specgate.measures.table import MEASURES
 from specgate.project.types import Project, Subject
-from specgate.response.answers import Answer
+from specgate.response.answers import Absent, Answer
 from specgate.terms.records import record
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Trilean
@@ -64,6 +64,23 @@ class Question:
     arguments: Arguments
     said: Mapping[str, str] | None
     unit: Unit | None
+
+
+@record
+class Asked:
+    """A question with the proved answer, and the conditions that formulas for it have been held to so far.
+
+    conditions: by identity; rows that share a premise share what was found.
+    """
+
+    question: Question
+    truth: Reading
+    conditions: dict[int, AuditedCondition]
+
+    @property
+    def absent(self) -> Absent | None:
+        """Why there is no answer."""
+        return self.truth.settled.absent
 
 
 @record
@@ -132,36 +149,34 @@ class Uninvited:
         if nominal is None or again is None or not rows:
             return Formulas(reason=beyond)
         again = nominal if again.subject is nominal.subject else again
-        asked = [(one, _truth(one, nominal, again)) for one in self._questions(about, rows)]
+        asked = [Asked(one, _truth(one, nominal, again), {}) for one in self._questions(about, rows)]
         found = tuple(
-            formula
-            for row in rows
-            for question, truth in asked
-            for formula in self._against(Link(row, nominal, again), question, truth)
+            formula for row in rows for one in asked for formula in self._against(Link(row, nominal, again), one)
         )
-        absent = {one.measure.name: why.reason for one, truth in asked if (why := truth.settled.absent) is not None}
+        absent = {one.question.measure.name: one.absent.reason for one in asked if one.absent is not None}
         return Formulas(found, tuple(absent.items()), beyond if not found else None)
 
-    def _against(self, link: Link, question: Question, truth: Reading) -> Iterator[Formula]:
+    def _against(self, link: Link, asked: Asked) -> Iterator[Formula]:
         """Yield a formula against a question, if it is one for this formula and has an answer to compare with."""
-        name, absent = question.measure.name, truth.settled.absent
-        if name not in link.row.estimates or (absent is not None and name not in _TOLD_WITHOUT_A_VALUE):
+        question = asked.question
+        name = question.measure.name
+        if name not in link.row.estimates or (asked.absent is not None and name not in _TOLD_WITHOUT_A_VALUE):
             return
-        conditions = tuple(audited_conditions(link, question.arguments, self._policy))
+        conditions = tuple(audited_conditions(link, question.arguments, self._policy, asked.conditions))
         keys = [one.condition.key for one in conditions]
         if any(map(_of_another_question, conditions)) or (question.said is _WHOLE and "counting" not in keys):
             return
-        yield _formula(link, question, conditions, truth)
+        yield _formula(link, question, conditions, asked.truth)
 
     def _questions(self, about: Subject, rows: Iterable[Approximation]) -> Iterator[Question]:
         """Yield what the requirements ask, and the usual of each measure that none of them asks for."""
         loop = self._analyses.nominal.loops[about.loop]
         signal = loop.responses[about.name].unit if about.kind == "response" and about.name is not None else ONE
-        asked = list(self._asked(about))
+        own = list(self._asked(about))
         for name in dict.fromkeys(name for row in rows for name in row.estimates):
             measure = MEASURES[name]
             if measure.read is not None and about.kind in measure.subjects:
-                yield from [one for one in asked if one.measure is measure] or _usual(measure, signal)
+                yield from [one for one in own if one.measure is measure] or _usual(measure, signal)
 
     def _asked(self, about: Subject) -> Iterator[Question]:
         seen: list[Arguments] = []
