@@ -65,7 +65,8 @@ def number(value: Value, values: Values, span: fmpq | None = None) -> fmpq:
 
 
 def _said(name: str, value: Value) -> str:
-    plain = name in ("band", "from", "to") and isinstance(value.expression, Number) and relative_to_change(value)
+    literal = name in ("band", "from", "to") and isinstance(value.expression, Number)
+    plain = literal and relative_to_change(value) is not None
     return f"{value.as_written} of the change" if plain else value.as_written
 
 

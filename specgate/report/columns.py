@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import unicodedata
 from collections.abc import Iterator, Mapping, Sequence
 
@@ -25,18 +26,6 @@ def filled(text: str, width: int, right: bool = False) -> str:
     return space + text if right else text + space
 
 
-def cut(text: str, width: int) -> str:
-    """Return text cut to `width` cells, an ellipsis for what is lost."""
-    if cells(text) <= width:
-        return text
-    kept = ""
-    for character in text:
-        if cells(kept + character) > width - 1:
-            break
-        kept += character
-    return kept.rstrip() + "…"
-
-
 def wrapped(text: str, width: int, first: str = "", hang: str = "") -> Iterator[str]:
     """Yield text as lines of at most `width` cells, broken at blanks; they begin with `first`, the others with `hang`.
 
@@ -52,6 +41,33 @@ def wrapped(text: str, width: int, first: str = "", hang: str = "") -> Iterator[
     yield lead + line
 
 
+def folded(text: str, width: int) -> list[str]:
+    """Return text as lines of at most `width` cells, broken at blanks, and long names after `_` and `.`."""
+    lines = [""]
+    for word in text.split(" "):
+        glue = " " if lines[-1] else ""
+        if cells(lines[-1] + glue + word) <= width:
+            lines[-1] += glue + word
+            continue
+        if lines[-1]:
+            lines.append("")
+        for part in _breakable(word, width):
+            if cells(lines[-1] + part) > width and lines[-1]:
+                lines.append("")
+            lines[-1] += part
+    return lines
+
+
+def _breakable(word: str, width: int) -> Iterator[str]:
+    """Give the parts of a word that may stand on lines of their own, none wider than `width` cells."""
+    for part in re.split(r"(?<=[_.])", word):
+        while cells(part) > width:
+            size = next(n for n in range(len(part), 0, -1) if n == 1 or cells(part[:n]) <= width)
+            yield part[:size]
+            part = part[size:]
+        yield part
+
+
 @record
 class Cell:
     """A cell of a table; `key` names its colour, empty for none."""
@@ -62,7 +78,7 @@ class Cell:
 
 @record
 class Column:
-    """A column: heading, whether it is flush right or holds numbers, the least width it may be cut to (None: never).
+    """A column: heading, whether it is flush right or holds numbers, the least width it may be folded to (None: never).
 
     Where even the least widths do not fit, columns are left out in the order of `expendable` (0: never).
     """

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator
 
 from specgate.report.clean import cleaned
-from specgate.report.columns import GAP, Cell, Column, cells, cut, filled, fitted, wrapped
+from specgate.report.columns import GAP, Cell, Column, cells, filled, fitted, folded, wrapped
 from specgate.report.digits import FIGURE_SPACE, POINT_SPACE, aligned
 from specgate.report.parts import formulas, front, matrix
 from specgate.report.words import LEVELS, OUTCOMES, Status, counted
@@ -120,9 +120,7 @@ def _formulas(table: formulas.FormulaTable, width: int, paint: _Paint) -> Iterat
         widths = fitted(FORMULA_COLUMNS, lines, width)
         headings = [Cell(column.heading, "bold") for column in FORMULA_COLUMNS]
         for line in (headings, *lines):
-            yield GAP.join(
-                paint(filled(cut(line[k].text, w), w, FORMULA_COLUMNS[k].right), line[k].key) for k, w in widths.items()
-            )
+            yield from _stacked(line, FORMULA_COLUMNS, widths, paint)
     for letter, condition in table.conditions:
         yield from wrapped(f"{letter} {condition}", width, "  ", "    ")
     for words, groups in (("No value here", table.silent), ("Nothing to estimate", table.absent)):
@@ -138,14 +136,21 @@ def _table(review: Review, width: int, paint: _Paint) -> Iterator[str]:
     widths = fitted(COLUMNS, lines, width)
     yield paint(GAP.join(filled(COLUMNS[k].heading, w, COLUMNS[k].right) for k, w in widths.items()), "bold")
     for line, (_, remark) in zip(lines, table, strict=True):
-        parts = (paint(filled(cut(line[k].text, w), w, COLUMNS[k].right), line[k].key) for k, w in widths.items())
-        yield GAP.join(parts)
+        yield from _stacked(line, COLUMNS, widths, paint)
         indent = " " * (widths[0] + len(GAP))
         standing = line[STANDING]
         if STANDING not in widths and standing.key:
             yield indent + paint(f"{standing.text}: {line[STANDING + 1].text}", standing.key)
         if remark:
             yield from (paint(text, "quiet") for text in wrapped(remark, width, indent, indent))
+
+
+def _stacked(line: list[Cell], columns: tuple[Column, ...], widths: dict[int, int], paint: _Paint) -> Iterator[str]:
+    """Yield a line of a table as as many as its longest cell needs; numbers are never folded."""
+    folds = {k: [line[k].text] if columns[k].least is None else folded(line[k].text, w) for k, w in widths.items()}
+    for number in range(max(map(len, folds.values()))):
+        texts = {k: fold[number] if number < len(fold) else "" for k, fold in folds.items()}
+        yield GAP.join(paint(filled(texts[k], w, columns[k].right), line[k].key) for k, w in widths.items())
 
 
 def _aligned(table: list[list[Cell]], numbers: list[int]) -> list[list[Cell]]:

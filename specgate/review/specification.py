@@ -132,6 +132,7 @@ def _subsystem(subsystem: Subsystem, values: Values, used: bool, by_fit: bool) -
         realised=subsystem.realised,
         by_fit=by_fit,
         ranges=_ranges({**subsystem.inputs, **subsystem.outputs}) or None,
+        dead_time=None if block is None or block.dead_time == 0 else str(block.dead_time),
     )
 
 

@@ -97,6 +97,7 @@ SUBSYSTEM = (
     Declared("model"),
     Declared("realised"),
     Declared("ranges"),
+    Declared("dead_time"),
 )
 LOOP = (
     Declared("title", bears=False, how="reworded"),

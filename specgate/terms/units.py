@@ -41,6 +41,8 @@ _TOKEN = re.compile(
     r"(?P<symbol>[A-Za-z%\u00b0\u00b5\u03bc\u03a9\u2126][A-Za-z0-9_\u00b5\u03bc\u03a9\u2126]*)"
     r"|(?P<one>1(?![0-9]))|(?P<power>(?:\^|\*\*)-?[0-9]{1,2}|[\u00b2\u00b3])|(?P<sign>[*/()])"
 )
+_ONES = re.compile(r"[*/]1(?=[*/)]|$)")
+"""What is left of a part that is dimensionless (`m^3/s/1`)."""
 _SYMBOL = re.compile(r"[A-Za-z%][A-Za-z0-9_]*", re.ASCII)
 _DEFINITION = re.compile(r"(?P<above>[0-9.eE+-]+)(?:/(?P<below>[0-9.eE+-]+))?(?: +(?P<unit>\S.*))?", re.ASCII)
 
@@ -81,7 +83,7 @@ class UnitTable:
 
     def coherent(self, unit: Unit) -> Unit:
         """Return the coherent unit of the same dimension and angle, part by part: `m/s/V` for `mm/s/V`."""
-        text = _SYMBOL.sub(lambda found: self._coherent_symbol(found[0]), unit.symbol)
+        text = _ONES.sub("", _SYMBOL.sub(lambda found: self._coherent_symbol(found[0]), unit.symbol))
         try:
             found = self.parse(text)
         except UnitError:

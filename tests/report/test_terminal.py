@@ -6,7 +6,7 @@ from types import ModuleType
 
 import pytest
 
-from specgate.report.columns import cells
+from specgate.report.columns import cells, folded
 from specgate.report.terminal import render
 
 
@@ -86,3 +86,20 @@ def test_control_characters_do_not_reach_the_terminal(sample: ModuleType) -> Non
     text = render(bad, width=200, colour=False)
     assert "\x1b" not in text
     assert "wipe [U+001B][2J and turn [U+202E] round" in text
+
+
+@pytest.mark.parametrize("width", [80, 90, 130])
+def test_names_are_folded_and_never_cut(sample: ModuleType, width: int) -> None:
+    lines = render(sample.review(), width=width, colour=False).splitlines()
+    start = next(k for k, line in enumerate(lines) if line.startswith("verdict"))
+    end = next(k for k, line in enumerate(lines) if line.startswith("Findings"))
+    table = lines[start:end]
+    assert not any(line.rstrip().endswith("…") or "…  " in line for line in table)
+
+
+def test_a_long_name_is_broken_after_its_signs() -> None:
+    assert folded("envelope_pressure.descend_flow", 18) == ["envelope_pressure.", "descend_flow"]
+    assert folded("settling time of the pair", 10) == ["settling", "time of", "the pair"]
+    assert folded("unbreakable", 4) == ["unbr", "eaka", "ble"]
+    assert folded("", 4) == [""]
+    assert folded("漢字漢", 4) == ["漢字", "漢"]

@@ -96,9 +96,14 @@ def _delayed(term: DelayedTerm) -> str:
     body = polynomial(term.coefficients)
     if term.delay == "0":
         return body
-    size = digits.fraction(term.delay)[0]
-    power = f"e^({digits.MINUS}{'' if size == '1' else size + ' '}s)"
+    power = dead_time(term.delay)
     return power if body == "1" else f"({body}) {power}"
+
+
+def dead_time(seconds: str) -> str:
+    """Return the factor of a transfer function that an exact dead time is: `e^(−1.2 s)`."""
+    size = digits.fraction(seconds)[0]
+    return f"e^({digits.MINUS}{'' if size == '1' else size + ' '}s)"
 
 
 def transfer(coefficients: tuple[str, ...], terms: tuple[DelayedTerm, ...] | None, variable: str = "s") -> str:

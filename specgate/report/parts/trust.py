@@ -26,7 +26,7 @@ class Parameter:
 
 @record
 class Subsystem:
-    """A subsystem as used; `channels` are its numerators over the one denominator."""
+    """A subsystem as used; `channels` are its numerators over the one denominator, `late` the factor of a dead time."""
 
     name: str
     title: str
@@ -34,17 +34,19 @@ class Subsystem:
     model: str
     channels: tuple[tuple[str, str], ...]
     denominator: str
+    late: str
     by_fit: bool
     used: bool
 
 
 @record
 class Definition:
-    """The text of a measure, an approximation or a rule."""
+    """The text of a measure, an approximation or a rule; `short` is what it is, and when there is none."""
 
     name: str
     title: str
     text: str
+    short: str
     source: str
 
 
@@ -133,6 +135,7 @@ def _subsystem(name: str, s: SubsystemReview) -> Subsystem:
         model=s.model,
         channels=tuple((key, shown.polynomial(top)) for key, top in channels.items()),
         denominator=shown.polynomial(s.denominator),
+        late="" if s.dead_time is None else shown.dead_time(s.dead_time),
         by_fit=s.by_fit,
         used=s.used,
     )
@@ -141,10 +144,16 @@ def _subsystem(name: str, s: SubsystemReview) -> Subsystem:
 def _definitions(review: Review) -> tuple[tuple[str, tuple[Definition, ...]], ...]:
     kinds: dict[str, list[Definition]] = {}
     for name, d in review.definitions.items():
-        kinds.setdefault(d.kind, []).append(Definition(name, d.title, d.text, d.source or ""))
+        kinds.setdefault(d.kind, []).append(Definition(name, d.title, d.text, _short(d.text), d.source or ""))
     headings = {"measure": "Measures", "approximation": "Approximations", "rule": "Rules"}
     order = [kind for kind in headings if kind in kinds] + [kind for kind in kinds if kind not in headings]
     return tuple((headings.get(kind, kind), tuple(kinds[kind])) for kind in order)
+
+
+def _short(text: str) -> str:
+    """Return what something is, and when it has no value, from the text that `explain` prints."""
+    first, *others = text.split("\n\n")
+    return " ".join([first, *(part for part in others if part.startswith("No value:"))])
 
 
 def cautions(review: Review) -> tuple[str, ...]:

@@ -45,6 +45,8 @@ class SubsystemReview:
     by_fit: bool = False
     ranges: Mapping[str, str] | None = omitted()
     """Linear and rate ranges and spans of its ports, as written, by `port kind`."""
+    dead_time: str | None = omitted()
+    """Dead time in s, exact: a factor e^(-dead_time s) of every numerator. None for none."""
 
 
 @record
