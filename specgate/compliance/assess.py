@@ -9,16 +9,18 @@ from specgate.analysis.analyses import Analyses
 from specgate.approximations.table import APPROXIMATIONS
 from specgate.compliance.assessment import (
     Assessment,
+    BudgetAssessment,
     CriterionAssessment,
     RecordAssessment,
     Unanswered,
     worst_standing,
 )
 from specgate.compliance.assumptions import Assumptions
+from specgate.compliance.budgeting import Budgets, decides
 from specgate.compliance.criteria import Criteria
 from specgate.compliance.methods import conclude
 from specgate.compliance.records import Records, resting
-from specgate.compliance.ruling import Ruling, listed, of_criteria, of_records, with_methods
+from specgate.compliance.ruling import Ruling, listed, of_criteria, of_records, with_methods, worse
 from specgate.compliance.thresholds import policy
 from specgate.compliance.waivers import Excused, Missed, excuse
 from specgate.compliance.wording import subject
@@ -39,7 +41,13 @@ def assess(
     criteria = Criteria(project, analyses, policy(project, analyses.nominal.values), assumed)
     done: dict[str, Assessment] = {}
     judging = _Judging(
-        project, criteria, Records(project, analyses.nominal, analyses.again), Named.of(project), graph, done
+        project,
+        criteria,
+        Records(project, analyses.nominal, analyses.again),
+        Budgets(project, analyses.nominal, done),
+        Named.of(project),
+        graph,
+        done,
     )
     for name in graph.order:
         done[name] = judging.requirement(project.requirements[name])
@@ -53,6 +61,7 @@ class _Judging:
     project: Project
     judge: Criteria
     records: Records
+    budgets: Budgets
     named: Named
     graph: Graph
     done: Mapping[str, Assessment]
@@ -67,7 +76,8 @@ class _Judging:
         evidence = self.named.evidence.get(requirement.id, ())
         records = tuple(self.records.assess(requirement.id, one, computed) for one in evidence)
         criteria = tuple(resting(one, records) for one in computed)
-        analysed = self._analysed(requirement, criteria, records)
+        budget = self.budgets.assess(requirement, criteria)
+        analysed = self._analysed(requirement, criteria, records, budget)
         methods = conclude(requirement, self.project.info, analysed.verdict, records)
         ruling = with_methods(analysed, methods, records)
         excused = self._excused(requirement, criteria, records)
@@ -84,6 +94,7 @@ class _Judging:
             excused.waivers,
             ruling.verdict is Verdict.NON_COMPLIANT and (excused.verdict or ruling.waived),
             excused.standing,
+            budget,
         )
 
     def _excused(
@@ -105,20 +116,28 @@ class _Judging:
         requirement: Requirement,
         criteria: tuple[CriterionAssessment, ...],
         records: tuple[RecordAssessment, ...],
+        budget: BudgetAssessment | None,
     ) -> Ruling:
-        """Return what the criteria, the records, or the requirements below, say."""
+        """Return what the criteria, the records, the budget, or the requirements below, say."""
         cycle = self.graph.cyclic(requirement.id)
         if cycle:
             return Ruling(Verdict.OPEN, f"it is derived in a circle ({', '.join(cycle)})")
         if requirement.decided_by == "derived":
-            return self._derived(requirement)
+            derived = self._derived(requirement)
+            return derived if budget is None else worse(derived, self._budgeted(budget))
         if requirement.decided_by == "evidence":
             return of_records(records)
         if requirement.criteria:
             return of_criteria(criteria)
-        if requirement.budget is not None:
-            return Ruling(Verdict.OPEN, "it is decided by a budget, which this version keeps and does not add up")
+        if budget is not None:
+            return self._budgeted(budget)
         return Ruling(Verdict.OPEN, "it has no criterion: add one, or say `decided_by: derived` or `evidence`")
+
+    def _budgeted(self, budget: BudgetAssessment) -> Ruling:
+        sharing = [self.done[share.id] for share in budget.budget.shares if share.id in self.done]
+        verdict, reason = decides(budget, [one for one in sharing if one.verdict is not None])
+        due = verdict is not Verdict.OPEN or not sharing or any(one.due for one in sharing)
+        return Ruling(verdict, reason, due)
 
     def _derived(self, requirement: Requirement) -> Ruling:
         children = {name: self.done[name] for name in self.graph.children[requirement.id]}
@@ -141,8 +160,6 @@ class _Judging:
         for criterion in criteria:
             for one in criterion.unanswered:
                 yield Unanswered(one.place, f"{subject(criterion)}: {one.what}", one.decides)
-        if requirement.budget is not None:
-            yield Unanswered(requirement.place, "its budget is kept and not added up by this version")
 
 
 def _missed(verdict: Verdict) -> bool:

@@ -9,17 +9,19 @@ from flint import fmpq
 
 from specgate.approximations.approximation import Condition, Found
 from specgate.compliance.assumptions import Assumption
+from specgate.compliance.budgets import Sum
 from specgate.compliance.chains import Link
 from specgate.compliance.compare import Limits
 from specgate.compliance.model.fact import ModelAssumption
 from specgate.compliance.readings import Reading
+from specgate.compliance.scales import Bounds
 from specgate.measures.measure import Arguments, Measure
-from specgate.project.types import Claim, Criterion, Evidence, Method, Requirement, Waiver
+from specgate.project.types import Budget, Claim, Criterion, Evidence, Limit, Method, Requirement, Share, Waiver
 from specgate.response.answers import Answer
 from specgate.terms.places import Place
 from specgate.terms.records import record
 from specgate.terms.unit import ONE, Unit
-from specgate.terms.verdicts import Standing, Verdict
+from specgate.terms.verdicts import Standing, Trilean, Verdict
 
 Side = Literal["safe", "unsafe", "none"]
 """Of an error or a slip: whether it promises more than there is (unsafe), less (safe), or neither."""
@@ -197,6 +199,38 @@ class RecordAssessment:
 
 
 @record
+class Contribution:
+    """A share of a budget, on the scale of its limit, without its factor: what is given to it, and what it uses."""
+
+    share: Share
+    given: Bounds | None
+    found: Bounds | None
+
+
+@record
+class BudgetAssessment:
+    """A budget, added up. whole: the limit. given, used: what the limits, and the results, of the shares make together.
+
+    allotted, result: whether that keeps the limit; left_over, left: what is left of it. with_reserve: whether the
+    limits keep it with the reserve held back. reason: why something could not be added. unit: of everything.
+    """
+
+    budget: Budget
+    limit: Limit | None = None
+    whole: Bounds | None = None
+    unit: Unit | None = None
+    parts: tuple[Contribution, ...] = ()
+    given: Sum | None = None
+    used: Sum | None = None
+    allotted: Trilean = Trilean.UNKNOWN
+    result: Trilean = Trilean.UNKNOWN
+    left_over: Answer | None = None
+    left: Answer | None = None
+    with_reserve: Trilean = Trilean.UNKNOWN
+    reason: str | None = None
+
+
+@record
 class WaiverAssessment:
     """A waiver on a requirement. lapsed: why it is not in force, or None.
 
@@ -246,3 +280,4 @@ class Assessment:
     """Whether waivers excuse that it is not met: what does not comply is inside what they accept."""
     standing_waived: bool = False
     """Whether a waiver accepts its standing."""
+    budget: BudgetAssessment | None = None

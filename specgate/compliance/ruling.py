@@ -22,6 +22,14 @@ class Ruling:
     waived: bool = False
 
 
+def worse(one: Ruling, other: Ruling) -> Ruling:
+    """Return the worse of two rulings, the reasons of both where they are alike."""
+    if one.verdict is not other.verdict:
+        return one if worst([one.verdict, other.verdict]) is one.verdict else other
+    reasons = [each.reason for each in (one, other) if each.reason]
+    return Ruling(one.verdict, "; ".join(reasons) or None, one.due or other.due, one.waived and other.waived)
+
+
 def of_criteria(criteria: tuple[CriterionAssessment, ...]) -> Ruling:
     """Return what limits give: the worst of them."""
     verdict = worst(one.verdict for one in criteria)

@@ -5,10 +5,10 @@ from __future__ import annotations
 from collections.abc import Iterator
 from typing import Literal, cast
 
+from specgate.intake.budgets import budget
 from specgate.intake.context import Context, items, table, text
 from specgate.intake.criteria import basis, criterion, estimates_one
 from specgate.intake.nodes import Entry, Items, Node, Spot, Table, Text, Truth, as_kept
-from specgate.intake.values import Reader
 from specgate.project.types import Basis, Criterion, Link, Method, NotApplicable, Requirement
 from specgate.terms.places import Place
 
@@ -29,7 +29,9 @@ def requirement(entry: Entry, context: Context) -> Requirement | None:
     context.holes += len(found) < len(criteria) or len(verification) < len(methods)
     if len(found) == len(criteria) and not _supports(rests_on, found, context):
         rests_on = None
-    _check_budget(node, context)
+    shared = node.entries.get("budget")
+    shares = budget(shared.value, shared.key.spot.place, context) if shared is not None else None
+    context.holes += shared is not None and shares is None
     coverage = table(node.get("coverage"))
     return Requirement(
         id=entry.key.value,
@@ -48,7 +50,7 @@ def requirement(entry: Entry, context: Context) -> Requirement | None:
         coverage=_kept(coverage),
         external=_kept_or_none(node.get("external")),
         not_applicable=_not_applicable(node.get("not_applicable")),
-        budget=_kept_or_none(node.get("budget")),
+        budget=shares,
         template_place=_template(node),
     )
 
@@ -95,13 +97,6 @@ def _links(node: Node | None) -> Iterator[Link]:
         if name is not None:
             reaffirmed = body.get("reaffirmed") if body is not None else None
             yield Link(name, item.spot.place, {"reaffirmed": as_kept(reaffirmed)} if reaffirmed is not None else {})
-
-
-def _check_budget(node: Table, context: Context) -> None:
-    """See that the quantity in a budget can be read; the shares are added up by a later version."""
-    budget = table(node.get("budget"))
-    if budget is not None:
-        Reader(context).optional(budget.get("reserve"))
 
 
 def _not_applicable(node: Node | None) -> NotApplicable | None:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import replace
 
 from specgate.project.blocks import build
+from specgate.project.budget_checks import check_budgets
 from specgate.project.criterion_checks import check_requirement
 from specgate.project.faults import Fault, Faults
 from specgate.project.loop_checks import check_loop
@@ -35,6 +36,7 @@ def check(project: Project) -> tuple[Finding, ...]:
     for requirement in project.requirements.values():
         check_requirement(requirement, signals, values, found)
     check_records(project, signals, values, found)
+    check_budgets(project, values, found)
     return in_order((*findings, *found.findings))
 
 

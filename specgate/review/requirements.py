@@ -20,6 +20,7 @@ from specgate.project.types import Project
 from specgate.response.answers import Answer
 from specgate.review.assumptions import assumption, model_assumption
 from specgate.review.audited import condition, error_of
+from specgate.review.budgets import budget
 from specgate.review.masks import mask_of
 from specgate.review.pictures import error_curve, separation
 from specgate.review.printing import amount, amount_of, as_plain, location, plain_number, result, stated
@@ -73,6 +74,7 @@ def requirement(
         evidence=tuple(evidence(one) for one in assessment.records),
         waiver=next((waiver(one) for one in assessment.waivers if one.excuses), None),
         waivers=tuple(waiver(one) for one in assessment.waivers),
+        budget=None if assessment.budget is None else budget(assessment.budget),
         waived=assessment.waived,
         reason=assessment.reason,
         not_applicable=None

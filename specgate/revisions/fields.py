@@ -56,6 +56,14 @@ _RECORD = (
 _WAIVER = ("id", "kind", "reason", "scope", "accepts", "approved_by", "approved_on", "expires")
 
 
+def _budget(budget: Any) -> Any:
+    """Return how a budget is shared, without what the shares come to."""
+    if budget is None:
+        return None
+    shares = tuple(_stated(one, ("id", "factor", "level", "group", "mean")) for one in budget.shares)
+    return {**_stated(budget, ("combine", "level", "reserve", "frequency")), "of": shares}
+
+
 def _stated(one: Any, keys: tuple[str, ...]) -> dict[str, Any]:
     found = {key: getattr(one, key) for key in keys}
     return {key: _written(value) for key, value in found.items() if value not in (None, ())}
@@ -80,6 +88,7 @@ REQUIREMENT = (
     Declared("methods", of=_stages),
     Declared("evidence", of=_records),
     Declared("waivers", of=_waivers),
+    Declared("budget", of=_budget),
     Declared("not_applicable"),
     Declared("external"),
 )

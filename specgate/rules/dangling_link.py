@@ -30,12 +30,11 @@ def check(facts: Facts) -> Iterator[Finding]:
         message = f"{link.requirement}: {link.link.id} in {link.kind} is {wanted} of this project; {remedy}"
         yield _finding(message, link.link.place, link.requirement)
     for name, requirement in requirements.items():
-        shares = (requirement.budget or {}).get("of")
-        for share in shares if isinstance(shares, list | tuple) else ():
-            if share not in requirements:
-                remedy = _remedy(str(share), requirements, "add it, or take it out of the budget")
-                message = f"{name}: {share} in its budget is no requirement of this project; {remedy}"
-                yield _finding(message, requirement.place, name)
+        for share in requirement.budget.shares if requirement.budget is not None else ():
+            if share.id not in requirements:
+                remedy = _remedy(share.id, requirements, "add it, or take it out of the budget")
+                message = f"{name}: {share.id} in its budget is no requirement of this project; {remedy}"
+                yield _finding(message, share.place, name)
     yield from _records("evidence", facts.project.evidence.values(), requirements)
     yield from _records("waiver", facts.project.waivers.values(), requirements)
 

@@ -24,8 +24,8 @@ class Graph:
 
     parents, children: by id, an entry for every requirement.
     cycles: groups of requirements that are derived from one another (or one from itself).
-    order: every id once, children before the requirements that they are derived from; the members of a cycle stand
-    together.
+    order: every id once, children before the requirements that they are derived from, shares of a budget before it;
+    the members of a cycle stand together.
     """
 
     parents: Mapping[str, tuple[str, ...]]
@@ -57,8 +57,28 @@ def trace(project: Project) -> Graph:
         children=below,
         dangling=tuple(_dangling(project)),
         cycles=tuple(group for group in groups if len(group) > 1 or group[0] in below[group[0]]),
-        order=tuple(name for group in groups for name in group),
+        order=tuple(name for group in _by_shares(project, below, parents, groups) for name in group),
     )
+
+
+def _by_shares(
+    project: Project,
+    children: Mapping[str, tuple[str, ...]],
+    parents: Mapping[str, tuple[str, ...]],
+    groups: list[tuple[str, ...]],
+) -> list[tuple[str, ...]]:
+    """Return the groups in an order in which the shares of a budget come before it as well."""
+    more: dict[str, list[str]] = {}
+    for name, one in project.requirements.items():
+        shares = one.budget.shares if one.budget is not None else ()
+        more[name] = [share.id for share in shares if share.id in children and share.id not in children[name]]
+    if not any(more.values()):
+        return groups
+    above: dict[str, tuple[str, ...]] = dict(parents)
+    for name, shared in more.items():
+        for share in shared:
+            above[share] = (*above[share], name)
+    return _groups({name: (*below, *more[name]) for name, below in children.items()}, above)
 
 
 def _dangling(project: Project) -> Iterator[Dangling]:

@@ -9,7 +9,7 @@ from flint import fmpq
 
 from specgate.intake.load import load
 from specgate.project import types
-from specgate.project.types import DecisionRule, Expiry, Project
+from specgate.project.types import Aim, DecisionRule, Expiry, Project
 
 TESTS = Path(__file__).parents[1]
 
@@ -175,6 +175,18 @@ def test_records(whole: Project) -> None:
     assert whole.model_agreement.at_most.as_written == "10 %"
 
 
+def test_budgets(whole: Project) -> None:
+    phases, shared = whole.requirements["KD-8"].budget, whole.requirements["KD-9"].budget
+    assert phases is not None
+    assert [(one.subsystem, one.share and one.share.as_written) for one in phases.blocks] == [("damper", "-40 deg")]
+    assert phases.limit is not None
+    assert (phases.limit.kind, phases.combine) == ("at_least", "sum")
+    assert shared is not None
+    first, second = shared.shares
+    assert (first.factor, first.level, first.group, first.mean) == (fmpq(-2), fmpq(1), "heat", False)
+    assert (second.mean, second.aim) == (True, Aim("settling_time", "draught_loop.follow"))
+
+
 def test_waivers(whole: Project) -> None:
     first, second, third = whole.waivers.values()
     criteria = whole.requirements["KD-2"].criteria
@@ -234,7 +246,14 @@ def test_the_rest_of_a_requirement(whole: Project) -> None:
     assert [link.id for link in second.allocated_to] == ["draught_loop", "damper"]
     assert third.basis is not None
     assert (third.basis.kind, third.basis.evidence) == ("evidence", "KD-TR-9")
-    assert third.budget == {"combine": "root_sum_square", "of": ["KD-4"], "level": "2 sigma", "reserve": "10 %"}
+    assert third.budget is not None
+    assert (third.budget.combine, third.budget.level, [one.id for one in third.budget.shares]) == (
+        "root_sum_square",
+        fmpq(2),
+        ["KD-4"],
+    )
+    assert third.budget.reserve is not None
+    assert third.budget.reserve.as_written == "10 %"
     assert fourth.not_applicable == types.NotApplicable("No people near.", "Lead", "2026-01-01")
 
 

@@ -28,6 +28,7 @@ ADDED = {
     *("requirement-childless", "text-duplicate", "requirement-unallocated", "allocation-unused"),
     *("verification-missing", "verification-without-criterion", "verification-without-evidence"),
     *("document-unregistered", "document-issues-differ"),
+    *("budget-overdrawn", "budget-undecided", "budget-doubtful"),
     *(
         "evidence-stale",
         "evidence-undecided",

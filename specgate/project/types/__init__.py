@@ -6,6 +6,7 @@ Mappings keep the order of the files. Absent optional parts are None or empty.
 
 from __future__ import annotations
 
+from specgate.project.types.budgets import BlockShare, Budget, Share
 from specgate.project.types.criteria import Band, Basis, Claim, Corner, Criterion, Limit, MaskDefinition, Subject
 from specgate.project.types.loops import (
     Break,
@@ -45,7 +46,9 @@ __all__ = [
     "Aim",
     "Band",
     "Basis",
+    "BlockShare",
     "Break",
+    "Budget",
     "Call",
     "Claim",
     "Corner",
@@ -85,6 +88,7 @@ __all__ = [
     "Root",
     "SampledModel",
     "Scaled",
+    "Share",
     "Signal",
     "SignalExpression",
     "SignalName",

@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import field
 from typing import Literal
 
+from specgate.project.types.budgets import Budget
 from specgate.project.types.criteria import Basis, Criterion
 from specgate.terms.places import Place
 from specgate.terms.records import record
@@ -58,7 +59,7 @@ class Requirement:
     coverage: Mapping[str, object] = field(default_factory=dict)
     external: Mapping[str, object] | None = None
     not_applicable: NotApplicable | None = None
-    budget: Mapping[str, object] | None = None
+    budget: Budget | None = None
     kept: Mapping[str, object] = field(default_factory=dict)
     template_place: Place | None = None
     """Where the text of the template begins that it is made from."""

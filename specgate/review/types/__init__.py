@@ -17,6 +17,7 @@ from specgate.review.types.bases import (
     PointReview,
     SeparationReview,
 )
+from specgate.review.types.budgets import BudgetReview, ShareReview, Span
 from specgate.review.types.formulas import FormulaReview, FormulasReview
 from specgate.review.types.loops import (
     BreakReview,
@@ -71,6 +72,7 @@ __all__ = [
     "BasisReview",
     "Beside",
     "BreakReview",
+    "BudgetReview",
     "ConditionReview",
     "CriterionReview",
     "CrossingReview",
@@ -113,6 +115,8 @@ __all__ = [
     "Result",
     "Review",
     "SeparationReview",
+    "ShareReview",
+    "Span",
     "SpecificationReview",
     "SubsystemReview",
     "ToolReview",

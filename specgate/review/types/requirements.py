@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from specgate.review.types.bases import BasisReview
+from specgate.review.types.budgets import BudgetReview
 from specgate.review.types.fields import omitted
 from specgate.review.types.records import EvidenceReview, WaiverReview
 from specgate.review.types.values import Amount, Location, Result
@@ -157,6 +158,7 @@ class RequirementReview:
     waiver: WaiverReview | None = None
     """The first waiver that excuses something; the verdict stays what it is."""
     waivers: tuple[WaiverReview, ...] = ()
+    budget: BudgetReview | None = omitted()
     waived: bool = False
     """Whether waivers, of its own or of what is derived from it, keep its not being met from holding the gate."""
     reason: str | None = None
