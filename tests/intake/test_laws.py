@@ -85,9 +85,9 @@ def tree_of(text: str) -> Any:
             return [typed(item) for item in node]
         if node in ("true", "false"):
             return node == "true"
-        if re.fullmatch(r"[0-9]+", node):
+        if re.fullmatch(r"-?[0-9]+", node):
             return int(node)
-        return float(node) if re.fullmatch(r"[0-9]+\.[0-9]+", node) else node
+        return float(node) if re.fullmatch(r"-?[0-9]+\.[0-9]+", node) else node
 
     return typed(yaml.load(text, Loader=yaml.BaseLoader))
 
