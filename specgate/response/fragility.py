@@ -52,6 +52,11 @@ class Target:
         """How near to an edge is near."""
         return float_of(self.size * NEAR)
 
+    @property
+    def stays_beyond(self) -> bool:
+        """Whether the final value, where g is 0, lies beyond the edge that is first arrived at: nothing turns back."""
+        return self.side is not None and -self.base * self.side >= self.size
+
     def ratio(self, deviation: Floats) -> Floats:
         """Return how far values of g are from the base, in parts of the size; 1 is the edge."""
         with np.errstate(divide="ignore", invalid="ignore"):
@@ -78,6 +83,8 @@ def fragility(
         return None
     reason = "crosses the edge by less than 1 % before it turns back"
     wider = again(target.band(1 + NEAR)).crossing
+    if wider is None and target.stays_beyond:
+        return None
     if wider is None:
         return Fragile(f"the response {reason}, and nowhere else", (lambda _: arb(0)) if target.backward else None)
     if not _differs(wider.guess, time) or not _dips(course, target, time, wider.guess):

@@ -149,3 +149,31 @@ def test_an_answer_without_doubt_is_kept_where_a_neighbouring_one_is_not_found()
     response = waves((ONE, fmpq_poly([1, 1]), fmpq(101, 100), 0), (S, fmpq_poly([1, 1]) ** 2, fmpq(1, 10), 1))
     answer: Answer = response.first_arrival(fmpq(1))
     assert answer.absent is None
+
+
+def poles(*factors: list[int | str]) -> fmpq_poly:
+    product = fmpq_poly([1])
+    for factor in factors:
+        product *= fmpq_poly([fmpq(*map(int, str(c).split("/"))) for c in factor])
+    return product
+
+
+@pytest.mark.parametrize(
+    ("numerator", "denominator", "level", "fragile"),
+    [
+        ([1], poles([1, 1]), 1, False),  # comes ever closer and never turns
+        ([1], poles([1, 2, 1]), "199/200", False),
+        ([1, "1/2"], poles([1, 1], [1, "1/3"]), 1, False),
+        ([1], poles([1, "1/5", 1]), "87/50", True),  # the summit, 1.7299, is 0.6 % below the level
+        ([1], poles([1, "1/5", 1]), "43/25", True),  # and 0.6 % above this one, which it passes for a moment
+        ([1], poles([1, "1/5", 1]), "3/2", False),
+    ],
+)
+def test_an_arrival_is_as_fragile_in_pieces_as_in_modes(
+    numerator: list[int | str], denominator: fmpq_poly, level: int | str, fragile: bool
+) -> None:
+    wanted = fmpq(*map(int, str(level).split("/")))
+    whole = StepResponse(poles(numerator), denominator, fmpq(1))
+    pieces = PiecewiseResponse(Superposed([StepWave(whole.numerator, whole.denominator, fmpq(1), fmpq(0))]))
+    for response in (whole, pieces):
+        assert (response.first_arrival(wanted).fragile is not None) is fragile

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from functools import reduce
+from itertools import accumulate
 
 from flint import arb, fmpq
 
@@ -20,6 +21,8 @@ from specgate.terms.precision import working_precision
 _FAR = fmpq(1, 100)
 _PROBES = 32
 _DIP = 1 - fmpq(1, 10**6)
+_FALL = 1e-6
+_CALM = fmpq(1, 10**4)
 
 Passage = tuple[Where | None, list[Where]]
 """The crossing, and the instants that are not told from the limit on the way to it."""
@@ -73,7 +76,11 @@ def first_arrival(ground: Ground, final: fmpq, level: fmpq, size: fmpq) -> Answe
             return value / level
 
     never = Answer.nothing("the response never reaches the level")
-    return _answered(search, away, never, backward=False, returns=(final - level) * side < 0)
+
+    def rest() -> fmpq | None:
+        return None if level == 0 else ground.pieces.settled_by(abs(level) * _CALM)
+
+    return _answered(search, away, never, backward=False, returns=(final - level) * side < 0, rest=rest)
 
 
 def _rests(ground: Ground, final: fmpq, level: fmpq) -> bool:
@@ -105,13 +112,15 @@ def _answered(
     *,
     backward: bool,
     returns: bool = True,
+    rest: Callable[[], fmpq | None] = lambda: None,
 ) -> Answer:
+    """Return what a search found; rest: from when on the response all but rests, for an arrival that there is not."""
     try:
         crossing, touching = search(fmpq(1))
     except OutOfWork as limit:
         return Answer.undecided(limit.reason)
     try:
-        fragile = None if touching else _fragility(search, away, crossing, backward, returns)
+        fragile = None if touching else _fragility(search, away, crossing, rest, backward=backward, returns=returns)
     except OutOfWork:
         fragile = None
     if touching and crossing is None and not backward:
@@ -137,12 +146,16 @@ def _fragility(
     search: Callable[[fmpq], Passage],
     away: Callable[[fmpq], arb],
     crossing: Where | None,
+    rest: Callable[[], fmpq | None],
+    *,
     backward: bool,
     returns: bool,
 ) -> Fragile | None:
     """Return why a crossing is fragile and where else it might be: that of a limit 1 % to either side lies far away.
 
-    Between the two crossings the response is inside of both limits again: it turns close to the limit.
+    Between the two crossings the response is inside of both limits again: it turns close to the limit. An arrival at a
+    lower level is told where the response turns back after it; without an arrival at the level itself it has until it
+    rests to do so, and one that only comes ever closer does not turn.
     """
     here = _middle(crossing)
     for factor, reason in (
@@ -154,6 +167,11 @@ def _fragility(
         if other is None and (crossing is None or factor < 1 or not returns):
             continue
         if abs(here - there) <= _FAR * max(abs(here), abs(there)):
+            continue
+        if factor < 1 and not backward:
+            end = here if crossing is not None else rest()
+            if other is not None and end is not None and _turns_back(away, there, end):
+                return Fragile(f"the response {reason}", other.enclose)
             continue
         if other is None and not backward:
             return Fragile(f"the response {reason}, and nowhere else")
@@ -167,6 +185,12 @@ def _dips(away: Callable[[fmpq], arb], one: fmpq, other: fmpq, level: fmpq) -> b
     """Whether the response is inside of a limit somewhere between two instants, at one of a few probes: no proof."""
     probes = (away(one + (other - one) * k / _PROBES) for k in range(1, _PROBES))
     return any(bool(probe < level) for probe in probes)
+
+
+def _turns_back(away: Callable[[fmpq], arb], one: fmpq, other: fmpq) -> bool:
+    """Whether the response falls again somewhere between two instants, by a few probes: no proof."""
+    values = [float(away(one + (other - one) * k / _PROBES).mid()) for k in range(_PROBES)]
+    return any(later < highest - _FALL for highest, later in zip(accumulate(values, max), values, strict=True))
 
 
 def _value(ground: Ground, time: fmpq) -> arb:
