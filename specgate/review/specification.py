@@ -133,7 +133,23 @@ def _subsystem(subsystem: Subsystem, values: Values, used: bool, by_fit: bool) -
         by_fit=by_fit,
         ranges=_ranges({**subsystem.inputs, **subsystem.outputs}) or None,
         dead_time=None if block is None or block.dead_time == 0 else str(block.dead_time),
+        model_claims=_claims(subsystem) or None,
     )
+
+
+def _claims(subsystem: Subsystem) -> dict[str, str]:
+    """Return what the project says of a model."""
+    found: dict[str, str] = {}
+    pedigree, stands_for = subsystem.pedigree, subsystem.stands_for
+    if pedigree is not None:
+        found["pedigree"] = pedigree.kind + (f", {pedigree.source}" if pedigree.source else "")
+    if subsystem.valid_to is not None:
+        found["valid_to"] = subsystem.valid_to.as_written
+    if stands_for is not None:
+        values = (("sampled", stands_for.sampled), ("delay", stands_for.delay))
+        parts = [f"{key} {value.as_written}" for key, value in values if value is not None]
+        found["stands_for"] = ", ".join([*parts, *([f"by {stands_for.by}"] if stands_for.by else [])])
+    return found
 
 
 def _ranges(ports: Mapping[str, Port]) -> dict[str, str]:

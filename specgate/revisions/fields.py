@@ -107,6 +107,7 @@ SUBSYSTEM = (
     Declared("realised"),
     Declared("ranges"),
     Declared("dead_time"),
+    Declared("model_claims"),
 )
 LOOP = (
     Declared("title", bears=False, how="reworded"),

@@ -37,6 +37,8 @@ class Subsystem:
     late: str
     by_fit: bool
     used: bool
+    claims: str
+    """What the project says of the model."""
 
 
 @record
@@ -138,6 +140,7 @@ def _subsystem(name: str, s: SubsystemReview) -> Subsystem:
         late="" if s.dead_time is None else shown.dead_time(s.dead_time),
         by_fit=s.by_fit,
         used=s.used,
+        claims="; ".join(f"{spaced(key)}: {words}" for key, words in (s.model_claims or {}).items()),
     )
 
 

@@ -47,6 +47,8 @@ class SubsystemReview:
     """Linear and rate ranges and spans of its ports, as written, by `port kind`."""
     dead_time: str | None = omitted()
     """Dead time in s, exact: a factor e^(-dead_time s) of every numerator. None for none."""
+    model_claims: Mapping[str, str] | None = omitted()
+    """What the project says of the model: `pedigree`, `valid_to`, `stands_for`, as written."""
 
 
 @record
