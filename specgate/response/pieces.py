@@ -99,8 +99,12 @@ class Pieces(Protocol):
     def runaway(self) -> int | None:
         """Return where y goes if it grows without bound: 1 up, -1 down, 0 both ways; None: it does not, or not told.
 
-        Asked where y does not settle, like the two that follow.
+        Asked where y does not settle, like the three that follow.
         """
+        return None
+
+    def period(self) -> fmpq | None:
+        """Return about the period of what drives y for ever: a hint of how much to draw; None: nothing does."""
         return None
 
     def reach(self, sign: int) -> Callable[[int], arb] | None:

@@ -16,6 +16,7 @@ from specgate.review.definitions import definitions
 from specgate.review.formulas import with_formulas
 from specgate.review.gate import gate
 from specgate.review.loops import loop
+from specgate.review.masks import frequencies_asked
 from specgate.review.printing import location, short
 from specgate.review.requirements import requirement
 from specgate.review.resting import resting
@@ -58,7 +59,8 @@ def review(project: Project, wanted: Wanted | None = None, baseline: Baseline | 
     warned = (one for one in project.warnings if isinstance(one, Finding))
     said = in_order((*warned, *findings(Facts(project, analyses, graph, assessments, assumptions, baseline))))
     again = analyses.again.loops
-    loops = {name: loop(one, again[name], asked) for name, one in analyses.loops.items()}
+    named = frequencies_asked(assessments.values())
+    loops = {name: loop(one, again[name], asked, named.get(name, {})) for name, one in analyses.loops.items()}
     thresholds = policy(project, analyses.nominal.values)
     if asked.formulas:
         loops = with_formulas(loops, analyses.loops, Uninvited(project, analyses, thresholds))

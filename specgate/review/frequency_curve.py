@@ -34,9 +34,10 @@ _LIGHT = 0.3
 """Damping below which a pair gets points of its own."""
 
 
-def frequency_curve(subject: BreakSubject) -> FrequencyCurve | None:
+def frequency_curve(subject: BreakSubject, asked: Iterable[fmpq] = ()) -> FrequencyCurve | None:
     """Return the gain (dB) and the phase (deg, followed from zero frequency) of a loop, all crossings among the points.
 
+    asked: frequencies (rad/s) that requirements name, corners of masks among them, which the curve reaches.
     None where nothing varies, or nothing is known over frequency.
     """
     loop = subject.loop
@@ -46,6 +47,7 @@ def frequency_curve(subject: BreakSubject) -> FrequencyCurve | None:
     features = [(printed_short(arb(one)), 1.0) for one in crossings] + list(_features(_drawn(subject.open_loop)))
     if not features:
         return None
+    features += [(printed_short(arb(one)), 1.0) for one in asked if one > 0]
     points = [_point(loop, frequency) for frequency in _frequencies(crossings, features)]
     shown = [point for point in points if point is not None]
     if len(shown) < 2:

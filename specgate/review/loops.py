@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
+from types import MappingProxyType
 
-from flint import arb, fmpq_poly
+from flint import arb, fmpq, fmpq_poly
 
 from specgate.analysis.analyses import BreakAnalysis, LoopAnalysis, Missing, ResponseAnalysis
 from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID
@@ -55,10 +56,12 @@ _POINTS = 256
 """Points of a curve: two pixels each in the widest plot; the format allows 400."""
 
 
-def loop(found: LoopAnalysis, again: LoopAnalysis, wanted: Wanted) -> LoopReview:
+def loop(
+    found: LoopAnalysis, again: LoopAnalysis, wanted: Wanted, asked: Mapping[str, Sequence[fmpq]] = MappingProxyType({})
+) -> LoopReview:
     """Print one loop with everything that is reported on it, asked for or not.
 
-    again: the same loop with more digits of pi.
+    again: the same loop with more digits of pi. asked: frequencies that requirements name, by break.
     """
     declared = found.loop
     reason = _reason(found)
@@ -78,14 +81,14 @@ def loop(found: LoopAnalysis, again: LoopAnalysis, wanted: Wanted) -> LoopReview
         hidden_modes=tuple(_hidden(found)),
         measures=() if reason else _measures("loop", found.subject, again.subject, ONE, wanted),
         responses={key: _response(one, again.responses[key], wanted) for key, one in found.responses.items()},
-        breaks={key: _break(one, again.breaks[key], wanted) for key, one in found.breaks.items()},
+        breaks={key: _break(one, again.breaks[key], wanted, asked.get(key, ())) for key, one in found.breaks.items()},
         in_z=None if in_z is None else sampled.loop_in_z(in_z),
         characteristic_terms=terms(modes) if isinstance(modes, Quasi) else None,
         reason=reason,
     )
 
 
-def _break(found: BreakAnalysis, again: BreakAnalysis, wanted: Wanted) -> BreakReview:
+def _break(found: BreakAnalysis, again: BreakAnalysis, wanted: Wanted, asked: Sequence[fmpq]) -> BreakReview:
     if isinstance(found.subject, Missing):
         return BreakReview(found.declared.at, (), reason=found.subject.reason)
     loop = found.subject.loop
@@ -102,7 +105,7 @@ def _break(found: BreakAnalysis, again: BreakAnalysis, wanted: Wanted) -> BreakR
         crossings=() if loop is None or others is None else tuple(_crossings(loop, others)),
         numerator_terms=above[1],
         denominator_terms=below[1],
-        frequency_response=frequency_curve(found.subject) if wanted.drawn else None,
+        frequency_response=frequency_curve(found.subject, asked) if wanted.drawn else None,
     )
 
 

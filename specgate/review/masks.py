@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from itertools import pairwise
 
 from flint import arb, fmpq
 
-from specgate.compliance.assessment import CriterionAssessment
+from specgate.compliance.assessment import Assessment, CriterionAssessment
 from specgate.response.questions import Points
 from specgate.review.types import MaskReview
 from specgate.terms.enclosed import in_unit, printed_short
@@ -33,6 +33,19 @@ def mask_of(assessed: CriterionAssessment) -> MaskReview | None:
         lower=_corners(given.mask.lower, unit, bent=bent),
         forever=given.mask.forever,
     )
+
+
+def frequencies_asked(assessments: Iterable[Assessment]) -> dict[str, dict[str, list[fmpq]]]:
+    """Return the frequencies (rad/s) that criteria name, corners of masks among them, by loop and break."""
+    found: dict[str, dict[str, list[fmpq]]] = {}
+    for criterion in (one for assessment in assessments for one in assessment.criteria):
+        about, given = criterion.criterion.subject, criterion.arguments
+        if about.kind != "break" or about.name is None:
+            continue
+        corners = () if given.mask is None else (*given.mask.upper, *given.mask.lower)
+        named = [at for at, _ in corners] + ([] if given.frequency is None else [given.frequency])
+        found.setdefault(about.loop, {}).setdefault(about.name, []).extend(named)
+    return found
 
 
 def _corners(points: Points, unit: Unit, *, bent: bool) -> tuple[tuple[float, float], ...]:

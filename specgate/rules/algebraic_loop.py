@@ -42,9 +42,10 @@ def _strong(loop: LoopAnalysis) -> Iterator[Finding]:
 
 
 def _left_open(loop: LoopAnalysis) -> Iterator[Finding]:
-    for one in loop.breaks.values():
-        if one.opened is not None and one.opened.algebraic_loop is not None:
-            yield _finding(loop, Level.WARNING, f"{loop.loop.name}: {one.opened.algebraic_loop.reason}", ())
+    opened = (one.opened for one in loop.breaks.values() if one.opened is not None)
+    reasons = (one.algebraic_loop.reason for one in opened if one.algebraic_loop is not None)
+    for reason in dict.fromkeys(reasons):
+        yield _finding(loop, Level.WARNING, f"{loop.loop.name}: {reason}", ())
 
 
 def _finding(loop: LoopAnalysis, level: Level, message: str, signals: tuple[str, ...]) -> Finding:

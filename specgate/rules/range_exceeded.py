@@ -40,12 +40,28 @@ def check(facts: Facts) -> Iterator[Finding]:
                 )
     wanted = asked(facts.assessments)
     for loop, analysis in facts.analyses.loops.items():
+        same: dict[tuple[str, ...], list[list[Assumption]]] = {}
         for response in analysis.responses:
             broken = [] if (loop, response) in wanted else _broken(facts.assumptions.of_response(loop, response))
             if broken:
-                place = broken[0].response.place
-                message = f"the linear model is beyond its range, and no requirement is on it: {_words(facts, broken)}"
-                yield Finding(NAME, Level.NOTE, message, place, loop=loop, response=response, related=_places(broken))
+                same.setdefault(tuple(map(_named, broken)), []).append(broken)
+        for group in same.values():
+            yield _unasked(facts, loop, group)
+
+
+def _unasked(facts: Facts, loop: str, group: list[list[Assumption]]) -> Finding:
+    """Say of responses that no requirement is on that they leave the same ranges: the first in full."""
+    first, *others = group
+    likewise = f"; likewise in {', '.join(broken[0].on for broken in others)}" if others else ""
+    return Finding(
+        NAME,
+        Level.NOTE,
+        f"the linear model is beyond its range, and no requirement is on it: {_words(facts, first)}{likewise}",
+        first[0].response.place,
+        loop=loop,
+        response=None if others else first[0].response.name,
+        related=_places(first),
+    )
 
 
 def _broken(assumptions: Sequence[Assumption]) -> list[Assumption]:

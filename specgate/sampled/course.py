@@ -51,6 +51,10 @@ class SampledCourse(Pieces):
         """The limit of y, exact, or the reason why there is none."""
         return self._final
 
+    def period(self) -> fmpq | None:
+        """Return the period of a sine on an input."""
+        return self._drive.period
+
     @cached_property
     def _early(self) -> list[tuple[fmpq, int, int]]:
         """The pieces before the drive is set for the last time: start, period, stretch."""

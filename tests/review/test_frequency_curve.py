@@ -83,3 +83,30 @@ def test_a_light_resonance_is_not_stepped_over(reviewed: Reviewed) -> None:
 
 def test_a_constant_has_no_curve(reviewed: Reviewed) -> None:
     assert opened(reviewed, "[3]", "[1]").frequency_response is None
+
+
+def test_the_curve_reaches_what_requirements_name(reviewed: Reviewed) -> None:
+    review = reviewed(
+        """
+        specgate: 1
+        project: {id: T-1, title: Test, revision: A}
+        masks: {keep: {upper: [[0.001 rad/s, 90 dB], [3000 rad/s, 0 dB]]}}
+        subsystems: {plant: {input: {unit: m}, output: {unit: m}, model: {gain: 1, integrators: 1, lags: [0.1 s]}}}
+        loops:
+          level:
+            inputs: {order: {unit: m}}
+            signals: {height: plant(order - height)}
+            breaks: {main: height, other: {at: height, into: plant}}
+        requirements:
+          R-1:
+            text: It shall stay in its mask.
+            verification: analysis
+            criterion: {break: level.main, measure: within_mask, mask: keep, equals: true}
+        """
+    )
+    breaks = review.loops["level"].breaks
+    asked, other = (breaks[name].frequency_response for name in ("main", "other"))
+    assert asked is not None
+    assert other is not None
+    assert asked.frequency[0] <= 0.001 < other.frequency[0]
+    assert asked.frequency[-1] >= 3000 > other.frequency[-1]

@@ -15,6 +15,8 @@ _LEFT = fmpq(1, 100)
 
 _UNSETTLED = 40
 """Radians, or pieces, that are drawn of a response that does not settle."""
+_PERIODS = 6
+"""Periods that are drawn at least of a response to something that goes on for ever."""
 
 
 def outline(ground: Ground, size: fmpq | None, known: Sequence[fmpq], most: int) -> tuple[tuple[fmpq, arb], ...]:
@@ -47,5 +49,6 @@ def _window(ground: Ground, size: fmpq | None) -> fmpq:
             speed = ground.pieces.speed(index)
             return begin + (fmpq(*(_UNSETTLED / speed).as_integer_ratio()) if speed > 0.0 else 1)
         if index >= _UNSETTLED:
-            return end
+            period = ground.pieces.period()
+            return end if period is None else max(end, _PERIODS * period)
     return fmpq(1)
