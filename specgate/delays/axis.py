@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from functools import cached_property, lru_cache
+from typing import Literal
 
-from flint import acb, arb, ctx, fmpq, fmpq_poly
+from flint import acb, acb_series, arb, ctx, fmpq, fmpq_poly
 
 from specgate.delays.isolate import Function
 from specgate.delays.laurent import of_quasi
@@ -63,6 +64,26 @@ class DelayedAxis:
         s = acb(0, frequency)
         return above.value(s), below.value(s), above.slope(s), below.slope(s)
 
+    def turning(self, kind: Literal["imaginary", "excess"]) -> Function:
+        """Return the slope of one of these over frequency, with its own slope."""
+
+        def function(frequency: arb) -> tuple[arb, arb]:
+            _, slope, bend = self.series(kind, frequency)
+            return slope, 2 * bend
+
+        return function
+
+    def series(self, kind: Literal["imaginary", "excess"], frequency: arb) -> tuple[arb, arb, arb]:
+        """Return the first three coefficients of the series of one of these about a frequency (a ball of them)."""
+        with series_terms(3):
+            n, d = (_along(of_quasi(part, acb(0, frequency))) for part in (self.numerator, self.denominator))
+            if kind == "imaginary":
+                total = [one.imag for one in _times_conjugate(n, d)]
+            else:
+                above, below = _times_conjugate(n, n), _times_conjugate(d, d)
+                total = [one.real - other.real for one, other in zip(above, below, strict=True)]
+        return total[0], total[1], total[2]
+
     # --- ends of the axis -------------------------------------------------------------------------------------
 
     @cached_property
@@ -101,6 +122,15 @@ class DelayedAxis:
 
 
 _MOST_POWERS = 40
+
+
+def _along(series: acb_series) -> list[acb]:
+    """Return three coefficients in the frequency of a series in s."""
+    return [series[power] * acb(0, 1) ** power for power in range(3)]
+
+
+def _times_conjugate(one: list[acb], other: list[acb]) -> list[acb]:
+    return [sum((one[i] * other[k - i].conjugate() for i in range(k + 1)), acb(0)) for k in range(3)]
 
 
 def mirrored(quasi: Quasi) -> Quasi:

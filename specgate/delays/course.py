@@ -27,6 +27,9 @@ _BITS = 112
 More bits than these make no ball narrower: what has to be told apart more closely than 33 digits stays open.
 """
 
+POLES_AT = 2 * _BITS
+"""Bits at which the poles of a modal sum are told."""
+
 _ENOUGH = 64
 _LONG = 60
 """Bits, instead, that suffice where the method of steps would go on for more than so many of the longest delay."""
@@ -267,6 +270,23 @@ class Course:
             return None
         first = self._steps(0)
         return monotone_start(first.modes(0), order, self._kinks[1] - self._kinks[0], first.bits)
+
+    @property
+    def terms(self) -> int:
+        """How many early terms there are."""
+        return len(self._kinks)
+
+    @property
+    def bits(self) -> int:
+        """The precision of the first early terms."""
+        return self._steps(0).bits
+
+    @property
+    def poles(self) -> list[tuple[acb, int]]:
+        """The poles of the modal sum but s = 0, of conjugates the upper one, with their multiplicities."""
+        if not self.followed or self.modal is None:
+            return []
+        return self.modal.poles.with_multiplicities(self.transform, POLES_AT)
 
     def _number(self, index: int) -> int | None:
         """Return the number of the kink at which a piece begins, -1 before the first; None after the early pieces."""

@@ -9,11 +9,13 @@ from flint import arb, fmpq
 from specgate.delays.magnitude import DelayedMagnitude
 from specgate.delays.masks import late_inside
 from specgate.delays.phase import late_phase
+from specgate.delays.recording import AXIS, FALL
 from specgate.delays.squared_gain import SquaredGain
 from specgate.frequency.fall import square_of_factor
 from specgate.frequency.questions import Range
 from specgate.frequency.rational_gain import UNSTABLE, RationalGain
 from specgate.frequency.values import quotient
+from specgate.response.accounts import Account
 from specgate.response.answers import Absent, Answer
 from specgate.response.budget import OutOfWork
 from specgate.response.pieces import Pieces
@@ -129,7 +131,7 @@ class DelayedGain:
             with working_precision(precision):
                 return early.union(late)
 
-        return Answer.of_ball(refine, first.fragile)
+        return Answer.of_ball(refine, first.fragile).accounted(lambda: Account(FALL, AXIS))
 
     def resonance_peak(self, over: Range | None = None) -> Answer:
         """Return sup of the gain over that at zero frequency; `at` has the frequency."""
@@ -141,7 +143,9 @@ class DelayedGain:
         if peak.absent is not None:
             return peak
         scaled = quotient(peak, Answer.of_exact(abs(self.transfer.value_at_origin)))
-        return Answer(scaled.proof, scaled.truth, scaled.exact, scaled.refine, at=peak.at, fragile=peak.fragile)
+        return Answer(
+            scaled.proof, scaled.truth, scaled.exact, scaled.refine, at=peak.at, fragile=peak.fragile, how=peak.how
+        )
 
     def gain_at(self, frequency: fmpq) -> Answer:
         """Return the gain."""

@@ -11,9 +11,12 @@ from flint import acb, arb, fmpq
 
 from specgate.delays.echoes import EchoingGain
 from specgate.delays.laurent import of_quasi
+from specgate.delays.recording import AXIS, PEAK
 from specgate.delays.squared_gain import OSCILLATES, SquaredGain
 from specgate.frequency.questions import Range
+from specgate.frequency.recording import SQUARE
 from specgate.frequency.values import root_of
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer, Fragile
 from specgate.response.budget import OutOfWork
 from specgate.response.extremes import EQUAL_BITS, Extreme, joined
@@ -81,7 +84,8 @@ class DelayedMagnitude:
         if time.absent is not None and time.absent.proved:
             time = Answer.nothing("approached at infinite frequency", infinite=True)
         root = root_of(value)
-        return Answer(root.proof, exact=root.exact, refine=root.refine, fragile=value.fragile, at={"frequency": time})
+        peak = Answer(root.proof, exact=root.exact, refine=root.refine, fragile=value.fragile, at={"frequency": time})
+        return peak.accounted(lambda: Account(PEAK, AXIS))
 
     def _over(self, over: Range) -> Extreme:
         low, high = over
@@ -112,4 +116,4 @@ class DelayedMagnitude:
             return Answer.of_exact(abs(self._above.first_at_origin()[1] / self._below.first_at_origin()[1]))
         if not refine(512).is_finite():
             return Answer.undecided("a pole lies on the imaginary axis at this frequency, or very near to it")
-        return Answer.of_ball(refine)
+        return Answer.of_ball(refine).accounted(lambda: Account(SQUARE, AXIS))

@@ -17,10 +17,12 @@ from flint import acb, arb, fmpq
 
 from specgate.delays.axis import DelayedAxis, mirrored
 from specgate.delays.magnitude import DelayedMagnitude
+from specgate.delays.recording import AXIS, ROOM
 from specgate.frequency.choose import Candidate, least
 from specgate.frequency.slopes import NotTold, Slope, first_violation
 from specgate.frequency.spots import Sign, sign_of
 from specgate.frequency.values import root_of
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer
 from specgate.response.questions import Mask, Points
 from specgate.systems.delayed_network import DelayedTransfer
@@ -131,8 +133,12 @@ def late_inside(transfer: DelayedTransfer, mask: Mask) -> Answer:
         return Answer.undecided(_NEAR)
     first = least(one for one in found if one is not None)
     if first is None:
-        return Answer.of_truth(True)
-    return replace(Answer.of_truth(False), at={"frequency": first.value, **first.at})
+        return Answer.of_truth(True).accounted(_account)
+    return replace(Answer.of_truth(False), at={"frequency": first.value, **first.at}, how=_account)
+
+
+def _account() -> Account:
+    return Account(ROOM, AXIS)
 
 
 def _rooms(axis: DelayedAxis, side: Sign, points: Points, mask: Mask) -> Iterator[LateRoom]:

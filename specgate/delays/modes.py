@@ -15,8 +15,11 @@ from typing import Literal
 
 from flint import acb, arb, fmpq, fmpq_poly
 
+from specgate.delays.footing import radius_at
 from specgate.delays.modal import Poles, poles_right_of, suitable_lines
+from specgate.delays.recording import LEAST
 from specgate.delays.transform import Transform
+from specgate.response.accounts import Account, Footing
 from specgate.response.answers import Answer
 from specgate.systems.delayed import DelayedSolution
 from specgate.systems.quasi import Quasi
@@ -34,6 +37,8 @@ _ENDLESS = (
     "a dead time in the loop has modes of ever higher frequency, whose damping ratio tends to zero though they decay "
     "ever faster: ask for a range of frequencies (`over`)"
 )
+_ROOTS = "the characteristic quasi-polynomial; its roots isolated by interval Newton, counted along a vertical line"
+_SHOWN = 64
 _NOT_FOUND = "which modes of the loop are the slowest was not proved within the work limit"
 
 
@@ -75,7 +80,17 @@ def _among(transform: Transform, poles: Poles, figure: Figure, over: tuple[fmpq,
 
     limit = reach if over is None or figure != "damping_ratio" else reach / over[1]
     told = figure == "decay_rate" or bool(refine(64) < arb(limit)) or (over is not None and over[1] < reach)
-    return Answer.of_ball(refine) if told else None
+    return (
+        Answer.of_ball(refine).accounted(lambda: _account(transform, poles, sum(map(bool, picked)))) if told else None
+    )
+
+
+def _account(transform: Transform, poles: Poles, picked: int) -> Account:
+    """Say which poles a figure was taken over; `picked`: how many different ones."""
+    found = poles.with_multiplicities(transform, _SHOWN)
+    radius = radius_at([pole for pole, _ in found], _SHOWN)
+    footing = Footing(_ROOTS, poles.line.count, radius, _SHOWN)
+    return Account(LEAST, footing, counts={"different poles that count": picked})
 
 
 def _counts(

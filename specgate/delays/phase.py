@@ -11,6 +11,8 @@ from __future__ import annotations
 from flint import acb, arb, fmpq
 
 from specgate.delays.laurent import of_quasi
+from specgate.delays.recording import AXIS, TURN
+from specgate.response.accounts import Account
 from specgate.response.answers import Answer
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.quasi import Quasi
@@ -38,7 +40,7 @@ def late_phase(transfer: DelayedTransfer, frequency: fmpq) -> Answer:
         with working_precision(precision):
             return arb.pi() * quarters / 2 + above - below
 
-    return Answer.of_ball(refine)
+    return Answer.of_ball(refine).accounted(lambda: Account(TURN, AXIS))
 
 
 def _turned(quasi: Quasi, frequency: fmpq, bits: int) -> arb | None:

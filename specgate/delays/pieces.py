@@ -9,8 +9,10 @@ from functools import cached_property
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.delays.course import Course
+from specgate.delays.footing import footing_of
 from specgate.delays.steps import Values
 from specgate.delays.stretch import ROUGH, Stretch, polynomial_of
+from specgate.response.accounts import Footing
 from specgate.response.answers import Absent
 from specgate.response.pieces import Pieces
 from specgate.terms.precision import working_precision
@@ -68,6 +70,11 @@ class DelayedPieces(Pieces):
         if None in stable:
             return _NOT_DECIDED
         return self._drift[0] if self._drift.degree() <= 0 else _UNSETTLED
+
+    def footing(self) -> Footing:
+        """Return what a proof stands on."""
+        courses = {id(part.course): part.course for part in self.parts}
+        return footing_of(list(courses.values()))
 
     def kink(self, index: int) -> fmpq | None:
         """Return where piece `index` begins; None: piece `index - 1` never ends."""

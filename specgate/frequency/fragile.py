@@ -22,6 +22,9 @@ from specgate.terms.records import record
 
 C = TypeVar("C", GainCrossing, PhaseCrossing)
 
+BY_GAIN = "less than 1 % in the gain"
+BY_PHASE = "less than 0.6 deg in the phase"
+
 CREATED = "a change of {what} brings about a crossing at another frequency that would decide"
 REMOVED = "a change of {what} removes the crossing that decides"
 
@@ -49,22 +52,20 @@ def tangencies(excess: fmpq_poly, near: Callable[[Spot], bool]) -> Iterator[Tang
 class Watch(Generic[C]):
     """The crossings of one kind with the tangencies near them.
 
-    what: the small change in words. crossing: what a spot would be as a crossing.
+    what: the small change in words. near: each tangency as the crossing that it would be, with its `created`.
     """
 
-    def __init__(
-        self, what: str, crossings: Sequence[C], near: Iterable[Tangency], crossing: Callable[[Spot], C]
-    ) -> None:
+    def __init__(self, what: str, crossings: Sequence[C], near: Iterable[tuple[C, bool]]) -> None:
         self._what = what
         self._crossings: Sequence[C] = crossings
-        self._near: list[tuple[Tangency, C]] = [(one, crossing(one.spot)) for one in near]
+        self._near: list[tuple[C, bool]] = list(near)
 
     def warned(self, answer: Answer, decide: Callable[[Sequence[C]], Answer]) -> Answer:
         """Return an answer that `decide` drew from all crossings, with a warning where it is fragile."""
-        for tangency, as_crossing in self._near:
+        for as_crossing, created in self._near:
             found = (
                 self._created(answer, decide([as_crossing]))
-                if tangency.created
+                if created
                 else self._removed(answer, as_crossing.frequency, decide)
             )
             if found is not None:

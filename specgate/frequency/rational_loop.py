@@ -21,7 +21,7 @@ from flint import fmpq
 from specgate.frequency import margins
 from specgate.frequency.axis import AxisFunction, along_the_axis
 from specgate.frequency.choose import Candidate, least
-from specgate.frequency.fragile import Watch, tangencies
+from specgate.frequency.fragile import BY_GAIN, BY_PHASE, Watch, tangencies
 from specgate.frequency.magnitude import Magnitude, origin, roots, wronskian
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.masks import inside
@@ -39,8 +39,6 @@ from specgate.systems.transfer import TransferFunction
 
 UNSTABLE = "the closed loop is not stable as it is: there is nothing that a margin could be left to"
 
-_BY_GAIN = "less than 1 % in the gain"
-_BY_PHASE = "less than 0.6 deg in the phase"
 
 _ORIGIN, _INFINITY = Rational(fmpq(0)), Infinity()
 
@@ -147,7 +145,8 @@ class RationalLoop(SidedMargins):
         def near(spot: Spot) -> bool:
             return spot.sign(50 * excess - below) <= 0 <= spot.sign(50 * excess + below)
 
-        return Watch(_BY_GAIN, self._all_gain_crossings, tangencies(excess, near), self._gain_crossing)
+        found = ((self._gain_crossing(one.spot), one.created) for one in tangencies(excess, near))
+        return Watch(BY_GAIN, self._all_gain_crossings, found)
 
     @cached_property
     def _near_phase(self) -> Watch[PhaseCrossing]:
@@ -157,7 +156,8 @@ class RationalLoop(SidedMargins):
         def near(spot: Spot) -> bool:
             return spot.sign(real) < 0 and spot.sign(10**4 * X * imaginary**2 - real**2) <= 0
 
-        return Watch(_BY_PHASE, self._all_phase_crossings, tangencies(imaginary, near), self._phase_crossing)
+        found = ((self._phase_crossing(one.spot), one.created) for one in tangencies(imaginary, near))
+        return Watch(BY_PHASE, self._all_phase_crossings, found)
 
     # --- margins ------------------------------------------------------------------------------------------
 

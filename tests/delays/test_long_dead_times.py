@@ -113,3 +113,17 @@ def test_settling_and_extremes(law: str, ratio: int) -> None:
 
 def _mp(value: Fraction) -> mpmath.mpf:
     return mpmath.mpf(value.numerator) / value.denominator
+
+
+def test_what_a_settling_time_rests_on_is_told() -> None:
+    """Early terms, the line beyond which no pole counts, and the poles."""
+    answer = response("both", 100).settling(fmpq(1, 50))
+    assert answer.how is not None
+    account = answer.how()
+    assert account.footing is not None
+    assert "the method of steps: 60 terms" in account.footing.ground
+    assert "residues at all poles right of Re s = -0.994 1/s" in account.footing.ground
+    assert account.footing.poles == 1
+    assert account.footing.pole_radius is not None
+    assert account.footing.pole_radius < 1e-60
+    assert account.searched_until is not None

@@ -11,9 +11,11 @@ import pytest
 from flint import arb, fmpq
 
 from specgate.delays.gain import DelayedGain
+from specgate.delays.magnitude import DelayedMagnitude
 from specgate.delays.open_loop import DelayedLoop
 from specgate.response.answers import Answer
 from specgate.systems.delayed_network import DelayedTransfer
+from specgate.systems.polynomials import highest_first
 from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_stability import is_stable
 
@@ -269,3 +271,36 @@ def test_ranges_restrict_what_is_looked_at() -> None:
     further = loop.gain_margin_up((fmpq(2), fmpq(10))).enclose(64)
     assert bool(further > loop.gain_margin_up().enclose(64))
     assert loop.phase_margin((fmpq(1), fmpq(2))).absent is not None
+
+
+def test_a_margin_near_a_tangency_is_fragile() -> None:
+    """A resonance behind the dead time peaks a little below one: 1 % of gain would bring about a nearer crossing."""
+    damping = fmpq(1, 20)
+    low, high = (
+        late([fmpq(99_400, 10**6)], [1, 2 * damping, 1], fmpq(1, 2)),
+        late([fmpq(90, 1000)], [1, 2 * damping, 1], fmpq(1, 2)),
+    )
+    near, far = (loop_of(one).delay_margin() for one in (low, high))
+    assert near.fragile is not None
+    assert "brings about" in near.fragile.reason
+    assert far.fragile is None
+
+
+def test_a_margin_near_a_tangency_inside_is_fragile() -> None:
+    """The same with a second way round without the dead time, so that it is no factor of L."""
+    below = highest_first([1, fmpq(1, 10), 1])
+    quasi = Quasi.of({fmpq(0): below, fmpq(1, 2): highest_first([fmpq(1, 1000)])})
+    peak = DelayedMagnitude(Quasi.rational(highest_first([1])), quasi).supremum().enclose(80).mid().fmpq()
+    for share, warned in ((fmpq(995, 1000), True), (fmpq(9, 10), False)):
+        gain = Quasi.of({fmpq(1, 2): highest_first([share / peak])})
+        found = loop_of(DelayedTransfer(gain, quasi, ((quasi, 1),))).phase_margin()
+        assert (found.fragile is not None) is warned
+
+
+def test_what_a_margin_rests_on_is_told() -> None:
+    loop = loop_of(late([2], [5, 1], fmpq(1)))
+    for answer in (loop.gain_margin(), loop.phase_margin(), loop.delay_margin(), loop.sensitivity_peak()):
+        assert answer.how is not None
+        account = answer.how()
+        assert account.footing is not None
+        assert account.method
