@@ -23,6 +23,8 @@ from specgate.terms.verdicts import Verdict
 _FEW = 4
 _SECOND, _RATE, _DECIBEL = (UnitTable.standard().parse(symbol) for symbol in ("s", "rad/s", "dB"))
 _MODE_BITS = 128
+_SLIGHT = 0.01
+"""Per cent of an error that is not worth a word."""
 
 
 def number(value: float, digits: int = _FEW) -> str:
@@ -159,7 +161,18 @@ def promise_words(assessed: CriterionAssessment) -> str:
     computed = assessed.reading.settled
     if not promised or computed.absent is not None or assessed.unit is None:
         return promised
-    return f"{promised}, computed {result(assessed)}"
+    return f"{promised}, computed {result(assessed)}{_error(audit)}"
+
+
+def _error(audit: Audit) -> str:
+    """Say how far the formula is off and on which side; nothing where that is too little to matter."""
+    error = audit.error
+    if error is None or error.side == "none" or error.relative is None:
+        return ""
+    part = 100 * printed_short(error.relative.enclose(_MODE_BITS), 1.0)
+    if abs(part) < _SLIGHT:
+        return ""
+    return f" (its formula is {'+' if part > 0 else ''}{number(part, 3)} % off, on the {error.side} side)"
 
 
 def basis_words(audit: Audit) -> str:
