@@ -9,6 +9,7 @@ from flint import fmpq
 
 from specgate.analysis.held import held_gain
 from specgate.approximations.features import Features
+from specgate.approximations.late import LateResponse
 from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.viewed import Viewed
 from specgate.approximations.whole import WholeLoop
@@ -22,6 +23,7 @@ from specgate.response.answers import Absent, Answer
 from specgate.sampled.opened import SampledOpening
 from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedChannel, DelayedOpenLoop, DelayedSolution
+from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.solution import Channel, LoopSolution, OpenLoop
 from specgate.systems.transfer import TransferFunction
 from specgate.terms.records import record
@@ -73,6 +75,13 @@ class ResponseAnalysis:
         rational = isinstance(subject, ResponseSubject) and isinstance(subject.channel, TransferFunction)
         return Features(subject) if isinstance(subject, ResponseSubject) and rational else None
 
+    @property
+    def late(self) -> ResponseSubject | None:
+        """The subject, where a dead time is on the way of a single channel."""
+        subject = self.subject
+        delayed = isinstance(subject, ResponseSubject) and isinstance(subject.channel, DelayedTransfer)
+        return subject if isinstance(subject, ResponseSubject) and delayed else None
+
 
 @record
 class BreakAnalysis:
@@ -119,8 +128,10 @@ class LoopAnalysis:
             return self.whole
         if about.kind == "break":
             return self.opened.get(about.name)
-        found = self.responses[about.name].features
-        return None if found is None else found.beside(lambda: self.opened)
+        response = self.responses[about.name]
+        if response.late is not None:
+            return LateResponse(response.late, self.opened)
+        return None if response.features is None else response.features.beside(lambda: self.opened)
 
 
 @record

@@ -106,7 +106,8 @@ class Approximation:
     variants: where there are several formulas, all of them, the one that is offered first; `variant` names
     the one whose formula the row carries (see `taken_as`).
     reduce: set where the approximation drops a part of the response, so that others can follow it in a chain.
-    inputs: kinds of input besides a single step for whose responses it is derived.
+    inputs: kinds of input besides a single step for whose responses it is derived. late: for a single step through a
+    dead time (see `late.derived_for`).
     """
 
     name: str
@@ -126,6 +127,7 @@ class Approximation:
     variant: str | None = None
     reduce: Reduction | None = None
     inputs: tuple[str, ...] = ()
+    late: bool = False
 
     def taken_as(self, variant: str) -> Approximation:
         """Return the row with the formula of one of its variants. Raises KeyError for a name that none has."""

@@ -9,6 +9,7 @@ from specgate.approximations import (
     damping_from_phase_margin,
     dead_time_limit,
     delay_margin_from_phase_margin,
+    desired_lag,
     distant_zero,
     dominant_pair,
     final_value_theorem,
@@ -68,6 +69,7 @@ _ROWS = (
     right_half_plane_zero_limit,
     unstable_pole_limit,
     half_rule,
+    desired_lag,
     hold_as_delay,
 )
 
@@ -77,7 +79,6 @@ APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for m
 LATER: Mapping[str, str] = {
     "fast_sampling_as_continuous": "a sampled controller as a continuous one",
     "inner_loop_as_lag": "an inner loop as a single lag",
-    "desired_lag": "a closed loop as the lag it was tuned for",
     "linear_range": "the linear model itself, within the range of its signals",
     "small_tail": "a very slow pole as an integrator, or not at all",
 }

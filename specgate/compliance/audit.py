@@ -14,6 +14,7 @@ from flint import arb, fmpq
 from specgate.approximations.approximation import Accuracy, Approximation, Condition, Found
 from specgate.approximations.conditions import OF_STEP
 from specgate.approximations.figures import negative, smallest
+from specgate.approximations.late import derived_for
 from specgate.approximations.table import APPROXIMATIONS, conditions
 from specgate.approximations.viewed import Viewed
 from specgate.compliance.assessment import Audit, AuditedCondition, Instead, Side, Slip
@@ -25,6 +26,7 @@ from specgate.compliance.sides import formula_error, side
 from specgate.compliance.thresholds import Policy
 from specgate.compliance.wording import apart, condition_words
 from specgate.measures.measure import Arguments
+from specgate.measures.subjects import ResponseSubject
 from specgate.project.parameters import Values, evaluate
 from specgate.project.types import Basis, Claim
 from specgate.response.answers import Answer
@@ -284,13 +286,18 @@ def _offered(audited: Audit, matter: Matter, policy: Policy) -> Audit:
 def _applicable(audited: Audit, matter: Matter, policy: Policy) -> Iterator[tuple[Approximation, Answer]]:
     """Yield the rows of the catalogue that estimate the measure, apply here and have a value; alternatives first."""
     for row in _others(audited):
-        if matter.arguments.measure not in row.estimates:
+        if matter.arguments.measure not in row.estimates or not _derived_for(row, matter.viewed):
             continue
         link = Link(row, matter.viewed, matter.again)
         if all(one.found.holds is Trilean.YES for one in audited_conditions(link, matter.arguments, policy)):
             value = row.evaluate(matter.viewed, matter.arguments)
             if value.absent is None:
                 yield row, value
+
+
+def _derived_for(row: Approximation, viewed: Viewed) -> bool:
+    subject = viewed.subject
+    return not isinstance(subject, ResponseSubject) or derived_for(subject, row.inputs, late=row.late)
 
 
 def _others(audited: Audit) -> Iterator[Approximation]:

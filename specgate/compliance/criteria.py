@@ -6,6 +6,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import replace
 
 from specgate.analysis.analyses import Analyses, Missing
+from specgate.approximations.late import derived_for
 from specgate.approximations.table import APPROXIMATIONS, LATER
 from specgate.compliance.asking import Asked, ask
 from specgate.compliance.assessment import Audit, CriterionAssessment, Unanswered
@@ -21,7 +22,6 @@ from specgate.measures.subjects import ResponseSubject
 from specgate.measures.table import MEASURES
 from specgate.project.types import Basis, Criterion, Limit, Project
 from specgate.response.answers import Answer
-from specgate.systems.transfer import TransferFunction
 from specgate.terms.unit import ONE, Unit
 from specgate.terms.verdicts import Standing, Verdict
 
@@ -110,8 +110,9 @@ class Criteria:
         if basis.kind == "evidence":
             return Audit("evidence", Standing.INCONCLUSIVE, basis.place, evidence=basis.evidence)
         subject = nominal.subject
-        if isinstance(subject, ResponseSubject) and subject.beyond is not None and not _derived_for(basis, subject):
-            return audit_beyond(basis, subject.beyond, reading, nominal.study.values, unit)
+        beyond = subject.beyond if isinstance(subject, ResponseSubject) else None
+        if isinstance(subject, ResponseSubject) and beyond is not None and not _derived_for(basis, subject):
+            return audit_beyond(basis, beyond, reading, nominal.study.values, unit)
         viewed = nominal.viewed
         precise = viewed if again is nominal else again.viewed
         if viewed is None or precise is None:
@@ -122,10 +123,9 @@ class Criteria:
 
 
 def _derived_for(basis: Basis, subject: ResponseSubject) -> bool:
-    """Whether every link of a basis is derived for an input that is no single step, through a rational channel."""
-    rows = [APPROXIMATIONS.get(name) for name in basis.chain]
-    rational = isinstance(subject.channel, TransferFunction)
-    return rational and all(row is None or subject.kind in row.inputs for row in rows)
+    """Whether every link of a basis is derived for a response; one that is not audited yet is taken as it is."""
+    rows = [APPROXIMATIONS[name] for name in basis.chain if name in APPROXIMATIONS]
+    return all(derived_for(subject, row.inputs, late=row.late) for row in rows)
 
 
 def _reading(nominal: Asked, again: Asked, read: Reader | None, deciding: Unanswered | None) -> Reading:

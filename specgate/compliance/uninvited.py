@@ -14,6 +14,7 @@ from flint import fmpq
 from specgate.analysis.analyses import Analyses, Missing
 from specgate.analysis.arguments import ALWAYS, ALWAYS_SAID, said
 from specgate.approximations.approximation import Approximation
+from specgate.approximations.late import derived_for
 from specgate.approximations.table import APPROXIMATIONS
 from specgate.approximations.viewed import Viewed
 from specgate.compliance.asking import ask
@@ -145,7 +146,7 @@ class Uninvited:
         if isinstance(subject, Missing):
             return Formulas(reason=subject.reason)
         beyond = subject.beyond if isinstance(subject, subjects.ResponseSubject) else None
-        rows = [row for row in _rows() if beyond is None or _kind(subject) in row.inputs]
+        rows = [row for row in _rows() if _derived_for(row, subject)]
         if nominal is None or again is None or not rows:
             return Formulas(reason=beyond)
         again = nominal if again.subject is nominal.subject else again
@@ -200,8 +201,8 @@ def _rows() -> Iterator[Approximation]:
         yield from (row.taken_as(one.name) for one in row.variants) if row.variants else (row,)
 
 
-def _kind(subject: subjects.Subject) -> str:
-    return subject.kind if isinstance(subject, subjects.ResponseSubject) else ""
+def _derived_for(row: Approximation, subject: subjects.Subject) -> bool:
+    return not isinstance(subject, subjects.ResponseSubject) or derived_for(subject, row.inputs, late=row.late)
 
 
 def _usual(measure: Measure, signal: Unit) -> Iterable[Question]:
