@@ -54,6 +54,7 @@ def build(
         documents=records.documents(root.get("documents")),
         evidence=evidence.evidence(root.get("evidence"), context),
         waivers=evidence.waivers(root.get("waivers"), context),
+        wording=policy.wording(root.get("wording")),
         decision_rule=records.decision_rule(root.get("decision_rule")),
         model_agreement=records.model_agreement(root.get("model_agreement"), context),
         masks=context.laid,

@@ -25,7 +25,18 @@ NAMED = (
 ONE_NAMESPACE = ("subsystems", "loops", "requirements", "evidence", "waivers", "documents")
 """Sections whose ids must differ from each other's as well: they are referred to without saying which it is."""
 KNOWN = frozenset(
-    (*NAMED, "$schema", "specgate", "project", "include", "gate", "evaluate", "decision_rule", "model_agreement")
+    (
+        *NAMED,
+        "$schema",
+        "specgate",
+        "project",
+        "include",
+        "gate",
+        "evaluate",
+        "decision_rule",
+        "model_agreement",
+        "wording",
+    )
 )
 """All sections."""
 _REPEATABLE = ("specgate", "include", "$schema")

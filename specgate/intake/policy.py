@@ -9,7 +9,7 @@ from specgate.intake.collect import Collector
 from specgate.intake.context import Context, entries, table, text, texts
 from specgate.intake.nodes import Node, Table, Text
 from specgate.intake.values import Reader
-from specgate.project.types import GatePolicy, ProjectInfo, Value
+from specgate.project.types import GatePolicy, ProjectInfo, Value, Wording
 from specgate.terms import expressions
 from specgate.terms.dimensions import DIMENSIONLESS
 from specgate.terms.expressions import is_read
@@ -63,6 +63,12 @@ def gate(node: Node | None) -> GatePolicy:
     body = table(node)
     listed = body.get("hold_on") if body is not None else None
     return GatePolicy(cast("tuple[Holding, ...]", texts(listed)) if listed is not None else DEFAULT_HOLD)
+
+
+def wording(node: Node | None) -> Wording:
+    """Read the project's own words for the texts of requirements."""
+    body = table(node)
+    return Wording() if body is None else Wording(texts(body.get("unverifiable")), texts(body.get("allowed")))
 
 
 def thresholds(node: Node | None, context: Context) -> dict[str, dict[str, Value]]:

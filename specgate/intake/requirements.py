@@ -51,6 +51,7 @@ def requirement(entry: Entry, context: Context) -> Requirement | None:
         external=_kept_or_none(node.get("external")),
         not_applicable=_not_applicable(node.get("not_applicable")),
         budget=shares,
+        text_place=None if (words := node.get("text")) is None else words.spot.place,
         template_place=_template(node),
     )
 

@@ -28,6 +28,7 @@ ADDED = {
     *("requirement-childless", "text-duplicate", "requirement-unallocated", "allocation-unused"),
     *("verification-missing", "verification-without-criterion", "verification-without-evidence"),
     *("document-unregistered", "document-issues-differ"),
+    *("text-disagrees-with-limit", "text-to-be-determined", "text-without-one-shall", "text-unverifiable"),
     *("budget-overdrawn", "budget-undecided", "budget-doubtful"),
     *(
         "evidence-stale",

@@ -40,7 +40,7 @@ from specgate.project.types.records import Aim, DecisionRule, Evidence, Expiry, 
 from specgate.project.types.requirements import Link, Method, NotApplicable, Requirement
 from specgate.project.types.subsystems import Pedigree, Port, StandIn, Subsystem
 from specgate.project.types.values import Parameter, Tolerance, Value
-from specgate.project.types.whole import GatePolicy, InputFile, Kept, Project, ProjectInfo
+from specgate.project.types.whole import GatePolicy, InputFile, Kept, Project, ProjectInfo, Wording
 
 __all__ = [
     "Aim",
@@ -101,4 +101,5 @@ __all__ = [
     "UnreadModel",
     "Value",
     "Waiver",
+    "Wording",
 ]

@@ -61,5 +61,6 @@ class Requirement:
     not_applicable: NotApplicable | None = None
     budget: Budget | None = None
     kept: Mapping[str, object] = field(default_factory=dict)
+    text_place: Place | None = None
     template_place: Place | None = None
     """Where the text of the template begins that it is made from."""

@@ -56,6 +56,14 @@ class InputFile:
 
 
 @record
+class Wording:
+    """Words in texts of requirements: further unverifiable ones, and listed ones that the project allows."""
+
+    unverifiable: tuple[str, ...] = ()
+    allowed: tuple[str, ...] = ()
+
+
+@record
 class Project:
     """The whole specification."""
 
@@ -78,6 +86,7 @@ class Project:
     documents: Mapping[str, Kept] = field(default_factory=dict)
     evidence: Mapping[str, Evidence] = field(default_factory=dict)
     waivers: Mapping[str, Waiver] = field(default_factory=dict)
+    wording: Wording = field(default_factory=Wording)
     decision_rule: DecisionRule = field(default_factory=DecisionRule)
     model_agreement: ModelAgreement | None = None
     masks: Mapping[str, MaskDefinition] = field(default_factory=dict)
