@@ -46,7 +46,7 @@ class ArgumentCheck:
         """Check a range of frequencies. Raises Fault."""
         for value in ends:
             self._frequency(value)
-        if evaluate(ends[0], self.values) >= evaluate(ends[1], self.values):
+        if evaluate(ends[0], self.values) > evaluate(ends[1], self.values):
             written = ", ".join(value.as_written for value in ends)
             raise Fault(
                 faults.VALUE, f"nothing lies in the range [{written}]: the lower end comes first", ends[0].place

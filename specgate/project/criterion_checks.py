@@ -14,7 +14,6 @@ from specgate.project.faults import Fault, Faults
 from specgate.project.limit_checks import LimitCheck
 from specgate.project.mask_checks import mask_checks
 from specgate.project.parameters import Values
-from specgate.project.sampling import refuse_above_half_the_rate
 from specgate.project.signals import LoopSignals
 from specgate.project.types import Criterion, Requirement
 
@@ -63,8 +62,6 @@ def _checks(criterion: Criterion, about: About, measure: Measure, values: Values
     arguments = ArgumentCheck(about, measure, values)
     for name, value in criterion.arguments.items():
         yield partial(arguments.argument, name, value)
-        if name == "frequency":
-            yield partial(refuse_above_half_the_rate, value, about, values)
     if criterion.over is not None:
         yield partial(arguments.over, criterion.over)
     if criterion.mask is not None:

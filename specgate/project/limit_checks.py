@@ -84,7 +84,6 @@ class LimitCheck:
             return  # said of the value
         self._order(limit)
         self._sign(limit)
-        self._possible(limit)
 
     def counted(self, value: Value) -> None:
         """Check that a limit or a claim is in a unit of the measure. Raises Fault."""
@@ -194,23 +193,6 @@ class LimitCheck:
                 f"`between: […, …]`{deviation}",
                 limit.place,
             )
-
-    def _possible(self, limit: Limit) -> None:
-        """Refuse a limit below everything that a measure can be. Raises Fault."""
-        kind, rule = limit.kind, self.measure.unit
-        # times that count from the end of a ramp may be negative
-        if self.measure.signed or kind not in ("at_most", "at_least") or self.about.kind == "ramp_and_hold":
-            return
-        # a resonance peak may be looked for where the gain has fallen already
-        decibel = rule is UnitRule.DECIBEL
-        if decibel and self.about.of_response:
-            return
-        least, zero = (fmpq(1), "0 dB, a factor of 1") if decibel else (fmpq(0), "zero")
-        if self._number(limit.values[0]) < least:
-            written = limit.values[0].as_written
-            how = "always" if kind == "at_least" else "never"
-            message = f"`{kind}: {written}` is {how} met: {self.measure.name} is not below {zero}"
-            raise Fault(faults.SIGN, f"{message}; give the size that is wanted, without a sign", limit.place)
 
     def _number(self, value: Value) -> fmpq:
         relative = relative_to_change(value) if self.measure.unit is UnitRule.CHANGE else None

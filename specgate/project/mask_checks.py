@@ -1,4 +1,4 @@
-"""Checks of masks against what they are laid over: corners, their order, their limits, and room between the limits."""
+"""Checks of masks against what they are laid over: corners, their order, their limits."""
 
 from __future__ import annotations
 
@@ -12,8 +12,7 @@ from specgate.project import faults
 from specgate.project.about import About
 from specgate.project.counting import refuse_unsaid, shown
 from specgate.project.faults import Fault
-from specgate.project.mask_room import crossed
-from specgate.project.masks import in_decibel, is_relative, is_zero, laid_over, limits_of, mask_of, of_span
+from specgate.project.masks import in_decibel, is_relative, is_zero, laid_over, limits_of, of_span
 from specgate.project.parameters import Values, evaluate, infer
 from specgate.project.percent import refuse_ambiguous, relative_to_change
 from specgate.project.rational_forms import refuse_written_rate
@@ -29,12 +28,6 @@ _FREQUENCY = Unit("rad/s", fmpq(1), 0, RATE)
 
 def mask_checks(mask: MaskDefinition, about: About, values: Values) -> Iterator[Callable[[], object]]:
     """Give the checks of a mask on what it is laid over that do not depend on one another; each raises Fault."""
-    yield from _checks(mask, about, values)
-    yield partial(_check_apart, mask, about, values)
-
-
-def _checks(mask: MaskDefinition, about: About, values: Values) -> Iterator[Callable[[], object]]:
-    """Give all of them but the one on the room between the limits."""
     if not about.of_response and mask.over == "time":
         yield partial(_refuse_time, mask)
         return
@@ -138,19 +131,3 @@ def _check_logarithmic(corners: tuple[Corner, ...], values: Values) -> None:
                 f"`{first.at.as_written}`: lines in dB are straight over the logarithm of frequency, which has no zero"
             )
             raise Fault(faults.VALUE, message, first.at.place)
-
-
-def _check_apart(mask: MaskDefinition, about: About, values: Values) -> None:
-    """See that there is room between the limits wherever both hold. Raises Fault."""
-    for check in _checks(mask, about, values):
-        try:
-            check()
-        except Fault:
-            return  # said of the corner
-    span = about.span if any(map(of_span, limits_of(mask))) else None
-    place = crossed(mask_of(mask, values, span)[0])
-    corners = (*mask.upper, *mask.lower)
-    corner = next((one for one in corners if place is not None and evaluate(one.at, values) == place), None)
-    if corner is not None:
-        message = f"at `{corner.at.as_written}` the lower limit of the mask `{mask.name}` lies above the upper one"
-        raise Fault(faults.VALUE, f"{message}: nothing keeps both", corner.at.place)
