@@ -156,3 +156,11 @@ def test_an_integrator_that_is_none_names_what_stays(
     assert read["crossover of the loop through it"] == pytest.approx(math.sqrt(4 - 1e-6))
     assert "quasi_integrator" not in found(SETTLING, plant=leaking)[1]
     assert "quasi_integrator" not in found("response: loop.r, measure: final_value, within: 0.01, of: 1")[1]
+
+
+@pytest.mark.parametrize(("limit", "holds"), [("1.9 rad/s", Trilean.NO), ("2.1 rad/s", Trilean.YES)])
+def test_the_stability_of_a_loop_rests_on_the_models_at_its_crossovers(
+    found: Callable[..., tuple[Assessment, dict[str, ModelAssumption]]], limit: str, holds: Trilean
+) -> None:
+    _, model = found("loop: loop, measure: stable, equals: true", said=f"valid_to: {limit}")
+    assert model["valid_to"].holds is holds

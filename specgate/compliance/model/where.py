@@ -67,15 +67,15 @@ def places(study: Study, about: Subject, arguments: Arguments, answer: Answer) -
     at = (answer.at or {}).get("frequency")
     if arguments.measure not in _AT_A_CROSSOVER and isinstance(at, Answer) and at.absent is None:
         yield Place(f"what decides {arguments.measure}", at)
+    if about.kind == "response" and about.name is not None:
+        yield from _of_response(loop, about.name)
+        return
+    for name, opened in loop.opened.items():
+        for crossing in opened.gain_crossings if about.name in (None, name) else ():
+            if crossing.frequency.absent is None:
+                yield Place(f"a gain crossover at {name}", crossing.frequency)
     if about.kind == "loop":
         yield from _of_loop(loop, arguments)
-    elif about.kind == "break" and about.name is not None:
-        opened = loop.opened.get(about.name)
-        for crossing in () if opened is None else opened.gain_crossings:
-            if crossing.frequency.absent is None:
-                yield Place(f"a gain crossover at {about.name}", crossing.frequency)
-    elif about.name is not None:
-        yield from _of_response(loop, about.name)
 
 
 def _of_loop(loop: LoopAnalysis, arguments: Arguments) -> Iterator[Place]:
