@@ -8,6 +8,7 @@ import pytest
 from flint import fmpq
 
 from specgate.approximations.approximation import Accuracy
+from specgate.approximations.table import APPROXIMATIONS, chain
 from specgate.compliance.assessment import Assessment, Audit
 from specgate.compliance.chains import together
 from specgate.terms.verdicts import Standing, Trilean
@@ -185,3 +186,71 @@ def test_a_two_sided_limit_has_an_upper_end(audited: Callable[..., Audit]) -> No
         WRONG_WAY, "between: [0 %, 40 %]", "right_half_plane_undershoot, claimed: 0.11 %", measure="undershoot"
     )
     assert found.standing is Standing.OUT_OF_RANGE
+
+
+# --- rules that rest on rules ---
+
+
+def test_every_rule_for_a_pair_rests_on_the_pair_dominating() -> None:
+    rules = [name for name in APPROXIMATIONS if name.startswith("second_order_")]
+    assert len(rules) == 6
+    assert all("dominant_pair" in [row.name for row in chain(name)] for name in rules)
+
+
+SERVO = """
+    specgate: 1
+    project: {{id: B-2, title: Chains, revision: A}}
+    subsystems:
+      drive: {{input: {{unit: 1}}, output: {{unit: 1}}, model: {model}}}
+    loops:
+      loop:
+        inputs: {{u: {{unit: 1}}}}
+        signals: {{y: drive(u - y)}}
+        breaks: {{b: y}}
+        responses: {{r: {{from: u, to: y, input: step, size: 1}}}}
+    requirements:
+      R:
+        text: It shall.
+        verification: analysis
+        criterion: {{response: loop.r, measure: overshoot, at_most: {most}}}
+        basis: {{approximation: {basis}}}
+    """
+
+
+@pytest.mark.parametrize(
+    "basis", ["overshoot_from_phase_margin", "[damping_from_phase_margin, overshoot_from_phase_margin]"]
+)
+def test_overshoot_by_way_of_the_damping_ratio(judge: Judge, basis: str) -> None:
+    """The conditions are those of all links; the accuracy is what both errors make together."""
+    text = SERVO.format(model="{numerator: [1], denominator: [1, 0.8, 0]}", most="30 %", basis=basis)
+    audit = judge(text)["R"].criteria[0].audit
+    assert audit.standing is Standing.SOUND
+    assert owners(audit) == ["damping_from_phase_margin", "dominant_pair"]
+    assert audit.implied is not None
+    low, high = (float(end.enclose(64).mid()) for end in audit.implied)
+    assert low < 0.2538 < high  # exp(-0.4 pi/sqrt(0.84))
+    assert (low, high) == (pytest.approx(0.2228 / 1.081, abs=1e-3), pytest.approx(0.2228 / 0.877, abs=1e-3))
+
+
+@pytest.mark.parametrize(
+    ("model", "broken"),
+    [
+        # a pair that is heavily damped: 70 deg of phase margin, and nothing wrong with the pair
+        ("{numerator: [1], denominator: [1, 1.6, 0]}", {"damping_from_phase_margin"}),
+        # a pole near the crossover: L is of another kind, and the pair does not dominate either
+        ("{numerator: [1], denominator: [0.3, 1.24, 0.8, 0]}", {"damping_from_phase_margin", "dominant_pair"}),
+    ],
+)
+def test_one_broken_link_breaks_the_chain(judge: Judge, model: str, broken: set[str]) -> None:
+    text = SERVO.format(model=model, most="60 %", basis="overshoot_from_phase_margin")
+    audit = judge(text)["R"].criteria[0].audit
+    assert audit.standing is Standing.OUT_OF_RANGE
+    assert {one.approximation for one in audit.conditions if one.found.holds is Trilean.NO} == broken
+
+
+def test_what_the_combined_accuracy_leaves_open(judge: Judge) -> None:
+    """22.3 % by the rules, 20.6 to 25.4 % with their errors: 24 % lies between."""
+    text = SERVO.format(
+        model="{numerator: [1], denominator: [1, 0.8, 0]}", most="24 %", basis="overshoot_from_phase_margin"
+    )
+    assert judge(text)["R"].criteria[0].audit.standing is Standing.INCONCLUSIVE
