@@ -9,7 +9,7 @@ from specgate.analysis.late_fractions import LateFraction
 from specgate.analysis.through import through
 from specgate.approximations.opened import OpenedLoop
 from specgate.compliance.model.fact import ModelAssumption, greatest
-from specgate.compliance.model.integrators import OF_LASTING_ERRORS, quasi_integrator, slowest_pole
+from specgate.compliance.model.integrators import OF_LASTING_ERRORS, quasi_integrator, slower_than_any, slowest_pole
 from specgate.compliance.model.late import Late, Where, fraction_of, stand_in, written_dead_time
 from specgate.compliance.model.tails import hidden_slow_mode, near_cancellation
 from specgate.compliance.model.validity import pedigrees, validities
@@ -32,6 +32,7 @@ class ModelAssumptions:
         self._project, self._analyses = project, analyses
         self._crossovers: dict[tuple[str, str], Where | None] = {}
         self._opened: dict[tuple[str, str], tuple[OpenedLoop | None, OpenedLoop | None]] = {}
+        self._breaks: dict[str, tuple[Answer, ...]] = {}
         self._fractions: dict[tuple[str, str], LateFraction | None] = {}
 
     def of(self, about: Subject, arguments: Both, reading: Reading) -> tuple[ModelAssumption, ...]:
@@ -72,9 +73,11 @@ class ModelAssumptions:
         """Say of a block that it is counted on as an integrator and is none."""
         block = None if arguments[0].measure not in OF_LASTING_ERRORS else self._block(about.loop, one.name)
         pole = None if block is None else slowest_pole(block)
-        crossover = None if pole is None else self._crossover(about.loop, one.name)
+        if pole is None or not slower_than_any(pole, self._declared(about.loop)):
+            return None
+        crossover = self._crossover(about.loop, one.name)
         opened = None if crossover is None else self._through(about.loop, one.name)[0]
-        if pole is None or crossover is None or opened is None:
+        if crossover is None or opened is None:
             return None
         return quasi_integrator(one, pole, named(about), opened, crossover.frequency)
 
@@ -99,6 +102,14 @@ class ModelAssumptions:
         decided = self._places(about, arguments, reading)
         highest = None if not decided else greatest([one.answer for _, one in decided])
         return next((Where(place.what, one) for place, one in decided if one.answer is highest), None)
+
+    def _declared(self, loop: str) -> tuple[Answer, ...]:
+        """Return the gain crossovers of the declared breaks of a loop, where they have any."""
+        if loop not in self._breaks:
+            opened = self._analyses.nominal.loops[loop].opened.values()
+            found = (_highest_crossover(one) for one in opened)
+            self._breaks[loop] = tuple(one for one in found if one is not None)
+        return self._breaks[loop]
 
     def _crossover(self, loop: str, subsystem: str) -> Where | None:
         """Return the highest gain crossover of the loop through a block; searched once."""

@@ -6,7 +6,9 @@ where it is a hundredth of the highest gain crossover or less: over 1/crossover 
 
 from __future__ import annotations
 
-from flint import fmpq
+from collections.abc import Sequence
+
+from flint import arb, fmpq
 
 from specgate.approximations.figures import SHOWN, product, quotient
 from specgate.approximations.opened import OpenedLoop
@@ -19,6 +21,7 @@ from specgate.project.types import Subsystem
 from specgate.response.answers import Answer
 from specgate.systems.blocks import Block
 from specgate.systems.error_constants import loop_type, position_constant
+from specgate.terms.precision import working_precision
 from specgate.terms.unit import Unit
 from specgate.terms.verdicts import Standing, Trilean
 
@@ -44,6 +47,16 @@ def slowest_pole(block: Block) -> Spot | None:
     found = [one for one in spots(block.denominator) if not one.oscillates and one.decay.enclose(SHOWN) > 0]
     rates = [one.decay.enclose(SHOWN) for one in found]
     return next((one for one, own in zip(found, rates, strict=True) if not any(other < own for other in rates)), None)
+
+
+def slower_than_any(pole: Spot, crossovers: Sequence[Answer]) -> bool:
+    """Whether a pole may be slow enough for some crossover of a declared break; of none, it may be for another.
+
+    A cheap look before the loop is opened at the block: what is not slow against any loop that is looked at is left.
+    """
+    rate = pole.decay.enclose(SHOWN)
+    with working_precision(SHOWN):
+        return not crossovers or any(not rate * arb(SLOW) > one.enclose(SHOWN) for one in crossovers)
 
 
 def quasi_integrator(
