@@ -8,16 +8,15 @@ Where the gain falls to its limit, a crossing leaves less than all that follow i
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from flint import fmpq, fmpq_poly
 
 from specgate.frequency.margins import PhaseCrossing
 from specgate.response.answers import Answer
 from specgate.systems.quasi_count import beyond_last_root, squared
+from specgate.terms.records import record
 
 
-@dataclass(frozen=True)
+@record
 class End:
     """From `since` (rad/s) on |L| moves towards `limit`: direction 1 where it rises, -1 where it falls, 0 at rest."""
 

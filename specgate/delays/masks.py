@@ -10,7 +10,7 @@ where the gain falls to zero.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from itertools import pairwise
 
 from flint import acb, arb, fmpq
@@ -27,13 +27,14 @@ from specgate.response.answers import Answer
 from specgate.response.questions import Mask, Points
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 from specgate.terms.verdicts import Proof
 
 _NEAR = "the gain is so near to the mask that it is not told on which side it is"
 _DOUBLINGS = 40
 
 
-@dataclass(frozen=True)
+@record
 class Straight:
     """An edge from (start, low) to (end, high), straight over frequency; rad/s, plain ratios."""
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from functools import lru_cache
 from itertools import chain, islice
 
@@ -15,6 +15,7 @@ from specgate.delays.steps import Mode
 from specgate.delays.swing import shaped
 from specgate.delays.transform import Transform
 from specgate.systems.quasi_count import Line, dominated_beyond, line
+from specgate.systems.quasi_disc import roots_within
 from specgate.systems.roots import certified_roots
 from specgate.terms.precision import series_terms, working_precision
 from specgate.terms.records import record
@@ -35,9 +36,12 @@ _TRIED = 4
 
 @record
 class Poles:
-    """All poles of Y right of a line, but s = 0: of polynomials in s alone, and of each factor with dead time."""
+    """All poles of Y in a region, but s = 0: of polynomials in s alone, and of each factor with dead time.
 
-    line: Line
+    count: their number, each as often as it is one, s = 0 included.
+    """
+
+    count: int
     rational: tuple[tuple[acb, int], ...]
     delayed: tuple[tuple[Rightmost, int], ...]
 
@@ -58,27 +62,46 @@ class Poles:
         return [acb(0), *poles] if transform.zero_times else poles
 
 
-def poles_right_of(transform: Transform, left: fmpq) -> Poles | None:
-    """Return all poles of a transform right of Re s = left, proved complete by one count; None where they were not."""
+def poles_right_of(transform: Transform, left: fmpq) -> tuple[Poles, Line] | None:
+    """Return all poles of a transform right of Re s = left, proved complete by one count, with the line that counted.
+
+    None where they were not found.
+    """
     counted = line(transform.denominator, left)
     if counted is None:
         return None
     bound = arb(left)
+    found = _complete(transform, counted.count, left, counted.height, lambda pole: bool(pole.real > bound))
+    return None if found is None else (found, counted)
+
+
+def poles_within(transform: Transform, radius: fmpq) -> Poles | None:
+    """Return all poles of a transform with |s| < radius, proved complete by one count; None where they were not."""
+    count = roots_within(transform.denominator, radius)
+    if count is None:
+        return None
+    return _complete(transform, count, -radius, radius, lambda pole: bool(abs(pole) < arb(radius)))
+
+
+def _complete(
+    transform: Transform, count: int, left: fmpq, height: fmpq, inside: Callable[[acb], bool]
+) -> Poles | None:
+    """Return the poles of a region that lies right of a line and below a height, if as many are found as there are."""
     rational = [
         (root.value, times)
         for factor, times in transform.rational_factors
         for root in certified_roots(factor, 64)
-        if root.value.real > bound
+        if inside(root.value)
     ]
-    wanted = counted.count - transform.zero_times - sum(times for _, times in rational)
+    wanted = count - transform.zero_times - sum(times for _, times in rational)
     for fineness in (1.0, 2.5, 6.0):
         delayed = [
-            (certified_right(factor, left, counted.height, fineness), times)
+            (certified_right(factor, left, height, fineness).those(inside), times)
             for factor, times in transform.quasi_factors
         ]
         if sum(found.count * times for found, times in delayed) == wanted:
             upper = tuple((value, times) for value, times in rational if not value.imag < 0)
-            return Poles(counted, upper, tuple(delayed))
+            return Poles(count, upper, tuple(delayed))
     return None
 
 
@@ -125,10 +148,11 @@ def modal(transform: Transform, since: fmpq) -> Modal | None:
     lines = (islice(suitable_lines(transform, near=near), _TRIED) for near in (False, True))
     for left in chain.from_iterable(lines):
         for nudge in (fmpq(1), fmpq(93, 100)):
-            poles = poles_right_of(transform, left * nudge)
-            if poles is None:
+            found = poles_right_of(transform, left * nudge)
+            if found is None:
                 continue
-            rest = remainder(transform, poles.line, since)
+            poles, counted = found
+            rest = remainder(transform, counted, since)
             if rest is not None:
                 return Modal(transform, poles, rest)
     return None

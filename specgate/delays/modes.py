@@ -1,29 +1,32 @@
 """Decay, damping and natural frequency of the modes of a loop with dead time, of which there are endlessly many.
 
-All poles right of a line Re s = -g are known; every other one decays at g at least and has |p| >= g. So
-- the slowest mode is among the known ones as soon as there are any;
-- a natural frequency of at most g that is the least of the known ones is the least of all;
-- a damping ratio -Re p/|p| over a range of |p| up to h is at least g/h for the others.
+All poles in a disc |p| < r are known, or all right of a line Re s = -g: every other one has |p| >= r, or decays at g at
+least and has |p| >= g. So
+- the slowest mode is among those right of a line as soon as there are any;
+- a natural frequency that is the least of the known ones, and less than r or g, is the least of all;
+- a range of |p| that ends before r or g is known as a whole;
+- a damping ratio -Re p/|p| over a range of |p| up to h is at least g/h for those left of a line.
 Without a range there is no least damping ratio: modes of ever higher frequency decay faster, and yet their damping
 tends to zero (retarded type: Re p grows like the logarithm of |p|).
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from typing import Literal
 
 from flint import acb, arb, fmpq, fmpq_poly
 
 from specgate.delays.footing import radius_at
-from specgate.delays.modal import Poles, poles_right_of, suitable_lines
-from specgate.delays.recording import LEAST
+from specgate.delays.modal import Poles, poles_right_of, poles_within, suitable_lines
+from specgate.delays.recording import LEAST, NEAREST
 from specgate.delays.transform import Transform
 from specgate.response.accounts import Account, Footing
 from specgate.response.answers import Answer
 from specgate.systems.delayed import DelayedSolution
 from specgate.systems.quasi import Quasi
 from specgate.terms.precision import HIGHEST, working_precision
+from specgate.terms.records import record
 
 Figure = Literal["decay_rate", "natural_frequency", "damping_ratio"]
 
@@ -37,8 +40,17 @@ _ENDLESS = (
     "a dead time in the loop has modes of ever higher frequency, whose damping ratio tends to zero though they decay "
     "ever faster: ask for a range of frequencies (`over`)"
 )
-_ROOTS = "the characteristic quasi-polynomial; its roots isolated by interval Newton, counted along a vertical line"
+_ROOTS = "the characteristic quasi-polynomial; its roots isolated by interval Newton, counted by the change of argument"
 _SHOWN = 64
+_RADIANS = 60
+"""Radius of a disc times the longest delay that is worth a search."""
+
+_RADII = (1, 2, 3, 4, 6, 8, 12, 16, 24, 32)
+"""Radii, in parts of the longest delay, within which a least natural frequency is looked for."""
+
+_BEYOND = (fmpq(65, 64), fmpq(33, 32), fmpq(9, 8))
+"""Radii, in parts of the end of a range: a pole may lie on one circle."""
+
 _NOT_FOUND = "which modes of the loop are the slowest was not proved within the work limit"
 
 
@@ -48,26 +60,48 @@ def least_over_late_modes(solution: DelayedSolution, figure: Figure, over: tuple
         return Answer.undecided(_ENDLESS)
     whole = Quasi.rational(fmpq_poly([1]))
     transform = Transform(whole, solution.determinant, solution.factors, fmpq_poly([1]))
-    far = list(suitable_lines(transform))
-    for left in reversed(far) if far else suitable_lines(transform, near=True):
-        poles = poles_right_of(transform, left)
-        if poles is None:
-            continue
-        found = _among(transform, poles, figure, over)
+    for region in _regions(transform, figure, over):
+        found = _among(transform, region, figure, over)
         if found is not None:
             return found
     return Answer.undecided(_NOT_FOUND)
 
 
-def _among(transform: Transform, poles: Poles, figure: Figure, over: tuple[fmpq, fmpq] | None) -> Answer | None:
-    """Return the answer if the poles right of a line tell it."""
-    reach = -poles.line.real
+@record
+class _Region:
+    """Known poles; of all others |p| is not below `far`, nor the decay rate below `decay` (None: not told)."""
+
+    poles: Poles
+    far: fmpq
+    decay: fmpq | None
+
+
+def _regions(transform: Transform, figure: Figure, over: tuple[fmpq, fmpq] | None) -> Iterator[_Region]:
+    """Yield regions whose poles are all found, those first that cost least and tell most."""
+    longest = transform.denominator.delayed[-1][0]
+    if over is not None:
+        radii = [over[1] * part for part in _BEYOND]
+    else:
+        radii = [part / longest for part in _RADII] if figure == "natural_frequency" else []
+    for radius in radii:
+        within = poles_within(transform, radius) if radius * longest <= _RADIANS else None
+        if within is not None:
+            yield _Region(within, radius, None)
+    far = list(suitable_lines(transform))
+    for left in reversed(far) if far else suitable_lines(transform, near=True):
+        right = poles_right_of(transform, left)
+        if right is not None:
+            yield _Region(right[0], -left, -left)
+
+
+def _among(transform: Transform, region: _Region, figure: Figure, over: tuple[fmpq, fmpq] | None) -> Answer | None:
+    """Return the answer if the known poles tell it."""
+    poles, complete = region.poles, over is not None and over[1] < region.far
     picked = [_counts(transform, poles, index, figure, over) for index in range(len(poles.at(transform, 64)))]
     if None in picked:
         return None
     if not any(picked):
-        beyond = over is not None and over[1] < reach
-        return Answer.nothing("the loop has no such mode in this range of frequencies") if beyond else None
+        return Answer.nothing("the loop has no such mode in this range of frequencies") if complete else None
 
     def refine(bits: int) -> arb:
         found = poles.at(transform, bits + 16)
@@ -78,19 +112,21 @@ def _among(transform: Transform, poles: Poles, figure: Figure, over: tuple[fmpq,
                 least = least.min(value)
             return least
 
-    limit = reach if over is None or figure != "damping_ratio" else reach / over[1]
-    told = figure == "decay_rate" or bool(refine(64) < arb(limit)) or (over is not None and over[1] < reach)
-    return (
-        Answer.of_ball(refine).accounted(lambda: _account(transform, poles, sum(map(bool, picked)))) if told else None
-    )
+    limit = region.far if figure == "natural_frequency" else region.decay
+    if figure == "damping_ratio" and limit is not None and over is not None:
+        limit = limit / over[1]
+    if not (complete or (limit is not None and refine(64) < arb(limit))):
+        return None
+    return Answer.of_ball(refine).accounted(lambda: _account(transform, region, sum(map(bool, picked))))
 
 
-def _account(transform: Transform, poles: Poles, picked: int) -> Account:
+def _account(transform: Transform, region: _Region, picked: int) -> Account:
     """Say which poles a figure was taken over; `picked`: how many different ones."""
-    found = poles.with_multiplicities(transform, _SHOWN)
-    radius = radius_at([pole for pole, _ in found], _SHOWN)
-    footing = Footing(_ROOTS, poles.line.count, radius, _SHOWN)
-    return Account(LEAST, footing, counts={"different poles that count": picked})
+    found = region.poles.with_multiplicities(transform, _SHOWN)
+    footing = Footing(_ROOTS, region.poles.count, radius_at([pole for pole, _ in found], _SHOWN), _SHOWN)
+    return Account(
+        LEAST if region.decay is not None else NEAREST, footing, counts={"different poles that count": picked}
+    )
 
 
 def _counts(

@@ -16,5 +16,6 @@ ROOM = "the sign of mask minus gain, cell by cell"
 LEAST = (
     "the least over the poles right of a line, counted by the change of argument along it; all others lie left of it"
 )
+NEAREST = "the least over the poles in a disc about the origin, counted by the change of argument along its circle"
 
 AXIS = Footing("N/D, sums of polynomials times e^(-delay s), in balls along the imaginary axis")

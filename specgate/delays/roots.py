@@ -7,6 +7,8 @@ counts right of the line are all.
 
 from __future__ import annotations
 
+from collections.abc import Callable
+
 from flint import acb, arb, fmpq
 
 from specgate.delays.seeds import seeds
@@ -34,6 +36,10 @@ class Rightmost:
     def count(self) -> int:
         """The number of roots with their conjugates."""
         return sum(1 if root.imag.is_zero() else 2 for root in self.roots)
+
+    def those(self, inside: Callable[[acb], bool]) -> Rightmost:
+        """Return the roots that are told to be somewhere."""
+        return Rightmost(self.quasi, tuple(root for root in self.roots if inside(root)))
 
     def at(self, bits: int) -> tuple[acb, ...]:
         """Return the same roots in balls of about `bits` relative bits, in the same order."""

@@ -13,6 +13,7 @@ from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, Sign
 from specgate.systems.delayed import DelayedSolution, solve_delayed
 from specgate.systems.quasi import Quasi
 from specgate.systems.quasi_count import line
+from specgate.systems.quasi_disc import roots_within
 
 
 def integrator(gain: fmpq, delay: fmpq) -> Quasi:
@@ -86,3 +87,31 @@ def test_a_growing_mode_has_a_negative_decay_rate() -> None:
     found = least_over_late_modes(loop(fmpq(2), fmpq(1)), "decay_rate", None)
     with mpmath.workdps(40):
         assert abs(number(found) + lambert(mpmath.mpf(2), mpmath.mpf(1), 0).real) < 1e-25
+
+
+@pytest.mark.parametrize("reach", [2, 9, 22, 40])
+@pytest.mark.parametrize(("gain", "delay"), [(fmpq(1, 5), fmpq(1)), (fmpq(1), fmpq(1)), (fmpq(3, 10), fmpq(1, 2))])
+def test_a_range_is_known_as_a_whole(gain: fmpq, delay: fmpq, reach: int) -> None:
+    """All roots in a disc: their number, and the least figures over a range that ends within it."""
+    with mpmath.workdps(40):
+        k, t = (mpmath.mpf(int(x.p)) / int(x.q) for x in (gain, delay))
+        known = [s for s in (lambert(k, t, branch) for branch in range(-60, 60)) if abs(s) < reach]
+        assert roots_within(integrator(gain, delay), fmpq(reach)) == len(known)
+        over = (fmpq(0), fmpq(reach))
+        damping = least_over_late_modes(loop(gain, delay), "damping_ratio", over)
+        assert abs(number(damping) - min(-s.real / abs(s) for s in known)) < mpmath.mpf(10) ** -20
+        oscillating = [abs(s) for s in known if abs(s.imag) > 1e-20]
+        frequency = least_over_late_modes(loop(gain, delay), "natural_frequency", over)
+        if oscillating:
+            assert abs(number(frequency) - min(oscillating)) < mpmath.mpf(10) ** -20
+        else:
+            assert frequency.absent is not None
+            assert frequency.absent.proved
+
+
+def test_the_least_natural_frequency_lies_beyond_the_slow_modes() -> None:
+    """k t = 1/5: two real modes at 0.26 and 2.54, the first that oscillates at 8.3 rad/s: none is nearer."""
+    found = least_over_late_modes(loop(fmpq(1, 5), fmpq(1)), "natural_frequency", None)
+    with mpmath.workdps(40):
+        expected = abs(lambert(mpmath.mpf(1) / 5, mpmath.mpf(1), 1))
+        assert abs(number(found) - expected) < mpmath.mpf(10) ** -20
