@@ -9,6 +9,9 @@ import pytest
 
 from specgate.compliance.assessment import Assessment
 from specgate.compliance.model.fact import ModelAssumption
+from specgate.frequency.rational_gain import RationalGain
+from specgate.response.answers import Answer
+from specgate.response.budget import OutOfWork
 from specgate.terms.verdicts import Standing, Trilean, Verdict
 
 Judge = Callable[[str], Mapping[str, Assessment]]
@@ -165,3 +168,27 @@ def test_the_stability_of_a_loop_rests_on_its_models_at_the_crossovers(
     assessment, _ = found("loop: loop, measure: stable, equals: true", said=f"valid_to: {limit}")
     states = {one.subsystem: one.holds for one in assessment.criteria[0].model}
     assert states == {"plant": holds, "display": Trilean.NO}
+
+
+def test_a_crossover_at_infinite_frequency_is_above_every_limit(
+    found: Callable[..., tuple[Assessment, dict[str, ModelAssumption]]],
+) -> None:
+    # L = (s + 2)/(s + 1) comes down to a gain of one and never below.
+    plant = "{numerator: [1, 2], denominator: [1, 1]}"
+    criterion = "break: loop.b, measure: gain_margin, at_least: 1"
+    _, model = found(criterion, law="{gain: 1}", plant=plant, said="valid_to: 1e9 rad/s")
+    assert model["valid_to"].holds is Trilean.NO
+    assert "without limit" in model["valid_to"].words
+
+
+def test_a_bandwidth_that_is_not_found_leaves_the_standing_open(
+    found: Callable[..., tuple[Assessment, dict[str, ModelAssumption]]], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def gives_up(_: RationalGain) -> Answer:
+        raise OutOfWork("the search was given up")
+
+    monkeypatch.setattr(RationalGain, "bandwidth", gives_up)
+    assessment, model = found(SETTLING, said="valid_to: 100 rad/s")
+    assert model["valid_to"].holds is Trilean.UNKNOWN
+    assert "the search was given up" in model["valid_to"].words
+    assert assessment.standing is Standing.INCONCLUSIVE

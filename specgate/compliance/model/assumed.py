@@ -13,12 +13,11 @@ from specgate.compliance.model.integrators import OF_LASTING_ERRORS, quasi_integ
 from specgate.compliance.model.late import Late, Where, fraction_of, stand_in, written_dead_time
 from specgate.compliance.model.tails import hidden_slow_mode, near_cancellation
 from specgate.compliance.model.validity import pedigrees, validities
-from specgate.compliance.model.where import Place, blocks, places
+from specgate.compliance.model.where import Place, blocks, crossovers, places
 from specgate.compliance.readings import Reading
 from specgate.measures.measure import Arguments
 from specgate.project.types import Project, Subject, Subsystem
 from specgate.response.answers import Answer
-from specgate.response.budget import OutOfWork
 from specgate.systems.blocks import Block
 
 Both = tuple[Arguments, Arguments]
@@ -99,7 +98,7 @@ class ModelAssumptions:
         found = self._crossover(about.loop, subsystem)
         if found is not None:
             return found
-        decided = self._places(about, arguments, reading)
+        decided = [one for one in self._places(about, arguments, reading) if one[1].settled.absent is None]
         highest = None if not decided else greatest([one.answer for _, one in decided])
         return next((Where(place.what, one) for place, one in decided if one.answer is highest), None)
 
@@ -151,11 +150,7 @@ def named(about: Subject) -> str:
 
 
 def _highest_crossover(opened: OpenedLoop | None) -> Answer | None:
-    if opened is None:
-        return None
-    try:
-        every = [one.frequency for one in opened.gain_crossings]
-        found = [one for one in every if one.absent is None and one.exact != 0]
-    except OutOfWork:
-        return None
+    """Return the highest gain crossover that is known, not that at zero frequency, where no phase is to be compared."""
+    every = () if opened is None else crossovers(opened)
+    found = [one for one in every if one.absent is None and one.exact != 0]
     return greatest(found) if found else None

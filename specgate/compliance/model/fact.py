@@ -5,6 +5,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Literal
 
+from flint import fmpq
+
 from specgate.approximations.figures import SHOWN
 from specgate.compliance.compare import sign
 from specgate.compliance.readings import PI_DECIDES, Reading
@@ -53,13 +55,22 @@ class ModelAssumption:
 
 
 def exceeds(value: Reading, limit: Reading) -> Trilean:
-    """Whether a number is greater than another that is exactly known, told with both decimals for pi."""
+    """Whether a number is greater than another that is exactly known, told with both decimals for pi.
+
+    One without limit is; of one that is not decided nobody can tell.
+    """
     found = []
     for answer, bound in ((value.answer, limit.answer), (value.again, limit.again)):
         assert bound.exact is not None
-        decided = None if answer.absent is not None else sign(answer, bound.exact)
-        found.append(Trilean.UNKNOWN if decided is None else Trilean.of(decided > 0))
+        found.append(_exceeds(answer, bound.exact))
     return found[0] if found[0] is found[1] else Trilean.UNKNOWN
+
+
+def _exceeds(answer: Answer, bound: fmpq) -> Trilean:
+    if answer.absent is not None:
+        return Trilean.YES if answer.absent.infinite else Trilean.UNKNOWN
+    decided = sign(answer, bound)
+    return Trilean.UNKNOWN if decided is None else Trilean.of(decided > 0)
 
 
 def greatest(answers: Sequence[Answer]) -> Answer:

@@ -70,7 +70,8 @@ def _validity(
         state = Trilean.NO, Standing.OUT_OF_RANGE
     elif untold:
         words = f"whether {untold[0].what} is above {stated.as_written}, to which the model of {subsystem.name} holds: "
-        words += UNTOLD
+        absent = untold[0].frequency.absent
+        words += UNTOLD if absent is None else absent.reason
         state = Trilean.UNKNOWN, Standing.INCONCLUSIVE
     else:
         words = f"nothing that decides is above {stated.as_written}, to which the model of {subsystem.name} holds"

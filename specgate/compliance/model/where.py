@@ -2,17 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 
 from flint import arb, fmpq
 
 from specgate.analysis.analyses import LoopAnalysis, Missing, Study
+from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.spots import Spot, spots
 from specgate.compliance.model.fact import greatest
 from specgate.frequency.questions import Gain
 from specgate.measures.measure import Arguments
 from specgate.project.types import Subject
 from specgate.response.answers import Answer
+from specgate.response.budget import OutOfWork
 from specgate.response.modes import Expansion, Mode, expand
 from specgate.sampled.solution import SampledSolution
 from specgate.systems.delayed import DelayedSolution
@@ -71,24 +73,28 @@ def places(study: Study, about: Subject, arguments: Arguments, answer: Answer) -
         yield from _of_response(loop, about.name)
         return
     for name, opened in loop.opened.items():
-        for crossing in opened.gain_crossings if about.name in (None, name) else ():
-            if crossing.frequency.absent is None:
-                yield Place(f"a gain crossover at {name}", crossing.frequency)
+        for crossover in crossovers(opened) if about.name in (None, name) else ():
+            yield Place(f"a gain crossover at {name}", crossover)
     if about.kind == "loop":
-        yield from _of_loop(loop, arguments)
+        yield from _of_loop(loop, arguments, answer)
 
 
-def _of_loop(loop: LoopAnalysis, arguments: Arguments) -> Iterator[Place]:
+def crossovers(opened: OpenedLoop) -> tuple[Answer, ...]:
+    """Return the gain crossovers of an opened loop; one that is not decided where the search ends without an answer."""
+    try:
+        return tuple(one.frequency for one in opened.gain_crossings)
+    except OutOfWork as limit:
+        return (Answer.undecided(limit.reason),)
+
+
+def _of_loop(loop: LoopAnalysis, arguments: Arguments, answer: Answer) -> Iterator[Place]:
     """Yield the distance from the origin of the pole that a measure of all modes is read off."""
     solution = loop.solution
-    modes = solution.determinant if isinstance(solution, LoopSolution) and solution.algebraic_loop is None else None
-    if modes is None or arguments.measure not in ("damping_ratio", "natural_frequency"):
-        return
-    found = [one for one in spots(modes) if one.upper]
-    if arguments.measure == "damping_ratio":
-        found = _least_damped(found)
-    for one in found:
-        yield Place("an oscillating mode", one.distance)
+    if arguments.measure == "natural_frequency" and answer.absent is None:
+        yield Place("the slowest oscillating mode", answer)
+    if arguments.measure == "damping_ratio" and isinstance(solution, LoopSolution) and not solution.algebraic_loop:
+        for one in _least_damped([one for one in spots(solution.determinant) if one.upper]):
+            yield Place("the least damped mode", one.distance)
 
 
 def _least_damped(found: list[Spot]) -> list[Spot]:
@@ -110,13 +116,24 @@ def _of_response(loop: LoopAnalysis, name: str) -> Iterator[Place]:
 
 
 def _of_gain(gain: Gain, name: str) -> Iterator[Place]:
-    bandwidth = gain.bandwidth()
-    if bandwidth.absent is None:
+    bandwidth, resonance = _asked(gain.bandwidth), _asked(gain.resonance_peak)
+    if _may_be(bandwidth):
         yield Place(f"the bandwidth of {name}", bandwidth)
-    resonance = gain.resonance_peak()
-    at = (resonance.at or {}).get("frequency")
-    if resonance.absent is None and isinstance(at, Answer) and at.absent is None and at.exact != 0:
+    at = resonance if resonance.absent is not None else (resonance.at or {}).get("frequency")
+    if isinstance(at, Answer) and _may_be(at) and at.exact != 0:
         yield Place(f"the resonance peak of {name}", at)
+
+
+def _asked(ask: Callable[[], Answer]) -> Answer:
+    try:
+        return ask()
+    except OutOfWork as limit:
+        return Answer.undecided(limit.reason)
+
+
+def _may_be(answer: Answer) -> bool:
+    """Whether there is a value, or nobody has shown that there is none."""
+    return answer.absent is None or not answer.absent.proved
 
 
 def _modes(channel: TransferFunction) -> Iterator[Place]:
