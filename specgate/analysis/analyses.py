@@ -9,7 +9,7 @@ from flint import fmpq
 
 from specgate.analysis.held import held_gain
 from specgate.approximations.features import Features
-from specgate.approximations.late import LateResponse
+from specgate.approximations.late import LateResponse, Reference
 from specgate.approximations.opened import OpenedLoop
 from specgate.approximations.viewed import Viewed
 from specgate.approximations.whole import WholeLoop
@@ -130,8 +130,15 @@ class LoopAnalysis:
             return self.opened.get(about.name)
         response = self.responses[about.name]
         if response.late is not None:
-            return LateResponse(response.late, self.opened)
+            return LateResponse(response.late, self.opened, _reference(response.response))
         return None if response.features is None else response.features.beside(lambda: self.opened)
+
+
+def _reference(response: project_types.Response) -> Reference:
+    """Return what the error of a response to a single input is measured from."""
+    if response.reference in (None, response.excitations[0].source):
+        return "input"
+    return "zero" if response.reference == "0" else "other"
 
 
 @record

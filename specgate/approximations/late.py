@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from functools import cached_property
+from typing import Literal
 
 from flint import fmpq
 
@@ -12,12 +13,17 @@ from specgate.measures.subjects import ResponseSubject
 from specgate.systems.delayed_network import DelayedTransfer
 from specgate.systems.transfer import TransferFunction
 
+Reference = Literal["input", "zero", "other"]
+
 
 class LateResponse:
-    """The response to a single step through a channel with dead time, beside L at each break of its loop."""
+    """The response to a single input through a channel with dead time, beside L at each break of its loop.
 
-    def __init__(self, subject: ResponseSubject, breaks: Mapping[str, OpenedLoop]) -> None:
-        self.subject, self.breaks = subject, breaks
+    reference: what its error is measured from: the input that drives it, nothing (`zero`), or something else.
+    """
+
+    def __init__(self, subject: ResponseSubject, breaks: Mapping[str, OpenedLoop], reference: Reference) -> None:
+        self.subject, self.breaks, self.reference = subject, breaks, reference
 
     @cached_property
     def around(self) -> OpenedLoop | None:
@@ -38,11 +44,11 @@ def _unity(channel: DelayedTransfer, opened: object) -> bool:
 def derived_for(subject: ResponseSubject, inputs: tuple[str, ...], *, late: bool) -> bool:
     """Return whether a formula is derived for a response at all.
 
-    inputs: the kinds of input besides a single step; late: whether it is for a single step through a dead time.
+    inputs: the kinds of input besides a single step; late: whether it is for a channel with a dead time.
     """
     if subject.beyond is None:
         return True
     if isinstance(subject.channel, TransferFunction):
         return subject.kind in inputs
     plain = subject.kind == "step" and all(given.begin == 0 for given in subject.inputs)
-    return late and plain and isinstance(subject.channel, DelayedTransfer)
+    return late and (plain or subject.kind in inputs) and isinstance(subject.channel, DelayedTransfer)
