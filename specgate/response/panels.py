@@ -200,10 +200,10 @@ class PanelMaker:
 def _powers(pole: acb, i: int, half: float, degree: int) -> list[acb]:
     """Return p^(k-i) half^k / (k-i)! for k = 0 ... degree, zero for k < i."""
     column = [acb(0)] * min(i, degree + 1)
-    term = acb(arb(half) ** i)
+    term, turn = acb(arb(half) ** i), pole * half
     for k in range(i, degree + 1):
         column.append(term)
-        term = term * pole * half / (k - i + 1)
+        term = term * turn / (k - i + 1)
     return column
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from math import inf
+from math import inf, nextafter
 from typing import Protocol
 
 import numpy as np
@@ -30,12 +30,12 @@ class Segment(Protocol):
 
 def at_least(value: arb) -> float:
     """Return a float that is not above any number in the ball."""
-    return float(np.nextafter(float(value.lower()), -np.inf))
+    return nextafter(float(value.lower()), -inf)
 
 
 def at_most(value: arb) -> float:
     """Return a float that is not below any number in the ball."""
-    return float(np.nextafter(float(value.upper()), np.inf))
+    return nextafter(float(value.upper()), inf)
 
 
 def exact(value: float) -> fmpq:
