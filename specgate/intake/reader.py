@@ -27,7 +27,7 @@ DEEPEST = 60
 """Levels of nesting. The format needs 9."""
 LONGEST_KEY = 200
 """Characters of a key."""
-MOST_NODES = 150_000
+MOST_NODES = 1_000_000
 """Nodes of all files of a project together: about six thousand requirements, read in half a second."""
 
 _NUMBER = re.compile(r"[-+]?(?:\.[0-9]+|[0-9]+(?:\.[0-9]*)?)(?:[eE][-+]?[0-9]+)?", re.ASCII)
