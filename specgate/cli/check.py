@@ -9,11 +9,19 @@ from specgate.cli import status, today
 from specgate.cli.baselines import add_options, chosen
 from specgate.cli.terminal import colour, width
 
+_MATRICES = ("verification-csv", "allocation-csv", "coverage-csv")
+"""As in `exchange.matrices`, which is not imported before it is needed."""
+
 
 def configure(parser: argparse.ArgumentParser) -> None:
     """Add the arguments of `check`."""
     parser.add_argument("project", metavar="PROJECT", help="a folder with a specgate.yaml, or one YAML file")
-    parser.add_argument("--format", choices=("text", "json"), default="text", help="what to print (default: text)")
+    parser.add_argument(
+        "--format",
+        choices=("text", "json", *_MATRICES),
+        default="text",
+        help="what to print (default: text); matrices of verification and allocation, and coverage, for spreadsheets",
+    )
     parser.add_argument(
         "--proof", action="store_true", help="with --format json: say of every bounded result how it was obtained"
     )
@@ -40,6 +48,7 @@ def run(options: argparse.Namespace) -> int:
     """Judge the project, print, and return the exit status."""
     from specgate.cli.files import write
     from specgate.cli.judge import judge
+    from specgate.review.types import Unusable
 
     if options.proof and options.format != "json":
         print("specgate: --proof goes with --format json: the text has no room for records", file=sys.stderr)
@@ -56,6 +65,10 @@ def run(options: argparse.Namespace) -> int:
         from specgate.exchange import json
 
         text = json.write(judged.review)
+    elif options.format in _MATRICES and not isinstance(judged.review, Unusable):
+        from specgate.exchange.matrices import MATRICES
+
+        text = MATRICES[options.format](judged.review)
     else:
         from specgate.report import terminal
 

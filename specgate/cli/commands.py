@@ -32,6 +32,7 @@ _ROWS = (
     Command("report", "write the compliance report that people sign (PDF or HTML)", "specgate.cli.report"),
     Command("diff", "compare two revisions: what changed, what that did, and what got worse", "specgate.cli.diff"),
     Command("freeze", "write a baseline: what the links of the trace stand on, and the result", "specgate.cli.freeze"),
+    Command("trace", "show a requirement with all above and below it, and what shows it", "specgate.cli.trace"),
     Command("explain", "say what a measure, an approximation or a rule means, and its source", "specgate.cli.explain"),
     Command("new", "make a small project that passes, to start from", "specgate.cli.new"),
     Command("schema", "print the JSON Schema of the project files, for editors", "specgate.cli.schema"),

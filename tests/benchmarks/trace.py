@@ -1,7 +1,8 @@
 """Checking a specification with a great trace: `python tests/benchmarks/trace.py [requirements] [levels]`.
 
-Writes a project of so many requirements (20,000 unless told otherwise) on so many levels (8), needs above and limits on one
-loop below, checks it as the command line does, and prints wall time, processor time and peak memory of the whole process.
+Writes a project of so many requirements (20,000 unless told otherwise) on so many levels (8), needs above and limits
+on one loop below, checks it as the command line does, and prints wall time, processor time and peak memory of the
+whole process.
 """
 
 from __future__ import annotations

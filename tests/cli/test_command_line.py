@@ -222,3 +222,33 @@ def test_what_is_no_day_is_refused(day: str) -> None:
     done = run("check", EXPIRING, "--date", day)
     assert done.returncode == 2
     assert "2026-11-02" in done.stderr
+
+
+@pytest.mark.parametrize("kind", ["verification-csv", "allocation-csv", "coverage-csv"])
+def test_matrices_go_where_they_are_asked_for(kind: str, tmp_path: Path) -> None:
+    target = tmp_path / "matrix.csv"
+    done = run("check", HELD, "--format", kind, "-o", str(target))
+    assert (done.returncode, done.stdout) == (1, "")
+    assert target.read_bytes() == run("check", HELD, "--format", kind).stdout.replace("\n", "\r\n").encode()
+
+
+def test_a_requirement_is_shown_with_all_that_belongs_to_it() -> None:
+    done = run("trace", "GH-SYS-031", HELD)
+    assert done.returncode == 0
+    for words in ("Above it", "GH-STK-004", "Limits", "Verification", "Rests on", "Findings", "specgate.yaml:"):
+        assert words in done.stdout
+    assert "Waivers" not in done.stdout
+
+
+def test_records_and_waivers_of_a_requirement_are_shown() -> None:
+    shown = run("trace", "R-2", EXPIRING).stdout
+    assert "RC-TR-1, test: 2 s: non-compliant" in shown
+    assert "W-2, waiver by Chief engineer, 2026-10-20: Accepted for louvre 2. (in force)" in shown
+    assert "non-compliant, waived" in run("trace", "N-1", EXPIRING).stdout
+
+
+def test_a_requirement_that_there_is_none_of() -> None:
+    done = run("trace", "GH-SYS-0311", HELD)
+    assert done.returncode == 2
+    assert "did you mean GH-SYS-031?" in done.stderr
+    assert run("trace", "GH-SYS-031", "nowhere").returncode == 2
