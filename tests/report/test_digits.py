@@ -50,6 +50,11 @@ def test_a_reserve_ends_at_the_last_digit_of_its_result() -> None:
     assert shown.reserve(ReserveReview(0.00001678596, "s"), close, at_most(2.0676)) == "+0.000017"
 
 
+def test_a_result_beyond_all_digits_of_its_reserve_does_not_ask_for_them() -> None:
+    tiny = Result(1.2345e-40, 1.2344e-40, 1.2346e-40, unit="1", proof="enclosed")
+    assert shown.reserve(ReserveReview(9.0, "1"), tiny, at_most(9.0)) == "+9.000"
+
+
 def test_the_bound_is_the_half_width_rounded_up() -> None:
     found = Result(3.21840084158, 3.21840084157, 3.218400841581, unit="s", proof="enclosed")
     assert shown.result(found).bound == "± 1×10⁻¹¹"

@@ -63,6 +63,9 @@ def reserve(left: ReserveReview | None, found: Result, limit: LimitReview) -> st
     own = digits.decimal(left.value)
     if not own:
         return "0"
+    if place < own.adjusted() - (digits.PRINTED - 1):
+        # A result of 1e-30 under a limit of 9: its last digit is beyond all that the reserve has.
+        place = own.adjusted() - (digits.SIGNIFICANT - 1)
     return digits.signed(digits.written(own, min(place, own.adjusted()), smallest=-8))
 
 
