@@ -2,15 +2,20 @@
 
 The expansion is ordered by growth: real part of the pole, then power of t. Poles on the axis have a real part of
 exactly zero, so that what neither grows nor decays is known exactly.
+
+Several lasting oscillations come together as near as one likes to the sum of their amplitudes, again and again, if no
+sum of their frequencies with whole factors is zero (Kronecker 1884). Square roots of rationals are such frequencies if
+no quotient of two of the rationals is a square (Besicovitch 1940).
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from functools import partial
+from itertools import combinations
 
 import numpy as np
-from flint import arb, fmpq
+from flint import arb, fmpq, fmpq_poly
 
 from specgate.response.answers import Answer
 from specgate.response.asymptote import Lasting, lasting_sign, leading_mode
@@ -24,11 +29,13 @@ from specgate.response.segments import Floats, at_least, at_most, exact
 from specgate.response.supremum import APPROACHED, Floor, above, exact_floor
 from specgate.response.tables import FloatModes
 from specgate.response.tail import float_tail
+from specgate.systems.polynomials import primitive
 from specgate.terms.precision import working_precision
 
 _NOT_TOLD = "whether the growth of the response is one-sided is not told"
-_SWING = "the amplitude of the one lasting oscillation about its middle; nothing else is higher"
-_SEVERAL = "the greatest value of several lasting oscillations together is not searched"
+_SWING = "the amplitudes of the lasting oscillations about their middle; nothing else is higher"
+_SEVERAL = "the greatest value of several lasting oscillations that come back together is not searched"
+_COMING_BACK = "several oscillations come as near to it as one likes, and whether they reach it is not told"
 
 
 def unsettled_extreme(course: Course, sign: int) -> Extreme:
@@ -89,13 +96,26 @@ def _left_behind(expansion: Expansion, lasting: Lasting, best: float) -> fmpq | 
 
 
 def _swinging(course: Course, sign: int, expansion: Expansion) -> Extreme:
-    """Answer for a response that ends in one lasting oscillation; several are left open."""
+    """Answer for a response that ends in lasting oscillations; several that come back together are left open."""
     lasting = [k for k, mode in enumerate(expansion.modes) if mode.pole.real.is_zero()]
-    if len(lasting) != 1:
+    if len(lasting) > 1 and not _independent(course.deviation.denominator, len(lasting)):
         return Extreme.undecided(_SEVERAL)
     if len(expansion.modes) == 1:
         return _pure_swing(course, sign)
-    return _swing_with_transient(course, sign, lasting[0])
+    return _swings_with_transient(course, sign, lasting)
+
+
+def _independent(denominator: fmpq_poly, count: int) -> bool:
+    """Whether so many lasting oscillations have squared frequencies that are rational, no quotient being a square."""
+    factors = [factor for factor, _ in primitive(denominator).factor()[1]]
+    squares = [fmpq(one[0], one[2]) for one in factors if one.degree() == 2 and one[1] == 0 and one[0] * one[2] > 0]
+    if len(squares) != count:
+        return False
+    return not any(_is_square(one / other) for one, other in combinations(squares, 2))
+
+
+def _is_square(value: fmpq) -> bool:
+    return bool(value.p.is_square() and value.q.is_square())
 
 
 def _pure_swing(course: Course, sign: int) -> Extreme:
@@ -117,21 +137,22 @@ def _pure_swing(course: Course, sign: int) -> Extreme:
             return deviation.to_time(turn / mode.pole.imag, expansion.bits)
 
     how = partial(modal_account, course, _SWING)
-    return Extreme(_swing_top(course, 0, sign), Answer.of_ball(time).accounted(how))
+    return Extreme(_swing_top(course, [0], sign), Answer.of_ball(time).accounted(how))
 
 
-def _swing_top(course: Course, index: int, sign: int) -> Answer:
-    top = Answer.of_ball(lambda bits: course.deviation.response(sign * _amplitude(course, index, bits)))
+def _swing_top(course: Course, lasting: Sequence[int], sign: int) -> Answer:
+    top = Answer.of_ball(lambda bits: course.deviation.response(sign * _amplitude(course, lasting, bits)))
     return top.accounted(partial(modal_account, course, _SWING))
 
 
-def _amplitude(course: Course, index: int, bits: int) -> arb:
+def _amplitude(course: Course, lasting: Sequence[int], bits: int) -> arb:
+    """Return the sum of the amplitudes of the lasting oscillations."""
     expansion = course.deviation.at(bits)
     with working_precision(expansion.bits):
-        return abs(expansion.modes[index].coefficients[0])
+        return sum((abs(expansion.modes[index].coefficients[0]) for index in lasting), arb(0))
 
 
-def _swing_with_transient(course: Course, sign: int, index: int) -> Extreme:
+def _swings_with_transient(course: Course, sign: int, lasting: Sequence[int]) -> Extreme:
     """Return the highest summit above offset + amplitude, which is approached again and again, or else that value.
 
     Beyond a summit that is higher by d nothing is, once the envelope of the transient is below d; and nothing is above
@@ -139,9 +160,11 @@ def _swing_with_transient(course: Course, sign: int, index: int) -> Extreme:
     """
     deviation = course.deviation
     expansion = deviation.at(LOWEST)
-    transient = expansion.only([k for k in range(len(expansion.modes)) if k != index])
+    transient = expansion.only([k for k in range(len(expansion.modes)) if k not in lasting])
+    if not transient.modes:
+        return Extreme(_swing_top(course, lasting, sign), Answer.undecided(_COMING_BACK))
     table = FloatModes.of(transient, fmpq(0))
-    amplitude = _amplitude(course, index, LOWEST)
+    amplitude = _amplitude(course, lasting, LOWEST)
     top = at_most(amplitude)
 
     def last(best: float, _: Callable[[int], arb]) -> fmpq | None:
@@ -149,14 +172,15 @@ def _swing_with_transient(course: Course, sign: int, index: int) -> Extreme:
         if excess > 0.0:
             since = float_tail(table, excess)
             return None if since is None else exact(since)
-        lasting = lasting_sign(transient, deviation.denominator)
-        return exact(lasting.since) if lasting is not None and lasting.sign != sign else None
+        for_good = lasting_sign(transient, deviation.denominator)
+        return exact(for_good.since) if for_good is not None and for_good.sign != sign else None
 
     jump = sign * deviation.initial
     with working_precision(expansion.bits):
         higher_jump = amplitude < arb(jump)
     if higher_jump:
         return above(course, sign, exact_floor(course, sign, jump, taken=True), last)
-    approached = Extreme(_swing_top(course, index, sign), Answer.nothing(APPROACHED))
-    floor = Floor(lambda bits: _amplitude(course, index, bits), at_least(amplitude), approached)
+    time = Answer.nothing(APPROACHED) if len(lasting) == 1 else Answer.undecided(_COMING_BACK)
+    approached = Extreme(_swing_top(course, lasting, sign), time)
+    floor = Floor(lambda bits: _amplitude(course, lasting, bits), at_least(amplitude), approached)
     return above(course, sign, floor, last)

@@ -9,6 +9,7 @@ from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.response.step import StepResponse
+from specgate.systems.polynomials import highest_first
 from specgate.terms.precision import working_precision
 
 Make = Callable[..., StepResponse]
@@ -104,6 +105,38 @@ def test_several_lasting_swings_are_left_open(respond: Make) -> None:
     extreme = respond([1, 1], [1, 0, 5, 0, 4]).greatest()
     assert extreme.value.absent is not None
     assert not extreme.value.absent.proved
+
+
+def test_swings_without_a_common_period_reach_the_sum_of_their_amplitudes(respond: Make) -> None:
+    """2/((s^2+3)(s^2+4)) s/s: y = 2/sqrt(3) sin(sqrt(3) t) - sin(2 t)."""
+    response = respond([2, 0], [1, 0, 7, 0, 12])
+    with working_precision(300):
+        top = 1 + 2 / arb(3).sqrt()
+        assert_is(response.greatest().value, top)
+        assert_is(response.least().value, -top)
+        near = max(float(response.enclose(fmpq(k, 10), 64)) for k in range(3000))
+    assert float(top) - 0.02 < near < float(top)
+    assert response.greatest().time.absent is not None
+    assert not response.greatest().time.absent.proved
+
+
+def test_a_transient_above_what_two_swings_reach(respond: Make) -> None:
+    """y = 3 e^-t (1 - e^-t) beside small swings at sqrt(2) and sqrt(3): the first summit is the greatest value."""
+    # s/(s+1)(s+2) * 3 + s (1/(s^2+2) + 1/(s^2+3)) / 100
+    quick = highest_first([fmpq(3), fmpq(0)]), highest_first([fmpq(1), fmpq(3), fmpq(2)])
+    swings = (
+        highest_first([fmpq(2, 100), fmpq(0), fmpq(5, 100), fmpq(0)]),
+        highest_first([fmpq(c) for c in (1, 0, 5, 0, 6)]),
+    )
+    response = StepResponse(quick[0] * swings[1] + swings[0] * quick[1], quick[1] * swings[1], fmpq(1))
+    value, time = response.greatest().value.enclose(64), response.greatest().time.enclose(64)
+    assert 0.75 < float(value) < 0.77
+    assert response.enclose(time.mid().fmpq(), 64).overlaps(value)
+    sampled = max(float(response.enclose(fmpq(k, 100), 64)) for k in range(1000))
+    assert sampled - 1e-12 < float(value) < sampled + 1e-4
+    with working_precision(200):
+        lowest = -(1 / arb(2).sqrt() + 1 / arb(3).sqrt()) / 100
+    assert response.least().value.absent is not None or response.least().value.enclose(64).overlaps(lowest)
 
 
 def test_values_exist_all_the_same(respond: Make) -> None:
