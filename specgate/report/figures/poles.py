@@ -16,6 +16,8 @@ CROWD = 12.0
 """Points more than this many times farther out than the middle one are named at the edge instead of drawn."""
 ROOM = 90.0
 """What the longest words beside a line take, pixels."""
+BESIDE = 26.0
+"""A pair nearer than this to the imaginary axis has its name to the left, pixels."""
 DAMPINGS = (0.2, 0.4, 0.6, 0.8)
 
 
@@ -123,7 +125,9 @@ def _rays(x: Scale, y: Scale, *, labelled: bool) -> list[str]:
 
 def _asked(separation: Separation, x: Scale, y: Scale) -> list[str]:
     """Draw the line left of which other poles have to lie, and the circle outside of which."""
-    parts = [svg.text(x(separation.real) + 7, y(separation.imaginary) + 3, "pair", 7, fill=svg.QUIET)]
+    upper, beside = x(separation.real), x(0) - x(separation.real) < BESIDE
+    at, end = (upper - 7, "end") if beside else (upper + 7, "start")
+    parts = [svg.text(at, y(separation.imaginary) + 3, "pair", 7, end, svg.QUIET)]
     if separation.real_part is not None and x.holds(separation.real_part):
         at = x(separation.real_part)
         parts.append(svg.line(at, TOP, at, HEIGHT - BOTTOM, svg.FORBIDDEN, 1.0, stroke_dasharray="5 3"))
