@@ -79,7 +79,9 @@ class Course:
         if not self.looped:
             return None
         inside = self.transform.denominator.delayed[-1][0]
-        return modal(self.transform, max(6 * inside, self.longest + 5 * inside))
+        since = max(6 * inside, self.longest + 5 * inside)
+        told = kinks_of(self.transform.numerator, self.transform.denominator, since, _MOST_KINKS)[1]
+        return modal(self.transform, min(since, told))
 
     @cached_property
     def _scale(self) -> arb:

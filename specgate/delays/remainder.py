@@ -28,7 +28,8 @@ a sum of a_l u^(l-1)/(l-1)! e^(p u), u >= 0. Those with p left of the line are a
 right of it the continuation to u < 0 is at most C e^(g |u|) (C: the sum of |a_l| u^(l-1)/(l-1)! e^(-|g + Re p| |u|) at
 its summits). Driven by impulses bm, the former add up to at most C b e^(-g (t - T)) at any t. The latter, had all
 impulses acted, would be the residues at p, which cancel as before; the impulses yet to come leave out at most
-C b e^(-g (t - T)). Derivatives are those between the jumps: there v' takes the place of v.
+C b e^(-g (t - T)). Derivatives are those between the jumps: there v' takes the place of v. Of retarded type, where not
+all terms have begun at the least t asked for, the same is used with A = 0 and b = 1.
 
 With one minus a cosine as input every term has a factor G more (see `swing`); N has that which makes it entire, so that
 nothing else is passed. It is left out of the integral, and bounded on the line as a whole. Of neutral type its poles on
@@ -41,6 +42,7 @@ The integral is bounded cell by cell, with |D| from below by the cells that coun
 from __future__ import annotations
 
 from collections.abc import Iterator
+from functools import cached_property
 
 from flint import acb, acb_poly, arb, fmpq, fmpq_poly
 
@@ -77,13 +79,13 @@ def remainder(transform: Transform, line: Line, since: fmpq) -> Remainder | None
     N is of lower degree than the undelayed term of D, the delayed ones of no higher. since: the least t asked for.
     """
     with working_precision(_BITS):
-        bound = _Bound(transform, line)
-        if not bound.echoes < 1 or (bound.retarded and bound.last_delay >= since):
+        bound = _Bound(transform, line, since)
+        if not bound.echoes < 1:
             return None
         sizes = bound.integrals()
         if sizes is None:
             return None
-        total = [size + bound.residues(order, since) for order, size in zip(ORDERS, sizes, strict=True)]
+        total = [size + bound.residues(order) for order, size in zip(ORDERS, sizes, strict=True)]
     if not all(size.is_finite() for size in total):
         return None
     return Remainder(-line.real, (total[0], total[1], total[2], total[3]), since)
@@ -92,9 +94,9 @@ def remainder(transform: Transform, line: Line, since: fmpq) -> Remainder | None
 class _Bound:
     """The parts of Y: base is d0, delayed E, falling E'. echoes: the sum of |ak| e^(g tk), 0 for retarded type."""
 
-    def __init__(self, transform: Transform, line: Line) -> None:
+    def __init__(self, transform: Transform, line: Line, since: fmpq) -> None:
         numerator, denominator = transform.numerator, transform.denominator
-        self.line = line
+        self.line, self.since = line, since
         self.period = transform.period
         self.base = denominator.undelayed
         self.delayed = Quasi(denominator.delayed)
@@ -120,11 +122,12 @@ class _Bound:
         """Return |e^(-delay s)| on the line."""
         return (-arb(self.line.real) * delay).exp()
 
-    @property
-    def last_delay(self) -> fmpq:
-        """The latest time at which a term that is split off begins, for retarded type."""
+    @cached_property
+    def begun(self) -> bool:
+        """Whether all terms that are split off begin before the least t asked for."""
         longest = self.delayed.terms[-1][0]
-        return self.numerator.terms[-1][0] + longest * max(0, max(self.powers) - 1)
+        last = self.numerator.terms[-1][0] + longest * max(0, max(self.powers) - 1)
+        return self.retarded and last < self.since
 
     def integrals(self) -> list[arb] | None:
         """Return (1/pi) times the integral over w >= 0 of each |s^k Y_K|; None where a bound was not found."""
@@ -205,23 +208,23 @@ class _Bound:
             found.append((height * far / (-exponent - 1)).abs_upper())
         return found
 
-    def residues(self, order: int, since: fmpq) -> arb:
-        """Return the size of what split-off terms leave at roots of d0: left of the line, or all of neutral type."""
+    def residues(self, order: int) -> arb:
+        """Return the size of what split-off terms leave at roots of d0: those left of the line once all have begun."""
         total = arb(0)
         roots = [(root.value, root.multiplicity) for root in certified_roots(self.base, _BITS)]
-        if self.retarded:
+        if self.begun:
             roots = [(root, times) for root, times in roots if not root.real > arb(self.line.real)]
         part = self.numerator
         for power in range(self.powers[order]):
             driven = self.impulses ** (power + 1)
             for root, times in roots:
-                total += self._residue(part, root, times, order, power, since) * driven
-            if self.period is not None and not self.retarded:
+                total += self._residue(part, root, times, order, power) * driven
+            if self.period is not None and not self.begun:
                 total += self._swing(part, order, power, self.period) * driven
             part = part * self.falling
         return total.abs_upper()
 
-    def _residue(self, part: Quasi, root: acb, multiplicity: int, order: int, power: int, since: fmpq) -> arb:
+    def _residue(self, part: Quasi, root: acb, multiplicity: int, order: int, power: int) -> arb:
         times = multiplicity * (power + 1)
         spare = abs(root.real - self.line.real)
         total = arb(0)
@@ -230,7 +233,7 @@ class _Bound:
             for delay, polynomial in part.terms:
                 driven = of_polynomial(polynomial * fmpq_poly([0, 1]) ** order, root)
                 parts = principal(shaped(driven, root, self.period) / divisor, times)
-                age = arb(since - delay) if self.retarded else arb(0)
+                age = arb(self.since - delay) if self.begun else arb(0)
                 for size in _decayed(parts, spare, age):
                     total += size * self._shift(delay)
         return total.abs_upper()

@@ -7,6 +7,7 @@ times it is E[(t - G)_+^n]/n!, G the sum, and E[G^m; G <= t] = lag^m j (j + 1) .
 
 from __future__ import annotations
 
+import math
 from fractions import Fraction
 from functools import cache
 
@@ -17,6 +18,9 @@ from flint import arb, fmpq
 from specgate.delays.inputs import respond_late
 from specgate.response.inputs import Input
 from specgate.response.questions import TimeResponse
+from specgate.systems.delayed_network import DelayedTransfer
+from specgate.systems.polynomials import highest_first
+from specgate.systems.quasi import Quasi
 
 from .conftest import closed, late
 
@@ -127,3 +131,34 @@ def test_what_a_settling_time_rests_on_is_told() -> None:
     assert account.footing.pole_radius is not None
     assert account.footing.pole_radius < 1e-60
     assert account.searched_until is not None
+
+
+def test_more_kinks_than_are_told_one_by_one() -> None:
+    """Four sensors with unlike dead times: a thousand kinks in five seconds; against steps of a millisecond."""
+    delays = [fmpq(53, 100), fmpq(37, 100), fmpq(211, 1000), fmpq(137, 1000)]
+    law, base = highest_first([fmpq(1, 5), fmpq(1, 5)]), highest_first([2, 1, 0])
+    late_terms = {delay + fmpq(1, 10): law * fmpq(1, 4) for delay in delays}
+    below = Quasi.of({fmpq(0): base, **late_terms}).scaled(fmpq(1, 2))
+    channel = DelayedTransfer(Quasi.of({fmpq(1, 10): law * fmpq(1, 2)}), below, ((below, 1),))
+    found = respond_late([(channel, Input("step", {"size": fmpq(1)}))])
+    values = stepped([530, 370, 211, 137])
+    outside = max(k for k, value in enumerate(values) if abs(value - 1) > 0.02)
+    assert abs(float(found.settling(fmpq(1, 50)).enclose(60)) - outside / 1000) < 2e-3  # type: ignore[union-attr]
+    assert abs(float(found.greatest().value.enclose(60)) - max(values)) < 1e-6  # type: ignore[union-attr]
+    for k in (800, 2500, 7000, 15000):
+        assert abs(float(found.enclose(fmpq(k, 1000), 60)) - values[k]) < 1e-6  # type: ignore[union-attr]
+
+
+def stepped(delays: list[int], until: int = 30_000) -> list[float]:
+    """Return y each millisecond: 2 y' + y = u(t - 0.1), u' = 0.2 e + 0.2 e', e = 1 less the mean of late y."""
+    fallen = math.exp(-0.0005)
+    late_share = 1.0 - (1.0 - fallen) / 0.0005
+    y, u, error, area = [0.0], [0.2], 1.0, 0.0
+    for k in range(until):
+        before, after = (u[j] if j >= 0 else 0.0 for j in (k - 100, k - 99 if k >= 100 else -1))
+        y.append(fallen * y[k] + (1.0 - fallen - late_share) * before + late_share * after)
+        following = 1.0 - sum(y[k + 1 - delay] for delay in delays if k + 1 >= delay) / len(delays)
+        area += 0.0005 * (error + following)
+        error = following
+        u.append(0.2 * error + 0.2 * area)
+    return y
