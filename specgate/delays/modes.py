@@ -51,6 +51,10 @@ _RADII = (1, 2, 3, 4, 6, 8, 12, 16, 24, 32)
 _BEYOND = (fmpq(65, 64), fmpq(33, 32), fmpq(9, 8))
 """Radii, in parts of the end of a range: a pole may lie on one circle."""
 
+_CHAIN = (
+    "a dead time passes high frequencies round the loop as they are: the decay rates of its modes of ever higher "
+    "frequency tend to a limit, and whether one of them is the slowest is not told"
+)
 _NOT_FOUND = "which modes of the loop are the slowest was not proved within the work limit"
 
 
@@ -64,7 +68,9 @@ def least_over_late_modes(solution: DelayedSolution, figure: Figure, over: tuple
         found = _among(transform, region, figure, over)
         if found is not None:
             return found
-    return Answer.undecided(_NOT_FOUND)
+    below = transform.denominator
+    endless = any(p.degree() == below.undelayed.degree() for _, p in below.delayed)
+    return Answer.undecided(_CHAIN if endless else _NOT_FOUND)
 
 
 @record

@@ -22,6 +22,7 @@ from specgate.systems.polynomials import highest_first
 
 Coefficients = Sequence[fmpq | int]
 HORIZONS = (2, 10, 50, 200, 1000, 2000, 10_000)
+RATIOS = (10, 100, 1000)
 
 
 def applied(name: str, above: Coefficients, below: Coefficients, late: fmpq, *terms: tuple[int, str]) -> Instance:
@@ -42,6 +43,15 @@ def slow(horizon: int) -> DelayedSolution:
     blocks = (
         applied("pi", [lag / 2, fmpq(1, 2)], [lag, 0], fmpq(0), (1, "r"), (-1, "y")),
         applied("plant", [3], [lag, 1], fmpq(1), (1, "u")),
+    )
+    return solve_delayed(Wiring(("r",), blocks, {"u": signal("pi"), "y": signal("plant")}))
+
+
+def quick(ratio: int) -> DelayedSolution:
+    """A valve so much faster than the dead time 1 behind it, and a PI controller that suits that."""
+    blocks = (
+        applied("pi", [fmpq(1, 3), fmpq(2, 5)], [1, 0], fmpq(0), (1, "r"), (-1, "y")),
+        applied("plant", [1], [fmpq(1, ratio), 1], fmpq(1), (1, "u")),
     )
     return solve_delayed(Wiring(("r",), blocks, {"u": signal("pi"), "y": signal("plant")}))
 
@@ -98,6 +108,8 @@ def main() -> None:
     print(f"{'loop':34s} {'stable':>9s} {'measures':>9s} {'margins':>9s}   (ms)")
     for horizon in HORIZONS:
         row(f"dead time 1, lag {horizon}", lambda horizon=horizon: slow(horizon))  # type: ignore[misc]
+    for ratio in RATIOS:
+        row(f"dead time 1, lag 1/{ratio}", lambda ratio=ratio: quick(ratio))  # type: ignore[misc]
     for delays in (
         [fmpq(1, 2)],
         [fmpq(1, 2), fmpq(1, 4)],

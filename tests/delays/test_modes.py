@@ -115,3 +115,18 @@ def test_the_least_natural_frequency_lies_beyond_the_slow_modes() -> None:
     with mpmath.workdps(40):
         expected = abs(lambert(mpmath.mpf(1) / 5, mpmath.mpf(1), 1))
         assert abs(number(found) - expected) < mpmath.mpf(10) ** -20
+
+
+def test_a_chain_without_end_may_have_no_slowest_mode() -> None:
+    """1 + e^(-s)/2 has all its roots at Re s = -ln 2."""
+    block = Block("gain", ("u",), ("y",), {("y", "u"): fmpq_poly([fmpq(1, 2)])}, fmpq_poly([1]), fmpq(1))
+    argument = LinearForm(((fmpq(1), SignalRef("r")), (fmpq(-1), SignalRef("y"))))
+    level = LinearForm(((fmpq(1), OutputRef("gain", "y")),))
+    solution = solve_delayed(Wiring(("r",), (Instance("gain", block, {"u": argument}),), {"y": level}))
+    found = least_over_late_modes(solution, "decay_rate", None)
+    assert found.absent is not None
+    assert not found.absent.proved
+    assert "tend to a limit" in found.absent.reason
+    with mpmath.workdps(30):
+        nearest = least_over_late_modes(solution, "natural_frequency", None)
+        assert abs(number(nearest) - abs(mpmath.mpc(-mpmath.log(2), mpmath.pi))) < mpmath.mpf(10) ** -20
