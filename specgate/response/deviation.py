@@ -50,7 +50,7 @@ class Deviation(Modal):
     """
 
     def __init__(self, numerator: fmpq_poly, denominator: fmpq_poly, size: fmpq) -> None:
-        self._fraction = (numerator, denominator, size)
+        self.fraction = (numerator, denominator, size)
         self._base, first = _resolved(numerator, denominator, size)
         speeds = [abs(mode.pole) for mode in first.modes]
         self.time_exponent = max((_exponent(speed) for speed in speeds if not speed.is_zero()), default=0)
@@ -104,7 +104,7 @@ class Deviation(Modal):
         """Return the expansion at the first precision of the ladder that is at least `bits` (or at its last)."""
         step = next((rung for rung in _LADDER if rung >= max(bits, self._base)), _LADDER[-1])
         if step not in self._expansions:
-            whole = expand(*self._fraction, step)
+            whole = expand(*self.fraction, step)
             self._expansions[step] = whole.rescaled(self.time_exponent, self.value_exponent)
         return self._expansions[step]
 
@@ -123,12 +123,12 @@ class Deviation(Modal):
     @cached_property
     def denominator(self) -> fmpq_poly:
         """The polynomial whose roots are the poles in normalised time."""
-        return _stretched(self._fraction[1], self.time_exponent)
+        return _stretched(self.fraction[1], self.time_exponent)
 
     @cached_property
     def start(self) -> Start | None:
         """The monotone start of g, None where the response never moves."""
-        numerator, _, size = self._fraction
+        numerator, _, size = self.fraction
         top = _stretched(numerator * (size * dyadic(-self.value_exponent)), self.time_exponent)
         bottom = self.denominator
         start = first_stretch(top, bottom)

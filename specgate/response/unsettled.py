@@ -5,17 +5,17 @@ exactly zero, so that what neither grows nor decays is known exactly.
 
 Several lasting oscillations come together as near as one likes to the sum of their amplitudes, again and again, if no
 sum of their frequencies with whole factors is zero (Kronecker 1884). Square roots of rationals are such frequencies if
-no quotient of two of the rationals is a square (Besicovitch 1940).
+no quotient of two of the rationals is a square (Besicovitch 1940). If all quotients are, there is a common period
+(`periodic`).
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from functools import partial
-from itertools import combinations
 
 import numpy as np
-from flint import arb, fmpq, fmpq_poly
+from flint import arb, fmpq
 
 from specgate.response.answers import Answer
 from specgate.response.asymptote import Lasting, lasting_sign, leading_mode
@@ -23,18 +23,26 @@ from specgate.response.course import Course
 from specgate.response.deviation import LOWEST
 from specgate.response.extremes import Extreme
 from specgate.response.falling import smallest
-from specgate.response.modes import Expansion, Mode
+from specgate.response.modes import GUARD, Expansion, Mode, dyadic, power_of_two
+from specgate.response.periodic import (
+    common_period,
+    highest_of_a_period,
+    independent,
+    periodic_part,
+    swinging_factors,
+)
 from specgate.response.record import modal_account
 from specgate.response.segments import Floats, at_least, at_most, exact
 from specgate.response.supremum import APPROACHED, Floor, above, exact_floor
 from specgate.response.tables import FloatModes
 from specgate.response.tail import float_tail
-from specgate.systems.polynomials import primitive
 from specgate.terms.precision import working_precision
 
 _NOT_TOLD = "whether the growth of the response is one-sided is not told"
-_SWING = "the amplitudes of the lasting oscillations about their middle; nothing else is higher"
-_SEVERAL = "the greatest value of several lasting oscillations that come back together is not searched"
+_SWING = "what the lasting oscillations come back to, about their middle; nothing else is higher"
+_SEVERAL = (
+    "the greatest value of several lasting oscillations is searched only where their frequencies are square roots"
+)
 _COMING_BACK = "several oscillations come as near to it as one likes, and whether they reach it is not told"
 
 
@@ -95,27 +103,47 @@ def _left_behind(expansion: Expansion, lasting: Lasting, best: float) -> fmpq | 
     return None if since is None else exact(max(since, lasting.since))
 
 
+Height = Callable[[int], arb]
+"""What sign * g comes back to for ever, as balls by bits."""
+
+
 def _swinging(course: Course, sign: int, expansion: Expansion) -> Extreme:
-    """Answer for a response that ends in lasting oscillations; several that come back together are left open."""
-    lasting = [k for k, mode in enumerate(expansion.modes) if mode.pole.real.is_zero()]
-    if len(lasting) > 1 and not _independent(course.deviation.denominator, len(lasting)):
-        return Extreme.undecided(_SEVERAL)
+    """Answer for a response that ends in lasting oscillations: one, or several without or with a common period."""
     if len(expansion.modes) == 1:
         return _pure_swing(course, sign)
-    return _swings_with_transient(course, sign, lasting)
+    lasting = [k for k, mode in enumerate(expansion.modes) if mode.pole.real.is_zero()]
+    transient = expansion.only([k for k in range(len(expansion.modes)) if k not in lasting])
+    height: Height | None = partial(_amplitude, course, lasting)
+    if len(lasting) > 1:
+        squares = [factor[0] for factor in swinging_factors(course.deviation.denominator)]
+        period = common_period(squares) if len(squares) == len(lasting) else None
+        if period is not None and not transient.modes:
+            return highest_of_a_period(course, sign, period)
+        if period is not None:
+            height = _periodic_height(course, sign, period)
+        elif len(squares) != len(lasting) or not independent(squares):
+            height = None
+    if height is None:
+        return Extreme.undecided(_SEVERAL)
+    time = Answer.nothing(APPROACHED) if len(lasting) == 1 else Answer.undecided(_COMING_BACK)
+    swings = Extreme(_swing_top(course, sign, height), time)
+    return _with_transient(course, sign, transient, height, swings) if transient.modes else swings
 
 
-def _independent(denominator: fmpq_poly, count: int) -> bool:
-    """Whether so many lasting oscillations have squared frequencies that are rational, no quotient being a square."""
-    factors = [factor for factor, _ in primitive(denominator).factor()[1]]
-    squares = [fmpq(one[0], one[2]) for one in factors if one.degree() == 2 and one[1] == 0 and one[0] * one[2] > 0]
-    if len(squares) != count:
-        return False
-    return not any(_is_square(one / other) for one, other in combinations(squares, 2))
+def _periodic_height(course: Course, sign: int, period: fmpq) -> Height | None:
+    """Return what several oscillations with a common period come back to; None where that is not told."""
+    pure = periodic_part(course)
+    scaled = period * dyadic(pure.deviation.time_exponent - course.deviation.time_exponent)
+    found = highest_of_a_period(pure, sign, scaled).value
+    if found.absent is not None:
+        return None
 
+    def height(bits: int) -> arb:
+        value = found.enclose(bits)
+        with working_precision(bits + GUARD):
+            return sign * value * power_of_two(-course.deviation.value_exponent)
 
-def _is_square(value: fmpq) -> bool:
-    return bool(value.p.is_square() and value.q.is_square())
+    return height
 
 
 def _pure_swing(course: Course, sign: int) -> Extreme:
@@ -137,11 +165,11 @@ def _pure_swing(course: Course, sign: int) -> Extreme:
             return deviation.to_time(turn / mode.pole.imag, expansion.bits)
 
     how = partial(modal_account, course, _SWING)
-    return Extreme(_swing_top(course, [0], sign), Answer.of_ball(time).accounted(how))
+    return Extreme(_swing_top(course, sign, partial(_amplitude, course, [0])), Answer.of_ball(time).accounted(how))
 
 
-def _swing_top(course: Course, lasting: Sequence[int], sign: int) -> Answer:
-    top = Answer.of_ball(lambda bits: course.deviation.response(sign * _amplitude(course, lasting, bits)))
+def _swing_top(course: Course, sign: int, height: Height) -> Answer:
+    top = Answer.of_ball(lambda bits: course.deviation.response(sign * height(bits)))
     return top.accounted(partial(modal_account, course, _SWING))
 
 
@@ -152,20 +180,16 @@ def _amplitude(course: Course, lasting: Sequence[int], bits: int) -> arb:
         return sum((abs(expansion.modes[index].coefficients[0]) for index in lasting), arb(0))
 
 
-def _swings_with_transient(course: Course, sign: int, lasting: Sequence[int]) -> Extreme:
-    """Return the highest summit above offset + amplitude, which is approached again and again, or else that value.
+def _with_transient(course: Course, sign: int, transient: Expansion, height: Height, swings: Extreme) -> Extreme:
+    """Return the highest summit above what lasting swings come back to for ever, or else that.
 
     Beyond a summit that is higher by d nothing is, once the envelope of the transient is below d; and nothing is above
-    offset + amplitude while the transient has the other sign for good.
+    what they come back to while the transient has the other sign for good.
     """
     deviation = course.deviation
-    expansion = deviation.at(LOWEST)
-    transient = expansion.only([k for k in range(len(expansion.modes)) if k not in lasting])
-    if not transient.modes:
-        return Extreme(_swing_top(course, lasting, sign), Answer.undecided(_COMING_BACK))
     table = FloatModes.of(transient, fmpq(0))
-    amplitude = _amplitude(course, lasting, LOWEST)
-    top = at_most(amplitude)
+    reached = height(LOWEST)
+    top = at_most(reached)
 
     def last(best: float, _: Callable[[int], arb]) -> fmpq | None:
         excess = (best - top) * (1.0 - 1e-9) - 1e-15 * top
@@ -176,11 +200,8 @@ def _swings_with_transient(course: Course, sign: int, lasting: Sequence[int]) ->
         return exact(for_good.since) if for_good is not None and for_good.sign != sign else None
 
     jump = sign * deviation.initial
-    with working_precision(expansion.bits):
-        higher_jump = amplitude < arb(jump)
+    with working_precision(transient.bits):
+        higher_jump = reached < arb(jump)
     if higher_jump:
         return above(course, sign, exact_floor(course, sign, jump, taken=True), last)
-    time = Answer.nothing(APPROACHED) if len(lasting) == 1 else Answer.undecided(_COMING_BACK)
-    approached = Extreme(_swing_top(course, lasting, sign), time)
-    floor = Floor(lambda bits: _amplitude(course, lasting, bits), at_least(amplitude), approached)
-    return above(course, sign, floor, last)
+    return above(course, sign, Floor(height, at_least(reached), swings), last)

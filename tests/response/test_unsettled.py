@@ -101,10 +101,44 @@ def test_a_transient_that_helps_the_first_summit(respond: Make) -> None:
     assert late < float(value) - 1e-3
 
 
-def test_several_lasting_swings_are_left_open(respond: Make) -> None:
-    extreme = respond([1, 1], [1, 0, 5, 0, 4]).greatest()
+def test_swings_whose_frequencies_are_no_square_roots_are_left_open(respond: Make) -> None:
+    extreme = respond([1, 1], [1, 0, 4, 0, 2]).greatest()
     assert extreme.value.absent is not None
     assert not extreme.value.absent.proved
+
+
+def top_of_two_swings() -> tuple[arb, arb]:
+    """Return the greatest sin(t) + sin(2t), where 4 cos(t)^2 + cos(t) - 2 = 0, and the first such t."""
+    cosine = (arb(33).sqrt() - 1) / 8
+    time = cosine.acos()
+    return time.sin() + (2 * time).sin(), time
+
+
+def test_swings_with_a_common_period_are_searched_for_one_of_them(respond: Make) -> None:
+    response = respond([3, 0, 6, 0], [1, 0, 5, 0, 4])
+    with working_precision(300):
+        top, time = top_of_two_swings()
+        assert_is(response.greatest().value, top)
+        assert_is(response.greatest().time, time)
+        assert_is(response.least().value, -top)
+
+
+def test_a_transient_beside_swings_with_a_common_period() -> None:
+    """y = sin(t) + sin(2t) + 3 e^(-t/10) - 3, and its like upwards: it comes ever nearer to its value far away."""
+    swings = highest_first([fmpq(3), fmpq(0), fmpq(6), fmpq(0)]), highest_first([fmpq(c) for c in (1, 0, 5, 0, 4)])
+    slow = highest_first([fmpq(-3, 10)]), highest_first([fmpq(1), fmpq(1, 10)])
+    for sign in (1, -1):
+        above, below = swings[0] * slow[1] + sign * slow[0] * swings[1], swings[1] * slow[1]
+        response = StepResponse(above, below, fmpq(1))
+        far, near = (response.least(), response.greatest()) if sign > 0 else (response.greatest(), response.least())
+        with working_precision(300):
+            top, _ = top_of_two_swings()
+            assert_is(far.value, -sign * (top + 3))
+        value = near.value.enclose(64)
+        assert response.enclose(near.time.enclose(64).mid().fmpq(), 64).overlaps(value)
+        values = [float(response.enclose(fmpq(k, 100), 64)) for k in range(3000)]
+        sampled = max(values) if sign > 0 else min(values)
+        assert 0 <= sign * (float(value) - sampled) + 1e-12 < 1e-4
 
 
 def test_swings_without_a_common_period_reach_the_sum_of_their_amplitudes(respond: Make) -> None:
