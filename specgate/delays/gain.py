@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from functools import cached_property
 
 from flint import arb, fmpq
 
 from specgate.delays.magnitude import DelayedMagnitude
-from specgate.delays.masks import late_inside
+from specgate.delays.masks import first_below, late_inside
 from specgate.delays.phase import late_phase
 from specgate.delays.recording import AXIS, FALL
 from specgate.delays.squared_gain import SquaredGain
@@ -106,18 +107,8 @@ class DelayedGain:
 
     @cached_property
     def _bandwidth(self) -> Answer:
-        """The first arrival of the fall at 1 - 10^(-3/10) of the square: between those at a rational on either side."""
-        at_zero = self.transfer.value_at_origin**2
-        try:
-            fall = PiecewiseResponse(_Fall(SquaredGain(self.transfer.numerator, self.transfer.denominator), at_zero))
-        except OutOfWork as limit:
-            return Answer.undecided(limit.reason)
-
-        def between(bits: int) -> tuple[Answer, Answer]:
-            factor = square_of_factor(bits)
-            early, late = (at_zero * (1 - end.fmpq()) for end in (factor.upper(), factor.lower()))
-            return fall.first_arrival(early), fall.first_arrival(late)
-
+        """The first arrival at 10^(-3/20) of the gain at zero frequency: between those at rationals on either side."""
+        between = self._falls()
         first, last = between(_BITS[0])
         for found in (first, last):
             if found.absent is not None:
@@ -132,6 +123,31 @@ class DelayedGain:
                 return early.union(late)
 
         return Answer.of_ball(refine, first.fragile).accounted(lambda: Account(FALL, AXIS))
+
+    def _falls(self) -> Callable[[int], tuple[Answer, Answer]]:
+        """Return where the gain first falls below 3 dB rounded up, and rounded down, for a number of bits.
+
+        The square is searched like a response; where it tends to no limit, like a gain above a lower limit for ever.
+        """
+        at_zero = abs(self.transfer.value_at_origin)
+        square = at_zero * at_zero
+        fall: PiecewiseResponse | None
+        try:
+            gain = SquaredGain(self.transfer.numerator, self.transfer.denominator)
+            fall = PiecewiseResponse(_Fall(gain, square))
+        except OutOfWork:
+            fall = None
+
+        def between(bits: int) -> tuple[Answer, Answer]:
+            factor = square_of_factor(bits)
+            if fall is not None:
+                early, late = (square * (1 - end.fmpq()) for end in (factor.upper(), factor.lower()))
+                return fall.first_arrival(early), fall.first_arrival(late)
+            with working_precision(bits):
+                level = factor.sqrt() * at_zero
+            return first_below(self.transfer, level.upper().fmpq()), first_below(self.transfer, level.lower().fmpq())
+
+        return between
 
     def resonance_peak(self, over: Range | None = None) -> Answer:
         """Return sup of the gain over that at zero frequency; `at` has the frequency."""

@@ -138,6 +138,15 @@ def late_inside(transfer: DelayedTransfer, mask: Mask) -> Answer:
     return replace(Answer.of_truth(False), at={"frequency": first.value, **first.at}, how=_account)
 
 
+def first_below(transfer: DelayedTransfer, level: fmpq) -> Answer:
+    """Return the first frequency from which on |N/D| falls below a level that it is not below at zero (rad/s)."""
+    try:
+        found = _for_ever(DelayedAxis(transfer), -1, (fmpq(0), level))
+    except NotTold:
+        return Answer.undecided("whether the gain ever falls so far is not told")
+    return Answer.nothing("the gain never falls so far") if found is None else found.value
+
+
 def _account() -> Account:
     return Account(ROOM, AXIS)
 

@@ -13,6 +13,7 @@ import numpy as np
 import pytest
 from flint import arb, fmpq
 
+from specgate.delays.gain import DelayedGain
 from specgate.delays.inputs import respond_late
 from specgate.delays.open_loop import DelayedLoop
 from specgate.response.inputs import Input
@@ -149,3 +150,13 @@ def test_a_margin_at_infinite_frequency() -> None:
     loop = DelayedLoop(late([fmpq(1, 2)], [1], fmpq(1)), stable=True)
     assert loop.gain_margin().exact == 2
     assert abs(float(loop.phase_crossover_frequency().enclose(60)) - np.pi) < 1e-12
+
+
+def test_the_bandwidth_of_a_gain_that_tends_to_nothing() -> None:
+    """Against a dense look; what comes back does not count, the first fall by 3 dB does."""
+    found = DelayedGain(closed(opened("gain and integral"))).bandwidth()
+    s = 1j * np.linspace(1e-4, 2, 2_000_001)
+    loop = (0.3 + 0.2 / s) * np.exp(-s)
+    gain = np.abs(loop / (1 + loop))
+    first = s.imag[int(np.argmax(gain < 10 ** (-3 / 20)))]
+    assert abs(float(found.enclose(60)) - first) < 3e-6
