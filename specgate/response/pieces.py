@@ -119,6 +119,10 @@ class Pieces(Protocol):
         """Return a time from which on |y'| <= rate is proved; None: none found."""
         return None
 
+    def slope(self) -> Pieces | None:
+        """Return the pieces of y', of a y that does not jump; None: not told. Asked only where y does not settle."""
+        return None
+
     def footing(self) -> Footing | None:
         """Return what a proof stands on: what kind of response this is, and how its values are enclosed."""
         return None

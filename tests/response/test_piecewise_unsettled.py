@@ -104,3 +104,27 @@ def test_a_swing_that_is_taken_is_not_said_to_be_only_approached() -> None:
     at_the_edge = response.within(Mask(upper=((fmpq(0), fmpq(2)),), forever=True))
     assert at_the_edge.truth is None
     assert response.within(Mask(upper=((fmpq(0), fmpq(199, 100)),), forever=True)).truth is False
+
+
+def test_the_greatest_rate_is_that_of_the_slope() -> None:
+    sine = Input("sine", {"amplitude": fmpq(1), "frequency": fmpq(2)}, fmpq(3))
+    late = several((TransferFunction(fmpq_poly([1]), LAG), sine)).peak_rate()
+    known = StepResponse(S * 2, LAG * highest_first([1, 0, 4]), fmpq(1)).peak_rate()
+    assert late.value.enclose(60).overlaps(known.value.enclose(60))
+    assert (late.time.enclose(60) - 3).overlaps(known.time.enclose(60))
+    pulse = Input("pulse", {"size": fmpq(5), "duration": fmpq(1, 2)})
+    twice = several((TransferFunction(fmpq_poly([1]), S * S), pulse)).peak_rate()
+    assert (twice.value.exact, twice.time.exact) == (fmpq(5, 2), fmpq(1, 2))
+    ramp = Input("ramp", {"slope": fmpq(2)}, fmpq(1))
+    step = Input("step", {"size": fmpq(1)})
+    climbing = several(
+        (TransferFunction(fmpq_poly([1]), LAG), ramp), (TransferFunction(fmpq_poly([1]), PAIR), step)
+    ).peak_rate()
+    assert climbing.value.enclose(60) > 2
+
+
+def test_a_growing_rate_has_no_greatest_value() -> None:
+    parabola = Input("parabola", {"curvature": fmpq(1)}, fmpq(1))
+    found = several((TransferFunction(fmpq_poly([1]), LAG), parabola)).peak_rate().value
+    assert found.absent is not None
+    assert found.absent.proved

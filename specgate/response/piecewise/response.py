@@ -185,7 +185,8 @@ class PiecewiseResponse:
         if jump is not None:
             return jump
         if not self.settles:
-            return Extreme.undecided(_UNSETTLED)
+            slope = self.pieces.slope()
+            return Extreme.undecided(_UNSETTLED) if slope is None else PiecewiseResponse(slope).peak_deviation()
         return accounted(self._heights.rate(), self._ground, STEEPEST)
 
     def _first_jump(self) -> Extreme | None:

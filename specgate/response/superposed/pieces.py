@@ -161,6 +161,12 @@ class Superposed(Pieces):
     def _lasting_part(self) -> Lasting:
         return Lasting(self._ending, self._drift(len(self._kinks) - 1))
 
+    def slope(self) -> Superposed | None:
+        """Return the pieces of y'; None where y jumps."""
+        slopes = [wave.slope() for wave in self._waves]
+        told = [slope for slope in slopes if slope is not None]
+        return Superposed(told) if len(told) == len(slopes) else None
+
     def footing(self) -> Footing:
         """Return what a proof stands on: the poles of all waves, those of waves of one kind once."""
         different = {wave.key: wave for wave in self._waves}.values()

@@ -13,6 +13,7 @@ from specgate.response.deviation import LOWEST, Deviation
 from specgate.response.modes import Expansion, Mode, at_origin, dyadic, expand_swinging
 from specgate.response.segments import exact
 from specgate.systems.polynomials import order_at_origin
+from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import working_precision
 
 
@@ -35,6 +36,9 @@ class Wave(Protocol):
 
     def start(self) -> tuple[fmpq, int] | None:
         """Return a length over which f moves strictly one way from its begin on, and which way; None: not told."""
+
+    def slope(self) -> Wave | None:
+        """Return f'; None where f jumps."""
 
 
 class StepWave(Wave):
@@ -68,6 +72,12 @@ class StepWave(Wave):
         if start is None:
             return None
         return exact(start.length) * dyadic(-self._deviation.time_exponent), start.direction
+
+    def slope(self) -> StepWave | None:
+        """Return f'; None where f jumps."""
+        numerator, denominator, size = self._fraction
+        steeper = _differentiated(numerator, denominator)
+        return None if steeper is None else StepWave(steeper.numerator, steeper.denominator, size, self.begin)
 
 
 class BumpWave(Wave):
@@ -110,6 +120,14 @@ class BumpWave(Wave):
             return None
         return min(half, start[0]), sign * start[1]
 
+    def slope(self) -> BumpWave | None:
+        """Return f'; None where the fraction passes its input on at once, which then is differentiated."""
+        numerator, denominator, size = self._fraction
+        steeper = _differentiated(numerator, denominator)
+        if steeper is None:
+            return None
+        return BumpWave(steeper.numerator, steeper.denominator, size, self.period, self.begin)
+
 
 class AfterBump(Wave):
     """What follows a bump: its wave less itself one period later, in which the oscillation of the input is gone."""
@@ -133,6 +151,18 @@ class AfterBump(Wave):
     def start(self) -> tuple[fmpq, int] | None:
         """Return None: it is not told."""
         return None
+
+    def slope(self) -> AfterBump | None:
+        """Return f'; None where that of the bump is not told."""
+        steeper = self._bump.slope()
+        return None if steeper is None else AfterBump(steeper)
+
+
+def _differentiated(numerator: fmpq_poly, denominator: fmpq_poly) -> TransferFunction | None:
+    """Return s times a fraction, reduced; None where that is improper."""
+    if numerator.degree() >= denominator.degree():
+        return None
+    return TransferFunction(numerator.left_shift(1), denominator).reduced()
 
 
 def _key(kind: str, denominator: fmpq_poly) -> tuple[object, ...]:
