@@ -68,11 +68,16 @@ def _response(
     driven = tuple(zip((one.source for one in response.excitations), inputs, strict=True))
     only = slow[sources[0]]
     error = _error(signals, response, solution, sources)
+    try:
+        over_time = _in_time(channel(solution, sources, form), driven)
+        error_over_time = error if isinstance(error, Absent) else _in_time(error, driven)
+    except ValueError as reason:
+        return ResponseAnalysis(response, unit, Missing(str(reason), later=True))
     subject = ResponseSubject(
         SlowTransfer(only) if len(sources) == 1 else SEVERAL,
         inputs[0].quantities["size"] if plain(inputs) else fmpq(1),
-        _in_time(channel(solution, sources, form), driven),
-        error if isinstance(error, Absent) else _in_time(error, driven),
+        over_time,
+        error_over_time,
         next((void(source, response.to) for source, one in single.items() if one.hides_instability), None),
         None,
         inputs,

@@ -124,7 +124,7 @@ class Steps:
 
     def _about(self, root: acb, multiplicity: int) -> tuple[acb, list[acb_poly]]:
         """Return a root of d0 with the polynomial in t - T of each term that begins at T."""
-        order = _Order(multiplicity, self._shared if root.is_zero() else 0)
+        order = _Order(multiplicity, min(multiplicity, self._shared) if root.is_zero() else 0)
         levels = _levels(self.kinks, self._numerator, self._denominator)
         with series_terms(order.at(max(levels, default=1)) + multiplicity):
             local = _Local(self._numerator, self._denominator, root, order, self._period)
