@@ -8,7 +8,7 @@ from specgate.intake import evidence, merge, shape
 from specgate.intake.build import build, is_whole
 from specgate.intake.collect import Collector, Problems
 from specgate.intake.gather import Gathered, gather
-from specgate.intake.nodes import Broken, Node, Table
+from specgate.intake.nodes import Broken, Entry, Node, Nothing, Table
 from specgate.intake.templates import expand
 from specgate.project import dimensions
 from specgate.project.types import Project
@@ -49,7 +49,7 @@ def _built(gathered: Gathered, collector: Collector, source: Source) -> Project 
     whole = gathered.complete and merge.readable(roots)
     root = merge.merged(roots, collector)
     if whole:
-        shape.check(root, collector, "whole_project")
+        shape.check(_outline(root), collector, "whole_project")
     merge.check_namespace(root, collector)
     digests = evidence.digests(root.get("evidence"), source)
     gathered.digests |= digests
@@ -63,6 +63,11 @@ def _built(gathered: Gathered, collector: Collector, source: Source) -> Project 
     if project.partial or not is_whole(project, root):
         raise AssertionError("a part of the project was left out without a word")
     return dimensions.settled(project)
+
+
+def _outline(root: Table) -> Table:
+    """Return a tree of which only the sections are named: what is in them was checked file by file."""
+    return Table(root.spot, {name: Entry(entry.key, Nothing(entry.value.spot)) for name, entry in root.entries.items()})
 
 
 def _roots(gathered: Gathered, collector: Collector) -> list[Node]:

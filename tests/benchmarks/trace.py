@@ -1,8 +1,9 @@
-"""Checking a specification with a great trace: `python tests/benchmarks/trace.py [requirements] [levels]`.
+"""Checking a specification with a great trace: `python tests/benchmarks/trace.py [requirements] [levels] [every]`.
 
-Writes a project of so many requirements (20,000 unless told otherwise) on so many levels (8), needs above and limits
-on one loop below, checks it as the command line does, and prints wall time, processor time and peak memory of the
-whole process.
+Writes a project of so many requirements (20,000 unless told otherwise) on so many levels (8), checks it as the
+command line does, and prints wall time, processor time and peak memory of the whole process. Every so many-th
+requirement of the last level (20; 1: all) has a limit on a loop; the others are shown by a test that is due later, as
+in a specification of a whole system, of which control is a part.
 """
 
 from __future__ import annotations
@@ -32,7 +33,7 @@ requirements:
 """
 
 
-def project(requirements: int, levels: int) -> str:
+def project(requirements: int, levels: int, every: int = 20) -> str:
     """Return the text of a project; each need of a level has the same number of children, as nearly as it goes."""
     spread = max(2.0, requirements ** (1 / (levels - 1)) * 0.8)
     lines, above, number = [HEAD], [""], 0
@@ -46,7 +47,10 @@ def project(requirements: int, levels: int) -> str:
             name = f"R-{level}-{index:05}"
             here.append(name)
             parent = above[index * len(above) // size]
-            lines.append(_need(name, parent) if not last else _limit(name, parent, 2000 + number))
+            if not last:
+                lines.append(_need(name, parent))
+            else:
+                lines.append(_limit(name, parent, 2000 + number) if index % every == 0 else _shown(name, parent))
         above = here
     return "".join(lines)
 
@@ -56,6 +60,13 @@ def _need(name: str, parent: str) -> str:
     return (
         f"  {name}:\n    text: The plant shall do what {name} asks.\n{link}    decided_by: derived\n"
         "    coverage: {complete: true, by: Systems, on: 2026-10-30}\n"
+    )
+
+
+def _shown(name: str, parent: str) -> str:
+    return (
+        f"  {name}:\n    text: The louvre shall bear what {name} asks.\n    derived_from: [{parent}]\n"
+        "    allocated_to: [louvre]\n    decided_by: evidence\n    verification: [{method: test, stage: acceptance}]\n"
     )
 
 
@@ -71,9 +82,10 @@ def main() -> None:
     """Write, check, print."""
     requirements = int(sys.argv[1]) if len(sys.argv) > 1 else 20_000
     levels = int(sys.argv[2]) if len(sys.argv) > 2 else 8
+    every = int(sys.argv[3]) if len(sys.argv) > 3 else 20
     with tempfile.TemporaryDirectory() as folder:
         path = Path(folder) / "specgate.yaml"
-        path.write_text(project(requirements, levels), encoding="utf-8")
+        path.write_text(project(requirements, levels, every), encoding="utf-8")
         start = time.perf_counter()
         done = subprocess.run(
             [sys.executable, "-m", "specgate", "check", str(path), "-o", str(Path(folder) / "out.txt")],
