@@ -81,6 +81,7 @@ def requirement(
         if exempt is None
         else {"reason": exempt.reason, "approved_by": exempt.approved_by, "approved_on": exempt.approved_on},
         external=None if declared.external is None else as_plain(declared.external),
+        coverage=as_plain(declared.coverage) or None,
     )
 
 

@@ -51,7 +51,9 @@ def _units(left: str, right: str) -> tuple[Unit, Unit] | None:
         units = table.parse(left), table.parse(right)
     except UnitError:
         return None  # a project's own unit: its size is not in the result
-    return units if units[0].dimension == units[1].dimension else None
+    # points are of a signal in %, per cent are of a change: two quantities, although both have no dimension
+    mixed = {"points", "percent"} == {one.kind for one in units}
+    return units if units[0].dimension == units[1].dimension and not mixed else None
 
 
 def _between(one: fmpq, unit: Unit, other: fmpq, another: Unit) -> int | None:

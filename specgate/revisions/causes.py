@@ -16,7 +16,7 @@ from specgate.revisions.types import Change
 from specgate.terms.records import record
 
 _RESULT_ONLY = ("parameter", "subsystem", "loop", "response", "break")
-_OF_THE_VERDICT = ("limit", "basis")
+_OF_THE_VERDICT = (": limit", ": basis")
 _PROJECT_WIDE = ("date", "stage", "stages", "revision")
 
 
@@ -99,7 +99,8 @@ def project_wide(found: Causes) -> tuple[str, ...]:
 
 
 def _of_value(change: Change) -> bool:
-    return not change.what.endswith(tuple(f": {word}" for word in _OF_THE_VERDICT))
+    """Tell whether a change of a criterion moves its value: of a limit, only one to another quantity."""
+    return (change.how == "changed" and change.what.endswith(": limit")) or not change.what.endswith(_OF_THE_VERDICT)
 
 
 def _own(change: Change) -> str:

@@ -96,7 +96,7 @@ def _sides(pair: pairs.Paired, old: Review, new: Review) -> tuple[RequirementRev
 
 
 _JUDGED = (WORSE, MIXED, CHANGED, BETTER)
-_PARTS = ("presence", "verdict", "standing", "methods", "value", "reserve")
+_PARTS = ("presence", "verdict", "standing", "methods", "criteria", "value", "reserve")
 
 
 def rank(one: RequirementDifference) -> tuple[int, int, int, str]:

@@ -91,6 +91,7 @@ REQUIREMENT = (
     Declared("budget", of=_budget),
     Declared("not_applicable"),
     Declared("external"),
+    Declared("coverage"),
 )
 CRITERION = (Declared("arguments"), Declared("evaluate"), Declared("mask"))
 PARAMETER = (

@@ -24,9 +24,10 @@ def compared(old: LimitReview, new: LimitReview) -> str:
     before, after = interval(old), interval(new)
     if before is None or after is None:
         return SAME if old == new else CHANGED
-    low, high = _end(before[0], after[0]), _end(after[1], before[1])
+    low, high = _raised(before[0], after[0], -1), _raised(before[1], after[1], 1)
     if low is None or high is None:
         return CHANGED
+    high = -high
     if low == high == 0:
         return SAME
     if min(low, high) >= 0:
@@ -34,10 +35,10 @@ def compared(old: LimitReview, new: LimitReview) -> str:
     return LOOSENED if max(low, high) <= 0 else SHIFTED
 
 
-def _end(before: Amount | None, after: Amount | None) -> int | None:
-    """Return 1 where the second end lies above the first, -1 below; a missing end lies beyond all others."""
+def _raised(before: Amount | None, after: Amount | None, missing: int) -> int | None:
+    """Return 1 where an end was raised, -1 where it was lowered; one that is missing lies at `missing` infinity."""
     if before is None or after is None:
-        return int(before is None) - int(after is None)
+        return missing * (int(after is None) - int(before is None))
     return order(after, before)
 
 

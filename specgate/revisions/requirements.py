@@ -70,6 +70,8 @@ def _changed(found: RequirementDifference) -> Iterator[str]:
     if any(before != after and (before, after) != (old.verdict, new.verdict) for before, after in outcomes):
         yield "methods"
     parts = {part for one in found.criteria for part in one.changed}
+    if "presence" in parts:
+        yield "criteria"
     for part in ("verdict", "standing", "value", "reserve"):
         if part in parts and getattr(old, part, None) == getattr(new, part, None):
             yield part

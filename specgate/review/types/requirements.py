@@ -165,3 +165,5 @@ class RequirementReview:
     """Why it is not compliant, in one sentence."""
     not_applicable: Mapping[str, Any] | None = None
     external: Mapping[str, Any] | None = None
+    coverage: Mapping[str, Any] | None = omitted()
+    """Whether the requirements derived from it are declared to cover it, by whom and when."""
