@@ -24,7 +24,7 @@ from specgate.frequency.newton import Function, Zero
 from specgate.response.answers import Answer
 from specgate.response.budget import OutOfWork
 from specgate.systems.polynomials import order_at_origin, primitive
-from specgate.systems.real_roots import may_have_rational_roots, positive_intervals
+from specgate.systems.real_roots import TooClose, may_have_rational_roots, positive_intervals
 from specgate.terms.precision import HIGHEST, working_precision
 from specgate.terms.verdicts import Proof
 
@@ -37,6 +37,8 @@ _EXACT_FROM = 256
 
 _HIGHEST = 200
 """Degree beyond which isolating all roots would take too long (some seconds at this one)."""
+
+_TOO_CLOSE = "frequencies that decide lie too close together to be told apart"
 
 _NIVEN = (-2, -1, 0, 1, 2)
 """Twice the rational cosines of rational parts of a turn (Niven 1956, theorem 6.16)."""
@@ -187,7 +189,7 @@ class Root:
 def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:
     """Return the distinct positive roots of a polynomial that is not zero, in rising order; rational ones as such.
 
-    Raises OutOfWork for a polynomial of too high a degree.
+    Raises OutOfWork for a polynomial of too high a degree, or with roots too close together.
     """
     whole = primitive(p.right_shift(order_at_origin(p)))
     signs = [c > 0 for c in whole.coeffs() if c != 0]
@@ -198,7 +200,10 @@ def positive_roots(p: fmpq_poly) -> tuple[Spot, ...]:
     square_free = whole // whole.gcd(whole.derivative())
     if square_free.degree() == 1:
         return (Rational(fmpq(-square_free[0], square_free[1])),)
-    intervals = positive_intervals(square_free)
+    try:
+        intervals = positive_intervals(square_free)
+    except TooClose:
+        raise OutOfWork(_TOO_CLOSE) from None
     rational = bool(intervals) and may_have_rational_roots(square_free)
     return tuple(_spot(square_free, *interval, rational=rational) for interval in intervals)
 

@@ -18,12 +18,16 @@ Interval = tuple[fmpq, fmpq]
 """(a, b) stands for a < x <= b; where a = b that is the root itself."""
 
 _NEXT = fmpz_poly([1, 1])
+_DEEPEST = 400
 _PRIMES = (10007, 10009, 10037, 10039, 10061, 10067)
 """A polynomial without rational roots has no root modulo about every third of them."""
 
 
 def positive_intervals(p: fmpz_poly) -> tuple[Interval, ...]:
-    """Return intervals with one positive root each, in rising order; p is square-free and p(0) is not 0."""
+    """Return intervals with one positive root each, in rising order; p is square-free and p(0) is not 0.
+
+    Raises TooClose for roots that lie less than 2^-400 of their size apart, or complex ones as close to the axis.
+    """
     coefficients = p.coeffs()
     if sign_changes(coefficients) == 0:
         return ()
@@ -50,6 +54,10 @@ def may_have_rational_roots(p: fmpz_poly) -> bool:
     return all(lead % prime == 0 or bool(nmod_poly(p, prime).roots()) for prime in _PRIMES)
 
 
+class TooClose(ArithmeticError):
+    """Roots that are not told apart within the work limit."""
+
+
 def sign_changes(coefficients: Sequence[fmpz]) -> int:
     """Return the number of changes of sign in a row of numbers, zeros left out."""
     count, last = -1, None
@@ -68,10 +76,13 @@ def _past(p: fmpq_poly, exponent: int) -> tuple[int, bool]:
 
 
 def _octave(p: fmpq_poly, left: fmpq, right: fmpq) -> Iterator[Interval]:
-    """Yield the roots in (left, right]."""
+    """Yield the roots in (left, right]. Raises TooClose."""
     waiting = [(left, right)]
+    shortest = (right - left) / (1 << _DEEPEST)
     while waiting:
         a, b = waiting.pop()
+        if b - a < shortest:
+            raise TooClose
         coefficients = p(fmpq_poly([a, b - a])).numer().coeffs()
         ends = bool(p(b) == 0)
         # a root at a belongs to the interval before; what is at b does not count inside

@@ -9,6 +9,7 @@ from flint import arb, fmpq, fmpq_poly, fmpz_poly
 
 from specgate.frequency.narrowing import monotone
 from specgate.frequency.spots import Rational, positive_roots
+from specgate.response.budget import OutOfWork
 from specgate.systems.polynomials import primitive
 from specgate.systems.real_roots import may_have_rational_roots, positive_intervals
 from specgate.terms.precision import working_precision
@@ -106,3 +107,11 @@ def test_roots_that_all_but_touch_are_told_apart() -> None:
     p = primitive((X - 1 - tiny) * (X - 1 + tiny) * ((X - 3) ** 2 + tiny))
     (one, other) = positive_intervals(p)
     assert one[0] < 1 - tiny <= one[1] <= other[0] < 1 + tiny <= other[1]
+
+
+def test_roots_too_close_to_be_told_apart_are_said_to_be_so() -> None:
+    """x^n - 2 (a x - 1)^2 has two roots about a^(-1 - n/2) apart (Mignotte 1982)."""
+    close = X**8 - 2 * (X * 10**30 - 1) ** 2
+    assert len(positive_roots(close)) == 3
+    with pytest.raises(OutOfWork, match="too close"):
+        positive_roots(X**20 - 2 * (X * 10**30 - 1) ** 2)
