@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterator, Mapping
+from decimal import Decimal
+from fractions import Fraction
 from typing import Any
 
 from specgate.review.types import Amount, CriterionReview, ParameterReview, RequirementReview, Review, SubsystemReview
@@ -13,6 +15,8 @@ from specgate.revisions.pairs import Paired, criteria
 from specgate.revisions.said import amount, limit, said
 from specgate.revisions.types import Change
 
+_LONG = 16
+"""Characters from which a fraction is printed as a decimal."""
 _LITERAL = re.compile(r"[-+]?[0-9.][0-9.eE+-]*( \S+)?")
 
 
@@ -145,8 +149,19 @@ def _rebuilt(old: SubsystemReview, new: SubsystemReview, moved: frozenset[str]) 
 
 
 def _transfer(one: SubsystemReview) -> str:
-    above = "; ".join(f"[{', '.join(part)}]" for part in one.numerators.values())
-    return f"{above} / [{', '.join(one.denominator)}]"
+    above = "; ".join(f"[{', '.join(map(_short, part))}]" for part in one.numerators.values())
+    return f"{above} / [{', '.join(map(_short, one.denominator))}]"
+
+
+def _short(coefficient: str) -> str:
+    """Return a rational as it stands, where it is long as a decimal of ten digits."""
+    if len(coefficient) <= _LONG:
+        return coefficient
+    try:
+        value = Fraction(coefficient)
+    except (ValueError, ZeroDivisionError):  # a coefficient that this program does not write
+        return coefficient
+    return f"{Decimal(value.numerator) / Decimal(value.denominator):.10g}"
 
 
 # --- loops ----------------------------------------------------------------------------------------------------

@@ -29,6 +29,20 @@ def test_the_verdict_shown_is_the_one_given(
     assert capsysbinary.readouterr().out.decode() == block("example: verdict")
 
 
+def test_the_difference_shown_is_the_one_given(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsysbinary: pytest.CaptureFixture[bytes]
+) -> None:
+    old = block("example: spec")
+    new = old.replace("revision: A", "revision: B").replace("integral: {value: 0.1 V", "integral: {value: 0.0001 V")
+    new = new.replace("basis: {approximation: second_order_settling, claimed: 0.65 s}", "basis: computed")
+    for name, text in (("rev_a", old), ("rev_b", new)):
+        (tmp_path / name).mkdir()
+        (tmp_path / name / "specgate.yaml").write_text(text)
+    monkeypatch.chdir(tmp_path)
+    assert main(["diff", "rev_a", "rev_b"]) == 0
+    assert capsysbinary.readouterr().out.decode() == block("example: difference")
+
+
 @pytest.mark.parametrize("marker", ["run: main job", "run: tests"])
 def test_a_command_is_one_line(marker: str) -> None:
     assert len(block(marker).splitlines()) == 1

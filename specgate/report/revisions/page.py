@@ -23,9 +23,14 @@ ROWS_AT_MOST = 300
 
 def on_screen(found: Differences) -> str:
     """Return the differences as an HTML file that loads nothing and runs nothing."""
-    sheets = ("report/base.css", "report/screen.css", "report/print.css", "differences/differences.css")
-    styles = [("", fonts())]
-    styles += zip(("", "screen", "print", ""), map(template, sheets), strict=True)
+    styles = [
+        ("", fonts()),
+        ("", template("report/base.css")),
+        ("", template("differences/differences.css")),
+        ("screen", template("report/screen.css")),
+        ("screen", template("differences/screen.css")),
+        ("print", template("report/print.css")),
+    ]
     policy = (
         f"default-src 'none'; style-src {' '.join(hashed(style) for _, style in styles)}; font-src data:; "
         "img-src data:; base-uri 'none'; form-action 'none'"
