@@ -7,8 +7,13 @@ import re
 import shutil
 import subprocess
 from pathlib import Path
+from types import ModuleType
 
 import pytest
+
+from specgate.report.revisions import paper
+from specgate.review.types import ToolReview
+from specgate.revisions.compare import differences
 
 JAR = os.environ.get("VERAPDF_JAR", "")
 RULES = {"3a": 155, "ua1": 106}
@@ -19,10 +24,19 @@ pytestmark = pytest.mark.skipif(
 )
 
 
+@pytest.fixture(scope="module")
+def differences_pdf(sample: ModuleType) -> bytes:
+    """The differences of two samples, on paper."""
+    return paper.render(differences(sample.review(), sample.small(), ToolReview("specgate", "0")), b"{}")
+
+
+@pytest.mark.parametrize("document", ["sample_pdf", "differences_pdf"])
 @pytest.mark.parametrize("profile", sorted(RULES))
-def test_the_sample_follows_the_standard(sample_pdf: bytes, tmp_path: Path, profile: str) -> None:
+def test_the_sample_follows_the_standard(
+    request: pytest.FixtureRequest, tmp_path: Path, profile: str, document: str
+) -> None:
     file = tmp_path / "report.pdf"
-    file.write_bytes(sample_pdf)
+    file.write_bytes(request.getfixturevalue(document))
     program = Path(__file__).with_name("Verify.java")
     done = subprocess.run(["java", "-cp", JAR, str(program), profile, str(file)], capture_output=True, text=True)
     assert done.returncode == 0, done.stdout + done.stderr
