@@ -9,7 +9,7 @@ from specgate.analysis.reads import parameters_read, read_by
 from specgate.compliance.assessment import Assessment
 from specgate.compliance.wording import subject_name
 from specgate.project.parameters import Values
-from specgate.project.types import Loop, Project
+from specgate.project.types import Budget, Loop, Project
 from specgate.terms.records import record
 
 
@@ -18,9 +18,11 @@ class Resting:
     """What each loop rests on, and what else is needed to say it of a requirement.
 
     loops: the parameters that the models, ranges, signals and rest values of a loop read, then its subsystems.
+    models: the parameters that the model of each subsystem reads.
     """
 
     loops: Mapping[str, tuple[str, ...]]
+    models: Mapping[str, tuple[str, ...]]
     declared: Mapping[str, Loop]
     values: Values
 
@@ -36,7 +38,15 @@ class Resting:
         )
         asked = (read_by(one.criterion, None, self.values) for one in assessment.criteria)
         read = (name for names in (*driven, *asked) for name in names)
-        return tuple(dict.fromkeys((*below, *read, *(subject_name(one) for one in assessment.criteria))))
+        shared = self._budgeted(assessment.requirement.budget)
+        return tuple(dict.fromkeys((*below, *read, *shared, *(subject_name(one) for one in assessment.criteria))))
+
+    def _budgeted(self, budget: Budget | None) -> Iterator[str]:
+        """Give what a budget reads, and the blocks whose phases it adds with what they read."""
+        if budget is not None:
+            yield from read_by(budget, None, self.values)
+            for block in budget.blocks:
+                yield from (*self.models[block.subsystem], block.subsystem)
 
 
 def resting(project: Project, analyses: Analyses) -> Resting:
@@ -52,6 +62,7 @@ def resting(project: Project, analyses: Analyses) -> Resting:
             name: tuple(dict.fromkeys((*_read(project.loops[name], loop.subsystems, models, ranges, values),)))
             for name, loop in analyses.loops.items()
         },
+        models=models,
         declared=project.loops,
         values=values,
     )
