@@ -42,11 +42,12 @@ class Resting:
         return tuple(dict.fromkeys((*below, *read, *shared, *(subject_name(one) for one in assessment.criteria))))
 
     def _budgeted(self, budget: Budget | None) -> Iterator[str]:
-        """Give what a budget reads, and the blocks whose phases it adds with what they read."""
+        """Give what a budget reads, the blocks whose phases it adds with what they read, and the shares."""
         if budget is not None:
             yield from read_by(budget, None, self.values)
             for block in budget.blocks:
                 yield from (*self.models[block.subsystem], block.subsystem)
+            yield from (share.id for share in budget.shares)
 
 
 def resting(project: Project, analyses: Analyses) -> Resting:
