@@ -79,10 +79,19 @@ APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for m
 LATER: Mapping[str, str] = {
     "fast_sampling_as_continuous": "a sampled controller as a continuous one",
     "inner_loop_as_lag": "an inner loop as a single lag",
-    "linear_range": "the linear model itself, within the range of its signals",
     "small_tail": "a very slow pole as an integrator, or not at all",
 }
 """Names of the catalogue that are read and kept, and not audited yet: name and what it is."""
+
+BY_RULE: Mapping[str, str] = {"linear_range": "range-exceeded"}
+"""Names of the catalogue that estimate no number: name, and the rule that audits it for every response."""
+
+
+def without_row(name: str) -> str:
+    """Say why nothing of a name of the catalogue that has no row is audited where it is named as a basis."""
+    if name in BY_RULE:
+        return f"{name} estimates no number: the rule {BY_RULE[name]} audits it for every response, named or not"
+    return f"{name} is in the catalogue and not audited by this version"
 
 
 def entry(name: str, variant: str | None = None) -> Approximation:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from specgate.approximations.approximation import Approximation
-from specgate.approximations.table import APPROXIMATIONS, LATER, chain
+from specgate.approximations.table import APPROXIMATIONS, BY_RULE, LATER, chain, without_row
 from specgate.measures.text import Explanation
 
 
@@ -12,6 +12,8 @@ def describe(name: str) -> Explanation:
     if name in LATER:
         what = f"{LATER[name][0].upper()}{LATER[name][1:]}."
         return Explanation(name, f"{what}\n\nThis version reads and keeps it, and does not audit it yet.", "")
+    if name in BY_RULE:
+        return Explanation(name, f"{without_row(name)}. `specgate explain {BY_RULE[name]}` tells how.", "")
     row = APPROXIMATIONS[name]
     parts = (
         row.text.strip(),

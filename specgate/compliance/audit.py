@@ -15,7 +15,7 @@ from specgate.approximations.approximation import Accuracy, Approximation, Condi
 from specgate.approximations.conditions import OF_STEP
 from specgate.approximations.figures import negative, smallest
 from specgate.approximations.late import derived_for
-from specgate.approximations.table import APPROXIMATIONS, conditions
+from specgate.approximations.table import APPROXIMATIONS, conditions, without_row
 from specgate.approximations.viewed import Viewed
 from specgate.compliance.assessment import Audit, AuditedCondition, Instead, Side, Slip
 from specgate.compliance.chains import Link, Linked, linked
@@ -78,7 +78,7 @@ def audit(basis: Basis, matter: Matter, policy: Policy) -> Audit:
     )
     unknown = next((name for name in basis.chain if name not in APPROXIMATIONS), None)
     if unknown is not None:
-        return replace(started, reason=f"{unknown} is in the catalogue and not audited by this version")
+        return replace(started, reason=without_row(unknown))
     chained = linked(basis, matter.viewed, matter.again, matter.arguments)
     audited = replace(
         started,

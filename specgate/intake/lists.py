@@ -10,7 +10,7 @@ from importlib.resources import files
 from pathlib import Path
 from typing import Any
 
-from specgate.approximations.table import APPROXIMATIONS, LATER
+from specgate.approximations.table import APPROXIMATIONS, BY_RULE, LATER
 from specgate.measures.table import MEASURES
 from specgate.terms.units import UnitTable
 
@@ -42,7 +42,7 @@ def _approximation() -> dict[str, Any]:
     return {
         "description": "An approximation of the catalogue. `specgate explain NAME` tells its formula and range.",
         "type": "string",
-        "enum": [*APPROXIMATIONS, *LATER],
+        "enum": [*APPROXIMATIONS, *LATER, *BY_RULE],
         "x-rule": "name-unknown",
         "x-wanted": "an approximation",
     }

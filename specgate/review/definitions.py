@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Mapping
 
 from specgate.approximations import text as approximation_text
-from specgate.approximations.table import APPROXIMATIONS, LATER, chain
+from specgate.approximations.table import APPROXIMATIONS, BY_RULE, LATER, chain
 from specgate.intake.slugs import SLUGS
 from specgate.measures import text as measure_text
 from specgate.measures.table import MEASURES
@@ -32,7 +32,7 @@ def all_definitions() -> Mapping[str, DefinitionReview]:
     """Return the texts on everything that has a name: measures, approximations, rules, faults of the files."""
     return {
         **{name: _measure(name) for name in MEASURES},
-        **{name: _approximation(name) for name in (*APPROXIMATIONS, *LATER)},
+        **{name: _approximation(name) for name in (*APPROXIMATIONS, *LATER, *BY_RULE)},
         **{name: _rule(name) for name in RULES},
         **{row.name: DefinitionReview("fault of the files", row.title, row.text) for row in SLUGS.values()},
     }
@@ -51,7 +51,7 @@ def _with_premises(names: Iterable[str]) -> Iterator[str]:
     for name in names:
         if name in APPROXIMATIONS:
             yield from (row.name for row in reversed(chain(name)))
-        elif name in LATER:
+        elif name in LATER or name in BY_RULE:
             yield name
 
 

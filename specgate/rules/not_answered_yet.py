@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from specgate.approximations.table import LATER
+from specgate.approximations.table import BY_RULE, LATER
 from specgate.rules.rule import Facts, Rule
 from specgate.terms.findings import Finding
 from specgate.terms.verdicts import Level
@@ -26,10 +26,10 @@ def check(facts: Facts) -> Iterator[Finding]:
 
 
 def _thresholds(facts: Facts) -> Iterator[Finding]:
-    """Report thresholds of approximations that are not audited yet."""
+    """Report thresholds of names of the catalogue that have no row to apply them."""
     for name, stated in facts.project.approximations.items():
         for key, value in stated.items():
-            if name in LATER:
+            if name in LATER or name in BY_RULE:
                 message = f"{name}: the threshold `{key}` is kept, and not applied by this version"
                 yield Finding(NAME, Level.NOTE, message, value.place)
 

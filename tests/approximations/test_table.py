@@ -9,9 +9,10 @@ import pytest
 from flint import fmpq
 
 from specgate import approximations
-from specgate.approximations.table import APPROXIMATIONS, LATER, chain, conditions
+from specgate.approximations.table import APPROXIMATIONS, BY_RULE, LATER, chain, conditions
 from specgate.approximations.text import describe
 from specgate.measures.table import MEASURES
+from specgate.rules.table import RULES
 
 CATALOGUE = """
     final_value_theorem first_order_settling first_order_rise second_order_settling settling_envelope
@@ -27,7 +28,7 @@ ROWS = list(APPROXIMATIONS)
 
 
 def test_every_name_of_the_catalogue_is_known_once() -> None:
-    assert sorted([*APPROXIMATIONS, *LATER]) == sorted(CATALOGUE)
+    assert sorted([*APPROXIMATIONS, *LATER, *BY_RULE]) == sorted(CATALOGUE)
 
 
 def test_every_file_with_a_row_is_in_the_table() -> None:
@@ -61,6 +62,12 @@ def test_conditions_are_told_apart_by_their_keys(name: str) -> None:
 @pytest.mark.parametrize("name", sorted(LATER))
 def test_later_names_say_so(name: str) -> None:
     assert "does not audit it yet" in describe(name).text
+
+
+@pytest.mark.parametrize(("name", "rule"), BY_RULE.items())
+def test_what_a_rule_audits_is_told_with_the_rule(name: str, rule: str) -> None:
+    assert rule in RULES
+    assert f"the rule {rule} audits it for every response" in describe(name).text
 
 
 def test_an_unknown_name() -> None:

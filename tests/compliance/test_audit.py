@@ -216,6 +216,13 @@ def test_a_row_of_the_catalogue_that_is_not_audited_yet(audited: Callable[..., A
     assert found.reason == "small_tail is in the catalogue and not audited by this version"
 
 
+def test_a_row_of_the_catalogue_that_a_rule_audits(audited: Callable[..., Audit]) -> None:
+    found = audited(LAG, "at_most: 3 s", basis("linear_range", "2.2 s"), measure="rise_time")
+    assert found.standing is Standing.INCONCLUSIVE
+    assert found.reason is not None
+    assert "the rule range-exceeded audits it" in found.reason
+
+
 def test_the_alternative_errs_on_the_safe_side(audited: Callable[..., Audit]) -> None:
     model = "{numerator: [6], denominator: [1, 5, 6]}"  # poles at -2 and -3
     found = audited(model, "at_most: 5 s", basis("slowest_pole_settling", "2.0 s"))
