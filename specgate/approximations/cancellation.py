@@ -48,14 +48,13 @@ class Couple:
 
 
 @dataclass(frozen=True, eq=False)
-class Cancellation:
-    """A response and what is left of it without a couple.
+class Remainder:
+    """What is left of a response without a tail that is left out.
 
     rest: the features of what is left. unit: its response to a step that makes a change of 1.
     tail: greatest distance between the two responses at any time, in parts of the change.
     """
 
-    couple: Couple
     rest: Features
     unit: StepResponse
     tail: Answer
@@ -124,6 +123,13 @@ class Cancellation:
         )
 
 
+@dataclass(frozen=True, eq=False)
+class Cancellation(Remainder):
+    """What is left of a response without a couple."""
+
+    couple: Couple
+
+
 def cancellation(features: Features) -> Cancellation | None:
     """Return the response without the couple whose ratio is nearest to 1; None where there is none."""
     couples = [Couple(pole, zero) for pole in features.poles for zero in features.zeros if _of_a_kind(pole, zero)]
@@ -136,10 +142,10 @@ def cancellation(features: Features) -> Cancellation | None:
     numerator, denominator = _divided(features.channel.numerator, zero), _divided(features.channel.denominator, pole)
     tail = StepResponse(numerator * (zero - pole), denominator * pole, 1 / gain)
     return Cancellation(
-        couple,
         features.of(numerator, denominator),
         StepResponse(numerator, denominator, 1 / gain),
         tail.peak_deviation().value,
+        couple,
     )
 
 
@@ -157,14 +163,15 @@ def _offset(couple: Couple) -> arb:
 
 def _factor(spot: Spot) -> fmpq_poly:
     """Return the factor of a root or pair of roots, 1 at s = 0; what is not rational to some seventy digits."""
-    rate = _rational(spot.decay)
+    rate = rational(spot.decay)
     if not spot.oscillates:
         return fmpq_poly([1, 1 / rate])
-    square = _rational(spot.distance_squared)
+    square = rational(spot.distance_squared)
     return fmpq_poly([1, 2 * rate / square, 1 / square])
 
 
-def _rational(value: Answer) -> fmpq:
+def rational(value: Answer) -> fmpq:
+    """Return a number, or what it is to some seventy digits where it is not known to be rational."""
     return value.exact if value.exact is not None else value.enclose(_DIVIDED_AT).mid().fmpq()
 
 

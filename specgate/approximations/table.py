@@ -34,6 +34,7 @@ from specgate.approximations import (
     second_order_settling,
     settling_envelope,
     slowest_pole_settling,
+    small_tail,
     static_error_constants,
     unstable_pole_limit,
 )
@@ -56,6 +57,7 @@ _ROWS = (
     dominant_pair,
     distant_zero,
     near_cancellation,
+    small_tail,
     right_half_plane_undershoot,
     bandwidth_from_pair,
     resonance_from_damping,
@@ -79,7 +81,6 @@ APPROXIMATIONS: Mapping[str, Approximation] = {module.ROW.name: module.ROW for m
 LATER: Mapping[str, str] = {
     "fast_sampling_as_continuous": "a sampled controller as a continuous one",
     "inner_loop_as_lag": "an inner loop as a single lag",
-    "small_tail": "a very slow pole as an integrator, or not at all",
 }
 """Names of the catalogue that are read and kept, and not audited yet: name and what it is."""
 
