@@ -8,6 +8,8 @@ from flint import fmpq
 
 from specgate.analysis.analyses import BreakAnalysis, Missing, ResponseAnalysis
 from specgate.analysis.driven import ERROR_JUMPS, NOISE, SEVERAL, improper, plain, reference_of, void
+from specgate.frequency.questions import Gain
+from specgate.frequency.rational_gain import RationalGain
 from specgate.measures.reading import decided
 from specgate.measures.subjects import BreakSubject, ResponseSubject
 from specgate.project.excitations import evaluated
@@ -22,6 +24,7 @@ from specgate.response.questions import TimeResponse
 from specgate.sampled.channel import SampledChannel, channel, delayed, pieces
 from specgate.sampled.drive import drive
 from specgate.sampled.following import lasting_error
+from specgate.sampled.gain import SampledGain
 from specgate.sampled.opened import opened
 from specgate.sampled.over_frequency import over_frequency
 from specgate.sampled.solution import SampledSolution, SlowTransfer
@@ -79,7 +82,7 @@ def _response(
         over_time,
         error_over_time,
         next((void(source, response.to) for source, one in single.items() if one.hides_instability), None),
-        None,
+        _gain(single[sources[0]]) if len(sources) == 1 else None,
         inputs,
         BEYOND,
         None if isinstance(error, Absent) or len(inputs) > 1 or not error.sampled else lasting_error(error, inputs[0]),
@@ -100,6 +103,13 @@ def _in_time(one: SampledChannel, driven: Sequence[tuple[str, Input]]) -> TimeRe
     response = PiecewiseResponse(found)
     since = max(given.since for _, given in driven)
     return response if since == 0 else Counted(response, since)
+
+
+def _gain(one: SampledChannel) -> Gain | None:
+    """Return the channel over frequency; without a sampled block on the way it is that of the blocks in s."""
+    if one.sampled:
+        return SampledGain(one)
+    return None if one.solution.wiring.late else RationalGain(one.continuous(one.sources[0]))
 
 
 def _error(

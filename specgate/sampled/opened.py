@@ -12,6 +12,7 @@ Markov parameters -c M^i e_p the numerator is the product of their series and de
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from types import MappingProxyType
 
 from flint import arb, arb_mat, arb_poly, fmpq, fmpq_mat, fmpq_poly
 
@@ -33,7 +34,8 @@ from specgate.systems.transfer import TransferFunction
 from specgate.terms.precision import working_precision
 from specgate.terms.records import record
 
-_NAME, _OUTPUT = "(injected)", "y"
+INJECTED, _OUTPUT = "(injected)", "y"
+"""The name of the block that stands for what is injected."""
 _Z = fmpq_poly([0, 1])
 
 
@@ -105,7 +107,7 @@ def _component(solution: SampledSolution, signal: str) -> int | None:
 def _cut_at(solution: SampledSolution, signal: str, members: Sequence[str]) -> _Cut | str:
     wiring = solution.wiring
     sampled = {one.name: one for one in wiring.instances}
-    if _read_by_samplers_only(solution, signal, sampled):
+    if at_samplers_only(solution, signal, sampled):
         return _Cut(signal, fmpq(0), {})
     sent = _held_by(solution, signal)
     if sent is not None:
@@ -124,7 +126,7 @@ def _cut_at(solution: SampledSolution, signal: str, members: Sequence[str]) -> _
             if name in wiring.continuous.signals
         ]
         for name in carrying:
-            if len(carrying) == 1 and _read_by_samplers_only(solution, name, sampled):
+            if len(carrying) == 1 and at_samplers_only(solution, name, sampled):
                 return _Cut(name, fmpq(0), {})
     return (
         f"{signal} is read in continuous time, and more than one way leads from it to the samplers: open the loop at a "
@@ -132,7 +134,7 @@ def _cut_at(solution: SampledSolution, signal: str, members: Sequence[str]) -> _
     )
 
 
-def _read_by_samplers_only(solution: SampledSolution, signal: str, sampled: Mapping[str, SampledInstance]) -> bool:
+def at_samplers_only(solution: SampledSolution, signal: str, sampled: Mapping[str, SampledInstance]) -> bool:
     """Whether what a signal acts on through sums alone are samplers and nothing else."""
     arcs = solution.slow.network.equations.arcs
     through: dict[Reference, list[Reference]] = {
@@ -174,8 +176,8 @@ def _single_loop(solution: SampledSolution, signal: str, sampler: SampledInstanc
 
 
 def _transfer(solution: SampledSolution, cut: _Cut, members: Sequence[str], slow: TransferFunction) -> PulseTransfer:
-    wiring = _injected(solution.wiring, cut)
-    inside = [one for one in wiring.instances if one.name in (*members, _NAME)]
+    wiring = injected(solution.wiring, cut.replaced, cut.delay, cut.sent)
+    inside = [one for one in wiring.instances if one.name in (*members, INJECTED)]
     sources = [one.held(output) for one in inside for output in one.block.outputs]
     later = wiring.later(sources)
     outputs, sources = sources, [*sources, *(name for name, _, _ in later)]
@@ -200,17 +202,22 @@ def _transfer(solution: SampledSolution, cut: _Cut, members: Sequence[str], slow
         back = [own[j] + sum((f * at_once[i, j] for i, f in enumerate(direct)), fmpq(0)) for j in range(cycle.order)]
     place = cycle.moving + cycle.law.order - 1
     if cycle.exact is not None:
-        return _exactly(cycle.exact, back, place)
+        return exactly(cycle.exact, back, place)
     drawn = Plant(wiring.punctual.wiring, members, sources).dynamics[0].charpoly()
     lost = order_at_origin(drawn) - order_at_origin(least.a.charpoly())
     below = _known_below(wiring, members, lost)
     above = _known_above(inside, below, slow)
-    return PulseTransfer(above, below, kept(lambda bits: _enclosed(cycle, back, place, above, below, bits)))
+    return PulseTransfer(above, below, kept(lambda bits: enclosed(cycle, back, place, above, below, bits)))
 
 
-def _injected(wiring: SampledWiring, cut: _Cut) -> SampledWiring:
-    """Return the wiring with a sampled block of its own in place of every use of a signal."""
-    old, new = SignalRef(cut.replaced), SignalRef(held(_NAME, _OUTPUT))
+def injected(
+    wiring: SampledWiring, signal: str, delay: fmpq, sent: Mapping[str, fmpq] = MappingProxyType({})
+) -> SampledWiring:
+    """Return the wiring with a sampled block of its own in place of every use of a signal or an input.
+
+    sent: what held outputs are in the signal, where it is what they send that is replaced.
+    """
+    old, new = SignalRef(signal), SignalRef(held(INJECTED, _OUTPUT))
 
     def replaced(form: LinearForm) -> LinearForm:
         return LinearForm(tuple((factor, new if node == old else node) for factor, node in form.terms))
@@ -219,7 +226,7 @@ def _injected(wiring: SampledWiring, cut: _Cut) -> SampledWiring:
         return {name: replaced(form) for name, form in arguments.items()}
 
     # p takes over what is injected with the next sample: 1/z
-    block = SampledBlock(_NAME, ("u",), (_OUTPUT,), {(_OUTPUT, "u"): ONE}, _Z, cut.delay)
+    block = SampledBlock(INJECTED, ("u",), (_OUTPUT,), {(_OUTPUT, "u"): ONE}, _Z, delay)
     continuous = wiring.continuous
     return SampledWiring(
         wiring.period,
@@ -229,26 +236,29 @@ def _injected(wiring: SampledWiring, cut: _Cut) -> SampledWiring:
             {name: replaced(form) for name, form in continuous.signals.items()},
         ),
         (
-            *(SampledInstance(one.name, _at_once(one, cut, wiring), within(one.arguments)) for one in wiring.instances),
-            SampledInstance(_NAME, block, {"u": LinearForm(())}),
+            *(
+                SampledInstance(one.name, _at_once(one, signal, sent, wiring), within(one.arguments))
+                for one in wiring.instances
+            ),
+            SampledInstance(INJECTED, block, {"u": LinearForm(())}),
         ),
     )
 
 
-def _at_once(one: SampledInstance, cut: _Cut, wiring: SampledWiring) -> SampledBlock:
+def _at_once(one: SampledInstance, signal: str, sent: Mapping[str, fmpq], wiring: SampledWiring) -> SampledBlock:
     """Return the block without its delay where all that it holds is cut off: nobody sees what is on its way then."""
     block = one.block
     names = {one.held(output) for output in block.outputs}
-    forms = [form for name, form in wiring.continuous.signals.items() if name != cut.replaced]
+    forms = [form for name, form in wiring.continuous.signals.items() if name != signal]
     forms += [form for other in wiring.continuous.instances for form in other.arguments.values()]
     forms += [form for other in wiring.instances for form in other.arguments.values()]
     read = {node.name for form in forms for _, node in form.terms if isinstance(node, SignalRef)}
-    if not names <= set(cut.sent) or names & read:
+    if not names <= set(sent) or names & read:
         return block
     return SampledBlock(block.name, block.inputs, block.outputs, block.numerators, block.denominator, fmpq(0))
 
 
-def _exactly(matrix: fmpq_mat, back: Row, place: int) -> PulseTransfer:
+def exactly(matrix: fmpq_mat, back: Row, place: int) -> PulseTransfer:
     """Return L with rational coefficients; p is a mode at z = 0 that nothing acts on."""
     characteristic = matrix.charpoly().right_shift(1)
     size = int(matrix.nrows())
@@ -280,7 +290,7 @@ def _known_above(inside: Sequence[SampledInstance], below: fmpq_poly, slow: Tran
 
     There are as many of these as there are poles at z = 1 beyond the type of the loop, which is that of slow signals.
     """
-    blocks = [one.block for one in inside if one.name != _NAME]
+    blocks = [one.block for one in inside if one.name != INJECTED]
     single = len(blocks) == 1 and len(blocks[0].inputs) == len(blocks[0].outputs) == 1
     own = next(iter(blocks[0].numerators.values())) if single else ONE
     zeros = _at_one(below) - loop_type(slow) - _at_one(own)
@@ -291,7 +301,7 @@ def _at_one(p: fmpq_poly) -> int:
     return order_at_origin(p(fmpq_poly([1, 1])))
 
 
-def _enclosed(cycle: Cycle, back: Row, place: int, above: fmpq_poly, below: fmpq_poly, bits: int) -> Parts:
+def enclosed(cycle: Cycle, back: Row, place: int, above: fmpq_poly, below: fmpq_poly, bits: int) -> Parts:
     """Return what is left of numerator and denominator in balls once the exact factors are divided out."""
     precision = 2 * bits + 64
     matrix = cycle.enclosed(precision)

@@ -10,6 +10,7 @@ from flint import fmpq
 from specgate.frequency.questions import OpenLoop, Range
 from specgate.frequency.rational_loop import RationalLoop
 from specgate.response.answers import Answer
+from specgate.response.questions import Mask
 from specgate.sampled.delay_margin import delay_margin
 from specgate.sampled.enclosed_axis import Axis
 from specgate.sampled.enclosed_loop import EnclosedLoop, delay_stood
@@ -17,6 +18,7 @@ from specgate.sampled.opened import SampledOpening
 from specgate.sampled.phase import phase_at
 from specgate.sampled.scale import BEYOND, SampledScale
 from specgate.sampled.transfer import PulseTransfer
+from specgate.sampled.within import within
 from specgate.systems.error_constants import position_constant
 from specgate.systems.transfer import TransferFunction
 
@@ -49,6 +51,10 @@ class RationalSampledLoop(RationalLoop):
     def phase_at(self, frequency: fmpq) -> Answer:
         """Return arg L at a frequency, followed from zero frequency (rad)."""
         return phase_at(Axis(self._sampled), self._sampled, self._slow, self._rate, frequency)
+
+    def within(self, mask: Mask) -> Answer:
+        """Return whether |L| stays inside a mask over frequency."""
+        return within(Axis(self._sampled), self._rate, position_constant(self._slow), mask)
 
 
 def over_frequency(opening: SampledOpening) -> OpenLoop | None:
