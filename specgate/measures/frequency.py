@@ -15,6 +15,10 @@ from specgate.response.answers import Answer
 
 _FREQUENCY = (Argument("frequency", "frequency", "frequency at which it is read", required=True),)
 _RANGE = (Argument("over", "range", "range of frequencies that is looked at; all unless given"),)
+_SAMPLED = (
+    " Of a response of a sampled loop it is that of the samples of the signal to an input that is held from sample to "
+    "sample, up to half the sampling rate (pi/T)."
+)
 _ROOTS = (
     "enclosed: isolated roots of exact polynomials in the square of the frequency; where dead time or sampling leaves "
     "no such polynomial, all zeros isolated in balls up to a frequency beyond which none matters"
@@ -64,7 +68,7 @@ ROWS = (
         title="Gain at a frequency",
         subjects=("response", "break"),
         unit=UnitRule.DECIBEL,
-        definition="Magnitude of the frequency response at the stated frequency.",
+        definition="Magnitude of the frequency response at the stated frequency." + _SAMPLED,
         absent_when="a pole lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
         method="enclosed: the root of an exact square; through dead time or samplers in balls",
@@ -81,7 +85,7 @@ ROWS = (
         definition=(
             "Phase of the frequency response at the stated frequency, followed continuously from zero frequency (an "
             "integrator begins at -90 deg, a negative gain at -180 deg). An undamped pole is passed by -180 deg, an "
-            "undamped zero by 180 deg, as if they were slightly damped."
+            "undamped zero by 180 deg, as if they were slightly damped." + _SAMPLED
         ),
         absent_when="a pole or zero lies on the imaginary axis at that frequency",
         source="IEC 60050-351:2013, section 351-45 (frequency response)",
@@ -109,7 +113,10 @@ ROWS = (
         title="Bandwidth",
         subjects=("response",),
         unit=UnitRule.RADIAN_PER_SECOND,
-        definition="The first frequency at which the gain falls 3 dB (10^(-3/20)) below its value at zero frequency.",
+        definition=(
+            "The first frequency at which the gain falls 3 dB (10^(-3/20)) below its value at zero frequency."
+            + _SAMPLED
+        ),
         absent_when="the gain at zero frequency is zero or infinite, or never falls so far; a mode grows",
         source="common practice; the constant and the first crossing fixed by specgate",
         method=_ROOTS,
@@ -121,7 +128,7 @@ ROWS = (
         title="Resonance peak",
         subjects=("response",),
         unit=UnitRule.DECIBEL,
-        definition="The greatest gain over frequency, relative to the gain at zero frequency.",
+        definition="The greatest gain over frequency, relative to the gain at zero frequency." + _SAMPLED,
         absent_when="the gain at zero frequency is zero or infinite; a pole lies on the imaginary axis, or right of it",
         source="common practice",
         method=_ROOTS,
