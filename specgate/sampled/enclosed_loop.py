@@ -16,6 +16,7 @@ from specgate.frequency.choose import Candidate, least
 from specgate.frequency.margins import GainCrossing, PhaseCrossing
 from specgate.frequency.questions import Crossing, Direction, Range
 from specgate.frequency.rational_loop import UNSTABLE
+from specgate.frequency.recording import REAL, STILL, UNIT
 from specgate.frequency.sided import SidedMargins
 from specgate.frequency.values import reciprocal
 from specgate.response.answers import Answer
@@ -111,10 +112,12 @@ class EnclosedLoop(EnclosedCurve, SidedMargins):
         return told(ask) if self._stable else Answer.nothing(UNSTABLE)
 
     def _gain_margin(self, over: Range | None, *directions: Direction) -> Answer:
-        return self._of_stable(lambda: margins.gain_margin(self._phase_crossings(over), *directions))
+        found = self._of_stable(lambda: margins.gain_margin(self._phase_crossings(over), *directions))
+        return found.accounted(self._account(REAL, "imaginary", imaginary))
 
     def _phase_margin(self, over: Range | None, *directions: Direction) -> Answer:
-        return self._of_stable(lambda: margins.phase_margin(self._gain_crossings(over), *directions))
+        found = self._of_stable(lambda: margins.phase_margin(self._gain_crossings(over), *directions))
+        return found.accounted(self._account(UNIT, "excess", excess))
 
     def delay_margin(self, over: Range | None = None) -> Answer:
         """Return the least dead time that makes the loop unstable; it belongs to no frequency."""
@@ -124,7 +127,8 @@ class EnclosedLoop(EnclosedCurve, SidedMargins):
 
     def sensitivity_peak(self, over: Range | None = None) -> Answer:
         """Return sup |1 / (1 + L)|."""
-        return self._of_stable(lambda: self._sensitivity(over))
+        found = self._of_stable(lambda: self._sensitivity(over))
+        return found.accounted(self._account(STILL, "sensitive", sensitive))
 
     def _sensitivity(self, over: Range | None) -> Answer:
         start = fmpq(0) if self._at_one is None else 1 / (1 + self._at_one) ** 2
@@ -152,12 +156,14 @@ class EnclosedLoop(EnclosedCurve, SidedMargins):
     def crossover_frequency(self, over: Range | None = None) -> Answer:
         """Return the first frequency with |L| = 1 (rad/s)."""
         none = "the gain of the open loop is one at no frequency"
-        return told(lambda: _first(self._gain_crossings(over), none))
+        found = told(lambda: _first(self._gain_crossings(over), none))
+        return found.accounted(self._account(UNIT, "excess", excess))
 
     def phase_crossover_frequency(self, over: Range | None = None) -> Answer:
         """Return the first frequency with L on the negative real axis (rad/s)."""
         none = "the open loop is real and negative at no frequency"
-        return told(lambda: _first(self._phase_crossings(over), none))
+        found = told(lambda: _first(self._phase_crossings(over), none))
+        return found.accounted(self._account(REAL, "imaginary", imaginary))
 
 
 def delay_stood(late: Callable[[], Answer] | None, over: Range | None, *, stable: bool) -> Answer:
