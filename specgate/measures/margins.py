@@ -109,7 +109,8 @@ ROWS = (
         "Delay margin",
         UnitRule.SECOND,
         "The smallest added dead time at which the loop is stable no more: the least of lag over frequency at the gain "
-        "crossings; zero where the loop gain does not fall below one at high frequency.",
+        "crossings; zero where the loop gain does not fall below one at high frequency. Of a sampled loop: how much "
+        "later the held output may arrive, which is no lag of the pulse transfer function and has a search of its own.",
         "specgate's own definition; the least phase lag over frequency at the gain crossings",
         lambda loop, given: loop.delay_margin(given.over),
     ),

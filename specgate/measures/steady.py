@@ -13,6 +13,7 @@ from specgate.measures.reading import missing
 from specgate.measures.subjects import ResponseSubject
 from specgate.response.accounts import Account, Footing
 from specgate.response.answers import Absent, Answer
+from specgate.sampled.solution import SlowTransfer
 from specgate.systems.energy import energy
 from specgate.systems.stability import is_hurwitz
 from specgate.systems.transfer import TransferFunction
@@ -21,6 +22,10 @@ from specgate.terms.precision import working_precision
 Sign = Literal[-1, 0, 1]
 
 _UNSETTLED = "the channel does not settle"
+_SAMPLED = (
+    "what a sine or white noise leaves in a sampled loop between its samples is not answered by this version; gain_at "
+    "and phase_at of a step response tell what a sine does to the samples"
+)
 _GUARD = 32
 
 _REDUCED = "the reduced channel, exact, whose poles all decay (Hurwitz's criterion in rational arithmetic)"
@@ -34,8 +39,10 @@ def _channel(subject: ResponseSubject) -> TransferFunction | Answer:
     for absent in (subject.void, subject.channel):
         if isinstance(absent, Absent):
             return missing(absent)
+    if isinstance(subject.channel, SlowTransfer):
+        return Answer.undecided(_SAMPLED)
     if not isinstance(subject.channel, TransferFunction):
-        return Answer.undecided("what is left in the end is only known of loops without dead time and without samplers")
+        return Answer.undecided("what is left in the end is only known of loops without dead time")
     channel = subject.channel.reduced()
     return channel if is_hurwitz(channel.denominator) else Answer.nothing(_UNSETTLED)
 
