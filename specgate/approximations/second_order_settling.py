@@ -48,7 +48,7 @@ def _damping(features: Features, arguments: Arguments, _: fmpq | None) -> Found:
 
 
 _ACCURACY = {
-    _TWO: ((-72, 424), (-151, 540), (-155, 672)),
+    _TWO: ((-72, 425), (-151, 540), (-155, 672)),
     _FIVE: ((-84, 521), (-209, 696), (-215, 905)),
     _ONE: ((-97, 329), (-149, 418), (-167, 517)),
 }

@@ -154,7 +154,7 @@ def thousandths(low: int, high: int) -> Key:
 Extreme = tuple[str, list[Any], list[Any]]
 SECOND_ORDER: Mapping[int, Mapping[Key, tuple[Extreme, Extreme]]] = {
     2: {
-        thousandths(-72, 424): (("0.7452", [], []), ("0.7798", [], [])),
+        thousandths(-72, 425): (("0.7452", [], []), ("0.7798", [], [])),
         thousandths(-151, 540): (("0.1034", [], ["0.5386", "-17.5"]), ("0.7832", [], ["-3.92"])),
         thousandths(-155, 672): (
             ("0.7439", [("-9.484", "0.303")], [("6.121", "0.03")]),
