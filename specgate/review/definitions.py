@@ -57,14 +57,20 @@ def _with_premises(names: Iterable[str]) -> Iterator[str]:
 
 def _measure(name: str) -> DefinitionReview:
     said = measure_text.describe(name)
-    return DefinitionReview("measure", said.title, said.text, said.source)
+    return DefinitionReview("measure", said.title, said.text, said.source, _summary(said.text))
 
 
 def _approximation(name: str) -> DefinitionReview:
     said = approximation_text.describe(name)
-    return DefinitionReview("approximation", said.title, said.text, said.source or None)
+    return DefinitionReview("approximation", said.title, said.text, said.source or None, _summary(said.text))
 
 
 def _rule(name: str) -> DefinitionReview:
     rule = RULES[name]
     return DefinitionReview("rule", rule.title, rule.text.strip())
+
+
+def _summary(text: str) -> str:
+    """Return what something is (its first paragraph), its formula, and when it has no value."""
+    first, *others = text.split("\n\n")
+    return " ".join([first, *(part for part in others if part.startswith(("Formula:", "No value:")))])

@@ -43,7 +43,7 @@ class Subsystem:
 
 @record
 class Definition:
-    """The text of a measure, an approximation or a rule; `short` is what it is, and when there is none."""
+    """The text of a measure, an approximation or a rule; `short` is what a printed report quotes."""
 
     name: str
     title: str
@@ -147,16 +147,10 @@ def _subsystem(name: str, s: SubsystemReview) -> Subsystem:
 def _definitions(review: Review) -> tuple[tuple[str, tuple[Definition, ...]], ...]:
     kinds: dict[str, list[Definition]] = {}
     for name, d in review.definitions.items():
-        kinds.setdefault(d.kind, []).append(Definition(name, d.title, d.text, _short(d.text), d.source or ""))
+        kinds.setdefault(d.kind, []).append(Definition(name, d.title, d.text, d.summary or d.text, d.source or ""))
     headings = {"measure": "Measures", "approximation": "Approximations", "rule": "Rules"}
     order = [kind for kind in headings if kind in kinds] + [kind for kind in kinds if kind not in headings]
     return tuple((headings.get(kind, kind), tuple(kinds[kind])) for kind in order)
-
-
-def _short(text: str) -> str:
-    """Return what something is, and when it has no value, from the text that `explain` prints."""
-    first, *others = text.split("\n\n")
-    return " ".join([first, *(part for part in others if part.startswith("No value:"))])
 
 
 def cautions(review: Review) -> tuple[str, ...]:

@@ -89,6 +89,8 @@ class DefinitionReview:
     title: str
     text: str
     source: str | None = None
+    summary: str | None = omitted()
+    """Of it what a printed report quotes: what it is, its formula, when it has no value."""
 
 
 @record
