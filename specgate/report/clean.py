@@ -49,14 +49,17 @@ def _cleaned(tree: Any, shown: Shown | None) -> Any:
     if tree is None or isinstance(tree, (float, int)):
         return tree
     if isinstance(tree, (tuple, list)):
-        if tree and isinstance(tree[0], float):
+        if not tree or isinstance(tree[0], float):
             return tree
-        parts = tuple(_cleaned(item, shown) for item in tree)
+        parts = tuple([_cleaned(item, shown) for item in tree])
         return parts if any(map(is_not, parts, tree)) else tree
     names = _names(tree.__class__)
     if names:
-        before = ((name, getattr(tree, name)) for name in names)
-        changed = {name: after for name, part in before if (after := _cleaned(part, shown)) is not part}
+        changed = {}
+        for name in names:
+            part = getattr(tree, name)
+            if part is not None and (after := _cleaned(part, shown)) is not part:
+                changed[name] = after
         return replace(tree, **changed) if changed else tree
     if isinstance(tree, Mapping):
         pairs = [(_cleaned(key, shown), _cleaned(value, shown)) for key, value in tree.items()]
