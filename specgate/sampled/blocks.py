@@ -12,7 +12,7 @@ from specgate.sampled.late import Punctual, punctual
 from specgate.systems.blocks import Block, Instance, LinearForm, OutputRef, SignalRef, Wiring
 from specgate.terms.records import record
 
-LONGEST_DELAY = 200
+LONGEST_DELAY = 100
 """Longest delay in periods, of what a block holds on all ways together: every period of it is one more mode."""
 
 

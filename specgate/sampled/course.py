@@ -20,7 +20,7 @@ from specgate.terms.precision import working_precision
 
 _GUARD = 96
 _KEPT = 4096
-MOST_EARLY = 4000
+MOST_EARLY = 1000
 """Sampling periods until an input is set for the last time that are gone through one by one."""
 
 
