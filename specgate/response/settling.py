@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from functools import reduce
+from functools import cache, reduce
 
 from flint import arb, fmpq
 
@@ -72,7 +72,8 @@ def _answer(course: Course, target: Target, search: Search, without: Answer) -> 
             if fragile is None
             else Answer(Proof.EXACT, without.truth, without.exact, None, without.absent, fragile)
         )
-    found = Answer.of_ball(lambda bits: _span(course, zeros, passage.crossing is None, bits), fragile)
+    # many limits may be put to one response: the ball of each precision is found once
+    found = Answer.of_ball(cache(lambda bits: _span(course, zeros, passage.crossing is None, bits)), fragile)
     return found.accounted(lambda: _how(course, target, len(zeros)))
 
 
