@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import dataclasses
 from collections.abc import Iterator, Mapping
+from functools import cache
+from typing import Any
 
 from specgate.project.parameters import Values
 from specgate.project.types import Subsystem, Value
@@ -74,11 +76,17 @@ def _expressions(node: object) -> Iterator[Expression]:
             yield from _expressions(part)
 
 
-def _parts(node: object) -> Iterator[object]:
+def _parts(node: Any) -> Iterator[object]:
     if isinstance(node, tuple):
         yield from node
     elif isinstance(node, Mapping):
         yield from node.values()
-    elif dataclasses.is_dataclass(node):
-        for field in dataclasses.fields(node):
-            yield getattr(node, field.name)
+    else:
+        for name in _names(node.__class__):
+            yield getattr(node, name)
+
+
+@cache
+def _names(kind: type) -> tuple[str, ...]:
+    """Return the fields of a dataclass, of anything else none; `fields` looks through all of them at every call."""
+    return tuple(field.name for field in dataclasses.fields(kind)) if dataclasses.is_dataclass(kind) else ()

@@ -19,11 +19,12 @@ class Resting:
 
     loops: the parameters that the models, ranges, signals and rest values of a loop read, then its subsystems.
     models: the parameters that the model of each subsystem reads.
+    driven: the parameters that the declaration of each response of each loop reads.
     """
 
     loops: Mapping[str, tuple[str, ...]]
     models: Mapping[str, tuple[str, ...]]
-    declared: Mapping[str, Loop]
+    driven: Mapping[str, Mapping[str, tuple[str, ...]]]
     values: Values
 
     def of(self, assessment: Assessment) -> tuple[str, ...]:
@@ -32,7 +33,7 @@ class Resting:
         loops = dict.fromkeys(subject.loop for subject in subjects)
         below = (one for loop in loops for one in self.loops[loop])
         driven = (
-            read_by(self.declared[subject.loop].responses[subject.name], None, self.values)
+            self.driven[subject.loop][subject.name]
             for subject in subjects
             if subject.kind == "response" and subject.name is not None
         )
@@ -64,7 +65,10 @@ def resting(project: Project, analyses: Analyses) -> Resting:
             for name, loop in analyses.loops.items()
         },
         models=models,
-        declared=project.loops,
+        driven={
+            name: {response: read_by(one, None, values) for response, one in loop.responses.items()}
+            for name, loop in project.loops.items()
+        },
         values=values,
     )
 
